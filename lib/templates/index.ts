@@ -1,1 +1,25 @@
+/** Templates of the squeezed bispectrum: declarations, predictions and the closed forms behind them. Pure. */
 export type * from './types';
+export { TemplateError } from './errors';
+export type { TemplateErrorCode } from './errors';
+export { complexLogGamma } from './log-gamma';
+export {
+  squeezedCoefficient,
+  squeezedLogModulus,
+  writeMixtureCoefficient,
+  writeSqueezedCoefficient,
+} from './squeezed-coefficient';
+export { oscillationColumns, powerColumn, validateAxis } from './bin-averages';
+export type { OscillationColumns } from './bin-averages';
+export {
+  anglesFromWeights,
+  anglesJacobian,
+  drawIsotropicAngles,
+  logIsotropicDensity,
+  mixingWeights,
+} from './mixing';
+export type { OptionDeclaration } from './options';
+export type { TemplateFormula } from './formula';
+export type { TemplateDeclaration } from './declaration';
+export { compileTemplate, findTemplate, parameterData, templateCatalogue } from './catalogue';
+export type { CatalogueEntry, CatalogueParameter } from './catalogue';

@@ -17,14 +17,7 @@ export type Prior =
   | { kind: 'isotropic' };
 
 export type ParameterRole =
-  | 'mass'
-  | 'angle'
-  | 'phase'
-  | 'amplitude'
-  | 'quadrature'
-  | 'coupling'
-  | 'vertex-angle'
-  | 'background';
+  'mass' | 'angle' | 'phase' | 'amplitude' | 'quadrature' | 'coupling' | 'vertex-angle' | 'background';
 
 export interface ParameterDeclaration {
   /** Name in the API, in sample files and in priors: `mu1`, `a1`, `theta`, `g`, `c1`. */
@@ -42,6 +35,8 @@ export interface ParameterDeclaration {
   field: number | null;
   /** Where the template is defined, inclusive; ±Infinity allowed. A prior outside is refused. */
   range: readonly [number, number];
+  /** True where the lower end itself is a limit that a prior may reach but a fixed value may not take. */
+  exclusiveMinimum?: boolean;
   /** True for a phase, which lives on a circle of 2π. */
   circular: boolean;
   defaultPrior: Prior;
