@@ -1,0 +1,174 @@
+import { z } from 'zod';
+import { idSchema, instantSchema, numberOrNull, sha256Schema } from './shared';
+import { fitStatusSchema, likelihoodSchema, cutsSchema } from './notebooks';
+import { priorSchema } from './priors';
+
+export const defaultFit = { replicas: 4, maxDraws: 20_000, rhat: 1.01, ess: 400 } as const;
+
+export const startFitSchema = z.strictObject({
+  /** Master seed; drawn by the server where left out. */
+  seed: z.union([z.string().min(1).max(200), z.number().int().min(0)]).optional(),
+  replicas: z.number().int().min(2).max(16).optional(),
+  /** Kept draws a replica after warm-up. */
+  maxDraws: z.number().int().min(100).max(1_000_000).optional(),
+  target: z
+    .strictObject({
+      rhat: z.number().gt(1).optional(),
+      ess: z.number().positive().max(1e9).optional(),
+    })
+    .optional(),
+});
+export type StartFit = z.infer<typeof startFitSchema>;
+
+/** Everything that determines the draws: no id, no time, no name of a person. Its SHA-256 is of its canonical JSON. */
+export const snapshotSchema = z.object({
+  inputs: z.array(z.object({ part: z.enum(['file', 'covariance', 'mocks']), sha256: sha256Schema })),
+  measurementVersion: z.number().int(),
+  cuts: cutsSchema,
+  likelihood: likelihoodSchema,
+  mockCount: z.number().int().nullable(),
+  template: z.object({
+    id: z.string(),
+    version: z.number().int(),
+    options: z.record(z.string(), z.unknown()),
+  }),
+  priors: z.record(z.string(), priorSchema),
+  seed: z.string(),
+  replicas: z.number().int(),
+  warmup: z.number().int(),
+  blockDraws: z.number().int(),
+  program: z.string(),
+  node: z.string(),
+  architecture: z.string(),
+});
+export type Snapshot = z.infer<typeof snapshotSchema>;
+
+export const diagnosticSchema = z.object({
+  parameter: z.string(),
+  /** True for what is computed from the parameters (m/H, weights). */
+  derived: z.boolean(),
+  mean: numberOrNull,
+  sd: numberOrNull,
+  q2_5: numberOrNull,
+  q16: numberOrNull,
+  q50: numberOrNull,
+  q84: numberOrNull,
+  q97_5: numberOrNull,
+  rhat: numberOrNull,
+  essBulk: numberOrNull,
+  essTail: numberOrNull,
+  mcseMean: numberOrNull,
+  mcseSd: numberOrNull,
+});
+export type Diagnostic = z.infer<typeof diagnosticSchema>;
+
+export const fitSchema = z.object({
+  id: idSchema,
+  notebookId: idSchema,
+  number: z.number().int(),
+  revision: z.number().int(),
+  status: fitStatusSchema,
+  /** What happened, in words, where it isn't plain: why it failed, that it waits for a worker. */
+  message: z.string().nullable(),
+  progress: z.object({
+    /** Warm-up draws made and wanted, then kept draws made and allowed, each a replica. */
+    warmup: z.number().int(),
+    warmupTotal: z.number().int(),
+    draws: z.number().int(),
+    maxDraws: z.number().int(),
+    /** 0 to 1: the greater of draws/maxDraws and the way to the gate. */
+    fraction: z.number(),
+    /** Estimated seconds to the end; null before there is a rate, 0 at the end. */
+    secondsLeft: numberOrNull,
+    /** Seconds of sampling so far, interruptions left out. */
+    secondsSpent: z.number(),
+  }),
+  replicas: z.number().int(),
+  /** Recorded draws a second, all replicas together; null before the first block. */
+  drawsPerSecond: numberOrNull,
+  acceptance: z.array(z.object({ move: z.string(), rate: numberOrNull })),
+  diagnostics: z.array(diagnosticSchema),
+  /** R-hat and ESS as they were after each block, for the small figures. */
+  history: z.array(
+    z.object({ draws: z.number().int(), rhat: z.array(numberOrNull), ess: z.array(numberOrNull) }),
+  ),
+  modes: z.array(
+    z.object({
+      mu: z.array(z.number()),
+      lo: z.array(z.number()),
+      hi: z.array(z.number()),
+      weight: numberOrNull,
+      mcse: numberOrNull,
+      scanWeight: numberOrNull,
+    }),
+  ),
+  logEvidence: z.object({ value: z.number(), error: z.number(), dof: z.number() }).nullable(),
+  gate: z.object({
+    met: z.boolean(),
+    target: z.object({ rhat: z.number(), ess: z.number() }),
+    reasons: z.array(z.string()),
+  }),
+  snapshot: snapshotSchema.extend({ sha256: sha256Schema }),
+  startedBy: z.string(),
+  createdAt: instantSchema,
+  startedAt: instantSchema.nullable(),
+  endedAt: instantSchema.nullable(),
+  may: z.array(z.string()),
+});
+export type Fit = z.infer<typeof fitSchema>;
+
+/** What changes while a fit runs: the payload of one event of `GET /fits/:id/events` (event name `fit`). */
+export const fitEventSchema = fitSchema.pick({
+  id: true,
+  status: true,
+  message: true,
+  progress: true,
+  drawsPerSecond: true,
+  acceptance: true,
+  diagnostics: true,
+  history: true,
+  modes: true,
+  logEvidence: true,
+  gate: true,
+  startedAt: true,
+  endedAt: true,
+  may: true,
+});
+export type FitEvent = z.infer<typeof fitEventSchema>;
+
+/**
+ * Draws for figures: `GET /fits/:id/draws?max=20000`. Every k-th stored draw, warm-up included and marked;
+ * values by column name, rounded to 7 significant digits. The full precision is in the sample file.
+ */
+export const drawsSchema = z.object({
+  replicas: z.number().int(),
+  /** Step between the draws given, in recorded draws. */
+  stride: z.number().int(),
+  replica: z.array(z.number().int()),
+  draw: z.array(z.number().int()),
+  warmup: z.array(z.number().int()),
+  logLikelihood: z.array(z.number()),
+  columns: z.record(z.string(), z.array(z.number())),
+});
+export type Draws = z.infer<typeof drawsSchema>;
+
+export const sampleFormats = ['csv'] as const;
+
+export const manifestSchema = z.object({
+  fit: z.object({ number: z.number().int(), status: fitStatusSchema }),
+  snapshot: snapshotSchema,
+  snapshotSha256: sha256Schema,
+  inputs: z.array(
+    z.object({
+      part: z.enum(['file', 'covariance', 'mocks']),
+      fileName: z.string(),
+      bytes: z.number().int(),
+      sha256: sha256Schema,
+    }),
+  ),
+  outputs: z.array(z.object({ name: z.string(), bytes: z.number().int(), sha256: sha256Schema })),
+  seeds: z.object({ master: z.string(), replicas: z.array(z.string()) }),
+  versions: z.object({ program: z.string(), node: z.string(), architecture: z.string() }),
+  howToRunAgain: z.array(z.string()),
+});
+export type Manifest = z.infer<typeof manifestSchema>;

@@ -1,0 +1,46 @@
+import { z } from 'zod';
+import { idSchema, instantSchema, roleSchema } from './shared';
+import { measurementSummarySchema } from './measurements';
+import { notebookSummarySchema } from './notebooks';
+
+export const healthSchema = z.object({
+  status: z.enum(['ok', 'degraded']),
+  database: z.enum(['ok', 'away']),
+  queue: z.enum(['ok', 'away']),
+  storage: z.enum(['ok', 'away']),
+  /** Live worker processes. */
+  workers: z.number().int(),
+  version: z.string(),
+});
+export type Health = z.infer<typeof healthSchema>;
+
+export const meSchema = z.object({
+  id: idSchema,
+  email: z.email(),
+  groups: z.array(z.object({ id: idSchema, name: z.string(), role: roleSchema })),
+});
+export type Me = z.infer<typeof meSchema>;
+
+export const groupNameSchema = z.string().trim().min(1).max(120);
+export const createGroupSchema = z.strictObject({ name: groupNameSchema });
+
+export const inviteSchema = z.strictObject({
+  email: z
+    .email()
+    .max(254)
+    .transform((email) => email.toLowerCase()),
+  role: roleSchema,
+});
+
+/** A group's home: its notebooks and measurements as the asking member may see them. */
+export const groupSchema = z.object({
+  id: idSchema,
+  name: z.string(),
+  role: roleSchema,
+  may: z.array(z.string()),
+  members: z.array(z.object({ email: z.email(), role: roleSchema })),
+  notebooks: z.array(notebookSummarySchema),
+  measurements: z.array(measurementSummarySchema),
+  createdAt: instantSchema,
+});
+export type Group = z.infer<typeof groupSchema>;

@@ -1,0 +1,7 @@
+export * from './shared';
+export * from './priors';
+export * from './templates';
+export * from './measurements';
+export * from './notebooks';
+export * from './fits';
+export * from './groups';

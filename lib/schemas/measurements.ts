@@ -1,0 +1,105 @@
+import { z } from 'zod';
+import { idSchema, instantSchema, numberOrNull, sha256Schema } from './shared';
+
+/** Limits of one upload, in bytes. */
+export const pointsLimit = 5 * 1024 * 1024;
+export const mocksLimit = 64 * 1024 * 1024;
+
+const columnRef = z.union([z.string().min(1), z.number().int().min(0)]);
+
+export const columnMappingSchema = z.strictObject({
+  kappa: columnRef.optional(),
+  kappaLo: columnRef.optional(),
+  kappaHi: columnRef.optional(),
+  kLong: columnRef.optional(),
+  kShort: columnRef.optional(),
+  k1: columnRef.optional(),
+  k2: columnRef.optional(),
+  k3: columnRef.optional(),
+  S: columnRef.optional(),
+  sigma: columnRef.optional(),
+});
+
+/** The JSON part `meta` of an upload. */
+export const uploadMetaSchema = z.strictObject({
+  name: z.string().trim().min(1).max(120).optional(),
+  description: z.string().trim().max(2000).optional(),
+  columns: columnMappingSchema.optional(),
+  /** Number of mocks behind an uploaded covariance. */
+  mockCount: z.number().int().min(3).optional(),
+  simulated: z.boolean().optional(),
+  blind: z.boolean().optional(),
+});
+export type UploadMeta = z.infer<typeof uploadMetaSchema>;
+
+export const checkSchema = z.object({
+  code: z.string(),
+  level: z.enum(['error', 'warning', 'note', 'ok']),
+  message: z.string(),
+  remedy: z.string().optional(),
+  part: z.enum(['file', 'covariance', 'mocks']).optional(),
+  line: z.number().int().optional(),
+  column: z.number().int().optional(),
+});
+export type Check = z.infer<typeof checkSchema>;
+
+export const covarianceSources = ['file', 'mocks', 'errors'] as const;
+
+/** Answer to an upload, and the head of `GET /measurements/:id`. */
+export const measurementCreatedSchema = z.object({
+  id: idSchema,
+  version: z.number().int(),
+  blind: z.boolean(),
+  rows: z.number().int(),
+  kappaMin: z.number(),
+  kappaMax: z.number(),
+  hasBinEdges: z.boolean(),
+  sha256: sha256Schema,
+  checks: z.array(checkSchema),
+});
+export type MeasurementCreated = z.infer<typeof measurementCreatedSchema>;
+
+export const measurementSummarySchema = z.object({
+  id: idSchema,
+  name: z.string(),
+  description: z.string(),
+  version: z.number().int(),
+  blind: z.boolean(),
+  simulated: z.boolean(),
+  rows: z.number().int(),
+  kappaMin: z.number(),
+  kappaMax: z.number(),
+  uploadedBy: z.string(),
+  uploadedAt: instantSchema,
+});
+export type MeasurementSummary = z.infer<typeof measurementSummarySchema>;
+
+/** One stored file of a measurement. */
+export const storedFileSchema = z.object({
+  part: z.enum(['file', 'covariance', 'mocks']),
+  fileName: z.string(),
+  bytes: z.number().int(),
+  sha256: sha256Schema,
+});
+
+export const measurementSchema = measurementSummarySchema.extend({
+  groupId: idSchema,
+  sha256: sha256Schema,
+  hasBinEdges: z.boolean(),
+  covarianceSource: z.enum(covarianceSources),
+  mockCount: z.number().int().nullable(),
+  files: z.array(storedFileSchema),
+  checks: z.array(checkSchema),
+  /** The points, ascending in κ; `S` is null for each while blind. `sigma` = √ of the covariance's diagonal. */
+  points: z.object({
+    kappa: z.array(z.number()),
+    kappaLo: z.array(z.number()).nullable(),
+    kappaHi: z.array(z.number()).nullable(),
+    S: z.array(numberOrNull),
+    sigma: z.array(z.number()),
+  }),
+  /** Sample or given covariance, row by row; for χ² in the browser. Null above 200 bins. */
+  covariance: z.array(z.array(z.number())).nullable(),
+  may: z.array(z.string()),
+});
+export type Measurement = z.infer<typeof measurementSchema>;

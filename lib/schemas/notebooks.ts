@@ -1,0 +1,121 @@
+import { z } from 'zod';
+import { idSchema, instantSchema } from './shared';
+import { priorSchema, priorsSchema } from './priors';
+import { templateChoiceSchema } from './templates';
+
+export const likelihoodKinds = ['normal', 'hartlap', 'sellentin-heavens', 'matched-t'] as const;
+export const likelihoodSchema = z.strictObject({ kind: z.enum(likelihoodKinds) });
+
+export const cutsSchema = z.strictObject({
+  kappaMin: z.number().positive().optional(),
+  kappaMax: z.number().positive().optional(),
+});
+
+export const titleSchema = z.string().trim().min(1).max(160);
+
+export const createNotebookSchema = z.strictObject({
+  title: titleSchema,
+  measurement: idSchema,
+  cuts: cutsSchema.optional(),
+  likelihood: likelihoodSchema.optional(),
+  template: templateChoiceSchema,
+  priors: priorsSchema.optional(),
+});
+export type CreateNotebook = z.infer<typeof createNotebookSchema>;
+
+/** Names the revision that it edits; what is left out stays as it is. Priors are replaced whole by name. */
+export const patchNotebookSchema = z.strictObject({
+  revision: z.number().int().min(1),
+  title: titleSchema.optional(),
+  cuts: cutsSchema.optional(),
+  likelihood: likelihoodSchema.optional(),
+  template: templateChoiceSchema.optional(),
+  priors: priorsSchema.optional(),
+});
+export type PatchNotebook = z.infer<typeof patchNotebookSchema>;
+
+export const notebookCreatedSchema = z.object({
+  id: idSchema,
+  revision: z.number().int(),
+  blind: z.boolean(),
+});
+
+export const fitStatuses = [
+  'queued',
+  'warming-up',
+  'sampling',
+  'converged',
+  'stopped',
+  'budget-spent',
+  'failed',
+] as const;
+export const fitStatusSchema = z.enum(fitStatuses);
+export type FitStatus = z.infer<typeof fitStatusSchema>;
+export const endedStatuses: readonly FitStatus[] = ['converged', 'stopped', 'budget-spent', 'failed'];
+
+/** A line about a fit in a notebook. */
+export const fitSummarySchema = z.object({
+  id: idSchema,
+  number: z.number().int(),
+  status: fitStatusSchema,
+  /** Revision of the notebook that it froze. */
+  revision: z.number().int(),
+  startedBy: z.string(),
+  createdAt: instantSchema,
+  endedAt: instantSchema.nullable(),
+});
+export type FitSummary = z.infer<typeof fitSummarySchema>;
+
+export const notebookSummarySchema = z.object({
+  id: idSchema,
+  number: z.number().int(),
+  title: z.string(),
+  revision: z.number().int(),
+  measurementName: z.string(),
+  templateId: z.string(),
+  fields: z.number().int(),
+  blind: z.boolean(),
+  simulated: z.boolean(),
+  lastFit: fitSummarySchema.nullable(),
+  updatedBy: z.string(),
+  updatedAt: instantSchema,
+});
+export type NotebookSummary = z.infer<typeof notebookSummarySchema>;
+
+export const notebookSchema = z.object({
+  id: idSchema,
+  number: z.number().int(),
+  groupId: idSchema,
+  groupName: z.string(),
+  title: z.string(),
+  revision: z.number().int(),
+  blind: z.boolean(),
+  simulated: z.boolean(),
+  measurement: z.object({ id: idSchema, name: z.string(), version: z.number().int() }),
+  cuts: cutsSchema,
+  /** Bins kept by the cuts, of all. */
+  bins: z.object({ kept: z.number().int(), all: z.number().int() }),
+  likelihood: likelihoodSchema,
+  template: z.object({
+    id: z.string(),
+    version: z.number().int(),
+    options: z.record(z.string(), z.unknown()),
+  }),
+  /** One for every parameter of the template. */
+  priors: z.record(z.string(), priorSchema),
+  /** Who settled which section when: for the record in the margin. */
+  record: z.array(
+    z.object({
+      revision: z.number().int(),
+      by: z.string(),
+      at: instantSchema,
+      sections: z.array(z.enum(['measurement', 'template', 'priors', 'title'])),
+    }),
+  ),
+  fits: z.array(fitSummarySchema),
+  createdBy: z.string(),
+  createdAt: instantSchema,
+  /** Actions that the asking person may take: `notebook.edit`, `fit.start`, `fit.stop` … */
+  may: z.array(z.string()),
+});
+export type Notebook = z.infer<typeof notebookSchema>;
