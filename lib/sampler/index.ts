@@ -1,1 +1,21 @@
 export type * from './types';
+export { SamplerError } from './errors';
+export type { SamplerErrorCode } from './errors';
+export { createRng, replicaSeed, restoreRng } from './rng';
+export { betaProbability, betaQuantile, logGamma, normalQuantile } from './special-functions';
+export {
+  diagnose,
+  essBulk,
+  essMean,
+  essQuantile,
+  essSd,
+  essTail,
+  mcseMean,
+  mcseQuantile,
+  mcseSd,
+  rhat,
+} from './diagnostics';
+export type { Diagnosis } from './diagnostics';
+export type { NonFinite } from './diagnostics/chain-set';
+export { summarise, summariseCircle } from './summaries';
+export type { CircularSummary, Summary } from './summaries';
