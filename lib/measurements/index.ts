@@ -1,1 +1,22 @@
 export type * from './types';
+export { findingCodes, remedies, type FindingCode } from './codes';
+export { MeasurementError } from './errors';
+export { MAX_BYTES } from './text';
+export { parseMeasurement, type ParseOptions } from './parse-measurement';
+export { parseMatrix, type MatrixOptions } from './parse-matrix';
+export { recogniseColumns, type Recognition, type RecognisedColumn } from './columns';
+export { applyMapping, summarise, type AppliedMapping } from './measurement';
+export { checkCovariance, permuteMatrix, type CovarianceCheck, type CovarianceOptions } from './covariance';
+export { checkMockCount, covarianceFromMocks, hartlapFactor, type MockCovariance } from './mocks';
+export { findSuspiciousPoints, type SuspiciousPoint } from './suspicious-points';
+export { applyCuts, type CutMeasurement, type Cuts } from './cuts';
+export {
+  MAX_BINS,
+  preflight,
+  type CovarianceSource,
+  type PreflightInput,
+  type PreflightPassed,
+  type PreflightRefused,
+  type PreflightResult,
+  type UploadedFile,
+} from './preflight';

@@ -1,18 +1,25 @@
 /** What reading a measurement file gives, and what its preflight finds. Pure. */
 
+import type { FindingCode } from './codes';
+
 export type FindingLevel = 'error' | 'warning' | 'note' | 'ok';
+
+/** Which upload a finding is about. */
+export type Part = 'file' | 'covariance' | 'mocks';
 
 export interface Finding {
   /** Closed set, kebab-case: `missing-column`, `not-a-number`, `edges-ok` … */
-  code: string;
+  code: FindingCode;
   level: FindingLevel;
-  /** What was found and what to do about it, one or two sentences. Contains no data values where `withoutValues` was asked for. */
+  /** What was found, one or two sentences. Contains no data values where `withoutValues` was asked for. */
   message: string;
+  /** What to do about it. Absent where nothing has to be done. */
+  remedy?: string;
   /** Which upload it is about. */
-  part?: 'file' | 'covariance' | 'mocks';
+  part?: Part;
   /** 1-based line in the file. */
   line?: number;
-  /** 1-based column in the file. */
+  /** 1-based column in the file: the number of the cell in its row. */
   column?: number;
 }
 
@@ -21,6 +28,17 @@ export interface ParsedTable {
   rows: number;
   /** By column; NaN where a cell is empty or not finite (each has a finding). */
   data: Float64Array[];
+  /** 1-based line of each row in the file. */
+  lines: Int32Array;
+  findings: Finding[];
+}
+
+/** A file of numbers without names: a covariance, or mocks with one row a mock. */
+export interface NumericMatrix {
+  rows: number;
+  columns: number;
+  /** Row by row, rows · columns numbers; NaN where a cell could not be read (each has a finding). */
+  data: Float64Array;
   /** 1-based line of each row in the file. */
   lines: Int32Array;
   findings: Finding[];
@@ -43,6 +61,9 @@ export interface ColumnMapping {
   sigma?: ColumnRef;
 }
 
+/** What a column can mean. */
+export type ColumnRole = keyof ColumnMapping;
+
 /** A measurement in the product's own terms, rows in ascending κ. */
 export interface Measurement {
   /** κ of each row: the κ column, else √(lo·hi), else k_long/k_short. */
@@ -54,4 +75,18 @@ export interface Measurement {
   sigma: Float64Array | null;
   /** The order in which the file's rows were taken (file row of each ascending row), to permute covariances and mocks. */
   order: Int32Array;
+}
+
+/** What a measurement covers, for the head of its page. */
+export interface MeasurementSummary {
+  rows: number;
+  /** Lowest edge where there are edges, else the lowest κ. */
+  kappaMin: number;
+  /** Highest edge where there are edges, else the highest κ. */
+  kappaMax: number;
+  hasBinEdges: boolean;
+  /** Resolution in μ, 2π/ln(kappaMax/kappaMin). Infinity for a single point. */
+  resolution: number;
+  /** Highest μ that the spacing resolves, π/Δ with Δ the median spacing in ln κ. Infinity for a single point. */
+  nyquist: number;
 }
