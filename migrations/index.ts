@@ -1,0 +1,61 @@
+import { Umzug } from 'umzug';
+import type { QueryInterface, Sequelize } from 'sequelize';
+import { SequelizeStorage } from 'umzug';
+import * as users from './0001-users';
+import * as accounts from './0002-accounts';
+import * as sessions from './0003-sessions';
+import * as verificationTokens from './0004-verification-tokens';
+import * as apiTokens from './0005-api-tokens';
+import * as groups from './0006-groups';
+import * as memberships from './0007-memberships';
+import * as invitations from './0008-invitations';
+import * as auditEvents from './0009-audit-events';
+import * as measurements from './0010-measurements';
+import * as measurementVersions from './0011-measurement-versions';
+import * as notebooks from './0012-notebooks';
+import * as notebookRevisions from './0013-notebook-revisions';
+import * as fits from './0014-fits';
+import * as fitsByStatus from './0015-fits-by-status';
+import * as fitReplicas from './0016-fit-replicas';
+import * as fitBlocks from './0017-fit-blocks';
+import type { MigrationContext } from './table';
+
+interface Migration {
+  up(context: MigrationContext): Promise<void>;
+  down(context: MigrationContext): Promise<void>;
+}
+
+/** Every migration in order; a name is never reused. */
+const migrations: readonly (readonly [string, Migration])[] = [
+  ['0001-users', users],
+  ['0002-accounts', accounts],
+  ['0003-sessions', sessions],
+  ['0004-verification-tokens', verificationTokens],
+  ['0005-api-tokens', apiTokens],
+  ['0006-groups', groups],
+  ['0007-memberships', memberships],
+  ['0008-invitations', invitations],
+  ['0009-audit-events', auditEvents],
+  ['0010-measurements', measurements],
+  ['0011-measurement-versions', measurementVersions],
+  ['0012-notebooks', notebooks],
+  ['0013-notebook-revisions', notebookRevisions],
+  ['0014-fits', fits],
+  ['0015-fits-by-status', fitsByStatus],
+  ['0016-fit-replicas', fitReplicas],
+  ['0017-fit-blocks', fitBlocks],
+];
+
+/** The migrator of an open database; run it with one process at a time. */
+export function migrator(sequelize: Sequelize): Umzug<QueryInterface> {
+  return new Umzug<QueryInterface>({
+    migrations: migrations.map(([name, migration]) => ({
+      name,
+      up: ({ context }) => migration.up({ context }),
+      down: ({ context }) => migration.down({ context }),
+    })),
+    context: sequelize.getQueryInterface(),
+    storage: new SequelizeStorage({ sequelize, tableName: 'schema_migrations' }),
+    logger: undefined,
+  });
+}

@@ -1,0 +1,74 @@
+import { Model, type Sequelize } from 'sequelize';
+import type { CreationOptional, InferAttributes, InferCreationAttributes } from 'sequelize';
+import { count, foreignKey, id, instant, json, text } from './columns';
+
+/** One inference, numbered within its group. Its settings are in its revisions. */
+export class Notebook extends Model<InferAttributes<Notebook>, InferCreationAttributes<Notebook>> {
+  declare id: CreationOptional<string>;
+  declare groupId: string;
+  declare number: number;
+  declare title: string;
+  /** Number of the revision that stands. */
+  declare revision: number;
+  declare measurementVersionId: string;
+  declare createdBy: string;
+  declare createdAt: Date;
+  declare updatedBy: string;
+  declare updatedAt: Date;
+}
+
+/** The settings of sections 1, 2 and 4, complete, as of one revision. */
+export interface NotebookSettings {
+  cuts: { kappaMin?: number; kappaMax?: number };
+  likelihood: { kind: string };
+  template: { id: string; version: number; options: Record<string, unknown> };
+  priors: Record<string, { kind: string } & Record<string, unknown>>;
+}
+
+/** A revision is written once and never changed. */
+export class NotebookRevision extends Model<
+  InferAttributes<NotebookRevision>,
+  InferCreationAttributes<NotebookRevision>
+> {
+  declare id: CreationOptional<string>;
+  declare notebookId: string;
+  declare revision: number;
+  declare title: string;
+  declare settings: NotebookSettings;
+  /** Sections that this revision changed. */
+  declare sections: string[];
+  declare createdBy: string;
+  declare createdAt: Date;
+}
+
+export function initNotebookModels(sequelize: Sequelize): void {
+  const plain = { sequelize, timestamps: false, underscored: true } as const;
+  Notebook.init(
+    {
+      id: id(),
+      groupId: foreignKey(),
+      number: count(),
+      title: text(160),
+      revision: count(),
+      measurementVersionId: foreignKey(),
+      createdBy: foreignKey(),
+      createdAt: instant(),
+      updatedBy: foreignKey(),
+      updatedAt: instant(),
+    },
+    { ...plain, modelName: 'notebook', tableName: 'notebooks' },
+  );
+  NotebookRevision.init(
+    {
+      id: id(),
+      notebookId: foreignKey(),
+      revision: count(),
+      title: text(160),
+      settings: json(),
+      sections: json(),
+      createdBy: foreignKey(),
+      createdAt: instant(),
+    },
+    { ...plain, modelName: 'notebookRevision', tableName: 'notebook_revisions' },
+  );
+}
