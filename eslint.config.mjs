@@ -73,7 +73,7 @@ export default [
       ],
       'check-file/filename-blocklist': [
         'error',
-        { '**/{utils,util,helpers,helper,misc,common}.*': 'name it for what it does' },
+        { '**/{utils,util,helpers,helper,misc,common}.*': '**/what-it-does.*' },
       ],
       '@typescript-eslint/no-explicit-any': 'error',
       '@typescript-eslint/consistent-type-imports': 'error',
@@ -88,8 +88,14 @@ export default [
       'no-restricted-imports': ['error', { patterns: ['node:*', 'react', 'next', 'next/*', 'sequelize'] }],
       'no-restricted-syntax': [
         'error',
-        { selector: "MemberExpression[object.name='Math'][property.name='random']", message: 'Randomness is an argument.' },
-        { selector: "MemberExpression[object.name='Date'][property.name='now']", message: 'The pure core has no clock.' },
+        {
+          selector: "MemberExpression[object.name='Math'][property.name='random']",
+          message: 'Randomness is an argument.',
+        },
+        {
+          selector: "MemberExpression[object.name='Date'][property.name='now']",
+          message: 'The pure core has no clock.',
+        },
         { selector: "NewExpression[callee.name='Date']", message: 'The pure core has no clock.' },
       ],
     },
