@@ -1,0 +1,113 @@
+import type { MeasurementVersion, NotebookSettings } from '@/models';
+import type { InferenceSpec } from '@/lib/inference';
+import { applyCuts, type Measurement } from '@/lib/measurements';
+import { likelihoodSchema, priorsSchema } from '@/lib/schemas';
+import { compileTemplate, findTemplate, type Axis } from '@/lib/templates';
+import { refusingFaults } from './inference-faults';
+
+/** The numbers of a measurement's version: `rows` values each, ascending in κ; covariance rows × rows, row-major. */
+export interface Points {
+  kappa: Float64Array;
+  /** Both null where the measurement has no bin edges. */
+  kappaLo: Float64Array | null;
+  kappaHi: Float64Array | null;
+  S: Float64Array;
+  covariance: Float64Array;
+}
+
+type StoredPoints = Pick<MeasurementVersion, 'rows' | 'hasBinEdges' | 'points' | 'covariance'>;
+type StoredNumbers = StoredPoints & Pick<MeasurementVersion, 'mockCount'>;
+
+/** Little-endian float64 of a stored column; byte by byte, because a buffer may start anywhere in memory. */
+function readDoubles(bytes: Buffer, name: string, length: number): Float64Array {
+  if (bytes.byteLength !== 8 * length) {
+    throw new Error(`The stored ${name} has ${bytes.byteLength} bytes where ${8 * length} are due.`);
+  }
+  const view = new DataView(bytes.buffer, bytes.byteOffset, bytes.byteLength);
+  return Float64Array.from({ length }, (_, i) => view.getFloat64(8 * i, true));
+}
+
+/** The same numbers as they are stored. */
+export function writeDoubles(...columns: Float64Array[]): Buffer {
+  const bytes = Buffer.alloc(8 * columns.reduce((sum, column) => sum + column.length, 0));
+  let at = 0;
+  for (const column of columns) {
+    for (const value of column) at = bytes.writeDoubleLE(value, at);
+  }
+  return bytes;
+}
+
+/** Copies the stored numbers of a version into arrays. Throws where their lengths don't agree with its rows. */
+export function readPoints(version: StoredPoints): Points {
+  const { rows, hasBinEdges } = version;
+  const all = readDoubles(version.points, 'points', 4 * rows);
+  const column = (index: number): Float64Array => all.slice(index * rows, (index + 1) * rows);
+  return {
+    kappa: column(0),
+    kappaLo: hasBinEdges ? column(1) : null,
+    kappaHi: hasBinEdges ? column(2) : null,
+    S: column(3),
+    covariance: readDoubles(version.covariance, 'covariance', rows * rows),
+  };
+}
+
+/** What is kept of a measurement after a notebook's cuts. */
+export interface CutPoints extends Points {
+  /** Indices of the kept rows, ascending. */
+  kept: number[];
+}
+
+/** The points that a notebook's cuts keep. `invalid` at `cuts` where they keep none. */
+export function cutPoints(version: StoredPoints, cuts: NotebookSettings['cuts']): CutPoints {
+  const points = readPoints(version);
+  const measurement: Measurement = {
+    kappa: points.kappa,
+    kappaLo: points.kappaLo,
+    kappaHi: points.kappaHi,
+    S: points.S,
+    sigma: null,
+    order: Int32Array.from(points.kappa.keys()),
+  };
+  const cut = refusingFaults(() => applyCuts(measurement, points.covariance, cuts));
+  const { kappa, kappaLo, kappaHi, S } = cut.measurement;
+  return { kappa, kappaLo, kappaHi, S, covariance: cut.covariance, kept: [...cut.indices] };
+}
+
+/**
+ * Where a template is evaluated on these points: averaged over the bins where there are edges, unless `binAverage` is
+ * false; at κ else. `options` must be settled.
+ */
+export function axisOf(points: Points, options: Record<string, unknown>): Axis {
+  const { kappa, kappaLo, kappaHi } = points;
+  if (kappaLo === null || kappaHi === null || options.binAverage === false) return { kind: 'points', kappa };
+  return { kind: 'bins', lo: kappaLo, hi: kappaHi, weightPower: Number(options.binWeight ?? 0) };
+}
+
+export interface NotebookInference {
+  spec: InferenceSpec;
+  /** Indices of the rows that the cuts keep, ascending. */
+  kept: number[];
+  axis: Axis;
+}
+
+/**
+ * What a notebook's settings say is to be inferred from a measurement's version. Pure apart from reading the row.
+ * A fault in cuts, template or options is `invalid` with its place; priors are checked where the posterior is built.
+ */
+export function inferenceSpec(version: StoredNumbers, settings: NotebookSettings): NotebookInference {
+  const points = cutPoints(version, settings.cuts);
+  const { id, options } = settings.template;
+  return refusingFaults(() => {
+    const axis = axisOf(points, findTemplate(id).normaliseOptions(options));
+    return {
+      spec: {
+        data: { S: points.S, covariance: points.covariance, mockCount: version.mockCount },
+        likelihood: likelihoodSchema.parse(settings.likelihood).kind,
+        template: compileTemplate(id, options, axis),
+        priors: priorsSchema.parse(settings.priors),
+      },
+      kept: points.kept,
+      axis,
+    };
+  });
+}
