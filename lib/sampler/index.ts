@@ -19,3 +19,8 @@ export type { Diagnosis } from './diagnostics';
 export type { NonFinite } from './diagnostics/chain-set';
 export { summarise, summariseCircle } from './summaries';
 export type { CircularSummary, Summary } from './summaries';
+export { DEFAULT_GATE, DEFAULT_MIN_DRAWS, judgeGate } from './gate';
+export type { GateEvidence, GateTarget, GateVerdict } from './gate';
+export { advance, sample, startReplica } from './replica';
+export type { Advance } from './replica';
+export { wrap } from './point';

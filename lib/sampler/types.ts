@@ -47,6 +47,11 @@ export interface SamplerSettings {
   warmup: number;
   /** Blocks of parameters (indices) that the random walk also moves one at a time. */
   blocks: readonly (readonly number[])[];
+  /**
+   * After warm-up the walks are made on every `walkEvery`-th draw only (default 1: on every draw). Needs a jump. Where the jumps
+   * alone move the chain well, evaluations are better spent on them.
+   */
+  walkEvery?: number;
 }
 
 /** Acceptance of one move, counted since the end of warm-up (during warm-up: since the start). */
