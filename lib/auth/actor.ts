@@ -1,0 +1,6 @@
+/** A signed-in person, however they proved it. */
+export interface Actor {
+  userId: string;
+  email: string;
+  siteAdmin: boolean;
+}

@@ -1,0 +1,154 @@
+import { z } from 'zod';
+import {
+  createGroupSchema,
+  createNotebookSchema,
+  createdSchema,
+  drawsSchema,
+  fitSchema,
+  groupSchema,
+  healthSchema,
+  inviteSchema,
+  manifestSchema,
+  measurementCreatedSchema,
+  measurementSchema,
+  meSchema,
+  mocksLimit,
+  notebookCreatedSchema,
+  notebookSchema,
+  patchNotebookSchema,
+  pointsLimit,
+  sampleFormats,
+  startFitSchema,
+} from '@/lib/schemas';
+import type { Action } from '@/lib/policies';
+
+/** Largest part `meta` of an upload: a name, a description and column names. */
+export const metaLimit = 64 * 1024;
+
+/** One part of a multipart body. */
+export interface PartRule {
+  limit: number;
+  required?: boolean;
+  summary: string;
+}
+
+export interface Row {
+  summary: string;
+  /** `anyone` needs no sign-in, `user` any signed-in person; an action is asked of the member of the record's group. */
+  permission: 'anyone' | 'user' | Action;
+  query?: z.ZodType;
+  body?: z.ZodType;
+  parts?: Readonly<Record<string, PartRule>>;
+  /** Schema of the JSON answer; a route that answers otherwise says what it `produces`. */
+  answer?: z.ZodType;
+  produces?: string;
+  status?: 200 | 201 | 202;
+}
+
+const measurementParts = {
+  file: { limit: pointsLimit, required: true, summary: 'The points, as delimited text.' },
+  covariance: { limit: mocksLimit, summary: 'Their covariance, one row a line.' },
+  mocks: { limit: mocksLimit, summary: 'Mock measurements, one mock a line, in place of a covariance.' },
+  meta: { limit: metaLimit, summary: 'JSON: name, description, columns, mockCount, simulated, blind.' },
+} as const satisfies Record<string, PartRule>;
+
+/** Every route of the API. A route file names its row; a file without one fails the tests. */
+export const routes = {
+  'GET /health': { summary: 'State of the instance.', permission: 'anyone', answer: healthSchema },
+  'GET /openapi.json': {
+    summary: 'This description.',
+    permission: 'anyone',
+    answer: z.record(z.string(), z.unknown()),
+  },
+  'GET /me': { summary: 'Who is asking, and their groups.', permission: 'user', answer: meSchema },
+  'POST /groups': {
+    summary: 'Create a group; its creator leads it.',
+    permission: 'user',
+    body: createGroupSchema,
+    answer: createdSchema,
+    status: 201,
+  },
+  'GET /groups/:id': {
+    summary: 'A group with its members, notebooks and measurements.',
+    permission: 'group.read',
+    answer: groupSchema,
+  },
+  'POST /groups/:id/invitations': {
+    summary: 'Invite a person by e-mail.',
+    permission: 'group.invite',
+    body: inviteSchema,
+    answer: createdSchema,
+    status: 201,
+  },
+  'POST /groups/:id/measurements': {
+    summary: 'Upload a measurement.',
+    permission: 'measurement.upload',
+    parts: measurementParts,
+    answer: measurementCreatedSchema,
+    status: 201,
+  },
+  'POST /measurements/:id/versions': {
+    summary: 'Upload a newer version of a measurement.',
+    permission: 'measurement.upload',
+    parts: measurementParts,
+    answer: measurementCreatedSchema,
+    status: 201,
+  },
+  'GET /measurements/:id': {
+    summary: 'A measurement with its points.',
+    permission: 'measurement.read',
+    answer: measurementSchema,
+  },
+  'POST /groups/:id/notebooks': {
+    summary: 'Open a notebook on a measurement.',
+    permission: 'notebook.create',
+    body: createNotebookSchema,
+    answer: notebookCreatedSchema,
+    status: 201,
+  },
+  'GET /notebooks/:id': { summary: 'A notebook.', permission: 'notebook.read', answer: notebookSchema },
+  'PATCH /notebooks/:id': {
+    summary: 'Edit a notebook; names the revision that it edits.',
+    permission: 'notebook.edit',
+    body: patchNotebookSchema,
+    answer: notebookSchema,
+  },
+  'POST /notebooks/:id/fits': {
+    summary: 'Freeze a snapshot and start to sample.',
+    permission: 'fit.start',
+    body: startFitSchema,
+    answer: createdSchema,
+    status: 202,
+  },
+  'GET /fits/:id': { summary: 'A fit with its diagnostics.', permission: 'fit.read', answer: fitSchema },
+  'GET /fits/:id/events': {
+    summary: 'The changing parts of a fit as server-sent events.',
+    permission: 'fit.read',
+    produces: 'text/event-stream',
+  },
+  'POST /fits/:id/stop': {
+    summary: 'Stop a fit; what it has drawn stays.',
+    permission: 'fit.stop',
+    answer: fitSchema,
+  },
+  'GET /fits/:id/draws': {
+    summary: 'Thinned draws for figures.',
+    permission: 'fit.read',
+    query: z.object({ max: z.coerce.number<string>().int().min(100).max(200_000).default(20_000) }),
+    answer: drawsSchema,
+  },
+  'GET /fits/:id/samples': {
+    summary: 'Every stored draw, unrounded.',
+    permission: 'fit.read',
+    query: z.object({ format: z.enum(sampleFormats).default('csv') }),
+    produces: 'text/csv',
+  },
+  'GET /fits/:id/manifest': {
+    summary: 'Checksums, snapshot, seeds and versions of a fit.',
+    permission: 'fit.read',
+    answer: manifestSchema,
+  },
+} as const satisfies Record<`${'GET' | 'POST' | 'PUT' | 'PATCH' | 'DELETE'} /${string}`, Row>;
+
+export type RouteKey = keyof typeof routes;
+export const rowOf = (key: RouteKey): Row => routes[key];

@@ -1,0 +1,98 @@
+import { createHash } from 'node:crypto';
+import {
+  CreateBucketCommand,
+  DeleteObjectCommand,
+  GetObjectCommand,
+  HeadBucketCommand,
+  NoSuchKey,
+  PutObjectCommand,
+  S3Client,
+} from '@aws-sdk/client-s3';
+
+export interface StorageOptions {
+  endpoint: string;
+  bucket: string;
+  accessKeyId: string;
+  secretAccessKey: string;
+}
+
+export interface Stored {
+  sha256: string;
+  bytes: number;
+}
+
+export interface Storage {
+  /** Stores, reads back, and compares length and SHA-256; throws and removes the object where they differ. */
+  putVerified(key: string, bytes: Uint8Array): Promise<Stored>;
+  /** Null where there is no such object. */
+  get(key: string): Promise<Buffer | null>;
+  delete(key: string): Promise<void>;
+  ensureBucket(): Promise<void>;
+  /** Throws where the store doesn't answer. */
+  ping(): Promise<void>;
+  close(): void;
+}
+
+export const sha256Of = (bytes: Uint8Array): string => createHash('sha256').update(bytes).digest('hex');
+
+const statusOf = (error: unknown): number | undefined =>
+  (error as { $metadata?: { httpStatusCode?: number } }).$metadata?.httpStatusCode;
+
+/**
+ * An object store that speaks the S3 protocol. Addresses are never signed and handed out: who may read what is ours.
+ * Checksum trailers are off, because a local store that doesn't know them keeps the trailer within the object.
+ */
+export function openStorage(options: StorageOptions): Storage {
+  const { bucket: Bucket } = options;
+  const client = new S3Client({
+    region: 'local',
+    endpoint: options.endpoint,
+    forcePathStyle: true,
+    requestChecksumCalculation: 'WHEN_REQUIRED',
+    responseChecksumValidation: 'WHEN_REQUIRED',
+    credentials: { accessKeyId: options.accessKeyId, secretAccessKey: options.secretAccessKey },
+    maxAttempts: 3,
+  });
+
+  const get = async (Key: string): Promise<Buffer | null> => {
+    try {
+      const { Body } = await client.send(new GetObjectCommand({ Bucket, Key }));
+      return Body ? Buffer.from(await Body.transformToByteArray()) : Buffer.alloc(0);
+    } catch (error) {
+      if (error instanceof NoSuchKey || statusOf(error) === 404) return null;
+      throw error;
+    }
+  };
+  const remove = async (Key: string): Promise<void> => {
+    await client.send(new DeleteObjectCommand({ Bucket, Key }));
+  };
+
+  return {
+    get,
+    delete: remove,
+    async putVerified(Key, bytes) {
+      const sha256 = sha256Of(bytes);
+      await client.send(new PutObjectCommand({ Bucket, Key, Body: bytes, ContentLength: bytes.byteLength }));
+      const back = await get(Key);
+      if (back?.length !== bytes.byteLength || sha256Of(back) !== sha256) {
+        await remove(Key);
+        throw new Error(
+          `The object store kept ${back?.length ?? 0} other bytes for the ${bytes.byteLength} of ${Key}.`,
+        );
+      }
+      return { sha256, bytes: bytes.byteLength };
+    },
+    async ensureBucket() {
+      try {
+        await client.send(new HeadBucketCommand({ Bucket }));
+      } catch (error) {
+        if (statusOf(error) !== 404) throw error;
+        await client.send(new CreateBucketCommand({ Bucket }));
+      }
+    },
+    async ping() {
+      await client.send(new HeadBucketCommand({ Bucket }), { abortSignal: AbortSignal.timeout(2000) });
+    },
+    close: () => client.destroy(),
+  };
+}

@@ -1,0 +1,2 @@
+export { openStorage, type Storage, type Stored } from './client';
+export { closeStorage, storage } from './instance';
