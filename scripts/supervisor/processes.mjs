@@ -1,0 +1,125 @@
+import { openSync, readFileSync, readdirSync, rmSync, statSync, truncateSync, writeFileSync } from 'node:fs';
+import { setTimeout as sleep } from 'node:timers/promises';
+import { spawn } from 'node:child_process';
+import path from 'node:path';
+import { say } from './console.mjs';
+
+const commandLine = (pid) => {
+  try {
+    return readFileSync(`/proc/${pid}/cmdline`, 'utf8').replaceAll('\0', ' ').trim();
+  } catch {
+    return '';
+  }
+};
+
+export const isAlive = (pid) => {
+  try {
+    process.kill(pid, 0);
+    return !/\) Z /.test(readFileSync(`/proc/${pid}/stat`, 'utf8'));
+  } catch {
+    return false;
+  }
+};
+
+const signal = (pid, name) => {
+  try {
+    process.kill(-pid, name);
+  } catch {
+    try {
+      process.kill(pid, name);
+    } catch {
+      // It has ended.
+    }
+  }
+};
+
+/** Asks a process to end, and ends it after `patience` ms. */
+async function end(pid, patience) {
+  signal(pid, 'SIGTERM');
+  const until = Date.now() + patience;
+  while (isAlive(pid) && Date.now() < until) await sleep(50);
+  if (isAlive(pid)) signal(pid, 'SIGKILL');
+  while (isAlive(pid)) await sleep(20);
+}
+
+/** Ends what an earlier supervisor left behind when it was killed: known by pid file and command line. */
+export async function endLeftovers(state) {
+  const folder = path.join(state, 'pid');
+  for (const file of readdirSync(folder)) {
+    const place = path.join(folder, file);
+    const [pidText, ...rest] = readFileSync(place, 'utf8').split('\n');
+    const pid = Number(pidText);
+    if (pid > 1 && isAlive(pid) && commandLine(pid) === rest.join('\n').trim()) {
+      say(`Ending ${file} left over from before (process ${pid})`);
+      await end(pid, file === 'mariadb' ? 30_000 : 5_000);
+    }
+    rmSync(place, { force: true });
+  }
+}
+
+/**
+ * One child that is started again with back-off when it dies. It leads its own process group, so that Ctrl-C reaches
+ * us alone and we end our children in order.
+ */
+export class Supervised {
+  #name;
+  #state;
+  #start;
+  #patience;
+  #child = null;
+  #wanted = false;
+  #backOff = 250;
+  #timer = null;
+
+  constructor({ name, state, command, args, env, cwd, patience = 10_000 }) {
+    this.#name = name;
+    this.#state = state;
+    this.#patience = patience;
+    this.#start = { command, args, env, cwd };
+  }
+
+  get pid() {
+    return this.#child?.pid ?? null;
+  }
+
+  start() {
+    this.#wanted = true;
+    this.#launch();
+  }
+
+  #launch() {
+    const { command, args, env, cwd } = this.#start;
+    const log = path.join(this.#state, 'log', `${this.#name}.log`);
+    const output = openSync(log, 'a', 0o600);
+    if (statSync(log).size > 50e6) truncateSync(log, 0);
+    const begun = Date.now();
+    const child = spawn(command, args, { env, cwd, detached: true, stdio: ['ignore', output, output] });
+    this.#child = child;
+    child.once('spawn', () => {
+      const file = path.join(this.#state, 'pid', this.#name);
+      // The command line stands only once the new program has replaced the fork.
+      const record = () => writeFileSync(file, `${child.pid}\n${commandLine(child.pid)}`, { mode: 0o600 });
+      record();
+      setTimeout(() => this.#child === child && isAlive(child.pid) && record(), 500).unref();
+    });
+    const ended = (how) => {
+      if (this.#child !== child) return;
+      this.#child = null;
+      if (!this.#wanted) return;
+      if (Date.now() - begun > 30_000) this.#backOff = 250;
+      say(`${this.#name} ended (${how}); starting it again in ${(this.#backOff / 1000).toFixed(2)} s`);
+      this.#timer = setTimeout(() => this.#wanted && this.#launch(), this.#backOff);
+      this.#backOff = Math.min(this.#backOff * 2, 10_000);
+    };
+    child.once('error', (error) => ended(error.message));
+    child.once('exit', (code, by) => ended(by ?? `code ${code}`));
+  }
+
+  async stop() {
+    this.#wanted = false;
+    if (this.#timer) clearTimeout(this.#timer);
+    const pid = this.pid;
+    if (pid !== null) await end(pid, this.#patience);
+    rmSync(path.join(this.#state, 'pid', this.#name), { force: true });
+  }
+}
