@@ -45,7 +45,8 @@ const table = {
   'kappa-too-large':
     'κ = k_long/k_short: check that long and short are not swapped, and that it is not a wavenumber.',
   'not-squeezed': 'Cut these bins in the notebook: the template holds in the squeezed regime.',
-  'not-a-triangle': 'Give three sides of a closed triangle, |k1 − k2| ≤ k3 ≤ k1 + k2, with k3 the soft one.',
+  'not-a-triangle':
+    'Give three sides of a closed triangle, none longer than the other two together, with k3 the soft one.',
   'edges-reversed': 'Give the lower edge first, or swap the two columns.',
   'bins-overlap': 'Give edges so that each bin ends where the next begins or before.',
   'kappa-outside-bin': 'Correct κ or the edges of this bin.',

@@ -156,9 +156,9 @@ export function readName(cell: string): ColumnName {
 /** Names of a line whose columns are separated by spaces: a unit in brackets belongs to the name before it. */
 export function splitNames(line: string): string[] {
   const names: string[] = [];
-  for (const piece of line.match(/"[^"]*"|[[(][^\])]*[\])]|[^\s[("]+[^\s["]*/g) ?? []) {
+  for (const piece of line.match(/"(?:[^"]|"")*"|[[(][^\])]*[\])]|[^\s[("]+[^\s["]*/g) ?? []) {
     if (/^[[(]/.test(piece) && names.length > 0) names[names.length - 1] += ` ${piece}`;
-    else names.push(piece.replace(/^"(.*)"$/, '$1'));
+    else names.push(piece.replace(/^"(.*)"$/, '$1').replaceAll('""', '"'));
   }
   return names;
 }

@@ -97,7 +97,8 @@ export function preflight(input: PreflightInput): PreflightResult {
       : input.file,
   );
   const mapping = table && findMapping(checks, table, input.mapping ?? null);
-  if (table) checks.push(...relevantFindings(table, mapping));
+  const found = table ? relevantFindings(table, mapping) : [];
+  checks.push(...(withoutValues ? found.map(withhold) : found));
   const applied = table && mapping && attempt(checks, () => applyMapping(table, mapping));
   const measurement = applied?.measurement ?? null;
   if (applied) checks.push(...applied.findings);
@@ -128,6 +129,11 @@ function findMapping(
   const { mapping, findings } = recogniseColumns(table);
   checks.push(...findings);
   return findings.length > 0 ? null : mapping;
+}
+
+/** A file may have been read with values in its messages before it was known to be blind: the quoted cell goes. */
+function withhold(found: Finding): Finding {
+  return { ...found, message: found.message.replace(/: “.*”\.$/, '.') };
 }
 
 /** What reading found; a bad cell in a column that is not used stops nothing. */
@@ -165,7 +171,8 @@ function resolveCovariance(
     const matrix = attempt(checks, () =>
       'bytes' in upload ? parseMatrix(upload.bytes, upload.name, { ...options, part }) : upload,
     );
-    if (matrix) checks.push(...matrix.findings);
+    if (matrix)
+      checks.push(...matrix.findings.map((found) => (input.withoutValues ? withhold(found) : found)));
     return matrix;
   };
   const covariance = input.covariance ? read(input.covariance, 'covariance') : null;

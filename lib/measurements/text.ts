@@ -137,7 +137,7 @@ export function readCell(cell: string): Cell {
 
 /** A cell with a decimal comma, 1,25; without a point. Whole numbers are the same either way and give false. */
 export function hasDecimalComma(cell: string): boolean {
-  return /^\s*[+\-−–]?(?:\d+,\d*|,\d+)(?:[eEdD][+-]?\d+)?\s*$/.test(cell);
+  return /^\s*[+\-−–]?\d+,\d+(?:[eEdD][+-]?\d+)?\s*$/.test(cell);
 }
 
 /** True for a word that can be a name: not a number, not empty, and not a sign for "no value" (n/a, null, –). */
