@@ -49,7 +49,7 @@ export async function installNodePackages() {
   const wanted = lockHash();
   if (existsSync(stamp) && readFileSync(stamp, 'utf8') === wanted) return;
   say('Installing the npm packages of package-lock.json');
-  await run('npm', ['ci', '--no-audit', '--no-fund'], { quiet: true, cwd: root });
+  await run('npm', ['ci', '--no-audit', '--no-fund', '--loglevel=warn'], { quiet: true, cwd: root });
   writeFileSync(stamp, wanted);
 }
 
