@@ -1,1 +1,19 @@
+/** Measurement, template, priors and likelihood made into a posterior to sample. Pure. */
 export type * from './types';
+export { InferenceError } from './inference-error';
+export type { InferenceErrorCode } from './inference-error';
+export { buildInference } from './build-inference';
+export { buildLikelihood, matchedExponent } from './likelihoods';
+export type { Likelihood } from './likelihoods';
+export {
+  drawFromPrior,
+  isScalarPrior,
+  lnPriorDensity,
+  priorCdf,
+  priorMoments,
+  priorSupport,
+  sketchPrior,
+  validatePrior,
+} from './priors';
+export type { ScalarPrior } from './priors';
+export { logOrderProbability } from './ordered-masses';

@@ -1,0 +1,239 @@
+import { choleskyInto, forwardSolve, logDeterminant } from './cholesky';
+import { linearReference, drawCoefficient, lnCoefficientDensity, type LinearReference } from './linear-reference';
+import type { ParameterLayout } from './parameter-layout';
+import type { WhitenedField } from './whitened-field';
+import type { Whitening } from './whitening';
+import type { Rng } from '@/lib/sampler';
+
+/**
+ * The linear-Gaussian part of a posterior. Under a normal likelihood with weight λ (χ² → λ χ²) and the normal references
+ * of the background coefficients, the background is integrated out once:
+ *
+ *     P_B = λ BᵀB + D_B⁻¹ = L_B L_Bᵀ,   v = L_B⁻¹ (λ Bᵀd + D_B⁻¹ m_B),   V_f = L_B⁻¹ λ Bᵀ X_f
+ *
+ * which leaves for the columns X of the fields the Gram matrix λ XᵀX − VᵀV and the vector λ Xᵀd − Vᵀv. What depends on one
+ * mass alone is kept as `FieldMoments`; for a pair of masses only the cross products remain. Fixed background
+ * coefficients are subtracted from the data. λ = 1 is the normal likelihood, h the Hartlap one; for the t forms it is the
+ * scale of the normal that stands in for them.
+ */
+export class LinearModel {
+  /** Number of sampled background coefficients. */
+  readonly count: number;
+  /** Parameter index of each. */
+  readonly indices: readonly number[];
+  readonly weight: number;
+  /** λ dᵀd + m_BᵀD_B⁻¹m_B − vᵀv. */
+  readonly baseQuadratic: number;
+  /** ln |P_B| + ln |D_B|. */
+  readonly baseLogDeterminant: number;
+  /** Constant of the log evidence: −½ (p ln 2π + ln |C| − p ln λ). */
+  readonly constant: number;
+  private readonly p: number;
+  private readonly data: Float64Array;
+  private readonly columns: Float64Array;
+  private readonly factor: Float64Array;
+  private readonly v: Float64Array;
+  private readonly references: readonly LinearReference[];
+  private readonly rest: Float64Array;
+  private readonly stores: { masses: Float64Array; moments: FieldMoments[]; next: number }[];
+
+  constructor(
+    layout: ParameterLayout,
+    whitening: Whitening,
+    readonly fields: readonly WhitenedField[],
+    background: Float64Array,
+    weight: number,
+    private readonly tail: { exponent: number; spread: number } | null = null,
+  ) {
+    const p = whitening.length;
+    this.p = p;
+    this.weight = weight;
+    this.data = Float64Array.from(whitening.data);
+    const free: number[] = [];
+    layout.background.forEach((index, j) => {
+      if (layout.position[index] >= 0) free.push(j);
+      else for (let i = 0; i < p; i += 1) this.data[i] -= layout.base[index] * background[j * p + i];
+    });
+    this.count = free.length;
+    this.indices = free.map((j) => layout.background[j]);
+    this.references = this.indices.map((index) => linearReference(layout.priors[index]));
+    this.columns = new Float64Array(this.count * p);
+    free.forEach((j, k) => this.columns.set(background.subarray(j * p, (j + 1) * p), k * p));
+
+    const n = this.count;
+    const precision = new Float64Array(n * n);
+    this.v = new Float64Array(n);
+    let quadratic = weight * dotProduct(this.data, 0, this.data, 0, p);
+    let logPrior = 0;
+    for (let i = 0; i < n; i += 1) {
+      const { mean, precision: own } = this.references[i];
+      for (let j = 0; j <= i; j += 1) {
+        precision[i * n + j] = weight * dotProduct(this.columns, i * p, this.columns, j * p, p) + (i === j ? own : 0);
+      }
+      this.v[i] = weight * dotProduct(this.columns, i * p, this.data, 0, p) + own * mean;
+      quadratic += own * mean * mean;
+      logPrior -= Math.log(own);
+    }
+    choleskyInto(precision, n, precision);
+    this.factor = precision;
+    forwardSolve(this.factor, n, this.v);
+    this.baseQuadratic = quadratic - dotProduct(this.v, 0, this.v, 0, n);
+    this.baseLogDeterminant = logDeterminant(this.factor, n) + logPrior;
+    this.constant = -0.5 * (p * Math.log((2 * Math.PI) / weight) + whitening.logDeterminant);
+    this.rest = new Float64Array(n);
+    this.stores = fields.map(() => ({
+      masses: new Float64Array(STORE).fill(NaN),
+      moments: Array.from({ length: STORE }, () => newFieldMoments(n, p)),
+      next: 0,
+    }));
+  }
+
+  /**
+   * ln evidence from what the fields add to the base: `quadratic` is the fields' part of the minimum of λχ² + prior
+   * (≤ 0), `logDeterminant` their ln |P| + ln |D|. With a `tail` the quadratic form enters as in the t likelihood,
+   * −(m/2) ln(1 + Q/(λ(N − 1))), so that masses far from the best keep their weight; then it is up to a constant.
+   */
+  logEvidence(quadratic: number, logDeterminantOfFields: number): number {
+    const half = -0.5 * (this.baseLogDeterminant + logDeterminantOfFields);
+    const total = this.baseQuadratic + quadratic;
+    if (!this.tail) return this.constant + half - 0.5 * total;
+    return half - 0.5 * this.tail.exponent * Math.log1p(Math.max(0, total) / (this.weight * this.tail.spread));
+  }
+
+  /** The moments of one field at a mass; overwritten by later calls at `STORE` other masses. No allocation. */
+  moments(field: number, mass: number): FieldMoments {
+    const store = this.stores[field];
+    for (let i = 0; i < STORE; i += 1) if (store.masses[i] === mass) return store.moments[i];
+    const slot = store.next;
+    store.next = (slot + 1) % STORE;
+    this.fillMoments(field, mass, store.moments[slot]);
+    store.masses[slot] = mass;
+    return store.moments[slot];
+  }
+
+  /** Moments of a field in an array of their own, for grids. */
+  freshMoments(field: number, mass: number): FieldMoments {
+    const moments = newFieldMoments(this.count, this.p);
+    this.fillMoments(field, mass, moments);
+    return moments;
+  }
+
+  private fillMoments(field: number, mass: number, out: FieldMoments): void {
+    const { p, count: n, weight } = this;
+    out.mass = mass;
+    out.columns.set(this.fields[field].at(mass));
+    const x = out.columns;
+    for (let c = 0; c < 2; c += 1) {
+      for (let k = 0; k < n; k += 1) out.v[c * n + k] = weight * dotProduct(this.columns, k * p, x, c * p, p);
+      forwardSolve(this.factor, n, out.v, c * n);
+      out.linear[c] = weight * dotProduct(x, c * p, this.data, 0, p) - dotProduct(out.v, c * n, this.v, 0, n);
+    }
+    for (let g = 0; g < 3; g += 1) {
+      const a = g === 2 ? 1 : 0;
+      const b = g === 0 ? 0 : 1;
+      out.gram[g] = weight * dotProduct(x, a * p, x, b * p, p) - dotProduct(out.v, a * n, out.v, b * n, n);
+    }
+  }
+
+  /** The 2 × 2 cross Gram matrix of two fields' columns (row: column of `a`), into `out[0 … 3]`. */
+  cross(a: FieldMoments, b: FieldMoments, out: Float64Array): void {
+    const { p, count: n, weight } = this;
+    let cc = 0;
+    let cs = 0;
+    let sc = 0;
+    let ss = 0;
+    const x = a.columns;
+    const y = b.columns;
+    for (let i = 0; i < p; i += 1) {
+      const xc = x[i];
+      const xs = x[p + i];
+      const yc = y[i];
+      const ys = y[p + i];
+      cc += xc * yc;
+      cs += xc * ys;
+      sc += xs * yc;
+      ss += xs * ys;
+    }
+    out[0] = weight * cc - dotProduct(a.v, 0, b.v, 0, n);
+    out[1] = weight * cs - dotProduct(a.v, 0, b.v, n, n);
+    out[2] = weight * sc - dotProduct(a.v, n, b.v, 0, n);
+    out[3] = weight * ss - dotProduct(a.v, n, b.v, n, n);
+  }
+
+  /** Draws the background given the fields' coefficients (two a field), into the full vector. */
+  drawBackground(rng: Rng, moments: readonly FieldMoments[], coefficients: Float64Array, full: Float64Array): void {
+    this.settleRest(moments, coefficients);
+    const n = this.count;
+    for (let j = n - 1; j >= 0; j -= 1) {
+      const { precision, linear } = this.conditional(j, full);
+      full[this.indices[j]] = drawCoefficient(rng, this.references[j], precision, linear);
+    }
+  }
+
+  /** ln density of the background in `full` under `drawBackground`. */
+  lnBackgroundDensity(moments: readonly FieldMoments[], coefficients: Float64Array, full: Float64Array): number {
+    this.settleRest(moments, coefficients);
+    let sum = 0;
+    for (let j = this.count - 1; j >= 0; j -= 1) {
+      const { precision, linear } = this.conditional(j, full);
+      sum += lnCoefficientDensity(full[this.indices[j]], this.references[j], precision, linear);
+    }
+    return sum;
+  }
+
+  /** v − Σ_f V_f c_f: what is left of the data for the background. */
+  private settleRest(moments: readonly FieldMoments[], coefficients: Float64Array): void {
+    const n = this.count;
+    this.rest.set(this.v);
+    for (let f = 0; f < moments.length; f += 1) {
+      const { v } = moments[f];
+      const a = coefficients[2 * f];
+      const b = coefficients[2 * f + 1];
+      for (let k = 0; k < n; k += 1) this.rest[k] -= a * v[k] + b * v[n + k];
+    }
+  }
+
+  private readonly pair = { precision: 0, linear: 0 };
+
+  /** Conditional of coefficient j given those after it, with those before it integrated out. */
+  private conditional(j: number, full: Float64Array): { precision: number; linear: number } {
+    const n = this.count;
+    const diagonal = this.factor[j * n + j];
+    let rest = this.rest[j];
+    for (let i = j + 1; i < n; i += 1) rest -= this.factor[i * n + j] * full[this.indices[i]];
+    this.pair.precision = diagonal * diagonal;
+    this.pair.linear = diagonal * rest;
+    return this.pair;
+  }
+}
+
+const STORE = 8;
+
+/** What one field at one mass contributes: its columns and their products with everything but other fields. */
+export interface FieldMoments {
+  mass: number;
+  /** Whitened cosine and sine column, 2 × p. */
+  readonly columns: Float64Array;
+  /** Gram matrix with the background integrated out: (cos cos, cos sin, sin sin). */
+  readonly gram: Float64Array;
+  /** Products with the data, background integrated out. */
+  readonly linear: Float64Array;
+  /** V_f: 2 × (number of background coefficients). */
+  readonly v: Float64Array;
+}
+
+function newFieldMoments(background: number, p: number): FieldMoments {
+  return {
+    mass: NaN,
+    columns: new Float64Array(2 * p),
+    gram: new Float64Array(3),
+    linear: new Float64Array(2),
+    v: new Float64Array(2 * background),
+  };
+}
+
+function dotProduct(a: Float64Array, from: number, b: Float64Array, at: number, n: number): number {
+  let sum = 0;
+  for (let i = 0; i < n; i += 1) sum += a[from + i] * b[at + i];
+  return sum;
+}

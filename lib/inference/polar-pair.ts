@@ -1,0 +1,219 @@
+import type { Rng } from '@/lib/sampler';
+import { drawTruncatedNormal, lnTruncatedNormal } from './gaussian-tail';
+import { drawLinearDensity, lnLinearDensity } from './linear-density';
+import { lnRayIntegral } from './ray-integral';
+
+/** What is known of an amplitude A ≥ 0 beside the data. */
+export interface AmplitudePrior {
+  lo: number;
+  hi: number;
+  /** Normal factor of the prior: exp(−½ ownPrecision (A − ownMean)²); precision 0 for none. */
+  ownMean: number;
+  ownPrecision: number;
+  /** Power of A in the prior's density, integrable at lo: 0, −½ (weights of mixed fields) or −1 (log-uniform, lo > 0). */
+  power: number;
+  /** Variance of each of A cos φ and A sin φ: ½ E[A²], for the normal that stands in while others are drawn. */
+  variance: number;
+}
+
+const PHASES = 32;
+const AMPLITUDES = 32;
+/** tan(s/2) at the nodes s = −π … π of the circle; the ends are the same point. */
+const HALF_TANGENTS = Float64Array.from({ length: PHASES + 1 }, (_, k) => Math.tan(Math.PI * (k / PHASES - 0.5)));
+
+/**
+ * One field's amplitude and phase under a conditional normal of its coefficients c = (A cos φ, −A sin φ),
+ * exp(−½ cᵀ S c + tᵀ c) times the amplitude's prior; the phase is uniform.
+ *
+ * φ is drawn from its own conditional with A integrated out, on 32 nodes with a linear density between them. The nodes are
+ * even in the angle ψ of the whitened coefficients, mapped by tan(s/2) → τ tan(s/2) round the best ψ, so that they gather
+ * where the data fix the phase and cover the circle where they don't. Then A given φ: a truncated normal; with a power of
+ * A in the prior and A near 0, a density linear between 32 nodes in √A or ln A. No Cartesian step: the density of (A, φ)
+ * has no factor A, so the acceptance ratio stays bounded as A → 0.
+ */
+export class PolarPair {
+  private saa = 0;
+  private sab = 0;
+  private sbb = 0;
+  private ta = 0;
+  private tb = 0;
+  private prior: AmplitudePrior = { lo: 0, hi: 1, ownMean: 0, ownPrecision: 0, power: 0, variance: 1 };
+  // Whitening of the pair (upper triangular, M'M = S + ridge), the middle and the stretch of the nodes.
+  private m00 = 1;
+  private m01 = 0;
+  private m11 = 1;
+  private centre = 0;
+  private stretch = 1;
+  private readonly heights = new Float64Array(PHASES + 1);
+  private readonly logHeights = new Float64Array(PHASES + 1);
+  private readonly amplitudeHeights = new Float64Array(AMPLITUDES);
+  private fixedAmplitude = NaN;
+
+  /** Settles S, t and the prior. `fixedAmplitude` is NaN where A is drawn. */
+  settle(
+    saa: number,
+    sab: number,
+    sbb: number,
+    ta: number,
+    tb: number,
+    prior: AmplitudePrior,
+    fixedAmplitude: number,
+  ): void {
+    this.saa = saa;
+    this.sab = sab;
+    this.sbb = sbb;
+    this.ta = ta;
+    this.tb = tb;
+    this.prior = prior;
+    this.fixedAmplitude = fixedAmplitude;
+  }
+
+  drawPhase(rng: Rng): number {
+    this.layPhases();
+    const s = drawLinearDensity(this.heights, PHASES + 1, rng.uniform());
+    const psi = this.centre + 2 * Math.atan(this.stretch * Math.tan(Math.PI * (s / PHASES - 0.5)));
+    const v0 = Math.cos(psi);
+    const v1 = Math.sin(psi);
+    const b = v1 / this.m11;
+    const a = (v0 - this.m01 * b) / this.m00;
+    return Math.atan2(-b, a);
+  }
+
+  lnPhaseDensity(phase: number): number {
+    this.layPhases();
+    const a = Math.cos(phase);
+    const b = -Math.sin(phase);
+    const v0 = this.m00 * a + this.m01 * b;
+    const v1 = this.m11 * b;
+    const tangent = Math.tan(0.5 * (Math.atan2(v1, v0) - this.centre)) / this.stretch;
+    const s = PHASES * (Math.atan(tangent) / Math.PI + 0.5);
+    const stretched = this.stretch * tangent;
+    // ds → dψ → dφ.
+    const psiPerNode = ((2 * Math.PI) / PHASES) * this.stretch * ((1 + tangent * tangent) / (1 + stretched * stretched));
+    const phasePerPsi = (v0 * v0 + v1 * v1) / (this.m00 * this.m11);
+    return lnLinearDensity(this.heights, PHASES + 1, s) - Math.log(psiPerNode * phasePerPsi);
+  }
+
+  drawAmplitude(rng: Rng, phase: number): number {
+    const { q, l } = this.along(phase);
+    const { lo, hi } = this.prior;
+    if (!this.onNodes(q, l)) return drawTruncatedNormal(rng, l / q, 1 / Math.sqrt(q), lo, hi);
+    const [from, to] = this.layAmplitudes(q, l);
+    const s = drawLinearDensity(this.amplitudeHeights, AMPLITUDES, rng.uniform());
+    const t = from + ((to - from) * s) / (AMPLITUDES - 1);
+    return this.prior.power === -1 ? Math.exp(t) : t * t;
+  }
+
+  lnAmplitudeDensity(amplitude: number, phase: number): number {
+    const { q, l } = this.along(phase);
+    const { lo, hi } = this.prior;
+    if (!this.onNodes(q, l)) return lnTruncatedNormal(amplitude, l / q, 1 / Math.sqrt(q), lo, hi);
+    const [from, to] = this.layAmplitudes(q, l);
+    const logarithmic = this.prior.power === -1;
+    const t = logarithmic ? Math.log(amplitude) : Math.sqrt(amplitude);
+    const s = ((t - from) / (to - from)) * (AMPLITUDES - 1);
+    const slope = logarithmic ? amplitude : 2 * t;
+    return lnLinearDensity(this.amplitudeHeights, AMPLITUDES, s) + Math.log((AMPLITUDES - 1) / ((to - from) * slope));
+  }
+
+  /** exp(−½ q A² + l A) along a phase, the prior's normal factor included. */
+  private along(phase: number): { q: number; l: number } {
+    return this.ray(Math.cos(phase), -Math.sin(phase));
+  }
+
+  private readonly line = { q: 1, l: 0 };
+
+  private ray(a: number, b: number): { q: number; l: number } {
+    const { ownPrecision, ownMean, hi, variance } = this.prior;
+    const q = this.saa * a * a + 2 * this.sab * a * b + this.sbb * b * b + ownPrecision;
+    // Where neither data nor prior bound A, a floor far below either keeps the normal proper.
+    const floor = Number.isFinite(hi) ? 1e-6 / (hi * hi) : 1e-6 / variance;
+    this.line.q = Math.max(q, floor);
+    this.line.l = this.ta * a + this.tb * b + ownPrecision * ownMean;
+    return this.line;
+  }
+
+  /** True if the power of A matters: it is there, and A near its lower end is within reach. */
+  private onNodes(q: number, l: number): boolean {
+    return this.prior.power !== 0 && (l / q - this.prior.lo) * Math.sqrt(q) < 8;
+  }
+
+  /** Heights of the density of √A or ln A at its nodes; returns the range. */
+  private layAmplitudes(q: number, l: number): [number, number] {
+    const { lo, hi, power } = this.prior;
+    const logarithmic = power === -1;
+    // Beyond this A the normal has fallen by exp(−30) from its value at 0.
+    const end = Math.min(hi, Math.max((l + Math.sqrt(l * l + 60 * q)) / q, 1.01 * lo));
+    const from = logarithmic ? Math.log(lo) : Math.sqrt(lo);
+    const to = logarithmic ? Math.log(end) : Math.sqrt(end);
+    const best = Math.min(end, Math.max(lo, l / q));
+    const peak = -0.5 * q * best * best + l * best;
+    for (let k = 0; k < AMPLITUDES; k += 1) {
+      const t = from + ((to - from) * k) / (AMPLITUDES - 1);
+      const a = logarithmic ? Math.exp(t) : t * t;
+      this.amplitudeHeights[k] = Math.exp(-0.5 * q * a * a + l * a - peak) + 1e-12;
+    }
+    return [from, to];
+  }
+
+  /** Whitening, middle and stretch of the phase nodes, and the heights at them. */
+  private layPhases(): void {
+    const { saa, sab, sbb, ta, tb, prior, heights, logHeights, fixedAmplitude } = this;
+    const reach = Number.isFinite(prior.hi) ? Math.min(prior.hi * prior.hi, 4 * prior.variance) : 4 * prior.variance;
+    const ridge = 1 / reach + prior.ownPrecision;
+    this.m00 = Math.sqrt(saa + ridge);
+    this.m01 = sab / this.m00;
+    this.m11 = Math.sqrt(Math.max(ridge * 1e-3, sbb + ridge - this.m01 * this.m01));
+    // Best whitened point: solve M'v = t.
+    const best0 = ta / this.m00;
+    const best1 = (tb - this.m01 * best0) / this.m11;
+    this.centre = best0 === 0 && best1 === 0 ? 0 : Math.atan2(best1, best0);
+    const amplitude = Number.isNaN(fixedAmplitude) ? Math.hypot(best0, best1) : this.fixedReach(fixedAmplitude);
+    this.stretch = Math.min(1, 2.5 / Math.max(amplitude, 1e-12));
+    let max = -Infinity;
+    for (let k = 0; k < PHASES; k += 1) {
+      const tangent = HALF_TANGENTS[k];
+      const stretched = this.stretch * tangent;
+      // cos and sin of the turn 2 atan(stretched) from the middle, without trigonometry; node 0 is the far side.
+      const square = stretched * stretched;
+      const cosine = k === 0 ? -1 : (1 - square) / (1 + square);
+      const sine = k === 0 ? 0 : (2 * stretched) / (1 + square);
+      const size = Math.hypot(best0, best1);
+      const c0 = size > 0 ? best0 / size : 1;
+      const c1 = size > 0 ? best1 / size : 0;
+      const v0 = cosine * c0 - sine * c1;
+      const v1 = sine * c0 + cosine * c1;
+      const e1 = v1 / this.m11;
+      const e0 = (v0 - this.m01 * e1) / this.m00;
+      const length = Math.sqrt(e0 * e0 + e1 * e1);
+      const { q, l } = this.ray(e0 / length, e1 / length);
+      let value: number;
+      if (Number.isNaN(fixedAmplitude)) {
+        value = lnRayIntegral(q, l, prior.lo, prior.hi);
+        if (prior.power !== 0) {
+          const typical = Math.min(prior.hi, Math.max(prior.lo, l / q, 0.5 / Math.sqrt(q)));
+          value += prior.power * Math.log(typical);
+        }
+      } else {
+        value = -0.5 * q * fixedAmplitude * fixedAmplitude + l * fixedAmplitude;
+      }
+      // dφ/dψ = 1/(|M| |e|²) and dψ/ds, which at the far side tends to 1/τ.
+      const turning = k === 0 ? 1 / this.stretch : (this.stretch * (1 + tangent * tangent)) / (1 + square);
+      logHeights[k] = value + Math.log(turning / (length * length));
+      if (logHeights[k] > max) max = logHeights[k];
+    }
+    let sum = 0;
+    for (let k = 0; k < PHASES; k += 1) {
+      heights[k] = Math.exp(logHeights[k] - max);
+      sum += heights[k];
+    }
+    const floor = (1e-3 * sum) / PHASES;
+    for (let k = 0; k < PHASES; k += 1) heights[k] += floor;
+    heights[PHASES] = heights[0];
+  }
+
+  /** How many widths of the whitened normal a held amplitude reaches: sets how well the phase is known. */
+  private fixedReach(amplitude: number): number {
+    return amplitude * Math.sqrt(Math.max(this.m00 * this.m00, this.m11 * this.m11));
+  }
+}

@@ -1,0 +1,160 @@
+import type { JumpProposal, Rng } from '@/lib/sampler';
+import { mixedAmplitudes, polarAmplitudes } from './amplitude-maps';
+import { LinearModel } from './collapsed';
+import { FieldSystem, type FieldStage } from './field-system';
+import type { Likelihood } from './likelihoods';
+import {
+  lineProposal,
+  noMasses,
+  OneMassProposal,
+  planeProposal,
+  type MassProposal,
+  type MassProposalSettings,
+} from './mass-proposal';
+import { greedyGain, singleGain } from './greedy-gain';
+import { cellCentres } from './mass-grid';
+import type { ParameterLayout } from './parameter-layout';
+import { MixingStage } from './stage-mixing';
+import { PolarStage } from './stage-polar';
+import { QuadratureStage } from './stage-quadrature';
+import { fillIn } from './target';
+import type { WhitenedField } from './whitened-field';
+import type { Whitening } from './whitening';
+
+/**
+ * The spectral jump: masses from a fixed proposal made of the collapsed evidence, then the fields' other parameters, then
+ * the background, each from its conditional under the reference model. What is fixed, and the vertex angle of a mixture, is
+ * conditioned on. The density is exact for what is drawn, so the Hastings ratio corrects every approximation.
+ */
+class SpectralJump implements JumpProposal {
+  readonly name = 'spectral-jump';
+  private readonly full: Float64Array;
+  private readonly before: Float64Array;
+  private readonly coefficients: Float64Array;
+  // The density of the rest given the masses depends on the end point alone: keep the last few.
+  private readonly keptPoints: Float64Array[];
+  private readonly keptValues: Float64Array;
+  private next = 0;
+
+  constructor(
+    private readonly layout: ParameterLayout,
+    private readonly masses: MassProposal,
+    private readonly system: FieldSystem,
+    private readonly stage: FieldStage | null,
+  ) {
+    this.full = Float64Array.from(layout.base);
+    this.before = Float64Array.from(layout.base);
+    this.coefficients = new Float64Array(layout.template.columnCount);
+    this.keptPoints = Array.from({ length: 4 }, () => new Float64Array(layout.free.length).fill(NaN));
+    this.keptValues = new Float64Array(4);
+  }
+
+  draw(rng: Rng, from: Float64Array, out: Float64Array): void {
+    const { layout, full, system } = this;
+    fillIn(layout, from, full);
+    this.masses.draw(rng, full);
+    this.loadFields();
+    this.stage?.draw(rng, system, full);
+    layout.template.coefficients(full, this.coefficients);
+    system.model.drawBackground(rng, system.moments, this.coefficients, full);
+    for (let i = 0; i < layout.free.length; i += 1) out[i] = full[layout.free[i]];
+  }
+
+  logDensity(to: Float64Array, from: Float64Array): number {
+    const { layout, full, before, system } = this;
+    fillIn(layout, to, full);
+    fillIn(layout, from, before);
+    const masses = this.masses.logDensity(full, before);
+    if (masses === -Infinity) return masses;
+    const kept = this.keptPoints.findIndex((point) => samePoint(point, to));
+    if (kept >= 0) return masses + this.keptValues[kept];
+
+    this.loadFields();
+    let rest = this.stage ? this.stage.logDensity(system, full) : 0;
+    layout.template.coefficients(full, this.coefficients);
+    rest += system.model.lnBackgroundDensity(system.moments, this.coefficients, full);
+    if (Number.isNaN(rest)) rest = -Infinity;
+    this.keptPoints[this.next].set(to);
+    this.keptValues[this.next] = rest;
+    this.next = (this.next + 1) % this.keptPoints.length;
+    return masses + rest;
+  }
+
+  private readonly massOf = (f: number): number => this.full[this.layout.masses[f]];
+
+  private loadFields(): void {
+    this.system.load(this.massOf);
+  }
+}
+
+function samePoint(a: Float64Array, b: Float64Array): boolean {
+  for (let i = 0; i < a.length; i += 1) if (a[i] !== b[i]) return false;
+  return true;
+}
+
+function stageOf(layout: ParameterLayout): FieldStage | null {
+  switch (layout.template.structure) {
+    case 'background':
+      return null;
+    case 'linear':
+      return new QuadratureStage(layout);
+    case 'polar':
+      return new PolarStage(polarAmplitudes(layout), layout.masses.length);
+    case 'mixed-polar':
+      return new PolarStage(mixedAmplitudes(layout), layout.masses.length);
+    case 'mixed':
+      return new MixingStage(layout);
+  }
+}
+
+/** How sharp the proposal of the masses may be: nearly the evidence itself where that is exact. */
+function massSettings(stage: FieldStage, likelihood: Likelihood): MassProposalSettings {
+  return { temper: stage.exact && likelihood.exponent === null ? 0.9 : 1 / 1.5, floor: 0.07 };
+}
+
+/**
+ * The spectral jump of a posterior. For a t likelihood the reference is a normal one whose covariance is C/λ,
+ * λ = m/(N − 1 + χ²) at the χ² of the best masses: the curvature of the t form at its best fit.
+ */
+export function buildSpectralJump(
+  layout: ParameterLayout,
+  likelihood: Likelihood,
+  whitening: Whitening,
+  fields: readonly WhitenedField[],
+  background: Float64Array,
+): JumpProposal {
+  const model = referenceModel(layout, likelihood, whitening, fields, background);
+  const system = new FieldSystem(model, fields.length);
+  const stage = stageOf(layout);
+  if (!stage) return new SpectralJump(layout, noMasses, system, null);
+  const grids = new FieldSystem(model, fields.length);
+  const settings = massSettings(stage, likelihood);
+  const sampled = layout.masses.flatMap((index, f) => (layout.position[index] >= 0 ? [f] : []));
+  let masses: MassProposal;
+  if (sampled.length === 0) masses = noMasses;
+  else if (sampled.length === 1) masses = lineProposal(layout, grids, stage, sampled[0], settings);
+  else if (sampled.length === 2) masses = planeProposal(layout, grids, stage, [sampled[0], sampled[1]], settings);
+  else {
+    const vertexAngle = layout.template.parameters.findIndex(({ role }) => role === 'vertex-angle');
+    masses = new OneMassProposal(layout, grids, stage, settings, vertexAngle, (edges) =>
+      cellCentres(edges).map((mass) => singleGain(model, 0, mass)),
+    );
+  }
+  return new SpectralJump(layout, masses, system, stage);
+}
+
+function referenceModel(
+  layout: ParameterLayout,
+  likelihood: Likelihood,
+  whitening: Whitening,
+  fields: readonly WhitenedField[],
+  background: Float64Array,
+): LinearModel {
+  const make = (weight: number, tail: { exponent: number; spread: number } | null): LinearModel =>
+    new LinearModel(layout, whitening, fields, background, weight, tail);
+  const { exponent, spread } = likelihood;
+  if (exponent === null || spread === null) return make(likelihood.scale, null);
+  const first = make(exponent / (spread + whitening.length), null);
+  const chiSquare = Math.max(0, first.baseQuadratic - 2 * greedyGain(layout, first)) / first.weight;
+  return make(exponent / (spread + chiSquare), { exponent, spread });
+}

@@ -1,0 +1,254 @@
+import { logIsotropicDensity, mixingWeights } from '@/lib/templates';
+import type { Rng } from '@/lib/sampler';
+import type { FieldStage, FieldSystem } from './field-system';
+import { FieldUnits } from './field-units';
+import {
+  drawCoefficient,
+  isExactReference,
+  linearReference,
+  lnCoefficientDensity,
+  type LinearReference,
+} from './linear-reference';
+import { CellDistribution, cellCentres, evenEdges, findCell, gatherEdges, temperedWeights } from './mass-grid';
+import { scalarPriorOf, type ParameterLayout } from './parameter-layout';
+import { drawFromPrior, lnPriorDensity, priorSupport } from './priors';
+import { drawIsotropicAngles } from '@/lib/templates';
+
+/** Cells of each sampled angle when so many are sampled. */
+const CELLS: Readonly<Record<number, number>> = { 1: 64, 2: 16, 3: 8 };
+/** Part of the angles that is drawn from their prior. */
+const FLOOR = 0.1;
+
+/**
+ * Structure `mixed`: coefficients g w_i(angles) u_i(μ_i). The angles are drawn from a grid of their conditional with g and
+ * the background integrated out (one angle: 64 cells, then 64 more gathered where it is large), mixed with a tenth of their
+ * prior; g is then drawn from its conditional normal. Angles or g that are fixed are conditioned on, and so is the
+ * vertex angle of a mixture.
+ */
+export class MixingStage implements FieldStage {
+  readonly exact: boolean;
+  private readonly units: FieldUnits;
+  private readonly free: number[];
+  private readonly reference: LinearReference | null;
+  private readonly fields: number;
+  /** Signal's Gram matrix and products with the data, a number for each (pair of) fields. */
+  private readonly gram: Float64Array;
+  private readonly linear: Float64Array;
+  private readonly edges: Float64Array[];
+  private readonly cellWeights: Float64Array[];
+  private readonly cellLogPriors: Float64Array;
+  private readonly cellLogVolume: number;
+  private readonly values: Float64Array;
+  private readonly angleScratch: Float64Array;
+  private readonly drawn: Float64Array;
+  private readonly weights: Float64Array;
+  private readonly form = { precision: 0, linear: 0 };
+
+  constructor(private readonly layout: ParameterLayout) {
+    this.units = new FieldUnits(layout);
+    this.fields = layout.masses.length;
+    this.free = layout.angles.flatMap((index, k) => (layout.position[index] >= 0 ? [k] : []));
+    const coupled = layout.priors[layout.coupling];
+    this.reference = coupled.kind === 'fixed' ? null : linearReference(coupled);
+    this.exact = [layout.coupling, ...layout.background].every((index) => isExactReference(layout.priors[index]));
+    this.gram = new Float64Array(this.fields ** 2);
+    this.linear = new Float64Array(this.fields);
+    this.angleScratch = Float64Array.from(layout.angles, (index) => layout.base[index]);
+    this.drawn = new Float64Array(layout.angles.length);
+    this.weights = new Float64Array(this.fields);
+
+    this.edges = this.free.map((k) => {
+      const prior = scalarPriorOf(layout, layout.angles[k]);
+      const [lo, hi] = prior ? priorSupport(prior) : [0, Math.PI / 2];
+      return evenEdges(lo, hi, CELLS[this.free.length]);
+    });
+    const count = this.edges.reduce((product, edges) => product * (edges.length - 1), 1);
+    this.cellWeights = [];
+    this.cellLogPriors = new Float64Array(count);
+    this.values = new Float64Array(count);
+    for (let cell = 0; cell < count; cell += 1) {
+      this.placeCentre(cell);
+      this.cellWeights.push(mixingWeights(this.angleScratch));
+      this.cellLogPriors[cell] = this.lnAnglePrior(this.angleScratch);
+    }
+    this.cellLogVolume = this.edges.reduce((sum, edges) => sum + Math.log(edges[1] - edges[0]), 0);
+  }
+
+  logEvidence(system: FieldSystem, full: Float64Array): number {
+    this.settle(system, full);
+    const count = this.cellWeights.length;
+    let max = -Infinity;
+    for (let cell = 0; cell < count; cell += 1) {
+      const value = this.lnGain(this.cellWeights[cell], full) + this.cellLogPriors[cell];
+      this.values[cell] = value;
+      if (value > max) max = value;
+    }
+    let sum = 0;
+    for (let cell = 0; cell < count; cell += 1) sum += Math.exp(this.values[cell] - max);
+    return system.model.logEvidence(-2 * (max + Math.log(sum) + this.cellLogVolume), 0);
+  }
+
+  draw(rng: Rng, system: FieldSystem, full: Float64Array): void {
+    this.settle(system, full);
+    if (this.free.length > 0) this.drawAngles(rng, full);
+    if (!this.reference) return;
+    this.weigh(full);
+    const { precision, linear } = this.conditional();
+    full[this.layout.coupling] = drawCoefficient(rng, this.reference, precision, linear);
+  }
+
+  logDensity(system: FieldSystem, full: Float64Array): number {
+    this.settle(system, full);
+    let sum = this.free.length > 0 ? this.lnAngleDensity(full) : 0;
+    if (this.reference) {
+      this.weigh(full);
+      const { precision, linear } = this.conditional();
+      sum += lnCoefficientDensity(full[this.layout.coupling], this.reference, precision, linear);
+    }
+    return sum;
+  }
+
+  private drawAngles(rng: Rng, full: Float64Array): void {
+    const { layout, free } = this;
+    if (rng.uniform() < FLOOR) {
+      if (layout.isotropic) drawIsotropicAngles(() => rng.uniform(), this.drawn);
+      for (const k of free) {
+        const prior = scalarPriorOf(layout, layout.angles[k]);
+        full[layout.angles[k]] = prior ? drawFromPrior(prior, rng) : this.drawn[k];
+      }
+      return;
+    }
+    const { edges, cells } = this.angleGrid(full);
+    let cell = cells.at(rng.uniform());
+    for (let d = free.length - 1; d >= 0; d -= 1) {
+      const size = edges[d].length - 1;
+      const at = cell % size;
+      cell = (cell - at) / size;
+      full[layout.angles[free[d]]] = edges[d][at] + (edges[d][at + 1] - edges[d][at]) * rng.uniform();
+    }
+  }
+
+  private lnAngleDensity(full: Float64Array): number {
+    const { layout, free } = this;
+    for (let k = 0; k < layout.angles.length; k += 1) this.drawn[k] = full[layout.angles[k]];
+    const prior = Math.exp(this.lnAnglePrior(this.drawn));
+    const { edges, cells } = this.angleGrid(full);
+    let cell = 0;
+    let volume = 1;
+    for (let d = 0; d < free.length; d += 1) {
+      const at = findCell(edges[d], full[layout.angles[free[d]]]);
+      if (at < 0) return -Infinity;
+      cell = cell * (edges[d].length - 1) + at;
+      volume *= edges[d][at + 1] - edges[d][at];
+    }
+    return Math.log(((1 - FLOOR) * Math.exp(cells.logProbability(cell))) / volume + FLOOR * prior);
+  }
+
+  /** The grid of the angles at the settled masses. */
+  private angleGrid(full: Float64Array): { edges: Float64Array[]; cells: CellDistribution } {
+    const { cellWeights, values } = this;
+    for (let cell = 0; cell < values.length; cell += 1) {
+      values[cell] = this.lnGain(cellWeights[cell], full) + this.cellLogPriors[cell];
+    }
+    const weights = temperedWeights(values, 1);
+    if (this.free.length > 1) return { edges: this.edges, cells: new CellDistribution(weights) };
+    const edges = gatherEdges(this.edges[0], weights, this.edges[0].length - 1);
+    const finer = cellCentres(edges);
+    for (let i = 0; i < finer.length; i += 1) {
+      this.angleScratch[this.free[0]] = finer[i];
+      mixingWeights(this.angleScratch, this.weights);
+      finer[i] = this.lnGain(this.weights, full) + this.lnAnglePrior(this.angleScratch);
+    }
+    const refined = temperedWeights(finer, 1);
+    for (let i = 0; i < refined.length; i += 1) refined[i] *= edges[i + 1] - edges[i];
+    return { edges: [edges], cells: new CellDistribution(refined) };
+  }
+
+  /** ln prior density of the sampled angles, the isotropic one together. */
+  private lnAnglePrior(angles: Float64Array): number {
+    if (this.layout.isotropic) return logIsotropicDensity(angles);
+    let sum = 0;
+    for (const k of this.free) {
+      const prior = scalarPriorOf(this.layout, this.layout.angles[k]);
+      if (prior) sum += lnPriorDensity(prior, angles[k]);
+    }
+    return sum;
+  }
+
+  private placeCentre(cell: number): void {
+    let rest = cell;
+    for (let d = this.free.length - 1; d >= 0; d -= 1) {
+      const edges = this.edges[d];
+      const size = edges.length - 1;
+      const at = rest % size;
+      rest = (rest - at) / size;
+      this.angleScratch[this.free[d]] = 0.5 * (edges[at] + edges[at + 1]);
+    }
+  }
+
+  /** Weights of the angles in `full`. */
+  private weigh(full: Float64Array): void {
+    for (let k = 0; k < this.drawn.length; k += 1) this.drawn[k] = full[this.layout.angles[k]];
+    mixingWeights(this.drawn, this.weights);
+    this.project(this.weights);
+  }
+
+  /** Products of the fields' signals u_iᵀ(…)u_j at the masses of the system. */
+  private settle(system: FieldSystem, full: Float64Array): void {
+    const { fields, gram, linear } = this;
+    const u = this.units.update(full);
+    const n = system.size;
+    for (let i = 0; i < fields; i += 1) {
+      const ua = u[2 * i];
+      const ub = u[2 * i + 1];
+      linear[i] = ua * system.linear[2 * i] + ub * system.linear[2 * i + 1];
+      for (let j = 0; j <= i; j += 1) {
+        const at = 2 * i * n + 2 * j;
+        const va = u[2 * j];
+        const vb = u[2 * j + 1];
+        const product =
+          ua * (system.gram[at] * va + system.gram[at + 1] * vb) +
+          ub * (system.gram[at + n] * va + system.gram[at + n + 1] * vb);
+        gram[i * fields + j] = product;
+        gram[j * fields + i] = product;
+      }
+    }
+  }
+
+  /** The quadratic form −½ q g² + l g of the coupling at these weights, into `form`. */
+  private project(weights: Float64Array): void {
+    const { fields, gram, linear, form } = this;
+    let q = 0;
+    let l = 0;
+    for (let i = 0; i < fields; i += 1) {
+      l += weights[i] * linear[i];
+      for (let j = 0; j < fields; j += 1) q += weights[i] * weights[j] * gram[i * fields + j];
+    }
+    form.precision = q;
+    form.linear = l;
+  }
+
+  /** Conditional of g with its reference: adds the prior to `form`. */
+  private conditional(): { precision: number; linear: number } {
+    const { form, reference } = this;
+    if (reference) {
+      form.precision += reference.precision;
+      form.linear += reference.precision * reference.mean;
+    }
+    return form;
+  }
+
+  /** ln of the likelihood's gain over no signal at these weights, g integrated out (or at its fixed value). */
+  private lnGain(weights: Float64Array, full: Float64Array): number {
+    this.project(weights);
+    const { form, reference } = this;
+    if (!reference) {
+      const g = full[this.layout.coupling];
+      return g * (form.linear - 0.5 * form.precision * g);
+    }
+    const { precision, mean } = reference;
+    const total = form.precision + precision;
+    const shifted = form.linear + precision * mean;
+    return 0.5 * ((shifted * shifted) / total - precision * mean * mean - Math.log(total / precision));
+  }
+}
