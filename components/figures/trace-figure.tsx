@@ -1,0 +1,186 @@
+'use client';
+
+import { useMemo } from 'react';
+import { ComposedChart, Line, XAxis, YAxis } from 'recharts';
+import type { FigureNumbers } from '@/lib/figures/csv';
+import { markerPath } from '@/lib/figures/paths';
+import { thinnedIndices } from '@/lib/figures/thin';
+import { linearTicks, paddedDomain } from '@/lib/figures/ticks';
+import { Figure, type FigureFacts, type FigureSize } from './figure';
+import { Frame, usePixels, type Panel } from './frame';
+import { SvgSym } from './svg-text';
+
+export interface Trace {
+  symbol: { base: string; sub: string };
+  /** 0-based field whose colour it takes; null for ink. */
+  field: number | null;
+  /** One array a replica, all of them values at the same draws. */
+  replicas: readonly ArrayLike<number>[];
+}
+
+export interface TraceFigureProps extends FigureFacts {
+  traces: readonly Trace[];
+  /** Draws of warm-up, shaded. */
+  warmup: number;
+  /** Draws between two values; 1 unless told. */
+  step?: number;
+  /** Draws that the axis reaches to; left out, those that are there. */
+  total?: number;
+}
+
+const still = { isAnimationActive: false, legendType: 'none', dot: false, activeDot: false } as const;
+
+/** Masses in the replicas since the start: in their field's colour without dashes, labelled at the end. */
+export function TraceFigure(props: TraceFigureProps) {
+  return (
+    <Figure {...props} height={273} heightNarrow={238} numbers={() => traceNumbers(props)}>
+      {(size) => <TraceDrawing figure={props} size={size} />}
+    </Figure>
+  );
+}
+
+function traceNumbers({ traces, step = 1 }: TraceFigureProps): FigureNumbers {
+  const length = Math.max(0, ...traces.flatMap((t) => t.replicas.map((r) => r.length)));
+  const kept = thinnedIndices(new Float64Array(length), 1000);
+  const columns = traces.flatMap((t) =>
+    t.replicas.map((values, r) => ({ name: `${t.symbol.base}${t.symbol.sub} replica ${r}`, values })),
+  );
+  return {
+    columns: ['draw', ...columns.map((c) => c.name)],
+    rows: kept.map((i) => [i * step, ...columns.map((c) => c.values[i] ?? null)]),
+  };
+}
+
+function TraceDrawing({ figure, size }: { figure: TraceFigureProps; size: FigureSize }) {
+  const { traces, warmup, step = 1 } = figure;
+  const panel: Panel = {
+    left: size.narrow ? 36 : 44,
+    right: size.width - 10,
+    top: 30,
+    bottom: size.narrow ? 190 : 226,
+  };
+  const lines = useMemo(
+    () =>
+      traces.flatMap((trace, t) =>
+        trace.replicas.map((values, r) => ({
+          key: `${t} ${r}`,
+          className: `tr ${trace.field === null ? '' : `f${trace.field + 1}`}`,
+          data: thinnedIndices(values, 2 * Math.max(100, size.width)).map((i) => ({
+            x: i * step,
+            y: values[i],
+          })),
+        })),
+      ),
+    [traces, step, size.width],
+  );
+  const yDomain = useMemo(() => paddedDomain(lines.flatMap((l) => l.data.map((p) => p.y))), [lines]);
+  const now = Math.max(0, ...traces.flatMap((t) => t.replicas.map((r) => (r.length - 1) * step)));
+  const end = Math.max(figure.total ?? now, now, 1);
+  return (
+    <ComposedChart
+      width={size.width}
+      height={size.narrow ? 238 : 273}
+      accessibilityLayer={false}
+      margin={{
+        left: panel.left,
+        right: size.width - panel.right,
+        top: panel.top,
+        bottom: (size.narrow ? 238 : 273) - panel.bottom,
+      }}
+    >
+      <XAxis dataKey="x" type="number" domain={[0, end]} allowDataOverflow hide />
+      <YAxis yAxisId="main" type="number" domain={yDomain} allowDataOverflow hide />
+      <WarmUp panel={panel} until={Math.min(warmup, end)} />
+      <Frame
+        panel={panel}
+        yAxisId="main"
+        xTicks={linearTicks(0, end, size.narrow ? 3 : 6).filter((tick) => tick.major)}
+        yTicks={linearTicks(yDomain[0], yDomain[1], size.narrow ? 4 : 6).filter((tick) => tick.major)}
+        xName="draw"
+        yName={traces.map((trace, i) => (
+          <tspan key={i}>
+            {i ? ', ' : ''}
+            <SvgSym {...trace.symbol} />
+          </tspan>
+        ))}
+      />
+      {lines.map((line) => (
+        <Line
+          key={line.key}
+          {...still}
+          yAxisId="main"
+          data={line.data}
+          dataKey="y"
+          type="linear"
+          className={line.className}
+        />
+      ))}
+      <TraceEnds panel={panel} traces={traces} now={now} room={now < 0.94 * end} />
+    </ComposedChart>
+  );
+}
+
+function WarmUp({ panel, until }: { panel: Panel; until: number }) {
+  const pixels = usePixels('main');
+  if (!pixels || !(until > 0)) return null;
+  const width = pixels.x(until) - panel.left;
+  return (
+    <g>
+      <rect
+        className="b95"
+        x={panel.left + 0.5}
+        y={panel.top}
+        width={Math.max(0, width)}
+        height={panel.bottom - panel.top - 0.5}
+      />
+      {width > 64 ? (
+        <text className="an it" x={panel.left + width - 8} y={panel.bottom - 10} textAnchor="end">
+          warm-up
+        </text>
+      ) : null}
+    </g>
+  );
+}
+
+/** A line at the present draw, and each trace's marker and symbol at the mean of its replicas there. */
+function TraceEnds({
+  panel,
+  traces,
+  now,
+  room,
+}: {
+  panel: Panel;
+  traces: readonly Trace[];
+  now: number;
+  room: boolean;
+}) {
+  const pixels = usePixels('main');
+  if (!pixels || now === 0) return null;
+  const x = pixels.x(now);
+  return (
+    <g>
+      {room ? <path className="lead" d={`M${x.toFixed(1)} ${panel.top}V${panel.bottom}`} /> : null}
+      {traces.map((trace, i) => {
+        const last = trace.replicas.map((r) => r[r.length - 1]).filter(Number.isFinite);
+        const y = pixels.y(last.reduce((sum, v) => sum + v, 0) / last.length);
+        if (!Number.isFinite(y)) return null;
+        return (
+          <g key={i}>
+            <path
+              className={`mk ${trace.field === null ? 'plain' : `f${trace.field + 1}`}`}
+              d={markerPath(trace.field ?? 0, x, y, 3.6)}
+            />
+            <text
+              className="an strong"
+              x={room ? x + 10 : x - 10}
+              y={y + 5}
+              textAnchor={room ? 'start' : 'end'}
+            >
+              <SvgSym {...trace.symbol} />
+            </text>
+          </g>
+        );
+      })}
+    </g>
+  );
+}
