@@ -1,0 +1,3 @@
+import { authHandlers } from '@/lib/auth/handlers';
+
+export const { GET, POST } = authHandlers;

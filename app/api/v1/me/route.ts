@@ -1,0 +1,4 @@
+import { withUser } from '@/lib/http/route';
+import { readMe } from '@/lib/services/accounts';
+
+export const GET = withUser('GET /me', ({ actor }) => readMe(actor));

@@ -1,0 +1,23 @@
+import { Group, Membership } from '@/models';
+import { database } from '@/lib/db';
+import { roleSchema, type Me } from '@/lib/schemas';
+import type { Actor } from './access';
+
+/** Who is asking, and the groups they belong to, by name. */
+export async function readMe(actor: Actor): Promise<Me> {
+  database();
+  const memberships = await Membership.findAll({ where: { userId: actor.userId } });
+  const groups = await Group.findAll({
+    where: { id: memberships.map(({ groupId }) => groupId) },
+    order: ['name', 'id'],
+  });
+  const roles = new Map(memberships.map(({ groupId, role }) => [groupId, roleSchema.parse(role)]));
+  return {
+    id: actor.userId,
+    email: actor.email,
+    groups: groups.flatMap(({ id, name }) => {
+      const role = roles.get(id);
+      return role === undefined ? [] : [{ id, name, role }];
+    }),
+  };
+}

@@ -1,0 +1,88 @@
+import type { Transaction } from 'sequelize';
+import { Group, Invitation, Membership, User } from '@/models';
+import { database } from '@/lib/db';
+import { AppError, notFound } from '@/lib/errors';
+import { sendInvitation } from '@/lib/mail';
+import type { Role } from '@/lib/schemas';
+import type { Access } from './access';
+import { recordEvent } from './audit';
+
+async function join(invitation: Invitation, userId: string, transaction: Transaction): Promise<void> {
+  const { groupId, role } = invitation;
+  const now = new Date();
+  const [membership, isNew] = await Membership.findOrCreate({
+    where: { groupId, userId },
+    defaults: { groupId, userId, role, createdAt: now },
+    transaction,
+  });
+  await invitation.update({ acceptedAt: now }, { transaction });
+  if (!isNew) return;
+  await recordEvent(
+    {
+      groupId,
+      actorId: userId,
+      action: 'group.join',
+      subjectType: 'membership',
+      subjectId: membership.id,
+      details: { role },
+    },
+    transaction,
+  );
+}
+
+/** Turns every open invitation of an address into a membership; called when its owner has signed in. */
+export async function acceptInvitations(userId: string, email: string): Promise<void> {
+  await database().transaction(async (transaction) => {
+    const open = await Invitation.findAll({
+      where: { email: email.toLowerCase(), acceptedAt: null },
+      lock: transaction.LOCK.UPDATE,
+      transaction,
+    });
+    for (const invitation of open) await join(invitation, userId, transaction);
+  });
+}
+
+/**
+ * Invites a person by e-mail, or changes the role of an invitation that is still open. Whoever has an account is a
+ * member at once; anyone else when they first sign in with that address. `conflict` where they are a member already.
+ */
+export async function invite(access: Access, body: { email: string; role: Role }): Promise<{ id: string }> {
+  access.require('group.invite');
+  const { groupId, actor } = access;
+  const group = await Group.findByPk(groupId);
+  if (!group) throw notFound('group');
+
+  const { id, joined } = await database().transaction(async (transaction) => {
+    const user = await User.findOne({ where: { email: body.email }, transaction });
+    const member = user && (await Membership.findOne({ where: { groupId, userId: user.id }, transaction }));
+    if (member)
+      throw new AppError('conflict', `${body.email} is a member of this group already, as ${member.role}.`);
+    const values = { ...body, groupId, invitedBy: actor.userId, createdAt: new Date(), acceptedAt: null };
+    const [invitation, isNew] = await Invitation.findOrCreate({
+      where: { groupId, email: body.email },
+      defaults: values,
+      transaction,
+    });
+    if (!isNew) await invitation.update(values, { transaction });
+    await recordEvent(
+      {
+        groupId,
+        actorId: actor.userId,
+        action: 'group.invite',
+        subjectType: 'invitation',
+        subjectId: invitation.id,
+        details: { email: body.email, role: body.role },
+      },
+      transaction,
+    );
+    if (user) await join(invitation, user.id, transaction);
+    return { id: invitation.id, joined: user !== null };
+  });
+  await sendInvitation(body.email, {
+    groupName: group.name,
+    role: body.role,
+    invitedBy: actor.email,
+    joined,
+  });
+  return { id };
+}
