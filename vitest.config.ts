@@ -3,7 +3,10 @@ import { fileURLToPath } from 'node:url';
 
 const root = fileURLToPath(new URL('.', import.meta.url));
 
-/** `pure` needs no service; `integration` and `faults` run against real MariaDB, Redis and object store. */
+/**
+ * `pure` needs no service; `integration` runs against real MariaDB, Redis and object store; `browser` against a whole
+ * instance that `npm start` has brought up.
+ */
 export default defineConfig({
   resolve: { alias: { '@': root.replace(/\/$/, '') } },
   test: {
@@ -13,7 +16,6 @@ export default defineConfig({
         test: {
           name: 'pure',
           include: ['tests/{lib,published,components,scripts}/**/*.test.{ts,tsx}'],
-          exclude: ['tests/lib/services/**'],
           testTimeout: 120_000,
         },
       },
@@ -22,9 +24,22 @@ export default defineConfig({
         test: {
           name: 'integration',
           include: ['tests/{integration,faults}/**/*.test.ts'],
+          globalSetup: 'tests/integration/services.ts',
+          globalSetup: ['tests/integration/services.mjs'],
           fileParallelism: false,
           testTimeout: 180_000,
           hookTimeout: 120_000,
+        },
+      },
+      {
+        extends: true,
+        test: {
+          name: 'browser',
+          include: ['tests/browser/**/*.test.ts'],
+          globalSetup: 'tests/browser/services.ts',
+          fileParallelism: false,
+          testTimeout: 180_000,
+          hookTimeout: 300_000,
         },
       },
     ],
