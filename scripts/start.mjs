@@ -25,7 +25,7 @@ for (const name of ['SIGINT', 'SIGTERM', 'SIGHUP']) {
 try {
   refuseOtherNode();
   await installNodePackages();
-  const services = ['mariadbd', 'mariadb-install-db', 'mariadb-admin', 'mariadb'];
+  const services = ['mariadbd', 'mariadb-install-db', 'mariadb'];
   await installDebianPackages([
     ...(process.env.DATABASE_URL ? [] : services),
     ...(process.env.REDIS_URL ? [] : ['redis-server']),

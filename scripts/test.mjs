@@ -73,7 +73,7 @@ try {
   refuseOtherNode();
   await installNodePackages();
   await installDebianPackages([
-    ...['mariadbd', 'mariadb-install-db', 'mariadb-admin', 'mariadb', 'redis-server', 'chromium'],
+    ...['mariadbd', 'mariadb-install-db', 'mariadb', 'redis-server', 'chromium'],
   ]);
   rmSync(path.join(root, '.state-test'), { recursive: true, force: true });
   mkdirSync(reports, { recursive: true, mode: 0o700 });

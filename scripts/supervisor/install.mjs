@@ -25,7 +25,6 @@ export function findProgram(name) {
 const debian = {
   mariadbd: ['mariadb-server-core'],
   'mariadb-install-db': ['mariadb-server-core'],
-  'mariadb-admin': ['mariadb-client-core'],
   mariadb: ['mariadb-client-core'],
   'redis-server': ['redis-server'],
   chromium: ['chromium'],

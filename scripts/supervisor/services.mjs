@@ -74,15 +74,15 @@ export async function startMariadb({ state, port, password }) {
     patience: 30_000,
   });
   server.start();
-  const admin = findProgram('mariadb-admin');
+  const client = findProgram('mariadb');
   await waitFor('MariaDB', async () => {
-    const { code } = await run(admin, ['--no-defaults', `--socket=${socket}`, 'ping'], {
+    const { code } = await run(client, ['--no-defaults', `--socket=${socket}`, '-e', 'SELECT 1'], {
       quiet: true,
       check: false,
     });
     return code === 0;
   });
-  await run(findProgram('mariadb'), ['--no-defaults', `--socket=${socket}`], {
+  await run(client, ['--no-defaults', `--socket=${socket}`], {
     quiet: true,
     input: `
       CREATE DATABASE IF NOT EXISTS beatnote CHARACTER SET utf8mb4 COLLATE utf8mb4_unicode_ci;
