@@ -188,12 +188,8 @@ function missingColumn(table: ParsedTable, missing: string[]): Finding {
     : `The file has ${names.join(', ')}${table.columns.length > 12 ? ', …' : ''}.`;
   return finding('missing-column', 'error', `There is no column for ${missing.join(', nor for ')}. ${has}`, {
     part: 'file',
-    line: firstLine(table, unnamed),
+    line: table.headerLine ?? table.lines[0],
   });
-}
-
-function firstLine(table: ParsedTable, unnamed: boolean): number {
-  return unnamed ? table.lines[0] : Math.max(1, table.lines[0] - 1);
 }
 
 /** True if any of the names is recognised: then the columns are those of a measurement, not of a matrix. */

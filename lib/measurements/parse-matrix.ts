@@ -123,6 +123,9 @@ class MatrixReader {
   #columns = 0;
   #rows = 0;
   #lines = new Int32Array(256);
+  /** Where the line that is being read begins, and its text once it was needed. */
+  #lineStart = 0;
+  #text: string | null = null;
   readonly #bad = new FindingList();
   readonly #ragged = new FindingList();
 
@@ -155,6 +158,8 @@ class MatrixReader {
     const bytes = this.#bytes;
     const begin = this.#length;
     const start = at;
+    this.#lineStart = start;
+    this.#text = null;
     for (;;) {
       while (at < bytes.length && isBlank(bytes[at])) at += 1;
       const byte = bytes[at];
@@ -226,16 +231,32 @@ class MatrixReader {
         i = j;
       }
     }
-    if (any && digits <= 15 && this.#endsCell(i)) {
+    if (any && this.#endsCell(i)) {
       const size = Math.abs(exponent);
-      if (size <= 22 || mantissa === 0) {
+      if (digits <= 15 && (size <= 22 || mantissa === 0)) {
         const scaled =
           mantissa === 0 ? 0 : exponent < 0 ? mantissa / powersOfTen[size] : mantissa * powersOfTen[size];
         this.#push(sign === MINUS ? -scaled : scaled);
         return i;
       }
+      const value = this.#longNumber(at, i);
+      if (Number.isFinite(value)) {
+        this.#push(value);
+        return i;
+      }
     }
     return this.#slowCell(at, line, column);
+  }
+
+  /** A number of many digits, by the engine. The line is decoded once, byte by byte, for all of its cells. */
+  #longNumber(at: number, end: number): number {
+    if (this.#text === null) {
+      const line = this.#bytes.subarray(this.#lineStart, lineEnd(this.#bytes, at));
+      this.#text = new TextDecoder('windows-1252').decode(line);
+    }
+    const text = this.#text.slice(at - this.#lineStart, end - this.#lineStart);
+    const pointed = this.#decimal === COMMA ? text.replace(',', '.') : text;
+    return Number(/[dD]/.test(pointed) ? pointed.replace(/[dD]/, 'e') : pointed);
   }
 
   /** True if a cell may end at `at`: between delimiters only blanks can stand before the next one. */

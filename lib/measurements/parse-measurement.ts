@@ -35,6 +35,8 @@ interface Head {
   names: ColumnName[];
   /** Line of the header, 0 if the names come from a comment or there are none. */
   headerLine: number;
+  /** Line of the names, header or comment; 0 if there are none. */
+  namesLine: number;
 }
 
 /**
@@ -60,7 +62,7 @@ export function parseMeasurement(
   if (reader.rows === 0)
     throw new MeasurementError('no-rows', 'The file has a header but no rows.', { part: 'file' });
   const findings: Finding[] = [];
-  const { columns, duplicates } = distinctNames(head.names, head.headerLine);
+  const { columns, duplicates } = distinctNames(head.names, head.namesLine);
   if (!utf8) {
     const message = 'The file is not UTF-8; characters beyond ASCII were read as Windows-1252.';
     findings.push(finding('not-utf8', 'note', message, { part: 'file' }));
@@ -70,14 +72,20 @@ export function parseMeasurement(
     const message = 'Numbers are read with a decimal comma: 1,25 is 1.25.';
     findings.push(finding('decimal-comma', 'warning', message, { part: 'file' }));
   }
-  const table = { columns, ...reader.finish(columns, findings) };
+  const read = reader.finish(columns, findings);
+  const table = head.namesLine > 0 ? { columns, ...read, headerLine: head.namesLine } : { columns, ...read };
   if (options.columns) requireColumns(table, options.columns);
   return table;
 }
 
+interface Line {
+  line: string;
+  number: number;
+}
+
 function readHead(text: string): Head {
-  const sample: { line: string; number: number }[] = [];
-  const comments: string[] = [];
+  const sample: Line[] = [];
+  const comments: Line[] = [];
   forEachLine(text, (line, number) => {
     if (line.length > MAX_LINE) {
       const message = `Line ${number} is longer than a million characters.`;
@@ -87,7 +95,7 @@ function readHead(text: string): Head {
     if (!isComment(line)) sample.push({ line, number });
     // Names can only stand in a comment before the data; a long preamble is kept by its end.
     else if (sample.length === 0) {
-      comments.push(line);
+      comments.push({ line, number });
       if (comments.length > SAMPLE) comments.shift();
     }
     return sample.length < SAMPLE;
@@ -109,15 +117,16 @@ function readHead(text: string): Head {
   const rows = sample.slice(isHeader ? 1 : 0);
   const trailing = rows.every(({ line }) => line.trimEnd().endsWith(dialect.delimiter));
   const width = dialect.cells - (trailing && dialect.delimiter !== ' ' && rows.length > 0 ? 1 : 0);
+  const commented = isHeader ? null : namesOfComments(comments, width, dialect);
   const names = isHeader
     ? headerCells.map(readName)
-    : (namesOfComments(comments, width, dialect) ??
-      Array.from({ length: width }, (_, j) => ({ name: `column ${j + 1}` })));
+    : (commented?.names ?? Array.from({ length: width }, (_, j) => ({ name: `column ${j + 1}` })));
   if (names.length > MAX_COLUMNS) {
     const message = `The file has ${names.length} columns.`;
     throw new MeasurementError('too-many-columns', message, { part: 'file', line: first.number });
   }
-  return { dialect, names, headerLine: isHeader ? first.number : 0 };
+  const headerLine = isHeader ? first.number : 0;
+  return { dialect, names, headerLine, namesLine: headerLine || (commented?.number ?? 0) };
 }
 
 function isNumber(cell: string, dialect: Dialect): boolean {
@@ -144,12 +153,17 @@ function dropTrailing(cells: string[]): string[] {
 }
 
 /** The names in the last comment that has one word a column, with or without "columns:" before them. */
-function namesOfComments(comments: string[], width: number, dialect: Dialect): ColumnName[] | null {
-  for (const comment of comments.toReversed()) {
-    const words = comment.replace(/^\s*[#%!\s]+/, '').replace(/^(?:columns?|names?)\s*[:=]\s*/i, '');
+function namesOfComments(
+  comments: Line[],
+  width: number,
+  dialect: Dialect,
+): { names: ColumnName[]; number: number } | null {
+  for (const { line, number } of comments.toReversed()) {
+    const words = line.replace(/^\s*[#%!\s]+/, '').replace(/^(?:columns?|names?)\s*[:=]\s*/i, '');
     for (const cells of [splitNames(words), words.split(dialect.delimiter), words.split(',')]) {
       const names = cells.map(readName);
-      if (names.length === width && names.every(({ name }) => /^["$\\]?\p{L}/u.test(name))) return names;
+      if (names.length === width && names.every(({ name }) => /^["$\\]?\p{L}/u.test(name)))
+        return { names, number };
     }
   }
   return null;

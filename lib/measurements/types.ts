@@ -30,6 +30,8 @@ export interface ParsedTable {
   data: Float64Array[];
   /** 1-based line of each row in the file. */
   lines: Int32Array;
+  /** 1-based line that holds the names, header or comment; absent where there is none. */
+  headerLine?: number;
   findings: Finding[];
 }
 

@@ -49,6 +49,13 @@ describe('columns recognised by name', () => {
   });
 });
 
+it('A missing column is reported at the line of the names, header or comment', () => {
+  const lineOf = (text: string) => recogniseColumns(parseMeasurement(file(text).bytes, 'a')).findings[0].line;
+  expect(lineOf('# a note\n\nkappa,x\n\n\n0.1,2\n')).toBe(3);
+  expect(lineOf('# a note of words\n# kappa x\n#\n0.1 2\n')).toBe(2);
+  expect(lineOf('\n0.1 2\n')).toBe(2);
+});
+
 describe('a mapping by hand', () => {
   const data = table('a,b,c,d', '0.1,0.2,3,4');
 

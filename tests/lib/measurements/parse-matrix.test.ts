@@ -23,6 +23,7 @@ describe('a matrix of numbers', () => {
     ['\ufeff1,2\n3,4\n', []],
     ['1, 2,\n3, 4,\n', []],
     ['"1","2"\n"3","4"\n', []],
+    ['1.D0 .2D+01\n3.0000000000000000000d0 400.0000000000000000000D-02\n', []],
     ['a,b\n1,2\n3,4\n', ['matrix-header']],
     ['1,0;2,0\n3,0;4,0\n', ['decimal-comma']],
   ])('%j is read by rows', (text, codes) => {
