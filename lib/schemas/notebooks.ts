@@ -39,6 +39,11 @@ export const notebookCreatedSchema = z.object({
   revision: z.number().int(),
   blind: z.boolean(),
 });
+export type NotebookCreated = z.infer<typeof notebookCreatedSchema>;
+
+/** What a revision of a notebook can have changed. */
+export const notebookSections = ['title', 'measurement', 'template', 'priors'] as const;
+export type NotebookSection = (typeof notebookSections)[number];
 
 export const fitStatuses = [
   'queued',
@@ -109,7 +114,7 @@ export const notebookSchema = z.object({
       revision: z.number().int(),
       by: z.string(),
       at: instantSchema,
-      sections: z.array(z.enum(['measurement', 'template', 'priors', 'title'])),
+      sections: z.array(z.enum(notebookSections)),
     }),
   ),
   fits: z.array(fitSummarySchema),

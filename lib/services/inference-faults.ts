@@ -1,5 +1,5 @@
 import { AppError } from '@/lib/errors';
-import { InferenceError } from '@/lib/inference/inference-error';
+import { InferenceError } from '@/lib/inference';
 import { MeasurementError } from '@/lib/measurements';
 import type { ErrorDetail } from '@/lib/schemas';
 import { TemplateError } from '@/lib/templates';

@@ -19,7 +19,7 @@ type StoredPoints = Pick<MeasurementVersion, 'rows' | 'hasBinEdges' | 'points' |
 type StoredNumbers = StoredPoints & Pick<MeasurementVersion, 'mockCount'>;
 
 /** Little-endian float64 of a stored column; byte by byte, because a buffer may start anywhere in memory. */
-function readDoubles(bytes: Buffer, name: string, length: number): Float64Array {
+export function readDoubles(bytes: Buffer, name: string, length: number): Float64Array {
   if (bytes.byteLength !== 8 * length) {
     throw new Error(`The stored ${name} has ${bytes.byteLength} bytes where ${8 * length} are due.`);
   }
@@ -90,18 +90,18 @@ export interface NotebookInference {
   axis: Axis;
 }
 
-/**
- * What a notebook's settings say is to be inferred from a measurement's version. Pure apart from reading the row.
- * A fault in cuts, template or options is `invalid` with its place; priors are checked where the posterior is built.
- */
-export function inferenceSpec(version: StoredNumbers, settings: NotebookSettings): NotebookInference {
-  const points = cutPoints(version, settings.cuts);
+/** What settings say is to be inferred from points that their cuts have kept; see `inferenceSpec`. */
+export function specOnPoints(
+  points: CutPoints,
+  mockCount: number | null,
+  settings: NotebookSettings,
+): NotebookInference {
   const { id, options } = settings.template;
   return refusingFaults(() => {
     const axis = axisOf(points, findTemplate(id).normaliseOptions(options));
     return {
       spec: {
-        data: { S: points.S, covariance: points.covariance, mockCount: version.mockCount },
+        data: { S: points.S, covariance: points.covariance, mockCount },
         likelihood: likelihoodSchema.parse(settings.likelihood).kind,
         template: compileTemplate(id, options, axis),
         priors: priorsSchema.parse(settings.priors),
@@ -110,4 +110,12 @@ export function inferenceSpec(version: StoredNumbers, settings: NotebookSettings
       axis,
     };
   });
+}
+
+/**
+ * What a notebook's settings say is to be inferred from a measurement's version. Pure apart from reading the row.
+ * A fault in cuts, template or options is `invalid` with its place; priors are checked where the posterior is built.
+ */
+export function inferenceSpec(version: StoredNumbers, settings: NotebookSettings): NotebookInference {
+  return specOnPoints(cutPoints(version, settings.cuts), version.mockCount, settings);
 }

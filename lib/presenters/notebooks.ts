@@ -1,0 +1,124 @@
+import type { Fit, Notebook as NotebookRow, NotebookRevision, NotebookSettings } from '@/models';
+import {
+  fitStatusSchema,
+  likelihoodSchema,
+  notebookSections,
+  priorsSchema,
+  type FitSummary,
+  type Notebook,
+  type NotebookCreated,
+  type NotebookSummary,
+} from '@/lib/schemas';
+
+/** E-mail addresses by user's id. */
+export type People = ReadonlyMap<string, string>;
+
+/** What the presenters need of a measurement. */
+export interface MeasuredBy {
+  id: string;
+  name: string;
+  version: number;
+  blind: boolean;
+  simulated: boolean;
+}
+
+export type FitLine = Pick<
+  Fit,
+  'id' | 'number' | 'status' | 'revision' | 'startedBy' | 'createdAt' | 'endedAt'
+>;
+
+const nameOf = (people: People, id: string): string => people.get(id) ?? 'a former member';
+
+export function presentFitSummary(fit: FitLine, people: People): FitSummary {
+  return {
+    id: fit.id,
+    number: fit.number,
+    status: fitStatusSchema.parse(fit.status),
+    revision: fit.revision,
+    startedBy: nameOf(people, fit.startedBy),
+    createdAt: fit.createdAt.toISOString(),
+    endedAt: fit.endedAt?.toISOString() ?? null,
+  };
+}
+
+export function presentNotebookCreated(
+  notebook: Pick<NotebookRow, 'id' | 'revision'>,
+  measurement: Pick<MeasuredBy, 'blind'>,
+): NotebookCreated {
+  return { id: notebook.id, revision: notebook.revision, blind: measurement.blind };
+}
+
+/** Fields of the template as its options say; a template without the option has none. */
+const fieldsOf = ({ template }: NotebookSettings): number =>
+  typeof template.options.fields === 'number' ? template.options.fields : 0;
+
+export function presentNotebookSummary(
+  notebook: NotebookRow,
+  settings: NotebookSettings,
+  measurement: MeasuredBy,
+  lastFit: FitLine | null,
+  people: People,
+): NotebookSummary {
+  return {
+    id: notebook.id,
+    number: notebook.number,
+    title: notebook.title,
+    revision: notebook.revision,
+    measurementName: measurement.name,
+    templateId: settings.template.id,
+    fields: fieldsOf(settings),
+    blind: measurement.blind,
+    simulated: measurement.simulated,
+    lastFit: lastFit && presentFitSummary(lastFit, people),
+    updatedBy: nameOf(people, notebook.updatedBy),
+    updatedAt: notebook.updatedAt.toISOString(),
+  };
+}
+
+export interface NotebookParts {
+  notebook: NotebookRow;
+  groupName: string;
+  measurement: MeasuredBy;
+  settings: NotebookSettings;
+  bins: { kept: number; all: number };
+  /** In ascending order of revision. */
+  revisions: readonly Pick<NotebookRevision, 'revision' | 'sections' | 'createdBy' | 'createdAt'>[];
+  /** Newest first. */
+  fits: readonly FitLine[];
+  people: People;
+  may: readonly string[];
+}
+
+export function presentNotebook(parts: NotebookParts): Notebook {
+  const { notebook, measurement, settings, people } = parts;
+  return {
+    id: notebook.id,
+    number: notebook.number,
+    groupId: notebook.groupId,
+    groupName: parts.groupName,
+    title: notebook.title,
+    revision: notebook.revision,
+    blind: measurement.blind,
+    simulated: measurement.simulated,
+    measurement: { id: measurement.id, name: measurement.name, version: measurement.version },
+    cuts: settings.cuts,
+    bins: parts.bins,
+    likelihood: likelihoodSchema.parse(settings.likelihood),
+    template: {
+      id: settings.template.id,
+      version: settings.template.version,
+      options: settings.template.options,
+    },
+    priors: priorsSchema.parse(settings.priors),
+    record: parts.revisions.map((revision) => ({
+      revision: revision.revision,
+      by: nameOf(people, revision.createdBy),
+      at: revision.createdAt.toISOString(),
+      sections: notebookSections.filter((section) => revision.sections.includes(section)),
+    })),
+    fits: parts.fits.map((fit) => presentFitSummary(fit, people)),
+    createdBy: nameOf(people, notebook.createdBy),
+    createdAt: notebook.createdAt.toISOString(),
+    may: [...parts.may],
+  };
+}

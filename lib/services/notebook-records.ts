@@ -1,0 +1,128 @@
+import { Op } from 'sequelize';
+import {
+  Fit,
+  Group,
+  Measurement,
+  MeasurementVersion,
+  Notebook,
+  NotebookRevision,
+  type NotebookSettings,
+} from '@/models';
+import { notFound } from '@/lib/errors';
+import { actionsFor } from '@/lib/policies';
+import { presentNotebook, presentNotebookSummary, type MeasuredBy } from '@/lib/presenters/notebooks';
+import type { Notebook as NotebookAnswer, NotebookSummary } from '@/lib/schemas';
+import type { Access } from './access';
+import { cutPoints } from './inference-spec';
+import { emailsOf } from './people';
+
+const fitLine = [
+  'id',
+  'notebookId',
+  'number',
+  'status',
+  'revision',
+  'startedBy',
+  'createdAt',
+  'endedAt',
+] as const;
+
+/** The notebook of `access` as it stands, with its record and its fits. */
+export async function readNotebook(access: Access): Promise<NotebookAnswer> {
+  access.require('notebook.read');
+  const notebook = await Notebook.findByPk(access.id);
+  if (!notebook) throw notFound('notebook');
+  const [group, version, revisions, fits] = await Promise.all([
+    Group.findByPk(notebook.groupId),
+    MeasurementVersion.findByPk(notebook.measurementVersionId),
+    NotebookRevision.findAll({ where: { notebookId: notebook.id }, order: [['revision', 'ASC']] }),
+    Fit.findAll({
+      where: { notebookId: notebook.id },
+      attributes: [...fitLine],
+      order: [['number', 'DESC']],
+    }),
+  ]);
+  const measurement = version && (await Measurement.findByPk(version.measurementId));
+  const standing = revisions.find(({ revision }) => revision === notebook.revision);
+  if (!group || !version || !measurement || !standing) throw notFound('notebook');
+  const { settings } = standing;
+  return presentNotebook({
+    notebook,
+    groupName: group.name,
+    measurement: measuredBy(measurement, version),
+    settings,
+    bins: { kept: cutPoints(version, settings.cuts).kept.length, all: version.rows },
+    revisions,
+    fits,
+    people: await emailsOf([
+      notebook.createdBy,
+      ...revisions.map(({ createdBy }) => createdBy),
+      ...fits.map(({ startedBy }) => startedBy),
+    ]),
+    may: [...actionsFor(access.role, 'notebook'), ...actionsFor(access.role, 'fit')],
+  });
+}
+
+const measuredBy = (measurement: Measurement, { version }: { version: number }): MeasuredBy => ({
+  id: measurement.id,
+  name: measurement.name,
+  version,
+  blind: measurement.blind,
+  simulated: measurement.simulated,
+});
+
+/** Measurements by version's id. */
+async function measuredByVersion(versionIds: string[]): Promise<Map<string, MeasuredBy>> {
+  const versions = await MeasurementVersion.findAll({
+    where: { id: versionIds },
+    attributes: ['id', 'measurementId', 'version'],
+  });
+  const measurements = await Measurement.findAll({
+    where: { id: versions.map(({ measurementId }) => measurementId) },
+  });
+  const byId = new Map(measurements.map((measurement) => [measurement.id, measurement]));
+  return new Map(
+    versions.flatMap((version) => {
+      const measurement = byId.get(version.measurementId);
+      return measurement ? [[version.id, measuredBy(measurement, version)] as const] : [];
+    }),
+  );
+}
+
+/** Settings that stand, by notebook's id. */
+async function standingSettings(notebooks: readonly Notebook[]): Promise<Map<string, NotebookSettings>> {
+  const revisions = await NotebookRevision.findAll({
+    where: { [Op.or]: notebooks.map(({ id, revision }) => ({ notebookId: id, revision })) },
+    attributes: ['notebookId', 'settings'],
+  });
+  return new Map(revisions.map(({ notebookId, settings }) => [notebookId, settings]));
+}
+
+/**
+ * The notebooks of a group, last changed first. For services that have authorised: it asks for nothing itself.
+ */
+export async function notebookSummaries(groupId: string): Promise<NotebookSummary[]> {
+  const notebooks = await Notebook.findAll({ where: { groupId }, order: [['updatedAt', 'DESC']] });
+  if (notebooks.length === 0) return [];
+  const [settings, measurements, fits] = await Promise.all([
+    standingSettings(notebooks),
+    measuredByVersion(notebooks.map(({ measurementVersionId }) => measurementVersionId)),
+    Fit.findAll({
+      where: { notebookId: notebooks.map(({ id }) => id) },
+      attributes: [...fitLine],
+      order: [['number', 'ASC']],
+    }),
+  ]);
+  const lastFits = new Map(fits.map((fit) => [fit.notebookId, fit]));
+  const people = await emailsOf([
+    ...notebooks.map(({ updatedBy }) => updatedBy),
+    ...[...lastFits.values()].map(({ startedBy }) => startedBy),
+  ]);
+  return notebooks.flatMap((notebook) => {
+    const standing = settings.get(notebook.id);
+    const measurement = measurements.get(notebook.measurementVersionId);
+    if (!standing || !measurement) return [];
+    const lastFit = lastFits.get(notebook.id) ?? null;
+    return [presentNotebookSummary(notebook, standing, measurement, lastFit, people)];
+  });
+}
