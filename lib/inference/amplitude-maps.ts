@@ -55,10 +55,23 @@ export function polarAmplitudes(layout: ParameterLayout): AmplitudeMap {
   const priors = scalar.map<AmplitudePrior>((prior, f) => {
     if (!prior) {
       const held = layout.base[amplitudes[f]];
-      return { lo: 0, hi: Infinity, ownMean: 0, ownPrecision: 0, power: 0, variance: Math.max(0.5 * held * held, 1e-12) };
+      return {
+        lo: 0,
+        hi: Infinity,
+        ownMean: 0,
+        ownPrecision: 0,
+        power: 0,
+        variance: Math.max(0.5 * held * held, 1e-12),
+      };
     }
     const [lo, hi] = priorSupport(prior);
-    return { lo, hi, ...normalFactor(prior), power: prior.kind === 'log-uniform' ? -1 : 0, variance: halfSquare(prior) };
+    return {
+      lo,
+      hi,
+      ...normalFactor(prior),
+      power: prior.kind === 'log-uniform' ? -1 : 0,
+      variance: halfSquare(prior),
+    };
   });
   const amplitude = new Float64Array(fields);
   const phase = new Float64Array(fields);

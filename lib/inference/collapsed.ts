@@ -1,5 +1,10 @@
 import { choleskyInto, forwardSolve, logDeterminant } from './cholesky';
-import { linearReference, drawCoefficient, lnCoefficientDensity, type LinearReference } from './linear-reference';
+import {
+  linearReference,
+  drawCoefficient,
+  lnCoefficientDensity,
+  type LinearReference,
+} from './linear-reference';
 import type { ParameterLayout } from './parameter-layout';
 import type { WhitenedField } from './whitened-field';
 import type { Whitening } from './whitening';
@@ -68,7 +73,8 @@ export class LinearModel {
     for (let i = 0; i < n; i += 1) {
       const { mean, precision: own } = this.references[i];
       for (let j = 0; j <= i; j += 1) {
-        precision[i * n + j] = weight * dotProduct(this.columns, i * p, this.columns, j * p, p) + (i === j ? own : 0);
+        precision[i * n + j] =
+          weight * dotProduct(this.columns, i * p, this.columns, j * p, p) + (i === j ? own : 0);
       }
       this.v[i] = weight * dotProduct(this.columns, i * p, this.data, 0, p) + own * mean;
       quadratic += own * mean * mean;
@@ -97,7 +103,9 @@ export class LinearModel {
     const half = -0.5 * (this.baseLogDeterminant + logDeterminantOfFields);
     const total = this.baseQuadratic + quadratic;
     if (!this.tail) return this.constant + half - 0.5 * total;
-    return half - 0.5 * this.tail.exponent * Math.log1p(Math.max(0, total) / (this.weight * this.tail.spread));
+    return (
+      half - 0.5 * this.tail.exponent * Math.log1p(Math.max(0, total) / (this.weight * this.tail.spread))
+    );
   }
 
   /** The moments of one field at a mass; overwritten by later calls at `STORE` other masses. No allocation. */
@@ -161,7 +169,12 @@ export class LinearModel {
   }
 
   /** Draws the background given the fields' coefficients (two a field), into the full vector. */
-  drawBackground(rng: Rng, moments: readonly FieldMoments[], coefficients: Float64Array, full: Float64Array): void {
+  drawBackground(
+    rng: Rng,
+    moments: readonly FieldMoments[],
+    coefficients: Float64Array,
+    full: Float64Array,
+  ): void {
     this.settleRest(moments, coefficients);
     const n = this.count;
     for (let j = n - 1; j >= 0; j -= 1) {
@@ -171,7 +184,11 @@ export class LinearModel {
   }
 
   /** ln density of the background in `full` under `drawBackground`. */
-  lnBackgroundDensity(moments: readonly FieldMoments[], coefficients: Float64Array, full: Float64Array): number {
+  lnBackgroundDensity(
+    moments: readonly FieldMoments[],
+    coefficients: Float64Array,
+    full: Float64Array,
+  ): number {
     this.settleRest(moments, coefficients);
     let sum = 0;
     for (let j = this.count - 1; j >= 0; j -= 1) {

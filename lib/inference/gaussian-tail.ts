@@ -76,7 +76,9 @@ export function lnNormalInterval(a: number, b: number): number {
   const width = b - a;
   if (width < 1e-4) {
     const middle = a + 0.5 * width;
-    return -0.5 * middle * middle - LN_SQRT_TWO_PI + Math.log(width) + ((middle * middle - 1) * width * width) / 24;
+    return (
+      -0.5 * middle * middle - LN_SQRT_TWO_PI + Math.log(width) + ((middle * middle - 1) * width * width) / 24
+    );
   }
   if (a > 0) return lnUpperInterval(a, b);
   if (b < 0) return lnUpperInterval(-b, -a);

@@ -63,7 +63,8 @@ export function buildLikelihood(
       'give the number of mocks, or use the normal likelihood',
     );
   }
-  if (kind === 'hartlap') return normalLikelihood(kind, (mocks - length - 2) / (mocks - 1), length, logDeterminant);
+  if (kind === 'hartlap')
+    return normalLikelihood(kind, (mocks - length - 2) / (mocks - 1), length, logDeterminant);
 
   const m = kind === 'matched-t' ? matchedExponent(mocks, length, parameters) : mocks;
   if (!(m > length)) {
@@ -76,7 +77,10 @@ export function buildLikelihood(
   }
   const spread = mocks - 1;
   const constant =
-    logGamma(m / 2) - logGamma((m - length) / 2) - 0.5 * length * Math.log(Math.PI * spread) - 0.5 * logDeterminant;
+    logGamma(m / 2) -
+    logGamma((m - length) / 2) -
+    0.5 * length * Math.log(Math.PI * spread) -
+    0.5 * logDeterminant;
   return {
     kind,
     scale: NaN,
@@ -86,7 +90,12 @@ export function buildLikelihood(
   };
 }
 
-function normalLikelihood(kind: LikelihoodKind, scale: number, length: number, logDeterminant: number): Likelihood {
+function normalLikelihood(
+  kind: LikelihoodKind,
+  scale: number,
+  length: number,
+  logDeterminant: number,
+): Likelihood {
   const constant = -0.5 * (length * Math.log((2 * Math.PI) / scale) + logDeterminant);
   return {
     kind,

@@ -20,7 +20,8 @@ export interface LinearReference {
 
 /** The reference of a prior. `fixed` and `isotropic` parameters are no coefficients to be integrated: a TypeError. */
 export function linearReference(prior: Prior): LinearReference {
-  if (prior.kind === 'fixed' || prior.kind === 'isotropic') throw new TypeError(`no reference for a ${prior.kind} prior`);
+  if (prior.kind === 'fixed' || prior.kind === 'isotropic')
+    throw new TypeError(`no reference for a ${prior.kind} prior`);
   const { mean, sd } = priorMoments(prior);
   const [lo, hi] = priorSupport(prior);
   const own = ownFactor(prior);
@@ -51,8 +52,7 @@ function drawnNormal(reference: LinearReference, precision: number, linear: numb
   const width = reference.hi - reference.lo;
   const floor = Number.isFinite(width) ? 1e-6 / (width * width) : 1e-9 * reference.precision;
   const own = Math.max(floor, precision - reference.precision + reference.ownPrecision);
-  const shift =
-    linear - reference.precision * reference.mean + reference.ownPrecision * reference.ownMean;
+  const shift = linear - reference.precision * reference.mean + reference.ownPrecision * reference.ownMean;
   out[0] = shift / own;
   out[1] = 1 / Math.sqrt(own);
 }
@@ -63,7 +63,12 @@ const scratch = new Float64Array(2);
  * Draws a coefficient whose conditional under the reference is exp(−½ precision c² + linear c), with its own prior put
  * in the reference's place.
  */
-export function drawCoefficient(rng: Rng, reference: LinearReference, precision: number, linear: number): number {
+export function drawCoefficient(
+  rng: Rng,
+  reference: LinearReference,
+  precision: number,
+  linear: number,
+): number {
   drawnNormal(reference, precision, linear, scratch);
   return drawTruncatedNormal(rng, scratch[0], scratch[1], reference.lo, reference.hi);
 }

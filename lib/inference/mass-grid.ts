@@ -24,7 +24,8 @@ export function gatherEdges(edges: Float64Array, weights: Float64Array, n: numbe
   const spread = new Float64Array(cells);
   let total = 0;
   for (let i = 0; i < cells; i += 1) {
-    for (let j = Math.max(0, i - 2); j <= Math.min(cells - 1, i + 2); j += 1) spread[i] = Math.max(spread[i], weights[j]);
+    for (let j = Math.max(0, i - 2); j <= Math.min(cells - 1, i + 2); j += 1)
+      spread[i] = Math.max(spread[i], weights[j]);
     total += spread[i];
   }
   const lo = edges[0];

@@ -47,7 +47,8 @@ function cellPriors(layout: ParameterLayout, field: number, edges: Float64Array)
   const prior = layout.massPriors[field];
   const out = new Float64Array(edges.length - 1);
   if (prior.kind === 'fixed') return out.fill(1);
-  for (let i = 0; i < out.length; i += 1) out[i] = Math.max(0, priorCdf(prior, edges[i + 1]) - priorCdf(prior, edges[i]));
+  for (let i = 0; i < out.length; i += 1)
+    out[i] = Math.max(0, priorCdf(prior, edges[i + 1]) - priorCdf(prior, edges[i]));
   return out;
 }
 
@@ -301,7 +302,8 @@ export class OneMassProposal implements MassProposal {
     }
     others.sort();
     const held = this.held >= 0 ? full[this.held] : 0;
-    if (cells.cells && cells.held === held && cells.others.every((mass, i) => mass === others[i])) return cells.cells;
+    if (cells.cells && cells.held === held && cells.others.every((mass, i) => mass === others[i]))
+      return cells.cells;
 
     scratch.set(full);
     for (let f = 0; f < last; f += 1) scratch[layout.masses[f]] = others[f];
@@ -319,7 +321,8 @@ export class OneMassProposal implements MassProposal {
       total += weights[i];
     }
     const { floor } = this.settings;
-    for (let i = 0; i < weights.length; i += 1) weights[i] = (1 - floor) * (weights[i] / total) + floor * this.evenly[i];
+    for (let i = 0; i < weights.length; i += 1)
+      weights[i] = (1 - floor) * (weights[i] / total) + floor * this.evenly[i];
     cells.cells = new CellDistribution(weights);
     cells.held = held;
     cells.others.set(others);

@@ -111,7 +111,10 @@ function panelEdges(priors: readonly MassPrior[]): number[] {
   for (const prior of priors) {
     if (prior.kind === 'fixed') {
       // One mark below, so that the fixed value is the end of a panel.
-      marks.add(prior.value).add(prior.value - 1).add(prior.value + 1);
+      marks
+        .add(prior.value)
+        .add(prior.value - 1)
+        .add(prior.value + 1);
       continue;
     }
     const [lo, hi] = priorSupport(prior);

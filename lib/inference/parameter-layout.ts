@@ -87,7 +87,12 @@ export function layOutParameters(spec: Pick<InferenceSpec, 'template' | 'priors'
 
   const free = parameters.flatMap((_, index) => (priors[index].kind === 'fixed' ? [] : [index]));
   if (free.length === 0) {
-    throw new InferenceError('nothing_to_sample', 'priors', 'every parameter is fixed', 'free at least one parameter');
+    throw new InferenceError(
+      'nothing_to_sample',
+      'priors',
+      'every parameter is fixed',
+      'free at least one parameter',
+    );
   }
   const position = parameters.map((_, index) => free.indexOf(index));
   const base = new Float64Array(parameters.length);
@@ -136,7 +141,9 @@ export function parameterGroups(layout: ParameterLayout): number[][] {
   const { parameters, blocks } = layout.template;
   const own = (declaration: ParameterDeclaration, field: number): boolean => declaration.field === field;
   const groups = blocks.map((_, field) => parameters.flatMap((d, index) => (own(d, field) ? [index] : [])));
-  const mixing = parameters.flatMap((d, index) => (d.field === null && d.role !== 'background' ? [index] : []));
+  const mixing = parameters.flatMap((d, index) =>
+    d.field === null && d.role !== 'background' ? [index] : [],
+  );
   return [...groups, mixing, [...layout.background]]
     .map((group) => group.map((index) => layout.position[index]).filter((position) => position >= 0))
     .filter((group) => group.length > 0);

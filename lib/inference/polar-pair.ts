@@ -1,7 +1,7 @@
 import type { Rng } from '@/lib/sampler';
 import { drawTruncatedNormal, lnTruncatedNormal } from './gaussian-tail';
 import { drawLinearDensity, lnLinearDensity } from './linear-density';
-import { lnRayIntegral } from './ray-integral';
+import { rayShape } from './ray-shape';
 
 /** What is known of an amplitude A ≥ 0 beside the data. */
 export interface AmplitudePrior {
@@ -16,16 +16,18 @@ export interface AmplitudePrior {
   variance: number;
 }
 
-const PHASES = 32;
+const PHASES = 24;
 const AMPLITUDES = 32;
 /** tan(s/2) at the nodes s = −π … π of the circle; the ends are the same point. */
-const HALF_TANGENTS = Float64Array.from({ length: PHASES + 1 }, (_, k) => Math.tan(Math.PI * (k / PHASES - 0.5)));
+const HALF_TANGENTS = Float64Array.from({ length: PHASES + 1 }, (_, k) =>
+  Math.tan(Math.PI * (k / PHASES - 0.5)),
+);
 
 /**
  * One field's amplitude and phase under a conditional normal of its coefficients c = (A cos φ, −A sin φ),
  * exp(−½ cᵀ S c + tᵀ c) times the amplitude's prior; the phase is uniform.
  *
- * φ is drawn from its own conditional with A integrated out, on 32 nodes with a linear density between them. The nodes are
+ * φ is drawn from its own conditional with A integrated out, on 24 nodes with a linear density between them. The nodes are
  * even in the angle ψ of the whitened coefficients, mapped by tan(s/2) → τ tan(s/2) round the best ψ, so that they gather
  * where the data fix the phase and cover the circle where they don't. Then A given φ: a truncated normal; with a power of
  * A in the prior and A near 0, a density linear between 32 nodes in √A or ln A. No Cartesian step: the density of (A, φ)
@@ -37,7 +39,14 @@ export class PolarPair {
   private sbb = 0;
   private ta = 0;
   private tb = 0;
-  private prior: AmplitudePrior = { lo: 0, hi: 1, ownMean: 0, ownPrecision: 0, power: 0, variance: 1 };
+  private readonly prior: AmplitudePrior = {
+    lo: 0,
+    hi: 1,
+    ownMean: 0,
+    ownPrecision: 0,
+    power: 0,
+    variance: 1,
+  };
   // Whitening of the pair (upper triangular, M'M = S + ridge), the middle and the stretch of the nodes.
   private m00 = 1;
   private m01 = 0;
@@ -45,11 +54,16 @@ export class PolarPair {
   private centre = 0;
   private stretch = 1;
   private readonly heights = new Float64Array(PHASES + 1);
-  private readonly logHeights = new Float64Array(PHASES + 1);
+  // Working space of the nodes: exponent at the best A, and what multiplies its exponential.
+  private readonly peaks = new Float64Array(PHASES);
+  private readonly factors = new Float64Array(PHASES);
+  private readonly lows = new Float64Array(PHASES);
+  private readonly highs = new Float64Array(PHASES);
+  private laid = false;
   private readonly amplitudeHeights = new Float64Array(AMPLITUDES);
   private fixedAmplitude = NaN;
 
-  /** Settles S, t and the prior. `fixedAmplitude` is NaN where A is drawn. */
+  /** Settles S, t and the prior. `fixedAmplitude` is NaN where A is drawn. The same again costs nothing. */
   settle(
     saa: number,
     sab: number,
@@ -59,13 +73,23 @@ export class PolarPair {
     prior: AmplitudePrior,
     fixedAmplitude: number,
   ): void {
+    const same =
+      saa === this.saa &&
+      sab === this.sab &&
+      sbb === this.sbb &&
+      ta === this.ta &&
+      tb === this.tb &&
+      samePrior(prior, this.prior) &&
+      Object.is(fixedAmplitude, this.fixedAmplitude);
+    if (same) return;
     this.saa = saa;
     this.sab = sab;
     this.sbb = sbb;
     this.ta = ta;
     this.tb = tb;
-    this.prior = prior;
+    Object.assign(this.prior, prior);
     this.fixedAmplitude = fixedAmplitude;
+    this.laid = false;
   }
 
   drawPhase(rng: Rng): number {
@@ -89,7 +113,8 @@ export class PolarPair {
     const s = PHASES * (Math.atan(tangent) / Math.PI + 0.5);
     const stretched = this.stretch * tangent;
     // ds → dψ → dφ.
-    const psiPerNode = ((2 * Math.PI) / PHASES) * this.stretch * ((1 + tangent * tangent) / (1 + stretched * stretched));
+    const psiPerNode =
+      ((2 * Math.PI) / PHASES) * this.stretch * ((1 + tangent * tangent) / (1 + stretched * stretched));
     const phasePerPsi = (v0 * v0 + v1 * v1) / (this.m00 * this.m11);
     return lnLinearDensity(this.heights, PHASES + 1, s) - Math.log(psiPerNode * phasePerPsi);
   }
@@ -113,7 +138,10 @@ export class PolarPair {
     const t = logarithmic ? Math.log(amplitude) : Math.sqrt(amplitude);
     const s = ((t - from) / (to - from)) * (AMPLITUDES - 1);
     const slope = logarithmic ? amplitude : 2 * t;
-    return lnLinearDensity(this.amplitudeHeights, AMPLITUDES, s) + Math.log((AMPLITUDES - 1) / ((to - from) * slope));
+    return (
+      lnLinearDensity(this.amplitudeHeights, AMPLITUDES, s) +
+      Math.log((AMPLITUDES - 1) / ((to - from) * slope))
+    );
   }
 
   /** exp(−½ q A² + l A) along a phase, the prior's normal factor included. */
@@ -158,62 +186,86 @@ export class PolarPair {
 
   /** Whitening, middle and stretch of the phase nodes, and the heights at them. */
   private layPhases(): void {
-    const { saa, sab, sbb, ta, tb, prior, heights, logHeights, fixedAmplitude } = this;
-    const reach = Number.isFinite(prior.hi) ? Math.min(prior.hi * prior.hi, 4 * prior.variance) : 4 * prior.variance;
-    const ridge = 1 / reach + prior.ownPrecision;
+    if (this.laid) return;
+    this.laid = true;
+    const { saa, sab, sbb, ta, tb, prior, heights, peaks, factors, lows, highs, fixedAmplitude } = this;
+    const { lo, hi, ownMean, ownPrecision, power, variance } = prior;
+    const reach = Number.isFinite(hi) ? Math.min(hi * hi, 4 * variance) : 4 * variance;
+    const ridge = 1 / reach + ownPrecision;
+    const held = !Number.isNaN(fixedAmplitude);
     this.m00 = Math.sqrt(saa + ridge);
     this.m01 = sab / this.m00;
     this.m11 = Math.sqrt(Math.max(ridge * 1e-3, sbb + ridge - this.m01 * this.m01));
     // Best whitened point: solve M'v = t.
     const best0 = ta / this.m00;
     const best1 = (tb - this.m01 * best0) / this.m11;
-    this.centre = best0 === 0 && best1 === 0 ? 0 : Math.atan2(best1, best0);
-    const amplitude = Number.isNaN(fixedAmplitude) ? Math.hypot(best0, best1) : this.fixedReach(fixedAmplitude);
-    this.stretch = Math.min(1, 2.5 / Math.max(amplitude, 1e-12));
+    const size = Math.sqrt(best0 * best0 + best1 * best1);
+    const c0 = size > 0 ? best0 / size : 1;
+    const c1 = size > 0 ? best1 / size : 0;
+    this.centre = Math.atan2(c1, c0);
+    // In units of the whitened normal's width: how far out the pair is, which is how well its angle is known.
+    const distance = held ? fixedAmplitude * Math.max(this.m00, this.m11) : size;
+    this.stretch = Math.min(1, 2.5 / Math.max(distance, 1e-12));
     let max = -Infinity;
     for (let k = 0; k < PHASES; k += 1) {
+      // cos and sin of the turn 2 atan(stretched) from the middle, without trigonometry; node 0 is the far side.
       const tangent = HALF_TANGENTS[k];
       const stretched = this.stretch * tangent;
-      // cos and sin of the turn 2 atan(stretched) from the middle, without trigonometry; node 0 is the far side.
       const square = stretched * stretched;
       const cosine = k === 0 ? -1 : (1 - square) / (1 + square);
       const sine = k === 0 ? 0 : (2 * stretched) / (1 + square);
-      const size = Math.hypot(best0, best1);
-      const c0 = size > 0 ? best0 / size : 1;
-      const c1 = size > 0 ? best1 / size : 0;
-      const v0 = cosine * c0 - sine * c1;
-      const v1 = sine * c0 + cosine * c1;
-      const e1 = v1 / this.m11;
-      const e0 = (v0 - this.m01 * e1) / this.m00;
-      const length = Math.sqrt(e0 * e0 + e1 * e1);
-      const { q, l } = this.ray(e0 / length, e1 / length);
-      let value: number;
-      if (Number.isNaN(fixedAmplitude)) {
-        value = lnRayIntegral(q, l, prior.lo, prior.hi);
-        if (prior.power !== 0) {
-          const typical = Math.min(prior.hi, Math.max(prior.lo, l / q, 0.5 / Math.sqrt(q)));
-          value += prior.power * Math.log(typical);
-        }
-      } else {
-        value = -0.5 * q * fixedAmplitude * fixedAmplitude + l * fixedAmplitude;
-      }
-      // dφ/dψ = 1/(|M| |e|²) and dψ/ds, which at the far side tends to 1/τ.
+      const e1 = (sine * c0 + cosine * c1) / this.m11;
+      const e0 = (cosine * c0 - sine * c1 - this.m01 * e1) / this.m00;
+      const square0 = e0 * e0 + e1 * e1;
+      const length = Math.sqrt(square0);
+      // Along the ray A = r · length the exponent is −½ q r² + l r.
+      const data = saa * e0 * e0 + 2 * sab * e0 * e1 + sbb * e1 * e1;
+      const q = Math.max(data + ownPrecision * square0, 1e-6);
+      const l = ta * e0 + tb * e1 + ownPrecision * ownMean * length;
+      // dψ/ds, which at the far side tends to 1/τ, and dφ/dψ = 1/(|M| length²).
       const turning = k === 0 ? 1 / this.stretch : (this.stretch * (1 + tangent * tangent)) / (1 + square);
-      logHeights[k] = value + Math.log(turning / (length * length));
-      if (logHeights[k] > max) max = logHeights[k];
+      if (held) {
+        const r = fixedAmplitude / length;
+        peaks[k] = r * (l - 0.5 * q * r);
+        factors[k] = turning / square0;
+      } else {
+        const root = Math.sqrt(q);
+        const z = l / root;
+        const a = (lo / length) * root - z;
+        const b = (hi / length) * root - z;
+        const off = a > 0 ? a : b < 0 ? b : 0;
+        lows[k] = a;
+        highs[k] = b;
+        peaks[k] = 0.5 * (z * z - off * off);
+        factors[k] = turning / (length * root);
+        if (power !== 0) {
+          const typical = Math.min(hi, Math.max(lo, (l / q) * length, (0.5 * length) / root));
+          factors[k] *= power === -1 ? 1 / typical : typical ** power;
+        }
+      }
+      if (peaks[k] > max) max = peaks[k];
     }
     let sum = 0;
     for (let k = 0; k < PHASES; k += 1) {
-      heights[k] = Math.exp(logHeights[k] - max);
-      sum += heights[k];
+      const fall = peaks[k] - max;
+      let height = 0;
+      if (fall > -25) height = factors[k] * Math.exp(fall) * (held ? 1 : rayShape(lows[k], highs[k]));
+      heights[k] = height;
+      sum += height;
     }
     const floor = (1e-3 * sum) / PHASES;
     for (let k = 0; k < PHASES; k += 1) heights[k] += floor;
     heights[PHASES] = heights[0];
   }
+}
 
-  /** How many widths of the whitened normal a held amplitude reaches: sets how well the phase is known. */
-  private fixedReach(amplitude: number): number {
-    return amplitude * Math.sqrt(Math.max(this.m00 * this.m00, this.m11 * this.m11));
-  }
+function samePrior(a: AmplitudePrior, b: AmplitudePrior): boolean {
+  return (
+    a.lo === b.lo &&
+    a.hi === b.hi &&
+    a.ownMean === b.ownMean &&
+    a.ownPrecision === b.ownPrecision &&
+    a.power === b.power &&
+    a.variance === b.variance
+  );
 }

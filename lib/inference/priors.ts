@@ -108,12 +108,17 @@ export function priorMoments(prior: ScalarPrior): { mean: number; sd: number } {
       const a = (prior.lo - prior.mean) / prior.sd;
       const b = (prior.hi - prior.mean) / prior.sd;
       const density = (z: number): number =>
-        Number.isFinite(z) ? Math.exp(-0.5 * z * z - 0.5 * Math.log(2 * Math.PI) - lnNormalInterval(a, b)) : 0;
+        Number.isFinite(z)
+          ? Math.exp(-0.5 * z * z - 0.5 * Math.log(2 * Math.PI) - lnNormalInterval(a, b))
+          : 0;
       const pa = density(a);
       const pb = density(b);
       const shift = pa - pb;
       const edge = (Number.isFinite(a) ? a * pa : 0) - (Number.isFinite(b) ? b * pb : 0);
-      return { mean: prior.mean + prior.sd * shift, sd: prior.sd * Math.sqrt(Math.max(0, 1 + edge - shift * shift)) };
+      return {
+        mean: prior.mean + prior.sd * shift,
+        sd: prior.sd * Math.sqrt(Math.max(0, 1 + edge - shift * shift)),
+      };
     }
   }
 }
@@ -159,7 +164,11 @@ export function validatePrior(prior: Prior, declaration: ParameterDeclaration): 
   }
   for (const [field, value] of Object.entries(prior)) {
     if (field !== 'kind' && !Number.isFinite(value)) {
-      return invalid(field, `${field} of the prior of ${declaration.name} is not a finite number`, 'give a finite number');
+      return invalid(
+        field,
+        `${field} of the prior of ${declaration.name} is not a finite number`,
+        'give a finite number',
+      );
     }
   }
   if ('lo' in prior && !(prior.lo < prior.hi)) {
@@ -171,7 +180,11 @@ export function validatePrior(prior: Prior, declaration: ParameterDeclaration): 
     return invalid('lo', message, 'raise lo above 0, or use a uniform prior');
   }
   if ('sd' in prior && !(prior.sd > 0)) {
-    return invalid('sd', `the prior of ${declaration.name} has sd ${prior.sd}: it must be above 0`, 'give a positive sd');
+    return invalid(
+      'sd',
+      `the prior of ${declaration.name} has sd ${prior.sd}: it must be above 0`,
+      'give a positive sd',
+    );
   }
   if (prior.kind === 'truncated-normal') {
     const a = (prior.lo - prior.mean) / prior.sd;
@@ -196,7 +209,10 @@ function outsideRange(
   if (lo >= from && hi <= to && !onOpenEnd) return null;
   const field = prior.kind === 'fixed' ? 'value' : lo < from ? 'lo' : 'hi';
   const range = `${declaration.exclusiveMinimum === true ? 'above ' : ''}${showBound(from)} to ${showBound(to)}`;
-  const what = prior.kind === 'fixed' ? `the fixed value ${prior.value}` : `the prior from ${showBound(lo)} to ${showBound(hi)}`;
+  const what =
+    prior.kind === 'fixed'
+      ? `the fixed value ${prior.value}`
+      : `the prior from ${showBound(lo)} to ${showBound(hi)}`;
   const remedy =
     prior.kind === 'normal' || prior.kind === 'half-normal'
       ? `use a truncated-normal prior with bounds within ${range}`

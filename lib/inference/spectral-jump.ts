@@ -133,7 +133,8 @@ export function buildSpectralJump(
   let masses: MassProposal;
   if (sampled.length === 0) masses = noMasses;
   else if (sampled.length === 1) masses = lineProposal(layout, grids, stage, sampled[0], settings);
-  else if (sampled.length === 2) masses = planeProposal(layout, grids, stage, [sampled[0], sampled[1]], settings);
+  else if (sampled.length === 2)
+    masses = planeProposal(layout, grids, stage, [sampled[0], sampled[1]], settings);
   else {
     const vertexAngle = layout.template.parameters.findIndex(({ role }) => role === 'vertex-angle');
     masses = new OneMassProposal(layout, grids, stage, settings, vertexAngle, (edges) =>

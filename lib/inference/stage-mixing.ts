@@ -9,7 +9,14 @@ import {
   lnCoefficientDensity,
   type LinearReference,
 } from './linear-reference';
-import { CellDistribution, cellCentres, evenEdges, findCell, gatherEdges, temperedWeights } from './mass-grid';
+import {
+  CellDistribution,
+  cellCentres,
+  evenEdges,
+  findCell,
+  gatherEdges,
+  temperedWeights,
+} from './mass-grid';
 import { scalarPriorOf, type ParameterLayout } from './parameter-layout';
 import { drawFromPrior, lnPriorDensity, priorSupport } from './priors';
 import { drawIsotropicAngles } from '@/lib/templates';
@@ -50,7 +57,9 @@ export class MixingStage implements FieldStage {
     this.free = layout.angles.flatMap((index, k) => (layout.position[index] >= 0 ? [k] : []));
     const coupled = layout.priors[layout.coupling];
     this.reference = coupled.kind === 'fixed' ? null : linearReference(coupled);
-    this.exact = [layout.coupling, ...layout.background].every((index) => isExactReference(layout.priors[index]));
+    this.exact = [layout.coupling, ...layout.background].every((index) =>
+      isExactReference(layout.priors[index]),
+    );
     this.gram = new Float64Array(this.fields ** 2);
     this.linear = new Float64Array(this.fields);
     this.angleScratch = Float64Array.from(layout.angles, (index) => layout.base[index]);

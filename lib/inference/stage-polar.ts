@@ -11,7 +11,7 @@ import { PolarPair } from './polar-pair';
  */
 export class PolarStage implements FieldStage {
   readonly exact = false;
-  private readonly pair = new PolarPair();
+  private readonly pairs: PolarPair[];
   private readonly factor: Float64Array;
   private readonly rest: Float64Array;
   private readonly mean: Float64Array;
@@ -28,6 +28,7 @@ export class PolarStage implements FieldStage {
     this.mean = new Float64Array(size);
     this.inverse = new Float64Array(size);
     this.typical = new Float64Array(fields);
+    this.pairs = Array.from({ length: fields }, () => new PolarPair());
   }
 
   /**
@@ -64,10 +65,10 @@ export class PolarStage implements FieldStage {
 
   draw(rng: Rng, system: FieldSystem, full: Float64Array): void {
     this.settle(system, full);
-    const { map, pair } = this;
+    const { map } = this;
     map.begin(rng, full);
     for (let f = map.priors.length - 1; f >= 0; f -= 1) {
-      this.condition(system, f);
+      const pair = this.condition(system, f);
       if (!map.phaseHeld[f]) map.phase[f] = pair.drawPhase(rng);
       if (!map.amplitudeHeld[f]) map.amplitude[f] = pair.drawAmplitude(rng, map.phase[f]);
     }
@@ -76,11 +77,11 @@ export class PolarStage implements FieldStage {
 
   logDensity(system: FieldSystem, full: Float64Array): number {
     this.settle(system, full);
-    const { map, pair } = this;
+    const { map } = this;
     map.read(full);
     let sum = map.lnJacobian(full);
     for (let f = map.priors.length - 1; f >= 0; f -= 1) {
-      this.condition(system, f);
+      const pair = this.condition(system, f);
       if (!map.phaseHeld[f]) sum += pair.lnPhaseDensity(map.phase[f]);
       if (!map.amplitudeHeld[f]) sum += pair.lnAmplitudeDensity(map.amplitude[f], map.phase[f]);
     }
@@ -106,8 +107,9 @@ export class PolarStage implements FieldStage {
   }
 
   /** Gives the pair of field f its conditional, later fields at their values, the field's own reference taken out. */
-  private condition(system: FieldSystem, f: number): void {
-    const { factor, rest, map, pair } = this;
+  private condition(system: FieldSystem, f: number): PolarPair {
+    const { factor, rest, map } = this;
+    const pair = this.pairs[f];
     const n = system.size;
     const j = 2 * f;
     let r0 = rest[j];
@@ -131,5 +133,6 @@ export class PolarStage implements FieldStage {
       map.priors[f],
       map.amplitudeHeld[f] ? map.amplitude[f] : NaN,
     );
+    return pair;
   }
 }

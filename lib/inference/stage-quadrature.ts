@@ -31,10 +31,15 @@ export class QuadratureStage implements FieldStage {
     this.free = this.indices.flatMap((index, column) => (layout.position[index] >= 0 ? [column] : []));
     this.references = this.free.map((column) => linearReference(layout.priors[this.indices[column]]));
     this.priorLogDeterminant = this.references.reduce((sum, { precision }) => sum - Math.log(precision), 0);
-    this.priorQuadratic = this.references.reduce((sum, { precision, mean }) => sum + precision * mean * mean, 0);
+    this.priorQuadratic = this.references.reduce(
+      (sum, { precision, mean }) => sum + precision * mean * mean,
+      0,
+    );
     this.factor = new Float64Array(this.free.length ** 2);
     this.rest = new Float64Array(this.free.length);
-    this.exact = [...this.indices, ...layout.background].every((index) => isExactReference(layout.priors[index]));
+    this.exact = [...this.indices, ...layout.background].every((index) =>
+      isExactReference(layout.priors[index]),
+    );
   }
 
   logEvidence(system: FieldSystem): number {
@@ -51,7 +56,12 @@ export class QuadratureStage implements FieldStage {
     for (let j = this.free.length - 1; j >= 0; j -= 1) {
       const diagonal = this.factor[j * this.free.length + j];
       const linear = diagonal * this.conditional(j, full);
-      full[this.indices[this.free[j]]] = drawCoefficient(rng, this.references[j], diagonal * diagonal, linear);
+      full[this.indices[this.free[j]]] = drawCoefficient(
+        rng,
+        this.references[j],
+        diagonal * diagonal,
+        linear,
+      );
     }
   }
 
@@ -61,7 +71,12 @@ export class QuadratureStage implements FieldStage {
     for (let j = this.free.length - 1; j >= 0; j -= 1) {
       const diagonal = this.factor[j * this.free.length + j];
       const linear = diagonal * this.conditional(j, full);
-      sum += lnCoefficientDensity(full[this.indices[this.free[j]]], this.references[j], diagonal * diagonal, linear);
+      sum += lnCoefficientDensity(
+        full[this.indices[this.free[j]]],
+        this.references[j],
+        diagonal * diagonal,
+        linear,
+      );
     }
     return sum;
   }

@@ -51,7 +51,8 @@ export function buildWhitenedField(
       whitening.apply(out, offset + c * p);
     }
   };
-  const exactOnly = (): WhitenedField => withStore(block.width, stride, (mass, out) => exact(mass, out, 0), 0, 0);
+  const exactOnly = (): WhitenedField =>
+    withStore(block.width, stride, (mass, out) => exact(mass, out, 0), 0, 0);
   if (!(hi > lo)) return exactOnly();
 
   let step = (tolerance * 40) ** (1 / POINTS) / turningRate(block, p, 0.5 * (lo + hi));
@@ -61,7 +62,8 @@ export function buildWhitenedField(
     const spacing = (hi - lo) / (nodes - 1);
     const table = new Float64Array(nodes * stride);
     for (let n = 0; n < nodes; n += 1) exact(n === nodes - 1 ? hi : lo + n * spacing, table, n * stride);
-    const read = (mass: number, out: Float64Array): void => interpolate(table, nodes, stride, (mass - lo) / spacing, out);
+    const read = (mass: number, out: Float64Array): void =>
+      interpolate(table, nodes, stride, (mass - lo) / spacing, out);
     const error = measureError(exact, read, lo, spacing, nodes, stride);
     if (error <= tolerance) return withStore(block.width, stride, read, nodes, error);
     step = Math.min(spacing * 0.8, spacing * 0.9 * (tolerance / error) ** (1 / POINTS));

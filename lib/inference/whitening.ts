@@ -20,7 +20,13 @@ export interface Whitening {
  */
 export function buildWhitening(data: FitData): Whitening {
   const p = data.S.length;
-  if (p === 0) throw new InferenceError('data_length', 'data.S', 'no data value is left after the cuts', 'widen the cuts');
+  if (p === 0)
+    throw new InferenceError(
+      'data_length',
+      'data.S',
+      'no data value is left after the cuts',
+      'widen the cuts',
+    );
   if (data.covariance.length !== p * p) {
     throw new InferenceError(
       'covariance_size',
@@ -32,12 +38,22 @@ export function buildWhitening(data: FitData): Whitening {
   const badPoint = data.S.findIndex((value) => !Number.isFinite(value));
   if (badPoint >= 0) {
     const message = `data value ${badPoint} is not a finite number`;
-    throw new InferenceError('data_not_finite', `data.S[${badPoint}]`, message, 'remove the bin or correct the file');
+    throw new InferenceError(
+      'data_not_finite',
+      `data.S[${badPoint}]`,
+      message,
+      'remove the bin or correct the file',
+    );
   }
   const badEntry = data.covariance.findIndex((value) => !Number.isFinite(value));
   if (badEntry >= 0) {
     const path = `data.covariance[${Math.floor(badEntry / p)}][${badEntry % p}]`;
-    throw new InferenceError('data_not_finite', path, 'this entry is not a finite number', 'correct the covariance');
+    throw new InferenceError(
+      'data_not_finite',
+      path,
+      'this entry is not a finite number',
+      'correct the covariance',
+    );
   }
   for (let i = 0; i < p; i += 1) {
     for (let j = 0; j < i; j += 1) {
