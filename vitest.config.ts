@@ -24,7 +24,6 @@ export default defineConfig({
         test: {
           name: 'integration',
           include: ['tests/{integration,faults}/**/*.test.ts'],
-          globalSetup: 'tests/integration/services.ts',
           globalSetup: ['tests/integration/services.mjs'],
           fileParallelism: false,
           testTimeout: 180_000,

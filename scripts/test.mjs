@@ -72,9 +72,7 @@ async function suite(project, env = {}) {
 try {
   refuseOtherNode();
   await installNodePackages();
-  await installDebianPackages([
-    ...['mariadbd', 'mariadb-install-db', 'mariadb', 'redis-server', 'chromium'],
-  ]);
+  await installDebianPackages([...['mariadbd', 'mariadb-install-db', 'mariadb', 'redis-server', 'chromium']]);
   rmSync(path.join(root, '.state-test'), { recursive: true, force: true });
   mkdirSync(reports, { recursive: true, mode: 0o700 });
   const node = process.execPath;

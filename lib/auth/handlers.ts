@@ -53,7 +53,9 @@ async function signIn(url: URL, headers: Headers, form: URLSearchParams): Promis
     throw error;
   }
   const body = new URLSearchParams({ email: email.data, callbackUrl: form.get('callbackUrl') ?? '/' });
-  return Auth(new Request(url, { method: 'POST', headers, body }), standing());
+  const answer = await Auth(new Request(url, { method: 'POST', headers, body }), standing());
+  const sent = new URL(answer.headers.get('location') ?? '', url).pathname.endsWith('/verify-request');
+  return seeOther(new URL(sent ? signInPages.verifyRequest : `${signInPages.signIn}?error=MailFailed`, url));
 }
 
 /** Uses a link up: what the button of the confirm page posts. */
