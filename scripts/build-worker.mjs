@@ -1,0 +1,21 @@
+import path from 'node:path';
+import { fileURLToPath } from 'node:url';
+import { build } from 'esbuild';
+
+/** Bundles our own sources of the worker and its threads; packages stay outside. Threads need files of their own. */
+const root = path.dirname(path.dirname(fileURLToPath(import.meta.url)));
+
+await build({
+  absWorkingDir: root,
+  entryPoints: ['worker/main.ts', 'worker/replica-thread.ts', 'worker/report-thread.ts'],
+  outdir: 'dist/worker',
+  outExtension: { '.js': '.mjs' },
+  bundle: true,
+  format: 'esm',
+  platform: 'node',
+  target: 'node20',
+  packages: 'external',
+  alias: { '@': root },
+  sourcemap: true,
+  logLevel: 'warning',
+});
