@@ -4,6 +4,9 @@ import {
   createNotebookSchema,
   createdSchema,
   drawsSchema,
+  extendFitSchema,
+  evaluatedSchema,
+  evaluateSchema,
   fitSchema,
   groupSchema,
   healthSchema,
@@ -19,6 +22,7 @@ import {
   pointsLimit,
   sampleFormats,
   startFitSchema,
+  templateSchema,
 } from '@/lib/schemas';
 import type { Action } from '@/lib/policies';
 
@@ -49,6 +53,8 @@ const measurementParts = {
   file: { limit: pointsLimit, required: true, summary: 'The points, as delimited text.' },
   covariance: { limit: mocksLimit, summary: 'Their covariance, one row a line.' },
   mocks: { limit: mocksLimit, summary: 'Mock measurements, one mock a line, in place of a covariance.' },
+  window: { limit: mocksLimit, summary: 'A window; not supported yet, and refused.' },
+  columns: { limit: mocksLimit, summary: 'Further linear columns; not supported yet, and refused.' },
   meta: { limit: metaLimit, summary: 'JSON: name, description, columns, mockCount, simulated, blind.' },
 } as const satisfies Record<string, PartRule>;
 
@@ -99,6 +105,17 @@ export const routes = {
     permission: 'measurement.read',
     answer: measurementSchema,
   },
+  'GET /templates': {
+    summary: 'Every template with its options, parameters, default priors and formula.',
+    permission: 'user',
+    answer: z.array(templateSchema),
+  },
+  'POST /templates/:id/evaluate': {
+    summary: 'The prediction of a template at points or averaged over bins.',
+    permission: 'user',
+    body: evaluateSchema,
+    answer: evaluatedSchema,
+  },
   'POST /groups/:id/notebooks': {
     summary: 'Open a notebook on a measurement.',
     permission: 'notebook.create',
@@ -129,6 +146,17 @@ export const routes = {
   'POST /fits/:id/stop': {
     summary: 'Stop a fit; what it has drawn stays.',
     permission: 'fit.stop',
+    answer: fitSchema,
+  },
+  'POST /fits/:id/resume': {
+    summary: 'Go on with a stopped or failed fit, up to its budget.',
+    permission: 'fit.resume',
+    answer: fitSchema,
+  },
+  'POST /fits/:id/extend': {
+    summary: 'Allow more draws, and go on.',
+    permission: 'fit.extend',
+    body: extendFitSchema,
     answer: fitSchema,
   },
   'GET /fits/:id/draws': {

@@ -1,0 +1,8 @@
+import { withMember } from '@/lib/http/route';
+import { patchNotebook, readNotebook } from '@/lib/services/notebooks';
+
+export const GET = withMember('notebook.read', 'GET /notebooks/:id', ({ access }) => readNotebook(access));
+
+export const PATCH = withMember('notebook.edit', 'PATCH /notebooks/:id', ({ access, body }) =>
+  patchNotebook(access, body),
+);
