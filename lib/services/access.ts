@@ -3,7 +3,7 @@ import { Fit, Group, Measurement, Membership, Notebook } from '@/models';
 import { database } from '@/lib/db';
 import { notFound } from '@/lib/errors';
 import { idSchema, roleSchema, type Role } from '@/lib/schemas';
-import { mayOrThrow, type Action } from '@/lib/policies';
+import { may, mayOrThrow, type Action } from '@/lib/policies';
 
 export type { Actor };
 
@@ -44,7 +44,10 @@ async function groupOf(kind: RecordKind, id: string): Promise<string | null> {
 /** Ids that aren't UUIDs name nothing. */
 const wellFormed = (id: unknown): id is string => idSchema.safeParse(id).success;
 
-/** What `actor` may do on one record: `not_found` where they aren't of its group, `forbidden` where the role is too small. */
+/**
+ * What `actor` may do on one record: `not_found` where they aren't of its group or may not read it, so that nobody
+ * learns of what they may not see; `forbidden` where the role is too small for the action.
+ */
 export async function authorise(actor: Actor, kind: RecordKind, id: string, action: Action): Promise<Access> {
   database();
   const groupId = wellFormed(id) ? await groupOf(kind, id) : null;
@@ -52,6 +55,7 @@ export async function authorise(actor: Actor, kind: RecordKind, id: string, acti
     groupId === null ? null : await Membership.findOne({ where: { groupId, userId: actor.userId } });
   if (groupId === null || membership === null) throw notFound(kind);
   const role = roleSchema.parse(membership.role);
+  if (!may(role, `${kind}.read`)) throw notFound(kind);
   mayOrThrow(role, action);
   return {
     [proof]: true,
