@@ -28,6 +28,7 @@ export const { up, down } = table(
     max_draws: count,
     target_rhat: real,
     target_ess: real,
+    target_from: { ...count, defaultValue: 0 },
     status: text(16),
     message: maybe(text(1000)),
     stop_requested: flag,

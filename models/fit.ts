@@ -21,6 +21,8 @@ export class Fit extends Model<InferAttributes<Fit>, InferCreationAttributes<Fit
   declare maxDraws: number;
   declare targetRhat: number;
   declare targetEss: number;
+  /** Kept draws a replica before which a met target doesn't end the fit: `extend` of a converged fit sets it. */
+  declare targetFrom: CreationOptional<number>;
   declare status: string;
   declare message: CreationOptional<string | null>;
   /** Set by `stop`; looked at between blocks. */
@@ -79,6 +81,7 @@ export function initFitModels(sequelize: Sequelize): void {
       maxDraws: count(),
       targetRhat: real(),
       targetEss: real(),
+      targetFrom: { ...count(), defaultValue: 0 },
       status: text(16),
       message: text(1000, true),
       stopRequested: flag(),

@@ -20,10 +20,16 @@ export const startFitSchema = z.strictObject({
 });
 export type StartFit = z.infer<typeof startFitSchema>;
 
+/** Additional kept draws a replica: beyond those that an ended fit has, or a running one is allowed. */
+export const extendFitSchema = z.strictObject({ draws: z.number().int().min(1).max(1_000_000) });
+export type ExtendFit = z.infer<typeof extendFitSchema>;
+
 /** Everything that determines the draws: no id, no time, no name of a person. Its SHA-256 is of its canonical JSON. */
 export const snapshotSchema = z.object({
   inputs: z.array(z.object({ part: z.enum(['file', 'covariance', 'mocks']), sha256: sha256Schema })),
   measurementVersion: z.number().int(),
+  /** Which columns of the file are what. */
+  mapping: z.record(z.string(), z.unknown()),
   cuts: cutsSchema,
   likelihood: likelihoodSchema,
   mockCount: z.number().int().nullable(),

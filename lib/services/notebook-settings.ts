@@ -47,7 +47,7 @@ function settlePriors(
 }
 
 /** Refuses priors, or a likelihood, with which no posterior can be built. */
-function checkFittable({ data, likelihood, template, priors }: InferenceSpec): void {
+export function checkFittable({ data, likelihood, template, priors }: InferenceSpec): void {
   refusingFaults(() => {
     const { free } = layOutParameters({ template, priors });
     // The determinant shifts the density only; that C is positive definite was settled at upload, and a cut keeps it.

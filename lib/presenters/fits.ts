@@ -1,0 +1,106 @@
+import type { Fit as FitRow } from '@/models';
+import { actionsFor } from '@/lib/policies';
+import {
+  endedStatuses,
+  fitStatusSchema,
+  snapshotSchema,
+  type Fit,
+  type FitStatus,
+  type Role,
+} from '@/lib/schemas';
+import { emptyReport, storedReportSchema, type StoredReport } from '@/lib/services/stored-report';
+
+/** What a fit is shown with beside its row; none of it changes while the fit runs. */
+export interface FitContext {
+  /** E-mail address of who started it. */
+  startedBy: string;
+  role: Role;
+  /** While a measurement is blind nothing that was fitted to it is shown. */
+  blind: boolean;
+}
+
+const isHeld = (fit: FitRow): boolean => fit.leaseUntil !== null && fit.leaseUntil.getTime() > Date.now();
+
+function messageOf(fit: FitRow, status: FitStatus): string | null {
+  if (fit.message !== null) return fit.message;
+  if (status === 'budget-spent') {
+    return `The budget of ${fit.maxDraws} kept draws a replica was spent before every quantity met the target.`;
+  }
+  if (endedStatuses.includes(status)) return null;
+  if (!isHeld(fit)) {
+    return fit.draws === 0
+      ? 'It waits for a worker.'
+      : `It was interrupted after ${fit.draws} draws a replica and goes on by itself when a worker takes it up.`;
+  }
+  if (fit.stopRequested) return 'It stops at the end of the present block.';
+  if (fit.targetFrom > 0) return 'The target was met before: sampling goes on to the end of the budget.';
+  return null;
+}
+
+/** Kept draws a replica at which the fit is expected to end. */
+function expectedEnd(fit: FitRow, report: StoredReport): number {
+  const target = report.wanted === null ? fit.maxDraws : Math.max(report.wanted, fit.targetFrom);
+  return Math.min(fit.maxDraws, target);
+}
+
+function progressOf(fit: FitRow, status: FitStatus, report: StoredReport, warmup: number, replicas: number) {
+  const kept = Math.max(0, fit.draws - warmup);
+  const finished = status === 'converged' || status === 'budget-spent';
+  const end = expectedEnd(fit, report);
+  const rate = fit.drawsPerSecond;
+  const left = rate !== null && rate > 0 ? Math.max(0, warmup + end - fit.draws) / (rate / replicas) : null;
+  return {
+    warmup: Math.min(fit.draws, warmup),
+    warmupTotal: warmup,
+    draws: kept,
+    maxDraws: fit.maxDraws,
+    fraction: finished ? 1 : Math.min(1, kept / end),
+    secondsLeft: endedStatuses.includes(status) ? 0 : left,
+    secondsSpent: Number(fit.millisecondsSpent) / 1000,
+  };
+}
+
+/** What may be done with a fit in its state, of what the role allows. */
+function mayOf(fit: FitRow, status: FitStatus, role: Role): string[] {
+  const ended = endedStatuses.includes(status);
+  const possible: Readonly<Record<string, boolean>> = {
+    'fit.stop': !ended && !fit.stopRequested,
+    'fit.resume': status === 'stopped' || status === 'failed' || (!ended && fit.stopRequested),
+    'fit.extend': status !== 'failed',
+  };
+  return actionsFor(role, 'fit').filter((action) => possible[action] ?? true);
+}
+
+export function presentFit(fit: FitRow, { startedBy, role, blind }: FitContext): Fit {
+  const status = fitStatusSchema.parse(fit.status);
+  const stored = fit.report === null ? emptyReport : storedReportSchema.parse(fit.report);
+  const report = blind ? emptyReport : stored;
+  const snapshot = snapshotSchema.parse(fit.snapshot);
+  return {
+    id: fit.id,
+    notebookId: fit.notebookId,
+    number: fit.number,
+    revision: fit.revision,
+    status,
+    message: messageOf(fit, status),
+    progress: progressOf(fit, status, stored, snapshot.warmup, snapshot.replicas),
+    replicas: snapshot.replicas,
+    drawsPerSecond: fit.drawsPerSecond,
+    acceptance: report.acceptance,
+    diagnostics: report.diagnostics,
+    history: report.history,
+    modes: [],
+    logEvidence: null,
+    gate: {
+      met: report.gate.met,
+      target: { rhat: fit.targetRhat, ess: fit.targetEss },
+      reasons: blind ? ['The measurement is blind: nothing of the fit is shown.'] : report.gate.reasons,
+    },
+    snapshot: { ...snapshot, sha256: fit.snapshotSha256 },
+    startedBy,
+    createdAt: fit.createdAt.toISOString(),
+    startedAt: fit.startedAt?.toISOString() ?? null,
+    endedAt: fit.endedAt?.toISOString() ?? null,
+    may: mayOf(fit, status, role),
+  };
+}

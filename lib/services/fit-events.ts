@@ -1,0 +1,88 @@
+import { fitChannel } from '@/lib/jobs/fits';
+import { log } from '@/lib/log';
+import { presentFit } from '@/lib/presenters/fits';
+import { subscribe } from '@/lib/redis';
+import { endedStatuses, fitEventSchema, type FitEvent } from '@/lib/schemas';
+import type { Access } from './access';
+import { findFit, fitContext } from './fit-records';
+
+/** Milliseconds between two events of one stream at least, and between two reads that nobody called for. */
+const pace = { between: 800, unasked: 2_000 } as const;
+
+export interface FitWatcher {
+  onEvent(event: FitEvent): void;
+  /** The fit has ended and its last event was sent. */
+  onEnd(): void;
+}
+
+/**
+ * Watches the fit of `access`: its state from the database at once, then whenever it has changed, until it has ended. Workers
+ * tell of a commit over Redis; that only makes it quicker, the database is read every two seconds without it. Resolves
+ * once the first event was given, with how to stop.
+ */
+export async function watchFit(access: Access, watcher: FitWatcher): Promise<() => void> {
+  access.require('fit.read');
+  const context = await fitContext(access, await findFit(access));
+  let stopped = false;
+  let timer: NodeJS.Timeout | undefined;
+  let unsubscribe: (() => void) | undefined;
+  let told = '';
+  let toldAt = 0;
+  let reading = false;
+  let called = false;
+
+  const stop = () => {
+    stopped = true;
+    clearTimeout(timer);
+    unsubscribe?.();
+    unsubscribe = undefined;
+  };
+  const wait = (milliseconds: number) => {
+    clearTimeout(timer);
+    if (!stopped) timer = setTimeout(() => void turn(), milliseconds);
+  };
+  const tell = (event: FitEvent) => {
+    const text = JSON.stringify(event);
+    if (text !== told) {
+      told = text;
+      toldAt = Date.now();
+      watcher.onEvent(event);
+    }
+    if (endedStatuses.includes(event.status)) {
+      stop();
+      watcher.onEnd();
+    }
+  };
+  const read = async () => {
+    const event = fitEventSchema.parse(presentFit(await findFit(access), context));
+    if (!stopped) tell(event);
+  };
+  const turn = async () => {
+    reading = true;
+    called = false;
+    try {
+      await read();
+    } catch (error) {
+      log.warn({ err: error }, 'a watched fit could not be read for now');
+    }
+    reading = false;
+    wait(called ? pace.between : pace.unasked);
+  };
+  const onCommit = () => {
+    if (called || stopped) return;
+    called = true;
+    if (!reading) wait(Math.max(0, toldAt + pace.between - Date.now()));
+  };
+
+  // Before the first read, so that no commit falls between the two; not waited for, since Redis may be away.
+  void subscribe(fitChannel(access.id), onCommit).then(
+    (end) => {
+      if (stopped) end();
+      else unsubscribe = end;
+    },
+    (error: unknown) => log.warn({ err: error }, 'a fit is watched without being told of commits'),
+  );
+  await read();
+  wait(called ? pace.between : pace.unasked);
+  return stop;
+}

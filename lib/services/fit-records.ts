@@ -1,0 +1,55 @@
+import { Fit, Measurement, MeasurementVersion } from '@/models';
+import { AppError, notFound } from '@/lib/errors';
+import { presentFit, type FitContext } from '@/lib/presenters/fits';
+import { snapshotSchema, type Fit as FitAnswer, type Snapshot } from '@/lib/schemas';
+import type { Access } from './access';
+import { emailsOf } from './people';
+
+/** The fit of `access`. */
+export async function findFit(access: Access): Promise<Fit> {
+  const fit = await Fit.findByPk(access.id);
+  if (!fit) throw notFound('fit');
+  return fit;
+}
+
+async function isBlind(fit: Fit): Promise<boolean> {
+  const version = await MeasurementVersion.findByPk(fit.measurementVersionId, {
+    attributes: ['measurementId'],
+  });
+  const measurement =
+    version && (await Measurement.findByPk(version.measurementId, { attributes: ['blind'] }));
+  return measurement?.blind ?? true;
+}
+
+export async function fitContext(access: Access, fit: Fit): Promise<FitContext> {
+  const [people, blind] = await Promise.all([emailsOf([fit.startedBy]), isBlind(fit)]);
+  return { startedBy: people.get(fit.startedBy) ?? '', role: access.role, blind };
+}
+
+/** The fit of `access` as its members see it. */
+export async function readFit(access: Access): Promise<FitAnswer> {
+  access.require('fit.read');
+  const fit = await findFit(access);
+  return presentFit(fit, await fitContext(access, fit));
+}
+
+/** A fit whose draws are to be read, with its snapshot and the numbers that it was made from. */
+export interface FitSource {
+  fit: Fit;
+  snapshot: Snapshot;
+  version: MeasurementVersion;
+}
+
+/** Loads a fit for its draws; `blind` while its measurement is. */
+export async function findDraws(access: Access): Promise<FitSource> {
+  access.require('fit.read');
+  const fit = await findFit(access);
+  if (await isBlind(fit)) {
+    throw new AppError(
+      'blind',
+      'The measurement is blind: its samples can’t be read before it is unblinded.',
+    );
+  }
+  const version = await MeasurementVersion.findByPk(fit.measurementVersionId, { rejectOnEmpty: true });
+  return { fit, snapshot: snapshotSchema.parse(fit.snapshot), version };
+}

@@ -1,0 +1,142 @@
+import type { Diagnostic } from '@/lib/schemas';
+import { diagnose, judgeGate, type Diagnosis, type GateTarget } from '@/lib/sampler';
+import type { FitColumns } from './fit-model';
+import { judgedFrom, storedOf, strideOf } from './fit-schedule';
+import type { StoredReport } from './stored-report';
+
+/** Entries of the history that are kept; beyond, every second one goes. */
+const longestHistory = 60;
+
+const orNull = (value: number): number | null => (Number.isFinite(value) ? value : null);
+
+function present(parameter: string, derived: boolean, found: Diagnosis): Diagnostic {
+  return {
+    parameter,
+    derived,
+    mean: orNull(found.mean),
+    sd: orNull(found.sd),
+    q2_5: orNull(found.q2_5),
+    q16: orNull(found.q16),
+    q50: orNull(found.q50),
+    q84: orNull(found.q84),
+    q97_5: orNull(found.q97_5),
+    rhat: orNull(found.rhat),
+    essBulk: orNull(found.essBulk),
+    essTail: orNull(found.essTail),
+    mcseMean: orNull(found.mcseMean),
+    mcseSd: orNull(found.mcseSd),
+  };
+}
+
+/** The kept draws of one fit in memory, appended block by block and read at every look. */
+export class KeptDraws {
+  private readonly blocks: { firstKept: number; stride: number; values: Float64Array }[][];
+
+  constructor(
+    private readonly columns: FitColumns,
+    private readonly warmup: number,
+    replicas: number,
+  ) {
+    this.blocks = Array.from({ length: replicas }, () => []);
+  }
+
+  /** Adds stored rows: row i is recorded draw `first + i × stride`. Draws of warm-up are passed over. */
+  append(replica: number, first: number, stride: number, values: Float64Array): void {
+    if (first >= this.warmup) this.blocks[replica].push({ firstKept: first - this.warmup, stride, values });
+  }
+
+  /** Every reported quantity's draws, one array a replica, as they are served when `kept` draws have been made. */
+  chains(kept: number): Map<string, Float64Array[]> {
+    const { sampled, derived, width } = this.columns;
+    const names = [...sampled, ...derived];
+    const stride = strideOf(kept);
+    const length = storedOf(kept);
+    const result = new Map(names.map((name) => [name, [] as Float64Array[]]));
+    const computed = new Float64Array(derived.length);
+    for (const blocks of this.blocks) {
+      const chains = names.map(() => new Float64Array(length));
+      let at = 0;
+      for (const block of blocks) {
+        const rows = block.values.length / width;
+        for (let row = 0; row < rows; row++) {
+          const draw = block.firstKept + row * block.stride;
+          if (draw >= kept || draw % stride !== 0) continue;
+          const offset = row * width;
+          for (let i = 0; i < sampled.length; i++) chains[i][at] = block.values[offset + 2 + i];
+          this.columns.derive(block.values, offset, computed);
+          for (let i = 0; i < derived.length; i++) chains[sampled.length + i][at] = computed[i];
+          at++;
+        }
+      }
+      if (at !== length) throw new Error(`A replica has ${at} stored draws where ${length} are due.`);
+      names.forEach((name, i) => result.get(name)?.push(chains[i]));
+    }
+    return result;
+  }
+}
+
+/** Kept draws at which every quantity should reach its target, if sizes grow and R-hat falls as they must on average. */
+function expectedDraws(kept: number, judged: readonly Diagnosis[], target: GateTarget): number | null {
+  let factor = 0;
+  for (const { rhat, essBulk, essTail } of judged) {
+    factor = Math.max(factor, target.ess / Math.min(essBulk, essTail), (rhat - 1) / (target.rhat - 1));
+  }
+  return Number.isFinite(factor) && judged.length > 0 ? Math.max(judgedFrom, Math.ceil(factor * kept)) : null;
+}
+
+function decimate(history: StoredReport['history']): StoredReport['history'] {
+  if (history.length <= longestHistory) return history;
+  const last = history.length - 1;
+  return history.filter((_, i) => (last - i) % 2 === 0);
+}
+
+export interface Look {
+  warmup: number;
+  /** Recorded draws a replica, warm-up included. */
+  draws: number;
+  target: GateTarget;
+}
+
+/**
+ * Looks at a fit: diagnostics of every sampled parameter and derived quantity over exactly the draws that are served, and
+ * the gate. An angle's numbers are of its coordinate in (−π, π]. A derived quantity that is one number throughout (because what
+ * it depends on is fixed) is reported but not judged: it is a function of parameters that are judged themselves.
+ */
+export function lookAt(
+  draws: KeptDraws,
+  columns: FitColumns,
+  look: Look,
+  before: StoredReport,
+): StoredReport {
+  const kept = Math.max(0, look.draws - look.warmup);
+  const chains = draws.chains(kept);
+  const found = [...chains].map(([name, each]) => ({ name, diagnosis: diagnose(each) }));
+  const derived = new Set(columns.derived);
+  const judged = found.filter(({ name, diagnosis }) => !(derived.has(name) && diagnosis.constant));
+  const gate = judgeGate(
+    {
+      chainsByParameter: Object.fromEntries(judged.map(({ name }) => [name, chains.get(name) ?? []])),
+      diagnosisByParameter: Object.fromEntries(judged.map(({ name, diagnosis }) => [name, diagnosis])),
+    },
+    look.target,
+    judgedFrom,
+  );
+  const entry = {
+    draws: kept,
+    rhat: found.map(({ diagnosis }) => orNull(diagnosis.rhat)),
+    ess: found.map(({ diagnosis }) => orNull(Math.min(diagnosis.essBulk, diagnosis.essTail))),
+  };
+  const earlier = before.history.filter((past) => past.draws < kept);
+  return {
+    draws: look.draws,
+    diagnostics: found.map(({ name, diagnosis }) => present(name, derived.has(name), diagnosis)),
+    history: kept > 0 ? decimate([...earlier, entry]) : [],
+    gate,
+    wanted: expectedDraws(
+      kept,
+      judged.map(({ diagnosis }) => diagnosis),
+      look.target,
+    ),
+    acceptance: before.acceptance,
+  };
+}

@@ -1,0 +1,221 @@
+import { randomBytes } from 'node:crypto';
+import type { Transaction } from 'sequelize';
+import { Fit, Measurement, MeasurementVersion, Notebook, NotebookRevision } from '@/models';
+import { database } from '@/lib/db';
+import { AppError, notFound } from '@/lib/errors';
+import { enqueueFit } from '@/lib/jobs';
+import { log } from '@/lib/log';
+import {
+  defaultFit,
+  endedStatuses,
+  fitStatusSchema,
+  snapshotSchema,
+  type ExtendFit,
+  type Fit as FitAnswer,
+  type Snapshot,
+  type StartFit,
+} from '@/lib/schemas';
+import type { Access } from './access';
+import { recordEvent } from './audit';
+import { canonicalSha256 } from './canonical-json';
+import { blockDraws, warmupDraws } from './fit-schedule';
+import { readFit } from './fit-records';
+import { inferenceSpec } from './inference-spec';
+import { checkFittable } from './notebook-settings';
+import { program } from './program';
+import { emptyReport, storedReportSchema } from './stored-report';
+
+export { readFit } from './fit-records';
+
+/** Most kept draws a replica that a fit may come to. */
+const mostDraws = 1_000_000;
+
+/** Wakes a worker. A queue that is away holds nothing up: workers look for fits that nobody has taken by themselves. */
+async function wake(fitId: string, epoch: number): Promise<void> {
+  try {
+    await enqueueFit(fitId, epoch);
+  } catch (error) {
+    log.warn({ fitId, err: error }, 'a fit is left to the workers’ own search');
+  }
+}
+
+function freeze(version: MeasurementVersion, revision: NotebookRevision, body: StartFit): Snapshot {
+  const { cuts, likelihood, template, priors } = revision.settings;
+  // Only what the schema lists is frozen, in the form in which it is hashed.
+  return snapshotSchema.parse({
+    inputs: version.files.map(({ part, sha256 }) => ({ part, sha256 })),
+    measurementVersion: version.version,
+    mapping: version.mapping,
+    cuts,
+    likelihood,
+    mockCount: version.mockCount,
+    template,
+    priors,
+    seed: body.seed === undefined ? randomBytes(16).toString('hex') : String(body.seed),
+    replicas: body.replicas ?? defaultFit.replicas,
+    warmup: warmupDraws,
+    blockDraws,
+    ...program,
+  });
+}
+
+/** The notebook of `access` as it stands, locked so that its fits are numbered one by one. */
+async function lockNotebook(access: Access, transaction: Transaction) {
+  const notebook = await Notebook.findByPk(access.id, { lock: true, transaction });
+  if (!notebook) throw notFound('notebook');
+  const [revision, version] = await Promise.all([
+    NotebookRevision.findOne({
+      where: { notebookId: notebook.id, revision: notebook.revision },
+      transaction,
+    }),
+    MeasurementVersion.findByPk(notebook.measurementVersionId, { transaction }),
+  ]);
+  const measurement = version && (await Measurement.findByPk(version.measurementId, { transaction }));
+  if (!revision || !version || !measurement) throw notFound('notebook');
+  return { notebook, revision, version, measurement };
+}
+
+/** Freezes the notebook of `access` as it stands and queues the sampling. */
+export async function startFit(access: Access, body: StartFit): Promise<{ id: string }> {
+  access.require('fit.start');
+  const fit = await database().transaction(async (transaction) => {
+    const { notebook, revision, version, measurement } = await lockNotebook(access, transaction);
+    if (measurement.blind) {
+      throw new AppError('plan_missing', 'The measurement is blind: freeze a plan before the first fit.');
+    }
+    checkFittable(inferenceSpec(version, revision.settings).spec);
+    const snapshot = freeze(version, revision, body);
+    const last = await Fit.max<number | null, Fit>('number', {
+      where: { notebookId: notebook.id },
+      transaction,
+    });
+    const made = await Fit.create(
+      {
+        notebookId: notebook.id,
+        groupId: notebook.groupId,
+        number: (last ?? 0) + 1,
+        revision: revision.revision,
+        measurementVersionId: version.id,
+        snapshot,
+        snapshotSha256: canonicalSha256(snapshot),
+        maxDraws: body.maxDraws ?? defaultFit.maxDraws,
+        targetRhat: body.target?.rhat ?? defaultFit.rhat,
+        targetEss: body.target?.ess ?? defaultFit.ess,
+        status: 'queued',
+        startedBy: access.actor.userId,
+        createdAt: new Date(),
+      },
+      { transaction },
+    );
+    await recordChange(
+      access,
+      made,
+      'fit.start',
+      { number: made.number, revision: made.revision },
+      transaction,
+    );
+    return made;
+  });
+  await wake(fit.id, 0);
+  return { id: fit.id };
+}
+
+const recordChange = (
+  { actor }: Access,
+  fit: Fit,
+  action: string,
+  details: Record<string, unknown>,
+  transaction: Transaction,
+): Promise<void> =>
+  recordEvent(
+    { groupId: fit.groupId, actorId: actor.userId, action, subjectType: 'fit', subjectId: fit.id, details },
+    transaction,
+  );
+
+/** Changes the row of the fit of `access` under its lock; `change` says what of it, or null for nothing. */
+async function change(
+  access: Access,
+  action: 'fit.stop' | 'fit.resume' | 'fit.extend',
+  decide: (
+    fit: Fit,
+  ) => { values: Partial<Fit['_creationAttributes']>; details: Record<string, unknown> } | null,
+): Promise<FitAnswer> {
+  access.require(action);
+  const woken = await database().transaction(async (transaction) => {
+    const fit = await Fit.findByPk(access.id, { lock: true, transaction });
+    if (!fit) throw notFound('fit');
+    const decided = decide(fit);
+    if (decided === null) return null;
+    await fit.update(decided.values, { transaction });
+    await recordChange(access, fit, action, decided.details, transaction);
+    return fit.status === 'queued' ? { id: fit.id, epoch: fit.epoch } : null;
+  });
+  if (woken) await wake(woken.id, woken.epoch);
+  return readFit(access);
+}
+
+const hasEnded = (fit: Fit): boolean => endedStatuses.includes(fitStatusSchema.parse(fit.status));
+const isHeld = (fit: Fit): boolean => fit.leaseUntil !== null && fit.leaseUntil.getTime() > Date.now();
+const lookedAt = (fit: Fit): number =>
+  (fit.report === null ? emptyReport : storedReportSchema.parse(fit.report)).draws;
+
+/** A new epoch with the new course, so that whoever held the fit before can't write any more. */
+const queuedAgain = (fit: Fit) => ({
+  status: 'queued',
+  stopRequested: false,
+  epoch: fit.epoch + 1,
+  leaseUntil: null,
+  endedAt: null,
+});
+
+/**
+ * Stops a fit at the end of the present block; what it has drawn stays. One that nobody holds and whose diagnostics are of all
+ * its draws ends here; else the worker that takes it up computes them and ends it. Stopping what has ended changes nothing.
+ */
+export const stopFit = (access: Access): Promise<FitAnswer> =>
+  change(access, 'fit.stop', (fit) => {
+    if (hasEnded(fit) || fit.stopRequested) return null;
+    const details = { draws: fit.draws };
+    if (!isHeld(fit) && lookedAt(fit) === fit.draws) {
+      const ended = { status: 'stopped', epoch: fit.epoch + 1, leaseUntil: null, endedAt: new Date() };
+      return { values: ended, details };
+    }
+    return { values: { stopRequested: true }, details };
+  });
+
+/** Goes on with a stopped or failed fit up to its budget, or takes a stop back that hasn't come about. */
+export const resumeFit = (access: Access): Promise<FitAnswer> =>
+  change(access, 'fit.resume', (fit) => {
+    const details = { draws: fit.draws };
+    if (!hasEnded(fit)) {
+      if (fit.stopRequested) return { values: { stopRequested: false }, details };
+      throw new AppError('conflict', 'The fit is running; there is nothing to resume.');
+    }
+    if (fit.status === 'stopped') return { values: queuedAgain(fit), details };
+    if (fit.status === 'failed') return { values: { ...queuedAgain(fit), message: null }, details };
+    const how = fit.status === 'converged' ? 'has met its target' : 'has spent its budget';
+    throw new AppError('conflict', `The fit ${how}; extend it by a number of draws to go on.`);
+  });
+
+/**
+ * Allows `draws` more kept draws a replica: beyond those that it has, if it has ended; beyond its budget, if it is running. A
+ * fit that had converged then goes on to the end of that budget, since its target is met already; for any other the target
+ * ends it as before.
+ */
+export const extendFit = (access: Access, { draws }: ExtendFit): Promise<FitAnswer> =>
+  change(access, 'fit.extend', (fit) => {
+    if (fit.status === 'failed') {
+      throw new AppError('conflict', 'The fit has failed; resume it before it is extended.');
+    }
+    const { warmup } = snapshotSchema.parse(fit.snapshot);
+    const ended = hasEnded(fit);
+    const maxDraws = draws + (ended ? Math.max(0, fit.draws - warmup) : fit.maxDraws);
+    if (maxDraws > mostDraws) {
+      const message = `That would come to ${maxDraws} kept draws a replica; at most ${mostDraws} are taken.`;
+      throw new AppError('invalid', message, [{ path: 'draws', message }]);
+    }
+    const details = { draws, maxDraws };
+    if (!ended) return { values: { maxDraws }, details };
+    const targetFrom = fit.status === 'converged' ? maxDraws : fit.targetFrom;
+    return { values: { ...queuedAgain(fit), maxDraws, targetFrom }, details };
+  });

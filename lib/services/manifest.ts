@@ -1,0 +1,71 @@
+import { fitStatusSchema, type Manifest, type Snapshot } from '@/lib/schemas';
+import { replicaSeed } from '@/lib/sampler';
+import type { Access } from './access';
+import { findDraws, type FitSource } from './fit-records';
+import { fitModel, specOf } from './fit-model';
+import { sampleChecksum } from './samples';
+
+/** What a person does, with which program, to get the same bytes again. */
+function howToRunAgain({ fit, version, snapshot }: FitSource): string[] {
+  const { program, node, architecture, seed, replicas } = snapshot;
+  const files = version.files.map(({ part, fileName }) => `${part} = ${fileName}`).join(', ');
+  const settings = {
+    cuts: snapshot.cuts,
+    likelihood: snapshot.likelihood,
+    template: { id: snapshot.template.id, options: snapshot.template.options },
+    priors: snapshot.priors,
+  };
+  const kept = Math.max(0, fit.draws - snapshot.warmup);
+  const steps = [
+    `Install Beatnote ${program} on Node.js ${node}, architecture ${architecture}: draws depend on all three.`,
+    `Upload the files with the checksums under inputs (${files}): POST /api/v1/groups/GROUP/measurements, with meta ${JSON.stringify({ columns: snapshot.mapping, mockCount: snapshot.mockCount ?? undefined })}.`,
+    `Open a notebook on that measurement: POST /api/v1/groups/GROUP/notebooks with a title, the measurement and ${JSON.stringify(settings)}.`,
+    `Start the fit: POST /api/v1/notebooks/NOTEBOOK/fits with ${JSON.stringify(runSettings(seed, replicas, kept))}. With that target it makes exactly the ${kept} kept draws a replica that are here.`,
+    'Download the samples: GET /api/v1/fits/FIT/samples?format=csv; their SHA-256 is the one under outputs.',
+  ];
+  const angles = circularNames({ fit, version, snapshot });
+  if (angles.length > 0) {
+    steps.push(
+      `Means, standard deviations and quantiles of ${angles.join(', ')} are of the angle’s coordinate in (−π, π], not circular ones.`,
+    );
+  }
+  if (fit.message !== null) steps.push(fit.message);
+  return steps;
+}
+
+/** A target out of reach, so that the run ends with its budget and nowhere else. */
+const runSettings = (seed: string, replicas: number, maxDraws: number) => ({
+  seed,
+  replicas,
+  maxDraws,
+  target: { ess: 1e9 },
+});
+
+function circularNames({ version, snapshot }: FitSource): string[] {
+  const { template, priors } = specOf(fitModel(version, snapshot));
+  return template.parameters
+    .filter(({ name, circular }) => circular && priors[name].kind !== 'fixed')
+    .map(({ name }) => name);
+}
+
+const seedsOf = ({ seed, replicas }: Snapshot): Manifest['seeds'] => ({
+  master: seed,
+  replicas: Array.from({ length: replicas }, (_, replica) => replicaSeed(seed, replica)),
+});
+
+/** What went into the fit of `access` and what came out of it, with checksums. */
+export async function readManifest(access: Access): Promise<Manifest> {
+  const source = await findDraws(access);
+  const { fit, snapshot, version } = source;
+  const { program, node, architecture } = snapshot;
+  return {
+    fit: { number: fit.number, status: fitStatusSchema.parse(fit.status) },
+    snapshot,
+    snapshotSha256: fit.snapshotSha256,
+    inputs: version.files.map(({ part, fileName, bytes, sha256 }) => ({ part, fileName, bytes, sha256 })),
+    outputs: [{ name: 'samples.csv', ...(await sampleChecksum(source)) }],
+    seeds: seedsOf(snapshot),
+    versions: { program, node, architecture },
+    howToRunAgain: howToRunAgain(source),
+  };
+}

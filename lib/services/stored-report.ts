@@ -1,0 +1,27 @@
+import { z } from 'zod';
+import { diagnosticSchema, numberOrNull } from '@/lib/schemas';
+
+/** What is kept of the looks at a fit; column `report`. Every number is of committed draws. */
+export const storedReportSchema = z.object({
+  /** Recorded draws a replica at the last look; the diagnostics are of those. */
+  draws: z.number().int(),
+  diagnostics: z.array(diagnosticSchema),
+  history: z.array(
+    z.object({ draws: z.number().int(), rhat: z.array(numberOrNull), ess: z.array(numberOrNull) }),
+  ),
+  gate: z.object({ met: z.boolean(), reasons: z.array(z.string()) }),
+  /** Kept draws a replica at which the gate is expected to be met; null where that can't be told. */
+  wanted: numberOrNull,
+  /** Moves of all replicas together, since the end of warm-up (during it: since the start). */
+  acceptance: z.array(z.object({ move: z.string(), rate: numberOrNull })),
+});
+export type StoredReport = z.infer<typeof storedReportSchema>;
+
+export const emptyReport: StoredReport = {
+  draws: 0,
+  diagnostics: [],
+  history: [],
+  gate: { met: false, reasons: ['No draw is kept yet: the replicas are warming up.'] },
+  wanted: null,
+  acceptance: [],
+};

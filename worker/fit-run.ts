@@ -1,0 +1,237 @@
+import { log } from '@/lib/log';
+import { redis } from '@/lib/redis';
+import { fitChannel } from '@/lib/jobs';
+import {
+  commitDraws,
+  commitLook,
+  storedBlock,
+  type Standing,
+  type StoredBlock,
+} from '@/lib/services/fit-commit';
+import { fitBlocks } from '@/lib/services/fit-draws';
+import {
+  claimFit,
+  failFit,
+  noteMachine,
+  releaseLease,
+  renewLease,
+  type ClaimedFit,
+} from '@/lib/services/fit-lease';
+import type { StoredReport } from '@/lib/services/stored-report';
+import { isLook } from '@/lib/services/fit-schedule';
+import { verdict } from '@/lib/services/fit-verdict';
+import { ThreadError } from './failure';
+import type { Turn } from './messages';
+import { Pace } from './pace';
+import { untilDone } from './retry';
+import { Rounds, type Round } from './rounds';
+import type { WorkerSettings } from './settings';
+import { ReplicaThreads, ReportThread } from './threads';
+
+/** The process is asked to stop: `gently` at the end of the present block, `now` at once. */
+export interface Stopping {
+  gently: AbortSignal;
+  now: AbortSignal;
+}
+
+/** Samples one fit for as long as this process holds it; returns when it has ended, or isn't this worker's any more. */
+export async function runFit(fitId: string, settings: WorkerSettings, stopping: Stopping): Promise<void> {
+  const claimed = await untilDone('taking a fit', () => claimFit(fitId, settings.leaseMs), stopping.now);
+  if (!claimed) return;
+  const run = new FitRun(claimed, settings, stopping);
+  try {
+    await run.sample();
+  } catch (error) {
+    await run.fail(error);
+  } finally {
+    await run.close();
+  }
+}
+
+/** Settles when the signal does, and not before. */
+const aborted = (signal: AbortSignal): Promise<null> =>
+  new Promise((resolve) => {
+    if (signal.aborted) resolve(null);
+    else signal.addEventListener('abort', () => resolve(null), { once: true });
+  });
+
+const acceptanceOf = (turns: readonly Turn[]): StoredReport['acceptance'] =>
+  turns[0].moves.map(({ name }, move) => {
+    const proposed = turns.reduce((sum, turn) => sum + turn.moves[move].proposed, 0);
+    const accepted = turns.reduce((sum, turn) => sum + turn.moves[move].accepted, 0);
+    return { move: name, rate: proposed > 0 ? accepted / proposed : null };
+  });
+
+/** One worker's hold on one fit: replicas sample in threads, commits and looks follow one another here. */
+class FitRun {
+  private readonly lost = new AbortController();
+  private readonly over: AbortSignal;
+  private readonly overSettled: Promise<null>;
+  private readonly replicas: ReplicaThreads;
+  private readonly reporter: ReportThread;
+  private readonly rounds: Rounds;
+  private readonly pace: Pace;
+  private readonly renewal: NodeJS.Timeout;
+  private standing: Standing;
+  private report: StoredReport;
+
+  constructor(
+    private readonly fit: ClaimedFit,
+    private readonly settings: WorkerSettings,
+    private readonly stopping: Stopping,
+  ) {
+    const { model, snapshot, states, draws, maxDraws, targetFrom, stopRequested, target } = fit;
+    this.over = AbortSignal.any([stopping.now, this.lost.signal]);
+    this.overSettled = aborted(this.over);
+    this.standing = { draws, maxDraws, targetFrom, stopRequested };
+    this.report = fit.report;
+    this.replicas = new ReplicaThreads(model, states, settings.threads);
+    this.reporter = new ReportThread({ model, target });
+    this.pace = new Pace(() => performance.now(), snapshot.replicas, draws);
+    this.rounds = new Rounds({
+      replicas: snapshot.replicas,
+      draws,
+      // A fit that is to be stopped has no draw left to make.
+      limit: stopRequested ? draws : snapshot.warmup + maxDraws,
+      course: snapshot,
+      advance: (replica, count) => this.replicas.advance(replica, count),
+    });
+    this.renewal = setInterval(() => void this.renew(), settings.leaseMs / 4);
+  }
+
+  async sample(): Promise<void> {
+    const { fitId, epoch, snapshot } = this.fit;
+    log.info({ fitId, epoch, draws: this.standing.draws }, 'sampling');
+    await this.persist('noting the machine', () => noteMachine(this.fit));
+    await this.publish();
+    await this.remember();
+    while (!this.over.aborted) {
+      const { draws, maxDraws, stopRequested } = this.standing;
+      const kept = draws - snapshot.warmup;
+      const ending = stopRequested || kept >= maxDraws;
+      const unseen = isLook(kept, snapshot.blockDraws) && this.report.draws !== draws;
+      if (ending || unseen) {
+        if (await this.look()) return;
+        continue;
+      }
+      if (this.stopping.gently.aborted) break;
+      const batch = await Promise.race([this.rounds.take(), this.overSettled]);
+      if (batch) await this.commit(batch);
+    }
+    if (!this.lost.signal.aborted) await releaseLease(fitId, epoch);
+  }
+
+  /** Ends the fit with the reason, where it is still this worker's; a fault of ours is logged and can be resumed from. */
+  async fail(error: unknown): Promise<void> {
+    const { fitId, epoch } = this.fit;
+    if (this.lost.signal.aborted) return;
+    try {
+      if (this.stopping.now.aborted) return await releaseLease(fitId, epoch);
+      const told = error instanceof ThreadError ? error.failure.told : null;
+      log[told === null ? 'error' : 'warn']({ fitId, err: error }, 'a fit failed');
+      const ours = `An unexpected error ended the sampling after ${this.standing.draws} draws; it is logged. Resume tries again from there.`;
+      await this.persist('failing a fit', () => failFit(fitId, epoch, told ?? ours));
+      await this.publish();
+    } catch (again) {
+      // Nobody renews the lease now, so another worker takes it up.
+      log.error({ fitId, err: again }, 'a fit could not be given back');
+    }
+  }
+
+  async close(): Promise<void> {
+    clearInterval(this.renewal);
+    this.rounds.close();
+    await Promise.all([this.replicas.close(), this.reporter.close()]);
+  }
+
+  /** Gives the report thread what was committed before this worker came. */
+  private async remember(): Promise<void> {
+    const { fitId, draws, snapshot } = this.fit;
+    if (draws <= snapshot.warmup) return;
+    for (let replica = 0; replica < snapshot.replicas; replica++) {
+      for await (const block of fitBlocks(fitId, replica, draws)) this.tell(block);
+    }
+  }
+
+  private tell({ replica, firstDraw, stride, values }: StoredBlock): void {
+    if (firstDraw >= this.fit.snapshot.warmup) this.reporter.append(replica, firstDraw, stride, values);
+  }
+
+  private async commit(rounds: readonly Round[]): Promise<void> {
+    const { fitId, epoch, snapshot } = this.fit;
+    const { warmup } = snapshot;
+    const { from } = rounds[0];
+    const { to, turns } = rounds[rounds.length - 1];
+    const made = rounds.flatMap((round) => {
+      const astray = round.turns.find(
+        ({ first, count }) => first !== round.from || first + count !== round.to,
+      );
+      if (astray) throw new Error(`Replica ${astray.replica} is at draw ${astray.first}, not ${round.from}.`);
+      return round.turns;
+    });
+    const blocks = made.map((turn) => storedBlock(turn, warmup)).filter((block) => block !== null);
+    const states = turns.map(({ replica, state }) => ({ replica, state: Buffer.from(state) }));
+    const report = { ...this.report, acceptance: acceptanceOf(turns) };
+    const pace = this.pace.mark(to);
+    const standing = await this.persist('committing draws', () =>
+      commitDraws({ fitId, epoch, from, to, warmup, blocks, states, ...pace, report }),
+    );
+    if (!standing) return this.lost.abort();
+    this.report = report;
+    this.take(standing);
+    blocks.forEach((block) => this.tell(block));
+    await this.publish();
+  }
+
+  /** Looks at all that is committed; true where that ended the fit, or it is lost. */
+  private async look(): Promise<boolean> {
+    const { fitId, epoch, snapshot } = this.fit;
+    const { draws } = this.standing;
+    const report = await Promise.race([this.reporter.look(draws, this.report), this.overSettled]);
+    if (!report) return false;
+    const outcome = await this.persist('writing a report', () =>
+      commitLook({
+        fitId,
+        epoch,
+        draws,
+        report,
+        judge: (standing) => verdict(snapshot, report.gate.met, standing),
+      }),
+    );
+    if (!outcome) {
+      this.lost.abort();
+      return true;
+    }
+    this.report = report;
+    this.take(outcome);
+    await this.publish();
+    if (outcome.ended !== null) log.info({ fitId, epoch, draws, status: outcome.ended }, 'a fit ended');
+    return outcome.ended !== null;
+  }
+
+  private take({ draws, maxDraws, targetFrom, stopRequested }: Standing): void {
+    this.standing = { draws, maxDraws, targetFrom, stopRequested };
+    this.rounds.raise(this.fit.snapshot.warmup + maxDraws);
+  }
+
+  private persist<T>(what: string, act: () => Promise<T>): Promise<T> {
+    return untilDone(what, act, this.over);
+  }
+
+  private async renew(): Promise<void> {
+    const { fitId, epoch } = this.fit;
+    try {
+      if (!(await renewLease(fitId, epoch, this.settings.leaseMs))) this.lost.abort();
+    } catch (error) {
+      log.warn({ fitId, err: error }, 'a lease could not be renewed');
+    }
+  }
+
+  /** Tells whoever watches that there is something new; they read it from the database, also without being told. */
+  private async publish(): Promise<void> {
+    const { fitId } = this.fit;
+    await redis()
+      .publish(fitChannel(fitId), String(this.standing.draws))
+      .catch(() => undefined);
+  }
+}

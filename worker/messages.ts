@@ -1,0 +1,66 @@
+import type { FitModel } from '@/lib/services/fit-model';
+import type { StoredReport } from '@/lib/services/stored-report';
+
+/** What a thread is started with. */
+export interface ReplicaSetup {
+  model: FitModel;
+  /** Serialised state by replica, for those of this thread that have one. */
+  states: Map<number, Uint8Array>;
+}
+
+/** Asks for `draws` more recorded draws of one replica. */
+export interface Advance {
+  kind: 'advance';
+  replica: number;
+  draws: number;
+}
+
+export interface MoveTally {
+  name: string;
+  proposed: number;
+  accepted: number;
+}
+
+/** One block of one replica and the state at its end. */
+export interface Turn {
+  kind: 'turn';
+  replica: number;
+  first: number;
+  count: number;
+  width: number;
+  values: Float64Array;
+  state: Uint8Array;
+  moves: MoveTally[];
+}
+
+/** The thread can't go on. `told` is written for the person who started the fit; null where the fault is ours. */
+export interface Failure {
+  kind: 'failure';
+  told: string | null;
+  stack: string;
+}
+
+export type ReplicaAnswer = Turn | Failure;
+
+export interface ReportSetup {
+  model: FitModel;
+  target: { rhat: number; ess: number };
+}
+
+/** Stored rows that the thread is to remember: row i is recorded draw `first + i × stride`. */
+export interface Append {
+  kind: 'append';
+  replica: number;
+  first: number;
+  stride: number;
+  values: Float64Array;
+}
+
+export interface LookRequest {
+  kind: 'look';
+  draws: number;
+  before: StoredReport;
+}
+
+export type ReportQuestion = Append | LookRequest;
+export type ReportAnswer = { kind: 'report'; report: StoredReport } | Failure;
