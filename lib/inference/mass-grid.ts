@@ -20,42 +20,67 @@ export function cellCentres(edges: Float64Array): Float64Array {
  * when the next grid resolves it.
  */
 export function gatherEdges(edges: Float64Array, weights: Float64Array, n: number): Float64Array {
+  const out = new Float64Array(n + 1);
+  return out.slice(0, gatherEdgesInto(edges, weights, n, out, new Float64Array(weights.length)));
+}
+
+/**
+ * `gatherEdges` without allocation: writes at most n + 1 edges into `out` and returns how many (edges closer together than
+ * 1e-9 of the range are merged). `spread` is working space, one number a cell.
+ */
+export function gatherEdgesInto(
+  edges: Float64Array,
+  weights: Float64Array,
+  n: number,
+  out: Float64Array,
+  spread: Float64Array,
+): number {
   const cells = weights.length;
-  const spread = new Float64Array(cells);
   let total = 0;
   for (let i = 0; i < cells; i += 1) {
-    for (let j = Math.max(0, i - 2); j <= Math.min(cells - 1, i + 2); j += 1)
-      spread[i] = Math.max(spread[i], weights[j]);
-    total += spread[i];
+    let largest = 0;
+    for (let j = Math.max(0, i - 2); j <= Math.min(cells - 1, i + 2); j += 1) {
+      if (weights[j] > largest) largest = weights[j];
+    }
+    spread[i] = largest;
+    total += largest;
   }
   const lo = edges[0];
   const hi = edges[cells];
-  const half = Math.floor(n / 2);
-  const marks = Array.from(evenEdges(lo, hi, n - half));
-  if (total > 0) {
-    let sum = 0;
-    let cell = 0;
-    for (let k = 0; k < half; k += 1) {
-      const goal = ((k + 0.5) / half) * total;
+  const half = total > 0 ? Math.floor(n / 2) : 0;
+  const even = n - half;
+  const smallest = 1e-9 * (hi - lo);
+  let count = 1;
+  let sum = 0;
+  let cell = 0;
+  let nextEven = 1;
+  let nextStep = 0;
+  out[0] = lo;
+  while (nextEven <= even || nextStep < half) {
+    let step = Infinity;
+    if (nextStep < half) {
+      const goal = ((nextStep + 0.5) / half) * total;
       while (cell < cells - 1 && sum + spread[cell] < goal) {
         sum += spread[cell];
         cell += 1;
       }
-      const part = spread[cell] > 0 ? (goal - sum) / spread[cell] : 0.5;
-      marks.push(edges[cell] + Math.min(1, Math.max(0, part)) * (edges[cell + 1] - edges[cell]));
+      const part = spread[cell] > 0 ? Math.min(1, Math.max(0, (goal - sum) / spread[cell])) : 0.5;
+      step = edges[cell] + part * (edges[cell + 1] - edges[cell]);
     }
+    const evenly = nextEven <= even ? lo + ((hi - lo) * nextEven) / even : Infinity;
+    const mark = Math.min(step, evenly, hi);
+    if (step <= evenly) nextStep += 1;
+    else nextEven += 1;
+    if (mark - out[count - 1] > smallest) out[count++] = mark;
   }
-  marks.sort((a, b) => a - b);
-  const smallest = 1e-9 * (hi - lo);
-  const kept = marks.filter((mark, i) => i === 0 || mark - marks[i - 1] > smallest);
-  kept[kept.length - 1] = hi;
-  return Float64Array.from(kept);
+  out[count - 1] = hi;
+  return count;
 }
 
-/** The cell that holds x, or −1 outside the edges. */
-export function findCell(edges: Float64Array, x: number): number {
+/** The cell that holds x among the first `count` edges (all of them unless said), or −1 outside. */
+export function findCell(edges: Float64Array, x: number, count = edges.length): number {
   let low = 0;
-  let high = edges.length - 1;
+  let high = count - 1;
   if (!(x >= edges[0] && x <= edges[high])) return -1;
   while (high - low > 1) {
     const middle = (low + high) >> 1;
@@ -68,16 +93,28 @@ export function findCell(edges: Float64Array, x: number): number {
 /** A discrete distribution: cumulative sums of weights, for draws by bisection. */
 export class CellDistribution {
   private readonly cumulative: Float64Array;
-  readonly total: number;
+  private count = 0;
+  private total = 0;
 
-  /** `weights` ≥ 0, not all 0. */
-  constructor(weights: Float64Array) {
-    this.cumulative = new Float64Array(weights.length);
+  constructor(capacity: number) {
+    this.cumulative = new Float64Array(capacity);
+  }
+
+  /** A distribution of these weights, ≥ 0 and not all 0. */
+  static of(weights: Float64Array): CellDistribution {
+    const cells = new CellDistribution(weights.length);
+    cells.set(weights, weights.length);
+    return cells;
+  }
+
+  /** Takes the first `count` weights; no allocation. */
+  set(weights: Float64Array, count: number): void {
     let sum = 0;
-    for (let i = 0; i < weights.length; i += 1) {
+    for (let i = 0; i < count; i += 1) {
       sum += weights[i];
       this.cumulative[i] = sum;
     }
+    this.count = count;
     this.total = sum;
   }
 
@@ -85,7 +122,7 @@ export class CellDistribution {
   at(u: number): number {
     const goal = u * this.total;
     let low = -1;
-    let high = this.cumulative.length - 1;
+    let high = this.count - 1;
     while (high - low > 1) {
       const middle = (low + high) >> 1;
       if (this.cumulative[middle] >= goal) high = middle;
@@ -94,10 +131,10 @@ export class CellDistribution {
     return high;
   }
 
-  /** ln probability of a cell; −Infinity for an empty one. */
-  logProbability(cell: number): number {
+  /** Probability of a cell. */
+  probability(cell: number): number {
     const before = cell > 0 ? this.cumulative[cell - 1] : 0;
-    return Math.log((this.cumulative[cell] - before) / this.total);
+    return (this.cumulative[cell] - before) / this.total;
   }
 }
 

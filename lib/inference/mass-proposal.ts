@@ -60,7 +60,7 @@ class GridMixture implements MassProposal {
     private readonly layout: ParameterLayout,
     private readonly floor: number,
     private readonly drawCell: (rng: Rng, full: Float64Array) => void,
-    private readonly lnCell: (full: Float64Array) => number,
+    private readonly cellDensity: (full: Float64Array) => number,
   ) {
     this.drawn = new Float64Array(layout.masses.length);
   }
@@ -76,7 +76,7 @@ class GridMixture implements MassProposal {
 
   logDensity(to: Float64Array): number {
     const prior = Math.exp(lnMassPrior(this.layout, to));
-    return Math.log((1 - this.floor) * Math.exp(this.lnCell(to)) + this.floor * prior);
+    return Math.log((1 - this.floor) * this.cellDensity(to) + this.floor * prior);
   }
 }
 
@@ -118,7 +118,7 @@ export function lineProposal(
   const weights = temperedWeights(logValues, temper);
   const priors = cellPriors(layout, field, edges);
   for (let i = 0; i < weights.length; i += 1) weights[i] *= priors[i];
-  const cells = new CellDistribution(weights);
+  const cells = CellDistribution.of(weights);
   const grid = edges;
   // With other masses fixed, the order is left to the prior: a mass out of order is never accepted.
   const mixture = others.length === 0 ? floor : Math.max(floor, 1e-3);
@@ -131,7 +131,7 @@ export function lineProposal(
     },
     (to) => {
       const cell = findCell(grid, to[index]);
-      return cell < 0 ? -Infinity : cells.logProbability(cell) - Math.log(grid[cell + 1] - grid[cell]);
+      return cell < 0 ? 0 : cells.probability(cell) / (grid[cell + 1] - grid[cell]);
     },
   );
 }
@@ -199,7 +199,7 @@ export function planeProposal(
   for (let i = 0; i < xPriors.length; i += 1) {
     for (let j = 0; j < columns; j += 1) weights[i * columns + j] *= xPriors[i] * yPriors[j];
   }
-  const cells = new CellDistribution(weights);
+  const cells = CellDistribution.of(weights);
   const [gridX, gridY] = [x, y];
   return new GridMixture(
     layout,
@@ -214,9 +214,9 @@ export function planeProposal(
     (to) => {
       const i = findCell(gridX, to[a]);
       const j = findCell(gridY, to[b]);
-      if (i < 0 || j < 0) return -Infinity;
+      if (i < 0 || j < 0) return 0;
       const area = (gridX[i + 1] - gridX[i]) * (gridY[j + 1] - gridY[j]);
-      return cells.logProbability(i * columns + j) - Math.log(area);
+      return cells.probability(i * columns + j) / area;
     },
   );
 }
@@ -287,7 +287,7 @@ export class OneMassProposal implements MassProposal {
     if (changed !== 1) return -Infinity;
     const cell = findCell(this.edges, fresh);
     if (cell < 0) return -Infinity;
-    return this.given(to, fresh).logProbability(cell) - Math.log(this.edges[cell + 1] - this.edges[cell]);
+    return Math.log(this.given(to, fresh).probability(cell) / (this.edges[cell + 1] - this.edges[cell]));
   }
 
   /** The distribution over cells of one mass given all the others in `full`, kept until the others change. */
@@ -323,7 +323,7 @@ export class OneMassProposal implements MassProposal {
     const { floor } = this.settings;
     for (let i = 0; i < weights.length; i += 1)
       weights[i] = (1 - floor) * (weights[i] / total) + floor * this.evenly[i];
-    cells.cells = new CellDistribution(weights);
+    cells.cells = CellDistribution.of(weights);
     cells.held = held;
     cells.others.set(others);
     return cells.cells;

@@ -17,7 +17,7 @@ import type { ParameterLayout } from './parameter-layout';
 import { MixingStage } from './stage-mixing';
 import { PolarStage } from './stage-polar';
 import { QuadratureStage } from './stage-quadrature';
-import { fillIn } from './target';
+import { buildCoefficients, fillIn } from './target';
 import type { WhitenedField } from './whitened-field';
 import type { Whitening } from './whitening';
 
@@ -31,6 +31,7 @@ class SpectralJump implements JumpProposal {
   private readonly full: Float64Array;
   private readonly before: Float64Array;
   private readonly coefficients: Float64Array;
+  private readonly writeCoefficients: (full: Float64Array, out: Float64Array) => void;
   // The density of the rest given the masses depends on the end point alone: keep the last few.
   private readonly keptPoints: Float64Array[];
   private readonly keptValues: Float64Array;
@@ -43,6 +44,7 @@ class SpectralJump implements JumpProposal {
     private readonly stage: FieldStage | null,
   ) {
     this.full = Float64Array.from(layout.base);
+    this.writeCoefficients = buildCoefficients(layout);
     this.before = Float64Array.from(layout.base);
     this.coefficients = new Float64Array(layout.template.columnCount);
     this.keptPoints = Array.from({ length: 4 }, () => new Float64Array(layout.free.length).fill(NaN));
@@ -55,7 +57,7 @@ class SpectralJump implements JumpProposal {
     this.masses.draw(rng, full);
     this.loadFields();
     this.stage?.draw(rng, system, full);
-    layout.template.coefficients(full, this.coefficients);
+    this.writeCoefficients(full, this.coefficients);
     system.model.drawBackground(rng, system.moments, this.coefficients, full);
     for (let i = 0; i < layout.free.length; i += 1) out[i] = full[layout.free[i]];
   }
@@ -71,7 +73,7 @@ class SpectralJump implements JumpProposal {
 
     this.loadFields();
     let rest = this.stage ? this.stage.logDensity(system, full) : 0;
-    layout.template.coefficients(full, this.coefficients);
+    this.writeCoefficients(full, this.coefficients);
     rest += system.model.lnBackgroundDensity(system.moments, this.coefficients, full);
     if (Number.isNaN(rest)) rest = -Infinity;
     this.keptPoints[this.next].set(to);

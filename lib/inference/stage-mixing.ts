@@ -1,4 +1,4 @@
-import { logIsotropicDensity, mixingWeights } from '@/lib/templates';
+import { drawIsotropicAngles, logIsotropicDensity, mixingWeights } from '@/lib/templates';
 import type { Rng } from '@/lib/sampler';
 import type { FieldStage, FieldSystem } from './field-system';
 import { FieldUnits } from './field-units';
@@ -9,17 +9,9 @@ import {
   lnCoefficientDensity,
   type LinearReference,
 } from './linear-reference';
-import {
-  CellDistribution,
-  cellCentres,
-  evenEdges,
-  findCell,
-  gatherEdges,
-  temperedWeights,
-} from './mass-grid';
+import { CellDistribution, evenEdges, findCell, gatherEdgesInto } from './mass-grid';
 import { scalarPriorOf, type ParameterLayout } from './parameter-layout';
 import { drawFromPrior, lnPriorDensity, priorSupport } from './priors';
-import { drawIsotropicAngles } from '@/lib/templates';
 
 /** Cells of each sampled angle when so many are sampled. */
 const CELLS: Readonly<Record<number, number>> = { 1: 64, 2: 16, 3: 8 };
@@ -49,6 +41,14 @@ export class MixingStage implements FieldStage {
   private readonly angleScratch: Float64Array;
   private readonly drawn: Float64Array;
   private readonly weights: Float64Array;
+  private readonly gathered: Float64Array;
+  private readonly spread: Float64Array;
+  private readonly cells: CellDistribution;
+  private edgeCount = 0;
+  private laid = false;
+  private readonly laidMasses: Float64Array;
+  private laidVertexAngle = NaN;
+  private readonly vertexAngle: number;
   private readonly form = { precision: 0, linear: 0 };
 
   constructor(private readonly layout: ParameterLayout) {
@@ -75,6 +75,11 @@ export class MixingStage implements FieldStage {
     this.cellWeights = [];
     this.cellLogPriors = new Float64Array(count);
     this.values = new Float64Array(count);
+    this.gathered = new Float64Array(count + 1);
+    this.spread = new Float64Array(count);
+    this.cells = new CellDistribution(count);
+    this.laidMasses = new Float64Array(this.fields).fill(NaN);
+    this.vertexAngle = layout.template.parameters.findIndex(({ role }) => role === 'vertex-angle');
     for (let cell = 0; cell < count; cell += 1) {
       this.placeCentre(cell);
       this.cellWeights.push(mixingWeights(this.angleScratch));
@@ -127,13 +132,15 @@ export class MixingStage implements FieldStage {
       }
       return;
     }
-    const { edges, cells } = this.angleGrid(full);
+    this.layAngles(full);
+    const { edges, cells, edgeCount } = this;
     let cell = cells.at(rng.uniform());
     for (let d = free.length - 1; d >= 0; d -= 1) {
-      const size = edges[d].length - 1;
+      const axis = free.length === 1 ? this.gathered : edges[d];
+      const size = free.length === 1 ? edgeCount - 1 : axis.length - 1;
       const at = cell % size;
       cell = (cell - at) / size;
-      full[layout.angles[free[d]]] = edges[d][at] + (edges[d][at + 1] - edges[d][at]) * rng.uniform();
+      full[layout.angles[free[d]]] = axis[at] + (axis[at + 1] - axis[at]) * rng.uniform();
     }
   }
 
@@ -141,36 +148,44 @@ export class MixingStage implements FieldStage {
     const { layout, free } = this;
     for (let k = 0; k < layout.angles.length; k += 1) this.drawn[k] = full[layout.angles[k]];
     const prior = Math.exp(this.lnAnglePrior(this.drawn));
-    const { edges, cells } = this.angleGrid(full);
+    this.layAngles(full);
     let cell = 0;
     let volume = 1;
     for (let d = 0; d < free.length; d += 1) {
-      const at = findCell(edges[d], full[layout.angles[free[d]]]);
+      const axis = free.length === 1 ? this.gathered : this.edges[d];
+      const count = free.length === 1 ? this.edgeCount : axis.length;
+      const at = findCell(axis, full[layout.angles[free[d]]], count);
       if (at < 0) return -Infinity;
-      cell = cell * (edges[d].length - 1) + at;
-      volume *= edges[d][at + 1] - edges[d][at];
+      cell = cell * (count - 1) + at;
+      volume *= axis[at + 1] - axis[at];
     }
-    return Math.log(((1 - FLOOR) * Math.exp(cells.logProbability(cell))) / volume + FLOOR * prior);
+    return Math.log(((1 - FLOOR) * this.cells.probability(cell)) / volume + FLOOR * prior);
   }
 
-  /** The grid of the angles at the settled masses. */
-  private angleGrid(full: Float64Array): { edges: Float64Array[]; cells: CellDistribution } {
-    const { cellWeights, values } = this;
-    for (let cell = 0; cell < values.length; cell += 1) {
-      values[cell] = this.lnGain(cellWeights[cell], full) + this.cellLogPriors[cell];
+  /** Lays the grid of the angles at the settled masses: `cells`, on `edges`, or on `gathered` for one sampled angle. */
+  private layAngles(full: Float64Array): void {
+    if (this.laid) return;
+    this.laid = true;
+    const { cellWeights, cellLogPriors, values, cells, gathered } = this;
+    const count = values.length;
+    for (let cell = 0; cell < count; cell += 1) {
+      values[cell] = this.lnGain(cellWeights[cell], full) + cellLogPriors[cell];
     }
-    const weights = temperedWeights(values, 1);
-    if (this.free.length > 1) return { edges: this.edges, cells: new CellDistribution(weights) };
-    const edges = gatherEdges(this.edges[0], weights, this.edges[0].length - 1);
-    const finer = cellCentres(edges);
-    for (let i = 0; i < finer.length; i += 1) {
-      this.angleScratch[this.free[0]] = finer[i];
+    exponentiate(values, count);
+    if (this.free.length > 1) {
+      cells.set(values, count);
+      return;
+    }
+    this.edgeCount = gatherEdgesInto(this.edges[0], values, count, gathered, this.spread);
+    const [k] = this.free;
+    for (let i = 0; i < this.edgeCount - 1; i += 1) {
+      this.angleScratch[k] = 0.5 * (gathered[i] + gathered[i + 1]);
       mixingWeights(this.angleScratch, this.weights);
-      finer[i] = this.lnGain(this.weights, full) + this.lnAnglePrior(this.angleScratch);
+      values[i] = this.lnGain(this.weights, full) + this.lnAnglePrior(this.angleScratch);
     }
-    const refined = temperedWeights(finer, 1);
-    for (let i = 0; i < refined.length; i += 1) refined[i] *= edges[i + 1] - edges[i];
-    return { edges: [edges], cells: new CellDistribution(refined) };
+    exponentiate(values, this.edgeCount - 1);
+    for (let i = 0; i < this.edgeCount - 1; i += 1) values[i] *= gathered[i + 1] - gathered[i];
+    cells.set(values, this.edgeCount - 1);
   }
 
   /** ln prior density of the sampled angles, the isotropic one together. */
@@ -204,9 +219,19 @@ export class MixingStage implements FieldStage {
 
   /** Products of the fields' signals u_iᵀ(…)u_j at the masses of the system. */
   private settle(system: FieldSystem, full: Float64Array): void {
-    const { fields, gram, linear } = this;
+    const { fields, gram, linear, layout } = this;
     const u = this.units.update(full);
     const n = system.size;
+    // The grid of the angles hangs on these products (and a fixed g, which never changes) alone.
+    let same = true;
+    for (let f = 0; f < fields; f += 1) {
+      if (this.laidMasses[f] !== full[layout.masses[f]]) same = false;
+      this.laidMasses[f] = full[layout.masses[f]];
+    }
+    const angle = this.vertexAngle >= 0 ? full[this.vertexAngle] : 0;
+    if (same && angle === this.laidVertexAngle) return;
+    this.laidVertexAngle = angle;
+    this.laid = false;
     for (let i = 0; i < fields; i += 1) {
       const ua = u[2 * i];
       const ub = u[2 * i + 1];
@@ -260,4 +285,11 @@ export class MixingStage implements FieldStage {
     const shifted = form.linear + precision * mean;
     return 0.5 * ((shifted * shifted) / total - precision * mean * mean - Math.log(total / precision));
   }
+}
+
+/** Replaces the first `count` logarithms by exp(value − largest). */
+function exponentiate(values: Float64Array, count: number): void {
+  let max = -Infinity;
+  for (let i = 0; i < count; i += 1) if (values[i] > max) max = values[i];
+  for (let i = 0; i < count; i += 1) values[i] = Math.exp(values[i] - max);
 }

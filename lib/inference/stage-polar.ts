@@ -48,16 +48,21 @@ export class PolarStage implements FieldStage {
     let correction = 0;
     for (let f = 0; f < typical.length; f += 1) {
       let square = 0;
+      let spread = 0;
       for (let j = 2 * f; j < 2 * f + 2; j += 1) {
         inverse.fill(0);
         inverse[j] = 1;
         forwardSolve(factor, n, inverse);
         square += mean[j] * mean[j];
-        for (let i = j; i < n; i += 1) square += inverse[i] * inverse[i];
+        for (let i = j; i < n; i += 1) spread += inverse[i] * inverse[i];
       }
-      const { variance } = map.priors[f];
-      typical[f] = Math.sqrt(square);
-      correction += 0.5 * (square / variance) + Math.log(variance / typical[f]);
+      const { variance, hi } = map.priors[f];
+      const found = Math.sqrt(square + spread);
+      // Beyond the amplitude's upper end only the part of the conditional that reaches back inside counts.
+      const beyond = Math.max(0, found - hi);
+      typical[f] = Math.min(hi, found);
+      correction +=
+        (0.5 * typical[f] ** 2) / variance + Math.log(variance / typical[f]) - (0.5 * beyond ** 2) / spread;
     }
     const evidence = system.model.logEvidence(-gain, logDeterminant(factor, n) + logReference);
     return evidence + correction + map.lnAmplitudePrior(typical);

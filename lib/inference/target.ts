@@ -1,5 +1,6 @@
-import { drawIsotropicAngles, logIsotropicDensity } from '@/lib/templates';
+import { drawIsotropicAngles, logIsotropicDensity, mixingWeights } from '@/lib/templates';
 import type { Rng, Target } from '@/lib/sampler';
+import { FieldUnits } from './field-units';
 import type { Likelihood } from './likelihoods';
 import { drawOrderedMasses } from './ordered-masses';
 import { scalarPriorOf, type ParameterLayout } from './parameter-layout';
@@ -25,6 +26,32 @@ export function fillIn(layout: ParameterLayout, x: ArrayLike<number>, full: Floa
 }
 
 /**
+ * The coefficients of all columns, as the template gives them. For exchange with mixing g w_i u_i(μ_i): the factors u_i, which
+ * take Gamma functions, are kept while masses and vertex angle stay.
+ */
+export function buildCoefficients(layout: ParameterLayout): (full: Float64Array, out: Float64Array) => void {
+  const { template, coupling, phases, background } = layout;
+  const free = template.structure === 'mixed-polar';
+  if (template.structure !== 'mixed' && !free) return (full, out) => template.coefficients(full, out);
+  const units = new FieldUnits(layout);
+  const fields = layout.masses.length;
+  const angles = new Float64Array(layout.angles.length);
+  const weights = new Float64Array(fields);
+  return (full, out) => {
+    const u = units.update(full);
+    for (let k = 0; k < angles.length; k += 1) angles[k] = full[layout.angles[k]];
+    mixingWeights(angles, weights);
+    for (let f = 0; f < fields; f += 1) {
+      const strength = full[coupling] * weights[f];
+      const phase = free ? full[phases[f]] : 0;
+      out[2 * f] = strength * (free ? u[2 * f] * Math.cos(phase) : u[2 * f]);
+      out[2 * f + 1] = strength * (free ? -u[2 * f] * Math.sin(phase) : u[2 * f + 1]);
+    }
+    for (let j = 0; j < background.length; j += 1) out[2 * fields + j] = full[background[j]];
+  };
+}
+
+/**
  * χ² of a full parameter vector with the covariance as given, from whitened columns: Σ_i (d_i − Σ_j c_j B_ij)².
  * No allocation after construction.
  */
@@ -39,8 +66,9 @@ export function buildChiSquare(
   const coefficients = new Float64Array(template.columnCount);
   const residual = new Float64Array(p);
   const fixedCount = template.fixedColumns.length;
+  const write = buildCoefficients(layout);
   return (full) => {
-    template.coefficients(full, coefficients);
+    write(full, coefficients);
     residual.set(whitening.data);
     let at = 0;
     for (let f = 0; f < fields.length; f += 1) {
