@@ -58,6 +58,6 @@ export function summariseCircle(chains: readonly Float64Array[], period: number)
   return {
     mean: resultant > 0 ? (direction <= -Math.PI ? period / 2 : direction / turn) : NaN,
     resultant,
-    sd: Math.sqrt(-2 * Math.log(resultant)) / turn,
+    sd: Math.sqrt(2 * Math.log(1 / resultant)) / turn,
   };
 }

@@ -19,7 +19,8 @@ export function ascendingOrder(values: Float64Array): Uint32Array {
     low[i] = negative ? ~bits[0] : bits[0];
     high[i] = negative ? ~bits[1] : bits[1] ^ 0x80000000;
   }
-  let order = Uint32Array.from(values, (_, i) => i);
+  let order = new Uint32Array(size);
+  for (let i = 0; i < size; i++) order[i] = i;
   let sorted = new Uint32Array(size);
   const counts = new Uint32Array(BUCKETS);
   for (const word of [low, high]) {
