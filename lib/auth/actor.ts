@@ -2,5 +2,4 @@
 export interface Actor {
   userId: string;
   email: string;
-  siteAdmin: boolean;
 }

@@ -24,5 +24,5 @@ export async function actorOfSession(sessionToken: string): Promise<Actor | null
   const session = await Session.findOne({ where: { sessionToken } });
   if (!session?.userId || session.expires.getTime() <= Date.now()) return null;
   const user = await User.findByPk(session.userId);
-  return user && { userId: user.id, email: user.email, siteAdmin: user.siteAdmin };
+  return user && { userId: user.id, email: user.email };
 }

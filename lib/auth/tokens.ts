@@ -26,7 +26,7 @@ export async function actorOfToken(token: string): Promise<{ actor: Actor; token
     await found.update({ lastUsedAt: now });
   }
   return {
-    actor: { userId: user.id, email: user.email, siteAdmin: user.siteAdmin },
+    actor: { userId: user.id, email: user.email },
     tokenId: found.id,
   };
 }

@@ -1,15 +1,12 @@
 import { Group, Membership } from '@/models';
 import { database } from '@/lib/db';
 import { notFound } from '@/lib/errors';
-import { actionsFor } from '@/lib/policies';
-import {
-  roleSchema,
-  type Group as GroupDto,
-  type MeasurementSummary,
-  type NotebookSummary,
-} from '@/lib/schemas';
+import { actionsFor, may } from '@/lib/policies';
+import { roleSchema, type Group as GroupDto } from '@/lib/schemas';
 import type { Access, Actor } from './access';
 import { recordEvent } from './audit';
+import { measurementSummaries } from './measurements';
+import { notebookSummaries } from './notebooks';
 import { emailsOf } from './people';
 
 /** Creates a group with its creator as lead. */
@@ -29,32 +26,29 @@ export async function createGroup(actor: Actor, body: { name: string }): Promise
   });
 }
 
-/** What a member finds in a group; each list is empty where the role doesn't read it. */
-export interface GroupContents {
-  notebooks: NotebookSummary[];
-  measurements: MeasurementSummary[];
-}
-
-/** A group's home as the asking member sees it. */
-export async function readGroup(access: Access, contents: GroupContents): Promise<GroupDto> {
+/** A group's home as the asking member sees it: what the role doesn't read is left out. */
+export async function readGroup(access: Access): Promise<GroupDto> {
   access.require('group.read');
-  const [group, memberships] = await Promise.all([
-    Group.findByPk(access.groupId),
-    Membership.findAll({ where: { groupId: access.groupId }, order: [['createdAt', 'ASC']] }),
+  const { groupId, role } = access;
+  const [group, memberships, notebooks, measurements] = await Promise.all([
+    Group.findByPk(groupId),
+    Membership.findAll({ where: { groupId }, order: [['createdAt', 'ASC']] }),
+    may(role, 'notebook.read') ? notebookSummaries(groupId) : [],
+    may(role, 'measurement.read') ? measurementSummaries(groupId) : [],
   ]);
   if (!group) throw notFound('group');
   const emails = await emailsOf(memberships.map(({ userId }) => userId));
   return {
     id: group.id,
     name: group.name,
-    role: access.role,
-    may: actionsFor(access.role),
-    members: memberships.flatMap(({ userId, role }) => {
+    role,
+    may: actionsFor(role),
+    members: memberships.flatMap(({ userId, role: theirs }) => {
       const email = emails.get(userId);
-      return email === undefined ? [] : [{ email, role: roleSchema.parse(role) }];
+      return email === undefined ? [] : [{ email, role: roleSchema.parse(theirs) }];
     }),
-    notebooks: contents.notebooks,
-    measurements: contents.measurements,
+    notebooks,
+    measurements,
     createdAt: group.createdAt.toISOString(),
   };
 }

@@ -1,3 +1,5 @@
+import { execFile } from 'node:child_process';
+import { promisify } from 'node:util';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { POST as createGroupRoute } from '@/app/api/v1/groups/route';
 import { POST as inviteRoute } from '@/app/api/v1/groups/[id]/invitations/route';
@@ -66,6 +68,17 @@ describe('API tokens', () => {
     const cookie = await createSession(await createUser());
     expect((await call(meRoute, { cookie })).status).toBe(200);
     expect((await call(meRoute, { cookie, token: 'bn_unknown' })).status).toBe(401);
+  });
+
+  it('are printed by the command alone, with nothing else on standard output', async () => {
+    const user = await createUser();
+    const command = ['--import', 'tsx', 'scripts/token.ts', '--email', user.email, '--name', 'cluster'];
+    const { stdout } = await promisify(execFile)(process.execPath, command);
+    expect(stdout).toMatch(/^bn_[A-Za-z0-9_-]{43}\n$/);
+    expect((await call(meRoute, { token: stdout.trim() })).status).toBe(200);
+    expect((await ApiToken.findOne({ where: { userId: user.userId } }))?.name).toBe('cluster');
+    const unknown = promisify(execFile)(process.execPath, command.with(4, 'nobody@example.org'));
+    await expect(unknown).rejects.toMatchObject({ stdout: '', code: 1 });
   });
 
   it('are for people who have an account', async () => {

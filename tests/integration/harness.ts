@@ -15,7 +15,7 @@ export const unique = (word: string): string => `${word}-${randomBytes(5).toStri
 export async function createUser(email = `${unique('person')}@example.org`): Promise<Actor> {
   database();
   const user = await User.create({ email, emailVerified: new Date() });
-  return { userId: user.id, email, siteAdmin: false };
+  return { userId: user.id, email };
 }
 
 export async function createGroup(name = unique('group')): Promise<string> {

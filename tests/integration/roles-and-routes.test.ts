@@ -1,0 +1,193 @@
+import { randomUUID } from 'node:crypto';
+import { readdirSync } from 'node:fs';
+import path from 'node:path';
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { config } from '@/lib/config';
+import { database } from '@/lib/db';
+import { recordKindOf, type Verb } from '@/lib/http/route';
+import { rowOf, routes, type RouteKey } from '@/lib/http/routes';
+import { may } from '@/lib/policies';
+import { roles } from '@/lib/schemas';
+import { Fit, Measurement, MeasurementVersion, Notebook, NotebookRevision } from '@/models';
+import { call, closeConnections, createGroup, createMember, createSession, errorOf } from './harness';
+
+const folder = path.join(process.cwd(), 'app/api/v1');
+const verbs = ['GET', 'POST', 'PUT', 'PATCH', 'DELETE'] as const;
+
+/** Every verb that a route file exports, by `METHOD /path/:id`. */
+async function exportedVerbs(): Promise<Map<string, Verb>> {
+  const found = new Map<string, Verb>();
+  const files = readdirSync(folder, { recursive: true, encoding: 'utf8' }).filter((file) =>
+    /(^|\/)route\.ts$/.test(file),
+  );
+  for (const file of files) {
+    const route = (await import(path.join(folder, file))) as Partial<Record<(typeof verbs)[number], Verb>>;
+    const place = `/${path.dirname(file)}`.replace(/\[(\w+)\]/g, ':$1');
+    for (const verb of verbs) if (route[verb]) found.set(`${verb} ${place}`, route[verb]);
+  }
+  return found;
+}
+
+const exported = await exportedVerbs();
+const keys = Object.keys(routes) as RouteKey[];
+
+/** One of each record, with nothing in it but what it needs to exist. */
+async function createRecords(groupId: string, userId: string) {
+  const now = new Date();
+  const sha256 = '0'.repeat(64);
+  const measurement = await Measurement.create({
+    groupId,
+    name: 'm',
+    description: '',
+    blind: false,
+    simulated: true,
+    createdBy: userId,
+    createdAt: now,
+  });
+  const version = await MeasurementVersion.create({
+    measurementId: measurement.id,
+    version: 1,
+    rows: 0,
+    kappaMin: 0.1,
+    kappaMax: 0.2,
+    hasBinEdges: false,
+    covarianceSource: 'file',
+    mockCount: null,
+    sha256,
+    files: [],
+    mapping: {},
+    checks: [],
+    points: Buffer.alloc(0),
+    covariance: Buffer.alloc(0),
+    createdBy: userId,
+    createdAt: now,
+  });
+  const notebook = await Notebook.create({
+    groupId,
+    number: 1,
+    title: 'n',
+    revision: 1,
+    measurementVersionId: version.id,
+    createdBy: userId,
+    createdAt: now,
+    updatedBy: userId,
+    updatedAt: now,
+  });
+  await NotebookRevision.create({
+    notebookId: notebook.id,
+    revision: 1,
+    title: 'n',
+    settings: {
+      cuts: {},
+      likelihood: { kind: 'normal' },
+      template: { id: 'background', version: 1, options: {} },
+      priors: {},
+    },
+    sections: [],
+    createdBy: userId,
+    createdAt: now,
+  });
+  const fit = await Fit.create({
+    groupId,
+    notebookId: notebook.id,
+    number: 1,
+    revision: 1,
+    measurementVersionId: version.id,
+    snapshot: {},
+    snapshotSha256: sha256,
+    maxDraws: 100,
+    targetRhat: 1.01,
+    targetEss: 400,
+    status: 'stopped',
+    startedBy: userId,
+    createdAt: now,
+  });
+  return { group: groupId, measurement: measurement.id, notebook: notebook.id, fit: fit.id };
+}
+
+let records: Awaited<ReturnType<typeof createRecords>>;
+const tokens = new Map<string, string>();
+let outsider: Awaited<ReturnType<typeof createMember>>;
+
+beforeAll(async () => {
+  database();
+  const groupId = await createGroup();
+  for (const role of roles) {
+    const member = await createMember(groupId, role);
+    tokens.set(role, member.token);
+    if (role === 'lead') records = await createRecords(groupId, member.user.userId);
+  }
+  outsider = await createMember(await createGroup(), 'lead');
+});
+afterAll(closeConnections);
+
+const refusal = (status: number) => status === 401 || status === 403 || status === 404;
+
+/** Calls a route with a body that no schema takes: who may come in hears of the body, who may not hears of that. */
+function knock(key: RouteKey, how: { token?: string; cookie?: string; origin?: string; id?: string }) {
+  const [method] = key.split(' ');
+  const { permission } = rowOf(key);
+  const kind = permission === 'anyone' || permission === 'user' ? null : recordKindOf(key);
+  const id = how.id ?? (kind === null ? 'background' : records[kind]);
+  return call(exported.get(key)!, {
+    method,
+    ...how,
+    params: { id },
+    ...(method === 'GET' ? {} : { body: '{"nonsense":', headers: { 'content-type': 'application/json' } }),
+  });
+}
+
+describe('the table of routes', () => {
+  it('has a row for every verb that a route file exports, and a file for every row', () => {
+    expect([...exported.keys()].sort()).toEqual([...keys].sort());
+  });
+
+  it.each(keys)('%s exports the verb and the permission of its row', (key) => {
+    const { route, permission } = exported.get(key)!;
+    expect([route, permission]).toEqual([key, rowOf(key).permission]);
+  });
+});
+
+const open = keys.filter((key) => rowOf(key).permission === 'anyone');
+const signedIn = keys.filter((key) => rowOf(key).permission !== 'anyone');
+const ofGroups = signedIn.filter((key) => rowOf(key).permission !== 'user');
+const unsafe = signedIn.filter((key) => !key.startsWith('GET '));
+
+describe('roles × routes', () => {
+  it.each(open)('%s answers without an account', async (key) => {
+    expect(refusal((await knock(key, {})).status)).toBe(false);
+  });
+
+  it.each(signedIn)('%s answers 401 without a sign-in and with a bad token', async (key) => {
+    expect((await errorOf(await knock(key, {}))).status).toBe(401);
+    expect((await errorOf(await knock(key, { token: 'bn_bad' }))).status).toBe(401);
+  });
+
+  it.each(unsafe)('%s refuses a session from another origin', async (key) => {
+    const cookie = await createSession(outsider.user);
+    expect((await errorOf(await knock(key, { cookie, origin: 'https://elsewhere.example' }))).status).toBe(
+      403,
+    );
+    expect((await errorOf(await knock(key, { cookie, origin: config().url }))).status).not.toBe(403);
+  });
+
+  it.each(ofGroups.flatMap((key) => roles.map((role) => [key, role] as const)))(
+    '%s for a %s is as the policies say',
+    async (key, role) => {
+      const { permission } = rowOf(key);
+      if (permission === 'anyone' || permission === 'user') throw new Error('not of a group');
+      const answer = await knock(key, { token: tokens.get(role) });
+      await answer.body?.cancel();
+      const kind = recordKindOf(key);
+      if (may(role, permission)) expect(refusal(answer.status)).toBe(false);
+      else expect(answer.status).toBe(may(role, `${kind}.read`) ? 403 : 404);
+    },
+  );
+
+  it.each(ofGroups)('%s answers a foreign record and a missing one alike', async (key) => {
+    const foreign = await (await knock(key, { token: outsider.token })).text();
+    const missing = await (await knock(key, { token: outsider.token, id: randomUUID() })).text();
+    expect(JSON.parse(foreign)).toMatchObject({ error: { code: 'not_found' } });
+    expect(foreign).toBe(missing);
+  });
+});
