@@ -18,22 +18,30 @@ const largest = (length: number, value: (i: number) => number): number =>
 /** Power p of a background coefficient `cm1`, `c0`, … `c4`. */
 const powerOf = (name: string): number => Number(name.slice(1).replace('m', '-'));
 
-/** Size that a coefficient must have for its term alone to reach the data; null for what isn't a coefficient. */
+/** The middle of the values, the upper one of two. */
+const middle = (values: number[]): number => values.sort((a, b) => a - b)[values.length >> 1];
+
+/**
+ * Size that a coefficient must have for its term alone to reach the data; null for what isn't a coefficient. For an
+ * amplitude of κ^½ the median of |S|/√κ, since the largest κ belong to the background; for a background term
+ * max |S| / max κ^p.
+ */
 function coefficientScale({ role, name }: ParameterDeclaration, { kappa, S }: DataScale): number | null {
   const { length } = kappa;
-  if (role === 'quadrature' || role === 'amplitude')
-    return largest(length, (i) => S[i] / Math.sqrt(kappa[i]));
+  if (role === 'quadrature' || role === 'amplitude') {
+    return middle(Array.from({ length }, (_, i) => Math.abs(S[i]) / Math.sqrt(kappa[i])));
+  }
   if (role !== 'background') return null;
   return largest(length, (i) => S[i]) / largest(length, (i) => kappa[i] ** powerOf(name));
 }
 
 /**
  * The prior of a parameter that nobody gave one. It is the template's own, unless the data are out of its reach: where a
- * coefficient's scale s (max |S|/√κ for an amplitude of κ^½, max |S| / max κ^p for a background term) lies beyond three
- * sd of a normal prior about zero, or beyond the end of a uniform one, that sd or end becomes 3 s, rounded up to one
- * digit. Priors are only ever widened, so that data of any unit can be fitted and ordinary data meet the template's
- * published defaults. The coupling g is left alone: its scale hangs on the mass by many powers of ten. Without `data`
- * (a blind measurement, of whose size a prior would tell) the template's own prior stands.
+ * coefficient's scale s lies beyond three sd of a normal prior about zero, or beyond the end of a uniform one, that sd or
+ * end becomes 3 s, rounded up to one digit. Priors are only ever widened, so that a large background or another
+ * normalisation of S is not fought by a prior that nobody chose. The coupling g is left alone: its scale hangs on the
+ * mass by many powers of ten. Without `data` (a blind measurement, of whose size a prior would tell) the template's own
+ * prior stands.
  */
 export function defaultPrior(declaration: ParameterDeclaration, data: DataScale | null): Prior {
   const prior = declaration.defaultPrior;
