@@ -6,8 +6,8 @@ import { config } from '@/lib/config';
 import { database } from '@/lib/db';
 import { recordKindOf, type Verb } from '@/lib/http/route';
 import { rowOf, routes, type RouteKey } from '@/lib/http/routes';
-import { may } from '@/lib/policies';
-import { roles } from '@/lib/schemas';
+import { actionsFor, may } from '@/lib/policies';
+import { groupSchema, roles, type Role } from '@/lib/schemas';
 import { Fit, Measurement, MeasurementVersion, Notebook, NotebookRevision } from '@/models';
 import { call, closeConnections, createGroup, createMember, createSession, errorOf } from './harness';
 
@@ -189,5 +189,25 @@ describe('roles × routes', () => {
     const missing = await (await knock(key, { token: outsider.token, id: randomUUID() })).text();
     expect(JSON.parse(foreign)).toMatchObject({ error: { code: 'not_found' } });
     expect(foreign).toBe(missing);
+  });
+});
+
+describe('a group’s home', () => {
+  const home = async (role: Role) =>
+    groupSchema.parse(await (await knock('GET /groups/:id', { token: tokens.get(role) })).json());
+
+  it('lists to those who may read them its measurements and notebooks, with what they may do', async () => {
+    for (const role of ['lead', 'analyst', 'referee'] as const) {
+      const group = await home(role);
+      expect(group.measurements.map(({ id }) => id)).toEqual([records.measurement]);
+      expect(group.notebooks.map(({ id }) => id)).toEqual([records.notebook]);
+      expect([group.role, group.may]).toEqual([role, actionsFor(role)]);
+    }
+  });
+
+  it('shows a reader the members and nothing that isn’t released', async () => {
+    const group = await home('reader');
+    expect([group.measurements, group.notebooks]).toEqual([[], []]);
+    expect(group.members.map(({ role }) => role).sort()).toEqual([...roles].sort());
   });
 });

@@ -5,8 +5,8 @@ import { actorOfSession, cookieName, cookieOf } from '@/lib/auth/sessions';
 import { config } from '@/lib/config';
 import { database } from '@/lib/db';
 import { listMailbox } from '@/lib/mail';
-import { Session, User, VerificationToken } from '@/models';
-import { closeConnections, createSession, createUser, errorOf, unique } from './harness';
+import { Invitation, Membership, Session, User, VerificationToken } from '@/models';
+import { closeConnections, createGroup, createSession, createUser, errorOf, unique } from './harness';
 
 beforeAll(() => void database());
 afterAll(closeConnections);
@@ -108,6 +108,18 @@ describe('the mailed link', () => {
     const late = await useLink(link);
     expect(placeOf(late)).toContain('error=Verification');
     expect(await User.count({ where: { email } })).toBe(0);
+  });
+
+  it('makes whoever was invited a member', async () => {
+    const groupId = await createGroup();
+    const lead = await createUser();
+    const email = newAddress();
+    const invitation = { groupId, email, role: 'analyst', invitedBy: lead.userId, createdAt: new Date() };
+    await Invitation.create(invitation);
+    const { value } = sessionOf(await useLink(await createSignInLink(email)));
+    const actor = await actorOfSession(value ?? '');
+    const membership = await Membership.findOne({ where: { groupId, userId: actor?.userId } });
+    expect(membership?.role).toBe('analyst');
   });
 
   it('never leads to another site', async () => {
