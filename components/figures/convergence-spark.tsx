@@ -56,7 +56,7 @@ export function ConvergenceSpark(props: ConvergenceSparkProps) {
         />
       ) : null}
       {last >= 0 && Number.isFinite(y[last]) ? (
-        <circle className="pt" cx={x[last]} cy={y[last]} r={2.4} />
+        <circle className="pt" cx={x[last].toFixed(1)} cy={y[last].toFixed(1)} r={2.4} />
       ) : null}
     </svg>
   );

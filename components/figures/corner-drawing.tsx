@@ -39,12 +39,19 @@ function places(count: number, size: FigureSize): (column: number, row: number) 
   return (column, row) => ({ left: left + column * (side + gap), top: top + row * (side + gap), size: side });
 }
 
-/** Few ticks: labels of neighbours mustn't meet. */
+/** Few ticks: labels of neighbours mustn't meet, and none stands in a panel's corner. */
 function panelTicks(m: Marginal, side: number): Tick[] {
-  return linearTicks(m.axis.lo, m.axis.hi, side < 110 ? 2 : 3).filter((tick) => {
-    const share = (tick.value - m.axis.lo) / (m.axis.hi - m.axis.lo);
-    return tick.major && share > 0.04 && share < 0.96;
-  });
+  const { lo, hi } = m.axis;
+  const inside = (count: number) =>
+    linearTicks(lo, hi, count).filter(({ value, major }) => {
+      const share = (value - lo) / (hi - lo);
+      return major && share > 0.06 && share < 0.94;
+    });
+  const fits = (ticks: Tick[]) =>
+    ticks.length < 2 ||
+    (side * (ticks[1].value - ticks[0].value)) / (hi - lo) >
+      7.2 * Math.max(...ticks.map((t) => t.label.length)) + 6;
+  return [3, 2, 1].map(inside).find((ticks) => ticks.length > 0 && fits(ticks)) ?? [];
 }
 
 export function CornerDrawing({ shown, size }: { shown: readonly ShownParameter[]; size: FigureSize }) {

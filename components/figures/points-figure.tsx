@@ -126,7 +126,19 @@ function series(kappa: ArrayLike<number>, y: ArrayLike<number>) {
   return Array.from(kappa, (x, i) => ({ x, y: y[i] }));
 }
 
-const still = { isAnimationActive: false, legendType: 'none', dot: false, activeDot: false } as const;
+/** Strokes come from the class of the group round a line, so the chart's own defaults give way. */
+const still = {
+  isAnimationActive: false,
+  legendType: 'none',
+  dot: false,
+  activeDot: false,
+  stroke: 'inherit',
+  strokeWidth: 'inherit',
+  fill: 'inherit',
+} as const;
+
+/** From the back to the front, whatever order the key has. */
+const depth: readonly Curve['role'][] = ['envelope', 'background', 'field', 'best', 'sum'];
 
 /** Measured points with errors on log κ; curves, a band, and residuals below on the same axis. */
 export function PointsFigure(props: PointsFigureProps) {
@@ -208,7 +220,6 @@ function PointsDrawing({
               data={bands}
               dataKey={key}
               className={key}
-              stroke="none"
               fillOpacity={1}
             />
           ))
@@ -223,19 +234,21 @@ function PointsDrawing({
         yName={figure.yName ?? <ShapeName />}
       />
       <ZeroLine panel={main} yAxisId="main" />
-      {curves.flatMap((curve) =>
-        [curve.y, curve.yLow].map((y, half) =>
-          y ? (
-            <CurveLine
-              key={`${curve.label} ${half}`}
-              curve={curve}
-              y={y}
-              inMain={inMain}
-              thin={curves.length > 2}
-            />
-          ) : null,
-        ),
-      )}
+      {[...curves]
+        .sort((a, b) => depth.indexOf(a.role) - depth.indexOf(b.role))
+        .flatMap((curve) =>
+          [curve.y, curve.yLow].map((y, half) =>
+            y ? (
+              <CurveLine
+                key={`${curve.label} ${half}`}
+                curve={curve}
+                y={y}
+                inMain={inMain}
+                thin={curves.length > 2}
+              />
+            ) : null,
+          ),
+        )}
       {drawn.length ? (
         <Scatter
           {...{ isAnimationActive: false, legendType: 'none' as const }}

@@ -28,7 +28,15 @@ export interface TraceFigureProps extends FigureFacts {
   total?: number;
 }
 
-const still = { isAnimationActive: false, legendType: 'none', dot: false, activeDot: false } as const;
+const still = {
+  isAnimationActive: false,
+  legendType: 'none',
+  dot: false,
+  activeDot: false,
+  stroke: 'inherit',
+  strokeWidth: 'inherit',
+  fill: 'inherit',
+} as const;
 
 /** Masses in the replicas since the start: in their field's colour without dashes, labelled at the end. */
 export function TraceFigure(props: TraceFigureProps) {

@@ -60,7 +60,7 @@ export function Contents({ label, entries, current }: ContentsProps) {
     <>
       <nav
         aria-label={label}
-        className="no-print sticky top-0 max-h-screen overflow-auto pt-8 max-tablet:hidden"
+        className="no-print sticky top-0 text-note max-h-screen overflow-auto pt-8 max-tablet:hidden"
       >
         <h2 className="mb-[6px] pl-4 text-[15px]/[21px] text-ink-2 italic">Contents</h2>
         <ol>
@@ -86,7 +86,7 @@ export function Contents({ label, entries, current }: ContentsProps) {
       {shown ? (
         <details
           ref={folded}
-          className="no-print sticky top-0 z-10 -mx-gutter border-b border-hairline bg-paper px-gutter tablet:hidden"
+          className="no-print sticky top-0 z-10 text-note -mx-gutter border-b border-hairline bg-paper px-gutter tablet:hidden"
         >
           <summary
             aria-label={`Contents, at ${shown.title}`}

@@ -18,7 +18,7 @@ export function Message({ level, title, children, quiet }: MessageProps) {
       role={quiet ? undefined : error ? 'alert' : 'status'}
       className={`my-4 max-w-figure break-inside-avoid border-l-2 pl-3 [&>p:last-child]:mb-0 ${error ? 'border-bad' : 'border-warn'}`}
     >
-      <div className="mb-px">
+      <div className="mb-px text-note">
         <StateWord kind={error ? 'bad' : 'warn'}>{error ? 'Error' : 'Warning'}</StateWord>
       </div>
       <h3 className="mb-1 text-subheading">{title}</h3>

@@ -2,8 +2,13 @@ import { beatPath, tonePath } from '@/lib/figures/beat';
 
 /** Two close tones and their envelope, in the head of every page. */
 export function BrandMark() {
-  const shape = { width: 39, height: 14, carriers: 14, beats: 2 };
-  const { carrier, upper, lower } = beatPath(shape);
+  const { carrier, upper, lower } = beatPath({
+    width: 39,
+    height: 14,
+    carriers: 5.5,
+    beats: 2,
+    start: 'node',
+  });
   return (
     <svg className="fig-svg flex-none" width="40" height="16" viewBox="-0.5 -1 40 16" aria-hidden="true">
       <path className="car" d={carrier} />
@@ -15,7 +20,13 @@ export function BrandMark() {
 
 /** The rule under a group's name. */
 export function BeatRule() {
-  const { carrier, upper, lower } = beatPath({ width: 720, height: 20, carriers: 42, beats: 6 });
+  const { carrier, upper, lower } = beatPath({
+    width: 720,
+    height: 20,
+    carriers: 36,
+    beats: 6,
+    start: 'crest',
+  });
   return (
     <svg
       className="fig-svg mt-2 mb-4 h-[21px] w-full max-w-figure overflow-hidden"
@@ -32,7 +43,13 @@ export function BeatRule() {
 
 /** End of a text. */
 export function BeatEnd() {
-  const { carrier, upper, lower } = beatPath({ width: 160, height: 14, carriers: 14, beats: 2 });
+  const { carrier, upper, lower } = beatPath({
+    width: 160,
+    height: 14,
+    carriers: 9,
+    beats: 2,
+    start: 'crest',
+  });
   return (
     <div className="flex justify-center pt-6">
       <svg className="fig-svg" width="160" height="16" viewBox="0 -1 160 16" aria-hidden="true">
@@ -47,7 +64,7 @@ export function BeatEnd() {
 /** A line that breaks off: something has stopped. `at` is the share that was done. */
 export function BrokenTone({ at = 0.6 }: { at?: number }) {
   const end = Math.round(720 * Math.min(1, Math.max(0, at)));
-  const { carrier } = beatPath({ width: 720, height: 38, carriers: 46, beats: 5 });
+  const { carrier } = beatPath({ width: 720, height: 38, carriers: 32.5, beats: 4.13, start: 'crest' });
   const clip = `inset(-2px ${720 - end}px -2px 0)`;
   return (
     <svg

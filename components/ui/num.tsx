@@ -10,13 +10,13 @@ function written(iso: string): string {
   return iso.slice(0, 16).replace('T', ' ');
 }
 
-/** A date, hash or code in the record, in the monospaced face. */
-export function Stamp({ at, children }: { at?: string; children?: ReactNode }) {
+/** A date, hash or code in the record, in the monospaced face; `short` leaves the year out where room is narrow. */
+export function Stamp({ at, short, children }: { at?: string; short?: boolean; children?: ReactNode }) {
   const look = 'font-numbers text-[12px]/[21px] whitespace-nowrap';
   if (at)
     return (
       <time className={look} dateTime={at}>
-        {written(at)}
+        {short ? written(at).slice(5) : written(at)}
       </time>
     );
   return <span className={look}>{children}</span>;

@@ -38,7 +38,7 @@ export function Remark({ id, letter, by, role, at, children, actions }: RemarkPr
           <b className="font-medium text-ink">{by}</b>
           {role ? `, ${role}` : null}
         </span>
-        <Stamp at={at} />
+        <Stamp at={at} short />
       </div>
       <div className="[&>p]:mb-1">{children}</div>
       {actions ? <div className="no-print flex gap-2 font-controls text-note">{actions}</div> : null}

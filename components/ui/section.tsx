@@ -102,7 +102,7 @@ export function FoldedSection({ id, number, title, state, href, onOpen, children
           )}
         </h2>
         {state ? (
-          <span className="pt-[4px] max-tablet:pt-0">
+          <span className="pt-[4px] text-note max-tablet:pt-0">
             <StateWord kind={state.kind}>{state.word}</StateWord>
           </span>
         ) : null}

@@ -23,7 +23,7 @@ export function SignInSheet({
         {lede ? <p className="mb-6 text-entry text-ink-2">{lede}</p> : null}
         {children}
       </div>
-      {figure ? <div className="max-w-[640px] min-w-0">{figure}</div> : null}
+      {figure ? <div className="max-w-[640px] min-w-0 [&>figure]:mt-1">{figure}</div> : null}
     </main>
   );
 }

@@ -79,7 +79,7 @@ export function formatPercent(share: number, decimals = 0): string {
 }
 
 /**
- * Decimals that show a span with about three figures: 2 for 1 to 12, 3 for 0 to 0.5.
+ * Decimals of a number that is moved over a span: two, more where the span is below a tenth, none from 1 000 on.
  *
  * @param lo one end; `hi` the other, in one unit
  * @returns 0 to 6
@@ -87,7 +87,8 @@ export function formatPercent(share: number, decimals = 0): string {
 export function decimalsForSpan(lo: number, hi: number): number {
   const span = Math.abs(hi - lo);
   if (!(span > 0) || !Number.isFinite(span)) return 2;
-  return Math.max(0, Math.min(6, 3 - Math.ceil(Math.log10(span) - 1e-9)));
+  if (span >= 1000) return 0;
+  return Math.max(2, Math.min(6, 2 - Math.ceil(Math.log10(span) - 1e-9)));
 }
 
 /**

@@ -13,7 +13,7 @@ export function massLevels(
   masses: readonly number[],
   of: 'cells' | 'draws' = 'cells',
 ): number[] {
-  const sorted = Float64Array.from(density).sort();
+  const sorted = new Float64Array(density).sort();
   const n = sorted.length;
   if (of === 'draws')
     return masses.map((mass) => {

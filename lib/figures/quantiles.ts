@@ -16,5 +16,8 @@ export function quantileOfSorted(sorted: ArrayLike<number>, p: number): number {
 
 /** The finite values in rising order, as a new array. */
 export function sortedFinite(values: ArrayLike<number>): Float64Array {
-  return Float64Array.from(values).filter(Number.isFinite).sort();
+  const copy = new Float64Array(values);
+  let kept = 0;
+  for (let i = 0; i < copy.length; i++) if (Number.isFinite(copy[i])) copy[kept++] = copy[i];
+  return copy.slice(0, kept).sort();
 }

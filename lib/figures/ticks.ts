@@ -50,8 +50,8 @@ export function linearTicks(lo: number, hi: number, count = 5): Tick[] {
   return ticks;
 }
 
-/** Significant figures that a decade's ticks carry as labels, from the fewest to the most. */
-const labelled = [[1], [1, 3], [1, 2, 5]];
+/** Leading digits that carry labels, in the order in which they are tried: the first that gives few enough, yet three. */
+const labelled = [[1, 3], [1, 2, 5], [1, 2, 3, 4, 5, 6, 7, 8, 9], [1]];
 
 /** A power-of-ten multiple without the noise of binary division: 0.003, not 0.0030000000000000005. */
 function decimal(mantissa: number, power: number): number {
@@ -59,7 +59,8 @@ function decimal(mantissa: number, power: number): number {
 }
 
 /**
- * Ticks of a logarithmic axis: labels at 1 and 3 (or 1, or 1, 2, 5) times powers of ten, short strokes at the other
+ * Ticks of a logarithmic axis: labels at 1 and 3 times powers of ten (1, 2, 5 or all where there
+ * would be fewer than three, 1 alone where there would be too many), short strokes at the other
  * whole multiples. Ends that are themselves such numbers are labelled.
  *
  * @param lo lower end > 0; `hi` upper end > `lo`, in the axis' unit
@@ -76,8 +77,7 @@ export function logTicks(lo: number, hi: number, wished = 5): Tick[] {
     for (let p = from; p <= to; p++) for (const m of mantissas) if (inside(decimal(m, p))) n++;
     return n;
   };
-  const fitting = labelled.filter((m) => count(m) <= wished + 1);
-  const mantissas = fitting.at(-1) ?? [1];
+  const mantissas = labelled.find((m) => count(m) >= 3 && count(m) <= wished + 1) ?? [1];
   const ticks: Tick[] = [];
   for (let p = from; p <= to; p++)
     for (let m = 1; m < 10; m++) {
