@@ -12,6 +12,7 @@ const nodePackages = [
   'nodemailer',
   '@aws-sdk/client-s3',
   'busboy',
+  'mailparser',
 ];
 
 const config: NextConfig = {

@@ -86,6 +86,7 @@ export class Instance {
       ...this.environment,
       NODE_ENV: 'production',
       NEXT_TELEMETRY_DISABLED: '1',
+      AWS_SDK_JS_NODE_VERSION_SUPPORT_WARNING_DISABLED: 'true',
     };
   }
 
@@ -153,7 +154,8 @@ export class Instance {
     while (Date.now() < until && !this.#stopping) {
       try {
         const response = await fetch(`http://${host}:${PORT}/api/v1/health`);
-        if (response.status === 200 && (await response.json()).status === 'ok') return;
+        const health = await response.json();
+        if (response.status === 200 && health.status === 'ok' && health.workers > 0) return;
       } catch {
         // Not listening yet.
       }
