@@ -40,6 +40,20 @@ function halfSquare(prior: ScalarPrior): number {
   return 0.5 * (mean * mean + sd * sd);
 }
 
+/**
+ * ½ E[g²] E[w_i²] for every field: the variance of A cos φ and of A sin φ for a field with |C| = 1. Fixed g and angles count
+ * as they are; sampled angles as an isotropic direction, for which w is Dirichlet(½, …, ½) and E[w²] = 3/(N(N + 2)).
+ */
+export function unitAmplitudeVariance(layout: ParameterLayout): Float64Array {
+  const { base, coupling, position } = layout;
+  const coupled = scalarPriorOf(layout, coupling);
+  const half = coupled ? halfSquare(coupled) : 0.5 * base[coupling] ** 2;
+  const fields = layout.masses.length;
+  const fixed = layout.angles.every((index) => position[index] < 0);
+  const weights = mixingWeights(Float64Array.from(layout.angles, (index) => base[index]));
+  return weights.map((w) => Math.max(1e-12, half * (fixed ? w * w : 3 / (fields * (fields + 2)))));
+}
+
 /** Normal factor of a scalar prior; flat for those without one. */
 function normalFactor(prior: ScalarPrior): { ownMean: number; ownPrecision: number } {
   if (prior.kind === 'half-normal') return { ownMean: 0, ownPrecision: 1 / prior.sd ** 2 };
@@ -125,10 +139,8 @@ export function mixedAmplitudes(layout: ParameterLayout): AmplitudeMap {
   const weights = new Float64Array(fields);
   const angleValues = new Float64Array(angles.length);
   const [lo, hi] = coupled ? priorSupport(coupled) : [-Infinity, Infinity];
-  const moments = coupled ? priorMoments(coupled) : { mean: 0, sd: 1 };
-  const square = moments.mean ** 2 + moments.sd ** 2;
-  // E[w²] of an isotropic direction: w is Dirichlet(½, …, ½).
-  const meanSquareWeight = 3 / (fields * (fields + 2));
+  const unitVariance = unitAmplitudeVariance(layout);
+  const square = coupled ? 2 * halfSquare(coupled) : 0;
   const priors = Array.from({ length: fields }, () => ({
     lo: 0,
     hi: Infinity,
@@ -161,17 +173,13 @@ export function mixedAmplitudes(layout: ParameterLayout): AmplitudeMap {
     phaseHeld: phases.map((index) => position[index] < 0),
     prepare(full) {
       const values = units.update(full);
-      if (!free) weigh(full);
       for (let f = 0; f < fields; f += 1) {
         modulus[f] = Math.hypot(values[2 * f], values[2 * f + 1]);
         const scale = modulus[f] * modulus[f];
-        if (free) {
-          priors[f].hi = modulus[f] * Math.max(Math.abs(lo), Math.abs(hi));
-          priors[f].ownPrecision = normal ? 1 / (scale * square) : 0;
-          priors[f].variance = 0.5 * scale * square * meanSquareWeight;
-        } else {
-          priors[f].variance = Math.max(1e-12 * scale, 0.5 * scale * (full[coupling] * weights[f]) ** 2);
-        }
+        priors[f].variance = scale * unitVariance[f];
+        if (!free) continue;
+        priors[f].hi = modulus[f] * Math.max(Math.abs(lo), Math.abs(hi));
+        priors[f].ownPrecision = normal ? 1 / (scale * square) : 0;
       }
     },
     begin(rng, full) {

@@ -66,12 +66,18 @@ export class FieldSystem {
 }
 
 /**
+ * What the data say of the masses alone: ln evidence with everything else integrated out, approximate where priors aren't
+ * normal. `full` is the full parameter vector, of which only masses and fixed values may matter.
+ */
+export interface MassEvidence {
+  logEvidence(system: FieldSystem, full: Float64Array): number;
+}
+
+/**
  * How everything of the fields but their masses is drawn at given masses, background integrated out. `full` is the full
  * parameter vector, in which the masses (and what is held) stand already.
  */
-export interface FieldStage {
-  /** ln of the (approximate, where priors aren't normal) evidence of the data at these masses. */
-  logEvidence(system: FieldSystem, full: Float64Array): number;
+export interface FieldStage extends MassEvidence {
   /** Draws the fields' sampled parameters into `full`. */
   draw(rng: Rng, system: FieldSystem, full: Float64Array): void;
   /** ln density of the fields' sampled parameters in `full` under `draw`. */

@@ -17,3 +17,7 @@ export {
 } from './priors';
 export type { ScalarPrior } from './priors';
 export { logOrderProbability } from './ordered-masses';
+export { predictiveBand, priorPredictive } from './prior-predictive';
+export type { PredictiveBand } from './prior-predictive';
+export { bestDraw, coverageFacts, posteriorBand } from './summary';
+export type { CoverageFacts } from './summary';

@@ -1,6 +1,6 @@
 import type { Rng } from '@/lib/sampler';
 import type { FieldMoments } from './collapsed';
-import type { FieldStage, FieldSystem } from './field-system';
+import type { FieldSystem, MassEvidence } from './field-system';
 import {
   CellDistribution,
   cellCentres,
@@ -95,7 +95,7 @@ const REFINEMENTS = [0.2, 0.4, 0.7];
 export function lineProposal(
   layout: ParameterLayout,
   system: FieldSystem,
-  stage: FieldStage,
+  stage: MassEvidence,
   field: number,
   { temper, floor }: MassProposalSettings,
 ): MassProposal {
@@ -143,7 +143,7 @@ export function lineProposal(
 export function planeProposal(
   layout: ParameterLayout,
   system: FieldSystem,
-  stage: FieldStage,
+  stage: MassEvidence,
   [first, second]: readonly [number, number],
   { temper, floor }: MassProposalSettings,
 ): MassProposal {
@@ -235,15 +235,13 @@ export class OneMassProposal implements MassProposal {
   private readonly others: Float64Array;
   private readonly scratch: Float64Array;
   private readonly sorted: Float64Array;
-  private readonly cells: { others: Float64Array; held: number; cells: CellDistribution | null };
+  private readonly kept: { others: Float64Array; cells: CellDistribution | null };
 
   constructor(
     private readonly layout: ParameterLayout,
     private readonly system: FieldSystem,
-    private readonly stage: FieldStage,
+    private readonly stage: MassEvidence,
     private readonly settings: MassProposalSettings,
-    /** Parameter that the evidence hangs on besides the masses (the vertex angle), or −1. */
-    private readonly held: number,
     single: (edges: Float64Array) => Float64Array,
   ) {
     this.free = layout.masses.flatMap((index, f) => (layout.position[index] >= 0 ? [f] : []));
@@ -260,7 +258,7 @@ export class OneMassProposal implements MassProposal {
     this.others = new Float64Array(last);
     this.scratch = Float64Array.from(layout.base);
     this.sorted = new Float64Array(this.free.length);
-    this.cells = { others: new Float64Array(last).fill(NaN), held: NaN, cells: null };
+    this.kept = { others: new Float64Array(last).fill(NaN), cells: null };
   }
 
   draw(rng: Rng, full: Float64Array): void {
@@ -292,7 +290,7 @@ export class OneMassProposal implements MassProposal {
 
   /** The distribution over cells of one mass given all the others in `full`, kept until the others change. */
   private given(full: Float64Array, left: number): CellDistribution {
-    const { layout, others, scratch, cells } = this;
+    const { layout, others, scratch, kept } = this;
     const last = layout.masses.length - 1;
     let count = 0;
     let skipped = false;
@@ -301,11 +299,8 @@ export class OneMassProposal implements MassProposal {
       else if (count < last) others[count++] = full[index];
     }
     others.sort();
-    const held = this.held >= 0 ? full[this.held] : 0;
-    if (cells.cells && cells.held === held && cells.others.every((mass, i) => mass === others[i]))
-      return cells.cells;
+    if (kept.cells && kept.others.every((mass, i) => mass === others[i])) return kept.cells;
 
-    scratch.set(full);
     for (let f = 0; f < last; f += 1) scratch[layout.masses[f]] = others[f];
     scratch[layout.masses[last]] = this.centres[0];
     this.system.load((f) => scratch[layout.masses[f]]);
@@ -323,9 +318,8 @@ export class OneMassProposal implements MassProposal {
     const { floor } = this.settings;
     for (let i = 0; i < weights.length; i += 1)
       weights[i] = (1 - floor) * (weights[i] / total) + floor * this.evenly[i];
-    cells.cells = CellDistribution.of(weights);
-    cells.held = held;
-    cells.others.set(others);
-    return cells.cells;
+    kept.cells = CellDistribution.of(weights);
+    kept.others.set(others);
+    return kept.cells;
   }
 }

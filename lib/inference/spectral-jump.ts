@@ -1,7 +1,9 @@
 import type { JumpProposal, Rng } from '@/lib/sampler';
+import { AmplitudeEvidence } from './amplitude-evidence';
 import { mixedAmplitudes, polarAmplitudes } from './amplitude-maps';
 import { LinearModel } from './collapsed';
-import { FieldSystem, type FieldStage } from './field-system';
+import { FieldSystem, type FieldStage, type MassEvidence } from './field-system';
+import { LooseEvidence } from './loose-evidence';
 import type { Likelihood } from './likelihoods';
 import {
   lineProposal,
@@ -109,6 +111,14 @@ function stageOf(layout: ParameterLayout): FieldStage | null {
   }
 }
 
+/** What the masses' grid is made of: the stage's own evidence, unless that hangs on what a jump keeps, or costs too much. */
+function massEvidence(layout: ParameterLayout, stage: FieldStage): MassEvidence {
+  const { template, masses, position } = layout;
+  const vertexAngle = template.parameters.findIndex(({ role }) => role === 'vertex-angle');
+  if (vertexAngle >= 0 && position[vertexAngle] >= 0) return new LooseEvidence(layout, vertexAngle);
+  return template.structure === 'mixed' && masses.length > 2 ? new AmplitudeEvidence(layout) : stage;
+}
+
 /** How sharp the proposal of the masses may be: nearly the evidence itself where that is exact. */
 function massSettings(stage: FieldStage, likelihood: Likelihood): MassProposalSettings {
   return { temper: stage.exact && likelihood.exponent === null ? 0.9 : 1 / 1.5, floor: 0.07 };
@@ -131,15 +141,15 @@ export function buildSpectralJump(
   if (!stage) return new SpectralJump(layout, noMasses, system, null);
   const grids = new FieldSystem(model, fields.length);
   const settings = massSettings(stage, likelihood);
+  const evidence = massEvidence(layout, stage);
   const sampled = layout.masses.flatMap((index, f) => (layout.position[index] >= 0 ? [f] : []));
   let masses: MassProposal;
   if (sampled.length === 0) masses = noMasses;
-  else if (sampled.length === 1) masses = lineProposal(layout, grids, stage, sampled[0], settings);
-  else if (sampled.length === 2)
-    masses = planeProposal(layout, grids, stage, [sampled[0], sampled[1]], settings);
-  else {
-    const vertexAngle = layout.template.parameters.findIndex(({ role }) => role === 'vertex-angle');
-    masses = new OneMassProposal(layout, grids, stage, settings, vertexAngle, (edges) =>
+  else if (sampled.length === 1) masses = lineProposal(layout, grids, evidence, sampled[0], settings);
+  else if (sampled.length === 2) {
+    masses = planeProposal(layout, grids, evidence, [sampled[0], sampled[1]], settings);
+  } else {
+    masses = new OneMassProposal(layout, grids, evidence, settings, (edges) =>
       cellCentres(edges).map((mass) => singleGain(model, 0, mass)),
     );
   }
