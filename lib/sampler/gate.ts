@@ -60,7 +60,7 @@ function shortcomings(name: string, found: Diagnosis, target: GateTarget): strin
   if (found.nonFinite) {
     const { count, chain, draw } = found.nonFinite;
     return [
-      `${name} has ${count} draws that aren’t finite (first in replica ${chain}, draw ${draw}), so that nothing can be said of it: correct its definition.`,
+      `${name} has ${count} ${count === 1 ? 'draw that isn’t' : 'draws that aren’t'} finite (first in replica ${chain}, draw ${draw}), so that nothing can be said of it: correct its definition.`,
     ];
   }
   if (found.constant) {

@@ -51,6 +51,16 @@ describe('the convergence gate', () => {
     expect(judgeGate({ chainsByParameter: { none: [] } }).met).toBe(false);
   });
 
+  it('is not met where an effective size is undefined', () => {
+    const chains = independent(1000, 'undefined');
+    const known = { ...diagnose(chains), essTail: NaN };
+    const verdict = judgeGate({ chainsByParameter: { n: chains }, diagnosisByParameter: { n: known } });
+    expect(verdict.met).toBe(false);
+    expect(verdict.reasons).toEqual([
+      expect.stringMatching(/^The tail effective sample size of n is undefined, not above 400: .*longer/),
+    ]);
+  });
+
   it('takes a diagnosis that is known already instead of computing it again', () => {
     const chains = independent(1000, 'known');
     const known = { ...diagnose(chains), rhat: 1.5 };

@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { diagnose, mcseMean, rhat } from '@/lib/sampler';
+import { advance, diagnose, mcseMean, rhat, startReplica } from '@/lib/sampler';
 import type { JumpProposal, Target } from '@/lib/sampler';
 import { correlatedNormal, phaseAtTheCut, run, truncatedPair } from './known-targets';
 
@@ -29,6 +29,20 @@ describe('the adaptive random walk', () => {
     for (const [, single] of moves) {
       expect(single.name).toBe('random walk of x0');
       expect(Math.abs(single.accepted / single.proposed - 0.44)).toBeLessThan(0.1);
+    }
+  });
+
+  it('takes the shape of its steps from the density', () => {
+    const settings = { warmup: 4000, blocks: [] };
+    const target = correlatedNormal();
+    const { state } = advance(target, [], settings, startReplica(target, [], settings, 'shape', 0), 4000);
+    const { factor } = state.moveState['random walk'] as { factor: Float64Array };
+    for (let i = 0; i < 5; i++) {
+      for (let j = 0; j <= i; j++) {
+        let covariance = 0;
+        for (let k = 0; k <= j; k++) covariance += factor[5 * i + k] * factor[5 * j + k];
+        expect(Math.abs(covariance - 0.9 ** (i - j))).toBeLessThan(0.35);
+      }
     }
   });
 

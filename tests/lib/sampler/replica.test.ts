@@ -185,7 +185,7 @@ describe('a target or proposal that has no value', () => {
 
   it('stops where a density is infinite', () => {
     const spike = { ...TARGET, logLikelihood: () => Infinity };
-    expect(refusal(() => advance(spike, [], plain, start, 1)).code).toBe('infinite-density');
+    expect(refusal(() => advance(spike, [], plain, start, 100)).code).toBe('infinite-density');
   });
 
   it.each([
