@@ -33,7 +33,11 @@ export function errorOf(status: number, body: unknown): RequestError {
 }
 
 export const unreachable = () =>
-  new RequestError(0, 'unreachable', 'The server can’t be reached. Nothing was changed; try again in a moment.');
+  new RequestError(
+    0,
+    'unreachable',
+    'The server can’t be reached. Nothing was changed; try again in a moment.',
+  );
 
 export function asRequestError(error: unknown): RequestError {
   return error instanceof RequestError ? error : unreachable();

@@ -1,0 +1,52 @@
+import type { Metadata } from 'next';
+import { PageChrome } from '@/components/account/page-chrome';
+import { FormulaBlock } from '@/components/notebook/formula-block';
+import { NotebookSheet } from '@/components/notebook/notebook-sheet';
+import { fit, group, measurement, notebook, version, visitor } from '@/lib/http/page-data';
+import { defaultFit } from '@/lib/schemas';
+import { findTemplate } from '@/lib/templates';
+
+interface Props {
+  params: Promise<{ id: string }>;
+  searchParams: Promise<Record<string, string | string[] | undefined>>;
+}
+
+export async function generateMetadata({ params }: Props): Promise<Metadata> {
+  const { id } = await params;
+  return { title: (await notebook(await visitor(`/notebooks/${id}`), id)).title };
+}
+
+/** `?fit=2` shows that fit; without it the last one is shown. */
+export default async function NotebookPage({ params, searchParams }: Props) {
+  const { id } = await params;
+  const actor = await visitor(`/notebooks/${id}`);
+  const opened = await notebook(actor, id);
+  const [measured, { role }] = await Promise.all([
+    measurement(actor, opened.measurement.id),
+    group(actor, opened.groupId),
+  ]);
+  const wanted = Number((await searchParams).fit);
+  const last = Math.max(0, ...opened.fits.map(({ number }) => number));
+  const summary =
+    opened.fits.find(({ number }) => number === wanted) ?? opened.fits.find(({ number }) => number === last);
+  const shown = summary ? await fit(actor, summary.id) : null;
+  const formula = findTemplate(opened.template.id).formula(opened.template.options);
+  return (
+    <PageChrome
+      version={version}
+      email={actor.email}
+      role={role}
+      where={opened.groupName}
+      groupId={opened.groupId}
+      current="notebooks"
+    >
+      <NotebookSheet
+        notebook={opened}
+        measurement={measured}
+        fit={shown}
+        formula={{ tex: formula.wide, node: <FormulaBlock formula={formula} /> }}
+        defaults={{ ...defaultFit }}
+      />
+    </PageChrome>
+  );
+}

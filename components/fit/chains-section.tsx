@@ -1,0 +1,176 @@
+'use client';
+
+import { Message } from '@/components/ui/message';
+import { BrokenTone } from '@/components/ui/motif';
+import { Stamp } from '@/components/ui/num';
+import { Record } from '@/components/ui/record';
+import { Section, Subheading } from '@/components/ui/section';
+import { clockTime } from '@/components/words/dates';
+import { inWords } from '@/components/words/counts';
+import { shortName } from '@/components/words/people';
+import { shortHash } from '@/components/measurement/measurement-words';
+import { chainsState, isOutdated } from '@/components/notebook/section-states';
+import { formatCount } from '@/lib/figures/format';
+import type { Draws, Fit, Notebook } from '@/lib/schemas';
+import { ConvergenceTable } from './convergence-table';
+import { FitControls } from './fit-controls';
+import { FitList } from './fit-list';
+import { fitPredicate, isRunning } from './fit-words';
+import { announcement, doneShare, LiveFigures } from './live-figures';
+import type { Quantity } from './quantities';
+import { StartForm, type FitDefaults } from './start-form';
+import { Traces } from './traces';
+import type { Connection } from './use-fit-events';
+
+export interface ChainsSectionProps {
+  notebook: Notebook;
+  fit: Fit | null;
+  draws: Draws | null;
+  connection: Connection;
+  quantities: ReadonlyMap<string, Quantity>;
+  defaults: FitDefaults;
+  /** Sections whose changes aren't saved. */
+  unsaved: readonly number[];
+  onFit: (fit: Fit) => void;
+  onShow: (id: string) => void;
+  onStarted: (id: string) => Promise<unknown>;
+}
+
+function Lost({ connection }: { connection: Connection }) {
+  if (connection.kind !== 'lost') return null;
+  return (
+    <Message level="warning" title={`Connection lost at ${clockTime(connection.at)}`}>
+      <p>
+        Figures show what was last received. Trying again in {connection.secondsLeft} s.{' '}
+        <button
+          type="button"
+          className="min-h-target text-action underline decoration-1 underline-offset-[3px]"
+          onClick={connection.retry}
+        >
+          Try now
+        </button>
+      </p>
+    </Message>
+  );
+}
+
+function Failed({ fit }: { fit: Fit }) {
+  const { draws, warmup } = fit.progress;
+  const kept = draws * fit.replicas;
+  return (
+    <>
+      <BrokenTone at={doneShare(fit)} />
+      <Message
+        quiet
+        level="error"
+        title={`Fit ${fit.number} failed ${draws > 0 ? `after draw ${formatCount(draws)}` : `in warm-up, after draw ${formatCount(warmup)}`} of each replica`}
+      >
+        {fit.message ? <p>{fit.message}</p> : null}
+        <p>
+          {kept > 0
+            ? `Nothing is lost: ${formatCount(kept)} draws are kept.`
+            : 'No draw was kept. The notebook is as it was.'}
+        </p>
+      </Message>
+    </>
+  );
+}
+
+function Sentence({ fit, notebook }: { fit: Fit; notebook: Notebook }) {
+  const { number, replicas, revision, progress, status } = fit;
+  const old = isOutdated(revision, notebook)
+    ? ` It froze revision ${revision}; the notebook has changed since.`
+    : '';
+  const what = `Fit ${number}, ${inWords(replicas)} replicas,`;
+  if (!isRunning(status)) return <p>{`${what} ${fitPredicate(status)}.${old}`}</p>;
+  return (
+    <p>
+      {what} {fitPredicate(status)}. It stops by itself when every quantity meets the gate or when{' '}
+      {formatCount(progress.maxDraws)} draws a replica are made.
+      {old}
+    </p>
+  );
+}
+
+function Margin({ fit }: { fit: Fit }) {
+  return (
+    <>
+      <Record at={fit.createdAt}>
+        Started by <b>{shortName(fit.startedBy)}</b>
+      </Record>
+      <Record>
+        Seed{' '}
+        <Stamp>
+          {fit.snapshot.seed.length > 12 ? `${fit.snapshot.seed.slice(0, 12)}…` : fit.snapshot.seed}
+        </Stamp>
+        <br />
+        Snapshot <Stamp>{shortHash(fit.snapshot.sha256)}</Stamp>
+      </Record>
+      {fit.endedAt ? <Record at={fit.endedAt}>Ended</Record> : null}
+    </>
+  );
+}
+
+/** Section 4: settings of the sampler, and a fit as it goes. */
+export function ChainsSection(props: ChainsSectionProps) {
+  const { notebook, fit, draws, connection, quantities, unsaved } = props;
+  const mayStart = notebook.may.includes('fit.start');
+  const running = notebook.fits.some(({ status }) => isRunning(status));
+  const number = Math.max(0, ...notebook.fits.map((each) => each.number)) + 1;
+  const reason = unsaved.length
+    ? `Save or drop the changes of section ${unsaved.join(' and ')} first.`
+    : undefined;
+  return (
+    <Section
+      id="chains"
+      number={4}
+      title="Chains"
+      state={chainsState(fit, notebook)}
+      margin={fit ? <Margin fit={fit} /> : null}
+    >
+      {fit ? (
+        <>
+          <Sentence fit={fit} notebook={notebook} />
+          {fit.status === 'failed' ? <Failed fit={fit} /> : null}
+          {fit.message && fit.status !== 'failed' ? <p className="text-ink-2">{fit.message}</p> : null}
+          <LiveFigures fit={fit} />
+          <p aria-live="polite" className="sr-only">
+            {announcement(fit)}
+          </p>
+          <p role="status" className="sr-only">
+            {isRunning(fit.status) ? '' : `Fit ${fit.number} ${fitPredicate(fit.status)}.`}
+          </p>
+          <FitControls key={fit.id} fit={fit} onFit={props.onFit} />
+          <Lost connection={connection} />
+          {fit.diagnostics.length ? <ConvergenceTable fit={fit} quantities={quantities} /> : null}
+          {draws ? <Traces fit={fit} draws={draws} quantities={quantities} number={4} /> : null}
+        </>
+      ) : (
+        <p>
+          No fit yet. A fit freezes sections 1 to 3 and samples their posterior; it goes on when this page is
+          closed.
+        </p>
+      )}
+      {notebook.fits.length > 1 ? (
+        <>
+          <Subheading>Fits</Subheading>
+          <FitList fits={notebook.fits} notebook={notebook} shownId={fit?.id ?? null} onShow={props.onShow} />
+        </>
+      ) : null}
+      {mayStart ? (
+        <>
+          {fit ? <Subheading>New fit</Subheading> : null}
+          <StartForm
+            notebookId={notebook.id}
+            number={number}
+            revision={notebook.revision}
+            defaults={props.defaults}
+            primary={!running}
+            reason={reason}
+            onStarted={props.onStarted}
+          />
+        </>
+      ) : null}
+    </Section>
+  );
+}

@@ -1,0 +1,81 @@
+'use client';
+
+import { useState } from 'react';
+import { asRequestError, detailAt, send, type RequestError } from '@/components/api/request';
+import { RequestMessage } from '@/components/api/request-message';
+import { Button, Buttons } from '@/components/ui/button';
+import { NumberField } from '@/components/ui/number-field';
+import type { Fit } from '@/lib/schemas';
+import { isRunning } from './fit-words';
+
+type Verb = 'stop' | 'resume' | 'extend';
+
+const refusals: Record<Verb, string> = {
+  stop: 'The fit was not stopped',
+  resume: 'The fit was not resumed',
+  extend: 'The fit was not extended',
+};
+
+/** Stop and keep, Resume, Extend: as far as the fit's state and the person's role allow. */
+export function FitControls({ fit, onFit }: { fit: Fit; onFit: (fit: Fit) => void }) {
+  const [error, setError] = useState<{ verb: Verb; said: RequestError } | null>(null);
+  const [extending, setExtending] = useState(false);
+  const [more, setMore] = useState<number | null>(fit.progress.maxDraws);
+  const may = (verb: Verb) => fit.may.includes(`fit.${verb}`);
+  const running = isRunning(fit.status);
+
+  async function ask(verb: Verb, body?: unknown) {
+    setError(null);
+    try {
+      onFit(await send<Fit>('POST', `/api/v1/fits/${fit.id}/${verb}`, body));
+      setExtending(false);
+    } catch (thrown) {
+      setError({ verb, said: asRequestError(thrown) });
+    }
+  }
+
+  if (!may('stop') && !may('resume') && !may('extend')) return null;
+  return (
+    <>
+      <Buttons note={running ? 'Sampling goes on when this page is closed.' : undefined}>
+        {running && may('stop') ? <Button onClick={() => void ask('stop')}>Stop and keep</Button> : null}
+        {may('resume') ? <Button onClick={() => void ask('resume')}>Resume</Button> : null}
+        {may('extend') ? (
+          <Button aria-expanded={extending} onClick={() => setExtending(!extending)}>
+            Extend
+          </Button>
+        ) : null}
+      </Buttons>
+      {extending && may('extend') ? (
+        <form
+          noValidate
+          className="max-w-[324px]"
+          onSubmit={(event) => {
+            event.preventDefault();
+            if (more !== null) void ask('extend', { draws: more });
+          }}
+        >
+          <NumberField
+            integer
+            label="Draws to add, a replica"
+            name="draws"
+            value={more}
+            onValue={setMore}
+            error={detailAt(error?.said ?? null, 'draws')}
+            help={running ? 'Beyond those that are allowed now.' : 'Beyond those that are there.'}
+          />
+          <Buttons>
+            <Button type="submit" reason={more === null ? 'Give a number first.' : undefined}>
+              Add them
+            </Button>
+          </Buttons>
+        </form>
+      ) : null}
+      <RequestMessage
+        error={error?.said ?? null}
+        title={error ? refusals[error.verb] : ''}
+        shown={['draws']}
+      />
+    </>
+  );
+}

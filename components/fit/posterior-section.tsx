@@ -1,0 +1,118 @@
+'use client';
+
+import { WithheldFigure } from '@/components/figures/withheld-figure';
+import { Button, Buttons } from '@/components/ui/button';
+import { Caution } from '@/components/ui/caution';
+import { Record } from '@/components/ui/record';
+import { Section } from '@/components/ui/section';
+import { shortName } from '@/components/words/people';
+import { posteriorState } from '@/components/notebook/section-states';
+import { templateInWords } from '@/components/notebook/template-words';
+import { counted } from '@/components/words/counts';
+import type { Draws, Fit, Measurement, Notebook } from '@/lib/schemas';
+import { MarginalTable } from './marginal-table';
+import { BestFit, Corner, posteriorSentence } from './posterior-figures';
+import type { Quantity } from './quantities';
+
+export interface PosteriorSectionProps {
+  notebook: Notebook;
+  measurement: Measurement;
+  fit: Fit | null;
+  draws: Draws | null;
+  quantities: ReadonlyMap<string, Quantity>;
+}
+
+/** What limits the numbers above it. */
+function Cautions({ fit }: { fit: Fit }) {
+  const { template } = fit.snapshot;
+  const fields = typeof template.options.fields === 'number' ? template.options.fields : 0;
+  const locked = template.id === 'locked-squeezed';
+  return (
+    <>
+      <Caution>
+        R-hat can’t see a mode that no chain visited. That every quantity meets the gate is needed, not
+        enough.
+      </Caution>
+      {locked && fields >= 2 ? (
+        <Caution>
+          Single exchange sees the weights alone: signs of the mixing elements, and rotations among the fields
+          that don’t couple, stay open. Degenerate masses give only the sum of their weights.
+        </Caution>
+      ) : null}
+      {template.id === 'free-phase' ? (
+        <Caution>
+          Amplitudes of {templateInWords(template.id, fields)} contain what the interaction gives each mass,
+          so they are no mixing weights.
+        </Caution>
+      ) : null}
+      <Caution>
+        <i className="sym">S</i> is the primordial shape. Bispectra of galaxies or the CMB need transfer,
+        window and late-time terms of their own, which this template doesn’t supply.
+      </Caution>
+      <Caution>A good χ² doesn’t show that the background is sufficient.</Caution>
+    </>
+  );
+}
+
+function Downloads({ fit }: { fit: Fit }) {
+  return (
+    <Buttons
+      note={`${counted(fit.diagnostics.length, 'column').replace(/^one/, 'One')} beside the likelihood and prior of each draw; the manifest holds checksums, seeds and versions.`}
+    >
+      <Button kind="primary" href={`/api/v1/fits/${fit.id}/samples?format=csv`} download>
+        Samples (CSV)
+      </Button>
+      <Button href={`/api/v1/fits/${fit.id}/manifest`} download={`fit-${fit.number}-manifest.json`}>
+        Manifest (JSON)
+      </Button>
+    </Buttons>
+  );
+}
+
+/** Section 5: what the draws say. */
+export function PosteriorSection({ notebook, measurement, fit, draws, quantities }: PosteriorSectionProps) {
+  const state = posteriorState(fit, notebook);
+  const some = fit !== null && fit.progress.draws > 0;
+  const sameVersion = notebook.measurement.version === measurement.version;
+  return (
+    <Section
+      id="posterior"
+      number={5}
+      title="Posterior"
+      state={state}
+      margin={
+        some ? (
+          <Record at={fit.endedAt ?? undefined}>
+            Fit {fit.number}, revision {fit.revision}, by <b>{shortName(fit.startedBy)}</b>
+          </Record>
+        ) : null
+      }
+    >
+      {notebook.blind ? (
+        <>
+          <p>
+            Masses, amplitudes and every figure of data against model are withheld until the measurement is
+            unblinded.
+          </p>
+          <WithheldFigure number={5} label="Posterior" caption="Posterior, after unblinding." />
+        </>
+      ) : !some ? (
+        <p>
+          Waits for section 4: the posterior stands here as soon as a fit has kept its first draws, and moves
+          while it samples.
+        </p>
+      ) : (
+        <>
+          <p>{posteriorSentence(fit)}</p>
+          {draws ? <Corner fit={fit} draws={draws} quantities={quantities} number={5} /> : null}
+          {fit.diagnostics.length ? <MarginalTable fit={fit} quantities={quantities} number={2} /> : null}
+          {draws && sameVersion ? (
+            <BestFit fit={fit} draws={draws} measurement={measurement} number={6} />
+          ) : null}
+          <Downloads fit={fit} />
+          <Cautions fit={fit} />
+        </>
+      )}
+    </Section>
+  );
+}

@@ -1,0 +1,55 @@
+'use client';
+
+import dynamic from 'next/dynamic';
+import { useMemo } from 'react';
+import { capital, inWords, listed } from '@/components/words/counts';
+import { formatCount } from '@/lib/figures/format';
+import type { Draws, Fit } from '@/lib/schemas';
+import { byReplica } from './draws';
+import type { Quantity } from './quantities';
+
+const TraceFigure = dynamic(() => import('@/components/figures/trace-figure').then((m) => m.TraceFigure));
+
+/** What traces are drawn of: the masses; without any, the first two parameters. */
+export function tracedQuantities(quantities: ReadonlyMap<string, Quantity>, draws: Draws): Quantity[] {
+  const sampled = [...quantities.values()].filter(({ name, derived }) => !derived && draws.columns[name]);
+  const masses = sampled.filter(({ role }) => role === 'mass');
+  return masses.length ? masses : sampled.slice(0, 2);
+}
+
+export function Traces({
+  fit,
+  draws,
+  quantities,
+  number,
+}: {
+  fit: Fit;
+  draws: Draws;
+  quantities: ReadonlyMap<string, Quantity>;
+  number: number;
+}) {
+  const traced = useMemo(() => tracedQuantities(quantities, draws), [quantities, draws]);
+  const traces = useMemo(
+    () => traced.map(({ name, symbol, field }) => ({ symbol, field, replicas: byReplica(draws, name) })),
+    [traced, draws],
+  );
+  if (!traced.length) return null;
+  const { warmup, warmupTotal, draws: kept } = fit.progress;
+  const what =
+    traced[0].role === 'mass'
+      ? traced.length === 1
+        ? 'the mass'
+        : `the ${inWords(traced.length)} masses`
+      : listed(traced.map(({ label }) => label));
+  return (
+    <TraceFigure
+      number={number}
+      label={`Traces of ${what} in every replica`}
+      fileName={`fit-${fit.number}-traces`}
+      traces={traces}
+      warmup={Math.min(warmup, warmupTotal)}
+      step={draws.stride}
+      caption={`${capital(what)} in the ${inWords(draws.replicas)} replicas of fit ${fit.number} since the start: ${formatCount(warmup)} draws of warm-up, shaded, and ${formatCount(kept)} kept${draws.stride > 1 ? `; every ${formatCount(draws.stride)}th is drawn` : ''}.`}
+    />
+  );
+}

@@ -1,0 +1,46 @@
+'use client';
+
+import useSWR from 'swr';
+import { read } from '@/components/api/request';
+import type { Draws, Fit } from '@/lib/schemas';
+import { isRunning } from './fit-words';
+import { useFitEvents, type Connection } from './use-fit-events';
+
+export interface FitHandle {
+  fit: Fit | null;
+  connection: Connection;
+  /** Puts in place what a stop, resume or extend answered. */
+  put: (fit: Fit) => void;
+}
+
+/** A fit by its id, kept live by one stream of events while it runs. */
+export function useFit(id: string | null, initial: Fit | null): FitHandle {
+  const { data, mutate } = useSWR(id ? `/api/v1/fits/${id}` : null, read<Fit>, {
+    fallbackData: initial?.id === id ? (initial ?? undefined) : undefined,
+    revalidateOnFocus: false,
+  });
+  const fit = data && data.id === id ? data : null;
+  const connection = useFitEvents(fit && isRunning(fit.status) ? fit.id : null, (event) => {
+    void mutate((before) => (before ? { ...before, ...event } : before), { revalidate: false });
+  });
+  return { fit, connection, put: (next) => void mutate(next, { revalidate: false }) };
+}
+
+/** Draws that are fetched for figures: fewer while they still change. */
+const most = { running: 4_000, ended: 20_000 };
+const between = 5_000;
+
+/** Draws of a fit for figures; while it runs they are read again every five seconds. */
+export function useDraws(fit: Fit | null): Draws | null {
+  const running = fit !== null && isRunning(fit.status);
+  const some = fit !== null && fit.progress.warmup + fit.progress.draws > 0;
+  const max = running ? most.running : most.ended;
+  // The count of draws is part of the key of an ended fit: one that was extended is read again.
+  const made = running ? 'running' : (fit?.progress.draws ?? 0);
+  const { data } = useSWR(
+    some && fit ? [`/api/v1/fits/${fit.id}/draws?max=${max}`, made] : null,
+    ([path]) => read<Draws>(path),
+    { refreshInterval: running ? between : 0, revalidateOnFocus: false, keepPreviousData: true },
+  );
+  return some ? (data ?? null) : null;
+}

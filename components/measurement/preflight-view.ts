@@ -1,0 +1,132 @@
+import type {
+  ColumnMapping,
+  ColumnRole,
+  Finding,
+  MeasurementSummary,
+  ParsedTable,
+  PreflightResult,
+} from '@/lib/measurements';
+
+/** One column of the file as the table of columns shows it. */
+export interface ColumnView {
+  name: string;
+  unit: string | null;
+  role: ColumnRole | null;
+  first: number;
+  last: number;
+}
+
+/** What the page shows of a preflight: plain data that may come from a worker. */
+export interface PreflightView {
+  ok: boolean;
+  rows: number;
+  columns: ColumnView[];
+  checks: Finding[];
+  summary: MeasurementSummary | null;
+  points: {
+    kappa: number[];
+    lo: number[] | null;
+    hi: number[] | null;
+    S: number[];
+    sigma: number[];
+    /** Line in the file of each point, in ascending κ. */
+    lines: number[];
+  } | null;
+  covarianceSource: 'file' | 'mocks' | 'errors' | null;
+  mockCount: number | null;
+  /** Milliseconds that reading and checking took. */
+  took: number;
+}
+
+function columnViews(table: ParsedTable, mapping: ColumnMapping): ColumnView[] {
+  const roles = new Map(
+    Object.entries(mapping).map(([role, column]) => [Number(column), role as ColumnRole] as const),
+  );
+  return table.columns.map(({ name, unit }, j) => ({
+    name,
+    unit: unit ?? null,
+    role: roles.get(j) ?? null,
+    first: table.data[j][0],
+    last: table.data[j][table.rows - 1],
+  }));
+}
+
+/** √ of the covariance's diagonal where there is a covariance, else the file's own errors. */
+function errorsOf(result: PreflightResult): number[] | null {
+  if (!result.measurement) return null;
+  const { measurement } = result;
+  const p = measurement.kappa.length;
+  if (result.ok) return Array.from({ length: p }, (_, i) => Math.sqrt(result.covariance[i * p + i]));
+  return measurement.sigma ? [...measurement.sigma] : new Array<number>(p).fill(NaN);
+}
+
+/** Cuts a preflight's result down to what the page shows. `shown` names the columns by the mapping that was tried. */
+export function viewOf(result: PreflightResult, shown: ColumnMapping, took: number): PreflightView {
+  const { table, measurement, checks, summary } = result;
+  const sigma = errorsOf(result);
+  return {
+    ok: result.ok,
+    rows: table?.rows ?? 0,
+    columns: table ? columnViews(table, shown) : [],
+    checks,
+    summary,
+    points:
+      table && measurement && sigma
+        ? {
+            kappa: [...measurement.kappa],
+            lo: measurement.kappaLo && [...measurement.kappaLo],
+            hi: measurement.kappaHi && [...measurement.kappaHi],
+            S: [...measurement.S],
+            sigma,
+            lines: Array.from(measurement.order, (row) => table.lines[row]),
+          }
+        : null,
+    covarianceSource: result.ok ? result.covarianceSource : null,
+    mockCount: result.ok ? result.mockCount : null,
+    took,
+  };
+}
+
+const counts = (checks: readonly Finding[], level: Finding['level']): number =>
+  checks.filter((check) => check.level === level).length;
+
+export interface LevelCounts {
+  errors: number;
+  warnings: number;
+  notes: number;
+  passed: number;
+}
+
+export function levelCounts(checks: readonly Finding[]): LevelCounts {
+  return {
+    errors: counts(checks, 'error'),
+    warnings: counts(checks, 'warning'),
+    notes: counts(checks, 'note'),
+    passed: counts(checks, 'ok'),
+  };
+}
+
+/** Points to frame and places without a point, from the findings that name a line. */
+export function marksOf(view: PreflightView) {
+  const { points, checks } = view;
+  if (!points) return { flags: [], gaps: [] };
+  const indexOf = (line: number | undefined) => (line === undefined ? -1 : points.lines.indexOf(line));
+  const flags = checks.flatMap((check) => {
+    const index = check.code === 'suspicious-point' ? indexOf(check.line) : -1;
+    return index < 0 ? [] : [{ index, word: `line ${check.line}` }];
+  });
+  const gaps = points.S.flatMap((value, index) =>
+    Number.isFinite(value)
+      ? []
+      : [{ kappa: points.kappa[index], word: `line ${points.lines[index]}: no number` }],
+  );
+  return { flags, gaps };
+}
+
+/** Which upload a file is, by its name; the reader may say otherwise. */
+export function partByName(name: string): 'file' | 'covariance' | 'mocks' {
+  const plain = name.toLowerCase();
+  if (/mock|sims?\b|simulations|realisations|realizations/.test(plain)) return 'mocks';
+  if (/cov/.test(plain)) return 'covariance';
+  return 'file';
+}

@@ -1,0 +1,74 @@
+import { forwardSolve, choleskyInto } from '@/lib/inference/cholesky';
+import type { Measurement, Notebook } from '@/lib/schemas';
+import type { Axis } from '@/lib/templates';
+
+/** The bins that a notebook keeps of its measurement, as the browser needs them. */
+export interface KeptPoints {
+  /** Their rows in the measurement. */
+  rows: number[];
+  kappa: Float64Array;
+  lo: Float64Array | null;
+  hi: Float64Array | null;
+  /** NaN while blind. */
+  S: Float64Array;
+  sigma: Float64Array;
+  /** Lower Cholesky factor of the covariance, row-major; null where it isn't given to the browser. */
+  factor: Float64Array | null;
+}
+
+/** Relative tolerance at both ends of a cut, as on the server. */
+const tolerance = 1e-9;
+
+/** Rows inside the cuts with their edges, or with κ where there are none. */
+export function keptRows(points: Measurement['points'], cuts: Notebook['cuts']): number[] {
+  const low = (cuts.kappaMin ?? 0) * (1 - tolerance);
+  const high = (cuts.kappaMax ?? Infinity) * (1 + tolerance);
+  const [lower, upper] = [points.kappaLo ?? points.kappa, points.kappaHi ?? points.kappa];
+  return points.kappa.flatMap((_, i) => (lower[i] >= low && upper[i] <= high ? [i] : []));
+}
+
+function factorOf(covariance: readonly (readonly number[])[], rows: readonly number[]): Float64Array | null {
+  const p = rows.length;
+  const cut = Float64Array.from(
+    { length: p * p },
+    (_, k) => covariance[rows[Math.floor(k / p)]][rows[k % p]],
+  );
+  const factor = new Float64Array(p * p);
+  return choleskyInto(cut, p, factor) < 0 ? factor : null;
+}
+
+export function keepPoints(measurement: Measurement, cuts: Notebook['cuts']): KeptPoints {
+  const { points, covariance } = measurement;
+  const rows = keptRows(points, cuts);
+  const take = (values: readonly (number | null)[]) => Float64Array.from(rows, (i) => values[i] ?? NaN);
+  return {
+    rows,
+    kappa: take(points.kappa),
+    lo: points.kappaLo && take(points.kappaLo),
+    hi: points.kappaHi && take(points.kappaHi),
+    S: take(points.S),
+    sigma: take(points.sigma),
+    factor: covariance && rows.length ? factorOf(covariance, rows) : null,
+  };
+}
+
+/** Where a template is evaluated on these points: over the bins where there are edges, unless averaging is off. */
+export function dataAxis(points: KeptPoints, options: Record<string, unknown>): Axis {
+  const { lo, hi, kappa } = points;
+  if (!lo || !hi || options.binAverage === false) return { kind: 'points', kappa };
+  return { kind: 'bins', lo, hi, weightPower: Number(options.binWeight ?? 0) };
+}
+
+/** χ² of a prediction with the covariance; with the errors alone where there is no covariance here. */
+export function chiSquare(points: KeptPoints, prediction: ArrayLike<number>): number {
+  const p = points.S.length;
+  const residual = Float64Array.from({ length: p }, (_, i) => points.S[i] - prediction[i]);
+  if (points.factor) forwardSolve(points.factor, p, residual);
+  else residual.forEach((value, i) => (residual[i] = value / points.sigma[i]));
+  return residual.reduce((sum, value) => sum + value * value, 0);
+}
+
+/** Residuals in standard deviations of each bin. */
+export function residuals(points: KeptPoints, prediction: ArrayLike<number>): Float64Array {
+  return points.S.map((value, i) => (value - prediction[i]) / points.sigma[i]);
+}

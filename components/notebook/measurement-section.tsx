@@ -1,0 +1,201 @@
+'use client';
+
+import Link from 'next/link';
+import { RequestMessage } from '@/components/api/request-message';
+import { detailAt } from '@/components/api/request';
+import { MeasurementFigure } from '@/components/measurement/measurement-figure';
+import { covarianceInWords } from '@/components/measurement/measurement-words';
+import { SelectField } from '@/components/ui/field';
+import { NumberField } from '@/components/ui/number-field';
+import { Section } from '@/components/ui/section';
+import { Sym } from '@/components/ui/sym';
+import { DefinitionList } from '@/components/ui/definition-list';
+import { capital, counted, plain } from '@/components/words/counts';
+import { KappaRange } from '@/components/words/kappa';
+import type { Measurement, Notebook } from '@/lib/schemas';
+import { ConflictMessage } from './conflict-message';
+import { keptRows } from './kept-points';
+import { likelihoodKinds, likelihoods, type LikelihoodKind } from './likelihood-words';
+import { SaveRow } from './save-row';
+import type { Draft } from './section-draft';
+import { SectionRecord } from './section-record';
+import { sectionState } from './section-states';
+import { useSectionSave, type NotebookState } from './use-notebook';
+
+export interface MeasurementSettings {
+  cuts: Notebook['cuts'];
+  likelihood: Notebook['likelihood'];
+}
+
+export interface MeasurementSectionProps {
+  state: NotebookState;
+  measurement: Measurement;
+  draft: Draft<MeasurementSettings>;
+}
+
+/** A cut's two ends without those that are left open. */
+function cutsOf(kappaMin: number | null | undefined, kappaMax: number | null | undefined): Notebook['cuts'] {
+  return {
+    ...(kappaMin === null || kappaMin === undefined ? {} : { kappaMin }),
+    ...(kappaMax === null || kappaMax === undefined ? {} : { kappaMax }),
+  };
+}
+
+function Choice({
+  measurement,
+  draft,
+  error,
+}: {
+  measurement: Measurement;
+  draft: Draft<MeasurementSettings>;
+  error: ReturnType<typeof useSectionSave>['error'];
+}) {
+  const { cuts, likelihood } = draft.value;
+  const setCuts = (next: Notebook['cuts']) => draft.change({ ...draft.value, cuts: next });
+  const reach = `The measurement covers ${plain(measurement.kappaMin, 3)} to ${plain(measurement.kappaMax, 3)}.`;
+  return (
+    <div className="grid max-w-figure grid-cols-[144px_144px_minmax(0,1fr)] gap-4 max-tablet:grid-cols-1 max-tablet:gap-2">
+      <NumberField
+        label={
+          <>
+            Lowest <Sym base="κ" />
+          </>
+        }
+        name="kappaMin"
+        value={cuts.kappaMin ?? null}
+        onValue={(value) => setCuts(cutsOf(value, cuts.kappaMax))}
+        error={detailAt(error, 'cuts.kappaMin')}
+        help="Empty: no cut."
+      />
+      <NumberField
+        label={
+          <>
+            Highest <Sym base="κ" />
+          </>
+        }
+        name="kappaMax"
+        value={cuts.kappaMax ?? null}
+        onValue={(value) => setCuts(cutsOf(cuts.kappaMin, value))}
+        error={detailAt(error, 'cuts.kappaMax') ?? detailAt(error, 'cuts')}
+        help={reach}
+      />
+      <SelectField
+        label="Likelihood"
+        name="likelihood"
+        value={likelihood.kind}
+        options={likelihoodKinds.map((kind) => ({
+          value: kind,
+          label: likelihoods[kind].label,
+          disabled: likelihoods[kind].needsMocks && measurement.mockCount === null,
+        }))}
+        onChange={(event) =>
+          draft.change({ ...draft.value, likelihood: { kind: event.target.value as LikelihoodKind } })
+        }
+        error={detailAt(error, 'likelihood')}
+        help={likelihoods[likelihood.kind].meaning}
+      />
+    </div>
+  );
+}
+
+function settingsInWords({ cuts, likelihood }: MeasurementSettings) {
+  const end = (value: number | undefined) => (value === undefined ? 'no cut' : plain(value));
+  return {
+    kappaMin: end(cuts.kappaMin),
+    kappaMax: end(cuts.kappaMax),
+    likelihood: likelihoods[likelihood.kind].label,
+  };
+}
+
+/** Section 1: which data, cut how, with which likelihood. */
+export function MeasurementSection({ state, measurement, draft }: MeasurementSectionProps) {
+  const { notebook } = state;
+  const section = useSectionSave(state);
+  const { cuts } = draft.value;
+  const rows = keptRows(measurement.points, cuts);
+  const all = measurement.rows;
+  const editable = notebook.may.includes('notebook.edit');
+
+  async function save(base: number) {
+    if (await section.save(draft.value, base)) draft.reset();
+  }
+
+  const { conflict } = section;
+  return (
+    <Section
+      id="measurement"
+      number={1}
+      title="Measurement"
+      state={sectionState(draft.changed, notebook)}
+      margin={<SectionRecord notebook={notebook} section="measurement" />}
+    >
+      <p>
+        <Link href={`/measurements/${measurement.id}`}>
+          {notebook.measurement.name}, version {notebook.measurement.version}
+        </Link>
+        :{' '}
+        {rows.length === all
+          ? `all ${counted(all, 'bin')} kept`
+          : `${rows.length} of ${counted(all, 'bin')} kept`}
+        , {covarianceInWords(measurement)}.
+      </p>
+      <MeasurementFigure
+        measurement={measurement}
+        kept={rows}
+        number={1}
+        caption={
+          <>
+            {capital(counted(rows.length, 'bin'))} of {notebook.measurement.name} against <Sym base="κ" />
+            {rows.length === all ? (
+              ''
+            ) : (
+              <>
+                {' '}
+                inside the cut <KappaRange lo={cuts.kappaMin} hi={cuts.kappaMax} />
+              </>
+            )}
+            ; {covarianceInWords(measurement)}.
+          </>
+        }
+      />
+      {editable ? (
+        <>
+          <Choice measurement={measurement} draft={draft} error={section.error} />
+          <SaveRow
+            draft={draft}
+            revision={notebook.revision}
+            saving={section.saving}
+            fault={rows.length ? undefined : 'The cut keeps no bin; widen it.'}
+            onSave={() => void save(draft.base)}
+          />
+        </>
+      ) : (
+        <DefinitionList
+          entries={[
+            { term: 'Cut', text: <KappaRange lo={cuts.kappaMin} hi={cuts.kappaMax} /> },
+            { term: 'Likelihood', text: likelihoods[draft.value.likelihood.kind].meaning },
+          ]}
+        />
+      )}
+      {conflict ? (
+        <ConflictMessage
+          conflict={conflict}
+          section={section}
+          sides={(['kappaMin', 'kappaMax', 'likelihood'] as const).map((key) => ({
+            key,
+            what: { kappaMin: 'Lowest κ', kappaMax: 'Highest κ', likelihood: 'Likelihood' }[key],
+            theirs: settingsInWords(conflict.theirs)[key],
+            mine: settingsInWords(draft.value)[key],
+          }))}
+          onMine={(base) => void save(base)}
+          onTheirs={() => {
+            section.settle();
+            draft.reset();
+            void state.put(conflict.theirs);
+          }}
+        />
+      ) : null}
+      <RequestMessage error={section.error} title="Section 1 was not saved" shown={['cuts', 'likelihood']} />
+    </Section>
+  );
+}

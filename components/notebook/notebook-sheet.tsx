@@ -1,0 +1,196 @@
+'use client';
+
+import { useEffect, useEffectEvent, useMemo, useState } from 'react';
+import useSWR from 'swr';
+import { read } from '@/components/api/request';
+import { ChainsSection } from '@/components/fit/chains-section';
+import { bestIndex, drawValues } from '@/components/fit/draws';
+import { isRunning } from '@/components/fit/fit-words';
+import { fixedValues } from '@/components/fit/posterior-figures';
+import { PosteriorSection } from '@/components/fit/posterior-section';
+import { quantitiesOf } from '@/components/fit/quantities';
+import type { FitDefaults } from '@/components/fit/start-form';
+import { useDraws, useFit } from '@/components/fit/use-fit';
+import { Contents } from '@/components/ui/contents';
+import { BeatEnd } from '@/components/ui/motif';
+import { Record } from '@/components/ui/record';
+import { PageHead } from '@/components/ui/section';
+import { Sheet } from '@/components/ui/sheet';
+import { listed } from '@/components/words/counts';
+import { shortName } from '@/components/words/people';
+import type { Draws, Fit, Measurement, Notebook } from '@/lib/schemas';
+import { Abstract } from './abstract';
+import { keepPoints } from './kept-points';
+import type { DrawnFormula } from './live-formula';
+import { MeasurementSection } from './measurement-section';
+import { TitleForm } from './notebook-title';
+import { PriorsSection, type Priors } from './priors-section';
+import { useDraft } from './section-draft';
+import { chainsState, contentsEntries, posteriorState, sectionState } from './section-states';
+import { TemplateSection, tryPrediction, type NamedPoint } from './template-section';
+import { useNotebook } from './use-notebook';
+
+export interface NotebookSheetProps {
+  notebook: Notebook;
+  measurement: Measurement;
+  /** The fit that is shown first; null without any. */
+  fit: Fit | null;
+  formula: DrawnFormula;
+  defaults: FitDefaults;
+}
+
+/** Everybody who has settled something, in the order of their first revision. */
+function authors(notebook: Notebook): string[] {
+  return [...new Set([notebook.createdBy, ...notebook.record.map(({ by }) => by)])].map(shortName);
+}
+
+function bestOf(fit: Fit | null, draws: Draws | null): NamedPoint | null {
+  if (!fit || !draws) return null;
+  const index = bestIndex(draws);
+  return index < 0
+    ? null
+    : { label: `Best draw of fit ${fit.number}`, values: drawValues(draws, index, fixedValues(fit)) };
+}
+
+/** The notebook: one sheet, five sections, one fit shown in the last two. */
+export function NotebookSheet(props: NotebookSheetProps) {
+  const state = useNotebook(props.notebook);
+  const { notebook } = state;
+  const { data: measurement = props.measurement } = useSWR(
+    `/api/v1/measurements/${props.measurement.id}`,
+    read<Measurement>,
+    { fallbackData: props.measurement, revalidateOnMount: false, revalidateOnFocus: false },
+  );
+  const [chosen, setChosen] = useState<string | null>(props.fit?.id ?? null);
+  const [titling, setTitling] = useState(false);
+  const { fit, connection, put } = useFit(chosen, props.fit);
+  const draws = useDraws(fit);
+
+  // The notebook's own list of fits follows when one begins, ends or is taken up again.
+  const refresh = useEffectEvent(() => void state.refresh());
+  const listedAs = notebook.fits.find(({ id }) => id === chosen)?.status;
+  const running = fit ? isRunning(fit.status) : null;
+  useEffect(() => {
+    if (running !== null && listedAs !== undefined && isRunning(listedAs) !== running) refresh();
+  }, [running, listedAs]);
+
+  const cut = useDraft({ cuts: notebook.cuts, likelihood: notebook.likelihood }, notebook.revision);
+  const template = useDraft(
+    { id: notebook.template.id, options: notebook.template.options },
+    notebook.revision,
+  );
+  const priors = useDraft<Priors>(notebook.priors, notebook.revision);
+
+  const keptKey = JSON.stringify(cut.value.cuts);
+  const points = useMemo(
+    () => keepPoints(measurement, JSON.parse(keptKey) as Notebook['cuts']),
+    [measurement, keptKey],
+  );
+  const stored = useMemo(() => {
+    const tried = tryPrediction(notebook.template, points);
+    return 'prediction' in tried ? tried.prediction : null;
+  }, [notebook.template, points]);
+  const quantities = useMemo(
+    () => quantitiesOf(fit ? fit.snapshot.template : notebook.template),
+    [fit, notebook.template],
+  );
+  const best = useMemo(() => bestOf(fit, draws), [fit, draws]);
+
+  const states = {
+    measurement: sectionState(cut.changed, notebook),
+    template: sectionState(template.changed, notebook),
+    priors: sectionState(priors.changed, notebook),
+    chains: chainsState(fit, notebook),
+    posterior: posteriorState(fit, notebook),
+  };
+  const unsaved = [cut.changed ? 1 : 0, template.changed ? 2 : 0, priors.changed ? 3 : 0].filter(Boolean);
+  const last = notebook.record.find(({ revision }) => revision === notebook.revision);
+
+  function show(id: string) {
+    setChosen(id);
+    const number = notebook.fits.find((each) => each.id === id)?.number;
+    if (number !== undefined) window.history.replaceState(null, '', `?fit=${number}${window.location.hash}`);
+  }
+
+  async function started(id: string) {
+    await state.refresh();
+    setChosen(id);
+    window.history.replaceState(null, '', window.location.pathname);
+  }
+
+  return (
+    <Sheet contents={<Contents label="Sections" entries={contentsEntries(states)} />}>
+      <PageHead
+        title={notebook.title}
+        kicker={[
+          `Notebook ${notebook.number}, revision ${notebook.revision}`,
+          ...(notebook.blind ? ['blind'] : []),
+          ...(notebook.simulated ? ['simulated measurement'] : []),
+        ].join(', ')}
+        byline={
+          <>
+            {listed(authors(notebook))}
+            {notebook.may.includes('notebook.edit') && !titling ? (
+              <>
+                {' · '}
+                <button
+                  type="button"
+                  className="text-action underline decoration-1 underline-offset-[3px]"
+                  onClick={() => setTitling(true)}
+                >
+                  change the title
+                </button>
+              </>
+            ) : null}
+          </>
+        }
+        abstract={<Abstract notebook={notebook} measurement={measurement} fit={fit} />}
+        margin={
+          last ? (
+            <Record at={last.at}>
+              Revision {last.revision} by <b>{shortName(last.by)}</b>
+            </Record>
+          ) : null
+        }
+      >
+        {titling ? <TitleForm state={state} onDone={() => setTitling(false)} /> : null}
+      </PageHead>
+      <MeasurementSection state={state} measurement={measurement} draft={cut} />
+      <TemplateSection
+        state={state}
+        measurement={measurement}
+        points={points}
+        draft={template}
+        drawn={props.formula}
+        best={best}
+      />
+      <PriorsSection
+        state={state}
+        measurement={measurement}
+        points={points}
+        prediction={stored}
+        draft={priors}
+      />
+      <ChainsSection
+        notebook={notebook}
+        fit={fit}
+        draws={draws}
+        connection={connection}
+        quantities={quantities}
+        defaults={props.defaults}
+        unsaved={unsaved}
+        onFit={put}
+        onShow={show}
+        onStarted={started}
+      />
+      <PosteriorSection
+        notebook={notebook}
+        measurement={measurement}
+        fit={fit}
+        draws={draws}
+        quantities={quantities}
+      />
+      <BeatEnd />
+    </Sheet>
+  );
+}

@@ -1,0 +1,54 @@
+'use client';
+
+import { useState } from 'react';
+import { detailAt } from '@/components/api/request';
+import { RequestMessage } from '@/components/api/request-message';
+import { Button, Buttons } from '@/components/ui/button';
+import { Field } from '@/components/ui/field';
+import { useSectionSave, type NotebookState } from './use-notebook';
+
+/** Changes the title in place. */
+export function TitleForm({ state, onDone }: { state: NotebookState; onDone: () => void }) {
+  const { notebook } = state;
+  const section = useSectionSave(state);
+  const [title, setTitle] = useState(notebook.title);
+  const same = title.trim() === notebook.title;
+
+  async function save() {
+    if (await section.save({ title: title.trim() }, section.conflict?.theirs.revision ?? notebook.revision))
+      onDone();
+  }
+
+  return (
+    <form
+      noValidate
+      className="mb-4"
+      onSubmit={(event) => {
+        event.preventDefault();
+        void save();
+      }}
+    >
+      <Field
+        label="Title"
+        name="title"
+        value={title}
+        maxLength={160}
+        autoComplete="off"
+        onChange={(event) => setTitle(event.target.value)}
+        error={detailAt(section.error, 'title')}
+        help={
+          section.conflict
+            ? `Revision ${section.conflict.theirs.revision} was saved meanwhile, titled “${section.conflict.theirs.title}”. Saving again puts yours in its place.`
+            : 'A new title makes a new revision; fits stay as they are.'
+        }
+      />
+      <Buttons>
+        <Button type="submit" reason={same ? 'As it is.' : title.trim() ? undefined : 'Give it a title.'}>
+          Save the title
+        </Button>
+        <Button onClick={onDone}>Leave it</Button>
+      </Buttons>
+      <RequestMessage error={section.error} title="The title was not saved" shown={['title']} />
+    </form>
+  );
+}

@@ -1,0 +1,262 @@
+'use client';
+
+import dynamic from 'next/dynamic';
+import { useDeferredValue, useMemo } from 'react';
+import { RequestMessage } from '@/components/api/request-message';
+import { Message } from '@/components/ui/message';
+import { Section } from '@/components/ui/section';
+import { Num } from '@/components/ui/num';
+import { StateWord } from '@/components/ui/state-word';
+import { DataTable } from '@/components/ui/table';
+import { counted, inWords, plain } from '@/components/words/counts';
+import { logOrderProbability, type MassPrior } from '@/lib/inference/ordered-masses';
+import { priorPredictive, type PredictiveBand } from '@/lib/inference/prior-predictive';
+import type { Measurement } from '@/lib/schemas';
+import type { CompiledTemplate, Prior } from '@/lib/templates';
+import { ConflictMessage } from './conflict-message';
+import type { KeptPoints } from './kept-points';
+import type { Prediction } from './prediction';
+import { findPriorFaults } from './prior-faults';
+import { ParameterName, PriorDrawing, PriorFields } from './prior-row';
+import { priorInWords } from './prior-words';
+import { SaveRow } from './save-row';
+import type { Draft } from './section-draft';
+import { SectionRecord } from './section-record';
+import { sectionState } from './section-states';
+import { useSectionSave, type NotebookState } from './use-notebook';
+
+const PointsFigure = dynamic(() => import('@/components/figures/points-figure').then((m) => m.PointsFigure));
+
+export type Priors = Readonly<Record<string, Prior>>;
+
+export interface PriorsSectionProps {
+  state: NotebookState;
+  measurement: Measurement;
+  points: KeptPoints;
+  /** The stored template on the stored cut; null where it can't be evaluated. */
+  prediction: Prediction | null;
+  draft: Draft<Priors>;
+}
+
+/** Draws from the priors behind the band. */
+const draws = 400;
+
+function PriorsTable({
+  template,
+  draft,
+  faults,
+  editable,
+}: {
+  template: CompiledTemplate;
+  draft: Draft<Priors>;
+  faults: ReturnType<typeof findPriorFaults>;
+  editable: boolean;
+}) {
+  const angles = template.parameters.filter(({ role }) => role === 'angle');
+  const change = (name: string, prior: Prior) => {
+    const next: Record<string, Prior> = { ...draft.value, [name]: prior };
+    // The isotropic prior is one density of all angles: they take it, and leave it, together.
+    if (angles.some((angle) => angle.name === name)) {
+      const was = draft.value[name]?.kind === 'isotropic';
+      for (const angle of angles) {
+        if (angle.name === name) continue;
+        if (prior.kind === 'isotropic') next[angle.name] = prior;
+        else if (was && next[angle.name]?.kind === 'isotropic') next[angle.name] = prior;
+      }
+    }
+    draft.change(next);
+  };
+  return (
+    <DataTable
+      ruled
+      label="Priors"
+      phoneColumns="minmax(0,1fr) 120px"
+      columns={[
+        { key: 'parameter', head: 'Parameter', middle: true, phone: { area: '1 / 1' } },
+        { key: 'prior', head: 'Prior', middle: true, phone: { area: '2 / 1 / 3 / 3' } },
+        { key: 'density', head: 'Density', middle: true, phone: { area: '1 / 2' } },
+      ]}
+      rows={template.parameters.map((declaration) => {
+        const { name } = declaration;
+        const prior = draft.value[name] ?? declaration.defaultPrior;
+        const fault = faults.byParameter[name];
+        return {
+          key: name,
+          cells: {
+            parameter: <ParameterName declaration={declaration} />,
+            prior: editable ? (
+              <>
+                <PriorFields
+                  declaration={declaration}
+                  prior={prior}
+                  faults={faults.byField[name] ?? {}}
+                  onPrior={(next) => change(name, next)}
+                />
+                {fault ? (
+                  <p className="mt-[3px] mb-0 font-controls text-note text-ink-2">
+                    <StateWord kind="bad">Error</StateWord> {fault}
+                  </p>
+                ) : null}
+              </>
+            ) : (
+              priorInWords(prior, declaration)
+            ),
+            density: (
+              <PriorDrawing
+                declaration={declaration}
+                prior={prior}
+                angles={angles.length > 1 && name === angles[angles.length - 1].name ? angles.length : 1}
+              />
+            ),
+          },
+        };
+      })}
+    />
+  );
+}
+
+/** Says what order does to the joint prior. */
+function OrderNote({ template, priors }: { template: CompiledTemplate; priors: Priors }) {
+  const masses = template.parameters.filter(({ role }) => role === 'mass');
+  if (masses.length < 2) return null;
+  const given = masses.map(({ name, defaultPrior }) => (priors[name] ?? defaultPrior) as MassPrior);
+  const z = Math.exp(logOrderProbability(given));
+  return (
+    <p className="text-small text-ink-2">
+      Masses are put in order, <i className="sym">μ</i>
+      <sub>1</sub> first. Of independent draws a share <Num>Z = {plain(z, 4)}</Num> is in order; the joint
+      prior is divided by it.
+    </p>
+  );
+}
+
+function usePredictive(prediction: Prediction | null, priors: Priors, sound: boolean): PredictiveBand | null {
+  const settled = useDeferredValue(priors);
+  return useMemo(() => {
+    if (!prediction || !sound) return null;
+    if (findPriorFaults(prediction.fine, settled).joint !== null) return null;
+    if (Object.keys(findPriorFaults(prediction.fine, settled).byParameter).length) return null;
+    return priorPredictive(prediction.fine, settled, draws);
+  }, [prediction, settled, sound]);
+}
+
+/** Section 3: what is believed before the data, and what that claims about them. */
+export function PriorsSection({ state, measurement, points, prediction, draft }: PriorsSectionProps) {
+  const { notebook } = state;
+  const section = useSectionSave(state);
+  const template = prediction?.fine ?? null;
+  const faults = useMemo(
+    () => (template ? findPriorFaults(template, draft.value) : { byField: {}, byParameter: {}, joint: null }),
+    [template, draft.value],
+  );
+  const wrong = Object.keys(faults.byParameter).length;
+  const band = usePredictive(prediction, draft.value, wrong === 0 && faults.joint === null);
+  const editable = notebook.may.includes('notebook.edit');
+  const { conflict } = section;
+
+  async function save(base: number) {
+    if (await section.save({ priors: { ...draft.value } }, base)) draft.reset();
+  }
+
+  return (
+    <Section
+      id="priors"
+      number={3}
+      title="Priors"
+      state={sectionState(draft.changed, notebook)}
+      margin={<SectionRecord notebook={notebook} section="priors" />}
+    >
+      {template && prediction ? (
+        <>
+          <p>
+            {template.parameters.length === 1
+              ? 'One parameter has a prior.'
+              : `Each of the ${inWords(template.parameters.length)} parameters has a prior; a fixed one isn’t sampled.`}
+          </p>
+          <PriorsTable template={template} draft={draft} faults={faults} editable={editable} />
+          {wrong === 0 ? <OrderNote template={template} priors={draft.value} /> : null}
+          {faults.joint ? (
+            <Message level="error" title="The priors don’t go together">
+              <p>{faults.joint}</p>
+            </Message>
+          ) : null}
+          {editable ? (
+            <SaveRow
+              draft={draft}
+              revision={notebook.revision}
+              saving={section.saving}
+              fault={
+                wrong
+                  ? `${counted(wrong, 'prior').replace(/^one/, 'One')} has to be mended first.`
+                  : faults.joint
+                    ? 'The priors have to go together first.'
+                    : undefined
+              }
+              onSave={() => void save(draft.base)}
+            />
+          ) : null}
+          {band ? (
+            <PointsFigure
+              number={3}
+              label="Range of predictions of the priors over the points"
+              fileName="prior-predictive"
+              points={
+                measurement.blind
+                  ? undefined
+                  : {
+                      kappa: points.kappa,
+                      value: points.S,
+                      error: points.sigma,
+                      lo: points.lo ?? undefined,
+                      hi: points.hi ?? undefined,
+                    }
+              }
+              band={{ kappa: prediction.kappa, ...band, label: '68 and 95 % of the priors’ draws' }}
+              yDomain={bandDomain(band, points)}
+              caption={
+                <>
+                  What the priors claim before any data: at each <i className="sym">κ</i> the range of {draws}{' '}
+                  predictions drawn from them, over the {counted(points.rows.length, 'bin')}.
+                </>
+              }
+            />
+          ) : null}
+        </>
+      ) : (
+        <p className="text-ink-2">The priors stand here once section 2 can be evaluated.</p>
+      )}
+      {conflict && template ? (
+        <ConflictMessage
+          conflict={conflict}
+          section={section}
+          sides={template.parameters.map(({ name, label, defaultPrior }) => ({
+            key: name,
+            what: label,
+            theirs: priorInWords(conflict.theirs.priors[name] ?? defaultPrior),
+            mine: priorInWords(draft.value[name] ?? defaultPrior),
+          }))}
+          onMine={(base) => void save(base)}
+          onTheirs={() => {
+            section.settle();
+            draft.reset();
+            void state.put(conflict.theirs);
+          }}
+        />
+      ) : null}
+      <RequestMessage error={section.error} title="Section 3 was not saved" />
+    </Section>
+  );
+}
+
+/** Room for the band's 68 % and the points, so that a wide prior doesn't squeeze the points flat unseen. */
+function bandDomain(band: PredictiveBand, { S, sigma }: KeptPoints): [number, number] {
+  const ends = [
+    ...band.lo68,
+    ...band.hi68,
+    ...Array.from(S, (value, i) => value - sigma[i]),
+    ...Array.from(S, (value, i) => value + sigma[i]),
+  ].filter(Number.isFinite);
+  const [lo, hi] = [Math.min(...ends), Math.max(...ends)];
+  const room = 0.08 * (hi - lo || 1);
+  return [lo - room, hi + room];
+}

@@ -1,0 +1,63 @@
+import type { ContentsEntry } from '@/components/ui/contents';
+import type { State } from '@/components/ui/state-word';
+import { fitState } from '@/components/fit/fit-words';
+import type { Fit, FitStatus, Notebook, NotebookSection } from '@/lib/schemas';
+
+/** A form that is being changed is being set; what is saved is settled. */
+export function sectionState(changed: boolean, notebook: Pick<Notebook, 'may'>): State {
+  return changed && notebook.may.includes('notebook.edit')
+    ? { kind: 'open', word: 'being set' }
+    : { kind: 'ok', word: 'settled' };
+}
+
+/** Sections that a fit freezes; a new title makes no fit old. */
+const frozen: readonly NotebookSection[] = ['measurement', 'template', 'priors'];
+
+/** True where the notebook's settings changed after the revision that a fit froze. */
+export function isOutdated(revision: number, notebook: Pick<Notebook, 'record'>): boolean {
+  return notebook.record.some(
+    (entry) => entry.revision > revision && entry.sections.some((section) => frozen.includes(section)),
+  );
+}
+
+interface SomeFit {
+  number: number;
+  status: FitStatus;
+  revision: number;
+}
+
+export function chainsState(fit: SomeFit | null, notebook: Pick<Notebook, 'record'>): State {
+  if (!fit) return { kind: 'open', word: 'not begun' };
+  const running = fitState(fit.status).kind === 'run';
+  if (!running && isOutdated(fit.revision, notebook))
+    return { kind: 'old', word: `of revision ${fit.revision}` };
+  return fitState(fit.status);
+}
+
+export function posteriorState(
+  fit: (SomeFit & Pick<Fit, 'progress'>) | null,
+  notebook: Pick<Notebook, 'record' | 'blind'>,
+): State {
+  if (notebook.blind) return { kind: 'blind', word: 'blind' };
+  if (!fit || fit.progress.draws === 0) return { kind: 'wait', word: 'waits for 4' };
+  if (isOutdated(fit.revision, notebook)) return { kind: 'old', word: `of revision ${fit.revision}` };
+  return fit.status === 'converged'
+    ? { kind: 'ok', word: `of fit ${fit.number}` }
+    : { kind: 'open', word: `of fit ${fit.number}, so far` };
+}
+
+export function contentsEntries(states: {
+  measurement: State;
+  template: State;
+  priors: State;
+  chains: State;
+  posterior: State;
+}): ContentsEntry[] {
+  return [
+    { href: '#measurement', number: 1, title: 'Measurement', state: states.measurement },
+    { href: '#template', number: 2, title: 'Template', state: states.template },
+    { href: '#priors', number: 3, title: 'Priors', state: states.priors },
+    { href: '#chains', number: 4, title: 'Chains', state: states.chains },
+    { href: '#posterior', number: 5, title: 'Posterior', state: states.posterior },
+  ];
+}

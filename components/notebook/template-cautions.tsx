@@ -1,0 +1,70 @@
+import { Caution } from '@/components/ui/caution';
+import { Num } from '@/components/ui/num';
+import { Sym } from '@/components/ui/sym';
+import { inWords, plain } from '@/components/words/counts';
+import { formatPercent } from '@/lib/figures/format';
+import type { ParameterDeclaration, Prior } from '@/lib/templates';
+import { accurateKappa, backgroundTermsFor } from './accuracy';
+import type { TemplateSettings } from './prediction';
+import { priorEnds } from './prior-values';
+
+/** Lowest and highest mass that the priors allow; null without fields. */
+export function massRangeOf(
+  parameters: readonly ParameterDeclaration[],
+  priors: Readonly<Record<string, Prior>>,
+): [number, number] | null {
+  const ends = parameters
+    .filter(({ role }) => role === 'mass')
+    .map((declaration) => priorEnds(priors[declaration.name] ?? declaration.defaultPrior, declaration));
+  return ends.length ? [Math.min(...ends.map(([lo]) => lo)), Math.max(...ends.map(([, hi]) => hi))] : null;
+}
+
+/** Share of the envelope to which the page asks the leading template to hold. */
+const share = 0.05;
+
+/** What limits the template at this cut and these masses. */
+export function TemplateCautions({
+  settings,
+  parameters,
+  priors,
+  highest,
+}: {
+  settings: TemplateSettings;
+  parameters: readonly ParameterDeclaration[];
+  priors: Readonly<Record<string, Prior>>;
+  /** Highest κ that is kept. */
+  highest: number;
+}) {
+  const range = massRangeOf(parameters, priors);
+  if (!range) return null;
+  const vertex = settings.options.vertex;
+  const reach = accurateKappa(range[0], range[1], share, vertex === 1 ? [1] : vertex === 2 ? [2] : [1, 2]);
+  const powers = Array.isArray(settings.options.background) ? (settings.options.background as number[]) : [];
+  const positive = powers.filter((power) => power > 0).length;
+  const wanted = backgroundTermsFor(range[1]);
+  return (
+    <>
+      <Caution>
+        The squeezed template holds to {formatPercent(share)} of the envelope for{' '}
+        <Num>
+          <Sym base="κ" /> ≤ {plain(reach, 2)}
+        </Num>{' '}
+        at the masses that the priors allow; the bins reach{' '}
+        <Num>
+          <Sym base="κ" /> = {plain(highest, 3)}
+        </Num>
+        {highest > reach * 1.0001 ? ', beyond that.' : '.'}
+      </Caution>
+      {settings.id === 'locked-squeezed' && positive < wanted ? (
+        <Caution>
+          The smooth part of the exchange is left to the background. For masses up to{' '}
+          <Num>
+            <Sym base="μ" /> = {plain(range[1], 2)}
+          </Num>{' '}
+          it needs {inWords(wanted)} powers of <Sym base="κ" /> from 1 on to keep the bias near{' '}
+          {formatPercent(0.01)}; there {positive === 1 ? 'is' : 'are'} {inWords(positive)}.
+        </Caution>
+      ) : null}
+    </>
+  );
+}

@@ -1,0 +1,223 @@
+'use client';
+
+import dynamic from 'next/dynamic';
+import { useMemo, useState } from 'react';
+import { RequestMessage } from '@/components/api/request-message';
+import { WithheldFigure } from '@/components/figures/withheld-figure';
+import { Button, Buttons } from '@/components/ui/button';
+import { Message } from '@/components/ui/message';
+import { Num } from '@/components/ui/num';
+import { Section, Subheading } from '@/components/ui/section';
+import { counted } from '@/components/words/counts';
+import { formatNumber } from '@/lib/figures/format';
+import type { Measurement } from '@/lib/schemas';
+import { findTemplate, TemplateError, type Prior } from '@/lib/templates';
+import { ConflictMessage } from './conflict-message';
+import type { KeptPoints } from './kept-points';
+import { LiveFormula, type DrawnFormula } from './live-formula';
+import { compilePrediction, curvesOf, judge, type Prediction, type TemplateSettings } from './prediction';
+import { startValues } from './prior-values';
+import { SaveRow } from './save-row';
+import type { Draft } from './section-draft';
+import { SectionRecord } from './section-record';
+import { sectionState } from './section-states';
+import { TemplateCautions } from './template-cautions';
+import { TemplateForm } from './template-form';
+import { TemplateSliders } from './template-sliders';
+import { optionsInWords } from './template-words';
+import { useSectionSave, type NotebookState } from './use-notebook';
+
+const PointsFigure = dynamic(() => import('@/components/figures/points-figure').then((m) => m.PointsFigure));
+
+/** A point of parameter space that sliders can be set to. */
+export interface NamedPoint {
+  /** "Best draw of fit 3" */
+  label: string;
+  values: Readonly<Record<string, number>>;
+}
+
+export interface TemplateSectionProps {
+  state: NotebookState;
+  measurement: Measurement;
+  points: KeptPoints;
+  draft: Draft<TemplateSettings>;
+  drawn: DrawnFormula;
+  best: NamedPoint | null;
+}
+
+/** The template on the points, or the fault that keeps it from being evaluated. */
+export function tryPrediction(
+  settings: TemplateSettings,
+  points: KeptPoints,
+): { prediction: Prediction } | { fault: string } {
+  if (points.rows.length === 0) return { fault: 'The cut keeps no bin, so nothing can be predicted.' };
+  try {
+    return { prediction: compilePrediction(settings, points) };
+  } catch (error) {
+    if (error instanceof TemplateError) return { fault: `${error.message}.` };
+    throw error;
+  }
+}
+
+function Explore({
+  settings,
+  measurement,
+  prediction,
+  priors,
+  best,
+}: {
+  settings: TemplateSettings;
+  measurement: Measurement;
+  prediction: Prediction;
+  priors: Readonly<Record<string, Prior>>;
+  best: NamedPoint | null;
+}) {
+  const { parameters } = prediction.fine;
+  const [set, setSet] = useState<Readonly<Record<string, number>>>({});
+  const start = useMemo(() => startValues(parameters, priors), [parameters, priors]);
+  const x = useMemo(
+    () => Float64Array.from(parameters, ({ name }, i) => set[name] ?? start[i]),
+    [parameters, set, start],
+  );
+  const curves = useMemo(() => curvesOf(prediction, x), [prediction, x]);
+  const judged = useMemo(() => judge(prediction, x), [prediction, x]);
+  const { points } = prediction;
+  const fields = prediction.fine.blocks.length;
+  const named = (values: readonly number[]) =>
+    Object.fromEntries(parameters.map(({ name }, i) => [name, values[i]]));
+  const fits = best && parameters.every(({ name }) => best.values[name] !== undefined) ? best : null;
+  return (
+    <>
+      {measurement.blind ? (
+        <WithheldFigure number={2} label="Prediction over the points" caption="Prediction over the points." />
+      ) : (
+        <PointsFigure
+          number={2}
+          label="Prediction at the values of the sliders over the points"
+          fileName="prediction"
+          points={{
+            kappa: points.kappa,
+            value: points.S,
+            error: points.sigma,
+            lo: points.lo ?? undefined,
+            hi: points.hi ?? undefined,
+          }}
+          curves={curves}
+          residuals={judged.residuals}
+          caption={
+            <>
+              Prediction at the values below over the {counted(points.rows.length, 'bin')}
+              {fields ? `, with ${fields === 1 ? 'the field' : 'each field'} drawn alone` : ''}
+              {fields === 2 ? ' and the envelope of their beat' : ''};{' '}
+              <Num>
+                <i className="sym">χ</i>² = {formatNumber(judged.chiSquare, 1)}
+              </Num>
+              {points.factor ? '' : ' from the errors alone'} for {counted(points.rows.length, 'bin')}.
+            </>
+          }
+        />
+      )}
+      <TemplateSliders
+        parameters={parameters}
+        priors={priors}
+        x={x}
+        onMove={(values) => setSet({ ...set, ...named(values) })}
+      />
+      <Buttons note="Moving a slider draws; it changes nothing in the notebook.">
+        {fits ? <Button onClick={() => setSet({ ...set, ...fits.values })}>{fits.label}</Button> : null}
+        <Button onClick={() => setSet({})}>Start values</Button>
+      </Buttons>
+      <TemplateCautions
+        settings={{ id: settings.id, options: prediction.onData.options }}
+        parameters={parameters}
+        priors={priors}
+        highest={(points.hi ?? points.kappa)[points.rows.length - 1]}
+      />
+    </>
+  );
+}
+
+/** Section 2: which template, its formula, and what it predicts over the points. */
+export function TemplateSection({ state, measurement, points, draft, drawn, best }: TemplateSectionProps) {
+  const { notebook } = state;
+  const section = useSectionSave(state);
+  const settings = draft.value;
+  const template = findTemplate(settings.id);
+  const tried = useMemo(() => tryPrediction(settings, points), [settings, points]);
+  const editable = notebook.may.includes('notebook.edit');
+  const { conflict } = section;
+
+  async function save(base: number) {
+    if (await section.save({ template: settings }, base)) draft.reset();
+  }
+
+  return (
+    <Section
+      id="template"
+      number={2}
+      title="Template"
+      state={sectionState(draft.changed, notebook)}
+      margin={<SectionRecord notebook={notebook} section="template" />}
+    >
+      <p>{template.summary}</p>
+      {'prediction' in tried ? (
+        <LiveFormula formula={template.formula(tried.prediction.onData.options)} drawn={drawn} />
+      ) : null}
+      {editable ? (
+        <>
+          <TemplateForm
+            settings={settings}
+            hasEdges={points.lo !== null}
+            error={section.error}
+            onSettings={draft.change}
+          />
+          <SaveRow
+            draft={draft}
+            revision={notebook.revision}
+            saving={section.saving}
+            fault={'fault' in tried ? tried.fault : undefined}
+            onSave={() => void save(draft.base)}
+          />
+        </>
+      ) : null}
+      {conflict ? (
+        <ConflictMessage
+          conflict={conflict}
+          section={section}
+          sides={[
+            {
+              key: 'template',
+              what: 'Template',
+              theirs: optionsInWords(conflict.theirs.template),
+              mine: optionsInWords(settings),
+            },
+          ]}
+          onMine={(base) => void save(base)}
+          onTheirs={() => {
+            section.settle();
+            draft.reset();
+            void state.put(conflict.theirs);
+          }}
+        />
+      ) : null}
+      <RequestMessage error={section.error} title="Section 2 was not saved" shown={['template.id']} />
+      <Subheading>What it predicts</Subheading>
+      {'prediction' in tried ? (
+        <Explore
+          settings={settings}
+          measurement={measurement}
+          prediction={tried.prediction}
+          priors={notebook.priors}
+          best={best}
+        />
+      ) : (
+        <Message level="warning" title="Nothing can be drawn with these options" quiet>
+          <p>{tried.fault}</p>
+        </Message>
+      )}
+      {template.assumptions.length ? (
+        <p className="mt-3 text-small text-ink-2">Assumed: {template.assumptions.join(' ')}</p>
+      ) : null}
+    </Section>
+  );
+}

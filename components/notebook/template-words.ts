@@ -1,0 +1,22 @@
+import { inWords, capital } from '@/components/words/counts';
+
+/** "two mixed fields", "one field with free phase", "a smooth background" */
+export function templateInWords(id: string, fields: number): string {
+  const count = `${inWords(fields)} ${fields === 1 ? 'field' : 'fields'}`;
+  if (id === 'background' || fields === 0) return 'a smooth background alone';
+  if (id === 'free-phase') return `${count} with free amplitudes`;
+  if (id === 'locked-squeezed')
+    return fields === 1 ? 'one exchanged field' : `${inWords(fields)} mixed fields`;
+  return count;
+}
+
+/** The same at the beginning of a sentence. */
+export const templateTitle = (id: string, fields: number): string => capital(templateInWords(id, fields));
+
+/** Template and options as one line, for setting two choices beside each other. */
+export function optionsInWords({ id, options }: { id: string; options: Record<string, unknown> }): string {
+  const said = Object.entries(options)
+    .filter(([, value]) => value !== undefined && value !== null)
+    .map(([name, value]) => `${name} ${Array.isArray(value) ? value.join(', ') || 'none' : String(value)}`);
+  return [id, ...said].join('; ');
+}

@@ -1,0 +1,74 @@
+import { notFound, redirect } from 'next/navigation';
+import { cache } from 'react';
+import packageFile from '@/package.json';
+import type { Actor } from '@/lib/auth/actor';
+import { auth } from '@/lib/auth/current';
+import { AppError } from '@/lib/errors';
+import {
+  fitSchema,
+  groupSchema,
+  measurementSchema,
+  meSchema,
+  notebookSchema,
+  type Fit,
+  type Group,
+  type Me,
+  type Measurement,
+  type Notebook,
+} from '@/lib/schemas';
+import type { Action } from '@/lib/policies';
+import { authorise, type Access, type RecordKind } from '@/lib/services/access';
+import { readMe } from '@/lib/services/accounts';
+import { readFit } from '@/lib/services/fits';
+import { readGroup } from '@/lib/services/groups';
+import { readMeasurement } from '@/lib/services/measurements';
+import { readNotebook } from '@/lib/services/notebooks';
+
+/**
+ * What pages are first drawn with: the very services behind the API's GETs, asked on behalf of the session, and
+ * parsed by the same schemas. Afterwards pages ask the API.
+ */
+
+export const version: string = packageFile.version;
+
+/** Who is signed in; without anybody the page of signing in, which leads back to `path`. */
+export async function visitor(path: string): Promise<Actor> {
+  const actor = await auth();
+  if (!actor) redirect(`/sign-in?callbackUrl=${encodeURIComponent(path)}`);
+  return actor;
+}
+
+/** Foreign, missing and not allowed look alike: the page of what isn't there. */
+async function orNotFound<T>(answer: Promise<T>): Promise<T> {
+  try {
+    return await answer;
+  } catch (error) {
+    if (error instanceof AppError && (error.code === 'not_found' || error.code === 'forbidden')) notFound();
+    throw error;
+  }
+}
+
+const accessTo = (actor: Actor, kind: RecordKind, id: string, action: Action): Promise<Access> =>
+  orNotFound(authorise(actor, kind, id, action));
+
+export const me = cache(async (actor: Actor): Promise<Me> => meSchema.parse(await readMe(actor)));
+
+export const group = cache(async (actor: Actor, id: string): Promise<Group> => {
+  const access = await accessTo(actor, 'group', id, 'group.read');
+  return groupSchema.parse(await readGroup(access));
+});
+
+export const measurement = cache(async (actor: Actor, id: string): Promise<Measurement> => {
+  const access = await accessTo(actor, 'measurement', id, 'measurement.read');
+  return measurementSchema.parse(await readMeasurement(access));
+});
+
+export const notebook = cache(async (actor: Actor, id: string): Promise<Notebook> => {
+  const access = await accessTo(actor, 'notebook', id, 'notebook.read');
+  return notebookSchema.parse(await readNotebook(access));
+});
+
+export const fit = cache(async (actor: Actor, id: string): Promise<Fit> => {
+  const access = await accessTo(actor, 'fit', id, 'fit.read');
+  return fitSchema.parse(await readFit(access));
+});
