@@ -12,6 +12,7 @@ import { fitBlocks } from '@/lib/services/fit-draws';
 import {
   claimFit,
   failFit,
+  failUnheld,
   noteMachine,
   releaseLease,
   renewLease,
@@ -23,7 +24,7 @@ import { verdict } from '@/lib/services/fit-verdict';
 import { ThreadError } from './failure';
 import type { Turn } from './messages';
 import { Pace } from './pace';
-import { untilDone } from './retry';
+import { reasonOf, untilDone } from './retry';
 import { Rounds, type Round } from './rounds';
 import type { WorkerSettings } from './settings';
 import { ReplicaThreads, ReportThread } from './threads';
@@ -36,7 +37,7 @@ export interface Stopping {
 
 /** Samples one fit for as long as this process holds it; returns when it has ended, or isn't this worker's any more. */
 export async function runFit(fitId: string, settings: WorkerSettings, stopping: Stopping): Promise<void> {
-  const claimed = await untilDone('taking a fit', () => claimFit(fitId, settings.leaseMs), stopping.now);
+  const claimed = await takeUp(fitId, settings.leaseMs, stopping.now);
   if (!claimed) return;
   const run = new FitRun(claimed, settings, stopping);
   try {
@@ -45,6 +46,20 @@ export async function runFit(fitId: string, settings: WorkerSettings, stopping: 
     await run.fail(error);
   } finally {
     await run.close();
+  }
+}
+
+/** Takes a fit; one whose row or states can't be read ends here, since no worker will ever do better. */
+async function takeUp(fitId: string, leaseMs: number, now: AbortSignal): Promise<ClaimedFit | null> {
+  try {
+    return await untilDone('taking a fit', () => claimFit(fitId, leaseMs), now);
+  } catch (error) {
+    if (now.aborted) return null;
+    log.error({ fitId, ...reasonOf(error) }, 'a fit could not be taken up');
+    const message =
+      'The stored fit can’t be read by this version; the cause is logged. Start a new fit with the same seed.';
+    await untilDone('failing a fit', () => failUnheld(fitId, message), now);
+    return null;
   }
 }
 
@@ -128,13 +143,13 @@ class FitRun {
     try {
       if (this.stopping.now.aborted) return await releaseLease(fitId, epoch);
       const told = error instanceof ThreadError ? error.failure.told : null;
-      log[told === null ? 'error' : 'warn']({ fitId, err: error }, 'a fit failed');
+      log[told === null ? 'error' : 'warn']({ fitId, ...reasonOf(error) }, 'a fit failed');
       const ours = `An unexpected error ended the sampling after ${this.standing.draws} draws; it is logged. Resume tries again from there.`;
       await this.persist('failing a fit', () => failFit(fitId, epoch, told ?? ours));
       await this.publish();
     } catch (again) {
       // Nobody renews the lease now, so another worker takes it up.
-      log.error({ fitId, err: again }, 'a fit could not be given back');
+      log.error({ fitId, ...reasonOf(again) }, 'a fit could not be given back');
     }
   }
 
@@ -223,7 +238,7 @@ class FitRun {
     try {
       if (!(await renewLease(fitId, epoch, this.settings.leaseMs))) this.lost.abort();
     } catch (error) {
-      log.warn({ fitId, err: error }, 'a lease could not be renewed');
+      log.warn({ fitId, ...reasonOf(error) }, 'a lease could not be renewed');
     }
   }
 

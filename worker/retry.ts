@@ -15,6 +15,10 @@ export function isPassing(error: unknown): boolean {
   return error instanceof DatabaseError && cause.errno !== undefined && rolledBack.has(cause.errno);
 }
 
+/** An error without the statement and the values that a database error carries: those may be megabytes of draws. */
+export const reasonOf = (error: unknown): { reason: string; stack?: string } =>
+  error instanceof Error ? { reason: error.message, stack: error.stack } : { reason: String(error) };
+
 /** Does it until it is done: what is passing is waited for with growing pauses of at most five seconds, for as long as it takes. */
 export async function untilDone<T>(what: string, act: () => Promise<T>, signal: AbortSignal): Promise<T> {
   for (let attempt = 0; ; attempt++) {
@@ -22,7 +26,7 @@ export async function untilDone<T>(what: string, act: () => Promise<T>, signal: 
       return await act();
     } catch (error) {
       if (!isPassing(error) || signal.aborted) throw error;
-      log.warn({ err: error, attempt }, `${what}: trying again`);
+      log.warn({ ...reasonOf(error), attempt }, `${what}: trying again`);
       await sleep(Math.min(5_000, 100 * 2 ** attempt), undefined, { signal });
     }
   }

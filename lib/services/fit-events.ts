@@ -7,7 +7,7 @@ import type { Access } from './access';
 import { findFit, fitContext } from './fit-records';
 
 /** Milliseconds between two events of one stream at least, and between two reads that nobody called for. */
-const pace = { between: 800, unasked: 2_000 } as const;
+const pace = { between: 500, unasked: 2_000 } as const;
 
 export interface FitWatcher {
   onEvent(event: FitEvent): void;

@@ -138,6 +138,16 @@ export async function failFit(fitId: string, epoch: number, message: string): Pr
   return rows === 1;
 }
 
+/** Ends a fit that can't even be taken up, so that it isn't queued for ever; one that somebody holds is left alone. */
+export async function failUnheld(fitId: string, message: string): Promise<void> {
+  await update(
+    `UPDATE fits SET status = 'failed', message = :message, epoch = epoch + 1, lease_until = NULL,
+       stop_requested = 0, ended_at = UTC_TIMESTAMP(3)
+     WHERE id = :fitId AND ${running} AND ${leaseOver}`,
+    { fitId, message },
+  );
+}
+
 /** Unfinished fits that nobody holds: those that a queue has to be told of (again). */
 export async function unheldFits(): Promise<{ id: string; epoch: number }[]> {
   return database().query<{ id: string; epoch: number }>(

@@ -1,0 +1,149 @@
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { MeasurementVersion, Fit } from '@/models';
+import { GET as events } from '@/app/api/v1/fits/[id]/events/route';
+import { database } from '@/lib/db';
+import { closeQueue, fitChannel } from '@/lib/jobs';
+import { subscribe } from '@/lib/redis';
+import { fitEventSchema, type FitEvent } from '@/lib/schemas';
+import { readPoints, writeDoubles } from '@/lib/services/inference-spec';
+import { call, closeConnections } from './harness';
+import {
+  background,
+  buildWorker,
+  endWorkers,
+  fitEnded,
+  fitOf,
+  oneField,
+  openDesk,
+  openNotebook,
+  resumeFit,
+  startFit,
+  startWorker,
+  type Desk,
+} from './sampling';
+
+let desk: Desk;
+beforeAll(async () => {
+  database();
+  await buildWorker();
+  desk = await openDesk();
+});
+afterAll(async () => {
+  await endWorkers();
+  await closeQueue();
+  await closeConnections();
+});
+
+interface Arrival {
+  at: number;
+  event: FitEvent;
+}
+
+/** Reads a stream to its end; every frame of ours is one event named `fit` with one line of data. */
+async function readEvents(id: string): Promise<Arrival[]> {
+  const answer = await call(events, { params: { id }, token: desk.token });
+  expect(answer.headers.get('content-type')).toContain('text/event-stream');
+  const arrivals: Arrival[] = [];
+  const decoder = new TextDecoder();
+  let text = '';
+  for await (const chunk of answer.body as unknown as AsyncIterable<Uint8Array>) {
+    text += decoder.decode(chunk, { stream: true });
+    const frames = text.split('\n\n');
+    text = frames.pop() ?? '';
+    for (const frame of frames) {
+      const match = /^event: fit\ndata: (.*)$/.exec(frame);
+      if (match) arrivals.push({ at: Date.now(), event: fitEventSchema.parse(JSON.parse(match[1])) });
+    }
+  }
+  return arrivals;
+}
+
+const drawsOf = ({ progress }: FitEvent) => progress.warmup + progress.draws;
+
+describe('the events of a fit', () => {
+  it('begin with its state, follow every commit within a second, and end with the fit', async () => {
+    const notebook = await openNotebook(desk, oneField);
+    const id = await startFit(desk, notebook, { seed: 1, maxDraws: 1200, target: { ess: 1e9 } });
+    const commits: { at: number; draws: number }[] = [];
+    const unsubscribe = await subscribe(fitChannel(id), (draws) => {
+      commits.push({ at: Date.now(), draws: Number(draws) });
+    });
+    const reading = readEvents(id);
+    startWorker();
+    const arrivals = await reading;
+    unsubscribe();
+
+    expect(arrivals[0].event).toMatchObject({ status: 'queued', message: 'It waits for a worker.' });
+    expect(new Set(arrivals.map(({ event }) => event.status))).toContain('warming-up');
+    const last = arrivals[arrivals.length - 1].event;
+    expect(last).toMatchObject({ status: 'budget-spent', progress: { draws: 1200, secondsLeft: 0 } });
+    expect(last.diagnostics.length).toBeGreaterThan(0);
+    expect(await fitOf(desk, id)).toMatchObject(last);
+
+    expect(commits.length).toBeGreaterThan(3);
+    for (const commit of commits) {
+      const seen = arrivals.find(({ event, at }) => at >= commit.at && drawsOf(event) >= commit.draws);
+      expect(seen && seen.at - commit.at).toBeLessThan(1000);
+    }
+    for (let i = 1; i < arrivals.length; i++) {
+      expect(drawsOf(arrivals[i].event)).toBeGreaterThanOrEqual(drawsOf(arrivals[i - 1].event));
+    }
+  });
+
+  it('of a fit that has ended are its last state alone', async () => {
+    const notebook = await openNotebook(desk, background);
+    const id = await startFit(desk, notebook, { seed: 1, maxDraws: 200, replicas: 2 });
+    await fitEnded(desk, id);
+    const arrivals = await readEvents(id);
+    expect(arrivals.map(({ event }) => event.status)).toEqual(['budget-spent']);
+  });
+});
+
+describe('a fit that can’t be sampled', () => {
+  let notebook: string;
+  beforeAll(async () => {
+    await endWorkers();
+    notebook = await openNotebook(desk, background);
+  });
+
+  /** A fit of a measurement whose numbers are no more what was uploaded. */
+  async function spoiltFit(value: number): Promise<string> {
+    const id = await startFit(desk, notebook, { seed: 1 });
+    const { measurementVersionId } = await Fit.findByPk(id, { rejectOnEmpty: true });
+    const version = await MeasurementVersion.findByPk(measurementVersionId, { rejectOnEmpty: true });
+    const { kappa, kappaLo, kappaHi, S } = readPoints(version);
+    const edges = [kappaLo ?? kappa, kappaHi ?? kappa];
+    await version.update({ points: writeDoubles(kappa, ...edges, S.fill(value)) });
+    return id;
+  }
+
+  it('fails with the reason and the remedy, and can be resumed', async () => {
+    const id = await spoiltFit(NaN);
+    startWorker();
+    const fit = await fitEnded(desk, id);
+    expect(fit.status).toBe('failed');
+    expect(fit.message).toMatch(/^Data value 0 is not a finite number: /);
+    expect(fit.may).toContain('fit.resume');
+    expect(fit.may).not.toContain('fit.extend');
+    expect((await resumeFit(desk, id)).message).toBe('It waits for a worker.');
+    expect((await fitEnded(desk, id)).status).toBe('failed');
+    await endWorkers();
+  });
+
+  it('fails in the sampler’s words where no draw from the prior can be started from', async () => {
+    const id = await spoiltFit(1e200);
+    startWorker();
+    const fit = await fitEnded(desk, id);
+    expect(fit.status).toBe('failed');
+    expect(fit.message).toMatch(/^None of 1000 draws from the prior has a finite likelihood: /);
+    await endWorkers();
+  });
+
+  it('fails once and for all where its states are lost', async () => {
+    const id = await startFit(desk, notebook, { seed: 1 });
+    await Fit.update({ draws: 500 }, { where: { id } });
+    startWorker();
+    const fit = await fitEnded(desk, id);
+    expect(fit).toMatchObject({ status: 'failed', message: expect.stringContaining('can’t be read') });
+  });
+});
