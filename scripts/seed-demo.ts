@@ -6,6 +6,7 @@ import { database } from '@/lib/db';
 import { Group, Membership, User } from '@/models';
 import {
   accounts,
+  couplingPrior,
   demoEmail,
   groupName,
   siteAdministrator,
@@ -48,6 +49,7 @@ async function fill(): Promise<void> {
     title: 'Two mixed fields in the Larkfield deep field',
     measurement,
     template: { id: 'locked-squeezed', options: twoFieldOptions },
+    priors: { g: couplingPrior },
   });
 }
 

@@ -2,7 +2,7 @@ import { createRng, type Rng } from '@/lib/sampler';
 import { compileTemplate } from '@/lib/templates';
 
 /**
- * The demo's invented survey: a deep narrow field whose squeezed triangles reach from κ = 0.003 to 0.3. Signal and
+ * The demo's invented survey: a deep narrow field whose squeezed triangles reach from κ = 0.002 to 0.3. Signal and
  * noise are made up here from fixed seeds; nothing in it was measured.
  */
 
@@ -13,15 +13,18 @@ export const groupName = 'Demo group';
 
 const bins = 40;
 const mocks = 600;
-const edges = Array.from({ length: bins + 1 }, (_, i) => 0.003 * 100 ** (i / bins));
+const edges = Array.from({ length: bins + 1 }, (_, i) => 0.002 * 150 ** (i / bins));
 
 /** What was put in: two mixed fields on vertex 2, phases locked, over a smooth background. */
-export const truth = { mu1: 1, mu2: 2.3, theta: 1.32, g: 30, c1: -1.1, c2: 0.9 };
+export const truth = { mu1: 1.9, mu2: 3.1, theta: 1.4, g: 1500, c1: -0.3, c2: 0.4 };
+
+/** The coupling's scale hangs on the masses by powers of ten, so its prior is stated: wide enough for both. */
+export const couplingPrior = { kind: 'normal', mean: 0, sd: 2000 } as const;
 
 export const twoFieldOptions = { fields: 2, vertex: 2, phases: 'locked', background: [1, 2] };
 
 /** Standard error of each bin, and a correlation that falls by half from one bin to the next. */
-const sigma = (i: number): number => 0.003 + 0.02 * Math.sqrt(edges[i] * edges[i + 1]);
+const sigma = (i: number): number => 0.002 + 0.055 * Math.sqrt(Math.sqrt(edges[i] * edges[i + 1]));
 const correlation = 0.5;
 
 /** One realisation of the noise: a first-order autoregression across the bins. */
