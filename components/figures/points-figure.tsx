@@ -1,12 +1,13 @@
 'use client';
 
-import { useId, useMemo, type ReactNode } from 'react';
-import { Area, ComposedChart, Line, Scatter, XAxis, YAxis } from 'recharts';
-import { linearTicks, logTicks, paddedDomain } from '@/lib/figures/ticks';
+import { memo, useId, useMemo, type ReactNode } from 'react';
+import { Area, ComposedChart, Scatter, XAxis, YAxis } from 'recharts';
+import { linearTicks, logTicks } from '@/lib/figures/ticks';
 import { Figure, type FigureFacts, type FigureSize } from './figure';
-import { Frame, type Panel } from './frame';
-import { Key, placeKey, type KeyEntry } from './key';
-import { Flags, PointShape, ResidualPanel, ZeroLine, type DrawnPoint } from './points-layers';
+import { Frame } from './frame';
+import { Key, type KeyEntry } from './key';
+import { CurveLine, Flags, PointShape, ResidualGround, Residuals, ZeroLine } from './points-layers';
+import { classOf, kappaDomain, keyEntries, placePanels, valueDomain } from './points-layout';
 import { pointsNumbers } from './points-numbers';
 import { KappaName, ShapeName } from './svg-text';
 
@@ -57,76 +58,7 @@ export interface PointsFigureProps extends FigureFacts {
   yName?: ReactNode;
 }
 
-const lineClass = {
-  sum: 'sum',
-  best: 'sum',
-  background: 'bg',
-  envelope: 'env',
-} as const;
-
-function classOf(curve: Curve): string {
-  return curve.role === 'field' ? `ln f${(curve.field ?? 0) + 1}` : lineClass[curve.role];
-}
-
-/** Ends of the axis: the outer edges of the bins, else a little more than the points or curves reach. */
-function kappaDomain({ xDomain, points, curves = [], band }: PointsFigureProps): [number, number] {
-  if (xDomain) return [xDomain[0], xDomain[1]];
-  const first = points?.lo?.[0];
-  const last = points?.hi?.[points.hi.length - 1];
-  if (first !== undefined && last !== undefined && first > 0) return [first, last];
-  const kappas = [points?.kappa ?? [], ...curves.map((c) => c.kappa), band?.kappa ?? []].flatMap((k) =>
-    Array.from(k),
-  );
-  const positive = kappas.filter((k) => k > 0);
-  if (!positive.length) return [0.001, 1];
-  const [lo, hi] = [Math.min(...positive), Math.max(...positive)];
-  return points ? [lo / 1.06, hi * 1.06] : [lo, hi];
-}
-
-/** Ends of the vertical axis: from the points with their errors alone, so that it stands still while curves move. */
-function valueDomain({ yDomain, points, curves = [], band }: PointsFigureProps): [number, number] {
-  if (yDomain) return [yDomain[0], yDomain[1]];
-  const { value = [], error = [] } = points ?? {};
-  const ends = Array.from(value).flatMap((v, i) => [v - error[i], v + error[i]]);
-  if (ends.some(Number.isFinite)) return paddedDomain(ends, 0.1);
-  const drawn = band ? [band.lo95, band.hi95] : curves.map((c) => c.y);
-  return paddedDomain(drawn.flatMap((y) => Array.from(y)));
-}
-
-/** Where things stand at a given size; the key's rows push the panels down. */
-function layout(props: PointsFigureProps, keys: KeyEntry[], { width, narrow }: FigureSize) {
-  const left = narrow ? 36 : 44;
-  const keyFrom = narrow ? left : 112;
-  const { rows } = placeKey(keys, keyFrom, width - 8);
-  const top = narrow ? 37 + 21 * rows : 44 + 21 * Math.max(0, rows - 1);
-  const main: Panel = { left, right: width - 8, top, bottom: top + (narrow ? 186 : 252) };
-  if (!props.residuals) return { main, keyFrom, height: roundUp(main.bottom + 52) };
-  const residual: Panel = {
-    ...main,
-    top: main.bottom + (narrow ? 34 : 38),
-    bottom: main.bottom + (narrow ? 96 : 114),
-  };
-  return { main, residual, keyFrom, height: roundUp(residual.bottom + 52) };
-}
-
-function roundUp(height: number): number {
-  return Math.ceil(height / 7) * 7;
-}
-
-function keyEntries({ curves = [], band }: PointsFigureProps): KeyEntry[] {
-  const lines = curves.map((c) => ({
-    line: classOf(c),
-    field: c.role === 'field' ? c.field : undefined,
-    label: c.label,
-  }));
-  return band?.label ? [...lines, { line: 'band', label: band.label }] : lines;
-}
-
-function series(kappa: ArrayLike<number>, y: ArrayLike<number>) {
-  return Array.from(kappa, (x, i) => ({ x, y: y[i] }));
-}
-
-/** Strokes come from the class of the group round a line, so the chart's own defaults give way. */
+/** Fills come from the class of the group round a band, so the chart's own defaults give way. */
 const still = {
   isAnimationActive: false,
   legendType: 'none',
@@ -143,11 +75,12 @@ const depth: readonly Curve['role'][] = ['envelope', 'background', 'field', 'bes
 /** Measured points with errors on log κ; curves, a band, and residuals below on the same axis. */
 export function PointsFigure(props: PointsFigureProps) {
   const keys = keyEntries(props);
+  const height = (size: FigureSize) => placePanels(keys, props.residuals !== undefined, size).height;
   return (
     <Figure
       {...props}
-      height={layout(props, keys, { width: 720, narrow: false }).height}
-      heightNarrow={layout(props, keys, { width: 350, narrow: true }).height}
+      height={height({ width: 720, narrow: false })}
+      heightNarrow={height({ width: 350, narrow: true })}
       numbers={() => pointsNumbers(props)}
     >
       {(size) => <PointsDrawing figure={props} size={size} keys={keys} />}
@@ -155,48 +88,103 @@ export function PointsFigure(props: PointsFigureProps) {
   );
 }
 
-function PointsDrawing({
-  figure,
-  size,
-  keys,
-}: {
+/**
+ * The same object for as long as its content stays the same. A chart lays everything out anew when it is handed a new
+ * object, and curves that follow a slider have no time for that.
+ */
+function useSettled<T>(value: T): T {
+  const content = JSON.stringify(value);
+  return useMemo(() => JSON.parse(content) as T, [content]);
+}
+
+interface DrawingProps {
   figure: PointsFigureProps;
   size: FigureSize;
   keys: KeyEntry[];
-}) {
+}
+
+function PointsDrawing({ figure, size, keys }: DrawingProps) {
   const { points, curves = [], band, residuals } = figure;
   const clip = useId();
-  const { main, residual, keyFrom, height } = layout(figure, keys, size);
-  const lowest = residual ?? main;
-  const xDomain = kappaDomain(figure);
-  const yDomain = valueDomain(figure);
-  const xTicks = logTicks(xDomain[0], xDomain[1], size.narrow ? 4 : 5);
-  const drawn = useMemo<DrawnPoint[]>(
-    () => Array.from(points?.kappa ?? [], (x, i) => ({ x, y: points!.value[i], error: points!.error[i], i })),
-    [points],
+  const places = useSettled(placePanels(keys, residuals !== undefined, size));
+  const xDomain = useSettled(kappaDomain(figure));
+  const yDomain = useSettled(valueDomain(figure));
+  const { main, residual, height } = places;
+  const margin = useMemo(
+    () => ({
+      left: main.left,
+      right: size.width - main.right,
+      top: main.top,
+      bottom: height - (residual ?? main).bottom,
+    }),
+    [main, residual, height, size.width],
   );
-  const bands = useMemo(
-    () =>
-      Array.from(band?.kappa ?? [], (x, i) => ({
-        x,
-        b95: [band!.lo95[i], band!.hi95[i]],
-        b68: [band!.lo68[i], band!.hi68[i]],
-      })),
-    [band],
-  );
-  const inMain = { yAxisId: 'main', clipPath: `url(#${clip})` };
   return (
-    <ComposedChart
-      width={size.width}
-      height={height}
-      accessibilityLayer={false}
-      margin={{
-        left: main.left,
-        right: size.width - main.right,
-        top: main.top,
-        bottom: height - lowest.bottom,
-      }}
-    >
+    <ComposedChart width={size.width} height={height} accessibilityLayer={false} margin={margin}>
+      <Ground
+        points={points}
+        band={band}
+        places={places}
+        xDomain={xDomain}
+        yDomain={yDomain}
+        narrow={size.narrow}
+        clip={clip}
+        yName={figure.yName}
+      />
+      {[...curves]
+        .sort((a, b) => depth.indexOf(a.role) - depth.indexOf(b.role))
+        .flatMap((curve) =>
+          [curve.y, curve.yLow].map((y, half) =>
+            y ? (
+              <CurveLine
+                key={`${curve.label} ${half}`}
+                className={`${classOf(curve)}${curves.length > 2 && curve.role === 'field' ? ' thin' : ''}`}
+                kappa={curve.kappa}
+                y={y}
+                clip={clip}
+              />
+            ) : null,
+          ),
+        )}
+      {residual && residuals && points ? (
+        <Residuals panel={residual} kappa={points.kappa} residuals={residuals} />
+      ) : null}
+      <Key entries={keys} from={places.keyFrom} to={main.right} y={size.narrow ? 11 : 27} />
+    </ComposedChart>
+  );
+}
+
+interface GroundProps {
+  points?: MeasuredPoints;
+  band?: Band;
+  places: ReturnType<typeof placePanels>;
+  xDomain: [number, number];
+  yDomain: [number, number];
+  narrow: boolean;
+  clip: string;
+  yName?: ReactNode;
+}
+
+const residualDomain: [number, number] = [-3, 3];
+
+/** All that stands still while curves move: axes, frames, band and points. */
+const Ground = memo(function Ground(props: GroundProps) {
+  const { points, band, places, xDomain, yDomain, narrow, clip, yName } = props;
+  const { main, residual } = places;
+  const xTicks = logTicks(xDomain[0], xDomain[1], narrow ? 4 : 5);
+  const drawn = Array.from(points?.kappa ?? [], (x, i) => ({
+    x,
+    y: points?.value[i],
+    error: points?.error[i],
+    i,
+  }));
+  const bands = Array.from(band?.kappa ?? [], (x, i) => ({
+    x,
+    b95: [band?.lo95[i], band?.hi95[i]],
+    b68: [band?.lo68[i], band?.hi68[i]],
+  }));
+  return (
+    <>
       <defs>
         <clipPath id={clip}>
           <rect x={main.left} y={main.top} width={main.right - main.left} height={main.bottom - main.top} />
@@ -207,7 +195,7 @@ function PointsDrawing({
         yAxisId="main"
         type="number"
         domain={yDomain}
-        padding={{ bottom: lowest.bottom - main.bottom }}
+        padding={{ bottom: (residual ?? main).bottom - main.bottom }}
         allowDataOverflow
         hide
       />
@@ -216,7 +204,9 @@ function PointsDrawing({
             <Area
               key={key}
               {...still}
-              {...inMain}
+              zIndex={-1}
+              yAxisId="main"
+              clipPath={`url(#${clip})`}
               data={bands}
               dataKey={key}
               className={key}
@@ -228,30 +218,16 @@ function PointsDrawing({
         panel={main}
         yAxisId="main"
         xTicks={xTicks}
-        yTicks={linearTicks(yDomain[0], yDomain[1], size.narrow ? 4 : 6)}
+        yTicks={linearTicks(yDomain[0], yDomain[1], narrow ? 4 : 6)}
         xLabels={!residual}
         xName={residual ? undefined : <KappaName />}
-        yName={figure.yName ?? <ShapeName />}
+        yName={yName ?? <ShapeName />}
       />
       <ZeroLine panel={main} yAxisId="main" />
-      {[...curves]
-        .sort((a, b) => depth.indexOf(a.role) - depth.indexOf(b.role))
-        .flatMap((curve) =>
-          [curve.y, curve.yLow].map((y, half) =>
-            y ? (
-              <CurveLine
-                key={`${curve.label} ${half}`}
-                curve={curve}
-                y={y}
-                inMain={inMain}
-                thin={curves.length > 2}
-              />
-            ) : null,
-          ),
-        )}
       {drawn.length ? (
         <Scatter
-          {...{ isAnimationActive: false, legendType: 'none' as const }}
+          isAnimationActive={false}
+          legendType="none"
           yAxisId="main"
           data={drawn}
           dataKey="y"
@@ -259,36 +235,19 @@ function PointsDrawing({
         />
       ) : null}
       {points ? <Flags points={points} panel={main} /> : null}
-      {residual && residuals && points ? (
+      {residual ? (
         <>
           <YAxis
             yAxisId="residual"
             type="number"
-            domain={[-3, 3]}
+            domain={residualDomain}
             padding={{ top: residual.top - main.top }}
             allowDataOverflow
             hide
           />
-          <ResidualPanel panel={residual} kappa={points.kappa} residuals={residuals} xTicks={xTicks} />
+          <ResidualGround panel={residual} xTicks={xTicks} />
         </>
       ) : null}
-      <Key entries={keys} from={keyFrom} to={main.right} y={size.narrow ? 11 : 27} />
-    </ComposedChart>
+    </>
   );
-}
-
-function CurveLine({
-  curve,
-  y,
-  inMain,
-  thin,
-}: {
-  curve: Curve;
-  y: ArrayLike<number>;
-  inMain: { yAxisId: string; clipPath: string };
-  thin: boolean;
-}) {
-  const data = useMemo(() => series(curve.kappa, y), [curve.kappa, y]);
-  const className = `${classOf(curve)}${thin && curve.role === 'field' ? ' thin' : ''}`;
-  return <Line {...still} {...inMain} data={data} dataKey="y" type="linear" className={className} />;
-}
+});

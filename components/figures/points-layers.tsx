@@ -1,8 +1,34 @@
+import { memo } from 'react';
+import { linePath } from '@/lib/figures/paths';
 import type { Tick } from '@/lib/figures/ticks';
 import { linearTicks } from '@/lib/figures/ticks';
 import { Frame, usePixels, type Panel } from './frame';
 import type { MeasuredPoints } from './points-figure';
 import { KappaName } from './svg-text';
+
+export interface CurveLineProps {
+  className: string;
+  kappa: ArrayLike<number>;
+  y: ArrayLike<number>;
+  /** Id of the clip path of the main panel. */
+  clip: string;
+}
+
+/**
+ * A curve as one path over the chart's scales. The chart's own line keeps a frozen copy of its data in a store and lays
+ * out anew with each change; five such lines cost more than a frame under a slider, five paths a tenth of it.
+ */
+export const CurveLine = memo(function CurveLine({ className, kappa, y, clip }: CurveLineProps) {
+  const pixels = usePixels('main');
+  if (!pixels) return null;
+  return (
+    <path
+      className={className}
+      clipPath={`url(#${clip})`}
+      d={linePath(Array.from(kappa, pixels.x), Array.from(y, pixels.y))}
+    />
+  );
+});
 
 export interface DrawnPoint {
   x: number;
@@ -90,17 +116,10 @@ export function Flags({ points, panel }: { points: MeasuredPoints; panel: Panel 
   );
 }
 
-export interface ResidualPanelProps {
-  panel: Panel;
-  kappa: ArrayLike<number>;
-  residuals: ArrayLike<number>;
-  xTicks: readonly Tick[];
-}
-
-/** Residuals in standard deviations over bands of one and two. */
-export function ResidualPanel({ panel, kappa, residuals, xTicks }: ResidualPanelProps) {
+/** Where residuals are drawn: bands of one and two standard deviations, frame and name. */
+export function ResidualGround({ panel, xTicks }: { panel: Panel; xTicks: readonly Tick[] }) {
   const pixels = usePixels('residual');
-  const { left, right, top, bottom } = panel;
+  const { left, right, top } = panel;
   const y = (v: number) => pixels?.y(v) ?? NaN;
   return (
     <g>
@@ -117,22 +136,6 @@ export function ResidualPanel({ panel, kappa, residuals, xTicks }: ResidualPanel
           ))
         : null}
       <ZeroLine panel={panel} yAxisId="residual" />
-      {pixels
-        ? Array.from(residuals, (r, i) => {
-            const x = pixels.x(kappa[i]);
-            if (!Number.isFinite(r) || !(x >= left && x <= right)) return null;
-            const out = Math.abs(r) > 3;
-            return (
-              <circle
-                key={i}
-                className={out ? 'pt out' : 'pt'}
-                cx={x.toFixed(1)}
-                cy={(out ? (r > 0 ? top : bottom) : y(r)).toFixed(1)}
-                r={out ? 2.2 : 1.9}
-              />
-            );
-          })
-        : null}
       <Frame
         panel={panel}
         yAxisId="residual"
@@ -143,6 +146,36 @@ export function ResidualPanel({ panel, kappa, residuals, xTicks }: ResidualPanel
       <text className="at" x={left - 2} y={top - 9}>
         residual, standard deviations
       </text>
+    </g>
+  );
+}
+
+export interface ResidualsProps {
+  panel: Panel;
+  kappa: ArrayLike<number>;
+  residuals: ArrayLike<number>;
+}
+
+/** One point a residual; beyond three standard deviations an open circle at the edge. */
+export function Residuals({ panel, kappa, residuals }: ResidualsProps) {
+  const pixels = usePixels('residual');
+  if (!pixels) return null;
+  return (
+    <g>
+      {Array.from(residuals, (r, i) => {
+        const x = pixels.x(kappa[i]);
+        if (!Number.isFinite(r) || !(x >= panel.left && x <= panel.right)) return null;
+        const out = Math.abs(r) > 3;
+        return (
+          <circle
+            key={i}
+            className={out ? 'pt out' : 'pt'}
+            cx={x.toFixed(1)}
+            cy={(out ? (r > 0 ? panel.top : panel.bottom) : pixels.y(r)).toFixed(1)}
+            r={out ? 2.2 : 1.9}
+          />
+        );
+      })}
     </g>
   );
 }
