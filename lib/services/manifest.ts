@@ -5,6 +5,9 @@ import { findDraws, type FitSource } from './fit-records';
 import { fitModel, specOf } from './fit-model';
 import { sampleChecksum } from './samples';
 
+/** Fewest kept draws a replica that a fit can be started with. */
+const leastDraws = 100;
+
 /** What a person does, with which program, to get the same bytes again. */
 function howToRunAgain({ fit, version, snapshot }: FitSource): string[] {
   const { program, node, architecture, seed, replicas } = snapshot;
@@ -16,11 +19,21 @@ function howToRunAgain({ fit, version, snapshot }: FitSource): string[] {
     priors: snapshot.priors,
   };
   const kept = Math.max(0, fit.draws - snapshot.warmup);
+  const outcome =
+    kept >= leastDraws
+      ? `With that target it makes exactly the ${kept} kept draws a replica that are here.`
+      : `It was stopped at ${fit.draws} draws a replica, warm-up included: the first ${fit.draws} of a run again are these.`;
+  // With mocks their number is counted, with a covariance it has to be told.
+  const counted = version.files.some(({ part }) => part === 'mocks');
+  const meta = {
+    columns: snapshot.mapping,
+    ...(counted ? {} : { mockCount: snapshot.mockCount ?? undefined }),
+  };
   const steps = [
     `Install Beatnote ${program} on Node.js ${node}, architecture ${architecture}: draws depend on all three.`,
-    `Upload the files with the checksums under inputs (${files}): POST /api/v1/groups/GROUP/measurements, with meta ${JSON.stringify({ columns: snapshot.mapping, mockCount: snapshot.mockCount ?? undefined })}.`,
+    `Upload the files with the checksums under inputs (${files}): POST /api/v1/groups/GROUP/measurements, with meta ${JSON.stringify(meta)}.`,
     `Open a notebook on that measurement: POST /api/v1/groups/GROUP/notebooks with a title, the measurement and ${JSON.stringify(settings)}.`,
-    `Start the fit: POST /api/v1/notebooks/NOTEBOOK/fits with ${JSON.stringify(runSettings(seed, replicas, kept))}. With that target it makes exactly the ${kept} kept draws a replica that are here.`,
+    `Start the fit: POST /api/v1/notebooks/NOTEBOOK/fits with ${JSON.stringify(runSettings(seed, replicas, kept))}. ${outcome}`,
     'Download the samples: GET /api/v1/fits/FIT/samples?format=csv; their SHA-256 is the one under outputs.',
   ];
   const angles = circularNames({ fit, version, snapshot });
@@ -37,7 +50,7 @@ function howToRunAgain({ fit, version, snapshot }: FitSource): string[] {
 const runSettings = (seed: string, replicas: number, maxDraws: number) => ({
   seed,
   replicas,
-  maxDraws,
+  maxDraws: Math.max(maxDraws, leastDraws),
   target: { ess: 1e9 },
 });
 

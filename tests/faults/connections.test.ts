@@ -30,7 +30,7 @@ beforeAll(async () => {
   database();
   await buildWorker();
   desk = await openDesk();
-  notebook = await openNotebook(desk, background);
+  notebook = await openNotebook(desk, { template: background });
   startWorker();
   const id = await startFit(desk, notebook, settings);
   await fitEnded(desk, id);

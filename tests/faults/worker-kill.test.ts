@@ -29,7 +29,7 @@ beforeAll(async () => {
   database();
   await buildWorker();
   desk = await openDesk();
-  notebook = await openNotebook(desk, oneField);
+  notebook = await openNotebook(desk, { template: oneField });
   const worker = startWorker();
   const id = await startFit(desk, notebook, settings);
   const { diagnostics, gate, history } = await fitEnded(desk, id);

@@ -62,7 +62,7 @@ const drawsOf = ({ progress }: FitEvent) => progress.warmup + progress.draws;
 
 describe('the events of a fit', () => {
   it('begin with its state, follow every commit within a second, and end with the fit', async () => {
-    const notebook = await openNotebook(desk, oneField);
+    const notebook = await openNotebook(desk, { template: oneField });
     const id = await startFit(desk, notebook, { seed: 1, maxDraws: 1200, target: { ess: 1e9 } });
     const commits: { at: number; draws: number }[] = [];
     const unsubscribe = await subscribe(fitChannel(id), (draws) => {
@@ -91,7 +91,7 @@ describe('the events of a fit', () => {
   });
 
   it('of a fit that has ended are its last state alone', async () => {
-    const notebook = await openNotebook(desk, background);
+    const notebook = await openNotebook(desk, { template: background });
     const id = await startFit(desk, notebook, { seed: 1, maxDraws: 200, replicas: 2 });
     await fitEnded(desk, id);
     const arrivals = await readEvents(id);
@@ -103,7 +103,7 @@ describe('a fit that can’t be sampled', () => {
   let notebook: string;
   beforeAll(async () => {
     await endWorkers();
-    notebook = await openNotebook(desk, background);
+    notebook = await openNotebook(desk, { template: background });
   });
 
   /** A fit of a measurement whose numbers are no more what was uploaded. */

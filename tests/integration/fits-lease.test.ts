@@ -21,7 +21,7 @@ let id: string;
 beforeAll(async () => {
   database();
   desk = await openDesk();
-  notebook = await openNotebook(desk, background);
+  notebook = await openNotebook(desk, { template: background });
 });
 beforeEach(async () => {
   id = await startFit(desk, notebook, { seed: 1, replicas: 2 });

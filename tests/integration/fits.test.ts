@@ -36,7 +36,7 @@ beforeAll(async () => {
   database();
   await buildWorker();
   desk = await openDesk();
-  simple = await openNotebook(desk, background);
+  simple = await openNotebook(desk, { template: background });
   startWorker();
 });
 afterAll(async () => {
@@ -66,7 +66,7 @@ const reportedOf = ({ mean, sd, q2_5, q16, q50, q84, q97_5, mcseMean, mcseSd }: 
 
 describe('a fit of two fields', () => {
   it('ends by itself, with diagnostics of exactly the draws in its sample file', async () => {
-    const notebook = await openNotebook(desk, twoFields, 'two-field.csv');
+    const notebook = await openNotebook(desk, { template: twoFields }, 'two-field.csv');
     const id = await startFit(desk, notebook, { seed: 7, maxDraws: 1500, target: { rhat: 1.05, ess: 200 } });
     const fit = await fitEnded(desk, id);
     expect(['converged', 'budget-spent']).toContain(fit.status);
@@ -174,7 +174,7 @@ describe('a fit’s seed', () => {
 describe('what a fit gives out', () => {
   let id: string;
   beforeAll(async () => {
-    const notebook = await openNotebook(desk, oneField);
+    const notebook = await openNotebook(desk, { template: oneField });
     id = await startFit(desk, notebook, { seed: 11, maxDraws: 1100, target: unreachable });
     await fitEnded(desk, id);
   });
@@ -194,6 +194,19 @@ describe('what a fit gives out', () => {
     expect(manifest.versions).toMatchObject({ node: process.version, architecture: process.arch });
     expect(new Set(manifest.seeds.replicas).size).toBe(4);
     expect(manifest.howToRunAgain.join('\n')).toContain('"seed":"11"');
+  });
+
+  it('is a manifest whose steps, followed to the letter, give the same bytes', async () => {
+    const answer = await call(readManifest, { params: { id }, token: desk.token });
+    const { howToRunAgain } = manifestSchema.parse(await answer.json());
+    const given = (word: string): Record<string, unknown> => {
+      const step = howToRunAgain.find((each) => each.includes(word)) ?? '';
+      return JSON.parse(step.slice(step.indexOf('{'), step.lastIndexOf('}') + 1)) as Record<string, unknown>;
+    };
+    const notebook = await openNotebook(desk, given('/notebooks with'), 'one-field.csv', given('with meta'));
+    const again = await startFit(desk, notebook, given('/fits with'));
+    expect((await fitEnded(desk, again)).snapshot).toEqual((await fitOf(desk, id)).snapshot);
+    expect(await samplesOf(desk, again)).toBe(await samplesOf(desk, id));
   });
 
   it('is a sample file in which neither an id nor a date stands', async () => {

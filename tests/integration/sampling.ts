@@ -9,9 +9,16 @@ import { POST as stop } from '@/app/api/v1/fits/[id]/stop/route';
 import { POST as resume } from '@/app/api/v1/fits/[id]/resume/route';
 import { POST as extend } from '@/app/api/v1/fits/[id]/extend/route';
 import { GET as samples } from '@/app/api/v1/fits/[id]/samples/route';
-import { createdSchema, endedStatuses, fitSchema, notebookCreatedSchema, type Fit } from '@/lib/schemas';
+import {
+  createdSchema,
+  endedStatuses,
+  fitSchema,
+  measurementCreatedSchema,
+  notebookCreatedSchema,
+  type Fit,
+} from '@/lib/schemas';
 import { call, createGroup, createMember } from './harness';
-import { uploadData } from './uploads';
+import { filePart, uploadTo } from './uploads';
 
 const root = fileURLToPath(new URL('../../', import.meta.url));
 
@@ -90,13 +97,17 @@ export const background = { id: 'background', options: { background: [1, 2] } };
 export const oneField = { id: 'free-phase', options: { fields: 1 } };
 export const twoFields = { id: 'locked-squeezed', options: { fields: 2 } };
 
+/** A new notebook with these settings on a new measurement. */
 export async function openNotebook(
   { group, token }: Desk,
-  template: { id: string; options: Record<string, unknown> },
+  settings: Record<string, unknown>,
   file: 'one-field.csv' | 'two-field.csv' = 'one-field.csv',
+  meta: Record<string, unknown> = {},
 ): Promise<string> {
-  const { id: measurement } = await uploadData(group, token, file);
-  const json = { title: 'Sampling', measurement, template };
+  const parts = { file: filePart(file), mocks: filePart(file.replace('.csv', '-mocks.csv')) };
+  const uploaded = await uploadTo(group, token, { ...parts, meta: JSON.stringify(meta) });
+  const { id: measurement } = await parsed(uploaded, 201, measurementCreatedSchema);
+  const json = { title: 'Sampling', measurement, ...settings };
   const answer = await call(createNotebook, { params: { id: group }, token, json });
   return (await parsed(answer, 201, notebookCreatedSchema)).id;
 }
