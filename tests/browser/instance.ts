@@ -52,7 +52,10 @@ export class StartedInstance {
   static async start(state = mkdtempSync(path.join(tmpdir(), 'beatnote-test-'))): Promise<StartedInstance> {
     const port = await freePort();
     const begun = Date.now();
-    const { DATABASE_URL: _d, REDIS_URL: _r, S3_ENDPOINT: _s, SMTP_URL: _m, ...environment } = process.env;
+    const services = ['DATABASE_URL', 'REDIS_URL', 'S3_ENDPOINT', 'SMTP_URL'];
+    const environment = Object.fromEntries(
+      Object.entries(process.env).filter(([name]) => !services.includes(name)),
+    );
     const child = spawn('npm', ['start'], {
       cwd: root,
       env: { ...environment, PORT: String(port), BEATNOTE_STATE: state },
