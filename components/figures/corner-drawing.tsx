@@ -92,7 +92,7 @@ interface JointPanelProps {
   x: Marginal;
   y: Marginal;
   place: PanelPlace;
-  /** Leftmost of its row: the vertical axis has its numbers. */
+  /** Leftmost of its row: the vertical axis has its numbers; on a phone none beside the name. */
   labelled: boolean;
 }
 
@@ -118,7 +118,7 @@ function JointPanel({ x, y, place, labelled }: JointPanelProps) {
       {panelTicks(y, side).map((tick) => (
         <g key={`y${tick.value}`}>
           <path className="tk" d={`M${left} ${toY(tick.value).toFixed(1)}h4`} />
-          {labelled ? (
+          {labelled && (left > 50 || toY(tick.value) > upper + 24) ? (
             <text className="tl" x={left - 7} y={toY(tick.value) + 4} textAnchor="end">
               {tick.label}
             </text>

@@ -9,8 +9,8 @@ export interface Column {
   middle?: boolean;
   /** Spaces as they are: ends of intervals padded to stand under each other. */
   pre?: boolean;
-  /** On a phone: left out, or where it stands in a folded row, with a label before it. */
-  phone?: 'drop' | { area: string; label?: string };
+  /** On a phone: left out, or where it stands in a folded row, with a label before it, at the end of its place. */
+  phone?: 'drop' | { area: string; label?: string; end?: boolean };
 }
 
 export interface Row {
@@ -50,6 +50,7 @@ function cellLook(column: Column, props: DataTableProps): string {
     column.numeric ? 'text-right font-numbers text-number whitespace-nowrap' : 'text-left',
     column.pre ? 'whitespace-pre' : '',
     column.phone === 'drop' ? 'max-tablet:hidden' : '',
+    typeof column.phone === 'object' && column.phone.end ? 'max-tablet:text-right' : '',
   ].join(' ');
 }
 
