@@ -37,7 +37,7 @@ export function matchedExponent(mocks: number, length: number, parameters: numbe
 /**
  * The likelihood of a kind. `mocks` is N (null for a known covariance), `length` p after cuts, `parameters` n_p,
  * `logDeterminant` ln |C|. Throws InferenceError `mock_count_missing` where a form needs N, and `too_few_mocks`, which
- * says how many are needed, unless N > p + 4 (for any covariance that comes from mocks).
+ * says how many are needed, unless N > p + 4 (for any covariance that comes from mocks) and, for the matched form, m > p.
  */
 export function buildLikelihood(
   kind: LikelihoodKind,
@@ -46,12 +46,19 @@ export function buildLikelihood(
   parameters: number,
   logDeterminant: number,
 ): Likelihood {
-  if (mocks !== null && !(mocks > length + 4)) {
+  const enough = kind === 'matched-t' ? enoughForMatched(length, parameters) : length + 5;
+  if (mocks !== null && mocks < enough) {
+    const more =
+      enough > length + 5
+        ? `, and ${enough} for the matched-prior t likelihood of ${parameters} parameters`
+        : '';
     throw new InferenceError(
       'too_few_mocks',
       'data.mockCount',
-      `${mocks} mocks are too few for ${length} data values: at least ${length + 5} are needed`,
-      `give at least ${length + 5} mocks, or keep at most ${Math.max(0, mocks - 5)} bins`,
+      `${mocks} mocks are too few for ${length} data values: at least ${length + 5} are needed${more}`,
+      more === ''
+        ? `give at least ${enough} mocks, or keep at most ${Math.max(0, mocks - 5)} bins`
+        : `give at least ${enough} mocks, keep fewer bins, or use the sellentin-heavens likelihood`,
     );
   }
   if (kind === 'normal') return normalLikelihood(kind, 1, length, logDeterminant);
@@ -67,14 +74,6 @@ export function buildLikelihood(
     return normalLikelihood(kind, (mocks - length - 2) / (mocks - 1), length, logDeterminant);
 
   const m = kind === 'matched-t' ? matchedExponent(mocks, length, parameters) : mocks;
-  if (!(m > length)) {
-    throw new InferenceError(
-      'too_few_mocks',
-      'data.mockCount',
-      `${mocks} mocks are too few for the matched-prior t likelihood of ${length} data values and ${parameters} parameters`,
-      'give more mocks, keep fewer bins, or use the sellentin-heavens likelihood',
-    );
-  }
   const spread = mocks - 1;
   const constant =
     logGamma(m / 2) -
@@ -88,6 +87,13 @@ export function buildLikelihood(
     spread,
     logDensity: (chiSquare) => constant - 0.5 * m * Math.log1p(chiSquare / spread),
   };
+}
+
+/** The least number of mocks from p + 5 on at which the matched form is a density of p values, that is m > p. */
+function enoughForMatched(length: number, parameters: number): number {
+  let mocks = length + 5;
+  while (!(matchedExponent(mocks, length, parameters) > length)) mocks += 1;
+  return mocks;
 }
 
 function normalLikelihood(
