@@ -35,6 +35,8 @@ const zones = [
   { target: './app', from: './storage' },
   { target: './models', from: '.', except: ['./models', './node_modules'] },
   { target: './migrations', from: '.', except: ['./migrations', './node_modules'] },
+  { target: './lib/presenters', from: './lib/services' },
+  { target: './lib/policies', from: './lib/services' },
   { target: './lib/services', from: './app' },
   { target: './lib/services', from: './worker' },
   { target: './lib/services', from: './components' },

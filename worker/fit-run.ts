@@ -18,7 +18,7 @@ import {
   renewLease,
   type ClaimedFit,
 } from '@/lib/services/fit-lease';
-import type { StoredReport } from '@/lib/services/stored-report';
+import type { StoredReport } from '@/lib/schemas/stored-report';
 import { isLook } from '@/lib/services/fit-schedule';
 import { verdict } from '@/lib/services/fit-verdict';
 import { ThreadError } from './failure';

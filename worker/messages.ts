@@ -1,5 +1,5 @@
 import type { FitModel } from '@/lib/services/fit-model';
-import type { StoredReport } from '@/lib/services/stored-report';
+import type { StoredReport } from '@/lib/schemas/stored-report';
 
 /** What a thread is started with. */
 export interface ReplicaSetup {

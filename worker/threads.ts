@@ -1,6 +1,6 @@
 import { Worker } from 'node:worker_threads';
 import type { FitModel } from '@/lib/services/fit-model';
-import type { StoredReport } from '@/lib/services/stored-report';
+import type { StoredReport } from '@/lib/schemas/stored-report';
 import { ThreadError } from './failure';
 import type { Failure, ReplicaAnswer, ReportAnswer, ReportSetup, ReplicaSetup, Turn } from './messages';
 

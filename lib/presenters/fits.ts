@@ -8,7 +8,7 @@ import {
   type FitStatus,
   type Role,
 } from '@/lib/schemas';
-import { emptyReport, storedReportSchema, type StoredReport } from '@/lib/services/stored-report';
+import { emptyReport, storedReportSchema, type StoredReport } from '@/lib/schemas/stored-report';
 
 /** What a fit is shown with beside its row; none of it changes while the fit runs. */
 export interface FitContext {

@@ -4,7 +4,7 @@ import { database } from '@/lib/db';
 import { endedStatuses, fitStatusSchema, type FitStatus } from '@/lib/schemas';
 import { writeDoubles } from './inference-spec';
 import { strideOf } from './fit-schedule';
-import type { StoredReport } from './stored-report';
+import type { StoredReport } from '@/lib/schemas/stored-report';
 
 /** One replica's draws of one block, as they were made. */
 export interface MadeBlock {

@@ -4,7 +4,7 @@ import { database } from '@/lib/db';
 import { snapshotSchema, type FitStatus, type Snapshot } from '@/lib/schemas';
 import { fitModel, type FitModel } from './fit-model';
 import { program } from './program';
-import { emptyReport, storedReportSchema, type StoredReport } from './stored-report';
+import { emptyReport, storedReportSchema, type StoredReport } from '@/lib/schemas/stored-report';
 
 /**
  * Who may write a fit. A worker takes epoch + 1 together with a lease by the database's clock; every later write says

@@ -2,7 +2,7 @@ import type { Diagnostic } from '@/lib/schemas';
 import { diagnose, judgeGate, type Diagnosis, type GateTarget } from '@/lib/sampler';
 import type { FitColumns } from './fit-model';
 import { judgedFrom, storedOf, strideOf } from './fit-schedule';
-import type { StoredReport } from './stored-report';
+import type { StoredReport } from '@/lib/schemas/stored-report';
 
 /** Entries of the history that are kept; beyond, every second one goes. */
 const longestHistory = 60;

@@ -23,7 +23,7 @@ import { readFit } from './fit-records';
 import { inferenceSpec } from './inference-spec';
 import { checkFittable } from './notebook-settings';
 import { program } from './program';
-import { emptyReport, storedReportSchema } from './stored-report';
+import { emptyReport, storedReportSchema } from '@/lib/schemas/stored-report';
 
 export { readFit } from './fit-records';
 

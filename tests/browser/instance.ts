@@ -58,7 +58,7 @@ export class StartedInstance {
     );
     const child = spawn('npm', ['start'], {
       cwd: root,
-      env: { ...environment, PORT: String(port), BEATNOTE_STATE: state } as NodeJS.ProcessEnv,
+      env: { ...environment, PORT: String(port), BEATNOTE_STATE: state } as unknown as NodeJS.ProcessEnv,
       stdio: ['ignore', 'pipe', 'pipe'],
       detached: true,
     });

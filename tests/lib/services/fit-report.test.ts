@@ -2,7 +2,7 @@ import { describe, expect, it } from 'vitest';
 import { createRng, diagnose } from '@/lib/sampler';
 import type { FitColumns } from '@/lib/services/fit-model';
 import { KeptDraws, lookAt } from '@/lib/services/fit-report';
-import { emptyReport } from '@/lib/services/stored-report';
+import { emptyReport } from '@/lib/schemas/stored-report';
 
 /** One parameter x, its double, and a derived quantity that is always 1. */
 const columns: FitColumns = {

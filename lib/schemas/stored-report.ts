@@ -1,5 +1,6 @@
 import { z } from 'zod';
-import { diagnosticSchema, numberOrNull } from '@/lib/schemas';
+import { diagnosticSchema } from './fits';
+import { numberOrNull } from './shared';
 
 /** What is kept of the looks at a fit; column `report`. Every number is of committed draws. */
 export const storedReportSchema = z.object({
