@@ -57,6 +57,7 @@ export function FitControls({ fit, onFit }: { fit: Fit; onFit: (fit: Fit) => voi
         >
           <NumberField
             integer
+            decimals={0}
             label="Draws to add, a replica"
             name="draws"
             value={more}

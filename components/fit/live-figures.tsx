@@ -7,11 +7,23 @@ import type { Fit } from '@/lib/schemas';
 import { judged, meetsGate } from './quantities';
 import { isRunning } from './fit-words';
 
-/** Acceptance of a fit's moves: the jump's where there is one. */
-export function acceptanceInWords(acceptance: Fit['acceptance']): string {
-  const known = acceptance.filter(({ rate }) => rate !== null);
-  if (!known.length) return noValue;
-  return known.map(({ rate }) => formatNumber(rate ?? NaN, 2)).join(', ');
+/** The moves that stand for the others: the jump, and the walk in all directions at once. */
+const toldMoves = [
+  { word: 'jumps', is: (move: string) => move.includes('jump') },
+  { word: 'walks', is: (move: string) => move === 'random walk' },
+];
+
+/** Share of the jumps and of the walks that were accepted: "0.57, 0.21". */
+export function acceptanceInWords(acceptance: Fit['acceptance']): { label: string; value: string } {
+  const told = toldMoves.flatMap(({ word, is }) => {
+    const found = acceptance.find(({ move, rate }) => rate !== null && is(move));
+    return found ? [{ word, rate: formatNumber(found.rate ?? NaN, 2) }] : [];
+  });
+  if (!told.length) return { label: 'acceptance', value: noValue };
+  return {
+    label: `acceptance, ${told.map(({ word }) => word).join(' and ')}`,
+    value: told.map(({ rate }) => rate).join(', '),
+  };
 }
 
 /** "Five of eight quantities meet the gate: R-hat below 1.01, bulk and tail effective sample size above 400." */
@@ -67,10 +79,7 @@ export function LiveFigures({ fit }: { fit: Fit }) {
             label: 'draws a second',
             value: drawsPerSecond === null ? noValue : formatCount(Math.round(drawsPerSecond)),
           },
-          {
-            label: `acceptance${acceptance.length > 1 ? `, ${acceptance.map(({ move }) => move).join(', ')}` : ''}`,
-            value: acceptanceInWords(acceptance),
-          },
+          acceptanceInWords(acceptance),
         ]}
       />
       <Ruler

@@ -82,6 +82,7 @@ export function StartForm({
         />
         <NumberField
           integer
+          decimals={0}
           label="Draws a replica at most"
           name="maxDraws"
           value={settings.maxDraws}
@@ -108,6 +109,7 @@ export function StartForm({
           help="Of every quantity."
         />
         <NumberField
+          decimals={0}
           label="Effective sample size above"
           name="ess"
           value={settings.ess}

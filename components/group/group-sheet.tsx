@@ -11,7 +11,6 @@ import { PageHead } from '@/components/ui/section';
 import { Record } from '@/components/ui/record';
 import { Sheet, SheetRow } from '@/components/ui/sheet';
 import { counted } from '@/components/words/counts';
-import { shortName } from '@/components/words/people';
 import { isRunning } from '@/components/fit/fit-words';
 import type { Group } from '@/lib/schemas';
 import { MeasurementIndex } from './measurement-index';
@@ -117,7 +116,7 @@ export function GroupSheet({ initial }: { initial: Group }) {
     <Sheet contents={<Contents label="Of this group" entries={groupContents(group)} />}>
       <PageHead
         title={group.name}
-        byline={membersLine(group.members, shortName)}
+        byline={membersLine(group.members)}
         margin={
           <Record
             at={group.createdAt}

@@ -19,10 +19,10 @@ const roleWords: Record<Role, string> = {
 const roleNames = Object.keys(roleWords) as Role[];
 
 /** Members with their roles, in one line: "a, lead · b, c, analysts · d, referee". */
-export function membersLine(members: Group['members'], name: (email: string) => string): string {
+export function membersLine(members: Group['members']): string {
   return roleNames
     .flatMap((role) => {
-      const of = members.filter((member) => member.role === role).map(({ email }) => name(email));
+      const of = members.filter((member) => member.role === role).map(({ email }) => email);
       return of.length ? [`${of.join(', ')}, ${role}${of.length > 1 ? 's' : ''}`] : [];
     })
     .join(' · ');

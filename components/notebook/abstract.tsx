@@ -1,25 +1,38 @@
+import { Fragment } from 'react';
 import { fitPredicate } from '@/components/fit/fit-words';
 import { judged, meetsGate } from '@/components/fit/quantities';
-import { capital, counted, inWords, listed } from '@/components/words/counts';
+import { Sym } from '@/components/ui/sym';
+import { capital, counted, inWords } from '@/components/words/counts';
 import { KappaRange } from '@/components/words/kappa';
 import type { Fit, Measurement, Notebook } from '@/lib/schemas';
 import { templateInWords } from './template-words';
 
-const powers: Record<string, string> = {
-  '-1': 'κ⁻¹',
-  '0': 'a constant',
-  '1': 'κ',
-  '2': 'κ²',
-  '3': 'κ³',
-  '4': 'κ⁴',
-};
+/** One power of κ; −1 with its true minus. */
+function Power({ power }: { power: number }) {
+  if (power === 0) return 'a constant';
+  return (
+    <>
+      <Sym base="κ" />
+      {power === 1 ? null : <sup>{String(power).replace('-', '−')}</sup>}
+    </>
+  );
+}
 
 /** "background in κ and κ²" */
-function backgroundInWords(options: Record<string, unknown>): string {
-  const given = Array.isArray(options.background) ? options.background.map(String) : [];
-  return given.length
-    ? `background in ${listed(given.map((power) => powers[power] ?? power))}`
-    : 'no background';
+function Background({ options }: { options: Record<string, unknown> }) {
+  const powers = Array.isArray(options.background) ? (options.background as number[]) : [];
+  if (!powers.length) return 'no background';
+  return (
+    <>
+      background in{' '}
+      {powers.map((power, i) => (
+        <Fragment key={power}>
+          {i === 0 ? '' : i === powers.length - 1 ? ' and ' : ', '}
+          <Power power={power} />
+        </Fragment>
+      ))}
+    </>
+  );
 }
 
 /** What the last fit came to, with its gate while that isn't met. */
@@ -53,7 +66,7 @@ export function Abstract({
       {templateInWords(template.id, fields)}
       {template.id === 'locked-squeezed' && template.options.phases === 'free'
         ? ' with free phases'
-        : ''}; {backgroundInWords(template.options)}. {fitInWords(fit)}
+        : ''}; <Background options={template.options} />. {fitInWords(fit)}
     </>
   );
 }

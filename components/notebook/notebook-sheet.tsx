@@ -15,7 +15,7 @@ import { Contents } from '@/components/ui/contents';
 import { BeatEnd } from '@/components/ui/motif';
 import { Record } from '@/components/ui/record';
 import { PageHead } from '@/components/ui/section';
-import { Sheet } from '@/components/ui/sheet';
+import { Sheet, SheetRow } from '@/components/ui/sheet';
 import { listed } from '@/components/words/counts';
 import { shortName } from '@/components/words/people';
 import type { Draws, Fit, Measurement, Notebook } from '@/lib/schemas';
@@ -190,7 +190,9 @@ export function NotebookSheet(props: NotebookSheetProps) {
         draws={draws}
         quantities={quantities}
       />
-      <BeatEnd />
+      <SheetRow>
+        <BeatEnd />
+      </SheetRow>
     </Sheet>
   );
 }

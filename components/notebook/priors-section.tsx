@@ -6,6 +6,7 @@ import { RequestMessage } from '@/components/api/request-message';
 import { Message } from '@/components/ui/message';
 import { Section } from '@/components/ui/section';
 import { Num } from '@/components/ui/num';
+import { Sym } from '@/components/ui/sym';
 import { StateWord } from '@/components/ui/state-word';
 import { DataTable } from '@/components/ui/table';
 import { counted, inWords, plain } from '@/components/words/counts';
@@ -123,9 +124,8 @@ function OrderNote({ template, priors }: { template: CompiledTemplate; priors: P
   const z = Math.exp(logOrderProbability(given));
   return (
     <p className="text-small text-ink-2">
-      Masses are put in order, <i className="sym">μ</i>
-      <sub>1</sub> first. Of independent draws a share <Num>Z = {plain(z, 4)}</Num> is in order; the joint
-      prior is divided by it.
+      Masses are put in order, <Sym base="μ" sub="1" /> first. Of independent draws a share{' '}
+      <Num>Z = {plain(z, 4)}</Num> is in order; the joint prior is divided by it.
     </p>
   );
 }

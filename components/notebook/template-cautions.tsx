@@ -47,7 +47,7 @@ export function TemplateCautions({
       <Caution>
         The squeezed template holds to {formatPercent(share)} of the envelope for{' '}
         <Num>
-          <Sym base="κ" /> ≤ {plain(reach, 2)}
+          <Sym base="κ" /> ≤ {plain(reach, 3)}
         </Num>{' '}
         at the masses that the priors allow; the bins reach{' '}
         <Num>

@@ -12,6 +12,7 @@ import { counted } from '@/components/words/counts';
 import { formatNumber } from '@/lib/figures/format';
 import type { Measurement } from '@/lib/schemas';
 import { findTemplate, TemplateError, type Prior } from '@/lib/templates';
+import { withBestAmplitudes } from './best-amplitudes';
 import { ConflictMessage } from './conflict-message';
 import type { KeptPoints } from './kept-points';
 import { LiveFormula, type DrawnFormula } from './live-formula';
@@ -74,7 +75,10 @@ function Explore({
 }) {
   const { parameters } = prediction.fine;
   const [set, setSet] = useState<Readonly<Record<string, number>>>({});
-  const start = useMemo(() => startValues(parameters, priors), [parameters, priors]);
+  const start = useMemo(
+    () => withBestAmplitudes(prediction, parameters, priors, startValues(parameters, priors)),
+    [prediction, parameters, priors],
+  );
   const x = useMemo(
     () => Float64Array.from(parameters, ({ name }, i) => set[name] ?? start[i]),
     [parameters, set, start],
@@ -123,10 +127,23 @@ function Explore({
         x={x}
         onMove={(values) => setSet({ ...set, ...named(values) })}
       />
-      <Buttons note="Moving a slider draws; it changes nothing in the notebook.">
+      <Buttons>
         {fits ? <Button onClick={() => setSet({ ...set, ...fits.values })}>{fits.label}</Button> : null}
-        <Button onClick={() => setSet({})}>Start values</Button>
+        {measurement.blind ? null : (
+          <Button
+            onClick={() =>
+              setSet({ ...set, ...named([...withBestAmplitudes(prediction, parameters, priors, x)]) })
+            }
+          >
+            Best amplitudes here
+          </Button>
+        )}
+        <Button onClick={() => setSet({})}>Medians of the priors</Button>
       </Buttons>
+      <p className="font-controls text-note text-ink-2">
+        Moving a slider draws; it changes nothing in the notebook.
+        {measurement.blind ? '' : ' At the medians the amplitudes are those that fit best there.'}
+      </p>
       <TemplateCautions
         settings={{ id: settings.id, options: prediction.onData.options }}
         parameters={parameters}

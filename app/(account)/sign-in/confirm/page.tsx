@@ -20,7 +20,15 @@ export default async function ConfirmPage({
   if (!token || !email) return <LinkUnusable />;
   return (
     <PageChrome version={version}>
-      <SignInSheet title={`Sign in as ${email}`} figure={<BeatFigure />}>
+      <SignInSheet
+        title="Sign in"
+        lede={
+          <>
+            As <span className="wrap-anywhere">{email}</span>
+          </>
+        }
+        figure={<BeatFigure />}
+      >
         <div className="border-t border-ink pt-2">
           <p>The link in your mail works once. It is used when you press the button, not before.</p>
           <ConfirmForm token={token} email={email} callbackUrl={text(given.callbackUrl) || '/'} />
