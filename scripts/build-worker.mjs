@@ -7,7 +7,13 @@ const root = path.dirname(path.dirname(fileURLToPath(import.meta.url)));
 
 await build({
   absWorkingDir: root,
-  entryPoints: ['worker/main.ts', 'worker/replica-thread.ts', 'worker/report-thread.ts'],
+  entryPoints: {
+    main: 'worker/main.ts',
+    'replica-thread': 'worker/replica-thread.ts',
+    'report-thread': 'worker/report-thread.ts',
+    // A thread of the web processes.
+    'preflight-thread': 'lib/services/preflight-thread.ts',
+  },
   outdir: 'dist/worker',
   outExtension: { '.js': '.mjs' },
   bundle: true,

@@ -72,7 +72,8 @@ async function suite(project, env = {}) {
 try {
   refuseOtherNode();
   await installNodePackages();
-  await installDebianPackages([...['mariadbd', 'mariadb-install-db', 'mariadb', 'redis-server', 'chromium']]);
+  const services = ['mariadbd', 'mariadb-install-db', 'mariadb', 'redis-server'];
+  await installDebianPackages([...services, 'chromium', 'curl', 'jq']);
   rmSync(path.join(root, '.state-test'), { recursive: true, force: true });
   mkdirSync(reports, { recursive: true, mode: 0o700 });
   const node = process.execPath;

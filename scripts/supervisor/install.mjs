@@ -28,6 +28,8 @@ const debian = {
   mariadb: ['mariadb-client-core'],
   'redis-server': ['redis-server'],
   chromium: ['chromium'],
+  curl: ['curl'],
+  jq: ['jq'],
 };
 
 export function refuseOtherNode() {
