@@ -1,11 +1,9 @@
-import { EigenvalueDecomposition, Matrix } from 'ml-matrix';
+import { extremeEigenvalues, type ExtremeEigenvalues } from './eigenvalues';
 import { finding, showNumber } from './errors';
 import type { Finding, NumericMatrix, Part } from './types';
 
 /** Elements on both sides of the diagonal may differ by this share of √(C_ii C_jj): rounding, not another matrix. */
 const SYMMETRY = 1e-8;
-/** Eigenvalues are computed up to this many bins. */
-const EIGEN_LIMIT = 500;
 /** Condition numbers of the correlation matrix: usable, and beyond what double precision can invert. */
 const CONDITION_WARNING = 1e6;
 const CONDITION_ERROR = 1e13;
@@ -36,23 +34,13 @@ export function factorise(matrix: Float64Array, p: number): Factorisation {
   return { factor, logDeterminant };
 }
 
-/** Smallest and largest eigenvalue of a symmetric p × p matrix, by reduction to tridiagonal form. */
-function extremeEigenvalues(matrix: Float64Array, p: number): { smallest: number; largest: number } {
-  const rows = Array.from({ length: p }, (_, i) => matrix.subarray(i * p, (i + 1) * p));
-  const values = new EigenvalueDecomposition(new Matrix(rows), { assumeSymmetric: true }).realEigenvalues;
-  return {
-    smallest: values.reduce((a, b) => Math.min(a, b), Infinity),
-    largest: values.reduce((a, b) => Math.max(a, b), -Infinity),
-  };
-}
-
 /** What is known of a covariance beside its findings. */
 export interface CovarianceCheck {
   /** Symmetric, row-major, in the order of the file; null if it cannot be used. */
   covariance: Float64Array | null;
   /** ln det C. */
   logDeterminant: number | null;
-  /** Condition number of C; null beyond 500 bins. */
+  /** Condition number of C; null if it cannot be used. */
   condition: number | null;
   /** Condition number of its correlation matrix, in which the errors' different sizes drop out. */
   correlationCondition: number | null;
@@ -102,9 +90,7 @@ export function checkCovariance(
   }
   findings.push(finding('covariance-ok', 'ok', 'Covariance symmetric and positive definite.', { part }));
   const { condition, correlationCondition } = conditionNumbers(covariance, p);
-  if (condition !== null && correlationCondition !== null) {
-    findings.push(conditionFinding(condition, correlationCondition, part));
-  }
+  findings.push(conditionFinding(condition, correlationCondition, part));
   if (sigma) findings.push(...compareErrors(covariance, sigma, part, mockCount));
   const usable = !findings.some(({ level }) => level === 'error');
   return {
@@ -193,21 +179,20 @@ function notPositiveDefinite(
       'Give variances, which are positive, on the diagonal.',
     );
   }
-  const smallest = p <= EIGEN_LIMIT ? extremeEigenvalues(covariance, p).smallest : null;
-  const eigenvalue = smallest === null ? '' : `; the smallest eigenvalue is ${showNumber(smallest)}`;
-  const message = `The covariance is not positive definite: its leading minor of order ${minor} is not above zero${eigenvalue}.`;
+  const { smallest } = extremeEigenvalues(covariance, p);
+  const message =
+    `The covariance is not positive definite: its leading minor of order ${minor} is not above zero; ` +
+    `the smallest eigenvalue is ${showNumber(smallest)}.`;
   return finding('covariance-not-positive-definite', 'error', message, place);
 }
 
 function conditionNumbers(
   covariance: Float64Array,
   p: number,
-): { condition: number | null; correlationCondition: number | null } {
-  if (p > EIGEN_LIMIT) return { condition: null, correlationCondition: null };
+): { condition: number; correlationCondition: number } {
   const sd = Float64Array.from({ length: p }, (_, i) => Math.sqrt(covariance[i * p + i]));
   const correlation = covariance.map((value, k) => value / (sd[Math.floor(k / p)] * sd[k % p]));
-  const ratio = ({ smallest, largest }: { smallest: number; largest: number }) =>
-    smallest > 0 ? largest / smallest : Infinity;
+  const ratio = ({ smallest, largest }: ExtremeEigenvalues) => (smallest > 0 ? largest / smallest : Infinity);
   return {
     condition: ratio(extremeEigenvalues(covariance, p)),
     correlationCondition: ratio(extremeEigenvalues(correlation, p)),

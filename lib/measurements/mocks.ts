@@ -121,19 +121,48 @@ function centre({ rows, columns, data }: NumericMatrix): { columns: Float64Array
   return { columns: centred, mean };
 }
 
+/** Mocks in a block: five columns of them lie in a processor's nearest cache. */
+const BLOCK = 512;
+
+/**
+ * Four elements at a time: their sums don't wait for each other, and each still adds up mock by mock. Right of the
+ * diagonal the last of a row is computed over again.
+ */
 function covarianceOf(columns: Float64Array[]): Float64Array {
   const p = columns.length;
   const n = columns[0].length;
   const covariance = new Float64Array(p * p);
+  for (let from = 0; from < n; from += BLOCK) {
+    const block = columns.map((column) => column.subarray(from, from + BLOCK));
+    for (let i = 0; i < p; i += 1) {
+      for (let j = 0; j <= i; j += 4) addProducts(block, i, j, covariance);
+    }
+  }
   for (let i = 0; i < p; i += 1) {
     for (let j = 0; j <= i; j += 1) {
-      const [a, b] = [columns[i], columns[j]];
-      let sum = 0;
-      for (let row = 0; row < n; row += 1) sum += a[row] * b[row];
-      covariance[i * p + j] = covariance[j * p + i] = sum / (n - 1);
+      covariance[i * p + j] = covariance[j * p + i] = covariance[i * p + j] / (n - 1);
     }
   }
   return covariance;
+}
+
+/** Adds the products of column i with columns j to j + 3, none beyond i, to row i of the sums. */
+function addProducts(columns: Float64Array[], i: number, j: number, sums: Float64Array): void {
+  const row = i * columns.length;
+  const [j1, j2, j3] = [Math.min(j + 1, i), Math.min(j + 2, i), Math.min(j + 3, i)];
+  const [a, b0, b1, b2, b3] = [columns[i], columns[j], columns[j1], columns[j2], columns[j3]];
+  let [s0, s1, s2, s3] = [sums[row + j], sums[row + j1], sums[row + j2], sums[row + j3]];
+  for (let mock = 0; mock < a.length; mock += 1) {
+    const value = a[mock];
+    s0 += value * b0[mock];
+    s1 += value * b1[mock];
+    s2 += value * b2[mock];
+    s3 += value * b3[mock];
+  }
+  sums[row + j] = s0;
+  sums[row + j1] = s1;
+  sums[row + j2] = s2;
+  sums[row + j3] = s3;
 }
 
 /** Mocks with a bin beyond `OUTLIER` × 1.4826 MAD of the median; that scale is a normal distribution's standard deviation. */

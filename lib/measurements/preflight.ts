@@ -15,8 +15,11 @@ import type {
   ParsedTable,
 } from './types';
 
-/** Most bins of a measurement: a full covariance of more is not inverted in reasonable time. */
-export const MAX_BINS = 2_000;
+/**
+ * Most bins of a measurement. The checks of a full covariance grow as the cube of the bins, and a fit's steps as their
+ * square: 500 are checked within seconds, and are ten times what squeezed triangles are usually binned in.
+ */
+export const MAX_BINS = 500;
 
 /** A file as it was handed in. */
 export interface UploadedFile {

@@ -77,6 +77,22 @@ describe('mocks', () => {
     expect(covariance?.[1]).toBeCloseTo((12 - (30 * 3) / 7) / 6, 13);
   });
 
+  it.each([1, 4, 7])('have the covariance of plain double sums, %d bins and more mocks than a block', (p) => {
+    const n = 1100;
+    const data = Float64Array.from({ length: n * p }, (_, k) => Math.sin(k * k) + (k % p));
+    const lines = Int32Array.from({ length: n }, (_, row) => row + 1);
+    const { covariance, mean } = covarianceFromMocks({ rows: n, columns: p, data, lines, findings: [] }, p);
+    for (let i = 0; i < p; i += 1) {
+      for (let j = 0; j < p; j += 1) {
+        let sum = 0;
+        for (let row = 0; row < n; row += 1) {
+          sum += (data[row * p + i] - mean![i]) * (data[row * p + j] - mean![j]);
+        }
+        expect(covariance![i * p + j]).toBeCloseTo(sum / (n - 1), 13);
+      }
+    }
+  });
+
   it('that are copies, or far from the others, are named by line', () => {
     const far = rows[9].split(',').with(4, '0.5').join(',');
     const { findings } = covarianceFromMocks(

@@ -161,8 +161,8 @@ describe('a bad upload', () => {
 
   it('with a single row, or more rows than can be used, is refused', () => {
     expect(errors({ file: file('kappa,S,sigma\n0.1,1,1\n') })).toEqual([['too-few-rows', 2]]);
-    const rows = Array.from({ length: 2001 }, (_, i) => `${(i + 1) / 1e4},1,1`).join('\n');
-    expect(errors({ file: file(`kappa,S,sigma\n${rows}\n`) })).toEqual([['too-many-bins', 2002]]);
+    const rows = Array.from({ length: 501 }, (_, i) => `${(i + 1) / 1e4},1,1`).join('\n');
+    expect(errors({ file: file(`kappa,S,sigma\n${rows}\n`) })).toEqual([['too-many-bins', 502]]);
   });
 
   it('with a count of mocks that is none is refused', () => {
