@@ -3,7 +3,7 @@ import type { Transaction } from 'sequelize';
 import { Group, Measurement, MeasurementVersion, type StoredFile } from '@/models';
 import { database } from '@/lib/db';
 import { AppError, notFound } from '@/lib/errors';
-import { preflight, type Finding, type PreflightPassed } from '@/lib/measurements';
+import type { Finding, PreflightPassed, UploadedFile } from '@/lib/measurements';
 import { presentCreated } from '@/lib/presenters/measurements';
 import { uploadMetaSchema, type ErrorDetail, type MeasurementCreated, type UploadMeta } from '@/lib/schemas';
 import type { Access } from './access';
@@ -17,6 +17,7 @@ import {
   type FilePart,
   type UploadedPart,
 } from './measurement-files';
+import { checkFiles } from './measurement-preflight';
 
 /** Every part that the form of an upload may have. */
 export type UploadForm = Readonly<Partial<Record<FilePart | 'window' | 'columns' | 'meta', UploadedPart>>>;
@@ -64,7 +65,7 @@ const detailOf = ({ part, line, column, message, remedy }: Finding): ErrorDetail
 });
 
 /** Reads and checks an upload without storing anything; every fault is `invalid` with its place and remedy. */
-function checkUpload(form: UploadForm): CheckedUpload {
+async function checkUpload(form: UploadForm): Promise<CheckedUpload> {
   for (const part of ['window', 'columns'] as const) {
     if (given(form[part])) {
       throw refuse(part, `The part \`${part}\` is not supported yet. Send the measurement without it.`);
@@ -81,11 +82,11 @@ function checkUpload(form: UploadForm): CheckedUpload {
   }
   const covariance = given(form.covariance);
   const mocks = given(form.mocks);
-  const named = (part: UploadedPart | undefined) => part && { bytes: part.bytes, name: part.fileName };
-  const result = preflight({
-    file: { bytes: file.bytes, name: file.fileName },
-    covariance: named(covariance),
-    mocks: named(mocks),
+  const named = ({ bytes, fileName }: UploadedPart): UploadedFile => ({ bytes, name: fileName });
+  const { files, result } = await checkFiles({
+    file: named(file),
+    covariance: covariance && named(covariance),
+    mocks: mocks && named(mocks),
     mapping: meta.columns,
     mockCount: meta.mockCount,
   });
@@ -95,8 +96,14 @@ function checkUpload(form: UploadForm): CheckedUpload {
     const message = `The measurement can't be used, and nothing was stored. ${details[0].message}${more}`;
     throw new AppError('invalid', message, details);
   }
+  // Those that came back from the check: it may have taken the bytes of the form with it.
+  const part = ({ bytes, name }: UploadedFile): UploadedPart => ({ bytes, fileName: name });
   return {
-    files: { file, ...(covariance && { covariance }), ...(mocks && { mocks }) },
+    files: {
+      file: part(files.file),
+      ...(files.covariance && { covariance: part(files.covariance) }),
+      ...(files.mocks && { mocks: part(files.mocks) }),
+    },
     meta,
     result,
   };
@@ -195,7 +202,7 @@ async function store(
 /** Uploads a measurement into the group of `access`. Nothing is stored unless all of it is well. */
 export async function uploadMeasurement(access: Access, form: UploadForm): Promise<MeasurementCreated> {
   access.require('measurement.upload');
-  const upload = checkUpload(form);
+  const upload = await checkUpload(form);
   const { meta, files } = upload;
   const id = randomUUID();
   return store(access, upload, id, async (transaction, now) => {
@@ -222,7 +229,7 @@ export async function uploadMeasurement(access: Access, form: UploadForm): Promi
  */
 export async function uploadVersion(access: Access, form: UploadForm): Promise<MeasurementCreated> {
   access.require('measurement.upload');
-  const upload = checkUpload(form);
+  const upload = await checkUpload(form);
   const { meta } = upload;
   return store(access, upload, access.id, async (transaction) => {
     const measurement = await Measurement.findByPk(access.id, { lock: true, transaction });
