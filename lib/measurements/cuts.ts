@@ -21,8 +21,24 @@ export interface CutMeasurement {
 }
 
 /**
- * Keeps the bins that lie inside [kappaMin, kappaMax] with their edges, or with κ where there are none; relative tolerance
- * 1e-9 at both ends. `covariance` is p × p, row-major, in ascending κ. Throws `cut-empty` if nothing is left.
+ * Indices of the bins that lie inside [kappaMin, kappaMax] with their edges, or with κ where there are none, ascending;
+ * relative tolerance 1e-9 at both ends. Throws `cut-empty` if nothing is left.
+ */
+export function keptBins(
+  { kappa, kappaLo, kappaHi }: Pick<Measurement, 'kappa' | 'kappaLo' | 'kappaHi'>,
+  cuts: Cuts = {},
+): number[] {
+  const low = (cuts.kappaMin ?? 0) * (1 - TOLERANCE);
+  const high = (cuts.kappaMax ?? Infinity) * (1 + TOLERANCE);
+  const kept = Array.from(kappa.keys()).filter(
+    (i) => (kappaLo ?? kappa)[i] >= low && (kappaHi ?? kappa)[i] <= high,
+  );
+  if (kept.length === 0) throw new MeasurementError('cut-empty', 'No bin lies inside the cut.');
+  return kept;
+}
+
+/**
+ * Keeps what `keptBins` says. `covariance` is p × p, row-major, in ascending κ. Throws `cut-empty` if nothing is left.
  */
 export function applyCuts(
   measurement: Measurement,
@@ -30,12 +46,7 @@ export function applyCuts(
   cuts: Cuts = {},
 ): CutMeasurement {
   const { kappa, kappaLo, kappaHi, S, sigma, order } = measurement;
-  const low = (cuts.kappaMin ?? 0) * (1 - TOLERANCE);
-  const high = (cuts.kappaMax ?? Infinity) * (1 + TOLERANCE);
-  const kept = Array.from(kappa.keys()).filter(
-    (i) => (kappaLo ?? kappa)[i] >= low && (kappaHi ?? kappa)[i] <= high,
-  );
-  if (kept.length === 0) throw new MeasurementError('cut-empty', 'No bin lies inside the cut.');
+  const kept = keptBins(measurement, cuts);
   const take = (values: Float64Array) => Float64Array.from(kept, (i) => values[i]);
   return {
     indices: Int32Array.from(kept),

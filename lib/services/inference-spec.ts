@@ -1,6 +1,6 @@
 import type { MeasurementVersion, NotebookSettings } from '@/models';
 import type { InferenceSpec } from '@/lib/inference';
-import { applyCuts, type Measurement } from '@/lib/measurements';
+import { applyCuts, keptBins, type Measurement } from '@/lib/measurements';
 import { likelihoodSchema, priorsSchema } from '@/lib/schemas';
 import { compileTemplate, findTemplate, type Axis } from '@/lib/templates';
 import { refusingFaults } from './inference-faults';
@@ -15,7 +15,8 @@ export interface Points {
   covariance: Float64Array;
 }
 
-type StoredPoints = Pick<MeasurementVersion, 'rows' | 'hasBinEdges' | 'points' | 'covariance'>;
+type StoredColumns = Pick<MeasurementVersion, 'rows' | 'hasBinEdges' | 'points'>;
+type StoredPoints = StoredColumns & Pick<MeasurementVersion, 'covariance'>;
 type StoredNumbers = StoredPoints & Pick<MeasurementVersion, 'mockCount'>;
 
 /** Little-endian float64 of a stored column; byte by byte, because a buffer may start anywhere in memory. */
@@ -37,8 +38,7 @@ export function writeDoubles(...columns: Float64Array[]): Buffer {
   return bytes;
 }
 
-/** Copies the stored numbers of a version into arrays. Throws where their lengths don't agree with its rows. */
-export function readPoints(version: StoredPoints): Points {
+function readColumns(version: StoredColumns): Omit<Points, 'covariance'> {
   const { rows, hasBinEdges } = version;
   const all = readDoubles(version.points, 'points', 4 * rows);
   const column = (index: number): Float64Array => all.slice(index * rows, (index + 1) * rows);
@@ -47,8 +47,18 @@ export function readPoints(version: StoredPoints): Points {
     kappaLo: hasBinEdges ? column(1) : null,
     kappaHi: hasBinEdges ? column(2) : null,
     S: column(3),
-    covariance: readDoubles(version.covariance, 'covariance', rows * rows),
   };
+}
+
+/** Copies the stored numbers of a version into arrays. Throws where their lengths don't agree with its rows. */
+export function readPoints(version: StoredPoints): Points {
+  const { rows } = version;
+  return { ...readColumns(version), covariance: readDoubles(version.covariance, 'covariance', rows * rows) };
+}
+
+/** How many bins a notebook's cuts keep; needs no covariance. `invalid` at `cuts` where they keep none. */
+export function countKept(version: StoredColumns, cuts: NotebookSettings['cuts']): number {
+  return refusingFaults(() => keptBins(readColumns(version), cuts)).length;
 }
 
 /** What is kept of a measurement after a notebook's cuts. */

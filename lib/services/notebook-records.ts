@@ -13,7 +13,7 @@ import { actionsFor } from '@/lib/policies';
 import { presentNotebook, presentNotebookSummary, type MeasuredBy } from '@/lib/presenters/notebooks';
 import type { Notebook as NotebookAnswer, NotebookSummary } from '@/lib/schemas';
 import type { Access } from './access';
-import { cutPoints } from './inference-spec';
+import { countKept } from './inference-spec';
 import { emailsOf } from './people';
 
 const fitLine = [
@@ -34,7 +34,10 @@ export async function readNotebook(access: Access): Promise<NotebookAnswer> {
   if (!notebook) throw notFound('notebook');
   const [group, version, revisions, fits] = await Promise.all([
     Group.findByPk(notebook.groupId),
-    MeasurementVersion.findByPk(notebook.measurementVersionId),
+    // Without its covariance, which is the square of the rest.
+    MeasurementVersion.findByPk(notebook.measurementVersionId, {
+      attributes: ['measurementId', 'version', 'rows', 'hasBinEdges', 'points'],
+    }),
     NotebookRevision.findAll({ where: { notebookId: notebook.id }, order: [['revision', 'ASC']] }),
     Fit.findAll({
       where: { notebookId: notebook.id },
@@ -51,7 +54,7 @@ export async function readNotebook(access: Access): Promise<NotebookAnswer> {
     groupName: group.name,
     measurement: measuredBy(measurement, version),
     settings,
-    bins: { kept: cutPoints(version, settings.cuts).kept.length, all: version.rows },
+    bins: { kept: countKept(version, settings.cuts), all: version.rows },
     revisions,
     fits,
     people: await emailsOf([

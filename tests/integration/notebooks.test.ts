@@ -1,5 +1,5 @@
 import { randomUUID } from 'node:crypto';
-import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
+import { afterAll, beforeAll, beforeEach, describe, expect, it, vi } from 'vitest';
 import { AuditEvent, Measurement, MeasurementVersion, Notebook, NotebookRevision } from '@/models';
 import { POST as create } from '@/app/api/v1/groups/[id]/notebooks/route';
 import { POST as uploadNewer } from '@/app/api/v1/measurements/[id]/versions/route';
@@ -345,6 +345,18 @@ describe('an edit', () => {
 });
 
 describe('a notebook', () => {
+  it('counts its bins without asking the database for the covariance', async () => {
+    const { id } = await opened({ cuts: { kappaMax: 0.1 } });
+    const query = vi.spyOn(database(), 'query');
+    // 40 bins over two decades: the edge below 0.1 is the thirtieth.
+    expect((await read(id)).bins).toEqual({ kept: 30, all: 40 });
+    const asked = query.mock.calls.map(([sql]) => (typeof sql === 'string' ? sql : sql.query));
+    query.mockRestore();
+    const versions = asked.filter((sql) => /SELECT .*`points`.* FROM `measurement_versions`/.test(sql));
+    expect(versions).toHaveLength(1);
+    expect(asked.join('\n')).not.toContain('`covariance`');
+  });
+
   it('that is foreign and one that is missing answer alike', async () => {
     const { id } = await opened();
     const { token } = await createMember(await createGroup(), 'lead');
