@@ -4,6 +4,7 @@ import {
   DeleteObjectCommand,
   GetObjectCommand,
   HeadBucketCommand,
+  ListObjectsCommand,
   NoSuchKey,
   PutObjectCommand,
   S3Client,
@@ -21,12 +22,20 @@ export interface Stored {
   bytes: number;
 }
 
+export interface ListedObject {
+  key: string;
+  /** By the clock of the store. */
+  storedAt: Date;
+}
+
 export interface Storage {
   /** Stores, reads back, and compares length and SHA-256; throws and removes the object where they differ. */
   putVerified(key: string, bytes: Uint8Array): Promise<Stored>;
   /** Null where there is no such object. */
   get(key: string): Promise<Buffer | null>;
   delete(key: string): Promise<void>;
+  /** All objects whose keys begin with `prefix`, page by page in the order of their keys. */
+  list(prefix: string, pageSize?: number): AsyncIterable<ListedObject[]>;
   ensureBucket(): Promise<void>;
   /** Throws where the store doesn't answer. */
   ping(): Promise<void>;
@@ -67,9 +76,24 @@ export function openStorage(options: StorageOptions): Storage {
     await client.send(new DeleteObjectCommand({ Bucket, Key }));
   };
 
+  // The first version of the call: its pages go on from a key. The second one's go on from a token, which a local store
+  // may be unable to make.
+  async function* list(Prefix: string, MaxKeys = 1000): AsyncGenerator<ListedObject[]> {
+    let Marker: string | undefined;
+    do {
+      const page = await client.send(new ListObjectsCommand({ Bucket, Prefix, MaxKeys, Marker }));
+      const objects = page.Contents ?? [];
+      yield objects.flatMap(({ Key, LastModified }) =>
+        Key !== undefined && LastModified ? [{ key: Key, storedAt: LastModified }] : [],
+      );
+      Marker = page.IsTruncated ? objects.at(-1)?.Key : undefined;
+    } while (Marker !== undefined);
+  }
+
   return {
     get,
     delete: remove,
+    list,
     async putVerified(Key, bytes) {
       const sha256 = sha256Of(bytes);
       await client.send(new PutObjectCommand({ Bucket, Key, Body: bytes, ContentLength: bytes.byteLength }));

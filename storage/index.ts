@@ -1,2 +1,2 @@
-export { openStorage, type Storage, type Stored } from './client';
+export { openStorage, type ListedObject, type Storage, type Stored } from './client';
 export { closeStorage, storage } from './instance';

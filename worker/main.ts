@@ -6,6 +6,8 @@ import { beat, closeQueue, endBeat, enqueueFit, fitJobSchema, fitsQueue, fitWork
 import { log } from '@/lib/log';
 import { closeRedis, queueConnection } from '@/lib/redis';
 import { unheldFits } from '@/lib/services/fit-lease';
+import { deleteStrayFiles } from '@/lib/services/stray-files';
+import { closeStorage } from '@/storage';
 import { runFit } from './fit-run';
 import { every } from './every';
 import { readWorkerSettings } from './settings';
@@ -41,9 +43,17 @@ const reconciler = every(
   'the search for fits that nobody holds',
 );
 
+/** A process that was killed within an upload leaves files that no row names. */
+const sweeper = every(
+  10 * 60_000,
+  async () => void (await deleteStrayFiles(new Date())),
+  'the search for files that no measurement names',
+);
+
 async function close(): Promise<void> {
   heartbeat();
   reconciler();
+  sweeper();
   const patience = setTimeout(() => now.abort(), settings.graceMs);
   // Takes no job any more and waits for those that it has.
   await worker.close().catch((error: unknown) => log.warn({ err: error }, 'the queue did not close'));
@@ -53,6 +63,7 @@ async function close(): Promise<void> {
   connection.disconnect();
   await closeRedis();
   await closeDatabase();
+  closeStorage();
   log.info({ workerId }, 'worker stopped');
 }
 

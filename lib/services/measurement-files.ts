@@ -30,6 +30,16 @@ export function nameFromFile(fileName: string): string {
     .join('');
 }
 
+/** Begins the keys of all uploaded files. */
+export const filesPrefix = 'measurements/';
+
+const keyOf = (ids: { measurementId: string; versionId: string }, part: FilePart): string =>
+  `${filesPrefix}${ids.measurementId}/${ids.versionId}/${part}`;
+
+/** The version that a key was made for; null for a key that isn't one of ours. */
+export const versionOfKey = (key: string): string | null =>
+  /^measurements\/[0-9a-f-]{36}\/([0-9a-f-]{36})\/[a-z]+$/.exec(key)?.[1] ?? null;
+
 /** Removes objects that no row points at; what can't be removed is logged, since the upload has failed already. */
 export async function discardFiles(files: readonly StoredFile[]): Promise<void> {
   for (const { key } of files) {
@@ -52,7 +62,7 @@ export async function storeFiles(
     for (const part of ['file', 'covariance', 'mocks'] as const) {
       const upload = parts[part];
       if (!upload) continue;
-      const key = `measurements/${ids.measurementId}/${ids.versionId}/${part}`;
+      const key = keyOf(ids, part);
       const { sha256, bytes } = await storage().putVerified(key, upload.bytes);
       stored.push({ part, fileName: cleanFileName(upload.fileName, part), key, bytes, sha256 });
     }

@@ -46,8 +46,8 @@ export async function uploadData(
   return measurementCreatedSchema.parse(await answer.json());
 }
 
-/** Every object that the store of this run keeps, by its path below the store's folder. */
-const objectNames = (): string[] =>
+/** Every file of the objects that the store of this run keeps. */
+export const objectFiles = (): string[] =>
   readdirSync(path.join(config().stateFolder, 'objects'), { recursive: true, withFileTypes: true })
     .filter((entry) => entry.isFile())
     .map((entry) => path.join(entry.parentPath, entry.name))
@@ -57,5 +57,5 @@ const objectNames = (): string[] =>
 export const kept = async () => ({
   measurements: await Measurement.count(),
   versions: await MeasurementVersion.count(),
-  objects: objectNames(),
+  objects: objectFiles(),
 });
