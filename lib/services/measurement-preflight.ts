@@ -9,8 +9,11 @@ import type { CheckedFiles, FilesToCheck } from './preflight-thread';
 
 export type { FilesToCheck } from './preflight-thread';
 
-/** Up to this many bytes the check takes about as long as a thread to start, and is done where it is asked for. */
-const IN_LINE_BYTES = 1024 * 1024;
+/**
+ * Up to this many bytes the check takes a tenth of a second, about as long as a thread to start, and is done where it is
+ * asked for. It is less than the mocks or the covariance of the most bins, whose eigenvalues alone take longer.
+ */
+const IN_LINE_BYTES = 400_000;
 
 export interface PreflightLimits {
   /** The largest uploads that are taken need a few seconds of an idle processor. */
