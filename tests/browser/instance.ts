@@ -16,6 +16,12 @@ export interface RunningInstance {
 
 const root = path.resolve(import.meta.dirname, '../..');
 
+/** Sign-in links by address, as `npm start` prints them. */
+export const linksIn = (printed: string): Record<string, string> =>
+  Object.fromEntries(
+    [...printed.matchAll(/(\S+@demo\.beatnote\.example)\s+(http\S+)/g)].map((match) => [match[1], match[2]]),
+  );
+
 export function freePort(): Promise<number> {
   return new Promise((resolve, reject) => {
     const server = net.createServer();
@@ -76,16 +82,10 @@ export class StartedInstance {
         reject(new Error(`npm start ended with ${code} before it was ready:\n${printed}`));
       });
     });
-    const links = Object.fromEntries(
-      [...printed.matchAll(/(\S+@demo\.beatnote\.example)\s+(http\S+)/g)].map((match) => [
-        match[1],
-        match[2],
-      ]),
-    );
     const facts = {
       url: `http://127.0.0.1:${port}`,
       state,
-      links,
+      links: linksIn(printed),
       secondsToReady: (Date.now() - begun) / 1000,
     };
     return new StartedInstance(child, facts, () => printed);
