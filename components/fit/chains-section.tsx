@@ -151,10 +151,16 @@ export function ChainsSection(props: ChainsSectionProps) {
           closed.
         </p>
       )}
-      {notebook.fits.length > 1 ? (
+      {fit && notebook.fits.length > 1 ? (
         <>
           <Subheading>Fits</Subheading>
-          <FitList fits={notebook.fits} notebook={notebook} shownId={fit?.id ?? null} onShow={props.onShow} />
+          <FitList
+            fits={notebook.fits}
+            notebook={notebook}
+            shownId={fit.id}
+            shownStatus={fit.status}
+            onShow={props.onShow}
+          />
         </>
       ) : null}
       {mayStart ? (

@@ -33,21 +33,21 @@ export function ConvergenceTable({
         ruled
         number={1}
         caption={`Convergence of fit ${fit.number} after ${formatCount(progress.draws)} draws a replica; dashed, the gate.`}
-        phoneColumns="52px 1fr 1fr auto"
+        phoneColumns="44px 132px minmax(0,1fr)"
         columns={[
-          { key: 'quantity', head: 'Quantity', middle: true, phone: { area: '1 / 1 / 3 / 2' } },
+          { key: 'quantity', head: 'Quantity', middle: true, phone: { area: '1 / 1' } },
           { key: 'rhatLine', head: 'R-hat against draws', middle: true, phone: { area: '1 / 2' } },
           {
             key: 'rhat',
             head: 'R-hat',
             numeric: true,
             middle: true,
-            phone: { area: '2 / 2', label: 'R-hat' },
+            phone: { area: '1 / 3', label: 'R-hat' },
           },
-          { key: 'essLine', head: 'ESS against draws', middle: true, phone: { area: '1 / 3' } },
+          { key: 'essLine', head: 'ESS against draws', middle: true, phone: { area: '2 / 2' } },
           { key: 'bulk', head: 'bulk', numeric: true, middle: true, phone: { area: '2 / 3', label: 'bulk' } },
-          { key: 'tail', head: 'tail', numeric: true, middle: true, phone: { area: '2 / 4', label: 'tail' } },
-          { key: 'gate', head: 'Gate', middle: true, phone: { area: '1 / 4' } },
+          { key: 'tail', head: 'tail', numeric: true, middle: true, phone: { area: '3 / 3', label: 'tail' } },
+          { key: 'gate', head: 'Gate', middle: true, phone: { area: '3 / 2' } },
         ]}
         rows={shown.map(({ each, i }) => {
           const quantity = quantityOf(quantities, each.parameter);

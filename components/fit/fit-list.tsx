@@ -4,7 +4,7 @@ import { Stamp } from '@/components/ui/num';
 import { StateWord } from '@/components/ui/state-word';
 import { DataTable } from '@/components/ui/table';
 import { shortName } from '@/components/words/people';
-import type { FitSummary, Notebook } from '@/lib/schemas';
+import type { FitStatus, FitSummary, Notebook } from '@/lib/schemas';
 import { isOutdated } from '@/components/notebook/section-states';
 import { fitState } from './fit-words';
 
@@ -13,11 +13,14 @@ export function FitList({
   fits,
   notebook,
   shownId,
+  shownStatus,
   onShow,
 }: {
   fits: readonly FitSummary[];
   notebook: Notebook;
-  shownId: string | null;
+  shownId: string;
+  /** Its status as it is now; the list is read less often. */
+  shownStatus: FitStatus;
   onShow: (id: string) => void;
 }) {
   return (
@@ -33,7 +36,7 @@ export function FitList({
       rows={[...fits]
         .sort((a, b) => b.number - a.number)
         .map((fit) => {
-          const state = fitState(fit.status);
+          const state = fitState(fit.id === shownId ? shownStatus : fit.status);
           return {
             key: fit.id,
             cells: {

@@ -64,7 +64,7 @@ export function LiveFigures({ fit }: { fit: Fit }) {
   const width = formatCount(progress.maxDraws).length;
   const drawn = warming
     ? `${formatCount(progress.warmup)} of ${formatCount(progress.warmupTotal)}`
-    : `${formatCount(progress.draws).padStart(width, '\u2007')} of ${formatCount(progress.maxDraws)}`;
+    : `${formatCount(progress.draws).padStart(running ? width : 0, '\u2007')} of ${formatCount(progress.maxDraws)}`;
   const share = doneShare(fit);
   return (
     <>

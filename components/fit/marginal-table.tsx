@@ -48,8 +48,8 @@ export function MarginalTable({
       columns={[
         { key: 'parameter', head: 'Parameter' },
         { key: 'median', head: 'median', numeric: true },
-        { key: 'inner', head: '68 % interval', numeric: true, pre: true },
-        { key: 'outer', head: '95 % interval', numeric: true, pre: true, phone: 'drop' },
+        { key: 'inner', head: '68 % interval', numeric: true, pre: true },
+        { key: 'outer', head: '95 % interval', numeric: true, pre: true, phone: 'drop' },
         { key: 'mcse', head: 'MCSE', numeric: true, phone: 'drop' },
         { key: 'rhat', head: 'R-hat', numeric: true, phone: 'drop' },
         { key: 'bulk', head: 'ESS bulk', numeric: true, phone: 'drop' },

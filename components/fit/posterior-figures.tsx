@@ -72,7 +72,7 @@ export function Corner({
       caption={
         <>
           Posterior of fit {fit.number}, revision {fit.revision}, from {formatCount(kept)} of its draws:
-          contours enclose 68 and 95 % of them, single draws outside; on the diagonal the median and the 68 %
+          contours enclose 68 and 95 % of them, single draws outside; on the diagonal the median and the 68 %
           interval.
         </>
       }
@@ -129,7 +129,7 @@ export function BestFit({
         hi: points.hi ?? undefined,
       }}
       curves={[{ role: 'best', label: 'best draw', kappa, y }]}
-      band={{ kappa, ...band, label: '68 and 95 % of the draws' }}
+      band={{ kappa, ...band, label: '68 and 95 % of the draws' }}
       residuals={drawn.residuals}
       caption={
         <>

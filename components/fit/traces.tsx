@@ -34,7 +34,10 @@ export function Traces({
     [traced, draws],
   );
   if (!traced.length) return null;
-  const { warmup, warmupTotal, draws: kept } = fit.progress;
+  const { warmup, warmupTotal } = fit.progress;
+  // The draws are read less often than the fit's state: the sentence is of those that are drawn.
+  const last = draws.draw.reduce((most, draw) => Math.max(most, draw), 0);
+  const kept = Math.max(0, Math.min(fit.progress.draws, last + draws.stride - warmupTotal));
   const what =
     traced[0].role === 'mass'
       ? traced.length === 1

@@ -48,7 +48,7 @@ export function ChecksTable({ checks }: { checks: readonly Check[] }) {
             level: <StateWord kind={signs[check.level]}>{check.level}</StateWord>,
             where: <span className="font-numbers text-record whitespace-nowrap">{placeOf(check)}</span>,
             finding: check.message,
-            remedy: check.remedy ?? null,
+            remedy: check.remedy ? <span className="max-tablet:text-ink-2">{check.remedy}</span> : null,
           },
         }))}
       />

@@ -72,7 +72,7 @@ export function DropZone({ files, onAdd, onPart, onRemove, saidOf }: DropZonePro
         {files.length ? (
           <button
             type="button"
-            className="min-h-target text-action underline decoration-1 underline-offset-[3px]"
+            className="text-action underline decoration-1 underline-offset-[3px]"
             onClick={open}
           >
             choose them

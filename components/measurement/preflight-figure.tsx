@@ -25,10 +25,10 @@ function errorsSentence(view: PreflightView): string {
 export function PreflightFigure({ view }: { view: PreflightView }) {
   if (!view.points) return null;
   const { kappa, lo, hi, S, sigma } = view.points;
-  const { flags, gaps } = marksOf(view);
+  const { flags, gaps, missing } = marksOf(view);
   const framed = flags.length ? `; framed, ${listed(flags.map(({ word }) => word))}` : '';
-  const dashed = gaps.length
-    ? `; dashed, the place of ${listed(gaps.map(({ word }) => word.split(':')[0]))}`
+  const dashed = missing.length
+    ? `; dashed, the ${missing.length === 1 ? 'place of line' : 'places of lines'} ${listed(missing.map(String))}`
     : '';
   return (
     <PointsFigure

@@ -106,21 +106,36 @@ export function levelCounts(checks: readonly Finding[]): LevelCounts {
   };
 }
 
-/** Points to frame and places without a point, from the findings that name a line. */
+/** Share of the axis that a word beside a mark takes. */
+const wordRoom = 0.2;
+
+/** Leaves out the words that would run into the one before. */
+function spaced(marks: { kappa: number; word: string }[], kappa: readonly number[]) {
+  const span = Math.log(kappa[kappa.length - 1] / kappa[0]) || 1;
+  let last = -Infinity;
+  return marks.map((mark) => {
+    const at = Math.log(mark.kappa / kappa[0]) / span;
+    if (at - last < wordRoom) return { ...mark, word: '' };
+    last = at;
+    return mark;
+  });
+}
+
+/** Points to frame, places without a point and the lines of those, from the findings that name a line. */
 export function marksOf(view: PreflightView) {
   const { points, checks } = view;
-  if (!points) return { flags: [], gaps: [] };
+  if (!points) return { flags: [], gaps: [], missing: [] };
   const indexOf = (line: number | undefined) => (line === undefined ? -1 : points.lines.indexOf(line));
   const flags = checks.flatMap((check) => {
     const index = check.code === 'suspicious-point' ? indexOf(check.line) : -1;
     return index < 0 ? [] : [{ index, word: `line ${check.line}` }];
   });
-  const gaps = points.S.flatMap((value, index) =>
-    Number.isFinite(value)
-      ? []
-      : [{ kappa: points.kappa[index], word: `line ${points.lines[index]}: no number` }],
+  const missing = points.S.flatMap((value, index) => (Number.isFinite(value) ? [] : [index]));
+  const gaps = spaced(
+    missing.map((index) => ({ kappa: points.kappa[index], word: `line ${points.lines[index]}: no number` })),
+    points.kappa,
   );
-  return { flags, gaps };
+  return { flags, gaps, missing: missing.map((index) => points.lines[index]).sort((a, b) => a - b) };
 }
 
 /** Which upload a file is, by its name; the reader may say otherwise. */

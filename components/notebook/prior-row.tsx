@@ -18,7 +18,7 @@ function numbersOf(prior: Prior): Record<string, number> {
 
 export function ParameterName({ declaration }: { declaration: ParameterDeclaration }) {
   return (
-    <span className="flex items-baseline gap-[10px] font-words text-[17px]/[28px]">
+    <span className="flex items-baseline gap-[10px] font-words text-[17px]/[28px] whitespace-nowrap">
       <Sym {...declaration.symbol} />
       <small className="font-controls text-note text-ink-2">{declaration.label}</small>
     </span>
@@ -57,7 +57,6 @@ export function PriorFields({
           options={priorKinds
             .filter(({ kind }) => kinds.includes(kind))
             .map(({ kind, label }) => ({ value: kind, label }))}
-          error={faults.kind}
           onChange={(event) =>
             onPrior(convertPrior(event.target.value as Prior['kind'], ends(), declaration))
           }
@@ -73,7 +72,7 @@ export function PriorFields({
               hiddenLabel={`${declaration.label}, ${fieldWords[name]}`}
               name={`${declaration.name}-${name}`}
               value={Number.isFinite(numbers[name]) ? shown(numbers[name]) : null}
-              error={faults[name] ? <span className="sr-only">{faults[name]}</span> : undefined}
+              invalid={faults[name] !== undefined}
               onValue={(value) => onPrior({ ...prior, [name]: value ?? NaN } as Prior)}
             />
           </div>

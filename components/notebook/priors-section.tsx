@@ -116,6 +116,13 @@ function PriorsTable({
   );
 }
 
+/** The priors that were changed here: another person's change of others is left alone. */
+export function ownPriors({ value, origin }: Pick<Draft<Priors>, 'value' | 'origin'>): Record<string, Prior> {
+  return Object.fromEntries(
+    Object.entries(value).filter(([name, prior]) => JSON.stringify(prior) !== JSON.stringify(origin[name])),
+  );
+}
+
 /** Says what order does to the joint prior. */
 function OrderNote({ template, priors }: { template: CompiledTemplate; priors: Priors }) {
   const masses = template.parameters.filter(({ role }) => role === 'mass');
@@ -155,7 +162,7 @@ export function PriorsSection({ state, measurement, points, prediction, draft }:
   const { conflict } = section;
 
   async function save(base: number) {
-    if (await section.save({ priors: { ...draft.value } }, base)) draft.reset();
+    if (await section.save({ priors: ownPriors(draft) }, base)) draft.reset();
   }
 
   return (
@@ -195,6 +202,27 @@ export function PriorsSection({ state, measurement, points, prediction, draft }:
               onSave={() => void save(draft.base)}
             />
           ) : null}
+          {conflict ? (
+            <ConflictMessage
+              conflict={conflict}
+              section={section}
+              sides={template.parameters
+                .filter(({ name }) => ownPriors(draft)[name])
+                .map(({ name, label, defaultPrior }) => ({
+                  key: name,
+                  what: label,
+                  theirs: priorInWords(conflict.theirs.priors[name] ?? defaultPrior),
+                  mine: priorInWords(draft.value[name] ?? defaultPrior),
+                }))}
+              onMine={(base) => void save(base)}
+              onTheirs={() => {
+                section.settle();
+                draft.reset();
+                void state.put(conflict.theirs);
+              }}
+            />
+          ) : null}
+          <RequestMessage error={section.error} title="Section 3 was not saved" />
           {band ? (
             <PointsFigure
               number={3}
@@ -211,7 +239,7 @@ export function PriorsSection({ state, measurement, points, prediction, draft }:
                       hi: points.hi ?? undefined,
                     }
               }
-              band={{ kappa: prediction.kappa, ...band, label: '68 and 95 % of the priors’ draws' }}
+              band={{ kappa: prediction.kappa, ...band, label: '68 and 95 % of the priors’ draws' }}
               yDomain={bandDomain(band, points)}
               caption={
                 <>
@@ -225,30 +253,11 @@ export function PriorsSection({ state, measurement, points, prediction, draft }:
       ) : (
         <p className="text-ink-2">The priors stand here once section 2 can be evaluated.</p>
       )}
-      {conflict && template ? (
-        <ConflictMessage
-          conflict={conflict}
-          section={section}
-          sides={template.parameters.map(({ name, label, defaultPrior }) => ({
-            key: name,
-            what: label,
-            theirs: priorInWords(conflict.theirs.priors[name] ?? defaultPrior),
-            mine: priorInWords(draft.value[name] ?? defaultPrior),
-          }))}
-          onMine={(base) => void save(base)}
-          onTheirs={() => {
-            section.settle();
-            draft.reset();
-            void state.put(conflict.theirs);
-          }}
-        />
-      ) : null}
-      <RequestMessage error={section.error} title="Section 3 was not saved" />
     </Section>
   );
 }
 
-/** Room for the band's 68 % and the points, so that a wide prior doesn't squeeze the points flat unseen. */
+/** Room for the band's 68 % and the points, so that a wide prior doesn't squeeze the points flat unseen. */
 function bandDomain(band: PredictiveBand, { S, sigma }: KeptPoints): [number, number] {
   const ends = [
     ...band.lo68,

@@ -9,6 +9,7 @@ import { Message } from '@/components/ui/message';
 import { Num } from '@/components/ui/num';
 import { Section, Subheading } from '@/components/ui/section';
 import { counted } from '@/components/words/counts';
+import { Raised } from '@/components/words/raised';
 import { formatNumber } from '@/lib/figures/format';
 import type { Measurement } from '@/lib/schemas';
 import { findTemplate, TemplateError, type Prior } from '@/lib/templates';
@@ -233,7 +234,9 @@ export function TemplateSection({ state, measurement, points, draft, drawn, best
         </Message>
       )}
       {template.assumptions.length ? (
-        <p className="mt-3 text-small text-ink-2">Assumed: {template.assumptions.join(' ')}</p>
+        <p className="mt-3 text-small text-ink-2">
+          Assumed: <Raised>{template.assumptions.join(' ')}</Raised>
+        </p>
       ) : null}
     </Section>
   );

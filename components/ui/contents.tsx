@@ -29,7 +29,8 @@ function useEntryInView(entries: ContentsEntry[], given?: string): string | unde
     const find = () => {
       const line = window.innerHeight / 3;
       let found: string | undefined;
-      for (const href of addresses.split('\n')) {
+      // At the top the first entry holds, however short its section is.
+      for (const href of window.scrollY > 0 ? addresses.split('\n') : []) {
         const target = href.startsWith('#') ? document.getElementById(href.slice(1)) : null;
         if (target && target.getBoundingClientRect().top <= line) found = href;
       }

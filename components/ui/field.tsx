@@ -14,6 +14,8 @@ interface Around {
   help?: ReactNode;
   /** The remedy; the line turns to the colour of an error and the help gives way. */
   error?: ReactNode;
+  /** The fault is told elsewhere in the same row: only the line shows it here. */
+  invalid?: boolean;
 }
 
 /** Classes of a control with a line below only. */
@@ -34,6 +36,7 @@ export function Labelled({
   hiddenLabel,
   help,
   error,
+  invalid,
   id,
   children,
 }: Around & { id?: string; children: (described: Described) => ReactNode }) {
@@ -51,7 +54,7 @@ export function Labelled({
         id: controlId,
         'aria-label': hiddenLabel,
         'aria-describedby': help || error ? belowId : undefined,
-        'aria-invalid': error ? true : undefined,
+        'aria-invalid': error || invalid ? true : undefined,
       })}
       {error ? (
         <p id={belowId} className="mt-[3px] mb-0 font-controls text-note text-ink-2">

@@ -16,6 +16,8 @@ export interface NumberFieldProps {
   decimals?: number;
   help?: ReactNode;
   error?: ReactNode;
+  /** The fault is told elsewhere in the same row: only the line shows it here. */
+  invalid?: boolean;
   name?: string;
   id?: string;
   /** Width in pixels; left out, the whole column. */
@@ -44,6 +46,7 @@ export function NumberField(props: NumberFieldProps) {
       hiddenLabel={hiddenLabel}
       help={help}
       error={error ?? (faulty ? remedy : undefined)}
+      invalid={props.invalid}
       id={id}
     >
       {(described) => (
