@@ -87,7 +87,7 @@ export function Slider(props: SliderProps) {
           viewBox="-12.5 -12.5 25 25"
           aria-hidden="true"
           className={`pointer-events-none absolute top-1/2 -mt-[12.5px] -ml-[12.5px] fill-paper [stroke-width:2] outline-offset-0 peer-focus-visible:[&>.ring]:stroke-action ${field === null ? 'stroke-ink' : colours[field % 4]}`}
-          style={{ left: `calc(7.5px + ${share.toFixed(5)} * (100% - 15px))` }}
+          style={{ left: `calc(7.5px + ${Number(share.toFixed(5))} * (100% - 15px))` }}
         >
           <path className="ring fill-none stroke-transparent" d={markerPath(field ?? 0, 0, 0, 11.5)} />
           <path d={markerPath(field ?? 0, 0, 0, 6.5)} />

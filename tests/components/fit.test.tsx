@@ -1,0 +1,115 @@
+import { renderToStaticMarkup } from 'react-dom/server';
+import { describe, expect, it } from 'vitest';
+import { bestIndex, byReplica, drawValues, keptColumn, someKept } from '@/components/fit/draws';
+import { acceptanceInWords, announcement, doneShare, gateSentence } from '@/components/fit/live-figures';
+import { MarginalTable } from '@/components/fit/marginal-table';
+import { fixedValues, posteriorSentence } from '@/components/fit/posterior-figures';
+import { judged, meetsGate, quantitiesOf } from '@/components/fit/quantities';
+import type { Draws } from '@/lib/schemas';
+import { diagnosticFixture, fitFixture } from './fixtures';
+
+const draws: Draws = {
+  replicas: 2,
+  stride: 1,
+  replica: [0, 0, 0, 1, 1, 1],
+  draw: [0, 1, 2, 0, 1, 2],
+  warmup: [1, 0, 0, 1, 0, 0],
+  logLikelihood: [9, -3, -1, 8, -2, -4],
+  columns: { mu1: [1, 2, 3, 4, 5, 6] },
+};
+
+describe('draws for figures', () => {
+  it('come by replica with their warm-up, and without it where they are the posterior', () => {
+    expect(byReplica(draws, 'mu1')).toEqual([
+      [1, 2, 3],
+      [4, 5, 6],
+    ]);
+    expect([...keptColumn(draws, 'mu1')]).toEqual([2, 3, 5, 6]);
+  });
+
+  it('have their best among the kept ones: a higher likelihood in warm-up doesn’t count', () => {
+    expect(bestIndex(draws)).toBe(2);
+    expect(drawValues(draws, 2, { c1: 2 })).toEqual({ mu1: 3, c1: 2 });
+    expect(bestIndex({ ...draws, warmup: [1, 1, 1, 1, 1, 1] })).toBe(-1);
+  });
+
+  it('are picked evenly over all replicas', () => {
+    expect(someKept(draws, 2)).toEqual([1, 4]);
+    expect(someKept(draws, 100)).toEqual([1, 2, 4, 5]);
+  });
+});
+
+describe('the gate', () => {
+  const target = { rhat: 1.01, ess: 400 };
+
+  it('asks for R-hat below and both effective sample sizes above', () => {
+    expect(meetsGate(diagnosticFixture('mu1'), target)).toBe(true);
+    expect(meetsGate(diagnosticFixture('mu1', { rhat: 1.01 }), target)).toBe(false);
+    expect(meetsGate(diagnosticFixture('mu1', { essTail: 400 }), target)).toBe(false);
+    expect(meetsGate(diagnosticFixture('mu1', { rhat: null }), target)).toBe(false);
+  });
+
+  it('isn’t asked of a derived quantity that never varies', () => {
+    expect(
+      judged([diagnosticFixture('mu1'), diagnosticFixture('w1', { derived: true, sd: 0 })]),
+    ).toHaveLength(1);
+  });
+
+  it('is told in a sentence made from the diagnostics', () => {
+    expect(gateSentence(fitFixture())).toBe(
+      'One of two quantities meets the gate: R-hat below 1.01, bulk and tail effective sample size above 400.',
+    );
+    const empty = fitFixture({ progress: { ...fitFixture().progress, draws: 0 } });
+    expect(gateSentence(empty)).toMatch(/^No draw is kept yet\./);
+  });
+});
+
+describe('a running fit', () => {
+  it('is announced at tenths, not at each draw', () => {
+    const at = (fraction: number) =>
+      announcement(fitFixture({ progress: { ...fitFixture().progress, fraction } }));
+    expect(at(0.41)).toBe('Fit 4, 4 tenths done.');
+    expect(at(0.49)).toBe(at(0.41));
+    expect(at(0.5)).not.toBe(at(0.49));
+    expect(at(0.05)).toBe('');
+    expect(announcement(fitFixture({ status: 'converged' }))).toBe('');
+  });
+
+  it('shows its warm-up’s own way until the first draw is kept', () => {
+    const progress = { ...fitFixture().progress, warmup: 300, draws: 0, fraction: 0 };
+    expect(doneShare(fitFixture({ status: 'warming-up', progress }))).toBeCloseTo(0.2, 12);
+    expect(doneShare(fitFixture())).toBe(0.41);
+  });
+
+  it('tells the acceptance of jumps and of whole walks, not of each block', () => {
+    expect(acceptanceInWords(fitFixture().acceptance)).toEqual({
+      label: 'acceptance, jumps and walks',
+      value: '0.57, 0.21',
+    });
+    expect(acceptanceInWords([]).value).toBe('–');
+  });
+});
+
+describe('the posterior', () => {
+  it('says whose draws it is made of and whether they met the gate', () => {
+    expect(posteriorSentence(fitFixture({ status: 'converged' }))).toBe(
+      'From 4\u202f000 kept draws of four replicas of fit 4, which has met the gate.',
+    );
+    expect(posteriorSentence(fitFixture())).toMatch(/its numbers move/);
+  });
+
+  it('fills fixed parameters in from the snapshot', () => {
+    expect(fixedValues(fitFixture())).toEqual({ c1: 2 });
+  });
+
+  it('shows no digit finer than twice its Monte Carlo error', () => {
+    const quantities = quantitiesOf({ id: 'free-phase', options: { fields: 1, background: [1] } });
+    const fit = fitFixture({
+      diagnostics: [diagnosticFixture('mu1', { q50: 3.5987654, mcseMean: 0.006 })],
+    });
+    const html = renderToStaticMarkup(<MarginalTable fit={fit} quantities={quantities} number={2} />);
+    // Twice the error of the median is 0.015, so a hundredth would be too fine.
+    expect(html).toContain('>3.6<');
+    expect(html).not.toContain('3.59');
+  });
+});

@@ -1,0 +1,150 @@
+import type { Fit, Measurement, Notebook } from '@/lib/schemas';
+
+/** A measurement of four bins with edges and a diagonal covariance. */
+export function measurementFixture(change: Partial<Measurement> = {}): Measurement {
+  const edges = [0.01, 0.02, 0.04, 0.08, 0.16];
+  const kappa = edges.slice(1).map((hi, i) => Math.sqrt(hi * edges[i]));
+  const sigma = [0.1, 0.1, 0.2, 0.2];
+  return {
+    id: '7f2b6c0e-3a53-4b6a-9d8c-0d6f2f7a1b01',
+    groupId: '7f2b6c0e-3a53-4b6a-9d8c-0d6f2f7a1b02',
+    name: 'Four bins',
+    description: '',
+    version: 1,
+    blind: false,
+    simulated: true,
+    rows: 4,
+    kappaMin: 0.01,
+    kappaMax: 0.16,
+    uploadedBy: 'analyst@demo.beatnote.example',
+    uploadedAt: '2027-03-10T15:02:00.000Z',
+    sha256: 'a'.repeat(64),
+    hasBinEdges: true,
+    covarianceSource: 'mocks',
+    mockCount: 200,
+    files: [{ part: 'file', fileName: 'four.csv', bytes: 300, sha256: 'a'.repeat(64) }],
+    checks: [],
+    points: {
+      kappa,
+      kappaLo: edges.slice(0, 4),
+      kappaHi: edges.slice(1),
+      S: [0.1, -0.1, 0.3, -0.4],
+      sigma,
+    },
+    covariance: sigma.map((s, i) => sigma.map((_, j) => (i === j ? s * s : 0))),
+    may: ['measurement.read', 'notebook.create'],
+    ...change,
+  };
+}
+
+export function notebookFixture(change: Partial<Notebook> = {}): Notebook {
+  return {
+    id: '7f2b6c0e-3a53-4b6a-9d8c-0d6f2f7a1b03',
+    number: 7,
+    groupId: '7f2b6c0e-3a53-4b6a-9d8c-0d6f2f7a1b02',
+    groupName: 'Demo group',
+    title: 'Two fields',
+    revision: 2,
+    blind: false,
+    simulated: true,
+    measurement: { id: '7f2b6c0e-3a53-4b6a-9d8c-0d6f2f7a1b01', name: 'Four bins', version: 1 },
+    cuts: {},
+    bins: { kept: 4, all: 4 },
+    likelihood: { kind: 'matched-t' },
+    template: { id: 'free-phase', version: 1, options: { fields: 1, background: [1], binAverage: true } },
+    priors: {},
+    record: [
+      {
+        revision: 1,
+        by: 'analyst@demo.beatnote.example',
+        at: '2027-03-10T15:00:00.000Z',
+        sections: ['title', 'measurement', 'template', 'priors'],
+      },
+      { revision: 2, by: 'lead@demo.beatnote.example', at: '2027-03-10T15:10:00.000Z', sections: ['title'] },
+    ],
+    fits: [],
+    createdBy: 'analyst@demo.beatnote.example',
+    createdAt: '2027-03-10T15:00:00.000Z',
+    may: ['notebook.read', 'notebook.edit', 'fit.start'],
+    ...change,
+  };
+}
+
+type Diagnostic = Fit['diagnostics'][number];
+
+export function diagnosticFixture(parameter: string, change: Partial<Diagnostic> = {}): Diagnostic {
+  return {
+    parameter,
+    derived: false,
+    mean: 3.6,
+    sd: 0.2,
+    q2_5: 3.2,
+    q16: 3.4,
+    q50: 3.6,
+    q84: 3.8,
+    q97_5: 4,
+    rhat: 1.002,
+    essBulk: 900,
+    essTail: 800,
+    mcseMean: 0.006,
+    mcseSd: 0.004,
+    ...change,
+  };
+}
+
+export function fitFixture(change: Partial<Fit> = {}): Fit {
+  const template = { id: 'free-phase', version: 1, options: { fields: 1, background: [1] } };
+  return {
+    id: '7f2b6c0e-3a53-4b6a-9d8c-0d6f2f7a1b04',
+    notebookId: '7f2b6c0e-3a53-4b6a-9d8c-0d6f2f7a1b03',
+    number: 4,
+    revision: 2,
+    status: 'sampling',
+    message: null,
+    progress: {
+      warmup: 1500,
+      warmupTotal: 1500,
+      draws: 1000,
+      maxDraws: 3000,
+      fraction: 0.41,
+      secondsLeft: 41,
+      secondsSpent: 60,
+    },
+    replicas: 4,
+    drawsPerSecond: 41200,
+    acceptance: [
+      { move: 'spectral-jump', rate: 0.57 },
+      { move: 'random walk', rate: 0.21 },
+      { move: 'random walk of mu1', rate: 0.44 },
+    ],
+    diagnostics: [diagnosticFixture('mu1'), diagnosticFixture('a1', { essTail: 300 })],
+    history: [{ draws: 1000, rhat: [1.002, 1.002], ess: [800, 300] }],
+    modes: [],
+    logEvidence: null,
+    gate: { met: false, target: { rhat: 1.01, ess: 400 }, reasons: [] },
+    snapshot: {
+      inputs: [],
+      measurementVersion: 1,
+      mapping: {},
+      cuts: {},
+      likelihood: { kind: 'matched-t' },
+      mockCount: 200,
+      template,
+      priors: { c1: { kind: 'fixed', value: 2 } },
+      seed: '20270310',
+      replicas: 4,
+      warmup: 1500,
+      blockDraws: 500,
+      program: '0.1.0',
+      node: '20.20.2',
+      architecture: 'x64',
+      sha256: '9c41f0a7'.padEnd(64, '0'),
+    },
+    startedBy: 'analyst@demo.beatnote.example',
+    createdAt: '2027-03-10T14:03:00.000Z',
+    startedAt: '2027-03-10T14:03:01.000Z',
+    endedAt: null,
+    may: ['fit.read', 'fit.stop', 'fit.extend'],
+    ...change,
+  };
+}
