@@ -1,9 +1,8 @@
-import { existsSync, readFileSync } from 'node:fs';
-import path from 'node:path';
 import { parseArgs } from 'node:util';
 import { AppError } from '@/lib/errors';
 import { closeDatabase } from '@/lib/db';
 import { createToken } from '@/lib/services/tokens';
+import { takeInstanceEnvironment } from './instance-environment';
 
 /**
  * `npm run token -- --email E [--name N]`: prints one API token of the running instance, and nothing else. What the
@@ -24,13 +23,6 @@ function readArguments(): { email: string; name: string } {
   } catch {
     return fail(usage);
   }
-}
-
-function takeInstanceEnvironment(): void {
-  const file = path.resolve(process.env.BEATNOTE_STATE ?? '.state', 'instance.json');
-  if (!existsSync(file)) return;
-  const known = JSON.parse(readFileSync(file, 'utf8')) as Record<string, string>;
-  for (const [name, value] of Object.entries(known)) process.env[name] ??= value;
 }
 
 const { email, name } = readArguments();

@@ -69,7 +69,7 @@ describe('the main job in a browser', () => {
     await expect
       .poll(() => page.locator('main').innerText(), { timeout: 20_000 })
       .toContain('Mocks against bins: 600 for 40');
-    await page.getByLabel('Name').fill('Walked measurement');
+    await page.getByLabel('Name', { exact: true }).fill('Walked measurement');
     await page.getByRole('button', { name: /^Store/ }).click();
     await page.waitForURL(/\/measurements\/[0-9a-f-]{36}$/);
     expect(await page.getByRole('heading', { level: 1 }).innerText()).toContain('Walked measurement');

@@ -1,0 +1,92 @@
+import { mkdirSync } from 'node:fs';
+import path from 'node:path';
+import { chromium, type Page } from 'playwright-core';
+import { createSignInLink } from '@/lib/auth/links';
+import { closeDatabase } from '@/lib/db';
+import { demoEmail } from './demo/scenario';
+import { takeInstanceEnvironment } from './instance-environment';
+
+/** `npm run screenshots -- FOLDER`: a PNG of every screen of the running demo, light, dark and at 390 px. */
+
+takeInstanceEnvironment();
+const folder = process.argv[2];
+const origin = process.env.BEATNOTE_URL;
+if (!folder || !origin) {
+  process.stderr.write(
+    'Say where to: npm run screenshots -- FOLDER, beside a running instance (BEATNOTE_STATE names it).\n',
+  );
+  process.exit(1);
+}
+mkdirSync(folder, { recursive: true });
+
+const looks = [
+  { name: '1440-light', width: 1440, colorScheme: 'light' },
+  { name: '1440-dark', width: 1440, colorScheme: 'dark' },
+  { name: '390-light', width: 390, colorScheme: 'light' },
+  { name: '390-dark', width: 390, colorScheme: 'dark' },
+] as const;
+
+const browser = await chromium.launch({
+  executablePath: '/usr/bin/chromium',
+  args: [
+    '--no-sandbox',
+    '--disable-gpu',
+    '--disable-dev-shm-usage',
+    '--disable-background-networking',
+    '--host-resolver-rules=MAP * ~NOTFOUND, EXCLUDE 127.0.0.1',
+  ],
+});
+
+async function signedIn() {
+  const context = await browser.newContext();
+  const page = await context.newPage();
+  await page.goto(await createSignInLink(demoEmail('analyst')));
+  await page.getByRole('button', { name: /sign in/i }).click();
+  await page.waitForURL('**/groups/**');
+  const first = (place: string) => page.locator(`a[href^="${place}"]`).first().getAttribute('href');
+  const group = new URL(page.url()).pathname;
+  const [notebook, measurement] = [await first('/notebooks/'), await first('/measurements/')];
+  const session = await context.storageState();
+  await context.close();
+  return { session, group, notebook, measurement };
+}
+
+const { session, group, notebook, measurement } = await signedIn();
+const screens: { name: string; place: string; guest?: boolean }[] = [
+  { name: 'sign-in', place: '/sign-in', guest: true },
+  { name: 'link-sent', place: '/sign-in/sent', guest: true },
+  { name: 'link-unusable', place: '/sign-in/error?error=Verification', guest: true },
+  { name: 'mailbox', place: '/mailbox', guest: true },
+  { name: 'group', place: group },
+  { name: 'measurement-new', place: `${group}/measurements/new` },
+  { name: 'measurement', place: measurement ?? '/' },
+  { name: 'notebook-new', place: `${group}/notebooks/new` },
+  { name: 'notebook', place: notebook ?? '/' },
+  { name: 'not-found', place: '/nothing-here' },
+];
+
+async function settle(page: Page): Promise<void> {
+  await page.waitForLoadState('networkidle');
+  await page.evaluate(() => document.fonts.ready.then(() => undefined));
+  await page.waitForTimeout(700);
+}
+
+for (const { name: look, width, colorScheme } of looks) {
+  for (const { name, place, guest } of screens) {
+    const context = await browser.newContext({
+      viewport: { width, height: 900 },
+      colorScheme,
+      reducedMotion: 'reduce',
+      ...(guest ? {} : { storageState: session }),
+    });
+    const page = await context.newPage();
+    await page.goto(`${origin}${place}`);
+    await settle(page);
+    await page.screenshot({ path: path.join(folder, `${name}-${look}.png`), fullPage: true });
+    await context.close();
+  }
+}
+await browser.close();
+await closeDatabase();
+process.stdout.write(`${looks.length * screens.length} pictures in ${folder}\n`);
+process.exit(0);
