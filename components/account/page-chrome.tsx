@@ -18,16 +18,12 @@ export interface PageChromeProps {
 
 /** Running head and footer round a page. */
 export function PageChrome({ version, email, role, where, groupId, current, children }: PageChromeProps) {
-  const links = groupId
-    ? [
-        { href: `/groups/${groupId}#notebooks`, label: 'Notebooks', current: current === 'notebooks' },
-        {
-          href: `/groups/${groupId}#measurements`,
-          label: 'Measurements',
-          current: current === 'measurements',
-        },
-      ]
-    : undefined;
+  const places = [
+    { href: `/groups/${groupId}#notebooks`, label: 'Notebooks', current: current === 'notebooks' },
+    { href: `/groups/${groupId}#measurements`, label: 'Measurements', current: current === 'measurements' },
+  ];
+  // Readers see what is released, and measurements aren't.
+  const links = groupId ? (role === 'reader' ? places.slice(0, 1) : places) : undefined;
   return (
     <div className="flex min-h-screen flex-col">
       <RunningHead

@@ -12,10 +12,12 @@ export function RequestMessage({
   shown?: readonly string[];
 }) {
   if (!error) return null;
-  const rest = detailsElsewhere(error, shown).filter((detail) => detail.message !== error.message);
+  const elsewhere = detailsElsewhere(error, shown);
+  const atFields = error.details.length > 0 && elsewhere.length === 0;
+  const rest = elsewhere.filter((detail) => detail.message !== error.message);
   return (
     <Message level="error" title={title}>
-      <p>{error.message}</p>
+      <p>{atFields ? 'What has to be mended stands at its field.' : error.message}</p>
       {rest.map((detail, i) => (
         <p key={i}>
           {detail.line === undefined ? '' : `Line ${detail.line}: `}

@@ -4,6 +4,7 @@ import { useState } from 'react';
 import { detailAt, asRequestError, send, type RequestError } from '@/components/api/request';
 import { RequestMessage } from '@/components/api/request-message';
 import { Button, Buttons } from '@/components/ui/button';
+import { EmptyState } from '@/components/ui/empty-state';
 import { Field, FieldPair, SelectField } from '@/components/ui/field';
 import { DataTable } from '@/components/ui/table';
 import type { Group, Role } from '@/lib/schemas';
@@ -32,12 +33,10 @@ export function Members({ group, onInvited }: { group: Group; onInvited: () => P
   return (
     <>
       {group.members.length === 1 ? (
-        <p className="border-t border-ink pt-2">
-          Only you. An approval needs a referee who isn’t the analyst of the notebook.
-        </p>
+        <EmptyState>Only you. An approval needs a referee who isn’t the analyst of the notebook.</EmptyState>
       ) : (
         <DataTable
-          label="Members"
+          label="Members and their roles"
           columns={[
             { key: 'email', head: 'Member' },
             { key: 'role', head: 'Role' },
@@ -90,7 +89,7 @@ function InviteForm({ group, onInvited }: { group: Group; onInvited: () => Promi
           autoComplete="off"
           value={email}
           onChange={(event) => setEmail(event.target.value)}
-          error={detailAt(error, 'email')}
+          error={detailAt(error, 'email') && 'Give an address of the form name@institute.example.'}
           help="Whoever has no account yet gets one by signing in with this address."
         />
         <SelectField
@@ -100,14 +99,17 @@ function InviteForm({ group, onInvited }: { group: Group; onInvited: () => Promi
           onChange={(event) => setRole(event.target.value as Role)}
           options={roleNames.map((name) => ({ value: name, label: name }))}
           error={detailAt(error, 'role')}
-          help={`A ${role} ${roleWords[role]}.`}
+          help={`${role === 'analyst' ? 'An' : 'A'} ${role} ${roleWords[role]}.`}
         />
       </FieldPair>
-      <Buttons note={<span role="status">{said}</span>}>
+      <Buttons>
         <Button type="submit" reason={email.trim() ? undefined : 'Give an address first.'}>
           Invite
         </Button>
       </Buttons>
+      <p role="status" className="font-controls text-note text-ink-2">
+        {said}
+      </p>
       <RequestMessage error={error} title="Nobody was invited" shown={['email', 'role']} />
     </form>
   );

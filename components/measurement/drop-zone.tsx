@@ -24,16 +24,17 @@ export interface DropZoneProps {
 export function DropZone({ files, onAdd, onPart, onRemove, saidOf }: DropZoneProps) {
   const { getRootProps, getInputProps, open, isDragActive } = useDropzone({
     onDrop: onAdd,
-    noClick: files.length > 0,
-    noKeyboard: files.length > 0,
+    // The button in it opens the browser's choice; a zone that is a button itself couldn't hold others.
+    noClick: true,
+    noKeyboard: true,
     multiple: true,
   });
   return (
     <div
       {...getRootProps({
-        role: files.length ? 'group' : 'button',
+        role: 'group',
         'aria-label': 'Choose or drop files',
-        className: `max-w-figure border border-dashed px-[20px] py-[13px] ${isDragActive ? 'border-action bg-paper-sunk' : 'border-rule'} ${files.length ? '' : 'cursor-pointer'}`,
+        className: `max-w-figure border border-dashed px-[20px] py-[13px] ${isDragActive ? 'border-action bg-paper-sunk' : 'border-rule'}`,
       })}
     >
       <input {...getInputProps({ 'aria-label': 'Files', name: 'files' })} />
@@ -69,17 +70,13 @@ export function DropZone({ files, onAdd, onPart, onRemove, saidOf }: DropZonePro
         {files.length
           ? 'Drop other files here, or '
           : 'Drop the binned points here, with mocks or a covariance, or '}
-        {files.length ? (
-          <button
-            type="button"
-            className="text-action underline decoration-1 underline-offset-[3px]"
-            onClick={open}
-          >
-            choose them
-          </button>
-        ) : (
-          <span className="text-action underline decoration-1 underline-offset-[3px]">choose them</span>
-        )}
+        <button
+          type="button"
+          className="text-action underline decoration-1 underline-offset-[3px]"
+          onClick={open}
+        >
+          choose them
+        </button>
         . Text with commas, tabs or spaces; points up to 5 MB, mocks up to 64 MB.
       </p>
     </div>
