@@ -56,7 +56,7 @@ const pure = [
   'lib/figures/**',
 ];
 
-export default [
+const config = [
   { ignores: ['.next/**', 'dist/**', '.state*/**', 'node_modules/**', 'next-env.d.ts'] },
   ...nextVitals,
   ...nextTypescript,
@@ -104,3 +104,5 @@ export default [
   },
   { files: ['scripts/**'], rules: { 'no-console': 'off' } },
 ];
+
+export default config;
