@@ -3,6 +3,7 @@
 import { useMemo } from 'react';
 import { ComposedChart, Line, XAxis, YAxis } from 'recharts';
 import type { FigureNumbers } from '@/lib/figures/csv';
+import { spread } from '@/lib/figures/spread';
 import { markerPath } from '@/lib/figures/paths';
 import { thinnedIndices } from '@/lib/figures/thin';
 import { linearTicks, paddedDomain } from '@/lib/figures/ticks';
@@ -63,7 +64,8 @@ function TraceDrawing({ figure, size }: { figure: TraceFigureProps; size: Figure
   const { traces, warmup, step = 1 } = figure;
   const panel: Panel = {
     left: size.narrow ? 36 : 44,
-    right: size.width - 10,
+    // Room for the symbols at the end of the traces.
+    right: size.width - 30,
     top: 30,
     bottom: size.narrow ? 190 : 226,
   };
@@ -123,7 +125,7 @@ function TraceDrawing({ figure, size }: { figure: TraceFigureProps; size: Figure
           className={line.className}
         />
       ))}
-      <TraceEnds panel={panel} traces={traces} now={now} room={now < 0.94 * end} />
+      <TraceEnds panel={panel} traces={traces} now={now} running={now < end} />
     </ComposedChart>
   );
 }
@@ -141,8 +143,8 @@ function WarmUp({ panel, until }: { panel: Panel; until: number }) {
         width={Math.max(0, width)}
         height={panel.bottom - panel.top - 0.5}
       />
-      {width > 64 ? (
-        <text className="an it" x={panel.left + width - 8} y={panel.bottom - 10} textAnchor="end">
+      {width > 120 ? (
+        <text className="an it" x={panel.left + width} y={panel.top - 8} textAnchor="end">
           warm-up
         </text>
       ) : null}
@@ -155,40 +157,37 @@ function TraceEnds({
   panel,
   traces,
   now,
-  room,
+  running,
 }: {
   panel: Panel;
   traces: readonly Trace[];
   now: number;
-  room: boolean;
+  running: boolean;
 }) {
   const pixels = usePixels('main');
   if (!pixels || now === 0) return null;
   const x = pixels.x(now);
+  const ends = traces.map((trace) => {
+    const last = trace.replicas.map((r) => r[r.length - 1]).filter(Number.isFinite);
+    return pixels.y(last.reduce((sum, v) => sum + v, 0) / last.length);
+  });
+  const labels = spread(ends, 15);
   return (
     <g>
-      {room ? <path className="lead" d={`M${x.toFixed(1)} ${panel.top}V${panel.bottom}`} /> : null}
-      {traces.map((trace, i) => {
-        const last = trace.replicas.map((r) => r[r.length - 1]).filter(Number.isFinite);
-        const y = pixels.y(last.reduce((sum, v) => sum + v, 0) / last.length);
-        if (!Number.isFinite(y)) return null;
-        return (
+      {running ? <path className="lead" d={`M${x.toFixed(1)} ${panel.top}V${panel.bottom}`} /> : null}
+      {traces.map((trace, i) =>
+        Number.isFinite(ends[i]) ? (
           <g key={i}>
             <path
               className={`mk ${trace.field === null ? 'plain' : `f${trace.field + 1}`}`}
-              d={markerPath(trace.field ?? 0, x, y, 3.6)}
+              d={markerPath(trace.field ?? 0, x, ends[i], 3.6)}
             />
-            <text
-              className="an strong"
-              x={room ? x + 10 : x - 10}
-              y={y + 5}
-              textAnchor={room ? 'start' : 'end'}
-            >
+            <text className="an strong" x={x + 9} y={labels[i] + 5}>
               <SvgSym {...trace.symbol} />
             </text>
           </g>
-        );
-      })}
+        ) : null,
+      )}
     </g>
   );
 }
