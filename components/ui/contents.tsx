@@ -89,10 +89,8 @@ export function Contents({ label, entries, current }: ContentsProps) {
           ref={folded}
           className="no-print sticky top-0 z-10 text-note -mx-gutter border-b border-hairline bg-paper px-gutter tablet:hidden"
         >
-          <summary
-            aria-label={`Contents, at ${shown.title}`}
-            className="flex min-h-[44px] items-center gap-[10px] text-[16px]/[21px]"
-          >
+          <summary className="flex min-h-[44px] items-center gap-[10px] text-[16px]/[21px]">
+            <span className="sr-only">Contents, at </span>
             <span className="font-numbers text-[12px] text-ink-2">{shown.number}</span>
             {shown.title}
             <span className="ml-auto">
