@@ -2,7 +2,7 @@ import { randomBytes } from 'node:crypto';
 import { setTimeout as sleep } from 'node:timers/promises';
 import path from 'node:path';
 import { Refusal, say } from './console.mjs';
-import { Supervised, endLeftovers } from './processes.mjs';
+import { Supervised, claimState, endLeftovers } from './processes.mjs';
 import { answers, startMailCatcher, startMariadb, startObjectStore, startRedis } from './services.mjs';
 import { choosePorts } from './ports.mjs';
 import { ensureBuild } from './build.mjs';
@@ -32,6 +32,7 @@ export class Instance {
   #web = null;
   #worker = null;
   #releaseBuild = () => {};
+  #releaseState = () => {};
   #stopping = false;
   environment = {};
 
@@ -110,6 +111,7 @@ export class Instance {
   }
 
   async start() {
+    this.#releaseState = claimState(this.#state);
     await endLeftovers(this.#state);
     await this.#refuseTakenPort();
     await Promise.all([
@@ -178,5 +180,6 @@ export class Instance {
     await this.#worker?.stop();
     for (const service of this.#services) await service.stop();
     this.#releaseBuild();
+    this.#releaseState();
   }
 }

@@ -1,8 +1,17 @@
-import { openSync, readFileSync, readdirSync, rmSync, statSync, truncateSync, writeFileSync } from 'node:fs';
+import {
+  existsSync,
+  openSync,
+  readFileSync,
+  readdirSync,
+  rmSync,
+  statSync,
+  truncateSync,
+  writeFileSync,
+} from 'node:fs';
 import { setTimeout as sleep } from 'node:timers/promises';
 import { spawn } from 'node:child_process';
 import path from 'node:path';
-import { say } from './console.mjs';
+import { Refusal, say } from './console.mjs';
 
 const commandLine = (pid) => {
   try {
@@ -40,6 +49,20 @@ async function end(pid, patience) {
   while (isAlive(pid) && Date.now() < until) await sleep(50);
   if (isAlive(pid)) signal(pid, 'SIGKILL');
   while (isAlive(pid)) await sleep(20);
+}
+
+/** One supervisor a state folder: claims it, or says whose it is. Its pid file is the last to go. */
+export function claimState(state) {
+  const file = path.join(state, 'supervisor.pid');
+  const [pidText = '', ...rest] = existsSync(file) ? readFileSync(file, 'utf8').split('\n') : [];
+  const pid = Number(pidText);
+  if (pid > 1 && pid !== process.pid && isAlive(pid) && commandLine(pid) === rest.join('\n').trim()) {
+    throw new Refusal(
+      `An instance runs from ${state} already (process ${pid}). Stop it first, or name another folder: BEATNOTE_STATE=.state-two PORT=3001 npm start`,
+    );
+  }
+  writeFileSync(file, `${process.pid}\n${commandLine(process.pid)}`, { mode: 0o600 });
+  return () => rmSync(file, { force: true });
 }
 
 /** Ends what an earlier supervisor left behind when it was killed: known by pid file and command line. */

@@ -25,6 +25,11 @@ describe('npm start', () => {
     );
   });
 
+  it('refuses a second start from the same state folder and leaves the first one alone', async () => {
+    await expect(StartedInstance.start(main.state)).rejects.toThrow(/runs from .* already/);
+    expect((await health(main.url)).status).toBe('ok');
+  });
+
   it('runs a second instance side by side, and TERM to npm leaves no process of it', async () => {
     second = await StartedInstance.start();
     expect((await health(second.facts.url)).status).toBe('ok');
