@@ -4,9 +4,6 @@ import type { FieldSystem, MassEvidence } from './field-system';
 import { FieldUnits } from './field-units';
 import type { ParameterLayout } from './parameter-layout';
 
-/** Masses whose u is kept: several grids' worth. */
-const KEPT = 4096;
-
 /**
  * Evidence of the masses for three or more mixed fields, where a grid of all angles would cost too much for every mass: the
  * amplitudes g w_i count as independent normal coefficients of u_i, of either sign, with the variance that the priors of g and
@@ -15,30 +12,25 @@ const KEPT = 4096;
 export class AmplitudeEvidence implements MassEvidence {
   private readonly units: FieldUnits;
   private readonly variance: Float64Array;
-  private readonly known = new Map<number, readonly [number, number]>();
-  private readonly probe: Float64Array;
-  private readonly u: Float64Array;
   private readonly factor: Float64Array;
   private readonly rest: Float64Array;
   private readonly logReference: number;
 
-  constructor(private readonly layout: ParameterLayout) {
+  constructor(layout: ParameterLayout) {
     const fields = layout.masses.length;
     this.units = new FieldUnits(layout);
     this.variance = unitAmplitudeVariance(layout).map((half) => 2 * half);
     this.logReference = this.variance.reduce((sum, value) => sum + Math.log(value), 0);
-    this.probe = Float64Array.from(layout.base);
-    this.u = new Float64Array(2 * fields);
     this.factor = new Float64Array(fields * fields);
     this.rest = new Float64Array(fields);
   }
 
   logEvidence(system: FieldSystem, full: Float64Array): number {
-    const { layout, factor, rest, u, variance } = this;
-    const fields = layout.masses.length;
+    const { factor, rest, variance } = this;
+    const fields = variance.length;
     const n = system.size;
+    const u = this.units.of(system, full);
     for (let i = 0; i < fields; i += 1) {
-      [u[2 * i], u[2 * i + 1]] = this.unit(full[layout.masses[i]]);
       rest[i] = u[2 * i] * system.linear[2 * i] + u[2 * i + 1] * system.linear[2 * i + 1];
       for (let j = 0; j <= i; j += 1) {
         const at = 2 * i * n + 2 * j;
@@ -53,17 +45,5 @@ export class AmplitudeEvidence implements MassEvidence {
     let gain = 0;
     for (let j = 0; j < fields; j += 1) gain += rest[j] * rest[j];
     return system.model.logEvidence(-gain, logDeterminant(factor, fields) + this.logReference);
-  }
-
-  /** u of a field at a mass. Fields differ in their masses alone. */
-  private unit(mass: number): readonly [number, number] {
-    const known = this.known.get(mass);
-    if (known) return known;
-    for (const index of this.layout.masses) this.probe[index] = mass;
-    const values = this.units.update(this.probe);
-    const pair = [values[0], values[1]] as const;
-    if (this.known.size >= KEPT) this.known.clear();
-    this.known.set(mass, pair);
-    return pair;
   }
 }

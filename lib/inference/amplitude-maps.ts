@@ -1,5 +1,6 @@
 import { anglesFromWeights, anglesJacobian, mixingWeights } from '@/lib/templates';
 import type { Rng } from '@/lib/sampler';
+import type { FieldSystem } from './field-system';
 import { FieldUnits } from './field-units';
 import { scalarPriorOf, type ParameterLayout } from './parameter-layout';
 import type { AmplitudePrior } from './polar-pair';
@@ -14,8 +15,8 @@ export interface AmplitudeMap {
   /** Fields whose amplitude or phase is not drawn. */
   readonly amplitudeHeld: readonly boolean[];
   readonly phaseHeld: readonly boolean[];
-  /** Settles the priors at the masses in `full`. */
-  prepare(full: Float64Array): void;
+  /** Settles the priors at the masses of the system. */
+  prepare(system: FieldSystem, full: Float64Array): void;
   /** Before a draw: chooses what is discrete, then reads what is held. */
   begin(rng: Rng, full: Float64Array): void;
   /** Amplitudes and phases of the parameters in `full`. */
@@ -171,8 +172,8 @@ export function mixedAmplitudes(layout: ParameterLayout): AmplitudeMap {
     phase,
     amplitudeHeld: priors.map(() => !free),
     phaseHeld: phases.map((index) => position[index] < 0),
-    prepare(full) {
-      const values = units.update(full);
+    prepare(system, full) {
+      const values = units.of(system, full);
       for (let f = 0; f < fields; f += 1) {
         modulus[f] = Math.hypot(values[2 * f], values[2 * f + 1]);
         const scale = modulus[f] * modulus[f];

@@ -129,6 +129,7 @@ export class LinearModel {
   private fillMoments(field: number, mass: number, out: FieldMoments): void {
     const { p, count: n, weight } = this;
     out.mass = mass;
+    out.unitKnown = false;
     out.columns.set(this.fields[field].at(mass));
     const x = out.columns;
     for (let c = 0; c < 2; c += 1) {
@@ -237,6 +238,9 @@ export interface FieldMoments {
   readonly linear: Float64Array;
   /** V_f: 2 × (number of background coefficients). */
   readonly v: Float64Array;
+  /** What the template says of the field's unit at this mass, kept for `FieldUnits`; stale unless `unitKnown`. */
+  readonly unit: Float64Array;
+  unitKnown: boolean;
 }
 
 function newFieldMoments(background: number, p: number): FieldMoments {
@@ -246,6 +250,8 @@ function newFieldMoments(background: number, p: number): FieldMoments {
     gram: new Float64Array(3),
     linear: new Float64Array(2),
     v: new Float64Array(2 * background),
+    unit: new Float64Array(6),
+    unitKnown: false,
   };
 }
 

@@ -131,6 +131,11 @@ export class CellDistribution {
     return high;
   }
 
+  /** Sum of the weights. */
+  get sum(): number {
+    return this.total;
+  }
+
   /** Probability of a cell. */
   probability(cell: number): number {
     const before = cell > 0 ? this.cumulative[cell - 1] : 0;

@@ -25,6 +25,8 @@ export interface MassProposalSettings {
   temper: number;
   /** Part of the draws that come from the prior itself. */
   floor: number;
+  /** Broader than the evidence: the cells of a grid gather where either is large. */
+  explorer: MassEvidence | null;
 }
 
 /** No sampled mass: nothing to choose. */
@@ -87,6 +89,29 @@ function firstCells(lo: number, hi: number): number {
 
 /** Exponents of the refinements: gentle at first, so that a peak between two centres is not overlooked. */
 const REFINEMENTS = [0.2, 0.4, 0.7];
+/** Cells of each axis of a refined plane, in those of the first look: only the last is drawn from. */
+const PLANE_SCALES = [0.8, 0.8, 2];
+
+/** How much of the proposal is the explorer's: it covers what is too narrow for the cells that the evidence asked for. */
+const EXPLORED = 0.07;
+
+/** Tempered weights of the evidence and of its explorer, if any, times `measure`, with these shares of the sum. */
+function combinedWeights(
+  logValues: readonly Float64Array[],
+  beta: number,
+  explored: number,
+  measure: Float64Array | null = null,
+): Float64Array {
+  const times = (values: Float64Array): Float64Array =>
+    measure ? values.map((value, i) => value * measure[i]) : values;
+  const weights = times(temperedWeights(logValues[0], beta));
+  if (logValues.length < 2) return weights;
+  const others = times(temperedWeights(logValues[1], beta));
+  const sum = (values: Float64Array): number => values.reduce((total, value) => total + value, 0);
+  const [own, foreign] = [(1 - explored) / sum(weights), explored / sum(others)];
+  for (let i = 0; i < weights.length; i += 1) weights[i] = own * weights[i] + foreign * others[i];
+  return weights;
+}
 
 /**
  * One sampled mass (others, if any, fixed): the tempered evidence on a grid of μ that is refined three times where the
@@ -97,27 +122,26 @@ export function lineProposal(
   system: FieldSystem,
   stage: MassEvidence,
   field: number,
-  { temper, floor }: MassProposalSettings,
+  { temper, floor, explorer }: MassProposalSettings,
 ): MassProposal {
   const full = Float64Array.from(layout.base);
   const index = layout.masses[field];
   const others = layout.masses.flatMap((_, f) => (f === field ? [] : [f]));
   const [lo, hi] = massRange(layout.massPriors[field]);
-  const evaluate = (edges: Float64Array): Float64Array =>
-    cellCentres(edges).map((mass) => {
-      full[index] = mass;
-      system.load((f) => full[layout.masses[f]]);
-      return stage.logEvidence(system, full);
-    });
+  const evidences = explorer ? [stage, explorer] : [stage];
+  const evaluate = (edges: Float64Array): Float64Array[] =>
+    evidences.map((evidence) =>
+      cellCentres(edges).map((mass) => {
+        full[index] = mass;
+        system.load((f) => full[layout.masses[f]]);
+        return evidence.logEvidence(system, full);
+      }),
+    );
   let edges = evenEdges(lo, hi, 2 * firstCells(lo, hi));
-  let logValues = evaluate(edges);
   for (const beta of REFINEMENTS) {
-    edges = gatherEdges(edges, temperedWeights(logValues, beta), 4 * firstCells(lo, hi));
-    logValues = evaluate(edges);
+    edges = gatherEdges(edges, combinedWeights(evaluate(edges), beta, 0.5), 4 * firstCells(lo, hi));
   }
-  const weights = temperedWeights(logValues, temper);
-  const priors = cellPriors(layout, field, edges);
-  for (let i = 0; i < weights.length; i += 1) weights[i] *= priors[i];
+  const weights = combinedWeights(evaluate(edges), temper, EXPLORED, cellPriors(layout, field, edges));
   const cells = CellDistribution.of(weights);
   const grid = edges;
   // With other masses fixed, the order is left to the prior: a mass out of order is never accepted.
@@ -145,27 +169,30 @@ export function planeProposal(
   system: FieldSystem,
   stage: MassEvidence,
   [first, second]: readonly [number, number],
-  { temper, floor }: MassProposalSettings,
+  { temper, floor, explorer }: MassProposalSettings,
 ): MassProposal {
   const full = Float64Array.from(layout.base);
   const [a, b] = [layout.masses[first], layout.masses[second]];
   const ranges = [massRange(layout.massPriors[first]), massRange(layout.massPriors[second])];
 
-  const evaluate = (x: Float64Array, y: Float64Array): Float64Array => {
+  const evidences = explorer ? [stage, explorer] : [stage];
+  const evaluate = (x: Float64Array, y: Float64Array): Float64Array[] => {
     const xs = cellCentres(x);
     const ys = cellCentres(y);
-    const values = new Float64Array(xs.length * ys.length).fill(-Infinity);
+    const values = evidences.map(() => new Float64Array(xs.length * ys.length).fill(-Infinity));
     const yMoments = Array.from(ys, (mass) => system.model.freshMoments(second, mass));
     system.load((f) => (f === first ? xs[0] : f === second ? ys[0] : full[layout.masses[f]]));
     for (let i = 0; i < xs.length; i += 1) {
       full[a] = xs[i];
-      system.replace(first, system.model.freshMoments(first, xs[i]));
+      system.replace(first, system.model.moments(first, xs[i]));
       for (let j = 0; j < ys.length; j += 1) {
         // Only cells with some room for the order μ_first < μ_second.
         if (x[i] >= y[j + 1]) continue;
         full[b] = ys[j];
         system.replace(second, yMoments[j]);
-        values[i * ys.length + j] = stage.logEvidence(system, full);
+        for (let k = 0; k < evidences.length; k += 1) {
+          values[k][i * ys.length + j] = evidences[k].logEvidence(system, full);
+        }
       }
     }
     return values;
@@ -174,31 +201,30 @@ export function planeProposal(
   const sizes = ranges.map(([lo, hi]) => firstCells(lo, hi));
   let x = evenEdges(...ranges[0], sizes[0]);
   let y = evenEdges(...ranges[1], sizes[1]);
-  let logValues = evaluate(x, y);
   REFINEMENTS.forEach((beta, round) => {
-    const weights = temperedWeights(logValues, beta);
     const columns = y.length - 1;
     const along = new Float64Array(x.length - 1);
     const across = new Float64Array(columns);
+    const weights = combinedWeights(evaluate(x, y), beta, 0.5);
     for (let i = 0; i < along.length; i += 1) {
       for (let j = 0; j < columns; j += 1) {
         along[i] += weights[i * columns + j];
         across[j] += weights[i * columns + j];
       }
     }
-    const grown = 1 + (round + 1) / REFINEMENTS.length;
-    x = gatherEdges(x, along, Math.round(sizes[0] * grown));
-    y = gatherEdges(y, across, Math.round(sizes[1] * grown));
-    logValues = evaluate(x, y);
+    const scale = PLANE_SCALES[round];
+    x = gatherEdges(x, along, Math.round(sizes[0] * scale));
+    y = gatherEdges(y, across, Math.round(sizes[1] * scale));
   });
 
-  const weights = temperedWeights(logValues, temper);
   const xPriors = cellPriors(layout, first, x);
   const yPriors = cellPriors(layout, second, y);
   const columns = yPriors.length;
+  const measure = new Float64Array(xPriors.length * columns);
   for (let i = 0; i < xPriors.length; i += 1) {
-    for (let j = 0; j < columns; j += 1) weights[i * columns + j] *= xPriors[i] * yPriors[j];
+    for (let j = 0; j < columns; j += 1) measure[i * columns + j] = xPriors[i] * yPriors[j];
   }
+  const weights = combinedWeights(evaluate(x, y), temper, EXPLORED, measure);
   const cells = CellDistribution.of(weights);
   const [gridX, gridY] = [x, y];
   return new GridMixture(

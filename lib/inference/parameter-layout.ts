@@ -25,6 +25,8 @@ export interface ParameterLayout {
   readonly isotropic: boolean;
   /** Coupling g, or −1. */
   readonly coupling: number;
+  /** Vertex angle α of a mixture, or −1. */
+  readonly vertexAngle: number;
   /** Amplitude and phase of every field, or −1. */
   readonly amplitudes: readonly number[];
   readonly phases: readonly number[];
@@ -112,6 +114,7 @@ export function layOutParameters(spec: Pick<InferenceSpec, 'template' | 'priors'
     angles,
     isotropic,
     coupling: parameters.findIndex((declaration) => declaration.role === 'coupling'),
+    vertexAngle: parameters.findIndex((declaration) => declaration.role === 'vertex-angle'),
     amplitudes: perField('amplitude'),
     phases: perField('phase'),
     quadratures: template.blocks.flatMap((_, field) => {

@@ -15,18 +15,28 @@ import {
 } from './mass-proposal';
 import { greedyGain, singleGain } from './greedy-gain';
 import { cellCentres } from './mass-grid';
-import type { ParameterLayout } from './parameter-layout';
+import { PairEvidence } from './pair-evidence';
+import { scalarPriorOf, type ParameterLayout } from './parameter-layout';
 import { MixingStage } from './stage-mixing';
 import { PolarStage } from './stage-polar';
 import { QuadratureStage } from './stage-quadrature';
-import { buildCoefficients, fillIn } from './target';
+import { VertexAngleStage } from './stage-vertex-angle';
+import { buildCoefficients, buildDrawPrior, buildLogPrior, fillIn } from './target';
 import type { WhitenedField } from './whitened-field';
 import type { Whitening } from './whitening';
+
+/** Part of the jumps that draws every parameter from the prior. */
+const FLOOR = 0.02;
+const LN_FLOOR = Math.log(FLOOR);
+const LN_REST = Math.log1p(-FLOOR);
 
 /**
  * The spectral jump: masses from a fixed proposal made of the collapsed evidence, then the fields' other parameters, then
  * the background, each from its conditional under the reference model. What is fixed, and the vertex angle of a mixture, is
  * conditioned on. The density is exact for what is drawn, so the Hastings ratio corrects every approximation.
+ *
+ * A small part is drawn from the prior, so that target/proposal is nowhere above likelihood/part: a chain that starts where
+ * the likelihood is poor, or a t likelihood's tail wider than its reference, can't hold it.
  */
 class SpectralJump implements JumpProposal {
   readonly name = 'spectral-jump';
@@ -36,7 +46,10 @@ class SpectralJump implements JumpProposal {
   private readonly writeCoefficients: (full: Float64Array, out: Float64Array) => void;
   // The density of the rest given the masses depends on the end point alone: keep the last few.
   private readonly keptPoints: Float64Array[];
-  private readonly keptValues: Float64Array;
+  private readonly keptRest: Float64Array;
+  private readonly keptPrior: Float64Array;
+  private readonly drawPrior: (rng: Rng, full: Float64Array) => void;
+  private readonly logPrior: (full: Float64Array) => number;
   private next = 0;
 
   constructor(
@@ -50,38 +63,53 @@ class SpectralJump implements JumpProposal {
     this.before = Float64Array.from(layout.base);
     this.coefficients = new Float64Array(layout.template.columnCount);
     this.keptPoints = Array.from({ length: 4 }, () => new Float64Array(layout.free.length).fill(NaN));
-    this.keptValues = new Float64Array(4);
+    this.keptRest = new Float64Array(4);
+    this.keptPrior = new Float64Array(4);
+    this.drawPrior = buildDrawPrior(layout);
+    this.logPrior = buildLogPrior(layout);
   }
 
   draw(rng: Rng, from: Float64Array, out: Float64Array): void {
     const { layout, full, system } = this;
     fillIn(layout, from, full);
-    this.masses.draw(rng, full);
-    this.loadFields();
-    this.stage?.draw(rng, system, full);
-    this.writeCoefficients(full, this.coefficients);
-    system.model.drawBackground(rng, system.moments, this.coefficients, full);
+    if (rng.uniform() < FLOOR) this.drawPrior(rng, full);
+    else {
+      this.masses.draw(rng, full);
+      this.loadFields();
+      this.stage?.draw(rng, system, full);
+      this.writeCoefficients(full, this.coefficients);
+      system.model.drawBackground(rng, system.moments, this.coefficients, full);
+    }
     for (let i = 0; i < layout.free.length; i += 1) out[i] = full[layout.free[i]];
   }
 
   logDensity(to: Float64Array, from: Float64Array): number {
-    const { layout, full, before, system } = this;
+    const { layout, full, before } = this;
     fillIn(layout, to, full);
+    const kept = this.keep(to);
     fillIn(layout, from, before);
-    const masses = this.masses.logDensity(full, before);
-    if (masses === -Infinity) return masses;
-    const kept = this.keptPoints.findIndex((point) => samePoint(point, to));
-    if (kept >= 0) return masses + this.keptValues[kept];
+    const own = this.masses.logDensity(full, before) + this.keptRest[kept];
+    const floor = LN_FLOOR + this.keptPrior[kept];
+    const larger = Math.max(own + LN_REST, floor);
+    if (larger === -Infinity) return larger;
+    return larger + Math.log(Math.exp(own + LN_REST - larger) + Math.exp(floor - larger));
+  }
 
+  /** Where what hangs on the end point alone is kept: the densities of the rest given the masses and of the prior. */
+  private keep(to: Float64Array): number {
+    const { full, system } = this;
+    const known = this.keptPoints.findIndex((point) => samePoint(point, to));
+    if (known >= 0) return known;
     this.loadFields();
     let rest = this.stage ? this.stage.logDensity(system, full) : 0;
     this.writeCoefficients(full, this.coefficients);
     rest += system.model.lnBackgroundDensity(system.moments, this.coefficients, full);
-    if (Number.isNaN(rest)) rest = -Infinity;
-    this.keptPoints[this.next].set(to);
-    this.keptValues[this.next] = rest;
-    this.next = (this.next + 1) % this.keptPoints.length;
-    return masses + rest;
+    const slot = this.next;
+    this.next = (slot + 1) % this.keptPoints.length;
+    this.keptPoints[slot].set(to);
+    this.keptRest[slot] = Number.isNaN(rest) ? -Infinity : rest;
+    this.keptPrior[slot] = this.logPrior(full);
+    return slot;
   }
 
   private readonly massOf = (f: number): number => this.full[this.layout.masses[f]];
@@ -97,6 +125,15 @@ function samePoint(a: Float64Array, b: Float64Array): boolean {
 }
 
 function stageOf(layout: ParameterLayout): FieldStage | null {
+  const inner = stageAtVertex(layout);
+  const { vertexAngle, position } = layout;
+  return inner && vertexAngle >= 0 && position[vertexAngle] >= 0
+    ? new VertexAngleStage(layout, inner)
+    : inner;
+}
+
+/** The stage of the fields' parameters but for a sampled vertex angle. */
+function stageAtVertex(layout: ParameterLayout): FieldStage | null {
   switch (layout.template.structure) {
     case 'background':
       return null;
@@ -111,17 +148,28 @@ function stageOf(layout: ParameterLayout): FieldStage | null {
   }
 }
 
-/** What the masses' grid is made of: the stage's own evidence, unless that hangs on what a jump keeps, or costs too much. */
+/** What the masses' grid is made of: the stage's own evidence, unless that costs too much. */
 function massEvidence(layout: ParameterLayout, stage: FieldStage): MassEvidence {
-  const { template, masses, position } = layout;
-  const vertexAngle = template.parameters.findIndex(({ role }) => role === 'vertex-angle');
-  if (vertexAngle >= 0 && position[vertexAngle] >= 0) return new LooseEvidence(layout, vertexAngle);
-  return template.structure === 'mixed' && masses.length > 2 ? new AmplitudeEvidence(layout) : stage;
+  const { template, masses, vertexAngle, coupling } = layout;
+  const vertex = vertexAngle >= 0 ? scalarPriorOf(layout, vertexAngle) : null;
+  if (template.structure === 'mixed' && masses.length > 2) {
+    return vertex ? new LooseEvidence(layout) : new AmplitudeEvidence(layout);
+  }
+  const coupled = vertex && template.structure === 'mixed' ? scalarPriorOf(layout, coupling) : null;
+  return vertex && coupled ? new PairEvidence(layout, coupled, vertex) : stage;
 }
 
 /** How sharp the proposal of the masses may be: nearly the evidence itself where that is exact. */
-function massSettings(stage: FieldStage, likelihood: Likelihood): MassProposalSettings {
-  return { temper: stage.exact && likelihood.exponent === null ? 0.9 : 1 / 1.5, floor: 0.07 };
+function massSettings(
+  layout: ParameterLayout,
+  stage: FieldStage,
+  likelihood: Likelihood,
+): MassProposalSettings {
+  return {
+    temper: stage.exact && likelihood.exponent === null ? 0.9 : 1 / 1.5,
+    floor: 0.05,
+    explorer: layout.template.structure === 'mixed' ? new LooseEvidence(layout) : null,
+  };
 }
 
 /**
@@ -140,7 +188,7 @@ export function buildSpectralJump(
   const stage = stageOf(layout);
   if (!stage) return new SpectralJump(layout, noMasses, system, null);
   const grids = new FieldSystem(model, fields.length);
-  const settings = massSettings(stage, likelihood);
+  const settings = massSettings(layout, stage, likelihood);
   const evidence = massEvidence(layout, stage);
   const sampled = layout.masses.flatMap((index, f) => (layout.position[index] >= 0 ? [f] : []));
   let masses: MassProposal;

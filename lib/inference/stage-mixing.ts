@@ -1,6 +1,7 @@
 import { drawIsotropicAngles, logIsotropicDensity, mixingWeights } from '@/lib/templates';
 import type { Rng } from '@/lib/sampler';
 import type { FieldStage, FieldSystem } from './field-system';
+import { findAnglePeak } from './angle-peak';
 import { FieldUnits } from './field-units';
 import {
   drawCoefficient,
@@ -14,9 +15,13 @@ import { scalarPriorOf, type ParameterLayout } from './parameter-layout';
 import { drawFromPrior, lnPriorDensity, priorSupport } from './priors';
 
 /** Cells of each sampled angle when so many are sampled. */
-const CELLS: Readonly<Record<number, number>> = { 1: 64, 2: 16, 3: 8 };
+const CELLS: Readonly<Record<number, number>> = { 1: 63, 2: 16, 3: 8 };
 /** Part of the angles that is drawn from their prior. */
 const FLOOR = 0.1;
+/** Nodes round the best angle. */
+const PEAK_NODES = 12;
+/** Exponents so far below the largest count for nothing. */
+const NEGLIGIBLE = -40;
 
 /**
  * Structure `mixed`: coefficients g w_i(angles) u_i(μ_i). The angles are drawn from a grid of their conditional with g and
@@ -34,10 +39,18 @@ export class MixingStage implements FieldStage {
   private readonly gram: Float64Array;
   private readonly linear: Float64Array;
   private readonly edges: Float64Array[];
-  private readonly cellWeights: Float64Array[];
-  private readonly cellLogPriors: Float64Array;
-  private readonly cellLogVolume: number;
+  /** Of every cell's centre: the weights, the products w_i w_j (twice off the diagonal), and the prior density. */
+  private readonly cellWeights: Float64Array;
+  private readonly cellProducts: Float64Array;
+  private readonly cellPriors: Float64Array;
+  private readonly cellVolume: number;
+  /** Of every cell: exponent of the gain, and what multiplies its exponential. */
   private readonly values: Float64Array;
+  private readonly factors: Float64Array;
+  private readonly packed: Float64Array;
+  private readonly peak = { angle: 0, reach: 0 };
+  private readonly peakValues = new Float64Array(PEAK_NODES);
+  private readonly peakFactors = new Float64Array(PEAK_NODES);
   private readonly angleScratch: Float64Array;
   private readonly drawn: Float64Array;
   private readonly weights: Float64Array;
@@ -48,7 +61,6 @@ export class MixingStage implements FieldStage {
   private laid = false;
   private readonly laidMasses: Float64Array;
   private laidVertexAngle = NaN;
-  private readonly vertexAngle: number;
   private readonly form = { precision: 0, linear: 0 };
 
   constructor(private readonly layout: ParameterLayout) {
@@ -72,34 +84,46 @@ export class MixingStage implements FieldStage {
       return evenEdges(lo, hi, CELLS[this.free.length]);
     });
     const count = this.edges.reduce((product, edges) => product * (edges.length - 1), 1);
-    this.cellWeights = [];
-    this.cellLogPriors = new Float64Array(count);
+    const products = (this.fields * (this.fields + 1)) / 2;
+    this.packed = new Float64Array(products);
+    this.cellWeights = new Float64Array(count * this.fields);
+    this.cellProducts = new Float64Array(count * products);
+    this.cellPriors = new Float64Array(count);
     this.values = new Float64Array(count);
+    this.factors = new Float64Array(count);
     this.gathered = new Float64Array(count + 1);
     this.spread = new Float64Array(count);
     this.cells = new CellDistribution(count);
     this.laidMasses = new Float64Array(this.fields).fill(NaN);
-    this.vertexAngle = layout.template.parameters.findIndex(({ role }) => role === 'vertex-angle');
     for (let cell = 0; cell < count; cell += 1) {
       this.placeCentre(cell);
-      this.cellWeights.push(mixingWeights(this.angleScratch));
-      this.cellLogPriors[cell] = this.lnAnglePrior(this.angleScratch);
+      this.tabulate(cell);
     }
-    this.cellLogVolume = this.edges.reduce((sum, edges) => sum + Math.log(edges[1] - edges[0]), 0);
+    this.cellVolume = this.edges.reduce((product, edges) => product * (edges[1] - edges[0]), 1);
   }
 
+  /** One sampled angle: the sum over every third cell, and over nodes round the best angle where those are too wide for it. */
   logEvidence(system: FieldSystem, full: Float64Array): number {
     this.settle(system, full);
-    const count = this.cellWeights.length;
-    let max = -Infinity;
-    for (let cell = 0; cell < count; cell += 1) {
-      const value = this.lnGain(this.cellWeights[cell], full) + this.cellLogPriors[cell];
-      this.values[cell] = value;
-      if (value > max) max = value;
-    }
+    const { values, factors, cellPriors } = this;
+    const one = this.free.length === 1;
+    const [start, step] = one ? [1, 3] : [0, 1];
+    let max = this.gainAtCells(full, start, step);
+    const half = one && this.fields === 2 ? this.findPeak(full) : 0;
+    const near = half > 0 ? this.gainAtPeak(full, half) : -Infinity;
+    if (near > max) max = near;
     let sum = 0;
-    for (let cell = 0; cell < count; cell += 1) sum += Math.exp(this.values[cell] - max);
-    return system.model.logEvidence(-2 * (max + Math.log(sum) + this.cellLogVolume), 0);
+    for (let cell = start; cell < values.length; cell += step) {
+      const fall = values[cell] - max;
+      if (fall < NEGLIGIBLE) continue;
+      const part = half > 0 ? this.partBeyond(cell, half) : 1;
+      sum += part * cellPriors[cell] * factors[cell] * Math.exp(fall);
+    }
+    sum *= step * this.cellVolume;
+    if (half > 0) {
+      for (let k = 0; k < PEAK_NODES; k += 1) sum += this.peakFactors[k] * Math.exp(this.peakValues[k] - max);
+    }
+    return system.model.logEvidence(-2 * (max + Math.log(sum)), 0);
   }
 
   draw(rng: Rng, system: FieldSystem, full: Float64Array): void {
@@ -166,26 +190,111 @@ export class MixingStage implements FieldStage {
   private layAngles(full: Float64Array): void {
     if (this.laid) return;
     this.laid = true;
-    const { cellWeights, cellLogPriors, values, cells, gathered } = this;
+    const { values, factors, cellPriors, cells, gathered } = this;
     const count = values.length;
+    const max = this.gainAtCells(full, 0, 1);
     for (let cell = 0; cell < count; cell += 1) {
-      values[cell] = this.lnGain(cellWeights[cell], full) + cellLogPriors[cell];
+      values[cell] = cellPriors[cell] * factors[cell] * Math.exp(values[cell] - max);
     }
-    exponentiate(values, count);
     if (this.free.length > 1) {
       cells.set(values, count);
       return;
     }
     this.edgeCount = gatherEdgesInto(this.edges[0], values, count, gathered, this.spread);
     const [k] = this.free;
+    let largest = -Infinity;
     for (let i = 0; i < this.edgeCount - 1; i += 1) {
       this.angleScratch[k] = 0.5 * (gathered[i] + gathered[i + 1]);
       mixingWeights(this.angleScratch, this.weights);
       values[i] = this.lnGain(this.weights, full) + this.lnAnglePrior(this.angleScratch);
+      if (values[i] > largest) largest = values[i];
     }
-    exponentiate(values, this.edgeCount - 1);
-    for (let i = 0; i < this.edgeCount - 1; i += 1) values[i] *= gathered[i + 1] - gathered[i];
+    for (let i = 0; i < this.edgeCount - 1; i += 1) {
+      values[i] = Math.exp(values[i] - largest) * (gathered[i + 1] - gathered[i]);
+    }
     cells.set(values, this.edgeCount - 1);
+  }
+
+  /** The weights, their products and the prior density at the centre of a cell, from `angleScratch`. */
+  private tabulate(cell: number): void {
+    const { fields, weights, cellProducts } = this;
+    mixingWeights(this.angleScratch, weights);
+    this.cellWeights.set(weights, cell * fields);
+    let at = cell * this.packed.length;
+    for (let i = 0; i < fields; i += 1) {
+      for (let j = 0; j <= i; j += 1) cellProducts[at++] = (i === j ? 1 : 2) * weights[i] * weights[j];
+    }
+    this.cellPriors[cell] = Math.exp(this.lnAnglePrior(this.angleScratch));
+  }
+
+  /**
+   * The gain of `lnGain` at the centre of every `step`-th cell as factor · exp(value), without logarithms; returns the largest
+   * value.
+   */
+  private gainAtCells(full: Float64Array, start: number, step: number): number {
+    const { fields, gram, linear, packed, values, factors, cellWeights, cellProducts, reference } = this;
+    const products = packed.length;
+    let at = 0;
+    for (let i = 0; i < fields; i += 1) for (let j = 0; j <= i; j += 1) packed[at++] = gram[i * fields + j];
+    const own = reference ? reference.precision : 0;
+    const shift = reference ? own * reference.mean : 0;
+    const offset = reference ? shift * reference.mean : 0;
+    const g = full[this.layout.coupling];
+    let max = -Infinity;
+    for (let cell = start; cell < values.length; cell += step) {
+      let q = 0;
+      let l = 0;
+      for (let k = 0; k < products; k += 1) q += cellProducts[cell * products + k] * packed[k];
+      for (let i = 0; i < fields; i += 1) l += cellWeights[cell * fields + i] * linear[i];
+      let value: number;
+      if (reference) {
+        const total = q + own;
+        const sum = l + shift;
+        value = 0.5 * ((sum * sum) / total - offset);
+        factors[cell] = Math.sqrt(own / total);
+      } else {
+        value = g * (l - 0.5 * q * g);
+        factors[cell] = 1;
+      }
+      values[cell] = value;
+      if (value > max) max = value;
+    }
+    return max;
+  }
+
+  /** Two fields: settles `peak`; returns its reach, or 0 where that is no less than the cells of the evidence. */
+  private findPeak(full: Float64Array): number {
+    const g = this.reference ? NaN : full[this.layout.coupling];
+    if (!findAnglePeak(this.gram, this.linear, g, this.peak)) return 0;
+    const [first, second] = this.edges[0];
+    return this.peak.reach < 4.5 * (second - first) ? this.peak.reach : 0;
+  }
+
+  /** Gain and volume at nodes within `half` of the peak; returns the largest exponent. */
+  private gainAtPeak(full: Float64Array, half: number): number {
+    const { peakValues, peakFactors, angleScratch, free, edges } = this;
+    const peak = this.peak.angle;
+    const axis = edges[0];
+    const lo = Math.max(axis[0], peak - half);
+    const width = (Math.min(axis[axis.length - 1], peak + half) - lo) / PEAK_NODES;
+    let max = -Infinity;
+    for (let k = 0; k < PEAK_NODES; k += 1) {
+      angleScratch[free[0]] = lo + (k + 0.5) * width;
+      mixingWeights(angleScratch, this.weights);
+      peakValues[k] = width > 0 ? this.lnGain(this.weights, full) : -Infinity;
+      peakFactors[k] = width > 0 ? width * Math.exp(this.lnAnglePrior(angleScratch)) : 0;
+      if (peakValues[k] > max) max = peakValues[k];
+    }
+    return max;
+  }
+
+  /** How much of the three cells round this one lies further than `half` from the peak. */
+  private partBeyond(cell: number, half: number): number {
+    const axis = this.edges[0];
+    const lo = axis[cell - 1];
+    const hi = axis[cell + 2];
+    const overlap = Math.min(hi, this.peak.angle + half) - Math.max(lo, this.peak.angle - half);
+    return 1 - Math.max(0, overlap) / (hi - lo);
   }
 
   /** ln prior density of the sampled angles, the isotropic one together. */
@@ -220,7 +329,7 @@ export class MixingStage implements FieldStage {
   /** Products of the fields' signals u_iᵀ(…)u_j at the masses of the system. */
   private settle(system: FieldSystem, full: Float64Array): void {
     const { fields, gram, linear, layout } = this;
-    const u = this.units.update(full);
+    const u = this.units.of(system, full);
     const n = system.size;
     // The grid of the angles hangs on these products (and a fixed g, which never changes) alone.
     let same = true;
@@ -228,7 +337,8 @@ export class MixingStage implements FieldStage {
       if (this.laidMasses[f] !== full[layout.masses[f]]) same = false;
       this.laidMasses[f] = full[layout.masses[f]];
     }
-    const angle = this.vertexAngle >= 0 ? full[this.vertexAngle] : 0;
+    const { vertexAngle } = layout;
+    const angle = vertexAngle >= 0 ? full[vertexAngle] : 0;
     if (same && angle === this.laidVertexAngle) return;
     this.laidVertexAngle = angle;
     this.laid = false;
@@ -285,11 +395,4 @@ export class MixingStage implements FieldStage {
     const shifted = form.linear + precision * mean;
     return 0.5 * ((shifted * shifted) / total - precision * mean * mean - Math.log(total / precision));
   }
-}
-
-/** Replaces the first `count` logarithms by exp(value − largest). */
-function exponentiate(values: Float64Array, count: number): void {
-  let max = -Infinity;
-  for (let i = 0; i < count; i += 1) if (values[i] > max) max = values[i];
-  for (let i = 0; i < count; i += 1) values[i] = Math.exp(values[i] - max);
 }

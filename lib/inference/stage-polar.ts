@@ -97,7 +97,7 @@ export class PolarStage implements FieldStage {
   private settle(system: FieldSystem, full: Float64Array): number {
     const { factor, rest, map } = this;
     const n = system.size;
-    map.prepare(full);
+    map.prepare(system, full);
     factor.set(system.gram);
     rest.set(system.linear);
     let logReference = 0;

@@ -86,6 +86,34 @@ const cases: { what: string; id: string; options: Record<string, unknown>; prior
       options: { fields: 2, phases: 'free', ...locked },
       priors: { ...masses, g: uniform(0, 10) },
     },
+    {
+      what: 'mixture of vertices, one field',
+      id: 'locked-squeezed',
+      options: { fields: 1, ...locked, vertex: 'mixture' },
+      priors: couplings,
+    },
+    {
+      what: 'mixture of vertices, two fields',
+      id: 'locked-squeezed',
+      options: { fields: 2, ...locked, vertex: 'mixture' },
+      priors: couplings,
+    },
+    {
+      what: 'mixture of vertices, another prior of its angle, fixed coupling',
+      id: 'locked-squeezed',
+      options: { fields: 2, ...locked, vertex: 'mixture' },
+      priors: {
+        ...masses,
+        g: fixed(2),
+        alpha: { kind: 'truncated-normal', mean: 0.3, sd: 0.4, lo: -1, hi: 1.5 },
+      },
+    },
+    {
+      what: 'mixture of vertices with free phases',
+      id: 'locked-squeezed',
+      options: { fields: 2, phases: 'free', ...locked, vertex: 'mixture' },
+      priors: couplings,
+    },
   ];
 
 /** Draws of a jump from one starting point, with their ln densities. */
@@ -172,6 +200,12 @@ describe('with the likelihood off the jumps leave the prior as it is', () => {
       what: 'two fields of a mixture of vertices',
       id: 'locked-squeezed',
       options: { fields: 2, ...locked, vertex: 'mixture' },
+      priors: couplings,
+    },
+    {
+      what: 'a field of a mixture of vertices with a free phase',
+      id: 'locked-squeezed',
+      options: { fields: 1, phases: 'free', ...locked, vertex: 'mixture' },
       priors: couplings,
     },
     {
