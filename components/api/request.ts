@@ -44,7 +44,11 @@ export function asRequestError(error: unknown): RequestError {
 }
 
 /** Asks the API; an answer that isn't 2xx is thrown as a RequestError. */
-export async function send<T>(method: 'GET' | 'POST' | 'PATCH', path: string, body?: unknown): Promise<T> {
+export async function send<T>(
+  method: 'GET' | 'POST' | 'PATCH' | 'DELETE',
+  path: string,
+  body?: unknown,
+): Promise<T> {
   let response: Response;
   try {
     response = await fetch(path, {

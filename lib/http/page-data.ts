@@ -10,11 +10,13 @@ import {
   measurementSchema,
   meSchema,
   notebookSchema,
+  tokenSchema,
   type Fit,
   type Group,
   type Me,
   type Measurement,
   type Notebook,
+  type Token,
 } from '@/lib/schemas';
 import type { Action } from '@/lib/policies';
 import { authorise, type Access, type RecordKind } from '@/lib/services/access';
@@ -23,6 +25,7 @@ import { readFit } from '@/lib/services/fits';
 import { readGroup } from '@/lib/services/groups';
 import { readMeasurement } from '@/lib/services/measurements';
 import { readNotebook } from '@/lib/services/notebooks';
+import { listTokens } from '@/lib/services/tokens';
 
 /**
  * What pages are first drawn with: the very services behind the API's GETs, asked on behalf of the session, and
@@ -52,6 +55,9 @@ const accessTo = (actor: Actor, kind: RecordKind, id: string, action: Action): P
   orNotFound(authorise(actor, kind, id, action));
 
 export const me = cache(async (actor: Actor): Promise<Me> => meSchema.parse(await readMe(actor)));
+
+export const tokens = async (actor: Actor): Promise<Token[]> =>
+  tokenSchema.array().parse(await listTokens(actor));
 
 export const group = cache(async (actor: Actor, id: string): Promise<Group> => {
   const access = await accessTo(actor, 'group', id, 'group.read');

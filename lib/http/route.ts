@@ -27,7 +27,11 @@ export interface Call<K extends RouteKey> {
   query: Parsed<Routes[K], 'query'>;
   body: Parsed<Routes[K], 'body'>;
 }
-export type UserCall<K extends RouteKey> = Call<K> & { actor: Actor };
+export type UserCall<K extends RouteKey> = Call<K> & {
+  actor: Actor;
+  /** The token that proved it; null with a session. */
+  tokenId: string | null;
+};
 export type MemberCall<K extends RouteKey> = UserCall<K> & { access: Access };
 
 /** A handler answers with what its row's schema describes, or with a response of its own (streams, downloads). */
@@ -138,7 +142,7 @@ export const withAnyone = <K extends KeysFor<'anyone'>>(key: K, handler: Handler
 
 /** Open to whoever is signed in. */
 export const withUser = <K extends KeysFor<'user'>>(key: K, handler: Handler<UserCall<K>, K>): Verb =>
-  verb(key, 'user', async (call, caller) => handler({ ...call, actor: caller!.actor }));
+  verb(key, 'user', async (call, caller) => handler({ ...call, ...caller! }));
 
 /**
  * Open to members of the record's group whose role allows `action`. It stands in the route file so that the API can be
@@ -149,6 +153,4 @@ export const withMember = <A extends Action, K extends KeysFor<A>>(
   key: K,
   handler: Handler<MemberCall<K>, K>,
 ): Verb =>
-  verb(key, action, async (call, caller, access) =>
-    handler({ ...call, actor: caller!.actor, access: access! }),
-  );
+  verb(key, action, async (call, caller, access) => handler({ ...call, ...caller!, access: access! }));

@@ -2,6 +2,7 @@ import { z } from 'zod';
 import {
   createGroupSchema,
   createNotebookSchema,
+  createTokenSchema,
   createdSchema,
   drawsSchema,
   extendFitSchema,
@@ -23,6 +24,8 @@ import {
   sampleFormats,
   startFitSchema,
   templateSchema,
+  tokenCreatedSchema,
+  tokenSchema,
 } from '@/lib/schemas';
 import type { Action } from '@/lib/policies';
 
@@ -67,6 +70,23 @@ export const routes = {
     answer: z.record(z.string(), z.unknown()),
   },
   'GET /me': { summary: 'Who is asking, and their groups.', permission: 'user', answer: meSchema },
+  'GET /me/tokens': {
+    summary: 'One’s own personal tokens, without their secrets.',
+    permission: 'user',
+    answer: z.array(tokenSchema),
+  },
+  'POST /me/tokens': {
+    summary: 'Make a personal token; its secret is in this answer and nowhere else. Only with a session.',
+    permission: 'user',
+    body: createTokenSchema,
+    answer: tokenCreatedSchema,
+    status: 201,
+  },
+  'DELETE /me/tokens/:id': {
+    summary: 'Revoke a personal token of one’s own.',
+    permission: 'user',
+    answer: tokenSchema,
+  },
   'POST /groups': {
     summary: 'Create a group; its creator leads it.',
     permission: 'user',

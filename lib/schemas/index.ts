@@ -5,3 +5,4 @@ export * from './measurements';
 export * from './notebooks';
 export * from './fits';
 export * from './groups';
+export * from './tokens';

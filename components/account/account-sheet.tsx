@@ -1,0 +1,132 @@
+'use client';
+
+import Link from 'next/link';
+import { useState } from 'react';
+import useSWR from 'swr';
+import { asRequestError, detailAt, read, send, type RequestError } from '@/components/api/request';
+import { RequestMessage } from '@/components/api/request-message';
+import { Asking } from '@/components/ui/asking';
+import { Button, Buttons } from '@/components/ui/button';
+import { EmptyState } from '@/components/ui/empty-state';
+import { Field } from '@/components/ui/field';
+import { IndexSection } from '@/components/ui/index-list';
+import { PageHead } from '@/components/ui/section';
+import { Sheet, SheetRow } from '@/components/ui/sheet';
+import { counted } from '@/components/words/counts';
+import type { Me, Token, TokenCreated } from '@/lib/schemas';
+import { NewToken, type MadeToken } from './new-token';
+import { TokenTable } from './token-table';
+
+const path = '/api/v1/me/tokens';
+
+function TokenForm({ onMade }: { onMade: (made: MadeToken) => void }) {
+  const [name, setName] = useState('');
+  const [error, setError] = useState<RequestError | null>(null);
+
+  async function make() {
+    setError(null);
+    try {
+      const { token } = await send<TokenCreated>('POST', path, { name: name.trim() });
+      onMade({ name: name.trim(), token });
+      setName('');
+    } catch (thrown) {
+      setError(asRequestError(thrown));
+    }
+  }
+
+  return (
+    <form
+      noValidate
+      className="mt-2 max-w-[460px]"
+      onSubmit={(event) => {
+        event.preventDefault();
+        void make();
+      }}
+    >
+      <Field
+        label="Name of a new token"
+        name="name"
+        value={name}
+        maxLength={120}
+        autoComplete="off"
+        onChange={(event) => setName(event.target.value)}
+        error={detailAt(error, 'name')}
+        help="Say where it will be used, so that you know which one to revoke."
+      />
+      <Buttons>
+        <Button type="submit" reason={name.trim() ? undefined : 'Give it a name first.'}>
+          Make the token
+        </Button>
+      </Buttons>
+      <RequestMessage error={error} title="No token was made" shown={['name']} />
+    </form>
+  );
+}
+
+function Tokens({ initial }: { initial: Token[] }) {
+  const { data: tokens = initial, mutate } = useSWR(path, read<Token[]>, { fallbackData: initial });
+  const [made, setMade] = useState<MadeToken | null>(null);
+  const [asked, setAsked] = useState<Token | null>(null);
+  const [error, setError] = useState<RequestError | null>(null);
+
+  async function revoke(token: Token) {
+    setAsked(null);
+    setError(null);
+    try {
+      await send('DELETE', `${path}/${token.id}`);
+    } catch (thrown) {
+      setError(asRequestError(thrown));
+    }
+    await mutate();
+  }
+
+  return (
+    <IndexSection id="tokens" title="Personal tokens">
+      {tokens.length ? (
+        <TokenTable tokens={tokens} onRevoke={setAsked} />
+      ) : (
+        <EmptyState>
+          No token yet. A program that asks the API in your name sends one in place of signing in.
+        </EmptyState>
+      )}
+      {asked ? (
+        <Asking
+          key={asked.id}
+          question={`Revoke the token “${asked.name}”? What uses it is refused at once, and it can’t be brought back.`}
+          act="Revoke it"
+          keep="Keep it"
+          onAct={() => void revoke(asked)}
+          onKeep={() => setAsked(null)}
+        />
+      ) : null}
+      <RequestMessage error={error} title="The token was not revoked" />
+      {made ? <NewToken key={made.token} made={made} onHide={() => setMade(null)} /> : null}
+      <TokenForm
+        onMade={(token) => {
+          setMade(token);
+          void mutate();
+        }}
+      />
+    </IndexSection>
+  );
+}
+
+/** A person's own page: their tokens, and the way to their groups. */
+export function AccountSheet({ me, tokens }: { me: Me; tokens: Token[] }) {
+  return (
+    <Sheet>
+      <PageHead title="Your account" byline={me.email} />
+      <SheetRow>
+        <Tokens initial={tokens} />
+        <IndexSection id="groups" title="Groups">
+          <div className="border-t border-ink pt-2">
+            <p>
+              You belong to {counted(me.groups.length, 'group')}.{' '}
+              <Link href="/?groups">See and create groups</Link>
+            </p>
+          </div>
+        </IndexSection>
+      </SheetRow>
+    </Sheet>
+  );
+}
