@@ -29,8 +29,9 @@ const optionLabels: Record<string, string> = {
 const choiceLabels: Record<string, string> = {
   quadrature: 'cosine and sine amplitude',
   'amplitude-phase': 'amplitude and phase',
-  '1': 'π̇²σ/Λ₁',
-  '2': '(∂π)²σ/(a²Λ₂)',
+  // A dot over π is drawn badly by system menus.
+  '1': 'in time, (∂ₜπ)²σ/Λ₁',
+  '2': 'in space, (∂ᵢπ)²σ/(a²Λ₂)',
   mixture: 'mixture of both, angle α',
   locked: 'locked to the interaction',
   free: 'free, amplitude |C(μ)| kept',
