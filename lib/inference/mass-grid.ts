@@ -7,6 +7,15 @@ export function evenEdges(lo: number, hi: number, n: number): Float64Array {
   return edges;
 }
 
+/** Of `size` cells along each of `dimensions` axes: those in the middle of every block of 3 × … × 3, row-major. */
+export function middleCells(size: number, dimensions: number): Int32Array {
+  const all = Int32Array.from({ length: size ** dimensions }, (_, cell) => cell);
+  return all.filter((cell) => {
+    for (let d = 0; d < dimensions; d += 1) if (Math.floor(cell / size ** d) % 3 !== 1) return false;
+    return true;
+  });
+}
+
 /** Middles of the cells. */
 export function cellCentres(edges: Float64Array): Float64Array {
   const centres = new Float64Array(edges.length - 1);

@@ -45,7 +45,7 @@ function lnMassPrior(layout: ParameterLayout, full: Float64Array): number {
 }
 
 /** Prior probability of every cell of an axis. */
-function cellPriors(layout: ParameterLayout, field: number, edges: Float64Array): Float64Array {
+export function cellPriors(layout: ParameterLayout, field: number, edges: Float64Array): Float64Array {
   const prior = layout.massPriors[field];
   const out = new Float64Array(edges.length - 1);
   if (prior.kind === 'fixed') return out.fill(1);
@@ -55,7 +55,7 @@ function cellPriors(layout: ParameterLayout, field: number, edges: Float64Array)
 }
 
 /** Mixture of a piecewise-constant density with the prior of the masses. */
-class GridMixture implements MassProposal {
+export class GridMixture implements MassProposal {
   private readonly drawn: Float64Array;
 
   constructor(
@@ -96,7 +96,7 @@ const PLANE_SCALES = [0.8, 0.8, 2];
 const EXPLORED = 0.07;
 
 /** Tempered weights of the evidence and of its explorer, if any, times `measure`, with these shares of the sum. */
-function combinedWeights(
+export function combinedWeights(
   logValues: readonly Float64Array[],
   beta: number,
   explored: number,

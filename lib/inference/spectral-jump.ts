@@ -13,6 +13,7 @@ import {
   type MassProposal,
   type MassProposalSettings,
 } from './mass-proposal';
+import { EitherMassProposal, latticeProposal } from './mass-lattice';
 import { greedyGain, singleGain } from './greedy-gain';
 import { cellCentres } from './mass-grid';
 import { PairEvidence } from './pair-evidence';
@@ -159,6 +160,12 @@ function massEvidence(layout: ParameterLayout, stage: FieldStage): MassEvidence 
   return vertex && coupled ? new PairEvidence(layout, coupled, vertex) : stage;
 }
 
+/** Whether the stage's evidence is cheap enough for a lattice of three masses, and smooth enough to gain by it. */
+function onLattice({ template, masses, vertexAngle, position }: ParameterLayout): boolean {
+  if (masses.length > 3 || (vertexAngle >= 0 && position[vertexAngle] >= 0)) return false;
+  return template.structure === 'linear' || template.structure === 'mixed';
+}
+
 /** How sharp the proposal of the masses may be: nearly the evidence itself where that is exact. */
 function massSettings(
   layout: ParameterLayout,
@@ -200,6 +207,10 @@ export function buildSpectralJump(
     masses = new OneMassProposal(layout, grids, evidence, settings, (edges) =>
       cellCentres(edges).map((mass) => singleGain(model, 0, mass)),
     );
+    if (sampled.length === 3 && onLattice(layout)) {
+      const lattice = new FieldSystem(model, fields.length);
+      masses = new EitherMassProposal(latticeProposal(layout, lattice, stage, sampled, settings), masses);
+    }
   }
   return new SpectralJump(layout, masses, system, stage);
 }

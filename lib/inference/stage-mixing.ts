@@ -10,12 +10,12 @@ import {
   lnCoefficientDensity,
   type LinearReference,
 } from './linear-reference';
-import { CellDistribution, evenEdges, findCell, gatherEdgesInto } from './mass-grid';
+import { CellDistribution, evenEdges, findCell, gatherEdgesInto, middleCells } from './mass-grid';
 import { scalarPriorOf, type ParameterLayout } from './parameter-layout';
 import { drawFromPrior, lnPriorDensity, priorSupport } from './priors';
 
 /** Cells of each sampled angle when so many are sampled. */
-const CELLS: Readonly<Record<number, number>> = { 1: 63, 2: 16, 3: 8 };
+const CELLS: Readonly<Record<number, number>> = { 1: 63, 2: 18, 3: 9 };
 /** Part of the angles that is drawn from their prior. */
 const FLOOR = 0.1;
 /** Nodes round the best angle. */
@@ -48,6 +48,8 @@ export class MixingStage implements FieldStage {
   private readonly values: Float64Array;
   private readonly factors: Float64Array;
   private readonly packed: Float64Array;
+  private readonly all: Int32Array;
+  private readonly thirds: Int32Array;
   private readonly peak = { angle: 0, reach: 0 };
   private readonly peakValues = new Float64Array(PEAK_NODES);
   private readonly peakFactors = new Float64Array(PEAK_NODES);
@@ -84,6 +86,8 @@ export class MixingStage implements FieldStage {
       return evenEdges(lo, hi, CELLS[this.free.length]);
     });
     const count = this.edges.reduce((product, edges) => product * (edges.length - 1), 1);
+    this.all = Int32Array.from({ length: count }, (_, cell) => cell);
+    this.thirds = middleCells(CELLS[this.free.length] ?? 1, this.free.length);
     const products = (this.fields * (this.fields + 1)) / 2;
     this.packed = new Float64Array(products);
     this.cellWeights = new Float64Array(count * this.fields);
@@ -95,31 +99,26 @@ export class MixingStage implements FieldStage {
     this.spread = new Float64Array(count);
     this.cells = new CellDistribution(count);
     this.laidMasses = new Float64Array(this.fields).fill(NaN);
-    for (let cell = 0; cell < count; cell += 1) {
-      this.placeCentre(cell);
-      this.tabulate(cell);
-    }
+    for (let cell = 0; cell < count; cell += 1) this.tabulate(cell);
     this.cellVolume = this.edges.reduce((product, edges) => product * (edges[1] - edges[0]), 1);
   }
 
-  /** One sampled angle: the sum over every third cell, and over nodes round the best angle where those are too wide for it. */
+  /** The sum over every third cell of each angle, and over nodes round the best angle of two fields where those are too wide. */
   logEvidence(system: FieldSystem, full: Float64Array): number {
     this.settle(system, full);
-    const { values, factors, cellPriors } = this;
-    const one = this.free.length === 1;
-    const [start, step] = one ? [1, 3] : [0, 1];
-    let max = this.gainAtCells(full, start, step);
-    const half = one && this.fields === 2 ? this.findPeak(full) : 0;
-    const near = half > 0 ? this.gainAtPeak(full, half) : -Infinity;
-    if (near > max) max = near;
+    const { values, factors, cellPriors, thirds } = this;
+    let max = this.gainAtCells(full, thirds);
+    const half = this.free.length === 1 && this.fields === 2 ? this.findPeak(full) : 0;
+    if (half > 0) max = Math.max(max, this.gainAtPeak(full, half));
     let sum = 0;
-    for (let cell = start; cell < values.length; cell += step) {
+    for (let k = 0; k < thirds.length; k += 1) {
+      const cell = thirds[k];
       const fall = values[cell] - max;
       if (fall < NEGLIGIBLE) continue;
       const part = half > 0 ? this.partBeyond(cell, half) : 1;
       sum += part * cellPriors[cell] * factors[cell] * Math.exp(fall);
     }
-    sum *= step * this.cellVolume;
+    sum *= 3 ** this.free.length * this.cellVolume;
     if (half > 0) {
       for (let k = 0; k < PEAK_NODES; k += 1) sum += this.peakFactors[k] * Math.exp(this.peakValues[k] - max);
     }
@@ -192,7 +191,7 @@ export class MixingStage implements FieldStage {
     this.laid = true;
     const { values, factors, cellPriors, cells, gathered } = this;
     const count = values.length;
-    const max = this.gainAtCells(full, 0, 1);
+    const max = this.gainAtCells(full, this.all);
     for (let cell = 0; cell < count; cell += 1) {
       values[cell] = cellPriors[cell] * factors[cell] * Math.exp(values[cell] - max);
     }
@@ -215,9 +214,10 @@ export class MixingStage implements FieldStage {
     cells.set(values, this.edgeCount - 1);
   }
 
-  /** The weights, their products and the prior density at the centre of a cell, from `angleScratch`. */
+  /** The weights, their products and the prior density at the centre of a cell. */
   private tabulate(cell: number): void {
     const { fields, weights, cellProducts } = this;
+    this.placeCentre(cell);
     mixingWeights(this.angleScratch, weights);
     this.cellWeights.set(weights, cell * fields);
     let at = cell * this.packed.length;
@@ -228,20 +228,21 @@ export class MixingStage implements FieldStage {
   }
 
   /**
-   * The gain of `lnGain` at the centre of every `step`-th cell as factor · exp(value), without logarithms; returns the largest
+   * The gain of `lnGain` at the centre of these cells as factor · exp(value), without logarithms; returns the largest
    * value.
    */
-  private gainAtCells(full: Float64Array, start: number, step: number): number {
+  private gainAtCells(full: Float64Array, at: Int32Array): number {
     const { fields, gram, linear, packed, values, factors, cellWeights, cellProducts, reference } = this;
     const products = packed.length;
-    let at = 0;
-    for (let i = 0; i < fields; i += 1) for (let j = 0; j <= i; j += 1) packed[at++] = gram[i * fields + j];
+    let next = 0;
+    for (let i = 0; i < fields; i += 1) for (let j = 0; j <= i; j += 1) packed[next++] = gram[i * fields + j];
     const own = reference ? reference.precision : 0;
     const shift = reference ? own * reference.mean : 0;
     const offset = reference ? shift * reference.mean : 0;
     const g = full[this.layout.coupling];
     let max = -Infinity;
-    for (let cell = start; cell < values.length; cell += step) {
+    for (let c = 0; c < at.length; c += 1) {
+      const cell = at[c];
       let q = 0;
       let l = 0;
       for (let k = 0; k < products; k += 1) q += cellProducts[cell * products + k] * packed[k];

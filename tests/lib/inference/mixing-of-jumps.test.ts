@@ -71,6 +71,35 @@ describe('four replicas of a measurement of two fields meet the gate within 4,00
   });
 });
 
+describe('three fields', () => {
+  const three = [
+    {
+      what: 'of free amplitudes meet the gate',
+      id: 'free-phase',
+      options: { fields: 3, background: [1, 2, 3] },
+      acceptance: 0.6,
+      rhat: 1.01,
+      size: 2000,
+    },
+    // What is reached, not what is wished for: ridges in the space of three masses are narrower than a lattice's cells.
+    {
+      what: 'of locked phases come near it',
+      id: 'locked-squeezed',
+      options: { fields: 3, ...locked },
+      acceptance: 0.2,
+      rhat: 1.02,
+      size: 150,
+    },
+  ];
+  it.each(three)('$what', ({ id, options, acceptance, rhat, size }) => {
+    const run = runReplicas(fitMeasurement('two-field', id, options), 4000);
+    const diagnoses = diagnoseAll(run);
+    expect(Math.min(...run.jumpAcceptance)).toBeGreaterThan(acceptance);
+    for (const found of Object.values(diagnoses)) expect(found.rhat).toBeLessThan(rhat);
+    expect(worstSize(diagnoses)).toBeGreaterThanOrEqual(size);
+  });
+});
+
 describe('locked phases at ten times the signal-to-noise', () => {
   it('lead all replicas to the masses put in, not to a worse mode', () => {
     const { axis, data } = measurement('two-field', 0.2);
