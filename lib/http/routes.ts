@@ -1,5 +1,6 @@
 import { z } from 'zod';
 import {
+  changeRoleSchema,
   createGroupSchema,
   createNotebookSchema,
   createTokenSchema,
@@ -11,10 +12,12 @@ import {
   fitSchema,
   groupSchema,
   healthSchema,
+  invitationSchema,
   inviteSchema,
   manifestSchema,
   measurementCreatedSchema,
   measurementSchema,
+  memberSchema,
   meSchema,
   mocksLimit,
   notebookCreatedSchema,
@@ -105,6 +108,22 @@ export const routes = {
     body: inviteSchema,
     answer: createdSchema,
     status: 201,
+  },
+  'DELETE /groups/:id/invitations/:invitationId': {
+    summary: 'Take back an invitation that is still open.',
+    permission: 'group.invite',
+    answer: invitationSchema,
+  },
+  'PATCH /groups/:id/members/:userId': {
+    summary: 'Give a member another role.',
+    permission: 'group.roles',
+    body: changeRoleSchema,
+    answer: memberSchema,
+  },
+  'DELETE /groups/:id/members/:userId': {
+    summary: 'Leave a group; a lead may also remove another member.',
+    permission: 'group.leave',
+    answer: memberSchema,
   },
   'POST /groups/:id/measurements': {
     summary: 'Upload a measurement.',

@@ -1,4 +1,6 @@
 import { config } from '@/lib/config';
+import { AppError } from '@/lib/errors';
+import type { Role } from '@/lib/schemas';
 import { sendMail } from './transport';
 
 export { listMailbox, type CaughtMail } from './mailbox';
@@ -38,3 +40,58 @@ export const sendInvitation = (
       '',
     ].join('\n'),
   });
+
+const onGroup = (email: string, groupName: string, lines: string[]): Promise<void> =>
+  sendMail({
+    to: email,
+    subject: `${groupName} on Beatnote`,
+    text: ['Hello,', '', ...lines, ''].join('\n'),
+  });
+
+/** Tells a member that their role was changed. */
+export const sendRoleChange = (
+  email: string,
+  change: { groupName: string; from: Role; role: Role; changedBy: string },
+): Promise<void> =>
+  onGroup(email, change.groupName, [
+    `${change.changedBy} has changed your role in the group “${change.groupName}” from ${change.from} to ${change.role}.`,
+    'It holds from your next page on:',
+    '',
+    config().url,
+  ]);
+
+/** Tells a person that they were taken out of a group. */
+export const sendRemoved = (
+  email: string,
+  removal: { groupName: string; removedBy: string },
+): Promise<void> =>
+  onGroup(email, removal.groupName, [
+    `${removal.removedBy} has removed you from the group “${removal.groupName}”.`,
+    'What you did there stays in its record under your name. Your account and your other groups are as they were.',
+  ]);
+
+/** Confirms to a person that they have left a group. */
+export const sendLeft = (email: string, left: { groupName: string }): Promise<void> =>
+  onGroup(email, left.groupName, [
+    `You have left the group “${left.groupName}”.`,
+    'What you did there stays in its record under your name. A lead of the group can invite you again.',
+  ]);
+
+/** Tells a person that an invitation which they haven't answered was taken back. */
+export const sendInvitationTakenBack = (
+  email: string,
+  invitation: { groupName: string; takenBackBy: string },
+): Promise<void> =>
+  onGroup(email, invitation.groupName, [
+    `${invitation.takenBackBy} has taken back your invitation to the group “${invitation.groupName}”.`,
+    'There is nothing that you have to do.',
+  ]);
+
+/** For a mail about what is done already: that stands where no mail can go out, and the transport has logged why. */
+export async function sendOrLog(mail: Promise<void>): Promise<void> {
+  try {
+    await mail;
+  } catch (error) {
+    if (!(error instanceof AppError && error.code === 'unavailable')) throw error;
+  }
+}

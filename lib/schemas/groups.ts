@@ -32,13 +32,29 @@ export const inviteSchema = z.strictObject({
   role: roleSchema,
 });
 
+export const changeRoleSchema = z.strictObject({ role: roleSchema });
+
+export const memberSchema = z.object({ userId: idSchema, email: z.email(), role: roleSchema });
+export type Member = z.infer<typeof memberSchema>;
+
+/** An invitation that its address hasn't answered by signing in yet. */
+export const invitationSchema = z.object({
+  id: idSchema,
+  email: z.email(),
+  role: roleSchema,
+  createdAt: instantSchema,
+});
+export type Invitation = z.infer<typeof invitationSchema>;
+
 /** A group's home: its notebooks and measurements as the asking member may see them. */
 export const groupSchema = z.object({
   id: idSchema,
   name: z.string(),
   role: roleSchema,
   may: z.array(z.string()),
-  members: z.array(z.object({ email: z.email(), role: roleSchema })),
+  members: z.array(memberSchema),
+  /** Those still open, for whoever may invite; nobody else sees whom a group waits for. */
+  invitations: z.array(invitationSchema),
   notebooks: z.array(notebookSummarySchema),
   measurements: z.array(measurementSummarySchema),
   createdAt: instantSchema,

@@ -5,6 +5,7 @@ import { actionsFor, may } from '@/lib/policies';
 import { roleSchema, type Group as GroupDto } from '@/lib/schemas';
 import type { Access, Actor } from './access';
 import { recordEvent } from './audit';
+import { openInvitations } from './invitations';
 import { measurementSummaries } from './measurements';
 import { notebookSummaries } from './notebooks';
 import { emailsOf } from './people';
@@ -30,9 +31,10 @@ export async function createGroup(actor: Actor, body: { name: string }): Promise
 export async function readGroup(access: Access): Promise<GroupDto> {
   access.require('group.read');
   const { groupId, role } = access;
-  const [group, memberships, notebooks, measurements] = await Promise.all([
+  const [group, memberships, invitations, notebooks, measurements] = await Promise.all([
     Group.findByPk(groupId),
     Membership.findAll({ where: { groupId }, order: [['createdAt', 'ASC']] }),
+    may(role, 'group.invite') ? openInvitations(groupId) : [],
     may(role, 'notebook.read') ? notebookSummaries(groupId) : [],
     may(role, 'measurement.read') ? measurementSummaries(groupId) : [],
   ]);
@@ -45,8 +47,9 @@ export async function readGroup(access: Access): Promise<GroupDto> {
     may: actionsFor(role),
     members: memberships.flatMap(({ userId, role: theirs }) => {
       const email = emails.get(userId);
-      return email === undefined ? [] : [{ email, role: roleSchema.parse(theirs) }];
+      return email === undefined ? [] : [{ userId, email, role: roleSchema.parse(theirs) }];
     }),
+    invitations,
     notebooks,
     measurements,
     createdAt: group.createdAt.toISOString(),

@@ -2,8 +2,8 @@ import type { Transaction } from 'sequelize';
 import { Group, Invitation, Membership, User } from '@/models';
 import { database } from '@/lib/db';
 import { AppError, notFound } from '@/lib/errors';
-import { sendInvitation } from '@/lib/mail';
-import type { Role } from '@/lib/schemas';
+import { sendInvitation, sendInvitationTakenBack, sendOrLog } from '@/lib/mail';
+import { idSchema, roleSchema, type Invitation as InvitationDto, type Role } from '@/lib/schemas';
 import type { Access } from './access';
 import { recordEvent } from './audit';
 
@@ -85,4 +85,54 @@ export async function invite(access: Access, body: { email: string; role: Role }
     joined,
   });
   return { id };
+}
+
+const present = ({ id, email, role, createdAt }: Invitation): InvitationDto => ({
+  id,
+  email,
+  role: roleSchema.parse(role),
+  createdAt: createdAt.toISOString(),
+});
+
+/** Invitations of a group that nobody has answered yet, oldest first. */
+export async function openInvitations(groupId: string): Promise<InvitationDto[]> {
+  const open = await Invitation.findAll({
+    where: { groupId, acceptedAt: null },
+    order: [
+      ['createdAt', 'ASC'],
+      ['id', 'ASC'],
+    ],
+  });
+  return open.map(present);
+}
+
+/** Takes an open invitation back and mails its address. One that was answered is a membership, and not found here. */
+export async function takeBackInvitation(access: Access, id: string): Promise<InvitationDto> {
+  access.require('group.invite');
+  const { groupId, actor } = access;
+  if (!idSchema.safeParse(id).success) throw notFound('invitation');
+  const { invitation, groupName } = await database().transaction(async (transaction) => {
+    const group = await Group.findByPk(groupId, { transaction });
+    const found = await Invitation.findOne({
+      where: { id, groupId, acceptedAt: null },
+      lock: transaction.LOCK.UPDATE,
+      transaction,
+    });
+    if (!group || !found) throw notFound('invitation');
+    await found.destroy({ transaction });
+    await recordEvent(
+      {
+        groupId,
+        actorId: actor.userId,
+        action: 'group.uninvite',
+        subjectType: 'invitation',
+        subjectId: id,
+        details: { email: found.email, role: found.role },
+      },
+      transaction,
+    );
+    return { invitation: found, groupName: group.name };
+  });
+  await sendOrLog(sendInvitationTakenBack(invitation.email, { groupName, takenBackBy: actor.email }));
+  return present(invitation);
 }

@@ -8,8 +8,8 @@ import { recordKindOf, type Verb } from '@/lib/http/route';
 import { rowOf, routes, type RouteKey } from '@/lib/http/routes';
 import { actionsFor, may } from '@/lib/policies';
 import { groupSchema, roles, type Role } from '@/lib/schemas';
-import { Fit, Measurement, MeasurementVersion, Notebook, NotebookRevision } from '@/models';
-import { call, closeConnections, createGroup, createMember, createSession, errorOf } from './harness';
+import { Fit, Invitation, Measurement, MeasurementVersion, Notebook, NotebookRevision } from '@/models';
+import { call, closeConnections, createGroup, createMember, createSession, errorOf, unique } from './harness';
 
 const folder = path.join(process.cwd(), 'app/api/v1');
 const verbs = ['GET', 'POST', 'PUT', 'PATCH', 'DELETE'] as const;
@@ -123,8 +123,43 @@ afterAll(closeConnections);
 
 const refusal = (status: number) => status === 401 || status === 403 || status === 404;
 
+/**
+ * Whom or what within a group a route is about, for a caller of that role. A route that acts without a body would act
+ * on it, so each such call gets one of its own: a member who leaves, an invitation that is taken back.
+ */
+async function subjectOf(
+  key: RouteKey,
+  role: Role,
+): Promise<{ token: string | undefined; params: Record<string, string> }> {
+  const token = tokens.get(role);
+  if (key === 'DELETE /groups/:id/members/:userId') {
+    const member = await createMember(records.group, role);
+    return { token: member.token, params: { userId: member.user.userId } };
+  }
+  if (key === 'DELETE /groups/:id/invitations/:invitationId') {
+    const { id } = await Invitation.create({
+      groupId: records.group,
+      email: `${unique('guest')}@example.org`,
+      role: 'reader',
+      invitedBy: outsider.user.userId,
+      createdAt: new Date(),
+    });
+    return { token, params: { invitationId: id } };
+  }
+  return { token, params: {} };
+}
+
 /** Calls a route with a body that no schema takes: who may come in hears of the body, who may not hears of that. */
-function knock(key: RouteKey, how: { token?: string; cookie?: string; origin?: string; id?: string }) {
+function knock(
+  key: RouteKey,
+  how: {
+    token?: string;
+    cookie?: string;
+    origin?: string;
+    id?: string;
+    params?: Record<string, string>;
+  },
+) {
   const [method] = key.split(' ');
   const { permission } = rowOf(key);
   const kind = permission === 'anyone' || permission === 'user' ? null : recordKindOf(key);
@@ -132,7 +167,7 @@ function knock(key: RouteKey, how: { token?: string; cookie?: string; origin?: s
   return call(exported.get(key)!, {
     method,
     ...how,
-    params: { id },
+    params: { id, ...how.params },
     ...(method === 'GET' ? {} : { body: '{"nonsense":', headers: { 'content-type': 'application/json' } }),
   });
 }
@@ -176,7 +211,7 @@ describe('roles × routes', () => {
     async (key, role) => {
       const { permission } = rowOf(key);
       if (permission === 'anyone' || permission === 'user') throw new Error('not of a group');
-      const answer = await knock(key, { token: tokens.get(role) });
+      const answer = await knock(key, await subjectOf(key, role));
       await answer.body?.cancel();
       const kind = recordKindOf(key);
       if (may(role, permission)) expect(refusal(answer.status)).toBe(false);

@@ -5,7 +5,10 @@ import { roles, type Role } from '@/lib/schemas';
 /** Who may do what, as the specification's table of roles has it: L lead, A analyst, F referee, R reader. */
 const table: Record<Action, string> = {
   'group.read': 'LAFR',
+  'group.leave': 'LAFR',
   'group.invite': 'L',
+  'group.roles': 'L',
+  'group.remove': 'L',
   'group.audit': 'LAF',
   'measurement.read': 'LAF',
   'measurement.upload': 'LA',
@@ -28,7 +31,7 @@ describe('who may do what', () => {
   });
 
   it('lists the actions of a role, of all records or of one kind', () => {
-    expect(actionsFor('reader')).toEqual(['group.read']);
+    expect(actionsFor('reader')).toEqual(['group.read', 'group.leave']);
     expect(actionsFor('referee', 'fit')).toEqual(['fit.read']);
     expect(actionsFor('lead')).toEqual([...actions]);
   });
