@@ -1,7 +1,16 @@
 'use client';
 
-import { useEffect, useRef, useState, useSyncExternalStore, type CSSProperties, type ReactNode } from 'react';
+import {
+  use,
+  useEffect,
+  useRef,
+  useState,
+  useSyncExternalStore,
+  type CSSProperties,
+  type ReactNode,
+} from 'react';
 import type { FigureNumbers } from '@/lib/figures/csv';
+import { FigureTime } from '../ui/fold';
 import { FigureCaption } from './figure-caption';
 import { NumbersTable } from './numbers-table';
 
@@ -65,6 +74,7 @@ export function Figure(props: FigureProps) {
   const [width, setWidth] = useState(720);
   const [tabled, setTabled] = useState(false);
   const narrow = useNarrow();
+  const drawn = use(FigureTime) === 'now';
 
   useEffect(() => {
     const element = holder.current;
@@ -89,7 +99,7 @@ export function Figure(props: FigureProps) {
         style={heights}
         className="fig-svg h-(--height) max-tablet:h-(--height-narrow)"
       >
-        {props.children({ width, narrow })}
+        {drawn ? props.children({ width, narrow }) : null}
       </div>
       <FigureCaption
         number={number}

@@ -9,7 +9,9 @@ import { clockTime } from '@/components/words/dates';
 import { inWords } from '@/components/words/counts';
 import { shortName } from '@/components/words/people';
 import { shortHash } from '@/components/measurement/measurement-words';
+import { chainsSentence } from '@/components/notebook/fold-sentences';
 import { chainsState, isOutdated } from '@/components/notebook/section-states';
+import type { SectionFold } from '@/components/notebook/use-folds';
 import { formatCount } from '@/lib/figures/format';
 import type { Draws, Fit, Notebook } from '@/lib/schemas';
 import { ConvergenceTable } from './convergence-table';
@@ -31,6 +33,7 @@ export interface ChainsSectionProps {
   defaults: FitDefaults;
   /** Sections whose changes aren't saved. */
   unsaved: readonly number[];
+  fold: SectionFold;
   onFit: (fit: Fit) => void;
   onShow: (id: string) => void;
   onStarted: (id: string) => Promise<unknown>;
@@ -113,7 +116,7 @@ function Margin({ fit }: { fit: Fit }) {
 
 /** Section 4: settings of the sampler, and a fit as it goes. */
 export function ChainsSection(props: ChainsSectionProps) {
-  const { notebook, fit, draws, connection, quantities, unsaved } = props;
+  const { notebook, fit, draws, connection, quantities, unsaved, fold } = props;
   const mayStart = notebook.may.includes('fit.start');
   const running = notebook.fits.some(({ status }) => isRunning(status));
   const number = Math.max(0, ...notebook.fits.map((each) => each.number)) + 1;
@@ -126,6 +129,7 @@ export function ChainsSection(props: ChainsSectionProps) {
       number={4}
       title="Chains"
       state={chainsState(fit, notebook)}
+      fold={{ ...fold, sentence: chainsSentence(fit) }}
       margin={fit ? <Margin fit={fit} /> : null}
     >
       {fit ? (

@@ -6,8 +6,10 @@ import { Caution } from '@/components/ui/caution';
 import { Record } from '@/components/ui/record';
 import { Section } from '@/components/ui/section';
 import { shortName } from '@/components/words/people';
+import { posteriorFoldSentence } from '@/components/notebook/fold-sentences';
 import { posteriorState } from '@/components/notebook/section-states';
 import { templateInWords } from '@/components/notebook/template-words';
+import type { SectionFold } from '@/components/notebook/use-folds';
 import { counted } from '@/components/words/counts';
 import type { Draws, Fit, Measurement, Notebook } from '@/lib/schemas';
 import { MarginalTable } from './marginal-table';
@@ -20,6 +22,7 @@ export interface PosteriorSectionProps {
   fit: Fit | null;
   draws: Draws | null;
   quantities: ReadonlyMap<string, Quantity>;
+  fold: SectionFold;
 }
 
 /** What limits the numbers above it. */
@@ -70,7 +73,8 @@ function Downloads({ fit }: { fit: Fit }) {
 }
 
 /** Section 5: what the draws say. */
-export function PosteriorSection({ notebook, measurement, fit, draws, quantities }: PosteriorSectionProps) {
+export function PosteriorSection(props: PosteriorSectionProps) {
+  const { notebook, measurement, fit, draws, quantities, fold } = props;
   const state = posteriorState(fit, notebook);
   const some = fit !== null && fit.progress.draws > 0;
   const sameVersion = notebook.measurement.version === measurement.version;
@@ -80,6 +84,7 @@ export function PosteriorSection({ notebook, measurement, fit, draws, quantities
       number={5}
       title="Posterior"
       state={state}
+      fold={{ ...fold, sentence: posteriorFoldSentence(fit, notebook.blind) }}
       margin={
         some ? (
           <Record at={fit.endedAt ?? undefined}>

@@ -35,6 +35,25 @@ function Background({ options }: { options: Record<string, unknown> }) {
   );
 }
 
+/** "two mixed fields with free phases; background in κ and κ²" */
+export function TemplateInWords({
+  template: { id, options },
+  initial = false,
+}: {
+  template: { id: string; options: Record<string, unknown> };
+  /** True at the beginning of a sentence. */
+  initial?: boolean;
+}) {
+  const words = templateInWords(id, typeof options.fields === 'number' ? options.fields : 0);
+  return (
+    <>
+      {initial ? capital(words) : words}
+      {id === 'locked-squeezed' && options.phases === 'free' ? ' with free phases' : ''};{' '}
+      <Background options={options} />
+    </>
+  );
+}
+
 /** What the last fit came to, with its gate while that isn't met. */
 export function fitInWords(fit: Fit | null): string {
   if (!fit) return 'No fit yet.';
@@ -58,15 +77,11 @@ export function Abstract({
   fit: Fit | null;
 }) {
   const { cuts, bins, template } = notebook;
-  const fields = typeof template.options.fields === 'number' ? template.options.fields : 0;
   return (
     <>
       {capital(counted(bins.kept, 'bin'))} with{' '}
       <KappaRange lo={cuts.kappaMin ?? measurement.kappaMin} hi={cuts.kappaMax ?? measurement.kappaMax} />;{' '}
-      {templateInWords(template.id, fields)}
-      {template.id === 'locked-squeezed' && template.options.phases === 'free'
-        ? ' with free phases'
-        : ''}; <Background options={template.options} />. {fitInWords(fit)}
+      <TemplateInWords template={template} />. {fitInWords(fit)}
     </>
   );
 }

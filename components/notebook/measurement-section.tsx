@@ -14,12 +14,14 @@ import { capital, counted, plain } from '@/components/words/counts';
 import { KappaRange } from '@/components/words/kappa';
 import type { Measurement, Notebook } from '@/lib/schemas';
 import { ConflictMessage } from './conflict-message';
+import { measurementSentence } from './fold-sentences';
 import { keptRows } from './kept-points';
 import { likelihoodKinds, likelihoods, type LikelihoodKind } from './likelihood-words';
 import { SaveRow } from './save-row';
 import type { Draft } from './section-draft';
 import { SectionRecord } from './section-record';
 import { sectionState } from './section-states';
+import type { SectionFold } from './use-folds';
 import { useSectionSave, type NotebookState } from './use-notebook';
 
 export interface MeasurementSettings {
@@ -31,6 +33,7 @@ export interface MeasurementSectionProps {
   state: NotebookState;
   measurement: Measurement;
   draft: Draft<MeasurementSettings>;
+  fold: SectionFold;
 }
 
 /** A cut's two ends without those that are left open. */
@@ -108,7 +111,7 @@ function settingsInWords({ cuts, likelihood }: MeasurementSettings) {
 }
 
 /** Section 1: which data, cut how, with which likelihood. */
-export function MeasurementSection({ state, measurement, draft }: MeasurementSectionProps) {
+export function MeasurementSection({ state, measurement, draft, fold }: MeasurementSectionProps) {
   const { notebook } = state;
   const section = useSectionSave(state);
   const { cuts } = draft.value;
@@ -127,6 +130,7 @@ export function MeasurementSection({ state, measurement, draft }: MeasurementSec
       number={1}
       title="Measurement"
       state={sectionState(draft.changed, notebook)}
+      fold={{ ...fold, sentence: measurementSentence(measurement, draft.value) }}
       margin={<SectionRecord notebook={notebook} section="measurement" />}
     >
       <p>

@@ -26,8 +26,10 @@ import { MeasurementSection } from './measurement-section';
 import { TitleForm } from './notebook-title';
 import { PriorsSection, type Priors } from './priors-section';
 import { useDraft } from './section-draft';
-import { chainsState, contentsEntries, posteriorState, sectionState } from './section-states';
+import { chainsState, contentsEntries, posteriorState, sectionState, type SectionId } from './section-states';
 import { TemplateSection, tryPrediction, type NamedPoint } from './template-section';
+import { FoldScript } from './fold-script';
+import { foldKey, useFolds, type SectionFold } from './use-folds';
 import { useNotebook } from './use-notebook';
 
 export interface NotebookSheetProps {
@@ -37,6 +39,8 @@ export interface NotebookSheetProps {
   fit: Fit | null;
   formula: DrawnFormula;
   defaults: FitDefaults;
+  /** Who reads it; what is folded is remembered for each person. */
+  reader: string;
 }
 
 /** Everybody who has settled something, in the order of their first revision. */
@@ -103,6 +107,9 @@ export function NotebookSheet(props: NotebookSheetProps) {
     chains: chainsState(fit, notebook),
     posterior: posteriorState(fit, notebook),
   };
+  const storageKey = foldKey(notebook.id, props.reader);
+  const folds = useFolds(storageKey, states);
+  const fold = (id: SectionId): SectionFold => ({ state: folds.of(id), onToggle: () => folds.toggle(id) });
   const unsaved = [cut.changed ? 1 : 0, template.changed ? 2 : 0, priors.changed ? 3 : 0].filter(Boolean);
   const last = notebook.record.find(({ revision }) => revision === notebook.revision);
 
@@ -119,7 +126,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
   }
 
   return (
-    <Sheet contents={<Contents label="Sections" entries={contentsEntries(states)} />}>
+    <Sheet contents={<Contents label="Sections" entries={contentsEntries(states)} onGo={folds.open} />}>
       <PageHead
         title={notebook.title}
         kicker={[
@@ -155,7 +162,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
       >
         {titling ? <TitleForm state={state} onDone={() => setTitling(false)} /> : null}
       </PageHead>
-      <MeasurementSection state={state} measurement={measurement} draft={cut} />
+      <MeasurementSection state={state} measurement={measurement} draft={cut} fold={fold('measurement')} />
       <TemplateSection
         state={state}
         measurement={measurement}
@@ -163,6 +170,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
         draft={template}
         drawn={props.formula}
         best={best}
+        fold={fold('template')}
       />
       <PriorsSection
         state={state}
@@ -170,6 +178,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
         points={points}
         prediction={stored}
         draft={priors}
+        fold={fold('priors')}
       />
       <ChainsSection
         notebook={notebook}
@@ -179,6 +188,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
         quantities={quantities}
         defaults={props.defaults}
         unsaved={unsaved}
+        fold={fold('chains')}
         onFit={put}
         onShow={show}
         onStarted={started}
@@ -189,7 +199,9 @@ export function NotebookSheet(props: NotebookSheetProps) {
         fit={fit}
         draws={draws}
         quantities={quantities}
+        fold={fold('posterior')}
       />
+      <FoldScript storageKey={storageKey} />
       <SheetRow>
         <BeatEnd />
       </SheetRow>

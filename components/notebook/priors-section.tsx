@@ -15,6 +15,7 @@ import { priorPredictive, type PredictiveBand } from '@/lib/inference/prior-pred
 import type { Measurement } from '@/lib/schemas';
 import type { CompiledTemplate, Prior } from '@/lib/templates';
 import { ConflictMessage } from './conflict-message';
+import { priorsSentence } from './fold-sentences';
 import type { KeptPoints } from './kept-points';
 import type { Prediction } from './prediction';
 import { findPriorFaults } from './prior-faults';
@@ -24,6 +25,7 @@ import { SaveRow } from './save-row';
 import type { Draft } from './section-draft';
 import { SectionRecord } from './section-record';
 import { sectionState } from './section-states';
+import type { SectionFold } from './use-folds';
 import { useSectionSave, type NotebookState } from './use-notebook';
 
 const PointsFigure = dynamic(() => import('@/components/figures/points-figure').then((m) => m.PointsFigure));
@@ -37,6 +39,7 @@ export interface PriorsSectionProps {
   /** The stored template on the stored cut; null where it can't be evaluated. */
   prediction: Prediction | null;
   draft: Draft<Priors>;
+  fold: SectionFold;
 }
 
 /** Draws from the priors behind the band. */
@@ -148,7 +151,8 @@ function usePredictive(prediction: Prediction | null, priors: Priors, sound: boo
 }
 
 /** Section 3: what is believed before the data, and what that claims about them. */
-export function PriorsSection({ state, measurement, points, prediction, draft }: PriorsSectionProps) {
+export function PriorsSection(props: PriorsSectionProps) {
+  const { state, measurement, points, prediction, draft, fold } = props;
   const { notebook } = state;
   const section = useSectionSave(state);
   const template = prediction?.fine ?? null;
@@ -171,6 +175,7 @@ export function PriorsSection({ state, measurement, points, prediction, draft }:
       number={3}
       title="Priors"
       state={sectionState(draft.changed, notebook)}
+      fold={{ ...fold, sentence: priorsSentence(notebook.template, draft.value) }}
       margin={<SectionRecord notebook={notebook} section="priors" />}
     >
       {template && prediction ? (

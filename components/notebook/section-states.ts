@@ -46,13 +46,17 @@ export function posteriorState(
     : { kind: 'open', word: `of fit ${fit.number}, so far` };
 }
 
-export function contentsEntries(states: {
-  measurement: State;
-  template: State;
-  priors: State;
-  chains: State;
-  posterior: State;
-}): ContentsEntry[] {
+export const sectionIds = ['measurement', 'template', 'priors', 'chains', 'posterior'] as const;
+export type SectionId = (typeof sectionIds)[number];
+export type SectionStates = Record<SectionId, State>;
+
+/** Where the work stands: the chains while they run, else the first section that isn't settled, else the posterior. */
+export function currentSection(states: SectionStates): SectionId {
+  if (states.chains.kind === 'run' || states.chains.kind === 'wait') return 'chains';
+  return sectionIds.find((id) => states[id].kind !== 'ok') ?? 'posterior';
+}
+
+export function contentsEntries(states: SectionStates): ContentsEntry[] {
   return [
     { href: '#measurement', number: 1, title: 'Measurement', state: states.measurement },
     { href: '#template', number: 2, title: 'Template', state: states.template },

@@ -15,6 +15,7 @@ import type { Measurement } from '@/lib/schemas';
 import { findTemplate, TemplateError, type Prior } from '@/lib/templates';
 import { withBestAmplitudes } from './best-amplitudes';
 import { ConflictMessage } from './conflict-message';
+import { templateSentence } from './fold-sentences';
 import type { KeptPoints } from './kept-points';
 import { LiveFormula, type DrawnFormula } from './live-formula';
 import { compilePrediction, curvesOf, judge, type Prediction, type TemplateSettings } from './prediction';
@@ -27,6 +28,7 @@ import { TemplateCautions } from './template-cautions';
 import { TemplateForm } from './template-form';
 import { TemplateSliders } from './template-sliders';
 import { optionsInWords } from './template-words';
+import type { SectionFold } from './use-folds';
 import { useSectionSave, type NotebookState } from './use-notebook';
 
 const PointsFigure = dynamic(() => import('@/components/figures/points-figure').then((m) => m.PointsFigure));
@@ -45,6 +47,7 @@ export interface TemplateSectionProps {
   draft: Draft<TemplateSettings>;
   drawn: DrawnFormula;
   best: NamedPoint | null;
+  fold: SectionFold;
 }
 
 /** The template on the points, or the fault that keeps it from being evaluated. */
@@ -156,7 +159,8 @@ function Explore({
 }
 
 /** Section 2: which template, its formula, and what it predicts over the points. */
-export function TemplateSection({ state, measurement, points, draft, drawn, best }: TemplateSectionProps) {
+export function TemplateSection(props: TemplateSectionProps) {
+  const { state, measurement, points, draft, drawn, best, fold } = props;
   const { notebook } = state;
   const section = useSectionSave(state);
   const settings = draft.value;
@@ -175,6 +179,7 @@ export function TemplateSection({ state, measurement, points, draft, drawn, best
       number={2}
       title="Template"
       state={sectionState(draft.changed, notebook)}
+      fold={{ ...fold, sentence: templateSentence(settings) }}
       margin={<SectionRecord notebook={notebook} section="template" />}
     >
       <p>{template.summary}</p>

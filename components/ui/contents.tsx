@@ -18,6 +18,8 @@ export interface ContentsProps {
   entries: ContentsEntry[];
   /** Address of the current entry; left out, the entry in view is followed. */
   current?: string;
+  /** Called before the browser goes to an entry, so that a folded section is open when it gets there. */
+  onGo?: (href: string) => void;
 }
 
 /** The last entry whose section has passed the upper third of the window. */
@@ -53,7 +55,7 @@ function Said({ entry }: { entry: ContentsEntry }) {
   return null;
 }
 
-export function Contents({ label, entries, current }: ContentsProps) {
+export function Contents({ label, entries, current, onGo }: ContentsProps) {
   const here = useEntryInView(entries, current);
   const shown = entries.find((e) => e.href === here) ?? entries[0];
   const folded = useRef<HTMLDetailsElement>(null);
@@ -69,6 +71,7 @@ export function Contents({ label, entries, current }: ContentsProps) {
             <li key={entry.href} className="border-t border-hairline last:border-b">
               <a
                 href={entry.href}
+                onClick={() => onGo?.(entry.href)}
                 aria-current={entry.href === here ? 'location' : undefined}
                 className="group grid grid-cols-[20px_1fr] gap-x-[8px] pt-[6px] pb-1 text-ink no-underline aria-[current]:shadow-[inset_2px_0_0_var(--action)]"
               >
@@ -113,7 +116,10 @@ export function Contents({ label, entries, current }: ContentsProps) {
                 <li key={entry.href}>
                   <a
                     href={entry.href}
-                    onClick={() => folded.current?.removeAttribute('open')}
+                    onClick={() => {
+                      folded.current?.removeAttribute('open');
+                      onGo?.(entry.href);
+                    }}
                     className="flex min-h-[44px] items-center gap-[10px] text-[16px]/[21px] text-ink no-underline"
                   >
                     <span className="font-numbers text-[12px] text-ink-2">{entry.number}</span>

@@ -1,5 +1,6 @@
 import type { ReactNode } from 'react';
 import Link from 'next/link';
+import { FoldBody, FoldButton, type Fold } from './fold';
 import { SectionRow, SheetRow } from './sheet';
 import { StateWord, type State } from './state-word';
 
@@ -41,20 +42,36 @@ export interface SectionProps {
   margin?: ReactNode;
   /** Stands first under the page's head: no rule above. */
   first?: boolean;
+  /** Given: the section folds from its title. */
+  fold?: Fold;
   children: ReactNode;
 }
 
 /** An open section: a rule in ink, the number as part of the heading, the state at its right. */
-export function Section({ id, number, title, state, margin, first, children }: SectionProps) {
+export function Section({ id, number, title, state, margin, first, fold, children }: SectionProps) {
   const headingId = `${id}-title`;
+  const bodyId = `${id}-body`;
+  const heading = <Numbered number={number} title={title} />;
   return (
-    <SectionRow id={id} labelledBy={headingId} margin={margin} marginLabel={`Record and remarks, ${title}`}>
+    <SectionRow
+      id={id}
+      labelledBy={headingId}
+      fold={fold?.state}
+      margin={margin}
+      marginLabel={`Record and remarks, ${title}`}
+    >
       <div
-        className={`pb-8 ${margin ? 'max-desk:pb-2' : ''} ${first ? '' : 'border-t border-ink pt-[13px]'} print:pb-2`}
+        className={`pb-8 ${margin ? 'max-desk:pb-2' : ''} ${first ? '' : 'border-t border-ink pt-[13px]'} folded:border-hairline folded:pb-2 print:pb-2`}
       >
-        <div className="mb-2 flex items-baseline gap-2">
-          <h2 id={headingId} className="text-heading">
-            <Numbered number={number} title={title} />
+        <div className="mb-2 flex items-baseline gap-2 folded:mb-0">
+          <h2 id={headingId} className="text-heading folded:text-entry">
+            {fold ? (
+              <FoldButton controls={bodyId} fold={fold}>
+                {heading}
+              </FoldButton>
+            ) : (
+              heading
+            )}
           </h2>
           {state ? (
             <span className="ml-auto">
@@ -62,7 +79,16 @@ export function Section({ id, number, title, state, margin, first, children }: S
             </span>
           ) : null}
         </div>
-        {children}
+        {fold ? (
+          <>
+            <p className="mb-0 hidden text-small text-ink-2 folded:block">{fold.sentence}</p>
+            <FoldBody id={bodyId} state={fold.state}>
+              {children}
+            </FoldBody>
+          </>
+        ) : (
+          children
+        )}
       </div>
     </SectionRow>
   );

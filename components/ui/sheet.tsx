@@ -1,4 +1,5 @@
 import type { ReactNode } from 'react';
+import type { FoldState } from './fold';
 
 /** The grid of a page: contents, text, margin. From 760 px down it is one column. */
 export function Sheet({ contents, children }: { contents?: ReactNode; children: ReactNode }) {
@@ -28,7 +29,7 @@ export function Margin({
   return (
     <aside
       aria-label={label}
-      className={`max-desk:grid max-desk:grid-cols-2 max-desk:gap-x-4 max-desk:pt-0 max-desk:pb-8 max-tablet:grid-cols-1 print:block print:py-1 ${lower ? 'pt-[24px]' : ''}`}
+      className={`folded:hidden max-desk:grid max-desk:grid-cols-2 max-desk:gap-x-4 max-desk:pt-0 max-desk:pb-8 max-tablet:grid-cols-1 print:block print:py-1 ${lower ? 'pt-[24px]' : ''}`}
     >
       {children}
     </aside>
@@ -54,12 +55,20 @@ export function SheetRow({ id, margin, className = '', children }: SheetRowProps
 export interface SectionRowProps extends SheetRowProps {
   labelledBy: string;
   marginLabel: string;
+  /** Given: the section folds. */
+  fold?: FoldState;
 }
 
-/** The row of an open section; its margin starts on the baseline of the heading. */
-export function SectionRow({ id, labelledBy, margin, marginLabel, children }: SectionRowProps) {
+/** The row of a section; its margin starts on the baseline of the heading. A script may set `data-fold` before hydration. */
+export function SectionRow({ id, labelledBy, margin, marginLabel, fold, children }: SectionRowProps) {
   return (
-    <section id={id} aria-labelledby={labelledBy} className={`${grid} open-row`}>
+    <section
+      id={id}
+      aria-labelledby={labelledBy}
+      data-fold={fold}
+      suppressHydrationWarning={fold !== undefined}
+      className={`${grid} open-row`}
+    >
       <div className="min-w-0">{children}</div>
       {margin ? (
         <Margin lower label={marginLabel}>

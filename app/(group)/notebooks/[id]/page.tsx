@@ -46,6 +46,7 @@ export default async function NotebookPage({ params, searchParams }: Props) {
         fit={shown}
         formula={{ tex: formula.wide, node: <FormulaBlock formula={formula} /> }}
         defaults={{ ...defaultFit }}
+        reader={actor.userId}
       />
     </PageChrome>
   );
