@@ -62,6 +62,7 @@ const screens: { name: string; place: string; guest?: boolean }[] = [
   { name: 'measurement', place: measurement ?? '/' },
   { name: 'notebook-new', place: `${group}/notebooks/new` },
   { name: 'notebook', place: notebook ?? '/' },
+  { name: 'account', place: '/account' },
   { name: 'not-found', place: '/nothing-here' },
 ];
 

@@ -36,7 +36,7 @@ beforeAll(async () => {
     .locator('a[href^="/notebooks/"], a[href^="/measurements/"]')
     .evaluateAll((anchors) => anchors.map((anchor) => anchor.getAttribute('href') ?? ''));
   const one = (start: string) => own.find((place) => place.startsWith(start)) ?? '/';
-  screens = [group, one('/notebooks/'), one('/measurements/')];
+  screens = [group, one('/notebooks/'), one('/measurements/'), '/account'];
   const session = await first.context.storageState();
   await first.context.close();
   for (const look of looks) {
@@ -66,7 +66,7 @@ describe.each(looks)('pages, $name', ({ name }) => {
   });
 
   it('have no serious accessibility finding for a member', async () => {
-    expect(screens).toHaveLength(3);
+    expect(screens).toHaveLength(4);
     const all: string[] = [];
     for (const place of screens) all.push(...(await findings(people[name]!, place)));
     expect(all).toEqual([]);
