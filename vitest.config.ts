@@ -15,7 +15,7 @@ export default defineConfig({
         extends: true,
         test: {
           name: 'pure',
-          include: ['tests/{lib,published,components,scripts,worker}/**/*.test.{ts,tsx}'],
+          include: ['tests/{lib,published,proofs,components,scripts,worker}/**/*.test.{ts,tsx}'],
           testTimeout: 120_000,
         },
       },
