@@ -8,7 +8,7 @@ import { Fit, FitBlock, FitReplica, initFitModels } from './fit';
 export { Account, ApiToken, Session, User, VerificationToken } from './account';
 export { AuditEvent, Group, Invitation, Membership } from './group';
 export { Measurement, MeasurementVersion, type StoredFile } from './measurement';
-export { Notebook, NotebookRevision, type NotebookSettings } from './notebook';
+export { Notebook, NotebookRevision, type NotebookOrigin, type NotebookSettings } from './notebook';
 export { Fit, FitBlock, FitReplica } from './fit';
 
 /** All associations in one place. */

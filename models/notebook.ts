@@ -15,6 +15,18 @@ export class Notebook extends Model<InferAttributes<Notebook>, InferCreationAttr
   declare createdAt: Date;
   declare updatedBy: string;
   declare updatedAt: Date;
+  declare archivedAt: CreationOptional<Date | null>;
+  declare archivedBy: CreationOptional<string | null>;
+  declare origin: CreationOptional<NotebookOrigin | null>;
+}
+
+/** What a notebook was copied from, as it was called then. */
+export interface NotebookOrigin {
+  number: number;
+  title: string;
+  revision: number;
+  /** Number of the fit whose snapshot it took; null for the revision itself. */
+  fit: number | null;
 }
 
 /** The settings of sections 1, 2 and 4, complete, as of one revision. */
@@ -37,6 +49,8 @@ export class NotebookRevision extends Model<
   declare settings: NotebookSettings;
   /** Sections that this revision changed. */
   declare sections: string[];
+  /** The revision whose settings it brought back. */
+  declare restoredFrom: CreationOptional<number | null>;
   declare createdBy: string;
   declare createdAt: Date;
 }
@@ -55,6 +69,9 @@ export function initNotebookModels(sequelize: Sequelize): void {
       createdAt: instant(),
       updatedBy: foreignKey(),
       updatedAt: instant(),
+      archivedAt: instant(true),
+      archivedBy: foreignKey(true),
+      origin: json(true),
     },
     { ...plain, modelName: 'notebook', tableName: 'notebooks' },
   );
@@ -66,6 +83,7 @@ export function initNotebookModels(sequelize: Sequelize): void {
       title: text(160),
       settings: json(),
       sections: json(),
+      restoredFrom: count(true),
       createdBy: foreignKey(),
       createdAt: instant(),
     },

@@ -1,6 +1,7 @@
 import { z } from 'zod';
 import {
   changeRoleSchema,
+  copyNotebookSchema,
   createGroupSchema,
   createNotebookSchema,
   createTokenSchema,
@@ -12,6 +13,7 @@ import {
   fitSchema,
   groupSchema,
   healthSchema,
+  idSchema,
   invitationSchema,
   inviteSchema,
   manifestSchema,
@@ -24,6 +26,8 @@ import {
   notebookSchema,
   patchNotebookSchema,
   pointsLimit,
+  restoreRevisionSchema,
+  revisionSchema,
   sampleFormats,
   startFitSchema,
   templateSchema,
@@ -167,6 +171,45 @@ export const routes = {
     summary: 'Edit a notebook; names the revision that it edits.',
     permission: 'notebook.edit',
     body: patchNotebookSchema,
+    answer: notebookSchema,
+  },
+  'DELETE /notebooks/:id': {
+    summary: 'Erase a notebook in which nothing was tried; one with fits is archived instead.',
+    permission: 'notebook.delete',
+    answer: createdSchema,
+  },
+  'GET /notebooks/:id/events': {
+    summary: 'A notebook, who else has it open, and one of its fits, as server-sent events.',
+    permission: 'notebook.read',
+    query: z.object({ fit: idSchema.optional() }),
+    produces: 'text/event-stream',
+  },
+  'GET /notebooks/:id/revisions/:revision': {
+    summary: 'One revision of a notebook with all that it settled.',
+    permission: 'notebook.read',
+    answer: revisionSchema,
+  },
+  'POST /notebooks/:id/revisions/:revision/restore': {
+    summary: 'Make an earlier revision stand again, as a new one; names the revision that stands.',
+    permission: 'notebook.edit',
+    body: restoreRevisionSchema,
+    answer: notebookSchema,
+  },
+  'POST /notebooks/:id/copy': {
+    summary: 'Open a notebook with the settings of this one, or of one of its fits.',
+    permission: 'notebook.create',
+    body: copyNotebookSchema,
+    answer: notebookCreatedSchema,
+    status: 201,
+  },
+  'POST /notebooks/:id/archive': {
+    summary: 'Put a notebook away; it stays readable.',
+    permission: 'notebook.archive',
+    answer: notebookSchema,
+  },
+  'POST /notebooks/:id/unarchive': {
+    summary: 'Take an archived notebook back into use.',
+    permission: 'notebook.archive',
     answer: notebookSchema,
   },
   'POST /notebooks/:id/fits': {

@@ -8,6 +8,7 @@ import {
   type Notebook,
   type NotebookCreated,
   type NotebookSummary,
+  type Revision,
 } from '@/lib/schemas';
 
 /** E-mail addresses by user's id. */
@@ -72,6 +73,7 @@ export function presentNotebookSummary(
     lastFit: lastFit && presentFitSummary(lastFit, people),
     updatedBy: nameOf(people, notebook.updatedBy),
     updatedAt: notebook.updatedAt.toISOString(),
+    archivedAt: notebook.archivedAt?.toISOString() ?? null,
   };
 }
 
@@ -82,7 +84,10 @@ export interface NotebookParts {
   settings: NotebookSettings;
   bins: { kept: number; all: number };
   /** In ascending order of revision. */
-  revisions: readonly Pick<NotebookRevision, 'revision' | 'sections' | 'createdBy' | 'createdAt'>[];
+  revisions: readonly Pick<
+    NotebookRevision,
+    'revision' | 'sections' | 'restoredFrom' | 'createdBy' | 'createdAt'
+  >[];
   /** Newest first. */
   fits: readonly FitLine[];
   people: People;
@@ -115,10 +120,32 @@ export function presentNotebook(parts: NotebookParts): Notebook {
       by: nameOf(people, revision.createdBy),
       at: revision.createdAt.toISOString(),
       sections: notebookSections.filter((section) => revision.sections.includes(section)),
+      restoredFrom: revision.restoredFrom,
     })),
     fits: parts.fits.map((fit) => presentFitSummary(fit, people)),
     createdBy: nameOf(people, notebook.createdBy),
     createdAt: notebook.createdAt.toISOString(),
+    origin: notebook.origin,
+    archived: notebook.archivedAt && {
+      by: nameOf(people, notebook.archivedBy ?? ''),
+      at: notebook.archivedAt.toISOString(),
+    },
     may: [...parts.may],
+  };
+}
+
+export function presentRevision(revision: NotebookRevision, people: People): Revision {
+  const { settings } = revision;
+  return {
+    revision: revision.revision,
+    title: revision.title,
+    by: nameOf(people, revision.createdBy),
+    at: revision.createdAt.toISOString(),
+    sections: notebookSections.filter((section) => revision.sections.includes(section)),
+    restoredFrom: revision.restoredFrom,
+    cuts: settings.cuts,
+    likelihood: likelihoodSchema.parse(settings.likelihood),
+    template: settings.template,
+    priors: priorsSchema.parse(settings.priors),
   };
 }

@@ -58,6 +58,25 @@ export const fitStatusSchema = z.enum(fitStatuses);
 export type FitStatus = z.infer<typeof fitStatusSchema>;
 export const endedStatuses: readonly FitStatus[] = ['converged', 'stopped', 'budget-spent', 'failed'];
 
+/** Settings of the revision that stands, or of a fit's snapshot; on the same measurement or the newest version of another. */
+export const copyNotebookSchema = z.strictObject({
+  title: titleSchema.optional(),
+  measurement: idSchema.optional(),
+  fit: idSchema.optional(),
+});
+export type CopyNotebook = z.infer<typeof copyNotebookSchema>;
+
+/** Names the revision that stands, as a PATCH does. */
+export const restoreRevisionSchema = z.strictObject({ revision: z.number().int().min(1) });
+export type RestoreRevision = z.infer<typeof restoreRevisionSchema>;
+
+export const originSchema = z.object({
+  number: z.number().int(),
+  title: z.string(),
+  revision: z.number().int(),
+  fit: z.number().int().nullable(),
+});
+
 /** A line about a fit in a notebook. */
 export const fitSummarySchema = z.object({
   id: idSchema,
@@ -84,8 +103,34 @@ export const notebookSummarySchema = z.object({
   lastFit: fitSummarySchema.nullable(),
   updatedBy: z.string(),
   updatedAt: instantSchema,
+  archivedAt: instantSchema.nullable(),
 });
 export type NotebookSummary = z.infer<typeof notebookSummarySchema>;
+
+/** What a revision settles: everything that a fit freezes of the notebook. */
+export const settingsShape = {
+  cuts: cutsSchema,
+  likelihood: likelihoodSchema,
+  template: z.object({
+    id: z.string(),
+    version: z.number().int(),
+    options: z.record(z.string(), z.unknown()),
+  }),
+  /** One for every parameter of the template. */
+  priors: z.record(z.string(), priorSchema),
+};
+
+/** An earlier or the standing revision, to be read. */
+export const revisionSchema = z.object({
+  revision: z.number().int(),
+  title: z.string(),
+  by: z.string(),
+  at: instantSchema,
+  sections: z.array(z.enum(notebookSections)),
+  restoredFrom: z.number().int().nullable(),
+  ...settingsShape,
+});
+export type Revision = z.infer<typeof revisionSchema>;
 
 export const notebookSchema = z.object({
   id: idSchema,
@@ -97,17 +142,9 @@ export const notebookSchema = z.object({
   blind: z.boolean(),
   simulated: z.boolean(),
   measurement: z.object({ id: idSchema, name: z.string(), version: z.number().int() }),
-  cuts: cutsSchema,
+  ...settingsShape,
   /** Bins kept by the cuts, of all. */
   bins: z.object({ kept: z.number().int(), all: z.number().int() }),
-  likelihood: likelihoodSchema,
-  template: z.object({
-    id: z.string(),
-    version: z.number().int(),
-    options: z.record(z.string(), z.unknown()),
-  }),
-  /** One for every parameter of the template. */
-  priors: z.record(z.string(), priorSchema),
   /** Who settled which section when: for the record in the margin. */
   record: z.array(
     z.object({
@@ -115,12 +152,21 @@ export const notebookSchema = z.object({
       by: z.string(),
       at: instantSchema,
       sections: z.array(z.enum(notebookSections)),
+      restoredFrom: z.number().int().nullable(),
     }),
   ),
   fits: z.array(fitSummarySchema),
   createdBy: z.string(),
   createdAt: instantSchema,
+  /** What it was copied from. */
+  origin: originSchema.nullable(),
+  /** While it is put away it is read and nothing else. */
+  archived: z.object({ by: z.string(), at: instantSchema }).nullable(),
   /** Actions that the asking person may take: `notebook.edit`, `fit.start`, `fit.stop` … */
   may: z.array(z.string()),
 });
 export type Notebook = z.infer<typeof notebookSchema>;
+
+/** Who has the notebook open, besides the one who asks; each person once. */
+export const presenceSchema = z.object({ others: z.array(z.string()) });
+export type Presence = z.infer<typeof presenceSchema>;

@@ -21,6 +21,8 @@ import { canonicalSha256 } from './canonical-json';
 import { blockDraws, warmupDraws } from './fit-schedule';
 import { readFit } from './fit-records';
 import { inferenceSpec } from './inference-spec';
+import { refuseArchived } from './notebook-archive';
+import { tellNotebook } from './notebook-presence';
 import { checkFittable } from './notebook-settings';
 import { program } from './program';
 import { emptyReport, storedReportSchema } from '@/lib/schemas/stored-report';
@@ -80,6 +82,7 @@ export async function startFit(access: Access, body: StartFit): Promise<{ id: st
   access.require('fit.start');
   const fit = await database().transaction(async (transaction) => {
     const { notebook, revision, version, measurement } = await lockNotebook(access, transaction);
+    refuseArchived(notebook);
     if (measurement.blind) {
       throw new AppError('plan_missing', 'The measurement is blind: freeze a plan before the first fit.');
     }
@@ -117,6 +120,7 @@ export async function startFit(access: Access, body: StartFit): Promise<{ id: st
     return made;
   });
   await wake(fit.id, 0);
+  void tellNotebook(fit.notebookId);
   return { id: fit.id };
 }
 
@@ -144,6 +148,9 @@ async function change(
   const woken = await database().transaction(async (transaction) => {
     const fit = await Fit.findByPk(access.id, { lock: true, transaction });
     if (!fit) throw notFound('fit');
+    if (action !== 'fit.stop') {
+      refuseArchived(await Notebook.findByPk(fit.notebookId, { rejectOnEmpty: true, transaction }));
+    }
     const decided = decide(fit);
     if (decided === null) return null;
     await fit.update(decided.values, { transaction });

@@ -27,6 +27,15 @@ const fitLine = [
   'endedAt',
 ] as const;
 
+/** What may still be done with an archived notebook, if the role allows it. */
+const whileArchived: ReadonlySet<string> = new Set([
+  'notebook.read',
+  'notebook.create',
+  'notebook.archive',
+  'notebook.delete',
+  'fit.read',
+]);
+
 /** The notebook of `access` as it stands, with its record and its fits. */
 export async function readNotebook(access: Access): Promise<NotebookAnswer> {
   access.require('notebook.read');
@@ -59,10 +68,13 @@ export async function readNotebook(access: Access): Promise<NotebookAnswer> {
     fits,
     people: await emailsOf([
       notebook.createdBy,
+      ...(notebook.archivedBy === null ? [] : [notebook.archivedBy]),
       ...revisions.map(({ createdBy }) => createdBy),
       ...fits.map(({ startedBy }) => startedBy),
     ]),
-    may: [...actionsFor(access.role, 'notebook'), ...actionsFor(access.role, 'fit')],
+    may: [...actionsFor(access.role, 'notebook'), ...actionsFor(access.role, 'fit')].filter(
+      (action) => notebook.archivedAt === null || whileArchived.has(action),
+    ),
   });
 }
 

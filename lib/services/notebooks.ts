@@ -1,5 +1,13 @@
 import type { Transaction } from 'sequelize';
-import { Group, Measurement, MeasurementVersion, Notebook, NotebookRevision } from '@/models';
+import {
+  Group,
+  Measurement,
+  MeasurementVersion,
+  Notebook,
+  NotebookRevision,
+  type NotebookOrigin,
+  type NotebookSettings,
+} from '@/models';
 import { database } from '@/lib/db';
 import { AppError, notFound } from '@/lib/errors';
 import { presentNotebookCreated } from '@/lib/presenters/notebooks';
@@ -12,13 +20,15 @@ import {
 } from '@/lib/schemas';
 import type { Access } from './access';
 import { recordEvent } from './audit';
+import { refuseArchived } from './notebook-archive';
+import { tellNotebook } from './notebook-presence';
 import { readNotebook } from './notebook-records';
-import { changedSections, settleSettings } from './notebook-settings';
+import { changedSections, settleSettings, type SettingsDraft } from './notebook-settings';
 
 export { notebookSummaries, readNotebook } from './notebook-records';
 
 /** A measurement of the group in its newest version; one of another group is answered as if there were none. */
-async function findMeasured(groupId: string, id: string) {
+export async function findMeasured(groupId: string, id: string) {
   const measurement = await Measurement.findOne({ where: { id, groupId } });
   const version =
     measurement &&
@@ -28,23 +38,21 @@ async function findMeasured(groupId: string, id: string) {
   throw new AppError(code, message, [{ path: 'measurement', message }]);
 }
 
-/**
- * Opens a notebook in the group of `access` on the newest version of a measurement. What is left out gets its
- * default; settings that can't be fitted are refused.
- */
-export async function createNotebook(access: Access, body: CreateNotebook): Promise<NotebookCreated> {
-  access.require('notebook.create');
-  const { groupId, actor } = access;
-  const { measurement, version } = await findMeasured(groupId, body.measurement);
-  const draft = {
-    cuts: body.cuts ?? {},
-    likelihood: body.likelihood,
-    template: body.template,
-    given: body.priors ?? {},
-    kept: {},
-  };
-  const settings = settleSettings(version, draft, measurement);
-  const notebook = await database().transaction(async (transaction) => {
+/** A notebook that is about to be stored, its settings settled on the version. */
+export interface NewNotebook {
+  title: string;
+  settings: NotebookSettings;
+  measurement: Measurement;
+  version: MeasurementVersion;
+  origin: NotebookOrigin | null;
+}
+
+/** Stores a notebook with its first revision; it takes the group's next number. */
+export async function insertNotebook(
+  { groupId, actor }: Access,
+  { title, settings, measurement, version, origin }: NewNotebook,
+): Promise<Notebook> {
+  return database().transaction(async (transaction) => {
     // Numbers count up within the group: its row is locked, so that two notebooks at once get two numbers.
     await Group.findByPk(groupId, { attributes: ['id'], lock: true, transaction });
     const last = await Notebook.max<number, Notebook>('number', { where: { groupId }, transaction });
@@ -53,13 +61,14 @@ export async function createNotebook(access: Access, body: CreateNotebook): Prom
       {
         groupId,
         number: (last ?? 0) + 1,
-        title: body.title,
+        title: title,
         revision: 1,
         measurementVersionId: version.id,
         createdBy: actor.userId,
         createdAt: now,
         updatedBy: actor.userId,
         updatedAt: now,
+        origin,
       },
       { transaction },
     );
@@ -67,7 +76,7 @@ export async function createNotebook(access: Access, body: CreateNotebook): Prom
       {
         notebookId: made.id,
         revision: 1,
-        title: body.title,
+        title: title,
         settings,
         sections: [...notebookSections],
         createdBy: actor.userId,
@@ -82,11 +91,40 @@ export async function createNotebook(access: Access, body: CreateNotebook): Prom
         action: 'notebook.create',
         subjectType: 'notebook',
         subjectId: made.id,
-        details: { number: made.number, measurement: measurement.id, version: version.version },
+        details: {
+          number: made.number,
+          measurement: measurement.id,
+          version: version.version,
+          ...(origin ? { origin } : {}),
+        },
       },
       transaction,
     );
     return made;
+  });
+}
+
+/**
+ * Opens a notebook in the group of `access` on the newest version of a measurement. What is left out gets its
+ * default; settings that can't be fitted are refused.
+ */
+export async function createNotebook(access: Access, body: CreateNotebook): Promise<NotebookCreated> {
+  access.require('notebook.create');
+  const { measurement, version } = await findMeasured(access.groupId, body.measurement);
+  const draft = {
+    cuts: body.cuts ?? {},
+    likelihood: body.likelihood,
+    template: body.template,
+    given: body.priors ?? {},
+    kept: {},
+  };
+  const settings = settleSettings(version, draft, measurement);
+  const notebook = await insertNotebook(access, {
+    title: body.title,
+    settings,
+    measurement,
+    version,
+    origin: null,
   });
   return presentNotebookCreated(notebook, measurement);
 }
@@ -119,31 +157,34 @@ async function lockNotebook(id: string, transaction: Transaction) {
   return { notebook, standing, version, measurement };
 }
 
+/** What a new revision is to say. */
+export interface RevisionDraft {
+  title: string;
+  draft: SettingsDraft;
+}
+
 /**
- * Edits the notebook of `access`: what the body leaves out stays. With another template, priors of parameters that
- * stay are kept, new ones get their default, others go. A change makes a new revision with the sections that it
- * touched; without one the notebook stays as it is. `stale_revision` unless the body names the revision that stands.
+ * Makes a new revision of the notebook of `access`, drafted from the one that stands, with the sections in which it differs;
+ * where it differs in nothing the notebook stays as it is. `stale_revision` unless `named` is the revision that stands.
  */
-export async function patchNotebook(access: Access, body: PatchNotebook): Promise<NotebookAnswer> {
+export async function addRevision(
+  access: Access,
+  named: number,
+  restoredFrom: number | null,
+  draftFrom: (standing: NotebookRevision, notebook: Notebook) => RevisionDraft,
+): Promise<NotebookAnswer> {
   access.require('notebook.edit');
   const { groupId, actor } = access;
   await database().transaction(async (transaction) => {
     const { notebook, standing, version, measurement } = await lockNotebook(access.id, transaction);
-    if (body.revision !== notebook.revision) refuseStale(body.revision, standing);
-    const before = standing.settings;
-    const title = body.title ?? notebook.title;
-    const settings = settleSettings(
-      version,
-      {
-        cuts: body.cuts ?? before.cuts,
-        likelihood: body.likelihood ?? before.likelihood,
-        template: body.template ?? before.template,
-        given: body.priors ?? {},
-        kept: before.priors,
-      },
-      measurement,
+    refuseArchived(notebook);
+    if (named !== notebook.revision) refuseStale(named, standing);
+    const { title, draft } = draftFrom(standing, notebook);
+    const settings = settleSettings(version, draft, measurement);
+    const sections = changedSections(
+      { title: notebook.title, settings: standing.settings },
+      { title, settings },
     );
-    const sections = changedSections({ title: notebook.title, settings: before }, { title, settings });
     if (sections.length === 0) return;
     const now = new Date();
     const revision = notebook.revision + 1;
@@ -154,6 +195,7 @@ export async function patchNotebook(access: Access, body: PatchNotebook): Promis
         title,
         settings,
         sections,
+        restoredFrom,
         createdBy: actor.userId,
         createdAt: now,
       },
@@ -167,10 +209,28 @@ export async function patchNotebook(access: Access, body: PatchNotebook): Promis
         action: 'notebook.edit',
         subjectType: 'notebook',
         subjectId: notebook.id,
-        details: { revision, sections },
+        details: { revision, sections, ...(restoredFrom === null ? {} : { restoredFrom }) },
       },
       transaction,
     );
   });
+  void tellNotebook(access.id);
   return readNotebook(access);
+}
+
+/**
+ * Edits the notebook of `access`: what the body leaves out stays. With another template, priors of parameters that
+ * stay are kept, new ones get their default, others go. `stale_revision` unless the body names the revision that stands.
+ */
+export function patchNotebook(access: Access, body: PatchNotebook): Promise<NotebookAnswer> {
+  return addRevision(access, body.revision, null, ({ settings: before }, { title }) => ({
+    title: body.title ?? title,
+    draft: {
+      cuts: body.cuts ?? before.cuts,
+      likelihood: body.likelihood ?? before.likelihood,
+      template: body.template ?? before.template,
+      given: body.priors ?? {},
+      kept: before.priors,
+    },
+  }));
 }

@@ -9,7 +9,16 @@ import { rowOf, routes, type RouteKey } from '@/lib/http/routes';
 import { actionsFor, may } from '@/lib/policies';
 import { groupSchema, roles, type Role } from '@/lib/schemas';
 import { Fit, Invitation, Measurement, MeasurementVersion, Notebook, NotebookRevision } from '@/models';
-import { call, closeConnections, createGroup, createMember, createSession, errorOf, unique } from './harness';
+import {
+  call,
+  closeConnections,
+  createGroup,
+  createMember,
+  createMembership,
+  createSession,
+  errorOf,
+  unique,
+} from './harness';
 
 const folder = path.join(process.cwd(), 'app/api/v1');
 const verbs = ['GET', 'POST', 'PUT', 'PATCH', 'DELETE'] as const;
@@ -32,7 +41,7 @@ const exported = await exportedVerbs();
 const keys = Object.keys(routes) as RouteKey[];
 
 /** One of each record, with nothing in it but what it needs to exist. */
-async function createRecords(groupId: string, userId: string) {
+async function createRecords(groupId: string, userId: string, { number = 1, fit: fitted = true } = {}) {
   const now = new Date();
   const sha256 = '0'.repeat(64);
   const measurement = await Measurement.create({
@@ -64,7 +73,7 @@ async function createRecords(groupId: string, userId: string) {
   });
   const notebook = await Notebook.create({
     groupId,
-    number: 1,
+    number,
     title: 'n',
     revision: 1,
     measurementVersionId: version.id,
@@ -87,6 +96,7 @@ async function createRecords(groupId: string, userId: string) {
     createdBy: userId,
     createdAt: now,
   });
+  if (!fitted) return { group: groupId, measurement: measurement.id, notebook: notebook.id, fit: '' };
   const fit = await Fit.create({
     groupId,
     notebookId: notebook.id,
@@ -107,13 +117,18 @@ async function createRecords(groupId: string, userId: string) {
 
 let records: Awaited<ReturnType<typeof createRecords>>;
 const tokens = new Map<string, string>();
+/** Where the same people hold the same roles, for records that a call changes. */
+let spareGroup: string;
+let spares = 0;
 let outsider: Awaited<ReturnType<typeof createMember>>;
 
 beforeAll(async () => {
   database();
   const groupId = await createGroup();
+  spareGroup = await createGroup();
   for (const role of roles) {
     const member = await createMember(groupId, role);
+    await createMembership(member.user, spareGroup, role);
     tokens.set(role, member.token);
     if (role === 'lead') records = await createRecords(groupId, member.user.userId);
   }
@@ -122,6 +137,13 @@ beforeAll(async () => {
 afterAll(closeConnections);
 
 const refusal = (status: number) => status === 401 || status === 403 || status === 404;
+
+/** Routes that put a notebook away or erase it, without a body to stop them. */
+const ownNotebook: ReadonlySet<RouteKey> = new Set<RouteKey>([
+  'DELETE /notebooks/:id',
+  'POST /notebooks/:id/archive',
+  'POST /notebooks/:id/unarchive',
+]);
 
 /**
  * Whom or what within a group a route is about, for a caller of that role. A route that acts without a body would act
@@ -145,6 +167,15 @@ async function subjectOf(
       createdAt: new Date(),
     });
     return { token, params: { invitationId: id } };
+  }
+  if (key === 'GET /notebooks/:id/revisions/:revision') return { token, params: { revision: '1' } };
+  if (ownNotebook.has(key)) {
+    spares += 1;
+    const { notebook } = await createRecords(spareGroup, outsider.user.userId, {
+      number: spares,
+      fit: false,
+    });
+    return { token, params: { id: notebook } };
   }
   return { token, params: {} };
 }

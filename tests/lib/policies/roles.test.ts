@@ -16,6 +16,8 @@ const table: Record<Action, string> = {
   'notebook.read': 'LAF',
   'notebook.create': 'LA',
   'notebook.edit': 'LA',
+  'notebook.archive': 'L',
+  'notebook.delete': 'L',
   'fit.read': 'LAF',
   'fit.start': 'LA',
   'fit.stop': 'LA',

@@ -1,0 +1,101 @@
+import {
+  Fit,
+  Measurement,
+  MeasurementVersion,
+  Notebook,
+  NotebookRevision,
+  type NotebookSettings,
+} from '@/models';
+import { AppError, notFound } from '@/lib/errors';
+import { presentNotebookCreated } from '@/lib/presenters/notebooks';
+import { snapshotSchema, type CopyNotebook, type NotebookCreated } from '@/lib/schemas';
+import type { Access } from './access';
+import { settleSettings } from './notebook-settings';
+import { findMeasured, insertNotebook } from './notebooks';
+
+/** Longest title of a notebook. */
+const longest = 160;
+
+/** "Two fields (copy)"; a title that would grow too long is cut before the word. */
+export function copyTitle(title: string): string {
+  const word = ' (copy)';
+  return `${title.slice(0, longest - word.length).trimEnd()}${word}`;
+}
+
+interface Original {
+  settings: Pick<NotebookSettings, 'cuts' | 'likelihood' | 'template' | 'priors'>;
+  revision: number;
+  fit: number | null;
+  versionId: string;
+}
+
+async function originalOf(notebook: Notebook, fitId: string | undefined): Promise<Original> {
+  if (fitId === undefined) {
+    const { settings, revision } = await NotebookRevision.findOne({
+      where: { notebookId: notebook.id, revision: notebook.revision },
+      rejectOnEmpty: true,
+    });
+    return { settings, revision, fit: null, versionId: notebook.measurementVersionId };
+  }
+  const fit = await Fit.findOne({ where: { id: fitId, notebookId: notebook.id } });
+  if (!fit) {
+    const { code, message } = notFound('fit');
+    throw new AppError(code, message, [{ path: 'fit', message }]);
+  }
+  const { cuts, likelihood, template, priors } = snapshotSchema.parse(fit.snapshot);
+  return {
+    settings: { cuts, likelihood, template, priors },
+    revision: fit.revision,
+    fit: fit.number,
+    versionId: fit.measurementVersionId,
+  };
+}
+
+async function versionOf(id: string) {
+  const version = await MeasurementVersion.findByPk(id, { rejectOnEmpty: true });
+  return {
+    version,
+    measurement: await Measurement.findByPk(version.measurementId, { rejectOnEmpty: true }),
+  };
+}
+
+/**
+ * Opens a notebook with the settings of the one of `access`: those that stand, or those that a fit froze. On the same version
+ * of the measurement, or on the newest of another one of the group, where a likelihood that asks for a known number of mocks
+ * gives way to that measurement's own default if it has none (or the other way round), and so does bin averaging where only one has edges. Settings that can't be fitted there are refused.
+ */
+export async function copyNotebook(access: Access, body: CopyNotebook): Promise<NotebookCreated> {
+  access.require('notebook.create');
+  const notebook = await Notebook.findByPk(access.id);
+  if (!notebook) throw notFound('notebook');
+  const original = await originalOf(notebook, body.fit);
+  const own = await versionOf(original.versionId);
+  const target = body.measurement === undefined ? own : await findMeasured(access.groupId, body.measurement);
+  const { cuts, likelihood, template, priors } = original.settings;
+  const alike = (own.version.mockCount === null) === (target.version.mockCount === null);
+  const { binAverage, ...others } = template.options;
+  const edges = own.version.hasBinEdges === target.version.hasBinEdges;
+  const settings = settleSettings(
+    target.version,
+    {
+      cuts,
+      likelihood: alike ? likelihood : undefined,
+      template: { id: template.id, options: edges ? { ...others, binAverage } : others },
+      given: {},
+      kept: priors as NotebookSettings['priors'],
+    },
+    target.measurement,
+  );
+  const made = await insertNotebook(access, {
+    title: body.title ?? copyTitle(notebook.title),
+    settings,
+    ...target,
+    origin: {
+      number: notebook.number,
+      title: notebook.title,
+      revision: original.revision,
+      fit: original.fit,
+    },
+  });
+  return presentNotebookCreated(made, target.measurement);
+}

@@ -1,0 +1,47 @@
+import { NotebookRevision } from '@/models';
+import { notFound } from '@/lib/errors';
+import { presentRevision } from '@/lib/presenters/notebooks';
+import type { Notebook as NotebookAnswer, RestoreRevision, Revision } from '@/lib/schemas';
+import type { Access } from './access';
+import { addRevision } from './notebooks';
+import { emailsOf } from './people';
+
+/** One revision of the notebook of `access`; what isn't the number of one is answered as missing. */
+async function findRevision(access: Access, number: string): Promise<NotebookRevision> {
+  const found = /^[1-9]\d{0,8}$/.test(number)
+    ? await NotebookRevision.findOne({ where: { notebookId: access.id, revision: Number(number) } })
+    : null;
+  if (!found) throw notFound('revision');
+  return found;
+}
+
+/** A revision of the notebook of `access` with all that it settled. */
+export async function readRevision(access: Access, number: string): Promise<Revision> {
+  access.require('notebook.read');
+  const revision = await findRevision(access, number);
+  return presentRevision(revision, await emailsOf([revision.createdBy]));
+}
+
+/**
+ * Makes an earlier revision's title and settings stand again, as a new revision: nothing between is lost. They are settled anew
+ * on the notebook's measurement, and refused where they can't be fitted to it any more. `stale_revision` as for an edit.
+ */
+export async function restoreRevision(
+  access: Access,
+  number: string,
+  body: RestoreRevision,
+): Promise<NotebookAnswer> {
+  access.require('notebook.edit');
+  const earlier = await findRevision(access, number);
+  const { cuts, likelihood, template, priors } = earlier.settings;
+  return addRevision(access, body.revision, earlier.revision, () => ({
+    title: earlier.title,
+    draft: {
+      cuts,
+      likelihood,
+      template: { id: template.id, options: template.options },
+      given: {},
+      kept: priors,
+    },
+  }));
+}
