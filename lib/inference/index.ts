@@ -16,7 +16,8 @@ export {
   validatePrior,
 } from './priors';
 export type { ScalarPrior } from './priors';
-export { logOrderProbability } from './ordered-masses';
+export { logOrderProbability, orderedMarginal } from './ordered-masses';
+export type { OrderedMarginal } from './ordered-masses';
 export { predictiveBand, priorPredictive } from './prior-predictive';
 export type { PredictiveBand } from './prior-predictive';
 export { bestDraw, coverageFacts, posteriorBand } from './summary';

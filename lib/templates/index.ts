@@ -15,6 +15,7 @@ export {
   anglesFromWeights,
   anglesJacobian,
   drawIsotropicAngles,
+  isotropicMarginal,
   logIsotropicDensity,
   mixingWeights,
 } from './mixing';

@@ -124,6 +124,22 @@ export function logIsotropicDensity(angles: ArrayLike<number>): number {
 }
 
 /**
+ * Density of mixing angle `index` (from 0) alone under the isotropic density of N fields, the others integrated out: N = 2:
+ * 2/π; N = 3: θ12 2/π, θ13 cos θ13; N = 4: (4/π) sin² a_1, sin a_2, 2/π. 0 outside [0, π/2]. Throws TemplateError
+ * `invalid_angles` beyond four fields.
+ */
+export function isotropicMarginal(fields: number, index: number, angle: number): number {
+  if (!(fields >= 2 && fields <= 4 && index >= 0 && index < fields - 1)) {
+    throw new TemplateError('invalid_angles', 'angles', `angle ${index} of ${fields} fields has no density`);
+  }
+  if (!(angle >= 0 && angle <= Math.PI / 2)) return 0;
+  if (fields === 3 && index === 1) return Math.cos(angle);
+  if (fields === 4 && index === 0) return (4 / Math.PI) * Math.sin(angle) ** 2;
+  if (fields === 4 && index === 1) return Math.sin(angle);
+  return 2 / Math.PI;
+}
+
+/**
  * One draw of the N − 1 angles from the isotropic density, into `out` (length N − 1, N = 1 … 4), from independent
  * uniforms on (0, 1). N = 2: θ uniform. N = 3: sin θ13 uniform. N = 4: the point on the sphere S³ by two uniform
  * azimuths and a uniform split B between the first and the second pair of components.

@@ -1,8 +1,10 @@
 import { describe, expect, it } from 'vitest';
+import { createRng } from '@/lib/sampler/rng';
 import {
   anglesFromWeights,
   anglesJacobian,
   drawIsotropicAngles,
+  isotropicMarginal,
   logIsotropicDensity,
   mixingWeights,
 } from '@/lib/templates';
@@ -105,5 +107,88 @@ describe('the isotropic prior', () => {
       );
       expect(distance, `angle ${k + 1}`).toBeLessThan(1 / side);
     });
+  });
+
+  it.each([2, 3, 4])(
+    'leaves each angle of %i fields the marginal that integrates its distribution',
+    (fields) => {
+      const exact: Record<number, ((angle: number) => number)[]> = {
+        2: [(angle) => angle / (Math.PI / 2)],
+        3: [(angle) => angle / (Math.PI / 2), Math.sin],
+        4: [
+          (angle) => (2 * angle - Math.sin(2 * angle)) / Math.PI,
+          (angle) => 1 - Math.cos(angle),
+          (angle) => angle / (Math.PI / 2),
+        ],
+      };
+      exact[fields].forEach((cdf, k) => {
+        for (let angle = 0.1; angle < 1.5; angle += 0.1) {
+          const step = 1e-4;
+          const slope = (cdf(angle + step) - cdf(angle - step)) / (2 * step);
+          expect(isotropicMarginal(fields, k, angle)).toBeCloseTo(slope, 7);
+        }
+        expect(isotropicMarginal(fields, k, -0.1)).toBe(0);
+        expect(isotropicMarginal(fields, k, 1.6)).toBe(0);
+      });
+      expect(() => isotropicMarginal(fields, fields - 1, 0.5)).toThrow(/has no density/);
+    },
+  );
+
+  /** First row of a random orthogonal matrix: Gram–Schmidt keeps the direction of its first vector of normals. */
+  function randomRow(fields: number, normal: () => number): Float64Array {
+    const row = Float64Array.from({ length: fields }, normal);
+    const length = Math.hypot(...row);
+    return row.map((value) => value / length);
+  }
+
+  it.each([2, 3, 4])('is that of the first row of random orthogonal matrices, %i fields', (fields) => {
+    const rng = createRng(`orthogonal ${fields}`);
+    const count = 4_000;
+    const rows = Array.from({ length: count }, () => randomRow(fields, () => rng.normal()));
+    const distanceOf = (values: Float64Array, cdf: (value: number) => number): number =>
+      Math.sqrt(count) *
+      values.sort().reduce((worst, value, i) => {
+        const exact = cdf(value);
+        return Math.max(worst, Math.abs(exact - i / count), Math.abs(exact - (i + 1) / count));
+      }, 0);
+    // Angles of their squared elements against the integral of the marginal, by Simpson's rule.
+    const angles = rows.map((row) => anglesFromWeights(row.map((value) => value * value)));
+    for (let k = 0; k < fields - 1; k += 1) {
+      const cdf = (angle: number): number => {
+        const parts = 200;
+        let sum = 0;
+        for (let i = 0; i <= parts; i += 1) {
+          const weight = i === 0 || i === parts ? 1 : i % 2 ? 4 : 2;
+          sum += weight * isotropicMarginal(fields, k, (angle * i) / parts);
+        }
+        return (sum * angle) / parts / 3;
+      };
+      // Kolmogorov–Smirnov at 1e-4: √n D < 2.23.
+      expect(
+        distanceOf(
+          Float64Array.from(angles, (each) => each[k]),
+          cdf,
+        ),
+      ).toBeLessThan(2.23);
+    }
+    // And the other way: weights of isotropic angles are Dirichlet(½, …, ½), each Beta(½, (N − 1)/2).
+    const beta: Record<number, (w: number) => number> = {
+      2: (w) => (2 / Math.PI) * Math.asin(Math.sqrt(w)),
+      3: (w) => Math.sqrt(w),
+      4: (w) => (2 / Math.PI) * (Math.sqrt(w * (1 - w)) + Math.asin(Math.sqrt(w))),
+    };
+    const out = new Float64Array(fields - 1);
+    const weights = Array.from({ length: count }, () => {
+      drawIsotropicAngles(() => rng.uniform(), out);
+      return mixingWeights(out);
+    });
+    for (let i = 0; i < fields; i += 1) {
+      expect(
+        distanceOf(
+          Float64Array.from(weights, (w) => w[i]),
+          beta[fields],
+        ),
+      ).toBeLessThan(2.23);
+    }
   });
 });
