@@ -21,6 +21,10 @@ import * as fitBlocks from './0017-fit-blocks';
 import * as notebooksArchived from './0022-notebooks-archived';
 import * as revisionsRestoredFrom from './0023-revisions-restored-from';
 import * as notebooksOrigin from './0024-notebooks-origin';
+import * as fitQueueing from './0025-fit-queueing';
+import * as fitLimits from './0026-fit-limits';
+import * as fitMails from './0027-fit-mails';
+import * as mailAboutFits from './0028-mail-about-fits';
 import type { MigrationContext } from './table';
 
 interface Migration {
@@ -50,6 +54,10 @@ const migrations: readonly (readonly [string, Migration])[] = [
   ['0022-notebooks-archived', notebooksArchived],
   ['0023-revisions-restored-from', revisionsRestoredFrom],
   ['0024-notebooks-origin', notebooksOrigin],
+  ['0025-fit-queueing', fitQueueing],
+  ['0026-fit-limits', fitLimits],
+  ['0027-fit-mails', fitMails],
+  ['0028-mail-about-fits', mailAboutFits],
 ];
 
 /** The migrator of an open database; run it with one process at a time. */

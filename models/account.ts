@@ -10,6 +10,8 @@ export class User extends Model<InferAttributes<User>, InferCreationAttributes<U
   declare emailVerified: CreationOptional<Date | null>;
   declare image: CreationOptional<string | null>;
   declare siteAdmin: CreationOptional<boolean>;
+  /** Whether a mail is sent when a fit of theirs has ended. */
+  declare mailAboutFits: CreationOptional<boolean>;
 }
 
 /** An outside identity; unused by mailed links, required by the adapter. */
@@ -60,6 +62,7 @@ export function initAccountModels(sequelize: Sequelize): void {
       emailVerified: instant(true),
       image: text(255, true),
       siteAdmin: flag(),
+      mailAboutFits: { ...flag(), defaultValue: true },
     },
     { ...plain, modelName: 'user', tableName: 'users', underscored: true },
   );

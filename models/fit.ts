@@ -36,8 +36,16 @@ export class Fit extends Model<InferAttributes<Fit>, InferCreationAttributes<Fit
   declare drawsPerSecond: CreationOptional<number | null>;
   /** Diagnostics, acceptance, history, gate as presented; always of the committed draws. */
   declare report: CreationOptional<Record<string, unknown> | null>;
+  /** Lengths and checksums of the sample files of an ended fit, with what they were made of. */
+  declare outputs: CreationOptional<Record<string, unknown> | null>;
   declare startedBy: string;
+  /** Who asked for the stop; null where nobody did. */
+  declare stoppedBy: CreationOptional<string | null>;
   declare createdAt: Date;
+  /** Since when it waits, or waited, for its turn. */
+  declare queuedAt: CreationOptional<Date | null>;
+  /** Seconds of sampling up to its budget, as they were expected when it was queued: shorter fits come first. */
+  declare expectedSeconds: CreationOptional<number>;
   declare startedAt: CreationOptional<Date | null>;
   declare endedAt: CreationOptional<Date | null>;
 }
@@ -91,8 +99,12 @@ export function initFitModels(sequelize: Sequelize): void {
       millisecondsSpent: { type: DataTypes.BIGINT, allowNull: false, defaultValue: 0 },
       drawsPerSecond: real(true),
       report: json(true),
+      outputs: json(true),
       startedBy: foreignKey(),
+      stoppedBy: foreignKey(true),
       createdAt: instant(),
+      queuedAt: instant(true),
+      expectedSeconds: { ...real(), defaultValue: 0 },
       startedAt: instant(true),
       endedAt: instant(true),
     },

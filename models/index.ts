@@ -4,12 +4,14 @@ import { AuditEvent, Group, Invitation, Membership, initGroupModels } from './gr
 import { Measurement, MeasurementVersion, initMeasurementModels } from './measurement';
 import { Notebook, NotebookRevision, initNotebookModels } from './notebook';
 import { Fit, FitBlock, FitReplica, initFitModels } from './fit';
+import { FitMail, initFitQueueModels } from './fit-queue';
 
 export { Account, ApiToken, Session, User, VerificationToken } from './account';
 export { AuditEvent, Group, Invitation, Membership } from './group';
 export { Measurement, MeasurementVersion, type StoredFile } from './measurement';
 export { Notebook, NotebookRevision, type NotebookOrigin, type NotebookSettings } from './notebook';
 export { Fit, FitBlock, FitReplica } from './fit';
+export { FitLimit, FitMail } from './fit-queue';
 
 /** All associations in one place. */
 function associate(): void {
@@ -40,6 +42,9 @@ function associate(): void {
   Fit.belongsTo(MeasurementVersion, { foreignKey: 'measurementVersionId' });
   Fit.hasMany(FitReplica, { foreignKey: 'fitId', as: 'replicas' });
   Fit.hasMany(FitBlock, { foreignKey: 'fitId', as: 'blocks' });
+  Fit.hasMany(FitMail, { foreignKey: 'fitId', as: 'mails' });
+  FitMail.belongsTo(Fit, { foreignKey: 'fitId' });
+  FitMail.belongsTo(User, { foreignKey: 'userId' });
 }
 
 interface QueryingConnection {
@@ -76,6 +81,7 @@ export function openDatabase(url: string, options: { poolMax?: number } = {}): S
   initMeasurementModels(sequelize);
   initNotebookModels(sequelize);
   initFitModels(sequelize);
+  initFitQueueModels(sequelize);
   associate();
   return sequelize;
 }

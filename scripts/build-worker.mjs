@@ -11,8 +11,9 @@ await build({
     main: 'worker/main.ts',
     'replica-thread': 'worker/replica-thread.ts',
     'report-thread': 'worker/report-thread.ts',
-    // A thread of the web processes.
+    // Threads of the web processes.
     'preflight-thread': 'lib/services/preflight-thread.ts',
+    'sample-thread': 'lib/services/sample-thread.ts',
   },
   outdir: 'dist/worker',
   outExtension: { '.js': '.mjs' },

@@ -51,7 +51,11 @@ function requestBodyOf(row: Row): Json | undefined {
 function operationOf(path: string, row: Row): Json {
   const content = row.answer
     ? jsonContent(schemaOf(row.answer, 'output'))
-    : { [row.produces ?? 'application/octet-stream']: { schema: { type: 'string' } } };
+    : Object.fromEntries(
+        (row.produces ?? 'application/octet-stream')
+          .split(', ')
+          .map((type) => [type, { schema: { type: 'string' } }]),
+      );
   const requestBody = requestBodyOf(row);
   return {
     summary: row.summary,

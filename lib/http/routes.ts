@@ -53,7 +53,7 @@ export interface Row {
   query?: z.ZodType;
   body?: z.ZodType;
   parts?: Readonly<Record<string, PartRule>>;
-  /** Schema of the JSON answer; a route that answers otherwise says what it `produces`. */
+  /** Schema of the JSON answer; a route that answers otherwise says what it `produces`: one type, or several after commas. */
   answer?: z.ZodType;
   produces?: string;
   status?: 200 | 201 | 202;
@@ -251,7 +251,7 @@ export const routes = {
     summary: 'Every stored draw, unrounded.',
     permission: 'fit.read',
     query: z.object({ format: z.enum(sampleFormats).default('csv') }),
-    produces: 'text/csv',
+    produces: 'text/csv, text/x-ecsv, application/vnd.apache.parquet, application/zip',
   },
   'GET /fits/:id/manifest': {
     summary: 'Checksums, snapshot, seeds and versions of a fit.',

@@ -158,7 +158,8 @@ export const drawsSchema = z.object({
 });
 export type Draws = z.infer<typeof drawsSchema>;
 
-export const sampleFormats = ['csv'] as const;
+export const sampleFormats = ['csv', 'ecsv', 'parquet', 'npz'] as const;
+export type SampleFormat = (typeof sampleFormats)[number];
 
 export const manifestSchema = z.object({
   fit: z.object({ number: z.number().int(), status: fitStatusSchema }),

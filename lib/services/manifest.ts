@@ -3,7 +3,7 @@ import { replicaSeed } from '@/lib/sampler';
 import type { Access } from './access';
 import { findDraws, type FitSource } from './fit-records';
 import { fitModel, specOf } from './fit-model';
-import { sampleChecksum } from './samples';
+import { sampleOutputs } from './samples';
 
 /** Fewest kept draws a replica that a fit can be started with. */
 const leastDraws = 100;
@@ -34,7 +34,7 @@ function howToRunAgain({ fit, version, snapshot }: FitSource): string[] {
     `Upload the files with the checksums under inputs (${files}): POST /api/v1/groups/GROUP/measurements, with meta ${JSON.stringify(meta)}.`,
     `Open a notebook on that measurement: POST /api/v1/groups/GROUP/notebooks with a title, the measurement and ${JSON.stringify(settings)}.`,
     `Start the fit: POST /api/v1/notebooks/NOTEBOOK/fits with ${JSON.stringify(runSettings(seed, replicas, kept))}. ${outcome}`,
-    'Download the samples: GET /api/v1/fits/FIT/samples?format=csv; their SHA-256 is the one under outputs.',
+    'Download the samples: GET /api/v1/fits/FIT/samples?format=csv (or ecsv, parquet, npz); their SHA-256 is the one under outputs.',
   ];
   const angles = circularNames({ fit, version, snapshot });
   if (angles.length > 0) {
@@ -76,7 +76,11 @@ export async function readManifest(access: Access): Promise<Manifest> {
     snapshot,
     snapshotSha256: fit.snapshotSha256,
     inputs: version.files.map(({ part, fileName, bytes, sha256 }) => ({ part, fileName, bytes, sha256 })),
-    outputs: [{ name: 'samples.csv', ...(await sampleChecksum(source)) }],
+    outputs: (await sampleOutputs(source)).map(({ format, bytes, sha256 }) => ({
+      name: `samples.${format}`,
+      bytes,
+      sha256,
+    })),
     seeds: seedsOf(snapshot),
     versions: { program, node, architecture },
     howToRunAgain: howToRunAgain(source),

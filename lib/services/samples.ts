@@ -1,86 +1,112 @@
 import { createHash } from 'node:crypto';
-import type { Draws } from '@/lib/schemas';
+import { z } from 'zod';
+import { Fit } from '@/models';
+import {
+  endedStatuses,
+  fitStatusSchema,
+  sampleFormats,
+  sha256Schema,
+  type Draws,
+  type SampleFormat,
+} from '@/lib/schemas';
 import type { Access } from './access';
 import { fitBlocks, servedRows } from './fit-draws';
 import { fitColumns, fitModel, specOf, type FitColumns } from './fit-model';
 import { findDraws, type FitSource } from './fit-records';
 import { strideOf } from './fit-schedule';
+import { program } from './program';
+import { sampleChunks } from './sample-stream';
+import type { SampleSource } from './sample-table';
 
-/** The shortest decimal that reads back as the same double; the sign of a negative zero is kept. */
-export const exactDecimal = (value: number): string => (Object.is(value, -0) ? '-0' : String(value));
+const outputSchema = z.object({
+  format: z.enum(sampleFormats),
+  bytes: z.number().int(),
+  sha256: sha256Schema,
+});
+export type StoredOutput = z.infer<typeof outputSchema>;
+
+/** What is kept of the outputs of a fit; column `outputs`. */
+const storedOutputsSchema = z.object({
+  draws: z.number().int(),
+  program: z.string(),
+  files: z.array(outputSchema).length(sampleFormats.length),
+});
 
 const columnsOf = ({ version, snapshot }: FitSource): FitColumns =>
   fitColumns(specOf(fitModel(version, snapshot)));
 
-/** Columns of a sample file before the parameters. */
-const leading = ['replica', 'draw', 'warmup', 'log_likelihood', 'log_prior'];
-
-export const sampleHeader = ({ sampled, derived }: FitColumns): string[] => [
-  ...leading,
-  ...sampled,
-  ...derived,
-];
-
-/**
- * The sample file of a fit, block by block: replica after replica, draws in order and counted from 0 at the start of
- * warm-up. It holds nothing that two runs of one snapshot don't share.
- */
-async function* csvOf(source: FitSource): AsyncGenerator<string> {
-  const { fit, snapshot } = source;
-  const columns = columnsOf(source);
-  const served = { warmup: snapshot.warmup, draws: fit.draws };
-  const derived = new Float64Array(columns.derived.length);
-  yield `${sampleHeader(columns).join(',')}\n`;
-  for (let replica = 0; replica < snapshot.replicas; replica++) {
-    for await (const block of fitBlocks(fit.id, replica, fit.draws)) {
-      let text = '';
-      for (const { draw, row } of servedRows(block, served)) {
-        const offset = row * block.width;
-        columns.derive(block.values, offset, derived);
-        text += `${replica},${draw},${draw < snapshot.warmup ? 1 : 0}`;
-        for (let i = 0; i < block.width; i++) text += `,${exactDecimal(block.values[offset + i])}`;
-        for (const value of derived) text += `,${exactDecimal(value)}`;
-        text += '\n';
-      }
-      yield text;
-    }
-  }
-}
+const sourceOf = ({ fit, version, snapshot }: FitSource): SampleSource => ({
+  fitId: fit.id,
+  draws: fit.draws,
+  model: fitModel(version, snapshot),
+});
 
 export interface SampleFile {
   fileName: string;
+  contentType: string;
   stream: ReadableStream<Uint8Array>;
 }
 
-/** The sample file of the fit of `access`, made while it is read: no more than some blocks are ever in memory. */
-export async function openSamples(access: Access): Promise<SampleFile> {
+const contentTypes: Readonly<Record<SampleFormat, string>> = {
+  csv: 'text/csv; charset=utf-8',
+  ecsv: 'text/x-ecsv; charset=utf-8',
+  parquet: 'application/vnd.apache.parquet',
+  npz: 'application/zip',
+};
+
+/** The sample file of the fit of `access`, made while it is read: no more than a part is ever in memory. */
+export async function openSamples(access: Access, format: SampleFormat): Promise<SampleFile> {
   const source = await findDraws(access);
-  const lines = csvOf(source);
-  const encoder = new TextEncoder();
-  const stream = new ReadableStream<Uint8Array>({
-    async pull(controller) {
-      // A block of which nothing is served makes no chunk; a pull has to bring one.
-      let next = await lines.next();
-      while (!next.done && next.value === '') next = await lines.next();
-      if (next.done) controller.close();
-      else controller.enqueue(encoder.encode(next.value));
+  const chunks = sampleChunks(sourceOf(source), format);
+  // Asked for before the answer begins, so that a refusal is still an answer of its own.
+  let first: Awaited<ReturnType<typeof chunks.next>> | null = await chunks.next();
+  const stream = new ReadableStream<Uint8Array>(
+    {
+      async pull(controller) {
+        const { done, value } = first ?? (await chunks.next());
+        first = null;
+        if (done) controller.close();
+        else controller.enqueue(value);
+      },
+      async cancel() {
+        await chunks.return();
+      },
     },
-    async cancel() {
-      await lines.return(undefined);
-    },
-  });
-  return { fileName: `fit-${source.fit.number}-samples.csv`, stream };
+    { highWaterMark: 1 },
+  );
+  return {
+    fileName: `fit-${source.fit.number}-samples.${format}`,
+    contentType: contentTypes[format],
+    stream,
+  };
 }
 
-/** Length and SHA-256 of the sample file as it is now. */
-export async function sampleChecksum(source: FitSource): Promise<{ bytes: number; sha256: string }> {
+/** What a sample file comes to: its length and SHA-256. */
+async function measure(source: SampleSource, format: SampleFormat): Promise<StoredOutput> {
   const hash = createHash('sha256');
   let bytes = 0;
-  for await (const text of csvOf(source)) {
-    hash.update(text, 'utf8');
-    bytes += Buffer.byteLength(text, 'utf8');
+  for await (const chunk of sampleChunks(source, format)) {
+    hash.update(chunk);
+    bytes += chunk.byteLength;
   }
-  return { bytes, sha256: hash.digest('hex') };
+  return { format, bytes, sha256: hash.digest('hex') };
+}
+
+/**
+ * Length and SHA-256 of the sample file in every format as it is now. Those of a fit that has ended are kept, for the draws
+ * and the program that they were made of and by.
+ */
+export async function sampleOutputs(source: FitSource): Promise<StoredOutput[]> {
+  const { fit } = source;
+  const kept = storedOutputsSchema.safeParse(fit.outputs).data;
+  const made = { draws: fit.draws, program: program.program };
+  if (kept?.draws === made.draws && kept.program === made.program) return kept.files;
+  const files: StoredOutput[] = [];
+  for (const format of sampleFormats) files.push(await measure(sourceOf(source), format));
+  if (endedStatuses.includes(fitStatusSchema.parse(fit.status))) {
+    await Fit.update({ outputs: { ...made, files } }, { where: { id: fit.id, draws: fit.draws } });
+  }
+  return files;
 }
 
 /** Seven digits are more than a figure can show. */

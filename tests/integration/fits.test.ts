@@ -183,13 +183,11 @@ describe('what a fit gives out', () => {
     const answer = await call(readManifest, { params: { id }, token: desk.token });
     const manifest = manifestSchema.parse(await answer.json());
     const csv = await samplesOf(desk, id);
-    expect(manifest.outputs).toEqual([
-      {
-        name: 'samples.csv',
-        bytes: Buffer.byteLength(csv),
-        sha256: createHash('sha256').update(csv).digest('hex'),
-      },
-    ]);
+    expect(manifest.outputs).toContainEqual({
+      name: 'samples.csv',
+      bytes: Buffer.byteLength(csv),
+      sha256: createHash('sha256').update(csv).digest('hex'),
+    });
     expect(manifest.inputs.map(({ part }) => part)).toEqual(['file', 'mocks']);
     expect(manifest.versions).toMatchObject({ node: process.version, architecture: process.arch });
     expect(new Set(manifest.seeds.replicas).size).toBe(4);

@@ -4,7 +4,7 @@ import { storedBlock } from '@/lib/services/fit-commit';
 import { servedRows } from '@/lib/services/fit-draws';
 import { blockEnd, isLook, storedOf, strideOf } from '@/lib/services/fit-schedule';
 import { verdict } from '@/lib/services/fit-verdict';
-import { exactDecimal } from '@/lib/services/samples';
+import { exactDecimal } from '@/lib/services/sample-text';
 
 describe('the stride of stored draws', () => {
   it('is the smallest power of two that leaves at most 50,000', () => {
