@@ -1,30 +1,16 @@
 import type { Metadata } from 'next';
+import { MissingPage } from '@/components/account/missing-page';
 import { PageChrome } from '@/components/account/page-chrome';
-import { Button, Buttons } from '@/components/ui/button';
-import { BrokenTone } from '@/components/ui/motif';
-import { PageHead } from '@/components/ui/section';
-import { Sheet } from '@/components/ui/sheet';
-import { version } from '@/lib/http/page-data';
+import { guestOrMember, version } from '@/lib/http/page-data';
 
 export const metadata: Metadata = { title: 'Not found' };
 
-/** The same words for what doesn't exist and for what belongs to another group. */
-export default function NotFound() {
+/** An address that names nothing, or nothing that the person may see. */
+export default async function NotFound() {
+  const actor = await guestOrMember();
   return (
-    <PageChrome version={version}>
-      <Sheet>
-        <PageHead
-          title="There is no such page"
-          abstract="The address names nothing that is here, or something that you have no access to. Nothing was changed."
-        >
-          <BrokenTone at={0.42} />
-          <Buttons>
-            <Button kind="primary" href="/">
-              To your groups
-            </Button>
-          </Buttons>
-        </PageHead>
-      </Sheet>
+    <PageChrome version={version} email={actor?.email}>
+      <MissingPage thing="page" email={actor?.email ?? null} />
     </PageChrome>
   );
 }

@@ -25,11 +25,14 @@ import * as fitQueueing from './0025-fit-queueing';
 import * as fitLimits from './0026-fit-limits';
 import * as fitMails from './0027-fit-mails';
 import * as mailAboutFits from './0028-mail-about-fits';
+import * as invitationsSent from './0029-invitations-sent';
+import * as auditEventsByTime from './0030-audit-events-by-time';
+import * as usersSignIn from './0031-users-sign-in';
 import type { MigrationContext } from './table';
 
 interface Migration {
-  up(context: MigrationContext): Promise<void>;
-  down(context: MigrationContext): Promise<void>;
+  up(context: MigrationContext): Promise<unknown>;
+  down(context: MigrationContext): Promise<unknown>;
 }
 
 /** Every migration in order; a name is never reused. */
@@ -58,6 +61,9 @@ const migrations: readonly (readonly [string, Migration])[] = [
   ['0026-fit-limits', fitLimits],
   ['0027-fit-mails', fitMails],
   ['0028-mail-about-fits', mailAboutFits],
+  ['0029-invitations-sent', invitationsSent],
+  ['0030-audit-events-by-time', auditEventsByTime],
+  ['0031-users-sign-in', usersSignIn],
 ];
 
 /** The migrator of an open database; run it with one process at a time. */

@@ -12,6 +12,9 @@ export class User extends Model<InferAttributes<User>, InferCreationAttributes<U
   declare siteAdmin: CreationOptional<boolean>;
   /** Whether a mail is sent when a fit of theirs has ended. */
   declare mailAboutFits: CreationOptional<boolean>;
+  declare lastSignInAt: CreationOptional<Date | null>;
+  /** Since when they may not sign in; null where they may. */
+  declare disabledAt: CreationOptional<Date | null>;
 }
 
 /** An outside identity; unused by mailed links, required by the adapter. */
@@ -63,6 +66,8 @@ export function initAccountModels(sequelize: Sequelize): void {
       image: text(255, true),
       siteAdmin: flag(),
       mailAboutFits: { ...flag(), defaultValue: true },
+      lastSignInAt: instant(true),
+      disabledAt: instant(true),
     },
     { ...plain, modelName: 'user', tableName: 'users', underscored: true },
   );

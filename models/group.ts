@@ -27,6 +27,8 @@ export class Invitation extends Model<InferAttributes<Invitation>, InferCreation
   declare invitedBy: string;
   declare createdAt: Date;
   declare acceptedAt: CreationOptional<Date | null>;
+  /** When its mail last went out; null where it never did. */
+  declare sentAt: CreationOptional<Date | null>;
 }
 
 /** Who did what when; never changed, never deleted. Holds no measured or fitted value. */
@@ -60,6 +62,7 @@ export function initGroupModels(sequelize: Sequelize): void {
       invitedBy: foreignKey(),
       createdAt: instant(),
       acceptedAt: instant(true),
+      sentAt: instant(true),
     },
     { ...plain, modelName: 'invitation', tableName: 'invitations' },
   );

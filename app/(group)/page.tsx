@@ -1,16 +1,19 @@
 import type { Metadata } from 'next';
+import { cookies } from 'next/headers';
 import { redirect } from 'next/navigation';
+import { lastGroupCookie } from '@/components/account/last-group';
 import { PageChrome } from '@/components/account/page-chrome';
 import { CreateGroupForm } from '@/components/group/create-group-form';
 import { IndexEntry, IndexList, IndexSection } from '@/components/ui/index-list';
 import { SingleTone } from '@/components/ui/motif';
 import { PageHead } from '@/components/ui/section';
 import { Sheet, SheetRow } from '@/components/ui/sheet';
+import { config } from '@/lib/config';
 import { me, version, visitor } from '@/lib/http/page-data';
 
 export const metadata: Metadata = { title: 'Groups' };
 
-/** Whoever is in one group goes there at once; `?groups` shows the list all the same. */
+/** Leads to the group that was open last, or to the only one; `?groups` shows the list all the same. */
 export default async function HomePage({
   searchParams,
 }: {
@@ -18,7 +21,11 @@ export default async function HomePage({
 }) {
   const actor = await visitor('/');
   const { groups } = await me(actor);
-  if (groups.length === 1 && (await searchParams).groups === undefined) redirect(`/groups/${groups[0].id}`);
+  if ((await searchParams).groups === undefined) {
+    const last = (await cookies()).get(lastGroupCookie(new URL(config().url).port))?.value;
+    const known = groups.find(({ id }) => id === last) ?? (groups.length === 1 ? groups[0] : undefined);
+    if (known) redirect(`/groups/${known.id}`);
+  }
   return (
     <PageChrome version={version} email={actor.email}>
       <Sheet>
@@ -27,7 +34,7 @@ export default async function HomePage({
           abstract={
             groups.length
               ? undefined
-              : 'Measurements and notebooks belong to a group. Create one, or ask a lead to invite you at this address.'
+              : `Measurements and notebooks belong to a group. To get into one, ask its lead to invite ${actor.email}; you are a member at once. Or create one of your own.`
           }
         >
           {groups.length ? null : <SingleTone />}

@@ -1,4 +1,5 @@
 import type { ErrorBody, ErrorDetail } from '@/lib/schemas';
+import { tellSessionEnd } from './session';
 
 /** What the API said against a request, in its own words; `status` 0 where no answer came. */
 export class RequestError extends Error {
@@ -60,6 +61,7 @@ export async function send<T>(
     throw unreachable();
   }
   const answer: unknown = await response.json().catch(() => null);
+  if (response.status === 401) tellSessionEnd();
   if (!response.ok) throw errorOf(response.status, answer);
   return answer as T;
 }
@@ -76,6 +78,7 @@ export function upload<T>(path: string, form: FormData, onProgress: (share: numb
       if (lengthComputable && total > 0) onProgress(loaded / total);
     };
     request.onload = () => {
+      if (request.status === 401) tellSessionEnd();
       if (request.status >= 200 && request.status < 300) resolve(request.response as T);
       else reject(errorOf(request.status, request.response));
     };

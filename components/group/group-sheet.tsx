@@ -14,13 +14,15 @@ import { counted } from '@/components/words/counts';
 import { isRunning } from '@/components/fit/fit-words';
 import type { Group } from '@/lib/schemas';
 import { MeasurementIndex } from './measurement-index';
-import { Members, membersLine } from './members';
+import { LatestEvents } from './latest-events';
+import { Members } from './members';
 import { NotebookIndex } from './notebook-index';
+import { membersLine } from './role-words';
 
 /** The list at the left: how many of each, and what stands out. */
 export function groupContents(group: Group): ContentsEntry[] {
   const running = group.notebooks.filter(({ lastFit }) => lastFit && isRunning(lastFit.status)).length;
-  const { notebooks, measurements, members } = group;
+  const { notebooks, measurements, members, invitations } = group;
   return [
     {
       href: '#notebooks',
@@ -38,7 +40,11 @@ export function groupContents(group: Group): ContentsEntry[] {
       href: '#members',
       number: members.length,
       title: 'Members',
-      note: members.length === 1 ? 'you' : undefined,
+      note: invitations.length
+        ? `${counted(invitations.length, 'invitation')} out`
+        : members.length === 1
+          ? 'you'
+          : undefined,
     },
   ];
 }
@@ -108,7 +114,7 @@ function Measurements({ group }: { group: Group }) {
 
 /** A group's home: notebooks, measurements, members. */
 export function GroupSheet({ initial }: { initial: Group }) {
-  const { data: group = initial, mutate } = useSWR(`/api/v1/groups/${initial.id}`, read<Group>, {
+  const { data: group = initial } = useSWR(`/api/v1/groups/${initial.id}`, read<Group>, {
     fallbackData: initial,
   });
   const nothing = group.notebooks.length === 0 && group.measurements.length === 0;
@@ -125,12 +131,10 @@ export function GroupSheet({ initial }: { initial: Group }) {
       >
         {nothing ? <SingleTone /> : <BeatRule />}
       </PageHead>
-      <SheetRow>
+      <SheetRow margin={group.may.includes('group.audit') ? <LatestEvents groupId={group.id} /> : undefined}>
         <Notebooks group={group} />
         <Measurements group={group} />
-        <IndexSection id="members" title="Members">
-          <Members group={group} onInvited={() => mutate()} />
-        </IndexSection>
+        <Members group={group} />
       </SheetRow>
     </Sheet>
   );

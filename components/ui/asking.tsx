@@ -11,10 +11,14 @@ export interface AskingProps {
   keep: string;
   onAct: () => void;
   onKeep: () => void;
+  /** Given: it is being done, in these words. */
+  busy?: ReactNode;
+  /** What has to be chosen first, between the question and the buttons. */
+  children?: ReactNode;
 }
 
 /** Asks in a sentence before something that can't be taken back; it takes the focus, so that it is heard. */
-export function Asking({ question, act, keep, onAct, onKeep }: AskingProps) {
+export function Asking({ question, act, keep, onAct, onKeep, busy, children }: AskingProps) {
   const sentence = useRef<HTMLParagraphElement>(null);
   useEffect(() => sentence.current?.focus(), []);
   return (
@@ -22,8 +26,11 @@ export function Asking({ question, act, keep, onAct, onKeep }: AskingProps) {
       <p ref={sentence} tabIndex={-1} className="mb-1 outline-none">
         {question}
       </p>
+      {children}
       <Buttons>
-        <Button onClick={onAct}>{act}</Button>
+        <Button onClick={onAct} busy={busy}>
+          {act}
+        </Button>
         <Button onClick={onKeep}>{keep}</Button>
       </Buttons>
     </div>

@@ -9,6 +9,8 @@ export interface ButtonProps {
   download?: boolean | string;
   /** Given: the button is disabled, and these words stand beside it. */
   reason?: ReactNode;
+  /** Given: what it was pressed for is under way. It keeps its place and the focus, shows these words and does nothing. */
+  busy?: ReactNode;
   type?: 'button' | 'submit';
   onClick?: MouseEventHandler<HTMLElement>;
   name?: string;
@@ -32,6 +34,7 @@ export function Button({
   href,
   download,
   reason,
+  busy,
   type = 'button',
   onClick,
   children,
@@ -68,8 +71,14 @@ export function Button({
       </Link>
     );
   return (
-    <button type={type} className={className} onClick={onClick} {...rest}>
-      {children}
+    <button
+      type={busy ? 'button' : type}
+      aria-disabled={busy ? true : undefined}
+      className={busy ? `${shape} ${looks.disabled}` : className}
+      onClick={busy ? undefined : onClick}
+      {...rest}
+    >
+      {busy ?? children}
     </button>
   );
 }

@@ -5,14 +5,16 @@ import { BrandMark } from './motif';
 export interface RunningHeadProps {
   /** Where the brand leads. */
   home: string;
-  /** Name of the group, or what the page is. */
+  /** What the page is. */
   where?: ReactNode;
+  /** The menu of groups, in place of `where`; on a phone it has a line of its own. */
+  menu?: ReactNode;
   links?: { href: string; label: string; current?: boolean }[];
   /** "T. Ibarra, analyst", or a link to sign in. */
   who?: ReactNode;
 }
 
-export function RunningHead({ home, where, links = [], who }: RunningHeadProps) {
+export function RunningHead({ home, where, menu, links = [], who }: RunningHeadProps) {
   return (
     <header className="border-b border-hairline">
       <div className="mx-auto flex max-w-page items-baseline gap-4 px-gutter pt-2 pb-[13px] font-controls text-control font-[450] max-tablet:flex-wrap max-tablet:gap-x-2 max-tablet:gap-y-0 max-tablet:pb-[10px]">
@@ -29,6 +31,9 @@ export function RunningHead({ home, where, links = [], who }: RunningHeadProps) 
           >
             {where}
           </span>
+        ) : null}
+        {menu ? (
+          <div className="no-print min-w-0 max-tablet:order-3 max-tablet:basis-full">{menu}</div>
         ) : null}
         {links.length ? (
           <nav

@@ -1,6 +1,7 @@
 import type { ReactNode } from 'react';
 
 export interface WordButtonProps {
+  id?: string;
   onClick: () => void;
   /** What it acts on, for those who hear it away from its row. */
   of?: string;
@@ -8,9 +9,10 @@ export interface WordButtonProps {
 }
 
 /** A button inside a row of a table: a word in the colour of actions, as tall as a target has to be. */
-export function WordButton({ onClick, of, children }: WordButtonProps) {
+export function WordButton({ id, onClick, of, children }: WordButtonProps) {
   return (
     <button
+      id={id}
       type="button"
       onClick={onClick}
       className="no-print inline-flex min-h-target items-center font-controls text-note text-action underline decoration-1 underline-offset-[3px]"

@@ -6,6 +6,7 @@ import { auth } from '@/lib/auth/current';
 import { AppError } from '@/lib/errors';
 import {
   fitSchema,
+  groupLogSchema,
   groupSchema,
   measurementSchema,
   meSchema,
@@ -13,6 +14,8 @@ import {
   tokenSchema,
   type Fit,
   type Group,
+  type GroupLog,
+  type LogQuery,
   type Me,
   type Measurement,
   type Notebook,
@@ -23,6 +26,7 @@ import { authorise, type Access, type RecordKind } from '@/lib/services/access';
 import { readMe } from '@/lib/services/accounts';
 import { readFit } from '@/lib/services/fits';
 import { readGroup } from '@/lib/services/groups';
+import { readGroupLog } from '@/lib/services/group-log';
 import { readMeasurement } from '@/lib/services/measurements';
 import { readNotebook } from '@/lib/services/notebooks';
 import { listTokens } from '@/lib/services/tokens';
@@ -41,6 +45,9 @@ export async function visitor(path: string): Promise<Actor> {
   return actor;
 }
 
+/** Who is signed in, for pages that are drawn for guests too. */
+export const guestOrMember = (): Promise<Actor | null> => auth();
+
 /** Foreign, missing and not allowed look alike: the page of what isn't there. */
 async function orNotFound<T>(answer: Promise<T>): Promise<T> {
   try {
@@ -56,6 +63,9 @@ const accessTo = (actor: Actor, kind: RecordKind, id: string, action: Action): P
 
 export const me = cache(async (actor: Actor): Promise<Me> => meSchema.parse(await readMe(actor)));
 
+/** Who may do what within a group, in words. */
+export { permissions } from '@/lib/policies/words';
+
 export const tokens = async (actor: Actor): Promise<Token[]> =>
   tokenSchema.array().parse(await listTokens(actor));
 
@@ -63,6 +73,11 @@ export const group = cache(async (actor: Actor, id: string): Promise<Group> => {
   const access = await accessTo(actor, 'group', id, 'group.read');
   return groupSchema.parse(await readGroup(access));
 });
+
+export const groupLog = async (actor: Actor, id: string, query: LogQuery): Promise<GroupLog> => {
+  const access = await accessTo(actor, 'group', id, 'group.audit');
+  return groupLogSchema.parse(await readGroupLog(access, query));
+};
 
 export const measurement = cache(async (actor: Actor, id: string): Promise<Measurement> => {
   const access = await accessTo(actor, 'measurement', id, 'measurement.read');

@@ -12,6 +12,8 @@ export interface Bucket {
 export const buckets = {
   request: { perSecond: 40, burst: 200 },
   upload: { perSecond: 600 / 3600, burst: 300 },
+  /** Mails of one invitation that are sent again. */
+  invitation: { perSecond: 5 / 3600, burst: 5 },
   /** Mailed links for one address. */
   link: { perSecond: 10 / 3600, burst: 10 },
 } as const satisfies Record<string, Bucket>;

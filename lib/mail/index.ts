@@ -25,7 +25,7 @@ export const sendSignInLink = (email: string, address: string): Promise<void> =>
 /** Tells a person that they were invited into a group, or, with an account already, that they are in it. */
 export const sendInvitation = (
   email: string,
-  invitation: { groupName: string; role: string; invitedBy: string; joined: boolean },
+  invitation: { groupId: string; groupName: string; role: Role; invitedBy: string; joined: boolean },
 ): Promise<void> =>
   sendMail({
     to: email,
@@ -34,9 +34,15 @@ export const sendInvitation = (
       'Hello,',
       '',
       `${invitation.invitedBy} has ${invitation.joined ? 'added' : 'invited'} you to the group “${invitation.groupName}” as ${invitation.role}.`,
-      'Sign in with this address, and the group is on your first page:',
+      invitation.joined
+        ? `You are a member from now on. The group’s page, for ${email}:`
+        : `To accept, open the group’s page and sign in with this address, ${email}; no password is needed:`,
       '',
-      `${config().url}/sign-in`,
+      `${config().url}/groups/${invitation.groupId}`,
+      '',
+      invitation.joined
+        ? 'If you don’t want to belong to it, leave it on its page of members.'
+        : 'If you don’t want to belong to it, there is nothing that you have to do.',
       '',
     ].join('\n'),
   });
@@ -51,13 +57,13 @@ const onGroup = (email: string, groupName: string, lines: string[]): Promise<voi
 /** Tells a member that their role was changed. */
 export const sendRoleChange = (
   email: string,
-  change: { groupName: string; from: Role; role: Role; changedBy: string },
+  change: { groupId: string; groupName: string; from: Role; role: Role; changedBy: string },
 ): Promise<void> =>
   onGroup(email, change.groupName, [
     `${change.changedBy} has changed your role in the group “${change.groupName}” from ${change.from} to ${change.role}.`,
-    'It holds from your next page on:',
+    'It holds from your next page on. What each role may do stands on the page of members:',
     '',
-    config().url,
+    `${config().url}/groups/${change.groupId}/members`,
   ]);
 
 /** Tells a person that they were taken out of a group. */
@@ -87,11 +93,16 @@ export const sendInvitationTakenBack = (
     'There is nothing that you have to do.',
   ]);
 
-/** For a mail about what is done already: that stands where no mail can go out, and the transport has logged why. */
-export async function sendOrLog(mail: Promise<void>): Promise<void> {
+/**
+ * For a mail about what is done already: that stands where no mail can go out, and the transport has logged why. Says
+ * whether it went out.
+ */
+export async function sendOrLog(mail: Promise<void>): Promise<boolean> {
   try {
     await mail;
+    return true;
   } catch (error) {
     if (!(error instanceof AppError && error.code === 'unavailable')) throw error;
+    return false;
   }
 }

@@ -4,6 +4,7 @@ import type { Rules } from './rule';
 export const groupRules = {
   'group.read': ['lead', 'analyst', 'referee', 'reader'],
   'group.leave': ['lead', 'analyst', 'referee', 'reader'],
+  'group.rename': ['lead'],
   'group.invite': ['lead'],
   'group.roles': ['lead'],
   'group.remove': ['lead'],

@@ -23,6 +23,11 @@ export type Me = z.infer<typeof meSchema>;
 
 export const groupNameSchema = z.string().trim().min(1).max(120);
 export const createGroupSchema = z.strictObject({ name: groupNameSchema });
+export const renameGroupSchema = z.strictObject({ name: groupNameSchema });
+
+/** A group by its name alone. */
+export const groupNamedSchema = z.object({ id: idSchema, name: z.string() });
+export type GroupNamed = z.infer<typeof groupNamedSchema>;
 
 export const inviteSchema = z.strictObject({
   email: z
@@ -34,7 +39,13 @@ export const inviteSchema = z.strictObject({
 
 export const changeRoleSchema = z.strictObject({ role: roleSchema });
 
-export const memberSchema = z.object({ userId: idSchema, email: z.email(), role: roleSchema });
+export const memberSchema = z.object({
+  userId: idSchema,
+  email: z.email(),
+  role: roleSchema,
+  /** When the membership began. */
+  since: instantSchema,
+});
 export type Member = z.infer<typeof memberSchema>;
 
 /** An invitation that its address hasn't answered by signing in yet. */
@@ -43,6 +54,8 @@ export const invitationSchema = z.object({
   email: z.email(),
   role: roleSchema,
   createdAt: instantSchema,
+  /** When its mail last went out; null where it couldn't be sent. */
+  sentAt: instantSchema.nullable(),
 });
 export type Invitation = z.infer<typeof invitationSchema>;
 

@@ -6,3 +6,4 @@ export * from './notebooks';
 export * from './fits';
 export * from './groups';
 export * from './tokens';
+export * from './log';

@@ -2,7 +2,7 @@ import { Group, Membership } from '@/models';
 import { database } from '@/lib/db';
 import { notFound } from '@/lib/errors';
 import { actionsFor, may } from '@/lib/policies';
-import { roleSchema, type Group as GroupDto } from '@/lib/schemas';
+import { roleSchema, type Group as GroupDto, type GroupNamed } from '@/lib/schemas';
 import type { Access, Actor } from './access';
 import { recordEvent } from './audit';
 import { openInvitations } from './invitations';
@@ -27,6 +27,31 @@ export async function createGroup(actor: Actor, body: { name: string }): Promise
   });
 }
 
+/** Gives a group another name; a name that stays what it was isn't recorded. */
+export async function renameGroup(access: Access, { name }: { name: string }): Promise<GroupNamed> {
+  access.require('group.rename');
+  const { groupId, actor } = access;
+  return database().transaction(async (transaction) => {
+    const group = await Group.findByPk(groupId, { lock: transaction.LOCK.UPDATE, transaction });
+    if (!group) throw notFound('group');
+    const from = group.name;
+    if (from === name) return { id: groupId, name };
+    await group.update({ name }, { transaction });
+    await recordEvent(
+      {
+        groupId,
+        actorId: actor.userId,
+        action: 'group.rename',
+        subjectType: 'group',
+        subjectId: groupId,
+        details: { from, name },
+      },
+      transaction,
+    );
+    return { id: groupId, name };
+  });
+}
+
 /** A group's home as the asking member sees it: what the role doesn't read is left out. */
 export async function readGroup(access: Access): Promise<GroupDto> {
   access.require('group.read');
@@ -45,9 +70,10 @@ export async function readGroup(access: Access): Promise<GroupDto> {
     name: group.name,
     role,
     may: actionsFor(role),
-    members: memberships.flatMap(({ userId, role: theirs }) => {
+    members: memberships.flatMap(({ userId, role: theirs, createdAt }) => {
       const email = emails.get(userId);
-      return email === undefined ? [] : [{ userId, email, role: roleSchema.parse(theirs) }];
+      if (email === undefined) return [];
+      return [{ userId, email, role: roleSchema.parse(theirs), since: createdAt.toISOString() }];
     }),
     invitations,
     notebooks,

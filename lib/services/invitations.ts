@@ -4,7 +4,7 @@ import { database } from '@/lib/db';
 import { AppError, notFound } from '@/lib/errors';
 import { sendInvitation, sendInvitationTakenBack, sendOrLog } from '@/lib/mail';
 import { idSchema, roleSchema, type Invitation as InvitationDto, type Role } from '@/lib/schemas';
-import type { Access } from './access';
+import type { Access, Actor } from './access';
 import { recordEvent } from './audit';
 
 async function join(invitation: Invitation, userId: string, transaction: Transaction): Promise<void> {
@@ -52,12 +52,19 @@ export async function invite(access: Access, body: { email: string; role: Role }
   const group = await Group.findByPk(groupId);
   if (!group) throw notFound('group');
 
-  const { id, joined } = await database().transaction(async (transaction) => {
+  const { invitation, joined } = await database().transaction(async (transaction) => {
     const user = await User.findOne({ where: { email: body.email }, transaction });
     const member = user && (await Membership.findOne({ where: { groupId, userId: user.id }, transaction }));
     if (member)
       throw new AppError('conflict', `${body.email} is a member of this group already, as ${member.role}.`);
-    const values = { ...body, groupId, invitedBy: actor.userId, createdAt: new Date(), acceptedAt: null };
+    const values = {
+      ...body,
+      groupId,
+      invitedBy: actor.userId,
+      createdAt: new Date(),
+      acceptedAt: null,
+      sentAt: null,
+    };
     const [invitation, isNew] = await Invitation.findOrCreate({
       where: { groupId, email: body.email },
       defaults: values,
@@ -76,23 +83,66 @@ export async function invite(access: Access, body: { email: string; role: Role }
       transaction,
     );
     if (user) await join(invitation, user.id, transaction);
-    return { id: invitation.id, joined: user !== null };
+    return { invitation, joined: user !== null };
   });
-  await sendInvitation(body.email, {
-    groupName: group.name,
-    role: body.role,
-    invitedBy: actor.email,
-    joined,
-  });
-  return { id };
+  await mail(invitation, group, actor, joined);
+  return { id: invitation.id };
 }
 
-const present = ({ id, email, role, createdAt }: Invitation): InvitationDto => ({
+/**
+ * Mails an invitation and notes when. One that no mail can go out for stands all the same: its list says so, and a lead
+ * can send it again.
+ */
+async function mail(invitation: Invitation, group: Group, actor: Actor, joined: boolean): Promise<void> {
+  const { email, role } = invitation;
+  const sent = await sendOrLog(
+    sendInvitation(email, {
+      groupId: group.id,
+      groupName: group.name,
+      role: roleSchema.parse(role),
+      invitedBy: actor.email,
+      joined,
+    }),
+  );
+  if (sent) await invitation.update({ sentAt: new Date() });
+}
+
+const present = ({ id, email, role, createdAt, sentAt }: Invitation): InvitationDto => ({
   id,
   email,
   role: roleSchema.parse(role),
   createdAt: createdAt.toISOString(),
+  sentAt: sentAt?.toISOString() ?? null,
 });
+
+/** The open invitations, for whoever may invite. */
+export async function listInvitations(access: Access): Promise<InvitationDto[]> {
+  access.require('group.invite');
+  return openInvitations(access.groupId);
+}
+
+/** Mails an open invitation once more. One that was answered is a membership, and not found here. */
+export async function sendAgain(access: Access, id: string): Promise<InvitationDto> {
+  access.require('group.invite');
+  const { groupId, actor } = access;
+  if (!idSchema.safeParse(id).success) throw notFound('invitation');
+  const group = await Group.findByPk(groupId);
+  const invitation = await Invitation.findOne({ where: { id, groupId, acceptedAt: null } });
+  if (!group || !invitation) throw notFound('invitation');
+  const before = invitation.sentAt;
+  await mail(invitation, group, actor, false);
+  if (invitation.sentAt === before)
+    throw new AppError('unavailable', 'The mail could not be sent. The invitation stands; try again later.');
+  await recordEvent({
+    groupId,
+    actorId: actor.userId,
+    action: 'group.invite',
+    subjectType: 'invitation',
+    subjectId: id,
+    details: { email: invitation.email, role: invitation.role, again: true },
+  });
+  return present(invitation);
+}
 
 /** Invitations of a group that nobody has answered yet, oldest first. */
 export async function openInvitations(groupId: string): Promise<InvitationDto[]> {

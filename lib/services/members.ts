@@ -43,7 +43,12 @@ async function findMember(
   return {
     groupName: group.name,
     membership,
-    member: { userId, email: user.email, role: roleSchema.parse(membership.role) },
+    member: {
+      userId,
+      email: user.email,
+      role: roleSchema.parse(membership.role),
+      since: membership.createdAt.toISOString(),
+    },
     onlyLead: leads.length === 1 && leads[0].userId === userId,
   };
 }
@@ -84,7 +89,7 @@ export async function changeRole(access: Access, userId: string, body: { role: R
   });
   if (before.role !== role)
     await sendOrLog(
-      sendRoleChange(before.email, { groupName, from: before.role, role, changedBy: actor.email }),
+      sendRoleChange(before.email, { groupId, groupName, from: before.role, role, changedBy: actor.email }),
     );
   return { ...before, role };
 }

@@ -154,7 +154,7 @@ describe('invitations', () => {
     expect(answer.status).toBe(201);
     const [mail] = await mailTo(email);
     expect(mail.text).toContain(lead.user.email);
-    expect(mail.links).toEqual([`${config().url}/sign-in`]);
+    expect(mail.links).toEqual([`${config().url}/groups/${groupId}`]);
 
     const guest = await createUser(email);
     expect(await Membership.count({ where: { userId: guest.userId } })).toBe(0);

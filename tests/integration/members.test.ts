@@ -1,13 +1,16 @@
 import { randomUUID } from 'node:crypto';
-import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { afterAll, beforeAll, describe, expect, it, vi } from 'vitest';
 import { DELETE as takeBackRoute } from '@/app/api/v1/groups/[id]/invitations/[invitationId]/route';
-import { POST as inviteRoute } from '@/app/api/v1/groups/[id]/invitations/route';
+import { POST as sendRoute } from '@/app/api/v1/groups/[id]/invitations/[invitationId]/send/route';
+import { GET as listRoute, POST as inviteRoute } from '@/app/api/v1/groups/[id]/invitations/route';
 import { DELETE as removeRoute, PATCH as roleRoute } from '@/app/api/v1/groups/[id]/members/[userId]/route';
-import { GET as groupRoute } from '@/app/api/v1/groups/[id]/route';
+import { GET as groupRoute, PATCH as renameRoute } from '@/app/api/v1/groups/[id]/route';
 import { database } from '@/lib/db';
+import { AppError } from '@/lib/errors';
 import { listMailbox } from '@/lib/mail';
 import { acceptInvitations } from '@/lib/services/invitations';
-import { createdSchema, groupSchema, type Role } from '@/lib/schemas';
+import * as transport from '@/lib/mail/transport';
+import { createdSchema, groupSchema, invitationSchema, type Role } from '@/lib/schemas';
 import { AuditEvent, Membership } from '@/models';
 import { call, closeConnections, createGroup, createMember, createUser, errorOf, unique } from './harness';
 
@@ -25,6 +28,8 @@ const remove = (groupId: string, by: Person, userId: string) =>
   call(removeRoute, { method: 'DELETE', token: by.token, params: { id: groupId, userId } });
 const takeBack = (groupId: string, by: Person, invitationId: string) =>
   call(takeBackRoute, { method: 'DELETE', token: by.token, params: { id: groupId, invitationId } });
+const again = (groupId: string, by: Person, invitationId: string) =>
+  call(sendRoute, { method: 'POST', token: by.token, params: { id: groupId, invitationId } });
 const home = async (groupId: string, by: Person) =>
   groupSchema.parse(await (await call(groupRoute, { token: by.token, params: { id: groupId } })).json());
 const roleOf = async (groupId: string, person: Person): Promise<string | undefined> =>
@@ -47,7 +52,11 @@ describe('a member’s role', () => {
     const { groupId, name, people } = await groupOf('lead', 'analyst');
     const [lead, member] = people;
     const answer = await changeRole(groupId, lead, member.user.userId, 'referee');
-    expect(await answer.json()).toEqual({ ...member.user, role: 'referee' });
+    expect(await answer.json()).toEqual({
+      ...member.user,
+      role: 'referee',
+      since: expect.stringMatching(/Z$/) as string,
+    });
     expect((await home(groupId, member)).role).toBe('referee');
     expect(await logOf(groupId)).toEqual([
       {
@@ -89,6 +98,32 @@ describe('a member’s role', () => {
     expect((await changeRole(groupId, stranger, target, 'lead')).status).toBe(404);
     expect((await changeRole(groupId, people[0], target, 'owner')).status).toBe(422);
     expect(await roleOf(groupId, people[1])).toBe('analyst');
+  });
+});
+
+describe('a group’s name', () => {
+  const rename = (groupId: string, by: Person, name: string) =>
+    call(renameRoute, { method: 'PATCH', token: by.token, json: { name }, params: { id: groupId } });
+
+  it('is changed by a lead, trimmed, and recorded with the old one', async () => {
+    const { groupId, name, people } = await groupOf('lead', 'analyst');
+    expect(await (await rename(groupId, people[0], '  Other name ')).json()).toEqual({
+      id: groupId,
+      name: 'Other name',
+    });
+    expect((await home(groupId, people[1])).name).toBe('Other name');
+    await rename(groupId, people[0], 'Other name');
+    expect(await logOf(groupId)).toEqual([
+      { action: 'group.rename', actorId: people[0].user.userId, details: { from: name, name: 'Other name' } },
+    ]);
+  });
+
+  it('is no business of others, and is never empty', async () => {
+    const { groupId, name, people } = await groupOf('lead', 'analyst', 'referee', 'reader');
+    for (const person of people.slice(1)) expect((await rename(groupId, person, 'x')).status).toBe(403);
+    for (const bad of ['', '   ', 'x'.repeat(121)])
+      expect((await rename(groupId, people[0], bad)).status).toBe(422);
+    expect((await home(groupId, people[0])).name).toBe(name);
   });
 });
 
@@ -210,6 +245,43 @@ describe('an open invitation', () => {
     expect((await mailTo(email)).filter((text) => text.includes('taken back'))).toHaveLength(1);
   });
 
+  it('is listed by a route of its own, and mailed again with the same link, which is recorded', async () => {
+    const { groupId, people } = await groupOf('lead', 'analyst');
+    const { email, id } = await invited(groupId, people[0]);
+    const list = async (by: Person) => call(listRoute, { token: by.token, params: { id: groupId } });
+    const [before] = invitationSchema.array().parse(await (await list(people[0])).json());
+    expect(before).toMatchObject({ id, email, role: 'analyst' });
+    expect(before.sentAt).not.toBeNull();
+    expect((await list(people[1])).status).toBe(403);
+
+    expect((await again(groupId, people[1], id)).status).toBe(403);
+    const after = invitationSchema.parse(await (await again(groupId, people[0], id)).json());
+    expect(Date.parse(after.sentAt ?? '')).toBeGreaterThan(Date.parse(before.sentAt ?? ''));
+    const mails = (await mailTo(email)).map((text) => text.includes(`/groups/${groupId}`));
+    expect(mails).toEqual([true, true]);
+    expect((await logOf(groupId)).map(({ details }) => details?.again)).toEqual([undefined, true]);
+  });
+
+  it('can be mailed again five times, then not before some minutes have passed', async () => {
+    const { groupId, people } = await groupOf('lead');
+    const { email, id } = await invited(groupId, people[0]);
+    const statuses: number[] = [];
+    for (let i = 0; i < 6; i++) statuses.push((await again(groupId, people[0], id)).status);
+    expect(statuses).toEqual([200, 200, 200, 200, 200, 429]);
+    expect(await mailTo(email)).toHaveLength(6);
+  });
+
+  it('stands where its mail can’t go out, and says so until it is mailed', async () => {
+    const { groupId, people } = await groupOf('lead');
+    const refused = vi.spyOn(transport, 'sendMail').mockRejectedValue(new AppError('unavailable', 'away'));
+    const { id } = await invited(groupId, people[0]);
+    expect((await home(groupId, people[0])).invitations).toMatchObject([{ id, sentAt: null }]);
+    expect(await errorOf(await again(groupId, people[0], id))).toMatchObject({ status: 503 });
+    refused.mockRestore();
+    expect((await again(groupId, people[0], id)).status).toBe(200);
+    expect((await home(groupId, people[0])).invitations[0].sentAt).not.toBeNull();
+  });
+
   it('of another group, one that was answered, a missing one and a malformed id answer alike', async () => {
     const { groupId, people } = await groupOf('lead');
     const other = await groupOf('lead');
@@ -218,9 +290,11 @@ describe('an open invitation', () => {
     const guest = await createUser(answered.email);
     await acceptInvitations(guest.userId, answered.email);
     const ids = [foreign.id, answered.id, randomUUID(), 'x'];
-    const answers = await Promise.all(ids.map(async (id) => (await takeBack(groupId, people[0], id)).text()));
-    expect(new Set(answers).size).toBe(1);
-    expect(answers[0]).toContain('not_found');
+    for (const act of [takeBack, again]) {
+      const answers = await Promise.all(ids.map(async (id) => (await act(groupId, people[0], id)).text()));
+      expect(new Set(answers).size).toBe(1);
+      expect(answers[0]).toContain('not_found');
+    }
     expect((await home(other.groupId, other.people[0])).invitations).toHaveLength(1);
     expect(await Membership.count({ where: { groupId, userId: guest.userId } })).toBe(1);
   });

@@ -6,6 +6,7 @@ import { roles, type Role } from '@/lib/schemas';
 const table: Record<Action, string> = {
   'group.read': 'LAFR',
   'group.leave': 'LAFR',
+  'group.rename': 'L',
   'group.invite': 'L',
   'group.roles': 'L',
   'group.remove': 'L',

@@ -17,7 +17,14 @@ export default async function GroupPage({ params }: Props) {
   const actor = await visitor(`/groups/${id}`);
   const initial = await group(actor, id);
   return (
-    <PageChrome version={version} email={actor.email} role={initial.role} groupId={id} current="notebooks">
+    <PageChrome
+      version={version}
+      email={actor.email}
+      role={initial.role}
+      where={initial.name}
+      groupId={id}
+      current="notebooks"
+    >
       <GroupSheet initial={initial} />
     </PageChrome>
   );
