@@ -24,7 +24,7 @@ const sentences: Readonly<Record<string, Say>> = {
   'measurement.upload': (subject, told) => `uploaded version ${told('version')} of ${subject}`,
   'notebook.create': (subject) => `opened ${subject}`,
   'notebook.edit': (subject, told) =>
-    `saved revision ${told('revision')} of ${subject}${told('sections') ? `: ${told('sections')}` : ''}`,
+    `saved revision ${told('revision')} of ${subject}${told('restoredFrom') ? `, taken from revision ${told('restoredFrom')}` : ''}${told('sections') ? `: ${told('sections')}` : ''}`,
   'notebook.archive': (subject) => `archived ${subject}`,
   'notebook.unarchive': (subject) => `took ${subject} out of the archive`,
   'notebook.delete': (_, told) => `deleted the notebook “${told('title')}”`,

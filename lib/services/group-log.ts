@@ -18,6 +18,7 @@ const shownDetails = [
   'role',
   'from',
   'name',
+  'title',
   'again',
   'number',
   'version',
@@ -25,6 +26,7 @@ const shownDetails = [
   'sections',
   'draws',
   'maxDraws',
+  'restoredFrom',
 ] as const;
 
 function detailsOf(event: AuditEvent): LogEvent['details'] {
