@@ -12,17 +12,33 @@ import type { Candidate, Point } from '../point';
 import type { JumpProposal, Rng, Target } from '../types';
 import { decide } from './accept';
 
-/** One jump; tells whether it was accepted. A proposal density that is NaN, or −∞ for what was just drawn, is a SamplerError. */
+/** ln(prior × likelihood / proposal density) at what was proposed (−∞ where that is impossible) and at the point it was proposed from. */
+export interface JumpWeights {
+  proposed: number;
+  present: number;
+}
+
+/**
+ * One jump on prior × likelihood^beta, beta > 0; tells whether it was accepted, and in `weights`, where given, the weights of both
+ * ends at beta = 1. A proposal density that is NaN, or −∞ for what was just drawn, is a SamplerError.
+ */
 export function stepJump(
   rng: Rng,
   target: Target,
   point: Point,
   candidate: Candidate,
   jump: JumpProposal,
+  beta = 1,
+  weights?: JumpWeights,
 ): boolean {
   jump.draw(rng, point.x, candidate.x);
   wrapAll(candidate.x, target.periods);
-  if (!evaluate(target, candidate)) return false;
+  const possible = evaluate(target, candidate);
+  if (weights && !possible) {
+    weights.proposed = -Infinity;
+    weights.present = point.logPrior + point.logLikelihood - jump.logDensity(point.x, candidate.x);
+  }
+  if (!possible) return false;
   const there = jump.logDensity(candidate.x, point.x);
   const back = jump.logDensity(point.x, candidate.x);
   if (!(there > -Infinity && there < Infinity)) {
@@ -33,8 +49,15 @@ export function stepJump(
     const code = Number.isNaN(back) ? 'not-a-number' : 'infinite-density';
     throw new SamplerError(code, faultAt(jump, target, point.x, back));
   }
+  if (weights) {
+    weights.proposed = candidate.logPrior + candidate.logLikelihood - there;
+    weights.present = point.logPrior + point.logLikelihood - back;
+  }
   const logRatio =
-    candidate.logPrior - point.logPrior + (candidate.logLikelihood - point.logLikelihood) + (back - there);
+    candidate.logPrior -
+    point.logPrior +
+    beta * (candidate.logLikelihood - point.logLikelihood) +
+    (back - there);
   return logRatio > -Infinity && decide(rng, point, candidate, logRatio);
 }
 

@@ -9,30 +9,8 @@
  */
 import { evaluate, wrap } from '../point';
 import type { Candidate, Point } from '../point';
-import type { Rng, Target } from '../types';
+import type { RandomWalkState, Rng, Target } from '../types';
 import { decide } from './accept';
-
-/** Everything the move remembers: plain data. Matrices are row-major, lower triangles. */
-export interface RandomWalkState {
-  /** The parameters that it moves. */
-  indices: Int32Array;
-  /** Cholesky factor of the covariance that gives the steps their shape. */
-  factor: Float64Array;
-  /** ln of the factor's multiplier. */
-  logScale: number;
-  /** Robbins–Monro steps, from which the gain follows. */
-  gainSteps: number;
-  /** Average of logScale since the last change of shape (Polyak and Juditsky 1992), later steps weighing more. */
-  averageLogScale: number;
-  /** Draws in the present window, and how many of them differ from the one before. */
-  count: number;
-  moved: number;
-  /** First draw of the window; what follows is relative to it, so that a large offset costs no digits. */
-  origin: Float64Array;
-  last: Float64Array;
-  mean: Float64Array;
-  scatter: Float64Array;
-}
 
 /** Gain after a change of shape: the size is nearly right already, so that the first steps are not the largest. */
 const GAIN_STEPS_AFTER_SHAPE = 20;
@@ -57,7 +35,10 @@ export function initRandomWalk(indices: readonly number[], spread: Float64Array)
   };
 }
 
-/** One step; while `adapting` its acceptance probability also adjusts the size of the next. Tells whether it was accepted. */
+/**
+ * One step on prior × likelihood^beta, beta > 0; while `adapting` its acceptance probability also adjusts the size of the next. Tells
+ * whether it was accepted.
+ */
 export function stepRandomWalk(
   rng: Rng,
   target: Target,
@@ -65,6 +46,7 @@ export function stepRandomWalk(
   candidate: Candidate,
   state: RandomWalkState,
   adapting: boolean,
+  beta = 1,
 ): boolean {
   const { indices, factor } = state;
   const { x, normals } = candidate;
@@ -81,7 +63,7 @@ export function stepRandomWalk(
     x[index] = period === null ? moved : wrap(moved, period);
   }
   const logRatio = evaluate(target, candidate)
-    ? candidate.logPrior - point.logPrior + (candidate.logLikelihood - point.logLikelihood)
+    ? candidate.logPrior - point.logPrior + beta * (candidate.logLikelihood - point.logLikelihood)
     : -Infinity;
   if (adapting) adjustSize(state, Math.min(1, Math.exp(logRatio)));
   return logRatio > -Infinity && decide(rng, point, candidate, logRatio);

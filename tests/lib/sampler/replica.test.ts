@@ -27,6 +27,18 @@ const JUMPS: JumpProposal[] = [
   },
 ];
 
+/** Uniform over a box that holds the target. */
+const BOXED: JumpProposal = {
+  name: 'boxed',
+  draw(rng, _from, out) {
+    out[0] = Math.PI * (2 * rng.uniform() - 1);
+    out[1] = 8 * rng.uniform() - 4;
+    out[2] = 12 * rng.uniform() - 6;
+  },
+  logDensity: (to) =>
+    Math.abs(to[1]) <= 4 && Math.abs(to[2]) <= 6 ? -Math.log(2 * Math.PI * 8 * 12) : -Infinity,
+};
+
 const SETTINGS: SamplerSettings = { warmup: 600, blocks: [[0], [1, 2]] };
 const TOTAL = 1500;
 
@@ -63,6 +75,40 @@ describe('a replica', () => {
     for (const lengths of [[100], [1], [7, 593, 1, 3], [599, 2], [600]]) {
       expect(Buffer.compare(Buffer.from(inBlocks(lengths, stored)), Buffer.from(whole))).toBe(0);
     }
+  });
+
+  it('does so with ladder, archive and evidence too, and ends in the same state', () => {
+    const ladder = { everyInWarmup: 2, every: 3, everyWhereJumpsDo: 7, maxRungs: 12, rejection: 0.3 };
+    const settings: SamplerSettings = { ...SETTINGS, walkEvery: 3, differential: true, ladder };
+    const jump = { ...BOXED, normalised: true };
+    const begin = startReplica(TARGET, [jump], settings, 'all', 1);
+    const whole = advance(TARGET, [jump], settings, begin, TOTAL);
+    expect(whole.state.stones?.filled).toBeGreaterThan(15);
+    expect(whole.state.ladder?.stones?.filled).toBeGreaterThan(15);
+    for (const lengths of [[100], [7, 593, 1, 3], [599, 2]]) {
+      let state = begin;
+      const values: number[] = [];
+      for (let made = 0, i = 0; made < TOTAL; i++) {
+        const draws = Math.min(lengths[i % lengths.length], TOTAL - made);
+        const stored = deserialize(serialize(state)) as ReplicaState;
+        let ticks = 0;
+        const step = advance(TARGET, [jump], settings, stored, draws, undefined, () => ticks++);
+        values.push(...step.block.values);
+        state = step.state;
+        made += draws;
+      }
+      expect(values).toEqual([...whole.block.values]);
+      expect(state).toEqual(whole.state);
+    }
+  });
+
+  it('tells the time of each move by the clock that it is given', () => {
+    const start = startReplica(TARGET, JUMPS, SETTINGS, 's', 0);
+    let ticks = 0;
+    const made = advance(TARGET, JUMPS, SETTINGS, start, 10, undefined, () => (ticks += 5));
+    // Four moves a draw, each between two looks at the clock.
+    expect([...(made.milliseconds ?? [])]).toEqual([50, 50, 50, 50]);
+    expect(advance(TARGET, JUMPS, SETTINGS, start, 10).milliseconds).toBeNull();
   });
 
   it('makes the same draws as a generator of blocks', () => {
