@@ -18,6 +18,7 @@ import * as fits from './0014-fits';
 import * as fitsByStatus from './0015-fits-by-status';
 import * as fitReplicas from './0016-fit-replicas';
 import * as fitBlocks from './0017-fit-blocks';
+import * as fitsRepeats from './0018-fits-repeats';
 import * as notebooksArchived from './0022-notebooks-archived';
 import * as revisionsRestoredFrom from './0023-revisions-restored-from';
 import * as notebooksOrigin from './0024-notebooks-origin';
@@ -54,6 +55,7 @@ const migrations: readonly (readonly [string, Migration])[] = [
   ['0015-fits-by-status', fitsByStatus],
   ['0016-fit-replicas', fitReplicas],
   ['0017-fit-blocks', fitBlocks],
+  ['0018-fits-repeats', fitsRepeats],
   ['0022-notebooks-archived', notebooksArchived],
   ['0023-revisions-restored-from', revisionsRestoredFrom],
   ['0024-notebooks-origin', notebooksOrigin],

@@ -38,6 +38,8 @@ export class Fit extends Model<InferAttributes<Fit>, InferCreationAttributes<Fit
   declare report: CreationOptional<Record<string, unknown> | null>;
   /** Lengths and checksums of the sample files of an ended fit, with what they were made of. */
   declare outputs: CreationOptional<Record<string, unknown> | null>;
+  /** The fit of an older version of the measurement whose settings it repeats. */
+  declare repeatsId: CreationOptional<string | null>;
   declare startedBy: string;
   /** Who asked for the stop; null where nobody did. */
   declare stoppedBy: CreationOptional<string | null>;
@@ -100,6 +102,7 @@ export function initFitModels(sequelize: Sequelize): void {
       drawsPerSecond: real(true),
       report: json(true),
       outputs: json(true),
+      repeatsId: { ...foreignKey(), allowNull: true },
       startedBy: foreignKey(),
       stoppedBy: foreignKey(true),
       createdAt: instant(),

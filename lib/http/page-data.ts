@@ -8,6 +8,7 @@ import {
   fitSchema,
   groupLogSchema,
   groupSchema,
+  measurementListedSchema,
   measurementSchema,
   meSchema,
   notebookSchema,
@@ -18,6 +19,7 @@ import {
   type LogQuery,
   type Me,
   type Measurement,
+  type MeasurementListed,
   type Notebook,
   type Token,
 } from '@/lib/schemas';
@@ -27,7 +29,7 @@ import { readMe } from '@/lib/services/accounts';
 import { readFit } from '@/lib/services/fits';
 import { readGroup } from '@/lib/services/groups';
 import { readGroupLog } from '@/lib/services/group-log';
-import { readMeasurement } from '@/lib/services/measurements';
+import { listMeasurements, readMeasurement } from '@/lib/services/measurements';
 import { readNotebook } from '@/lib/services/notebooks';
 import { listTokens } from '@/lib/services/tokens';
 
@@ -79,10 +81,16 @@ export const groupLog = async (actor: Actor, id: string, query: LogQuery): Promi
   return groupLogSchema.parse(await readGroupLog(access, query));
 };
 
-export const measurement = cache(async (actor: Actor, id: string): Promise<Measurement> => {
+/** In its newest version, or the one that is given. */
+export const measurement = cache(async (actor: Actor, id: string, version?: number): Promise<Measurement> => {
   const access = await accessTo(actor, 'measurement', id, 'measurement.read');
-  return measurementSchema.parse(await readMeasurement(access));
+  return measurementSchema.parse(await orNotFound(readMeasurement(access, version)));
 });
+
+export const measurements = async (actor: Actor, groupId: string): Promise<MeasurementListed[]> => {
+  const access = await accessTo(actor, 'group', groupId, 'measurement.read');
+  return measurementListedSchema.array().parse(await listMeasurements(access));
+};
 
 export const notebook = cache(async (actor: Actor, id: string): Promise<Notebook> => {
   const access = await accessTo(actor, 'notebook', id, 'notebook.read');

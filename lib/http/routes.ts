@@ -1,7 +1,9 @@
 import { z } from 'zod';
 import {
+  allTakenUpSchema,
   changeRoleSchema,
   copyNotebookSchema,
+  correlationSchema,
   createGroupSchema,
   createNotebookSchema,
   createTokenSchema,
@@ -21,22 +23,29 @@ import {
   logQuerySchema,
   manifestSchema,
   measurementCreatedSchema,
+  measurementDeletedSchema,
+  measurementListedSchema,
   measurementSchema,
   memberSchema,
   meSchema,
   mocksLimit,
   notebookCreatedSchema,
   notebookSchema,
+  patchMeasurementSchema,
   patchNotebookSchema,
   pointsLimit,
   renameGroupSchema,
   restoreRevisionSchema,
   revisionSchema,
   sampleFormats,
+  shiftsSchema,
   startFitSchema,
+  takenUpSchema,
+  takeUpSchema,
   templateSchema,
   tokenCreatedSchema,
   tokenSchema,
+  versionQuerySchema,
 } from '@/lib/schemas';
 import type { Action } from '@/lib/policies';
 
@@ -169,10 +178,44 @@ export const routes = {
     answer: measurementCreatedSchema,
     status: 201,
   },
-  'GET /measurements/:id': {
-    summary: 'A measurement with its points.',
+  'GET /groups/:id/measurements': {
+    summary: 'The measurements of a group in their newest versions, with their points, newest first.',
     permission: 'measurement.read',
+    answer: z.array(measurementListedSchema),
+  },
+  'GET /measurements/:id': {
+    summary: 'A measurement with its points, in its newest version or the one asked for.',
+    permission: 'measurement.read',
+    query: versionQuerySchema,
     answer: measurementSchema,
+  },
+  'GET /measurements/:id/correlation': {
+    summary: 'The correlation matrix of a version, below the diagonal.',
+    permission: 'measurement.read',
+    query: versionQuerySchema,
+    answer: correlationSchema,
+  },
+  'PATCH /measurements/:id': {
+    summary: 'Rename or describe a measurement.',
+    permission: 'measurement.edit',
+    body: patchMeasurementSchema,
+    answer: measurementSchema,
+  },
+  'DELETE /measurements/:id': {
+    summary: 'Delete a measurement that nothing rests on.',
+    permission: 'measurement.delete',
+    answer: measurementDeletedSchema,
+  },
+  'DELETE /measurements/:id/versions/:version': {
+    summary: 'Delete the newest version of a measurement, if nothing rests on it.',
+    permission: 'measurement.delete',
+    answer: measurementDeletedSchema,
+  },
+  'POST /measurements/:id/take-up': {
+    summary: 'Move every notebook on another version to this one and repeat their finished fits.',
+    permission: 'notebook.edit',
+    body: takeUpSchema,
+    answer: allTakenUpSchema,
   },
   'GET /templates': {
     summary: 'Every template with its options, parameters, default priors and formula.',
@@ -237,6 +280,17 @@ export const routes = {
     summary: 'Take an archived notebook back into use.',
     permission: 'notebook.archive',
     answer: notebookSchema,
+  },
+  'POST /notebooks/:id/take-up': {
+    summary: 'Move a notebook to another version of its measurement and repeat its finished fits.',
+    permission: 'notebook.edit',
+    body: takeUpSchema,
+    answer: takenUpSchema,
+  },
+  'GET /notebooks/:id/shifts': {
+    summary: 'How every quantity moved from each fit to the one that repeats it on another version.',
+    permission: 'notebook.read',
+    answer: shiftsSchema,
   },
   'POST /notebooks/:id/fits': {
     summary: 'Freeze a snapshot and start to sample.',

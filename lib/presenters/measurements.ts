@@ -4,8 +4,12 @@ import {
   covarianceSources,
   type Check,
   type Measurement,
+  type Correlation,
   type MeasurementCreated,
+  type MeasurementListed,
   type MeasurementSummary,
+  type MeasurementVersionLine,
+  type RestingNotebook,
 } from '@/lib/schemas';
 
 /** A version without its numbers, which lists and answers to uploads don't need. */
@@ -58,10 +62,14 @@ export function presentCreated(measurement: MeasurementHead, version: VersionHea
   };
 }
 
+const sourceOf = ({ covarianceSource }: Pick<VersionHead, 'covarianceSource'>) =>
+  covarianceSources.find((source) => source === covarianceSource) ?? 'file';
+
 export function presentSummary(
   measurement: MeasurementHead,
   version: VersionHead,
   uploadedBy: string,
+  notebooks: number,
 ): MeasurementSummary {
   return {
     id: measurement.id,
@@ -73,6 +81,9 @@ export function presentSummary(
     rows: version.rows,
     kappaMin: version.kappaMin,
     kappaMax: version.kappaMax,
+    covarianceSource: sourceOf(version),
+    mockCount: version.mockCount,
+    notebooks,
     uploadedBy,
     uploadedAt: version.createdAt.toISOString(),
   };
@@ -83,17 +94,23 @@ export function presentMeasurement(
   measurement: MeasurementHead,
   version: VersionHead,
   numbers: VersionNumbers,
-  people: { uploadedBy: string; may: readonly string[] },
+  around: {
+    uploadedBy: string;
+    versions: MeasurementVersionLine[];
+    resting: RestingNotebook[];
+    may: readonly string[];
+  },
 ): Measurement {
   const { kappa, kappaLo, kappaHi, S, covariance } = numbers;
   const rows = kappa.length;
   return {
-    ...presentSummary(measurement, version, people.uploadedBy),
+    ...presentSummary(measurement, version, around.uploadedBy, around.resting.length),
     groupId: measurement.groupId,
     sha256: version.sha256,
     hasBinEdges: version.hasBinEdges,
-    covarianceSource: covarianceSources.find((source) => source === version.covarianceSource) ?? 'file',
-    mockCount: version.mockCount,
+    newest: Math.max(...around.versions.map((line) => line.version)),
+    versions: around.versions,
+    resting: around.resting,
     files: version.files.map(({ part, fileName, bytes, sha256 }) => ({ part, fileName, bytes, sha256 })),
     checks: presentChecks(version),
     points: {
@@ -101,12 +118,76 @@ export function presentMeasurement(
       kappaLo: kappaLo && [...kappaLo],
       kappaHi: kappaHi && [...kappaHi],
       S: Array.from(S, (value) => (measurement.blind ? null : value)),
-      sigma: Array.from(kappa, (_, i) => Math.sqrt(covariance[i * rows + i])),
+      sigma: sigmaOf(numbers),
     },
     covariance:
       rows > covarianceShownTo
         ? null
         : Array.from({ length: rows }, (_, i) => [...covariance.subarray(i * rows, (i + 1) * rows)]),
-    may: [...people.may],
+    may: [...around.may],
+  };
+}
+
+export function presentVersion(
+  version: VersionHead,
+  uploadedBy: string,
+  fits: number,
+): MeasurementVersionLine {
+  return {
+    version: version.version,
+    rows: version.rows,
+    kappaMin: version.kappaMin,
+    kappaMax: version.kappaMax,
+    covarianceSource: sourceOf(version),
+    mockCount: version.mockCount,
+    sha256: version.sha256,
+    uploadedBy,
+    uploadedAt: version.createdAt.toISOString(),
+    fits,
+  };
+}
+
+const sigmaOf = ({ kappa, covariance }: VersionNumbers): number[] =>
+  Array.from(kappa, (_, i) => Math.sqrt(covariance[i * kappa.length + i]));
+
+export function presentListed(
+  measurement: MeasurementHead,
+  version: VersionHead,
+  numbers: VersionNumbers,
+  around: { uploadedBy: string; notebooks: number },
+): MeasurementListed {
+  const checks = presentChecks(version);
+  return {
+    ...presentSummary(measurement, version, around.uploadedBy, around.notebooks),
+    checks: {
+      warnings: checks.filter(({ level }) => level === 'warning').length,
+      passed: checks.filter(({ level }) => level === 'ok').length,
+    },
+    points: {
+      kappa: [...numbers.kappa],
+      S: Array.from(numbers.S, (value) => (measurement.blind ? null : value)),
+      sigma: sigmaOf(numbers),
+    },
+  };
+}
+
+/** C_ij / √(C_ii C_jj) below the diagonal; it holds no value of S, so a blind measurement shows it too. */
+export function presentCorrelation(version: VersionHead, numbers: VersionNumbers): Correlation {
+  const rows = numbers.kappa.length;
+  const sigma = sigmaOf(numbers);
+  const values: number[] = [];
+  for (let i = 1; i < rows; i++) {
+    for (let j = 0; j < i; j++) {
+      values.push(Math.round((numbers.covariance[i * rows + j] / (sigma[i] * sigma[j])) * 1e5) / 1e5);
+    }
+  }
+  return {
+    version: version.version,
+    rows,
+    correlated: sourceOf(version) !== 'errors',
+    mockCount: version.mockCount,
+    kappa: [...numbers.kappa],
+    // A rounded −0 is no correlation.
+    values: values.map((value) => value + 0),
   };
 }

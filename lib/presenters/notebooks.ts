@@ -81,6 +81,8 @@ export interface NotebookParts {
   notebook: NotebookRow;
   groupName: string;
   measurement: MeasuredBy;
+  /** The newest version of the measurement that there is. */
+  newestVersion: number;
   settings: NotebookSettings;
   bins: { kept: number; all: number };
   /** In ascending order of revision. */
@@ -105,7 +107,12 @@ export function presentNotebook(parts: NotebookParts): Notebook {
     revision: notebook.revision,
     blind: measurement.blind,
     simulated: measurement.simulated,
-    measurement: { id: measurement.id, name: measurement.name, version: measurement.version },
+    measurement: {
+      id: measurement.id,
+      name: measurement.name,
+      version: measurement.version,
+      newest: parts.newestVersion,
+    },
     cuts: settings.cuts,
     bins: parts.bins,
     likelihood: likelihoodSchema.parse(settings.likelihood),

@@ -7,3 +7,4 @@ export * from './fits';
 export * from './groups';
 export * from './tokens';
 export * from './log';
+export * from './take-up';

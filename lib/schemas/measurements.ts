@@ -69,10 +69,21 @@ export const measurementSummarySchema = z.object({
   rows: z.number().int(),
   kappaMin: z.number(),
   kappaMax: z.number(),
+  covarianceSource: z.enum(covarianceSources),
+  mockCount: z.number().int().nullable(),
+  /** Notebooks that rest on any version of it. */
+  notebooks: z.number().int(),
   uploadedBy: z.string(),
   uploadedAt: instantSchema,
 });
 export type MeasurementSummary = z.infer<typeof measurementSummarySchema>;
+
+/** A measurement in the list of its group's, with its points for a small figure. */
+export const measurementListedSchema = measurementSummarySchema.extend({
+  checks: z.object({ warnings: z.number().int(), passed: z.number().int() }),
+  points: z.object({ kappa: z.array(z.number()), S: z.array(numberOrNull), sigma: z.array(z.number()) }),
+});
+export type MeasurementListed = z.infer<typeof measurementListedSchema>;
 
 /** One stored file of a measurement. */
 export const storedFileSchema = z.object({
@@ -82,12 +93,70 @@ export const storedFileSchema = z.object({
   sha256: sha256Schema,
 });
 
+/** One version of a measurement in the list of its versions. */
+export const measurementVersionSchema = z.object({
+  version: z.number().int(),
+  rows: z.number().int(),
+  kappaMin: z.number(),
+  kappaMax: z.number(),
+  covarianceSource: z.enum(covarianceSources),
+  mockCount: z.number().int().nullable(),
+  sha256: sha256Schema,
+  uploadedBy: z.string(),
+  uploadedAt: instantSchema,
+  /** Fits that were made on it, of whichever notebook. */
+  fits: z.number().int(),
+});
+export type MeasurementVersionLine = z.infer<typeof measurementVersionSchema>;
+
+/** A notebook that rests on a measurement. */
+export const restingNotebookSchema = z.object({
+  id: idSchema,
+  number: z.number().int(),
+  title: z.string(),
+  version: z.number().int(),
+});
+export type RestingNotebook = z.infer<typeof restingNotebookSchema>;
+
+/** Which version is asked for; left out, the newest. */
+export const versionQuerySchema = z.object({ version: z.coerce.number<string>().int().min(1).optional() });
+
+export const patchMeasurementSchema = z
+  .strictObject({
+    name: z.string().trim().min(1).max(120).optional(),
+    description: z.string().trim().max(2000).optional(),
+  })
+  .refine(({ name, description }) => name !== undefined || description !== undefined, {
+    message: 'Give a name, a description, or both.',
+  });
+export type PatchMeasurement = z.infer<typeof patchMeasurementSchema>;
+
+/** What was deleted: a whole measurement, or one version of it. */
+export const measurementDeletedSchema = z.object({ id: idSchema, version: z.number().int().nullable() });
+export type MeasurementDeleted = z.infer<typeof measurementDeletedSchema>;
+
+/** The correlation of a version's bins: below the diagonal, row by row, i(i − 1)/2 + j for j < i, to five decimals. */
+export const correlationSchema = z.object({
+  version: z.number().int(),
+  rows: z.number().int(),
+  /** False where only errors were given: then every value is 0. */
+  correlated: z.boolean(),
+  mockCount: z.number().int().nullable(),
+  kappa: z.array(z.number()),
+  values: z.array(z.number()),
+});
+export type Correlation = z.infer<typeof correlationSchema>;
+
 export const measurementSchema = measurementSummarySchema.extend({
   groupId: idSchema,
   sha256: sha256Schema,
   hasBinEdges: z.boolean(),
-  covarianceSource: z.enum(covarianceSources),
-  mockCount: z.number().int().nullable(),
+  /** The newest version; `version` is the one that is shown. */
+  newest: z.number().int(),
+  /** Every version that there is, newest first. */
+  versions: z.array(measurementVersionSchema),
+  /** Notebooks that rest on it, with the version that each rests on. */
+  resting: z.array(restingNotebookSchema),
   files: z.array(storedFileSchema),
   checks: z.array(checkSchema),
   /** The points, ascending in κ; `S` is null for each while blind. `sigma` = √ of the covariance's diagonal. */

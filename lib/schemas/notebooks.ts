@@ -141,7 +141,13 @@ export const notebookSchema = z.object({
   revision: z.number().int(),
   blind: z.boolean(),
   simulated: z.boolean(),
-  measurement: z.object({ id: idSchema, name: z.string(), version: z.number().int() }),
+  measurement: z.object({
+    id: idSchema,
+    name: z.string(),
+    /** The version that it rests on, and the newest that there is. */
+    version: z.number().int(),
+    newest: z.number().int(),
+  }),
   ...settingsShape,
   /** Bins kept by the cuts, of all. */
   bins: z.object({ kept: z.number().int(), all: z.number().int() }),

@@ -1,6 +1,13 @@
 import { randomBytes } from 'node:crypto';
 import type { Transaction } from 'sequelize';
-import { Fit, Measurement, MeasurementVersion, Notebook, NotebookRevision } from '@/models';
+import {
+  Fit,
+  Measurement,
+  MeasurementVersion,
+  Notebook,
+  NotebookRevision,
+  type NotebookSettings,
+} from '@/models';
 import { database } from '@/lib/db';
 import { AppError, notFound } from '@/lib/errors';
 import { enqueueFit } from '@/lib/jobs';
@@ -33,7 +40,7 @@ export { readFit } from './fit-records';
 const mostDraws = 1_000_000;
 
 /** Wakes a worker. A queue that is away holds nothing up: workers look for fits that nobody has taken by themselves. */
-async function wake(fitId: string, epoch: number): Promise<void> {
+export async function wakeFit(fitId: string, epoch: number): Promise<void> {
   try {
     await enqueueFit(fitId, epoch);
   } catch (error) {
@@ -41,8 +48,8 @@ async function wake(fitId: string, epoch: number): Promise<void> {
   }
 }
 
-function freeze(version: MeasurementVersion, revision: NotebookRevision, body: StartFit): Snapshot {
-  const { cuts, likelihood, template, priors } = revision.settings;
+function freeze(version: MeasurementVersion, settings: NotebookSettings, body: StartFit): Snapshot {
+  const { cuts, likelihood, template, priors } = settings;
   // Only what the schema lists is frozen, in the form in which it is hashed.
   return snapshotSchema.parse({
     inputs: version.files.map(({ part, sha256 }) => ({ part, sha256 })),
@@ -77,49 +84,70 @@ async function lockNotebook(access: Access, transaction: Transaction) {
   return { notebook, revision, version, measurement };
 }
 
+/** What a new fit freezes: a revision of a notebook on a version of its measurement. */
+export interface FitOrigin {
+  notebook: Notebook;
+  revision: number;
+  settings: NotebookSettings;
+  version: MeasurementVersion;
+  /** The fit whose settings it repeats, if it does. */
+  repeats?: Fit;
+}
+
+/** Writes the row of a new fit, queued, in the transaction that holds the notebook's lock. `invalid` where it can't be fitted. */
+export async function addFit(
+  access: Access,
+  { notebook, revision, settings, version, repeats }: FitOrigin,
+  body: StartFit,
+  transaction: Transaction,
+): Promise<Fit> {
+  checkFittable(inferenceSpec(version, settings).spec);
+  const snapshot = freeze(version, settings, body);
+  const last = await Fit.max<number | null, Fit>('number', {
+    where: { notebookId: notebook.id },
+    transaction,
+  });
+  const made = await Fit.create(
+    {
+      notebookId: notebook.id,
+      groupId: notebook.groupId,
+      number: (last ?? 0) + 1,
+      revision,
+      measurementVersionId: version.id,
+      snapshot,
+      snapshotSha256: canonicalSha256(snapshot),
+      maxDraws: body.maxDraws ?? defaultFit.maxDraws,
+      targetRhat: body.target?.rhat ?? defaultFit.rhat,
+      targetEss: body.target?.ess ?? defaultFit.ess,
+      status: 'queued',
+      repeatsId: repeats?.id ?? null,
+      startedBy: access.actor.userId,
+      createdAt: new Date(),
+    },
+    { transaction },
+  );
+  const details = { number: made.number, revision, ...(repeats && { repeats: repeats.number }) };
+  await recordChange(access, made, 'fit.start', details, transaction);
+  return made;
+}
+
+/** While a measurement is blind, a fit needs a frozen plan. */
+export function refuseBlind({ blind }: Pick<Measurement, 'blind'>): void {
+  if (!blind) return;
+  throw new AppError('plan_missing', 'The measurement is blind: freeze a plan before the first fit.');
+}
+
 /** Freezes the notebook of `access` as it stands and queues the sampling. */
 export async function startFit(access: Access, body: StartFit): Promise<{ id: string }> {
   access.require('fit.start');
   const fit = await database().transaction(async (transaction) => {
     const { notebook, revision, version, measurement } = await lockNotebook(access, transaction);
     refuseArchived(notebook);
-    if (measurement.blind) {
-      throw new AppError('plan_missing', 'The measurement is blind: freeze a plan before the first fit.');
-    }
-    checkFittable(inferenceSpec(version, revision.settings).spec);
-    const snapshot = freeze(version, revision, body);
-    const last = await Fit.max<number | null, Fit>('number', {
-      where: { notebookId: notebook.id },
-      transaction,
-    });
-    const made = await Fit.create(
-      {
-        notebookId: notebook.id,
-        groupId: notebook.groupId,
-        number: (last ?? 0) + 1,
-        revision: revision.revision,
-        measurementVersionId: version.id,
-        snapshot,
-        snapshotSha256: canonicalSha256(snapshot),
-        maxDraws: body.maxDraws ?? defaultFit.maxDraws,
-        targetRhat: body.target?.rhat ?? defaultFit.rhat,
-        targetEss: body.target?.ess ?? defaultFit.ess,
-        status: 'queued',
-        startedBy: access.actor.userId,
-        createdAt: new Date(),
-      },
-      { transaction },
-    );
-    await recordChange(
-      access,
-      made,
-      'fit.start',
-      { number: made.number, revision: made.revision },
-      transaction,
-    );
-    return made;
+    refuseBlind(measurement);
+    const { settings } = revision;
+    return addFit(access, { notebook, revision: revision.revision, settings, version }, body, transaction);
   });
-  await wake(fit.id, 0);
+  await wakeFit(fit.id, 0);
   void tellNotebook(fit.notebookId);
   return { id: fit.id };
 }
@@ -157,7 +185,7 @@ async function change(
     await recordChange(access, fit, action, decided.details, transaction);
     return fit.status === 'queued' ? { id: fit.id, epoch: fit.epoch } : null;
   });
-  if (woken) await wake(woken.id, woken.epoch);
+  if (woken) await wakeFit(woken.id, woken.epoch);
   return readFit(access);
 }
 

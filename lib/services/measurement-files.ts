@@ -40,7 +40,7 @@ const keyOf = (ids: { measurementId: string; versionId: string }, part: FilePart
 export const versionOfKey = (key: string): string | null =>
   /^measurements\/[0-9a-f-]{36}\/([0-9a-f-]{36})\/[a-z]+$/.exec(key)?.[1] ?? null;
 
-/** Removes objects that no row points at; what can't be removed is logged, since the upload has failed already. */
+/** Removes objects that no row points at. What can't be removed is logged and left to the sweep of stray files. */
 export async function discardFiles(files: readonly StoredFile[]): Promise<void> {
   for (const { key } of files) {
     await storage()

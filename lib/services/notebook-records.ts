@@ -55,6 +55,9 @@ export async function readNotebook(access: Access): Promise<NotebookAnswer> {
     }),
   ]);
   const measurement = version && (await Measurement.findByPk(version.measurementId));
+  const newest = await MeasurementVersion.max<number | null, MeasurementVersion>('version', {
+    where: { measurementId: version?.measurementId ?? '' },
+  });
   const standing = revisions.find(({ revision }) => revision === notebook.revision);
   if (!group || !version || !measurement || !standing) throw notFound('notebook');
   const { settings } = standing;
@@ -62,6 +65,7 @@ export async function readNotebook(access: Access): Promise<NotebookAnswer> {
     notebook,
     groupName: group.name,
     measurement: measuredBy(measurement, version),
+    newestVersion: newest ?? version.version,
     settings,
     bins: { kept: countKept(version, settings.cuts), all: version.rows },
     revisions,

@@ -55,6 +55,10 @@ export async function insertNotebook(
   return database().transaction(async (transaction) => {
     // Numbers count up within the group: its row is locked, so that two notebooks at once get two numbers.
     await Group.findByPk(groupId, { attributes: ['id'], lock: true, transaction });
+    // It may have been deleted since it was read.
+    if (!(await MeasurementVersion.findByPk(version.id, { attributes: ['id'], transaction }))) {
+      throw notFound('measurement');
+    }
     const last = await Notebook.max<number, Notebook>('number', { where: { groupId }, transaction });
     const now = new Date();
     const made = await Notebook.create(

@@ -65,7 +65,13 @@ describe('an upload', () => {
     expect(measurement.points.kappaLo?.[0]).toBe(0.003);
     expect(measurement.covariance).toHaveLength(40);
     expect(measurement.points.sigma[3]).toBe(Math.sqrt(measurement.covariance![3][3]));
-    expect(measurement.may).toEqual(['measurement.read', 'measurement.upload', 'notebook.create']);
+    expect(measurement.may).toEqual([
+      'measurement.read',
+      'measurement.upload',
+      'measurement.edit',
+      'notebook.create',
+      'notebook.edit',
+    ]);
   });
 
   it('has the covariance of the mocks with divisor N − 1', async () => {

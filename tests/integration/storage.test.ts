@@ -14,7 +14,10 @@ describe('the object store', () => {
   it('gives back the very bytes, with their length and SHA-256', async () => {
     const key = unique('objects/some');
     const bytes = randomBytes(300_000);
-    expect(await storage().putVerified(key, bytes)).toEqual({ sha256: await sha256Of(bytes), bytes: 300_000 });
+    expect(await storage().putVerified(key, bytes)).toEqual({
+      sha256: await sha256Of(bytes),
+      bytes: 300_000,
+    });
     expect((await storage().get(key))?.equals(bytes)).toBe(true);
   });
 

@@ -13,6 +13,8 @@ const table: Record<Action, string> = {
   'group.audit': 'LAF',
   'measurement.read': 'LAF',
   'measurement.upload': 'LA',
+  'measurement.edit': 'LA',
+  'measurement.delete': 'L',
   'measurement.blind': 'L',
   'notebook.read': 'LAF',
   'notebook.create': 'LA',
