@@ -22,6 +22,11 @@ const sentences: Readonly<Record<string, Say>> = {
   'group.remove': (_, told) => `removed ${told('email')}, ${told('role')}`,
   'group.leave': (_, told) => `left the group, as ${told('role')}`,
   'measurement.upload': (subject, told) => `uploaded version ${told('version')} of ${subject}`,
+  'measurement.edit': (subject, told) => `changed the ${told('changed')} of ${subject}`,
+  'measurement.delete': (_, told) => `deleted the measurement “${told('name')}”`,
+  'measurement.delete-version': (subject, told) => `deleted version ${told('version')} of ${subject}`,
+  'notebook.take-up': (subject, told) =>
+    `moved ${subject} from version ${told('from')} to ${told('to')} of its measurement, as revision ${told('revision')}`,
   'notebook.create': (subject) => `opened ${subject}`,
   'notebook.edit': (subject, told) =>
     `saved revision ${told('revision')} of ${subject}${told('restoredFrom') ? `, taken from revision ${told('restoredFrom')}` : ''}${told('sections') ? `: ${told('sections')}` : ''}`,
