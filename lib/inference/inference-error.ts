@@ -12,7 +12,8 @@ export type InferenceErrorCode =
   | 'covariance_not_positive_definite'
   | 'mock_count_missing'
   | 'too_few_mocks'
-  | 'nothing_to_sample';
+  | 'nothing_to_sample'
+  | 'no_frequency';
 
 /**
  * A fault in what an inference was given. `path` names the place in the caller's terms (`priors.mu1.lo`,

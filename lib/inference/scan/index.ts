@@ -1,0 +1,21 @@
+/** Scans of the collapsed likelihood over one frequency or two, and what their heights mean. Pure. */
+export { buildCollapsedModel, CollapsedModel, comparingKind } from './scan-model';
+export type { MassFit } from './scan-model';
+export { freeCoordinates, identityDesign } from './coordinates';
+export type { Coordinates, EvidenceDesign, ProfileDesign } from './coordinates';
+export { linearPrior, normalLinearPrior } from './linear-prior';
+export type { LinearPrior } from './linear-prior';
+export type { CollapsedBlock } from './moments';
+export { scanGrid, scanLine } from './line-scan';
+export type { LineScan } from './line-scan';
+export { planeGrid, scanPlane } from './plane-scan';
+export type { PlaneScan } from './plane-scan';
+export { NullDraws } from './null-draws';
+export type { NullSource } from './null-draws';
+export { globalTail, lineNulls, planeNulls, trialColumns } from './scan-nulls';
+export type { NullHeights } from './scan-nulls';
+export { chiSquareTail, fTail, localTail, upcrossingTail } from './significance';
+export { aliasesOf, spectralWindow } from './spectral-window';
+export type { SpectralWindow } from './spectral-window';
+export { reachOf, runScan } from './run-scan';
+export type { PlaneOutcome, ScanOutcome, ScanRequest } from './run-scan';
