@@ -1,6 +1,7 @@
 import type { ReactNode } from 'react';
-import { useXAxisScale, useYAxisScale } from 'recharts';
+import { CartesianAxis } from 'recharts';
 import type { Tick } from '@/lib/figures/ticks';
+import { usePixels } from './chart';
 
 /** A panel's place in pixels. */
 export interface Panel {
@@ -8,14 +9,6 @@ export interface Panel {
   right: number;
   top: number;
   bottom: number;
-}
-
-/** Scales of the surrounding chart; null until the chart has laid itself out. */
-export function usePixels(yAxisId: string): { x: (v: number) => number; y: (v: number) => number } | null {
-  const x = useXAxisScale();
-  const y = useYAxisScale(yAxisId);
-  if (!x || !y) return null;
-  return { x: (v) => x(v) ?? NaN, y: (v) => y(v) ?? NaN };
 }
 
 export interface FrameProps {
@@ -29,40 +22,75 @@ export interface FrameProps {
   yName?: ReactNode;
 }
 
+/** All ticks are drawn as given, inward; their labels stand further out, in our own face. */
+const inward = {
+  mirror: true,
+  interval: 0,
+  tick: false,
+  axisLine: { className: 'ax' },
+  tickLine: { className: 'tk' },
+} as const;
+
+const placed = (ticks: readonly Tick[], toPixels: (value: number) => number) =>
+  ticks.map(({ value, major }, index) => ({
+    value,
+    index,
+    coordinate: toPixels(value),
+    tickSize: major ? 6 : 3,
+  }));
+
 /** Left and bottom axis with ticks inward; names stand horizontally above and at the right end. */
 export function Frame({ panel, yAxisId, xTicks, yTicks, xLabels = true, xName, yName }: FrameProps) {
   const pixels = usePixels(yAxisId);
   const { left, right, top, bottom } = panel;
   return (
     <g>
-      <path className="ax" d={`M${left} ${top}V${bottom}H${right}`} />
-      {pixels
-        ? xTicks.map((tick) => (
-            <g key={`x${tick.value}`}>
-              <path
-                className="tk"
-                d={`M${pixels.x(tick.value).toFixed(1)} ${bottom}v${tick.major ? -6 : -3}`}
-              />
-              {xLabels && tick.major ? (
-                <text className="tl" x={pixels.x(tick.value)} y={bottom + 18} textAnchor="middle">
-                  {tick.label}
-                </text>
-              ) : null}
-            </g>
-          ))
-        : null}
-      {pixels
-        ? yTicks.map((tick) => (
-            <g key={`y${tick.value}`}>
-              <path className="tk" d={`M${left} ${pixels.y(tick.value).toFixed(1)}h${tick.major ? 6 : 3}`} />
-              {tick.major ? (
-                <text className="tl" x={left - 8} y={pixels.y(tick.value) + 4} textAnchor="end">
-                  {tick.label}
-                </text>
-              ) : null}
-            </g>
-          ))
-        : null}
+      <CartesianAxis
+        {...inward}
+        orientation="bottom"
+        x={left}
+        y={bottom - 1}
+        width={right - left}
+        height={1}
+        viewBox={{ x: left, y: top, width: right - left, height: bottom - top }}
+        ticks={placed(xTicks, pixels.x)}
+      />
+      <CartesianAxis
+        {...inward}
+        orientation="left"
+        x={left}
+        y={top}
+        width={1}
+        height={bottom - top}
+        viewBox={{ x: left, y: top, width: right - left, height: bottom - top }}
+        ticks={placed(yTicks, pixels.y)}
+      />
+      {xTicks.map((tick) =>
+        xLabels && tick.major ? (
+          <text
+            key={`x${tick.value}`}
+            className="tl"
+            x={pixels.x(tick.value)}
+            y={bottom + 18}
+            textAnchor="middle"
+          >
+            {tick.label}
+          </text>
+        ) : null,
+      )}
+      {yTicks.map((tick) =>
+        tick.major ? (
+          <text
+            key={`y${tick.value}`}
+            className="tl"
+            x={left - 8}
+            y={pixels.y(tick.value) + 4}
+            textAnchor="end"
+          >
+            {tick.label}
+          </text>
+        ) : null,
+      )}
       {yName ? (
         <text className="at" x={left - 2} y={top - 12}>
           {yName}

@@ -1,12 +1,12 @@
 'use client';
 
 import { memo, useId, useMemo, type ReactNode } from 'react';
-import { Area, ComposedChart, Scatter, XAxis, YAxis } from 'recharts';
 import { linearTicks, logTicks } from '@/lib/figures/ticks';
+import { Chart, type ChartProps } from './chart';
 import { Figure, type FigureFacts, type FigureSize } from './figure';
 import { Frame } from './frame';
 import { Key, type KeyEntry } from './key';
-import { CurveLine, Flags, PointShape, ResidualGround, Residuals, ZeroLine } from './points-layers';
+import { BandAreas, CurveLine, Flags, Points, ResidualGround, Residuals, ZeroLine } from './points-layers';
 import { classOf, kappaDomain, keyEntries, placePanels, valueDomain } from './points-layout';
 import { pointsNumbers } from './points-numbers';
 import { KappaName, ShapeName } from './svg-text';
@@ -58,17 +58,6 @@ export interface PointsFigureProps extends FigureFacts {
   yName?: ReactNode;
 }
 
-/** Fills come from the class of the group round a band, so the chart's own defaults give way. */
-const still = {
-  isAnimationActive: false,
-  legendType: 'none',
-  dot: false,
-  activeDot: false,
-  stroke: 'inherit',
-  strokeWidth: 'inherit',
-  fill: 'inherit',
-} as const;
-
 /** From the back to the front, whatever order the key has. */
 const depth: readonly Curve['role'][] = ['envelope', 'background', 'field', 'best', 'sum'];
 
@@ -110,17 +99,21 @@ function PointsDrawing({ figure, size, keys }: DrawingProps) {
   const xDomain = useSettled(kappaDomain(figure));
   const yDomain = useSettled(valueDomain(figure));
   const { main, residual, height } = places;
-  const margin = useMemo(
-    () => ({
-      left: main.left,
-      right: size.width - main.right,
-      top: main.top,
-      bottom: height - (residual ?? main).bottom,
-    }),
-    [main, residual, height, size.width],
+  const axes = useMemo(
+    () =>
+      ({
+        x: { domain: xDomain, range: [main.left, main.right], scale: 'log' },
+        y: {
+          main: { domain: yDomain, range: [main.bottom, main.top] },
+          ...(residual
+            ? { residual: { domain: residualDomain, range: [residual.bottom, residual.top] } }
+            : {}),
+        },
+      }) satisfies Pick<ChartProps, 'x' | 'y'>,
+    [main, residual, xDomain, yDomain],
   );
   return (
-    <ComposedChart width={size.width} height={height} accessibilityLayer={false} margin={margin}>
+    <Chart width={size.width} height={height} {...axes}>
       <Ground
         points={points}
         band={band}
@@ -150,7 +143,7 @@ function PointsDrawing({ figure, size, keys }: DrawingProps) {
         <Residuals panel={residual} kappa={points.kappa} residuals={residuals} />
       ) : null}
       <Key entries={keys} from={places.keyFrom} to={main.right} y={size.narrow ? 11 : 27} />
-    </ComposedChart>
+    </Chart>
   );
 }
 
@@ -172,17 +165,6 @@ const Ground = memo(function Ground(props: GroundProps) {
   const { points, band, places, xDomain, yDomain, narrow, clip, yName } = props;
   const { main, residual } = places;
   const xTicks = logTicks(xDomain[0], xDomain[1], narrow ? 4 : 5);
-  const drawn = Array.from(points?.kappa ?? [], (x, i) => ({
-    x,
-    y: points?.value[i],
-    error: points?.error[i],
-    i,
-  }));
-  const bands = Array.from(band?.kappa ?? [], (x, i) => ({
-    x,
-    b95: [band?.lo95[i], band?.hi95[i]],
-    b68: [band?.lo68[i], band?.hi68[i]],
-  }));
   return (
     <>
       <defs>
@@ -190,30 +172,7 @@ const Ground = memo(function Ground(props: GroundProps) {
           <rect x={main.left} y={main.top} width={main.right - main.left} height={main.bottom - main.top} />
         </clipPath>
       </defs>
-      <XAxis dataKey="x" type="number" scale="log" domain={xDomain} allowDataOverflow hide />
-      <YAxis
-        yAxisId="main"
-        type="number"
-        domain={yDomain}
-        padding={{ bottom: (residual ?? main).bottom - main.bottom }}
-        allowDataOverflow
-        hide
-      />
-      {bands.length
-        ? (['b95', 'b68'] as const).map((key) => (
-            <Area
-              key={key}
-              {...still}
-              zIndex={-1}
-              yAxisId="main"
-              clipPath={`url(#${clip})`}
-              data={bands}
-              dataKey={key}
-              className={key}
-              fillOpacity={1}
-            />
-          ))
-        : null}
+      {band ? <BandAreas band={band} clip={clip} /> : null}
       <Frame
         panel={main}
         yAxisId="main"
@@ -224,30 +183,9 @@ const Ground = memo(function Ground(props: GroundProps) {
         yName={yName ?? <ShapeName />}
       />
       <ZeroLine panel={main} yAxisId="main" />
-      {drawn.length ? (
-        <Scatter
-          isAnimationActive={false}
-          legendType="none"
-          yAxisId="main"
-          data={drawn}
-          dataKey="y"
-          shape={<PointShape panel={main} yAxisId="main" />}
-        />
-      ) : null}
+      {points ? <Points points={points} panel={main} /> : null}
       {points ? <Flags points={points} panel={main} /> : null}
-      {residual ? (
-        <>
-          <YAxis
-            yAxisId="residual"
-            type="number"
-            domain={residualDomain}
-            padding={{ top: residual.top - main.top }}
-            allowDataOverflow
-            hide
-          />
-          <ResidualGround panel={residual} xTicks={xTicks} />
-        </>
-      ) : null}
+      {residual ? <ResidualGround panel={residual} xTicks={xTicks} /> : null}
     </>
   );
 });

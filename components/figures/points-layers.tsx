@@ -1,9 +1,11 @@
 import { memo } from 'react';
-import { linePath } from '@/lib/figures/paths';
+import { Dot } from 'recharts';
+import { areaPath, linePath } from '@/lib/figures/paths';
 import type { Tick } from '@/lib/figures/ticks';
 import { linearTicks } from '@/lib/figures/ticks';
-import { Frame, usePixels, type Panel } from './frame';
-import type { MeasuredPoints } from './points-figure';
+import { usePixels } from './chart';
+import { Frame, type Panel } from './frame';
+import type { Band, MeasuredPoints } from './points-figure';
 import { KappaName } from './svg-text';
 
 export interface CurveLineProps {
@@ -14,13 +16,9 @@ export interface CurveLineProps {
   clip: string;
 }
 
-/**
- * A curve as one path over the chart's scales. The chart's own line keeps a frozen copy of its data in a store and lays
- * out anew with each change; five such lines cost more than a frame under a slider, five paths a tenth of it.
- */
+/** A curve as one path over the chart's scales. */
 export const CurveLine = memo(function CurveLine({ className, kappa, y, clip }: CurveLineProps) {
   const pixels = usePixels('main');
-  if (!pixels) return null;
   return (
     <path
       className={className}
@@ -30,46 +28,50 @@ export const CurveLine = memo(function CurveLine({ className, kappa, y, clip }: 
   );
 });
 
-export interface DrawnPoint {
-  x: number;
-  y: number;
-  error: number;
-  /** Place among the points. */
-  i: number;
+/** Ranges of 95 and 68 % as two areas, the wider one behind. */
+export function BandAreas({ band, clip }: { band: Band; clip: string }) {
+  const pixels = usePixels('main');
+  const x = Array.from(band.kappa, pixels.x);
+  const area = (lo: ArrayLike<number>, hi: ArrayLike<number>) =>
+    areaPath(x, Array.from(hi, pixels.y), Array.from(lo, pixels.y));
+  return (
+    <g clipPath={`url(#${clip})`}>
+      <path className="b95" d={area(band.lo95, band.hi95)} />
+      <path className="b68" d={area(band.lo68, band.hi68)} />
+    </g>
+  );
 }
 
 export function ZeroLine({ panel, yAxisId }: { panel: Panel; yAxisId: string }) {
   const pixels = usePixels(yAxisId);
-  const y = pixels?.y(0) ?? NaN;
+  const y = pixels.y(0);
   if (!(y > panel.top && y < panel.bottom)) return null;
   return <path className="zero" d={`M${panel.left} ${y.toFixed(1)}H${panel.right}`} />;
 }
 
-/** Point and error bar without caps; beyond the axis an open circle at its edge. The chart fills in `payload`. */
-export function PointShape({
-  panel,
-  yAxisId,
-  payload,
-}: {
-  panel: Panel;
-  yAxisId: string;
-  payload?: DrawnPoint;
-}) {
-  const pixels = usePixels(yAxisId);
-  if (!pixels || !payload || !Number.isFinite(payload.y)) return null;
-  const x = pixels.x(payload.x);
-  if (!(x >= panel.left - 1 && x <= panel.right + 1)) return null;
+/** Points with error bars without caps; beyond the axis an open circle at its edge. */
+export function Points({ points, panel }: { points: MeasuredPoints; panel: Panel }) {
+  const pixels = usePixels('main');
   const inside = (v: number) => Math.min(panel.bottom, Math.max(panel.top, v));
-  const y = pixels.y(payload.y);
-  const out = y < panel.top || y > panel.bottom;
-  const upper = inside(pixels.y(payload.y + payload.error));
-  const lower = inside(pixels.y(payload.y - payload.error));
   return (
     <g>
-      {Number.isFinite(payload.error) && upper !== lower ? (
-        <path className="err" d={`M${x.toFixed(1)} ${upper.toFixed(1)}V${lower.toFixed(1)}`} />
-      ) : null}
-      <circle className={out ? 'pt out' : 'pt'} cx={x} cy={inside(y)} r={out ? 2.2 : 2.4} />
+      {Array.from(points.kappa, (kappa, i) => {
+        const [value, error] = [points.value[i], points.error[i]];
+        const x = pixels.x(kappa);
+        if (!Number.isFinite(value) || !(x >= panel.left - 1 && x <= panel.right + 1)) return null;
+        const y = pixels.y(value);
+        const out = y < panel.top || y > panel.bottom;
+        const upper = inside(pixels.y(value + error));
+        const lower = inside(pixels.y(value - error));
+        return (
+          <g key={i}>
+            {Number.isFinite(error) && upper !== lower ? (
+              <path className="err" d={`M${x.toFixed(1)} ${upper.toFixed(1)}V${lower.toFixed(1)}`} />
+            ) : null}
+            <Dot className={out ? 'pt out' : 'pt'} cx={x} cy={inside(y)} r={out ? 2.2 : 2.4} />
+          </g>
+        );
+      })}
     </g>
   );
 }
@@ -77,7 +79,6 @@ export function PointShape({
 /** Frames round points that a check speaks of, and dashed lines where a point is missing. */
 export function Flags({ points, panel }: { points: MeasuredPoints; panel: Panel }) {
   const pixels = usePixels('main');
-  if (!pixels) return null;
   return (
     <g>
       {(points.flags ?? []).map(({ index, word }) => {
@@ -120,21 +121,18 @@ export function Flags({ points, panel }: { points: MeasuredPoints; panel: Panel 
 export function ResidualGround({ panel, xTicks }: { panel: Panel; xTicks: readonly Tick[] }) {
   const pixels = usePixels('residual');
   const { left, right, top } = panel;
-  const y = (v: number) => pixels?.y(v) ?? NaN;
   return (
     <g>
-      {pixels
-        ? [2, 1].map((sigma) => (
-            <rect
-              key={sigma}
-              className={sigma === 2 ? 'b95' : 'b68'}
-              x={left + 0.5}
-              y={y(sigma)}
-              width={right - left}
-              height={Math.max(0, y(-sigma) - y(sigma))}
-            />
-          ))
-        : null}
+      {[2, 1].map((sigma) => (
+        <rect
+          key={sigma}
+          className={sigma === 2 ? 'b95' : 'b68'}
+          x={left + 0.5}
+          y={pixels.y(sigma)}
+          width={right - left}
+          height={Math.max(0, pixels.y(-sigma) - pixels.y(sigma))}
+        />
+      ))}
       <ZeroLine panel={panel} yAxisId="residual" />
       <Frame
         panel={panel}
@@ -159,7 +157,6 @@ export interface ResidualsProps {
 /** One point a residual; beyond three standard deviations an open circle at the edge. */
 export function Residuals({ panel, kappa, residuals }: ResidualsProps) {
   const pixels = usePixels('residual');
-  if (!pixels) return null;
   return (
     <g>
       {Array.from(residuals, (r, i) => {
@@ -167,11 +164,11 @@ export function Residuals({ panel, kappa, residuals }: ResidualsProps) {
         if (!Number.isFinite(r) || !(x >= panel.left && x <= panel.right)) return null;
         const out = Math.abs(r) > 3;
         return (
-          <circle
+          <Dot
             key={i}
             className={out ? 'pt out' : 'pt'}
-            cx={x.toFixed(1)}
-            cy={(out ? (r > 0 ? panel.top : panel.bottom) : pixels.y(r)).toFixed(1)}
+            cx={x}
+            cy={out ? (r > 0 ? panel.top : panel.bottom) : pixels.y(r)}
             r={out ? 2.2 : 1.9}
           />
         );

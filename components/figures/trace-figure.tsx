@@ -1,14 +1,14 @@
 'use client';
 
 import { useMemo } from 'react';
-import { ComposedChart, Line, XAxis, YAxis } from 'recharts';
 import type { FigureNumbers } from '@/lib/figures/csv';
 import { spread } from '@/lib/figures/spread';
-import { markerPath } from '@/lib/figures/paths';
+import { linePath, markerPath } from '@/lib/figures/paths';
 import { thinnedIndices } from '@/lib/figures/thin';
 import { linearTicks, paddedDomain } from '@/lib/figures/ticks';
 import { Figure, type FigureFacts, type FigureSize } from './figure';
-import { Frame, usePixels, type Panel } from './frame';
+import { Chart, usePixels, type ChartProps } from './chart';
+import { Frame, type Panel } from './frame';
 import { SvgSym } from './svg-text';
 
 export interface Trace {
@@ -28,16 +28,6 @@ export interface TraceFigureProps extends FigureFacts {
   /** Draws that the axis reaches to; left out, those that are there. */
   total?: number;
 }
-
-const still = {
-  isAnimationActive: false,
-  legendType: 'none',
-  dot: false,
-  activeDot: false,
-  stroke: 'inherit',
-  strokeWidth: 'inherit',
-  fill: 'inherit',
-} as const;
 
 /** Masses in the replicas since the start: in their field's colour without dashes, labelled at the end. */
 export function TraceFigure(props: TraceFigureProps) {
@@ -60,6 +50,12 @@ function traceNumbers({ traces, step = 1 }: TraceFigureProps): FigureNumbers {
   };
 }
 
+/** Draws and values of a trace for as many points as a screen can show. */
+function thinned(values: ArrayLike<number>, points: number, step: number) {
+  const kept = thinnedIndices(values, points);
+  return { draws: kept.map((i) => i * step), y: kept.map((i) => values[i]) };
+}
+
 function TraceDrawing({ figure, size }: { figure: TraceFigureProps; size: FigureSize }) {
   const { traces, warmup, step = 1 } = figure;
   const panel: Panel = {
@@ -75,31 +71,26 @@ function TraceDrawing({ figure, size }: { figure: TraceFigureProps; size: Figure
         trace.replicas.map((values, r) => ({
           key: `${t} ${r}`,
           className: `tr ${trace.field === null ? '' : `f${trace.field + 1}`}`,
-          data: thinnedIndices(values, 2 * Math.max(100, size.width)).map((i) => ({
-            x: i * step,
-            y: values[i],
-          })),
+          ...thinned(values, 2 * Math.max(100, size.width), step),
         })),
       ),
     [traces, step, size.width],
   );
-  const yDomain = useMemo(() => paddedDomain(lines.flatMap((l) => l.data.map((p) => p.y))), [lines]);
+  const yDomain = useMemo(() => paddedDomain(lines.flatMap((l) => l.y)), [lines]);
   const now = Math.max(0, ...traces.flatMap((t) => t.replicas.map((r) => (r.length - 1) * step)));
   const end = Math.max(figure.total ?? now, now, 1);
+  const height = size.narrow ? 238 : 273;
+  const { left, right, top, bottom } = panel;
+  const axes = useMemo(
+    () =>
+      ({
+        x: { domain: [0, end], range: [left, right] },
+        y: { main: { domain: yDomain, range: [bottom, top] } },
+      }) satisfies Pick<ChartProps, 'x' | 'y'>,
+    [end, yDomain, left, right, top, bottom],
+  );
   return (
-    <ComposedChart
-      width={size.width}
-      height={size.narrow ? 238 : 273}
-      accessibilityLayer={false}
-      margin={{
-        left: panel.left,
-        right: size.width - panel.right,
-        top: panel.top,
-        bottom: (size.narrow ? 238 : 273) - panel.bottom,
-      }}
-    >
-      <XAxis dataKey="x" type="number" domain={[0, end]} allowDataOverflow hide />
-      <YAxis yAxisId="main" type="number" domain={yDomain} allowDataOverflow hide />
+    <Chart width={size.width} height={height} {...axes}>
       <WarmUp panel={panel} until={Math.min(warmup, end)} />
       <Frame
         panel={panel}
@@ -115,24 +106,22 @@ function TraceDrawing({ figure, size }: { figure: TraceFigureProps; size: Figure
         ))}
       />
       {lines.map((line) => (
-        <Line
-          key={line.key}
-          {...still}
-          yAxisId="main"
-          data={line.data}
-          dataKey="y"
-          type="linear"
-          className={line.className}
-        />
+        <TraceLine key={line.key} className={line.className} draws={line.draws} y={line.y} />
       ))}
       <TraceEnds panel={panel} traces={traces} now={now} running={now < end} />
-    </ComposedChart>
+    </Chart>
   );
+}
+
+/** One replica's trace as a path. */
+function TraceLine({ className, draws, y }: { className: string; draws: number[]; y: number[] }) {
+  const pixels = usePixels('main');
+  return <path className={className} d={linePath(draws.map(pixels.x), y.map(pixels.y))} />;
 }
 
 function WarmUp({ panel, until }: { panel: Panel; until: number }) {
   const pixels = usePixels('main');
-  if (!pixels || !(until > 0)) return null;
+  if (!(until > 0)) return null;
   const width = pixels.x(until) - panel.left;
   return (
     <g>
@@ -165,7 +154,7 @@ function TraceEnds({
   running: boolean;
 }) {
   const pixels = usePixels('main');
-  if (!pixels || now === 0) return null;
+  if (now === 0) return null;
   const x = pixels.x(now);
   const ends = traces.map((trace) => {
     const last = trace.replicas.map((r) => r[r.length - 1]).filter(Number.isFinite);

@@ -41,6 +41,16 @@ describe('a figure', () => {
       expect(html).toContain(`>${way}</button>`);
   });
 
+  it('is drawn on the server already: points with errors, residuals, curve and axes', () => {
+    const html = renderToStaticMarkup(<PointsFigure {...facts} />);
+    // Three points and three residuals, of which that of −5 standard deviations lies open at the edge.
+    expect(html.match(/<circle[^>]*class="recharts-dot pt"/g)).toHaveLength(5);
+    expect(html.match(/<circle[^>]*class="recharts-dot pt out"/g)).toHaveLength(1);
+    expect(html.match(/class="err"/g)).toHaveLength(3);
+    expect(html).toMatch(/<path class="sum" clip-path="[^"]+" d="M[\d.]+ [\d.]+L/);
+    expect(html.match(/class="[^"]*\bax"/g)).toHaveLength(4);
+  });
+
   it('keeps its height from the first byte on, on both widths', () => {
     const html = renderToStaticMarkup(<PointsFigure {...facts} />);
     const [, wide] = /--height:(\d+)px/.exec(html) ?? [];
@@ -181,7 +191,7 @@ describe('small figures', () => {
     expect(html).toContain('aria-label="Prior of μ 2"');
   });
 
-  it('stand on the server without breaking where a chart needs a browser', () => {
+  it('draw traces on the server already, one line a replica, with axes and warm-up', () => {
     const html = renderToStaticMarkup(
       <TraceFigure
         number={3}
@@ -203,5 +213,8 @@ describe('small figures', () => {
     );
     expect(html).toContain('aria-label="Traces of two replicas"');
     expect(html).toContain('<b>Fig. 3. </b>Both masses.');
+    expect(html.match(/<path class="tr f1" d="M[^"]+L[^"]+"/g)).toHaveLength(2);
+    expect(html.match(/class="[^"]*\bax"/g)).toHaveLength(2);
+    expect(html).toContain('>warm-up</text>');
   });
 });
