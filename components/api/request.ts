@@ -68,6 +68,15 @@ export async function send<T>(
 
 export const read = <T>(path: string): Promise<T> => send<T>('GET', path);
 
+/** Asks the API for bytes; an answer that isn't 2xx is thrown as a RequestError. */
+export async function readBytes(path: string): Promise<ArrayBuffer> {
+  const response = await fetch(path).catch(() => {
+    throw unreachable();
+  });
+  if (!response.ok) throw errorOf(response.status, await response.json().catch(() => null));
+  return response.arrayBuffer();
+}
+
 /** Sends a form with files; `onProgress` hears the share that has left, 0 to 1 (`fetch` can't tell). */
 export function upload<T>(path: string, form: FormData, onProgress: (share: number) => void): Promise<T> {
   return new Promise((resolve, reject) => {

@@ -1,12 +1,14 @@
-import { useMemo, type ReactNode } from 'react';
+import { useId, useMemo, type ReactNode } from 'react';
 import {
-  joint,
+  highestOf,
   jointPaths,
   marginalPaths,
   panelScales,
+  type Joint,
   type Marginal,
   type PanelPlace,
 } from '@/lib/figures/corner';
+import { ringsPath } from '@/lib/figures/contour-paths';
 import { linearTicks, type Tick } from '@/lib/figures/ticks';
 import type { CornerParameter } from './corner-figure';
 import type { FigureSize } from './figure';
@@ -16,6 +18,16 @@ export interface ShownParameter {
   parameter: CornerParameter;
   marginal: Marginal;
   text: { median: string; up: string; down: string };
+  /** Value that was put in, where the data are simulated. */
+  truth: number | null;
+  /** The same parameter in samples laid over. */
+  over: Marginal | null;
+}
+
+/** Joint regions of row r against column c, of the draws and of samples laid over. */
+export interface ShownJoint {
+  own: Joint;
+  over: Joint | null;
 }
 
 const gap = 8;
@@ -54,9 +66,18 @@ function panelTicks(m: Marginal, side: number): Tick[] {
   return [3, 2, 1].map(inside).find((ticks) => ticks.length > 0 && fits(ticks)) ?? [];
 }
 
-export function CornerDrawing({ shown, size }: { shown: readonly ShownParameter[]; size: FigureSize }) {
+export interface CornerDrawingProps {
+  shown: readonly ShownParameter[];
+  jointOf: (row: number, column: number) => ShownJoint;
+  size: FigureSize;
+  /** Name of the samples laid over. */
+  overlay?: string;
+}
+
+export function CornerDrawing({ shown, jointOf, size, overlay }: CornerDrawingProps) {
   const count = shown.length;
   const place = places(count, size);
+  const truths = shown.some(({ truth }) => truth !== null);
   return (
     <svg width={size.width} height={cornerHeight(count, size)} aria-hidden="true">
       {shown.map((row, r) =>
@@ -65,8 +86,9 @@ export function CornerDrawing({ shown, size }: { shown: readonly ShownParameter[
           .map((column, c) => (
             <JointPanel
               key={`${row.parameter.name} ${column.parameter.name}`}
-              x={column.marginal}
-              y={row.marginal}
+              x={column}
+              y={row}
+              joint={jointOf(r, c)}
               place={place(c, r)}
               labelled={c === 0}
             />
@@ -83,27 +105,32 @@ export function CornerDrawing({ shown, size }: { shown: readonly ShownParameter[
           row={i > 0 ? place(0, i) : null}
         />
       ))}
-      {count > 1 ? <RegionKey right={size.width - (size.narrow ? 0 : 10)} /> : null}
+      {count > 1 ? (
+        <RegionKey right={size.width - (size.narrow ? 0 : 10)} truths={truths} overlay={overlay} />
+      ) : null}
     </svg>
   );
 }
 
 interface JointPanelProps {
-  x: Marginal;
-  y: Marginal;
+  x: ShownParameter;
+  y: ShownParameter;
+  joint: ShownJoint;
   place: PanelPlace;
   /** Leftmost of its row: the vertical axis has its numbers; on a phone none beside the name. */
   labelled: boolean;
 }
 
-function JointPanel({ x, y, place, labelled }: JointPanelProps) {
+function JointPanel({ x: column, y: row, joint: { own, over }, place, labelled }: JointPanelProps) {
+  const clip = useId();
   const { left, top: upper, size: side } = place;
-  const both = useMemo(() => joint(x, y), [x, y]);
+  const { axis: ax } = column.marginal;
+  const { axis: ay } = row.marginal;
   const paths = useMemo(
-    () => jointPaths(x, y, both, { left, top: upper, size: side }),
-    [x, y, both, left, upper, side],
+    () => jointPaths(ax, ay, own, { left, top: upper, size: side }),
+    [ax, ay, own, left, upper, side],
   );
-  const { toX, toY } = panelScales(x.axis, y.axis, place);
+  const { toX, toY } = panelScales(ax, ay, place);
   return (
     <g>
       <path className="dots" d={paths.dots} />
@@ -111,11 +138,31 @@ function JointPanel({ x, y, place, labelled }: JointPanelProps) {
       <path className="b68" d={paths.inner} />
       <path className="c95" d={paths.outer} />
       <path className="c68" d={paths.inner} />
+      {over || column.truth !== null || row.truth !== null ? (
+        <clipPath id={clip}>
+          <rect x={left} y={upper} width={side} height={side} />
+        </clipPath>
+      ) : null}
+      {over ? (
+        <g clipPath={`url(#${clip})`}>
+          {over.regions.map((rings, i) => (
+            <path key={i} className={i ? 'over wide' : 'over'} d={ringsPath(rings, toX, toY)} />
+          ))}
+        </g>
+      ) : null}
+      <g clipPath={`url(#${clip})`}>
+        {column.truth === null ? null : (
+          <path className="truth" d={`M${toX(column.truth).toFixed(1)} ${upper}v${side}`} />
+        )}
+        {row.truth === null ? null : (
+          <path className="truth" d={`M${left} ${toY(row.truth).toFixed(1)}h${side}`} />
+        )}
+      </g>
       <path className="ax" d={`M${left} ${upper}v${side}h${side}`} />
-      {panelTicks(x, side).map((tick) => (
+      {panelTicks(column.marginal, side).map((tick) => (
         <path key={`x${tick.value}`} className="tk" d={`M${toX(tick.value).toFixed(1)} ${upper + side}v-4`} />
       ))}
-      {panelTicks(y, side).map((tick) => (
+      {panelTicks(row.marginal, side).map((tick) => (
         <g key={`y${tick.value}`}>
           <path className="tk" d={`M${left} ${toY(tick.value).toFixed(1)}h4`} />
           {labelled && (left > 50 || toY(tick.value) > upper + 24) ? (
@@ -130,9 +177,17 @@ function JointPanel({ x, y, place, labelled }: JointPanelProps) {
 }
 
 function DiagonalPanel({ one, place }: { one: ShownParameter; place: PanelPlace }) {
+  const clip = useId();
   const { left, top: upper, size: side } = place;
-  const { parameter, marginal: m, text } = one;
-  const paths = useMemo(() => marginalPaths(m, { left, top: upper, size: side }), [m, left, upper, side]);
+  const { parameter, marginal: m, text, truth, over } = one;
+  const { paths, laid } = useMemo(() => {
+    const at = { left, top: upper, size: side };
+    const highest = Math.max(highestOf(m), over ? highestOf(over) : 0);
+    return {
+      paths: marginalPaths(m, at, m.axis, highest),
+      laid: over ? marginalPaths(over, at, m.axis, highest).line : null,
+    };
+  }, [m, over, left, upper, side]);
   const { toX } = panelScales(m.axis, m.axis, place);
   const right = left + side;
   return (
@@ -140,6 +195,19 @@ function DiagonalPanel({ one, place }: { one: ShownParameter; place: PanelPlace 
       <path className="b68" d={paths.area} />
       <path className={parameter.field === null ? 'sum' : `ln f${parameter.field + 1}`} d={paths.line} />
       <path className="lead" d={paths.median} />
+      {laid || truth !== null ? (
+        <>
+          <clipPath id={clip}>
+            <rect x={left} y={upper} width={side} height={side} />
+          </clipPath>
+          <g clipPath={`url(#${clip})`}>
+            {laid ? <path className="over" d={laid} /> : null}
+            {truth === null ? null : (
+              <path className="truth" d={`M${toX(truth).toFixed(1)} ${upper}v${side}`} />
+            )}
+          </g>
+        </>
+      ) : null}
       <path className="ax" d={`M${left} ${upper + side}h${side}`} />
       {panelTicks(m, side).map((tick) => (
         <path key={tick.value} className="tk" d={`M${toX(tick.value).toFixed(1)} ${upper + side}v-4`} />
@@ -203,21 +271,34 @@ function OuterNames({
   );
 }
 
-/** What the two regions hold; no box round it. */
-function RegionKey({ right }: { right: number }) {
+/** What regions and lines are; no box round it. */
+function RegionKey({ right, truths, overlay }: { right: number; truths: boolean; overlay?: string }) {
+  const rows = [
+    { line: '', marks: ['b68', 'c68'], words: '68\u202f% of the draws' },
+    { line: '', marks: ['b95', 'c95'], words: '95\u202f% of the draws' },
+    ...(truths ? [{ line: 'truth', marks: null, words: 'put in' }] : []),
+    ...(overlay ? [{ line: 'over', marks: null, words: overlay }] : []),
+  ];
   const x = right - 154;
   return (
     <g>
-      <path className="b68" d={`M${x} 32h30v14h-30z`} />
-      <path className="c68" d={`M${x} 32h30v14h-30z`} />
-      <text className="an" x={x + 40} y={44}>
-        {'68\u202f% of the draws'}
-      </text>
-      <path className="b95" d={`M${x} 56h30v14h-30z`} />
-      <path className="c95" d={`M${x} 56h30v14h-30z`} />
-      <text className="an" x={x + 40} y={68}>
-        {'95\u202f% of the draws'}
-      </text>
+      {rows.map((row, i) => {
+        const middle = 39 + 24 * i;
+        return (
+          <g key={row.words}>
+            {row.marks ? (
+              row.marks.map((mark) => (
+                <path key={mark} className={mark} d={`M${x} ${middle - 7}h30v14h-30z`} />
+              ))
+            ) : (
+              <path className={row.line} d={`M${x} ${middle}h30`} />
+            )}
+            <text className="an" x={x + 40} y={middle + 5}>
+              {row.words}
+            </text>
+          </g>
+        );
+      })}
     </g>
   );
 }

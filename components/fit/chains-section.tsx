@@ -13,7 +13,8 @@ import { chainsSentence } from '@/components/notebook/fold-sentences';
 import { chainsState, isOutdated } from '@/components/notebook/section-states';
 import type { SectionFold } from '@/components/notebook/use-folds';
 import { formatCount } from '@/lib/figures/format';
-import type { Draws, Fit, Notebook } from '@/lib/schemas';
+import type { Fit, Notebook } from '@/lib/schemas';
+import type { FigureDraws } from './draws';
 import { ConvergenceTable } from './convergence-table';
 import { FitControls } from './fit-controls';
 import { FitList } from './fit-list';
@@ -27,7 +28,7 @@ import type { Connection } from './use-fit-events';
 export interface ChainsSectionProps {
   notebook: Notebook;
   fit: Fit | null;
-  draws: Draws | null;
+  draws: FigureDraws | null;
   connection: Connection;
   quantities: ReadonlyMap<string, Quantity>;
   defaults: FitDefaults;

@@ -8,8 +8,8 @@ import { keepPoints } from '@/components/notebook/kept-points';
 import { compilePrediction, judge } from '@/components/notebook/prediction';
 import { predictiveBand } from '@/lib/inference/prior-predictive';
 import { formatCount, formatNumber } from '@/lib/figures/format';
-import type { Draws, Fit, Measurement } from '@/lib/schemas';
-import { bestIndex, drawValues, keptColumn, someKept } from './draws';
+import type { Fit, Measurement } from '@/lib/schemas';
+import { bestIndex, drawValues, keptColumn, someKept, type FigureDraws } from './draws';
 import { medianMcse } from './marginal-table';
 import type { Quantity } from './quantities';
 
@@ -37,7 +37,7 @@ export function Corner({
   number,
 }: {
   fit: Fit;
-  draws: Draws;
+  draws: FigureDraws;
   quantities: ReadonlyMap<string, Quantity>;
   number: number;
 }) {
@@ -87,7 +87,7 @@ export function BestFit({
   number,
 }: {
   fit: Fit;
-  draws: Draws;
+  draws: FigureDraws;
   measurement: Measurement;
   number: number;
 }) {

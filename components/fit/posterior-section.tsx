@@ -11,7 +11,8 @@ import { posteriorState } from '@/components/notebook/section-states';
 import { templateInWords } from '@/components/notebook/template-words';
 import type { SectionFold } from '@/components/notebook/use-folds';
 import { counted } from '@/components/words/counts';
-import type { Draws, Fit, Measurement, Notebook } from '@/lib/schemas';
+import type { Fit, Measurement, Notebook } from '@/lib/schemas';
+import type { FigureDraws } from './draws';
 import { MarginalTable } from './marginal-table';
 import { BestFit, Corner, posteriorSentence } from './posterior-figures';
 import type { Quantity } from './quantities';
@@ -20,7 +21,7 @@ export interface PosteriorSectionProps {
   notebook: Notebook;
   measurement: Measurement;
   fit: Fit | null;
-  draws: Draws | null;
+  draws: FigureDraws | null;
   quantities: ReadonlyMap<string, Quantity>;
   fold: SectionFold;
 }

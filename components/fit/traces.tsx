@@ -4,14 +4,14 @@ import dynamic from 'next/dynamic';
 import { useMemo } from 'react';
 import { capital, inWords, listed } from '@/components/words/counts';
 import { formatCount } from '@/lib/figures/format';
-import type { Draws, Fit } from '@/lib/schemas';
-import { byReplica } from './draws';
+import type { Fit } from '@/lib/schemas';
+import { byReplica, type FigureDraws } from './draws';
 import type { Quantity } from './quantities';
 
 const TraceFigure = dynamic(() => import('@/components/figures/trace-figure').then((m) => m.TraceFigure));
 
 /** What traces are drawn of: the masses; without any, the first two parameters. */
-export function tracedQuantities(quantities: ReadonlyMap<string, Quantity>, draws: Draws): Quantity[] {
+export function tracedQuantities(quantities: ReadonlyMap<string, Quantity>, draws: FigureDraws): Quantity[] {
   const sampled = [...quantities.values()].filter(({ name, derived }) => !derived && draws.columns[name]);
   const masses = sampled.filter(({ role }) => role === 'mass');
   return masses.length ? masses : sampled.slice(0, 2);
@@ -24,7 +24,7 @@ export function Traces({
   number,
 }: {
   fit: Fit;
-  draws: Draws;
+  draws: FigureDraws;
   quantities: ReadonlyMap<string, Quantity>;
   number: number;
 }) {
@@ -36,7 +36,7 @@ export function Traces({
   if (!traced.length) return null;
   const { warmup, warmupTotal } = fit.progress;
   // The draws are read less often than the fit's state: the sentence is of those that are drawn.
-  const last = draws.draw.reduce((most, draw) => Math.max(most, draw), 0);
+  const last = Array.from(draws.draw).reduce((most, draw) => Math.max(most, draw), 0);
   const kept = Math.max(0, Math.min(fit.progress.draws, last + draws.stride - warmupTotal));
   const what =
     traced[0].role === 'mass'

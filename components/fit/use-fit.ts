@@ -1,8 +1,9 @@
 'use client';
 
 import useSWR from 'swr';
-import { read } from '@/components/api/request';
-import type { Draws, Fit } from '@/lib/schemas';
+import { read, readBytes } from '@/components/api/request';
+import type { Fit } from '@/lib/schemas';
+import { unpackDraws, type FigureDraws } from './draws';
 import { isRunning } from './fit-words';
 import { useFitEvents, type Connection } from './use-fit-events';
 
@@ -26,20 +27,27 @@ export function useFit(id: string | null, initial: Fit | null): FitHandle {
   return { fit, connection, put: (next) => void mutate(next, { revalidate: false }) };
 }
 
-/** Draws that are fetched for figures: fewer while they still change. */
-const most = { running: 4_000, ended: 20_000 };
+/**
+ * Draws that are fetched for figures: fewer while they still change. Eight thousand are as many as a fit at the gate has
+ * effective ones; the corner view takes all on demand.
+ */
+const most = { running: 4_000, ended: 8_000, all: 200_000 };
 const between = 5_000;
 
-/** Draws of a fit for figures; while it runs they are read again every five seconds. */
-export function useDraws(fit: Fit | null): Draws | null {
+/**
+ * Draws of a fit for figures; while it runs they are read again every five seconds.
+ *
+ * @param wish 'all' for every stored draw of an ended fit, up to 200,000
+ */
+export function useDraws(fit: Fit | null, wish: 'some' | 'all' = 'some'): FigureDraws | null {
   const running = fit !== null && isRunning(fit.status);
   const some = fit !== null && fit.progress.warmup + fit.progress.draws > 0;
-  const max = running ? most.running : most.ended;
+  const max = running ? most.running : wish === 'all' ? most.all : most.ended;
   // The count of draws is part of the key of an ended fit: one that was extended is read again.
   const made = running ? 'running' : (fit?.progress.draws ?? 0);
   const { data } = useSWR(
-    some && fit ? [`/api/v1/fits/${fit.id}/draws?max=${max}`, made] : null,
-    ([path]) => read<Draws>(path),
+    some && fit ? [`/api/v1/fits/${fit.id}/draws?max=${max}&format=float32`, made] : null,
+    async ([path]) => unpackDraws(await readBytes(path)),
     { refreshInterval: running ? between : 0, revalidateOnFocus: false, keepPreviousData: true },
   );
   return some ? (data ?? null) : null;

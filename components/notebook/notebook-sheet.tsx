@@ -4,7 +4,7 @@ import { useEffect, useEffectEvent, useMemo, useState } from 'react';
 import useSWR from 'swr';
 import { read } from '@/components/api/request';
 import { ChainsSection } from '@/components/fit/chains-section';
-import { bestIndex, drawValues } from '@/components/fit/draws';
+import { bestIndex, drawValues, type FigureDraws } from '@/components/fit/draws';
 import { isRunning } from '@/components/fit/fit-words';
 import { fixedValues } from '@/components/fit/posterior-figures';
 import { PosteriorSection } from '@/components/fit/posterior-section';
@@ -18,7 +18,7 @@ import { PageHead } from '@/components/ui/section';
 import { Sheet, SheetRow } from '@/components/ui/sheet';
 import { listed } from '@/components/words/counts';
 import { shortName } from '@/components/words/people';
-import type { Draws, Fit, Measurement, Notebook } from '@/lib/schemas';
+import type { Fit, Measurement, Notebook } from '@/lib/schemas';
 import { Abstract } from './abstract';
 import { keepPoints } from './kept-points';
 import type { DrawnFormula } from './live-formula';
@@ -48,7 +48,7 @@ function authors(notebook: Notebook): string[] {
   return [...new Set([notebook.createdBy, ...notebook.record.map(({ by }) => by)])].map(shortName);
 }
 
-function bestOf(fit: Fit | null, draws: Draws | null): NamedPoint | null {
+function bestOf(fit: Fit | null, draws: FigureDraws | null): NamedPoint | null {
   if (!fit || !draws) return null;
   const index = bestIndex(draws);
   return index < 0

@@ -22,7 +22,7 @@ function onPrint(listener: () => void) {
 }
 
 /** True while the page is laid out for paper, which shows everything. */
-function usePrinting(): boolean {
+export function usePrinting(): boolean {
   return useSyncExternalStore(
     onPrint,
     () => window.matchMedia('print').matches,

@@ -1,4 +1,4 @@
-import { contourPaths } from './contour-paths';
+import { contourRings, ringsPath } from './contour-paths';
 import { density1d, density2d, densityAtDraws, gridAxis, type GridAxis } from './density';
 import { decimalsByMcse, formatNumber } from './format';
 import { massLevels } from './mass-levels';
@@ -15,7 +15,6 @@ export interface Marginal {
   median: number;
   q16: number;
   q84: number;
-  draws: ArrayLike<number>;
 }
 
 /** Density, median and 68 % interval (16 to 84 % quantiles, type 7) of one parameter's draws. */
@@ -28,34 +27,55 @@ export function marginal(draws: ArrayLike<number>): Marginal {
     median: quantileOfSorted(sorted, 0.5),
     q16: quantileOfSorted(sorted, 0.16),
     q84: quantileOfSorted(sorted, 0.84),
-    draws,
   };
 }
 
-/** Joint density of two parameters and the levels that enclose 68 and 95 % of their draws. */
+/** What is known of two parameters' draws together. */
 export interface Joint {
-  density: Float64Array;
+  /** Levels of the smoothed density that enclose 68 and 95 % of the draws, in draws a cell. */
   levels: number[];
-  /** Indices of at most 150 draws outside the wider contour, spread evenly over all such. */
-  outside: number[];
+  /** Outline of the region above each level, in the parameters' units. */
+  regions: Float64Array[][];
+  /** Share of the draws on or above each level, counted. */
+  enclosed: number[];
+  /** At most 150 draws outside the wider region, spread evenly over all such: x₀, y₀, x₁, y₁, … */
+  outside: Float64Array;
 }
 
 const mostDots = 150;
 
-/** @see massLevels: the levels are quantiles of the smoothed density at the draws themselves. */
-export function joint(x: Marginal, y: Marginal): Joint {
-  const density = density2d(x.draws, y.draws, x.axis, y.axis);
-  const atDraws = densityAtDraws(density, x.draws, y.draws, x.axis, y.axis);
+/**
+ * Smoothed joint density of two parameters' draws, as the regions that enclose 68 and 95 % of them.
+ *
+ * @param x draws; `y` draws of the same length
+ * @param ax grid of x; `ay` of y
+ * @see massLevels: the levels are quantiles of the smoothed density at the draws themselves.
+ */
+export function joint(x: ArrayLike<number>, y: ArrayLike<number>, ax: GridAxis, ay: GridAxis): Joint {
+  const density = density2d(x, y, ax, ay);
+  const atDraws = densityAtDraws(density, x, y, ax, ay);
   const levels = massLevels(atDraws, cornerMasses, 'draws');
+  const above = levels.map(() => 0);
   const outside: number[] = [];
-  for (let i = 0; i < atDraws.length; i++)
-    if (atDraws[i] < levels[1] && inGrid(x.draws[i], x.axis) && inGrid(y.draws[i], y.axis)) outside.push(i);
-  const every = Math.max(1, outside.length / mostDots);
-  const kept = Array.from(
-    { length: Math.min(mostDots, outside.length) },
-    (_, i) => outside[Math.floor(i * every)],
-  );
-  return { density, levels, outside: kept };
+  for (let i = 0; i < atDraws.length; i++) {
+    levels.forEach((level, l) => {
+      if (atDraws[i] >= level) above[l]++;
+    });
+    if (atDraws[i] < levels[1] && inGrid(x[i], ax) && inGrid(y[i], ay)) outside.push(i);
+  }
+  const count = Math.min(mostDots, outside.length);
+  const dots = new Float64Array(2 * count);
+  for (let k = 0; k < count; k++) {
+    const i = outside[Math.floor((k * outside.length) / count)];
+    dots[2 * k] = x[i];
+    dots[2 * k + 1] = y[i];
+  }
+  return {
+    levels,
+    regions: contourRings(density, ax, ay, levels),
+    enclosed: above.map((n) => (atDraws.length ? n / atDraws.length : 0)),
+    outside: dots,
+  };
 }
 
 function inGrid(value: number, axis: GridAxis): boolean {
@@ -78,23 +98,36 @@ export function panelScales(x: GridAxis, y: GridAxis, place: PanelPlace) {
 }
 
 /** Paths of an off-diagonal panel: both regions and the single draws outside. */
-export function jointPaths(x: Marginal, y: Marginal, both: Joint, place: PanelPlace) {
-  const { toX, toY } = panelScales(x.axis, y.axis, place);
-  const [inner, outer] = contourPaths(both.density, x.axis, y.axis, both.levels, toX, toY);
-  const dots = both.outside
-    .map((i) => `M${toX(x.draws[i]).toFixed(1)} ${toY(y.draws[i]).toFixed(1)}h.01`)
-    .join('');
+export function jointPaths(x: GridAxis, y: GridAxis, both: Joint, place: PanelPlace) {
+  const { toX, toY } = panelScales(x, y, place);
+  const [inner, outer] = both.regions.map((rings) => ringsPath(rings, toX, toY));
+  let dots = '';
+  for (let i = 0; i < both.outside.length; i += 2)
+    dots += `M${toX(both.outside[i]).toFixed(1)} ${toY(both.outside[i + 1]).toFixed(1)}h.01`;
   return { inner, outer, dots };
 }
 
-/** Paths of a diagonal panel: density, the area of the 68 % interval below it and the median. */
-export function marginalPaths(m: Marginal, place: PanelPlace) {
+/** Highest value of a density, or 1 where it is nothing. */
+export const highestOf = ({ density }: Marginal): number =>
+  density.reduce((top, v) => Math.max(top, v), 0) || 1;
+
+/**
+ * Paths of a diagonal panel: density, the area of the 68 % interval below it and the median.
+ *
+ * @param on axis of the panel, where it isn't that of the marginal itself
+ * @param highest density that reaches the panel's head, in 1/unit of the parameter
+ */
+export function marginalPaths(
+  m: Marginal,
+  place: PanelPlace,
+  on: GridAxis = m.axis,
+  highest: number = highestOf(m),
+) {
   const { axis, density } = m;
-  const highest = density.reduce((top, v) => Math.max(top, v), 0) || 1;
   const base = place.top + place.size;
   const head = 0.92 * place.size;
   const step = (axis.hi - axis.lo) / axis.cells;
-  const toX = (v: number) => place.left + (place.size * (v - axis.lo)) / (axis.hi - axis.lo);
+  const { toX } = panelScales(on, on, place);
   const centre = (i: number) => axis.lo + (i + 0.5) * step;
   const heightAt = (v: number) => {
     const u = Math.min(axis.cells - 1, Math.max(0, (v - axis.lo) / step - 0.5));

@@ -8,6 +8,7 @@ import {
   createNotebookSchema,
   createTokenSchema,
   createdSchema,
+  drawsFormats,
   drawsSchema,
   extendFitSchema,
   evaluatedSchema,
@@ -322,9 +323,13 @@ export const routes = {
     answer: fitSchema,
   },
   'GET /fits/:id/draws': {
-    summary: 'Thinned draws for figures.',
+    summary:
+      'Thinned draws for figures. With format=float32 they come packed, little-endian: the length of a JSON head (uint32), the head, the draws (uint32), log-likelihoods and columns (float32).',
     permission: 'fit.read',
-    query: z.object({ max: z.coerce.number<string>().int().min(100).max(200_000).default(20_000) }),
+    query: z.object({
+      max: z.coerce.number<string>().int().min(100).max(200_000).default(20_000),
+      format: z.enum(drawsFormats).default('json'),
+    }),
     answer: drawsSchema,
   },
   'GET /fits/:id/samples': {

@@ -158,6 +158,20 @@ export const drawsSchema = z.object({
 });
 export type Draws = z.infer<typeof drawsSchema>;
 
+export const drawsFormats = ['json', 'float32'] as const;
+
+/** Head of the packed draws (`format=float32`). */
+export const drawsHeadSchema = z.object({
+  replicas: z.number().int(),
+  stride: z.number().int(),
+  /** Recorded draws below this one are of warm-up. */
+  warmup: z.number().int(),
+  /** Rows of each replica. */
+  rows: z.array(z.number().int()),
+  columns: z.array(z.string()),
+});
+export type DrawsHead = z.infer<typeof drawsHeadSchema>;
+
 export const sampleFormats = ['csv', 'ecsv', 'parquet', 'npz'] as const;
 export type SampleFormat = (typeof sampleFormats)[number];
 

@@ -6,14 +6,11 @@ import {
   fitStatusSchema,
   sampleFormats,
   sha256Schema,
-  type Draws,
   type SampleFormat,
 } from '@/lib/schemas';
 import type { Access } from './access';
-import { fitBlocks, servedRows } from './fit-draws';
-import { fitColumns, fitModel, specOf, type FitColumns } from './fit-model';
+import { fitModel } from './fit-model';
 import { findDraws, type FitSource } from './fit-records';
-import { strideOf } from './fit-schedule';
 import { program } from './program';
 import { sampleChunks } from './sample-stream';
 import type { SampleSource } from './sample-table';
@@ -31,9 +28,6 @@ const storedOutputsSchema = z.object({
   program: z.string(),
   files: z.array(outputSchema).length(sampleFormats.length),
 });
-
-const columnsOf = ({ version, snapshot }: FitSource): FitColumns =>
-  fitColumns(specOf(fitModel(version, snapshot)));
 
 const sourceOf = ({ fit, version, snapshot }: FitSource): SampleSource => ({
   fitId: fit.id,
@@ -107,51 +101,4 @@ export async function sampleOutputs(source: FitSource): Promise<StoredOutput[]> 
     await Fit.update({ outputs: { ...made, files } }, { where: { id: fit.id, draws: fit.draws } });
   }
   return files;
-}
-
-/** Seven digits are more than a figure can show. */
-const shown = (value: number): number => Number(value.toPrecision(7));
-
-/** Draws of the fit of `access` for figures, at most `max` of all replicas together. */
-export async function readDraws(access: Access, max: number): Promise<Draws> {
-  const source = await findDraws(access);
-  const { fit, snapshot } = source;
-  const { warmup, replicas } = snapshot;
-  const columns = columnsOf(source);
-  const stored = strideOf(fit.draws - warmup);
-  const ofWarmup = Math.min(fit.draws, warmup);
-  const kept = Math.max(0, fit.draws - warmup);
-  const countAt = (stride: number) => Math.ceil(ofWarmup / stride) + Math.ceil(kept / stride);
-  let stride = stored;
-  while (replicas * countAt(stride) > max && stride < fit.draws) stride += stored;
-
-  const names = [...columns.sampled, ...columns.derived];
-  const values = names.map((): number[] => []);
-  const answer: Draws = {
-    replicas,
-    stride,
-    replica: [],
-    draw: [],
-    warmup: [],
-    logLikelihood: [],
-    columns: Object.fromEntries(names.map((name, i) => [name, values[i]])),
-  };
-  const derived = new Float64Array(columns.derived.length);
-  for (let replica = 0; replica < replicas; replica++) {
-    for await (const block of fitBlocks(fit.id, replica, fit.draws)) {
-      for (const { draw, row } of servedRows(block, { warmup, draws: fit.draws })) {
-        const inWarmup = draw < warmup;
-        if ((inWarmup ? draw : draw - warmup) % stride !== 0) continue;
-        const offset = row * block.width;
-        columns.derive(block.values, offset, derived);
-        answer.replica.push(replica);
-        answer.draw.push(draw);
-        answer.warmup.push(inWarmup ? 1 : 0);
-        answer.logLikelihood.push(shown(block.values[offset]));
-        columns.sampled.forEach((_, i) => values[i].push(shown(block.values[offset + 2 + i])));
-        derived.forEach((value, i) => values[columns.sampled.length + i].push(shown(value)));
-      }
-    }
-  }
-  return answer;
 }

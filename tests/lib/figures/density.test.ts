@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest';
-import { contourPaths } from '@/lib/figures/contour-paths';
+import { contourRings, ringsPath } from '@/lib/figures/contour-paths';
 import { cornerMasses, joint, jointPaths, marginal, marginalText } from '@/lib/figures/corner';
+import { cornerSketcher } from '@/lib/figures/corner-sketch';
 import { density1d, density2d, densityAtDraws, gridAxis } from '@/lib/figures/density';
 import { massLevels } from '@/lib/figures/mass-levels';
 import { quantileOfSorted, sortedFinite } from '@/lib/figures/quantiles';
@@ -45,7 +46,7 @@ describe('levels of enclosed mass', () => {
     (rho) => {
       const { x, y } = normalPairs(40_000, rho);
       const [mx, my] = [marginal(x), marginal(y)];
-      const { levels } = joint(mx, my);
+      const { levels } = joint(x, y, mx.axis, my.axis);
       const density = density2d(x, y, mx.axis, my.axis);
       // An independent sample of the same normal tells how much true mass the regions hold.
       const test = normalPairs(60_000, rho, 7919);
@@ -94,8 +95,8 @@ describe('the smoothed density', () => {
     const axis = gridAxis(Float64Array.of(2, 2, 2));
     expect([axis.lo, axis.hi]).toEqual([1.5, 2.5]);
     const [place] = [{ left: 0, top: 0, size: 100 }];
-    const same = marginal([2, 2, 2]);
-    expect(jointPaths(same, same, joint(same, same), place).inner).toMatch(/^M.*Z$/);
+    const { axis: one } = marginal([2, 2, 2]);
+    expect(jointPaths(one, one, joint([2, 2, 2], [2, 2, 2], one, one), place).inner).toMatch(/^M.*Z$/);
   });
 });
 
@@ -107,11 +108,9 @@ describe('contours', () => {
     const grid = Float64Array.from({ length: n * n }, (_, k) =>
       Math.exp(-(at(k % n) ** 2 + at(Math.floor(k / n)) ** 2) / 2),
     );
-    const [path] = contourPaths(
-      grid,
-      axis,
-      axis,
-      [0.05],
+    const [rings] = contourRings(grid, axis, axis, [0.05]);
+    const path = ringsPath(
+      rings,
       (v) => 100 * v,
       (v) => 100 * v,
     );
@@ -128,10 +127,10 @@ describe('contours', () => {
     const draws = Array.from({ length: 5 }, (_, i) => normalPairs(100_000, 0, 100 + i).x);
     // Processor time, not the clock on the wall, which other work on the machine stretches.
     const start = process.cpuUsage();
-    const marginals = draws.map((d) => marginal(d));
+    const { marginals, joints } = cornerSketcher(draws)([0, 1, 2, 3, 4]);
     const place = { left: 0, top: 0, size: 125 };
-    const paths = marginals.flatMap((y, r) =>
-      marginals.slice(0, r).map((x) => jointPaths(x, y, joint(x, y), place)),
+    const paths = joints.flatMap((row, r) =>
+      row.map((both, c) => jointPaths(marginals[c].axis, marginals[r].axis, both, place)),
     );
     const spent = process.cpuUsage(start);
     const seconds = (spent.user + spent.system) / 1e6;
