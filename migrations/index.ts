@@ -29,6 +29,7 @@ import * as mailAboutFits from './0028-mail-about-fits';
 import * as invitationsSent from './0029-invitations-sent';
 import * as auditEventsByTime from './0030-audit-events-by-time';
 import * as usersSignIn from './0031-users-sign-in';
+import * as measurementTruth from './0034-measurement-truth';
 import type { MigrationContext } from './table';
 
 interface Migration {
@@ -66,6 +67,7 @@ const migrations: readonly (readonly [string, Migration])[] = [
   ['0029-invitations-sent', invitationsSent],
   ['0030-audit-events-by-time', auditEventsByTime],
   ['0031-users-sign-in', usersSignIn],
+  ['0034-measurement-truth', measurementTruth],
 ];
 
 /** The migrator of an open database; run it with one process at a time. */

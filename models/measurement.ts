@@ -46,6 +46,7 @@ export class MeasurementVersion extends Model<
   declare checks: Record<string, unknown>[];
   declare points: Buffer;
   declare covariance: Buffer;
+  declare truth: Record<string, number> | null;
   declare createdBy: string;
   declare createdAt: Date;
 }
@@ -82,6 +83,7 @@ export function initMeasurementModels(sequelize: Sequelize): void {
       checks: json(),
       points: bytes(),
       covariance: bytes(),
+      truth: json(true),
       createdBy: foreignKey(),
       createdAt: instant(),
     },

@@ -26,7 +26,7 @@ export interface MeasuredPoints {
 }
 
 export interface Curve {
-  role: 'sum' | 'field' | 'background' | 'envelope' | 'best';
+  role: 'sum' | 'field' | 'background' | 'envelope' | 'best' | 'over';
   /** Name in the key. */
   label: string;
   kappa: ArrayLike<number>;
@@ -59,7 +59,7 @@ export interface PointsFigureProps extends FigureFacts {
 }
 
 /** From the back to the front, whatever order the key has. */
-const depth: readonly Curve['role'][] = ['envelope', 'background', 'field', 'best', 'sum'];
+const depth: readonly Curve['role'][] = ['envelope', 'background', 'field', 'best', 'sum', 'over'];
 
 /** Measured points with errors on log κ; curves, a band, and residuals below on the same axis. */
 export function PointsFigure(props: PointsFigureProps) {

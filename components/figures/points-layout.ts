@@ -9,6 +9,7 @@ const lineClass = {
   best: 'sum',
   background: 'bg',
   envelope: 'env',
+  over: 'over',
 } as const;
 
 /** Class of a curve's line; a field's carries its colour and dash. */

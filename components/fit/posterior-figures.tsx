@@ -1,7 +1,7 @@
 'use client';
 
 import dynamic from 'next/dynamic';
-import { useMemo } from 'react';
+import { useMemo, useState } from 'react';
 import { Num } from '@/components/ui/num';
 import { capital, counted, inWords } from '@/components/words/counts';
 import { keepPoints } from '@/components/notebook/kept-points';
@@ -9,15 +9,12 @@ import { compilePrediction, judge } from '@/components/notebook/prediction';
 import { predictiveBand } from '@/lib/inference/prior-predictive';
 import { formatCount, formatNumber } from '@/lib/figures/format';
 import type { Fit, Measurement } from '@/lib/schemas';
-import { bestIndex, drawValues, keptColumn, someKept, type FigureDraws } from './draws';
-import { medianMcse } from './marginal-table';
-import type { Quantity } from './quantities';
+import { bestIndex, drawValues, someKept, type FigureDraws } from './draws';
+import { curveOf, type OverlayCurve } from './overlay';
 
 const PointsFigure = dynamic(() => import('@/components/figures/points-figure').then((m) => m.PointsFigure));
-const CornerFigure = dynamic(() => import('@/components/figures/corner-figure').then((m) => m.CornerFigure));
+const OverlayDrop = dynamic(() => import('./overlay-drop').then((m) => m.OverlayDrop));
 
-/** Parameters shown at first. */
-const atFirst = 5;
 /** Draws behind the band of predictions. */
 const bandDraws = 400;
 
@@ -27,56 +24,6 @@ export function fixedValues({ snapshot }: Pick<Fit, 'snapshot'>): Record<string,
     Object.entries(snapshot.priors).flatMap(([name, prior]) =>
       prior.kind === 'fixed' ? [[name, prior.value] as const] : [],
     ),
-  );
-}
-
-export function Corner({
-  fit,
-  draws,
-  quantities,
-  number,
-}: {
-  fit: Fit;
-  draws: FigureDraws;
-  quantities: ReadonlyMap<string, Quantity>;
-  number: number;
-}) {
-  const shown = useMemo(
-    () =>
-      [...quantities.values()].flatMap((quantity) => {
-        const values = keptColumn(draws, quantity.name);
-        const varies = values.some((value) => value !== values[0]);
-        return values.length && varies ? [{ quantity, values }] : [];
-      }),
-    [quantities, draws],
-  );
-  if (!shown.length) return null;
-  const errorOf = (name: string) =>
-    medianMcse(fit.diagnostics.find(({ parameter }) => parameter === name)?.mcseMean ?? 0);
-  const sampled = shown.filter(({ quantity }) => !quantity.derived);
-  const kept = shown[0].values.length;
-  return (
-    <CornerFigure
-      number={number}
-      label="Posterior densities and joint regions"
-      fileName={`fit-${fit.number}-corner`}
-      parameters={shown.map(({ quantity: { name, symbol, label, field } }) => ({
-        name,
-        symbol,
-        label,
-        field,
-      }))}
-      draws={shown.map(({ values }) => values)}
-      initial={sampled.slice(0, atFirst).map(({ quantity }) => quantity.name)}
-      mcse={shown.map(({ quantity }) => errorOf(quantity.name))}
-      caption={
-        <>
-          Posterior of fit {fit.number}, revision {fit.revision}, from {formatCount(kept)} of its draws:
-          contours enclose 68 and 95 % of them, single draws outside; on the diagonal the median and the 68 %
-          interval.
-        </>
-      }
-    />
   );
 }
 
@@ -92,6 +39,7 @@ export function BestFit({
   number: number;
 }) {
   const { snapshot } = fit;
+  const [laid, setLaid] = useState<(OverlayCurve & { label: string }) | null>(null);
   const drawn = useMemo(() => {
     const points = keepPoints(measurement, snapshot.cuts);
     const best = bestIndex(draws);
@@ -117,32 +65,42 @@ export function BestFit({
   if (!drawn) return null;
   const { points, kappa, y, band, count, free, chiSquare } = drawn;
   return (
-    <PointsFigure
-      number={number}
-      label="Best draw and range of predictions over the points"
-      fileName={`fit-${fit.number}-best`}
-      points={{
-        kappa: points.kappa,
-        value: points.S,
-        error: points.sigma,
-        lo: points.lo ?? undefined,
-        hi: points.hi ?? undefined,
-      }}
-      curves={[{ role: 'best', label: 'best draw', kappa, y }]}
-      band={{ kappa, ...band, label: '68 and 95 % of the draws' }}
-      residuals={drawn.residuals}
-      caption={
-        <>
-          The draw of highest likelihood over the {counted(points.rows.length, 'bin')}, with the range of
-          predictions of {formatCount(count)} draws; below, its residuals.{' '}
-          <Num>
-            <i className="sym">χ</i>² = {formatNumber(chiSquare, 1)}
-          </Num>
-          {points.factor ? '' : ' from the errors alone'} for {counted(points.rows.length, 'bin')} and{' '}
-          {free === 0 ? 'no free parameter' : counted(free, 'free parameter')}.
-        </>
-      }
-    />
+    <OverlayDrop
+      what="a curve (κ, S)"
+      laid={laid?.label ?? null}
+      onTable={(table, label) => setLaid({ label, ...curveOf(table) })}
+      onClear={() => setLaid(null)}
+    >
+      <PointsFigure
+        number={number}
+        label="Best draw and range of predictions over the points"
+        fileName={`fit-${fit.number}-best`}
+        points={{
+          kappa: points.kappa,
+          value: points.S,
+          error: points.sigma,
+          lo: points.lo ?? undefined,
+          hi: points.hi ?? undefined,
+        }}
+        curves={[
+          { role: 'best', label: 'best draw', kappa, y },
+          ...(laid ? [{ role: 'over' as const, ...laid }] : []),
+        ]}
+        band={{ kappa, ...band, label: '68 and 95 % of the draws' }}
+        residuals={drawn.residuals}
+        caption={
+          <>
+            The draw of highest likelihood over the {counted(points.rows.length, 'bin')}, with the range of
+            predictions of {formatCount(count)} draws; below, its residuals.{' '}
+            <Num>
+              <i className="sym">χ</i>² = {formatNumber(chiSquare, 1)}
+            </Num>
+            {points.factor ? '' : ' from the errors alone'} for {counted(points.rows.length, 'bin')} and{' '}
+            {free === 0 ? 'no free parameter' : counted(free, 'free parameter')}.
+          </>
+        }
+      />
+    </OverlayDrop>
   );
 }
 

@@ -14,7 +14,8 @@ import { counted } from '@/components/words/counts';
 import type { Fit, Measurement, Notebook } from '@/lib/schemas';
 import type { FigureDraws } from './draws';
 import { MarginalTable } from './marginal-table';
-import { BestFit, Corner, posteriorSentence } from './posterior-figures';
+import { Corner } from './posterior-corner';
+import { BestFit, posteriorSentence } from './posterior-figures';
 import type { Quantity } from './quantities';
 
 export interface PosteriorSectionProps {
@@ -79,6 +80,7 @@ export function PosteriorSection(props: PosteriorSectionProps) {
   const state = posteriorState(fit, notebook);
   const some = fit !== null && fit.progress.draws > 0;
   const sameVersion = notebook.measurement.version === measurement.version;
+  const truth = sameVersion ? measurement.truth : null;
   return (
     <Section
       id="posterior"
@@ -110,8 +112,12 @@ export function PosteriorSection(props: PosteriorSectionProps) {
       ) : (
         <>
           <p>{posteriorSentence(fit)}</p>
-          {draws ? <Corner fit={fit} draws={draws} quantities={quantities} number={5} /> : null}
-          {fit.diagnostics.length ? <MarginalTable fit={fit} quantities={quantities} number={2} /> : null}
+          {draws ? (
+            <Corner key={fit.id} fit={fit} draws={draws} quantities={quantities} number={5} truth={truth} />
+          ) : null}
+          {fit.diagnostics.length ? (
+            <MarginalTable fit={fit} quantities={quantities} number={2} truth={truth} />
+          ) : null}
           {draws && sameVersion ? (
             <BestFit fit={fit} draws={draws} measurement={measurement} number={6} />
           ) : null}

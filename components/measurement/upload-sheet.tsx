@@ -22,6 +22,7 @@ import { ChecksTable } from './checks-table';
 import { ColumnsTable } from './columns-table';
 import { DropZone } from './drop-zone';
 import { PreflightFigure } from './preflight-figure';
+import { parseTruth } from './truth-words';
 import { nameFromFile, preflightSentence, storeReason, uploadStates } from './upload-words';
 import { usePreflight, type ChosenFile } from './use-preflight';
 
@@ -41,6 +42,7 @@ export function UploadSheet({ groupId, groupName, email }: UploadSheetProps) {
   const [named, setNamed] = useState(false);
   const [description, setDescription] = useState('');
   const [simulated, setSimulated] = useState(false);
+  const [truth, setTruth] = useState('');
   const [share, setShare] = useState<number | null>(null);
   const [error, setError] = useState<RequestError | null>(null);
   const serial = useRef(0);
@@ -48,6 +50,7 @@ export function UploadSheet({ groupId, groupName, email }: UploadSheetProps) {
   const withCovariance = files.some(({ part }) => part === 'covariance');
   const { view, reading, fault } = usePreflight(files, mapping, withCovariance ? mockCount : null);
   const points = files.find(({ part }) => part === 'file');
+  const put = parseTruth(simulated ? truth : '');
   const now = { files: files.length, reading, named: name.trim() !== '', share };
   const states = uploadStates(view, now);
 
@@ -76,6 +79,7 @@ export function UploadSheet({ groupId, groupName, email }: UploadSheetProps) {
       ...(mapping ? { columns: mapping } : {}),
       ...(withCovariance && mockCount !== null ? { mockCount } : {}),
       ...(simulated ? { simulated } : {}),
+      ...('values' in put && put.values ? { truth: put.values } : {}),
     };
     form.append('meta', JSON.stringify(meta));
     try {
@@ -99,7 +103,7 @@ export function UploadSheet({ groupId, groupName, email }: UploadSheetProps) {
     [view, reading],
   );
 
-  const reason = storeReason(view, now);
+  const reason = 'fault' in put ? 'Mend the values that were put in first.' : storeReason(view, now);
   return (
     <Sheet
       contents={
@@ -242,6 +246,17 @@ export function UploadSheet({ groupId, groupName, email }: UploadSheetProps) {
               onChange={(event) => setSimulated(event.target.checked)}
               help="Made, not measured: its notebooks and results are marked as such."
             />
+            {simulated ? (
+              <Field
+                label="Values that were put in"
+                name="truth"
+                autoComplete="off"
+                value={truth}
+                onChange={(event) => setTruth(event.target.value)}
+                error={'fault' in put ? put.fault : detailAt(error, 'meta.truth')}
+                help="Such as mu1 = 1.3, g = 12: drawn over every posterior; may stay empty."
+              />
+            ) : null}
           </div>
           <Buttons note={share === null ? undefined : `${formatPercent(share)} has left this machine.`}>
             <Button kind="primary" type="submit" reason={reason}>
@@ -253,7 +268,7 @@ export function UploadSheet({ groupId, groupName, email }: UploadSheetProps) {
         <RequestMessage
           error={error}
           title="Nothing was stored"
-          shown={['meta.name', 'meta.description', 'meta.mockCount']}
+          shown={['meta.name', 'meta.description', 'meta.mockCount', 'meta.truth']}
         />
       </Section>
     </Sheet>

@@ -24,6 +24,7 @@ export type VersionHead = Pick<
   | 'checks'
   | 'covarianceSource'
   | 'mockCount'
+  | 'truth'
   | 'files'
   | 'createdAt'
 >;
@@ -111,6 +112,7 @@ export function presentMeasurement(
     newest: Math.max(...around.versions.map((line) => line.version)),
     versions: around.versions,
     resting: around.resting,
+    truth: measurement.blind ? null : version.truth,
     files: version.files.map(({ part, fileName, bytes, sha256 }) => ({ part, fileName, bytes, sha256 })),
     checks: presentChecks(version),
     points: {

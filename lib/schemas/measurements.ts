@@ -20,6 +20,11 @@ export const columnMappingSchema = z.strictObject({
   sigma: columnRef.optional(),
 });
 
+/** Values that simulated data were made with, by name of the parameter or derived quantity. */
+export const truthSchema = z
+  .record(z.string().regex(/^[A-Za-z]\w{0,63}$/, 'is no name of a parameter'), z.number())
+  .refine((truth) => Object.keys(truth).length <= 64, 'names more than 64 parameters');
+
 /** The JSON part `meta` of an upload. */
 export const uploadMetaSchema = z.strictObject({
   name: z.string().trim().min(1).max(120).optional(),
@@ -28,6 +33,8 @@ export const uploadMetaSchema = z.strictObject({
   /** Number of mocks behind an uploaded covariance. */
   mockCount: z.number().int().min(3).optional(),
   simulated: z.boolean().optional(),
+  /** Of simulated data: what was put in, by parameter. Drawn over posteriors; withheld while blind. */
+  truth: truthSchema.optional(),
   blind: z.boolean().optional(),
 });
 export type UploadMeta = z.infer<typeof uploadMetaSchema>;
@@ -157,6 +164,8 @@ export const measurementSchema = measurementSummarySchema.extend({
   versions: z.array(measurementVersionSchema),
   /** Notebooks that rest on it, with the version that each rests on. */
   resting: z.array(restingNotebookSchema),
+  /** What simulated data were made with; null where nothing is known, and while blind. */
+  truth: z.record(z.string(), z.number()).nullable(),
   files: z.array(storedFileSchema),
   checks: z.array(checkSchema),
   /** The points, ascending in κ; `S` is null for each while blind. `sigma` = √ of the covariance's diagonal. */

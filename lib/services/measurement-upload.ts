@@ -126,7 +126,7 @@ async function refuseTwinOfBlind(groupId: string, sha256: string, transaction: T
 }
 
 /** Rows of a version, all but its number and who belongs to it. */
-function versionOf({ result }: CheckedUpload, files: StoredFile[]) {
+function versionOf({ result, meta }: CheckedUpload, files: StoredFile[]) {
   const { measurement, summary } = result;
   const none = new Float64Array(summary.rows).fill(NaN);
   return {
@@ -136,6 +136,7 @@ function versionOf({ result }: CheckedUpload, files: StoredFile[]) {
     hasBinEdges: summary.hasBinEdges,
     covarianceSource: result.covarianceSource,
     mockCount: result.mockCount,
+    truth: meta.truth ?? null,
     sha256: files[0].sha256,
     files,
     mapping: { ...result.mapping },
@@ -199,11 +200,21 @@ async function store(
   }
 }
 
+/** Only of simulated data is it known what was put in. */
+function requireSimulated({ truth }: UploadMeta, simulated: boolean): void {
+  if (truth === undefined || simulated) return;
+  throw refuse(
+    'meta.truth',
+    'Only simulated data have values that were put in. Say `simulated: true`, or leave out `truth`.',
+  );
+}
+
 /** Uploads a measurement into the group of `access`. Nothing is stored unless all of it is well. */
 export async function uploadMeasurement(access: Access, form: UploadForm): Promise<MeasurementCreated> {
   access.require('measurement.upload');
   const upload = await checkUpload(form);
   const { meta, files } = upload;
+  requireSimulated(meta, meta.simulated ?? false);
   const id = randomUUID();
   return store(access, upload, id, async (transaction, now) => {
     const measurement = await Measurement.create(
@@ -240,6 +251,7 @@ export async function uploadVersion(access: Access, form: UploadForm): Promise<M
         'A version can’t change whether the measurement is simulated. Upload it as a measurement of its own.',
       );
     }
+    requireSimulated(meta, measurement.simulated);
     await measurement.update(
       { name: meta.name ?? measurement.name, description: meta.description ?? measurement.description },
       { transaction },

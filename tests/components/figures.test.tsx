@@ -165,6 +165,35 @@ describe('the corner view', () => {
   });
 });
 
+describe('the corner view of simulated data with samples laid over', () => {
+  const draws = parameters.map((_, i) => normalPairs(2000, 0, i + 1).x);
+  const html = renderToStaticMarkup(
+    <CornerFigure
+      number={4}
+      caption="Posterior."
+      label="Corner view"
+      fileName="corner"
+      parameters={parameters}
+      draws={draws}
+      initial={['μ1', 'μ2', 'θ']}
+      truth={{ μ1: 0.5, A: 1 }}
+      overlay={{ label: 'other.csv', draws: [draws[3], draws[4], null, null, null, null] }}
+    />,
+  );
+
+  it('draws what was put in on its diagonal and in each panel of its parameter', () => {
+    // μ 1: its diagonal, and one line in each of the two panels below it; A isn't shown.
+    expect(html.match(/class="truth" d="M[\d.]+ [\d.]+v/g)).toHaveLength(3);
+    expect(html).toContain('>put in</text>');
+  });
+
+  it('draws the samples where both parameters are known, and names them', () => {
+    expect(html.match(/<path class="over" d="M[^"]*Z"/g)).toHaveLength(1);
+    expect(html.match(/<path class="over wide" d="M[^"]*Z"/g)).toHaveLength(1);
+    expect(html).toContain('>other.csv</text>');
+  });
+});
+
 describe('small figures', () => {
   it('have names and draw the gate and the last value', () => {
     const html = renderToStaticMarkup(

@@ -1,6 +1,6 @@
 import { renderToStaticMarkup } from 'react-dom/server';
 import { describe, expect, it } from 'vitest';
-import { bestIndex, byReplica, drawValues, keptColumn, someKept } from '@/components/fit/draws';
+import { bestIndex, byReplica, drawValues, keptColumn, someKept, unpackDraws } from '@/components/fit/draws';
 import { acceptanceInWords, announcement, doneShare, gateSentence } from '@/components/fit/live-figures';
 import { MarginalTable } from '@/components/fit/marginal-table';
 import { fixedValues, posteriorSentence } from '@/components/fit/posterior-figures';
@@ -111,5 +111,53 @@ describe('the posterior', () => {
     // Twice the error of the median is 0.015, so a hundredth would be too fine.
     expect(html).toContain('>3.6<');
     expect(html).not.toContain('3.59');
+  });
+
+  it('says what was put into simulated data and how far away the median lies', () => {
+    const quantities = quantitiesOf({ id: 'free-phase', options: { fields: 1, background: [1] } });
+    const fit = fitFixture({
+      diagnostics: [diagnosticFixture('mu1', { q50: 3.5, sd: 0.25, mcseMean: 0.001 })],
+    });
+    const html = renderToStaticMarkup(
+      <MarginalTable fit={fit} quantities={quantities} number={2} truth={{ mu1: 3 }} />,
+    );
+    expect(html).toContain('>put in<');
+    expect(html).toContain('>+2.0 sd<');
+    const without = renderToStaticMarkup(<MarginalTable fit={fit} quantities={quantities} number={2} />);
+    expect(without).not.toContain('put in');
+  });
+
+  it('gives no value where the draws are too weak, and says why', () => {
+    const quantities = quantitiesOf({ id: 'free-phase', options: { fields: 1, background: [1] } });
+    const fit = fitFixture({ diagnostics: [diagnosticFixture('mu1', { mcseMean: null })] });
+    const html = renderToStaticMarkup(<MarginalTable fit={fit} quantities={quantities} number={2} />);
+    expect(html).toContain('>no value<');
+    expect(html).toMatch(/: no value, because the replicas are too short/);
+  });
+});
+
+describe('packed draws', () => {
+  const head = { replicas: 2, stride: 4, warmup: 8, rows: [2, 1], columns: ['mu1'] };
+  const draw = [4, 8, 8];
+  const reals = [-1, -2, -3, 0.5, 1.5, 2.5];
+  const text = JSON.stringify(head);
+  const padded = new TextEncoder().encode(text.padEnd(4 * Math.ceil(text.length / 4)));
+  const bytes = new Uint8Array(4 + padded.length + 4 * (draw.length + reals.length));
+  new DataView(bytes.buffer).setUint32(0, padded.length, true);
+  bytes.set(padded, 4);
+  bytes.set(new Uint8Array(Uint32Array.from(draw).buffer), 4 + padded.length);
+  bytes.set(new Uint8Array(Float32Array.from(reals).buffer), 4 + padded.length + 4 * draw.length);
+
+  it('are read with their replicas, warm-up and columns', () => {
+    const read = unpackDraws(bytes.buffer);
+    expect(Array.from(read.replica)).toEqual([0, 0, 1]);
+    expect(Array.from(read.warmup)).toEqual([1, 0, 0]);
+    expect(Array.from(read.logLikelihood)).toEqual([-1, -2, -3]);
+    expect([...keptColumn(read, 'mu1')]).toEqual([1.5, 2.5]);
+    expect(byReplica(read, 'mu1')).toEqual([[0.5, 1.5], [2.5]]);
+  });
+
+  it('are refused where bytes are missing', () => {
+    expect(() => unpackDraws(bytes.buffer.slice(0, -4))).toThrow(/which isn't what their head says/);
   });
 });

@@ -1,3 +1,4 @@
+import { parseTruth } from '@/components/measurement/truth-words';
 import { describe, expect, it } from 'vitest';
 import { addFiles, changePart } from '@/components/measurement/chosen-files';
 import { cellNumber, remapped } from '@/components/measurement/columns-table';
@@ -130,5 +131,20 @@ describe('the words beside marks', () => {
 describe('a name from a file', () => {
   it('is its stem in words', () => {
     expect(nameFromFile('challenge-set_c.csv')).toBe('Challenge set c');
+  });
+});
+
+describe('values that were put into simulated data', () => {
+  it('are read from names and numbers, however they are parted', () => {
+    expect(parseTruth('mu1 = 1.3, g: −12;theta=0.5')).toEqual({ values: { mu1: 1.3, g: -12, theta: 0.5 } });
+    expect(parseTruth('  ')).toEqual({ values: null });
+  });
+
+  it.each([
+    ['mu1', '“mu1” isn’t a name and a number; write it as mu1 = 1.3.'],
+    ['mu1 = x', '“mu1 = x” isn’t a name and a number; write it as mu1 = 1.3.'],
+    ['g = 1, g = 2', 'g is given twice.'],
+  ])('are refused with the entry: %j', (text, fault) => {
+    expect(parseTruth(text)).toEqual({ fault });
   });
 });

@@ -1,6 +1,7 @@
 import { createHash } from 'node:crypto';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { FitBlock, FitReplica } from '@/models';
+import { unpackDraws } from '@/components/fit/draws';
 import { GET as readDraws } from '@/app/api/v1/fits/[id]/draws/route';
 import { GET as readManifest } from '@/app/api/v1/fits/[id]/manifest/route';
 import { GET as readSamples } from '@/app/api/v1/fits/[id]/samples/route';
@@ -238,6 +239,23 @@ describe('what a fit gives out', () => {
       expect(draws.warmup[i]).toBe(draw < 1500 ? 1 : 0);
       expect((draw < 1500 ? draw : draw - 1500) % draws.stride).toBe(0);
     });
+  });
+
+  it('gives the same draws packed, in the precision of a figure', async () => {
+    const path = `/fits/${id}/draws?max=1000`;
+    const ask = (of: string) => call(readDraws, { params: { id }, token: desk.token, path: of });
+    const plain = drawsSchema.parse(await (await ask(path)).json());
+    const answer = await ask(`${path}&format=float32`);
+    expect(answer.headers.get('content-type')).toBe('application/octet-stream');
+    const packed = unpackDraws(await answer.arrayBuffer());
+    expect(packed.stride).toBe(plain.stride);
+    for (const key of ['replica', 'draw', 'warmup'] as const)
+      expect(Array.from(packed[key])).toEqual(plain[key]);
+    expect(Object.keys(packed.columns)).toEqual(Object.keys(plain.columns));
+    // A float32 has 24 bits: 6e-8 of the value; the plain form is rounded to seven digits.
+    Array.from(packed.columns.mu1).forEach((value, i) =>
+      expect(Math.abs(value / plain.columns.mu1[i] - 1)).toBeLessThan(6e-7),
+    );
   });
 
   it('is kept as blocks with one whole state a replica', async () => {

@@ -151,6 +151,21 @@ describe('an upload', () => {
     expect(measurement.points.kappa[0]).toBeCloseTo(Math.sqrt(0.003 * 0.003366055363), 15);
   });
 
+  it('keeps what simulated data were made with, and refuses it of measured ones', async () => {
+    const truth = { mu1: 1.3, g: -12 };
+    const send = (meta: object) => upload({ file: filePart('two-field.csv'), meta: JSON.stringify(meta) });
+    const { id } = measurementCreatedSchema.parse(await (await send({ simulated: true, truth })).json());
+    expect((await get(id)).truth).toEqual(truth);
+    for (const [meta, path] of [
+      [{ truth }, 'meta.truth'],
+      [{ simulated: true, truth: { 'mu 1': 1 } }, 'meta.truth.mu 1'],
+      [{ simulated: true, truth: { mu1: 'x' } }, 'meta.truth.mu1'],
+    ] as const) {
+      const error = await errorOf(await send(meta));
+      expect(error).toMatchObject({ status: 422, details: [{ path }] });
+    }
+  });
+
   it('may have the bytes and the name of an earlier one', async () => {
     const first = await uploadData(group, analyst.token);
     const second = await uploadData(group, analyst.token);

@@ -59,6 +59,73 @@ describe('levels of enclosed mass', () => {
   );
 });
 
+/** Share of points inside closed rings by the even-odd rule, which takes holes out. */
+function shareInside(rings: readonly Float64Array[], x: ArrayLike<number>, y: ArrayLike<number>): number {
+  let inside = 0;
+  for (let i = 0; i < x.length; i++) {
+    let crossings = 0;
+    for (const ring of rings)
+      for (let k = 0; k + 3 < ring.length; k += 2) {
+        const [x0, y0, x1, y1] = [ring[k], ring[k + 1], ring[k + 2], ring[k + 3]];
+        if (y0 > y[i] !== y1 > y[i] && x[i] < x0 + ((y[i] - y0) * (x1 - x0)) / (y1 - y0)) crossings++;
+      }
+    inside += crossings % 2;
+  }
+  return inside / x.length;
+}
+
+/** A bent, a two-peaked and a plain set of draws, from independent normals. */
+const shapes = {
+  normal: (u: number, v: number) => [u, 0.8 * u + 0.6 * v],
+  banana: (u: number, v: number) => [u, 0.5 * u * u + 0.3 * v],
+  'two peaks of 3 to 1': (u: number, v: number, i: number) => [u + (i % 4 ? 0 : 9), v],
+} as const;
+
+describe('the regions as they are drawn', () => {
+  const n = 10_000;
+  const drawsOf = (shape: keyof typeof shapes, seed: number) => {
+    const { x: u, y: v } = normalPairs(n, 0, seed);
+    const pairs = Array.from(u, (_, i) => shapes[shape](u[i], v[i], i));
+    return { x: pairs.map(([first]) => first), y: pairs.map(([, second]) => second) };
+  };
+
+  it.each(Object.keys(shapes) as (keyof typeof shapes)[])(
+    'enclose 68 and 95 %% of the draws of a %s, by points inside their outlines',
+    (shape) => {
+      const { x, y } = drawsOf(shape, 11);
+      const both = joint(x, y, marginal(x).axis, marginal(y).axis);
+      cornerMasses.forEach((mass, i) => {
+        // The level is a quantile of the draws' own density, so what is left is one draw and the straight pieces of the
+        // outline between centres of cells.
+        expect(Math.abs(both.enclosed[i] - mass)).toBeLessThan(2 / n);
+        expect(Math.abs(shareInside(both.regions[i], x, y) - mass)).toBeLessThan(0.004);
+      });
+    },
+  );
+
+  it.each(Object.keys(shapes) as (keyof typeof shapes)[])(
+    'enclose 68 and 95 %% of other draws of the same %s',
+    (shape) => {
+      const { x, y } = drawsOf(shape, 11);
+      const other = drawsOf(shape, 12);
+      const both = joint(x, y, marginal(x).axis, marginal(y).axis);
+      cornerMasses.forEach((mass, i) => {
+        // Four standard errors of the difference of two binomial shares.
+        const error = 4 * Math.sqrt((2 * mass * (1 - mass)) / n);
+        expect(Math.abs(shareInside(both.regions[i], other.x, other.y) - mass)).toBeLessThan(error);
+      });
+    },
+  );
+
+  it('are two where there are two peaks', () => {
+    const { x, y } = drawsOf('two peaks of 3 to 1', 11);
+    const { regions } = joint(x, y, marginal(x).axis, marginal(y).axis);
+    const left = regions[0].filter((ring) => ring[0] < 4.5);
+    expect(left.length).toBeGreaterThan(0);
+    expect(regions[0].length).toBeGreaterThan(left.length);
+  });
+});
+
 describe('the smoothed density', () => {
   it('integrates to the share of draws inside the grid', () => {
     const { x } = normalPairs(20_000, 0);
