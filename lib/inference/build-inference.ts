@@ -1,3 +1,4 @@
+import { evidenceLikelihood } from './evidence-likelihood';
 import { InferenceError } from './inference-error';
 import { buildLikelihood } from './likelihoods';
 import { layOutParameters, massRange, parameterGroups } from './parameter-layout';
@@ -37,8 +38,9 @@ export function buildInference(spec: InferenceSpec): Inference {
   const background = whitenBackground(layout, whitening);
   const chiSquareOf = buildChiSquare(layout, whitening, fields, background);
   const full = Float64Array.from(layout.base);
+  const evidence = evidenceLikelihood(likelihood, data.mockCount, whitening.length, whitening.logDeterminant);
   return {
-    target: buildTarget(layout, likelihood, chiSquareOf),
+    target: { ...buildTarget(layout, likelihood, chiSquareOf), ...(evidence ? { evidence } : {}) },
     jumps: [buildSpectralJump(layout, likelihood, whitening, fields, background)],
     blocks: parameterGroups(layout),
     sampled: layout.free.map((index) => template.parameters[index]),

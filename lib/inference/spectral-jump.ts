@@ -41,6 +41,8 @@ const LN_REST = Math.log1p(-FLOOR);
  */
 class SpectralJump implements JumpProposal {
   readonly name = 'spectral-jump';
+  /** Three or more masses are redrawn one at a time, given the others: no density of the end point alone. */
+  readonly normalised: boolean;
   private readonly full: Float64Array;
   private readonly before: Float64Array;
   private readonly coefficients: Float64Array;
@@ -59,6 +61,7 @@ class SpectralJump implements JumpProposal {
     private readonly system: FieldSystem,
     private readonly stage: FieldStage | null,
   ) {
+    this.normalised = layout.masses.filter((index) => layout.position[index] >= 0).length <= 2;
     this.full = Float64Array.from(layout.base);
     this.writeCoefficients = buildCoefficients(layout);
     this.before = Float64Array.from(layout.base);

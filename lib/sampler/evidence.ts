@@ -16,7 +16,7 @@
  */
 import { batchMeans } from './log-sums';
 import { betaProbability } from './special-functions';
-import type { LogSums } from './types';
+import type { LogSums, ReplicaState } from './types';
 
 /** ln Z with its standard error and the error's degrees of freedom. */
 export interface Evidence {
@@ -38,6 +38,11 @@ const LIKENESS = 0.2;
 const DISAGREEMENT = 1e-3;
 /** From here on the error is at least that of the replicas’ own scatter. */
 const DOUBT = 0.05;
+
+/** A replica's sums for the evidence: from its jumps, or from its ladder; null during warm-up and where it has neither. */
+export function stonesOf({ stones, ladder }: ReplicaState): LogSums | null {
+  return stones ?? ladder?.stones ?? null;
+}
 
 /**
  * ln Z = Σ_q ± ln mean(q) over each replica's sums, averaged over replicas: quantities 0, 2, 4 … count positively (ends seen from

@@ -21,7 +21,7 @@ export { summarise, summariseCircle } from './summaries';
 export type { CircularSummary, Summary } from './summaries';
 export { DEFAULT_GATE, DEFAULT_MIN_DRAWS, judgeGate } from './gate';
 export type { GateEvidence, GateTarget, GateVerdict } from './gate';
-export { evidenceOf, LEAST_DOF } from './evidence';
+export { evidenceOf, LEAST_DOF, stonesOf } from './evidence';
 export type { Evidence, NoEvidence } from './evidence';
 export { barrierOf, rejectionRates } from './ladder';
 export { advance, sample, startReplica } from './replica';

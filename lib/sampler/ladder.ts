@@ -117,8 +117,16 @@ function stoneLogs({ betas, points }: LadderState, target: Target, chain: Point)
     const above = k + 1 < points.length ? points[k + 1] : chain;
     logs.push(half * points[k].logLikelihood, -half * above.logLikelihood);
   }
-  if (target.evidence) logs.push((target.evidence.exponent - 1) * chain.logLikelihood);
+  if (target.evidence) logs.push(lastStone(target.evidence, chain.logLikelihood));
   return logs;
+}
+
+/** ln of the likelihood that evidences are of over the one that is sampled. */
+export function lastStone(
+  { exponent, offset }: NonNullable<Target['evidence']>,
+  logLikelihood: number,
+): number {
+  return (exponent - 1) * logLikelihood + offset;
 }
 
 function swapAll(rng: Rng, state: LadderState, chain: Point, counts: LadderCounts): void {
@@ -218,17 +226,15 @@ export function placeRungs(
   return placed;
 }
 
-/** Ends adaptation: sizes of the walks are frozen, counts begin anew, and the stones' sums begin. */
-export function freezeLadder(
-  state: LadderState,
-  settings: LadderSettings,
-  target: Target,
-  jumpsDo: boolean,
-): void {
+/**
+ * Ends adaptation: sizes of the walks are frozen, counts begin anew, and so do the stones' sums unless the ladder `rests`, because
+ * something else gives the evidence.
+ */
+export function freezeLadder(state: LadderState, target: Target, every: number, rests: boolean): void {
   state.walks.forEach(freeze);
   resetLadder(state);
-  state.every = jumpsDo ? settings.everyWhereJumpsDo : settings.every;
-  state.stones = emptySums(2 * (state.betas.length - 1) + (target.evidence ? 1 : 0));
+  state.every = every;
+  state.stones = rests ? null : emptySums(2 * (state.betas.length - 1) + (target.evidence ? 1 : 0));
 }
 
 /** The barrier Λ of Syed et al. as the swaps since the end of warm-up give it: the sum of the pairs' mean rejections. */

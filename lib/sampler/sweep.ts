@@ -1,5 +1,5 @@
 /** One sweep of a replica: what `replica.ts` says of the schedule and of warm-up, done on a state in place. */
-import { endLadderWindow, freezeLadder, learnLadder, stepLadder } from './ladder';
+import { endLadderWindow, freezeLadder, lastStone, learnLadder, stepLadder } from './ladder';
 import { addEntry, emptySums } from './log-sums';
 import { canPropose, freezeArchive, remember, stepDifferential } from './moves/differential';
 import type { DifferentialState } from './moves/differential';
@@ -95,7 +95,7 @@ export class Sweep {
   private noteStone({ proposed, present }: JumpWeights): void {
     const { state, target } = this;
     const logs = [proposed / 2, -present / 2];
-    if (target.evidence) logs.push((target.evidence.exponent - 1) * state.logLikelihood);
+    if (target.evidence) logs.push(lastStone(target.evidence, state.logLikelihood));
     if (state.stones) addEntry(state.stones, logs);
   }
 
@@ -125,9 +125,25 @@ export class Sweep {
     if (differential) remember(differential, state.x, draws, warmup);
     if (ladder && settings.ladder) {
       if (draws <= end && (draws - 1) % ladder.every === 0) learnLadder(ladder, periods);
-      if (closing) endLadderWindow(ladder, settings.ladder, draws < end);
+      if (closing) {
+        endLadderWindow(ladder, settings.ladder, draws < end);
+        ladder.every = this.ladderRests()
+          ? Math.max(settings.ladder.everyInWarmup, Math.ceil(settings.ladder.everyWhereJumpsDo / 10))
+          : settings.ladder.everyInWarmup;
+      }
     }
     if (draws === warmup) this.freeze();
+  }
+
+  /** Whether the jumps so far were accepted often enough; during warm-up counts are of all of it. */
+  private jumpsDo(): boolean {
+    const [jump] = this.state.moves;
+    return this.jumps.length > 0 && jump.accepted >= JUMPS_DO * jump.proposed;
+  }
+
+  /** Whether jumps do what the ladder is for: move the chain and give the evidence. */
+  private ladderRests(): boolean {
+    return this.normalised >= 0 && this.jumpsDo();
   }
 
   /** The end of warm-up: nothing adapts any more, and counts and sums begin. */
@@ -135,11 +151,13 @@ export class Sweep {
     const { state, walks, differential, settings, target } = this;
     walks.forEach(freeze);
     if (differential) freezeArchive(differential, target.periods);
-    const [jump] = state.moves;
-    const jumpsDo = this.jumps.length > 0 && jump.accepted >= JUMPS_DO * jump.proposed;
-    if (this.jumps.length > 0) state.jumpsDo = jumpsDo;
-    if (state.ladder && settings.ladder) freezeLadder(state.ladder, settings.ladder, target, jumpsDo);
-    if (this.normalised >= 0) state.stones = emptySums(2 + (target.evidence ? 1 : 0));
+    if (this.jumps.length > 0) state.jumpsDo = this.jumpsDo();
+    if (state.ladder && settings.ladder) {
+      const { every, everyWhereJumpsDo } = settings.ladder;
+      const rests = this.ladderRests();
+      freezeLadder(state.ladder, target, rests ? everyWhereJumpsDo : every, rests);
+      if (rests) state.stones = emptySums(2 + (target.evidence ? 1 : 0));
+    }
     for (const move of state.moves) {
       move.proposed = 0;
       move.accepted = 0;

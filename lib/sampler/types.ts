@@ -74,7 +74,10 @@ export interface LadderSettings {
   everyInWarmup: number;
   /** The same after warm-up. */
   every: number;
-  /** The same after warm-up where at least 30 % of the jumps of warm-up were accepted. */
+  /**
+   * The same where a normalised jump does what the ladder is for, that is, moves the chain and gives the evidence: at least 30 % of the
+   * jumps of warm-up were accepted. In warm-up, once that shows, a tenth of it.
+   */
   everyWhereJumpsDo: number;
   /** Rungs at most, both ends counted; at least 3. */
   maxRungs: number;
@@ -130,7 +133,7 @@ export interface LadderState {
   roundTrips: number;
   /** Recorded draws between two steps. */
   every: number;
-  /** Sums for the evidence since the end of warm-up; null before. */
+  /** Sums for the evidence since the end of warm-up; null before, and where the jumps give it. */
   stones: LogSums | null;
 }
 
@@ -173,8 +176,8 @@ export interface ReplicaState {
   jumpsDo?: boolean;
   /** Null or absent where there is none. */
   ladder?: LadderState | null;
-  /** Sums for the evidence from a normalised jump, since the end of warm-up. Null or absent where there is none. */
-  stones?: LogSums | null;
+  /** Sums for the evidence from a normalised jump, since the end of warm-up, where that does what the ladder is for; else absent. */
+  stones?: LogSums;
 }
 
 /** A block of recorded draws of one replica, in the order they were made. */

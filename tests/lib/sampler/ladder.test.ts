@@ -7,8 +7,9 @@ import {
   mcseMean,
   rejectionRates,
   startReplica,
+  stonesOf,
 } from '@/lib/sampler';
-import type { LadderSettings, ReplicaState, SamplerSettings, Target } from '@/lib/sampler';
+import type { JumpProposal, LadderSettings, ReplicaState, SamplerSettings, Target } from '@/lib/sampler';
 import { placeRungs } from '@/lib/sampler/ladder';
 import {
   freezeArchive,
@@ -53,10 +54,10 @@ const ladderOf = (state: ReplicaState) => {
   if (!state.ladder) throw new Error('no ladder');
   return state.ladder;
 };
-const stonesOf = (state: ReplicaState) => {
-  const { stones } = ladderOf(state);
-  if (!stones) throw new Error('no sums');
-  return stones;
+const evidenceFrom = (found: readonly ReplicaState[]) => {
+  const evidence = evidenceOf(found.flatMap((state) => stonesOf(state) ?? []));
+  if (!('value' in evidence)) throw new Error(evidence.because);
+  return evidence;
 };
 
 describe('the ladder', () => {
@@ -80,8 +81,7 @@ describe('the ladder', () => {
   });
 
   it('gives the evidence 1/(1 + 1/s²) within its error, which is small', () => {
-    const evidence = evidenceOf(found.map(stonesOf));
-    if (!('value' in evidence)) throw new Error(evidence.because);
+    const evidence = evidenceFrom(found);
     expect(evidence.error).toBeLessThan(0.06);
     expect(evidence.dof).toBeGreaterThanOrEqual(15);
     expect(Math.abs(evidence.value + Math.log1p(1 / (s * s))) / evidence.error).toBeLessThan(4);
@@ -137,21 +137,15 @@ describe('the ladder', () => {
       ...narrowing(0.3),
       logLikelihood: ([x, y]) => (x > 0 ? -(x * x + y * y) / 0.18 : -Infinity),
     };
-    const evidence = evidenceOf(
-      states(half, { warmup: 600, blocks: [], ladder: LADDER }, 'half', 3000).map(stonesOf),
-    );
-    if (!('value' in evidence)) throw new Error(evidence.because);
+    const evidence = evidenceFrom(states(half, { warmup: 600, blocks: [], ladder: LADDER }, 'half', 3000));
     expect(Math.abs(evidence.value - Math.log(0.5 / (1 + 1 / 0.09))) / evidence.error).toBeLessThan(4);
   });
 
   it('gives the evidence of a power of the likelihood, where evidences are of another one than is sampled', () => {
     const s2 = 0.04;
     const target: Target = { ...narrowing(Math.sqrt(s2)), evidence: { exponent: 1.2, offset: 7 } };
-    const evidence = evidenceOf(
-      states(target, { warmup: 600, blocks: [], ladder: LADDER }, 'power', 4000).map(stonesOf),
-    );
-    if (!('value' in evidence)) throw new Error(evidence.because);
-    expect(Math.abs(evidence.value + Math.log1p(1.2 / s2)) / evidence.error).toBeLessThan(4);
+    const evidence = evidenceFrom(states(target, { warmup: 600, blocks: [], ladder: LADDER }, 'power', 4000));
+    expect(Math.abs(evidence.value - 7 + Math.log1p(1.2 / s2)) / evidence.error).toBeLessThan(4);
   });
 
   it('stops where the likelihood isn’t a number on any rung, and names term and values', () => {
@@ -175,6 +169,35 @@ describe('the ladder', () => {
     expect(() => startReplica(narrowing(1), [], settings, 's', 0)).toThrow(message);
     const short = { warmup: 100, blocks: [], ladder: LADDER };
     expect(() => startReplica(narrowing(1), [], short, 's', 0)).toThrow(/100 draws of warm-up/);
+  });
+});
+
+describe('a normalised jump', () => {
+  const s = 0.05;
+  /** Normals somewhat wider than the posterior. */
+  const jump: JumpProposal = {
+    name: 'wide',
+    normalised: true,
+    draw(rng, _from, out) {
+      out[0] = 1.3 * s * rng.normal();
+      out[1] = 1.3 * s * rng.normal();
+    },
+    logDensity: ([x, y]) => -(x * x + y * y) / (2 * (1.3 * s) ** 2) - Math.log(2 * Math.PI * (1.3 * s) ** 2),
+  };
+
+  it('gives the evidence far better than a ladder, which rests then', () => {
+    const target: Target = { ...narrowing(s), evidence: { exponent: 1.1, offset: -3 } };
+    const ladder = { ...LADDER, everyWhereJumpsDo: 100 };
+    const found = [0, 1, 2, 3].map((replica) => {
+      const settings = { warmup: 600, blocks: [], ladder };
+      return advance(target, [jump], settings, startReplica(target, [jump], settings, 'near', replica), 4600)
+        .state;
+    });
+    for (const state of found)
+      expect([state.jumpsDo, ladderOf(state).steps, ladderOf(state).stones]).toEqual([true, 40, null]);
+    const evidence = evidenceFrom(found);
+    expect(evidence.error).toBeLessThan(0.01);
+    expect(Math.abs(evidence.value + 3 + Math.log1p(1.1 / (s * s))) / evidence.error).toBeLessThan(4);
   });
 });
 

@@ -1,6 +1,6 @@
 import { deserialize, serialize } from 'node:v8';
 import { describe, expect, it } from 'vitest';
-import { advance, sample, SamplerError, startReplica } from '@/lib/sampler';
+import { advance, sample, SamplerError, startReplica, stonesOf } from '@/lib/sampler';
 import type { JumpProposal, ReplicaState, SamplerSettings, Target } from '@/lib/sampler';
 
 /** A phase and two correlated numbers: circles, blocks and a jump at once. */
@@ -27,9 +27,10 @@ const JUMPS: JumpProposal[] = [
   },
 ];
 
-/** Uniform over a box that holds the target. */
+/** Uniform over a box that holds the target: seldom accepted. */
 const BOXED: JumpProposal = {
   name: 'boxed',
+  normalised: true,
   draw(rng, _from, out) {
     out[0] = Math.PI * (2 * rng.uniform() - 1);
     out[1] = 8 * rng.uniform() - 4;
@@ -37,6 +38,18 @@ const BOXED: JumpProposal = {
   },
   logDensity: (to) =>
     Math.abs(to[1]) <= 4 && Math.abs(to[2]) <= 6 ? -Math.log(2 * Math.PI * 8 * 12) : -Infinity,
+};
+
+/** Normals like the target: often accepted. */
+const NEAR: JumpProposal = {
+  name: 'near',
+  normalised: true,
+  draw(rng, _from, out) {
+    out[0] = Math.PI * (2 * rng.uniform() - 1);
+    out[1] = rng.normal();
+    out[2] = out[1] + rng.normal();
+  },
+  logDensity: (to) => -2 * Math.log(2 * Math.PI) - (to[1] * to[1] + (to[2] - to[1]) ** 2) / 2,
 };
 
 const SETTINGS: SamplerSettings = { warmup: 600, blocks: [[0], [1, 2]] };
@@ -77,30 +90,35 @@ describe('a replica', () => {
     }
   });
 
-  it('does so with ladder, archive and evidence too, and ends in the same state', () => {
-    const ladder = { everyInWarmup: 2, every: 3, everyWhereJumpsDo: 7, maxRungs: 12, rejection: 0.3 };
-    const settings: SamplerSettings = { ...SETTINGS, walkEvery: 3, differential: true, ladder };
-    const jump = { ...BOXED, normalised: true };
-    const begin = startReplica(TARGET, [jump], settings, 'all', 1);
-    const whole = advance(TARGET, [jump], settings, begin, TOTAL);
-    expect(whole.state.stones?.filled).toBeGreaterThan(15);
-    expect(whole.state.ladder?.stones?.filled).toBeGreaterThan(15);
-    for (const lengths of [[100], [7, 593, 1, 3], [599, 2]]) {
-      let state = begin;
-      const values: number[] = [];
-      for (let made = 0, i = 0; made < TOTAL; i++) {
-        const draws = Math.min(lengths[i % lengths.length], TOTAL - made);
-        const stored = deserialize(serialize(state)) as ReplicaState;
-        let ticks = 0;
-        const step = advance(TARGET, [jump], settings, stored, draws, undefined, () => ticks++);
-        values.push(...step.block.values);
-        state = step.state;
-        made += draws;
+  it.each([
+    ['ladder', BOXED],
+    ['jumps', NEAR],
+  ])(
+    'does so with ladder, archive and an evidence from the %s too, and ends in the same state',
+    (from, jump) => {
+      const ladder = { everyInWarmup: 2, every: 3, everyWhereJumpsDo: 7, maxRungs: 12, rejection: 0.3 };
+      const settings: SamplerSettings = { ...SETTINGS, walkEvery: 3, differential: true, ladder };
+      const begin = startReplica(TARGET, [jump], settings, 'all', 1);
+      const whole = advance(TARGET, [jump], settings, begin, TOTAL);
+      expect(stonesOf(whole.state)?.filled).toBeGreaterThan(15);
+      expect(stonesOf(whole.state)).toBe(from === 'jumps' ? whole.state.stones : whole.state.ladder?.stones);
+      for (const lengths of [[100], [7, 593, 1, 3], [599, 2]]) {
+        let state = begin;
+        const values: number[] = [];
+        for (let made = 0, i = 0; made < TOTAL; i++) {
+          const draws = Math.min(lengths[i % lengths.length], TOTAL - made);
+          const stored = deserialize(serialize(state)) as ReplicaState;
+          let ticks = 0;
+          const step = advance(TARGET, [jump], settings, stored, draws, undefined, () => ticks++);
+          values.push(...step.block.values);
+          state = step.state;
+          made += draws;
+        }
+        expect(values).toEqual([...whole.block.values]);
+        expect(state).toEqual(whole.state);
       }
-      expect(values).toEqual([...whole.block.values]);
-      expect(state).toEqual(whole.state);
-    }
-  });
+    },
+  );
 
   it('tells the time of each move by the clock that it is given', () => {
     const start = startReplica(TARGET, JUMPS, SETTINGS, 's', 0);
