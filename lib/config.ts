@@ -23,6 +23,7 @@ const environmentSchema = z.object({
   MAIL_FROM: text.default('Beatnote <beatnote@localhost>'),
   AUTH_SECRET: z.string().min(32, { message: 'must have at least 32 characters' }),
   BEATNOTE_MAIL_DIR: text.optional(),
+  BEATNOTE_GROUP_FITS: z.coerce.number<string>().int().min(1).max(64).default(2),
   LOG_LEVEL: z.enum(['debug', 'info', 'warn', 'error', 'silent']).default('info'),
 });
 
@@ -41,6 +42,8 @@ export interface Config {
   authSecret: string;
   /** Folder of the local mail catcher; null where mail leaves the machine or the pages are served beyond it. */
   mailFolder: string | null;
+  /** Fits that a group may run at once where nobody has set another limit. */
+  groupFits: number;
   logLevel: 'debug' | 'info' | 'warn' | 'error' | 'silent';
 }
 
@@ -77,6 +80,7 @@ export function readConfig(environment: Record<string, string | undefined>): Con
     mailFrom: env.MAIL_FROM,
     authSecret: env.AUTH_SECRET,
     mailFolder: env.BEATNOTE_MAIL_DIR !== undefined && loopback(env.HOST) ? env.BEATNOTE_MAIL_DIR : null,
+    groupFits: env.BEATNOTE_GROUP_FITS,
     logLevel: env.LOG_LEVEL,
   };
 }

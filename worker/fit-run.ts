@@ -10,14 +10,14 @@ import {
 } from '@/lib/services/fit-commit';
 import { fitBlocks } from '@/lib/services/fit-draws';
 import {
-  claimFit,
   failFit,
-  failUnheld,
   noteMachine,
+  readHeld,
   releaseLease,
   renewLease,
-  type ClaimedFit,
+  type HeldFit,
 } from '@/lib/services/fit-lease';
+import type { Taken } from '@/lib/services/fit-queue';
 import type { StoredReport } from '@/lib/schemas/stored-report';
 import { isLook } from '@/lib/services/fit-schedule';
 import { verdict } from '@/lib/services/fit-verdict';
@@ -35,11 +35,11 @@ export interface Stopping {
   now: AbortSignal;
 }
 
-/** Samples one fit for as long as this process holds it; returns when it has ended, or isn't this worker's any more. */
-export async function runFit(fitId: string, settings: WorkerSettings, stopping: Stopping): Promise<void> {
-  const claimed = await takeUp(fitId, settings.leaseMs, stopping.now);
-  if (!claimed) return;
-  const run = new FitRun(claimed, settings, stopping);
+/** Samples a fit that was taken for as long as this process holds it; returns when it has ended, or isn't this worker's any more. */
+export async function runFit(taken: Taken, settings: WorkerSettings, stopping: Stopping): Promise<void> {
+  const held = await takeUp(taken, stopping.now);
+  if (!held) return;
+  const run = new FitRun(held, settings, stopping);
   try {
     await run.sample();
   } catch (error) {
@@ -49,16 +49,16 @@ export async function runFit(fitId: string, settings: WorkerSettings, stopping: 
   }
 }
 
-/** Takes a fit; one whose row or states can't be read ends here, since no worker will ever do better. */
-async function takeUp(fitId: string, leaseMs: number, now: AbortSignal): Promise<ClaimedFit | null> {
+/** Reads a fit that was taken; one whose row or states can't be read ends here, since no worker will ever do better. */
+async function takeUp({ fitId, epoch }: Taken, now: AbortSignal): Promise<HeldFit | null> {
   try {
-    return await untilDone('taking a fit', () => claimFit(fitId, leaseMs), now);
+    return await untilDone('reading a fit', () => readHeld(fitId, epoch), now);
   } catch (error) {
     if (now.aborted) return null;
     log.error({ fitId, ...reasonOf(error) }, 'a fit could not be taken up');
     const message =
       'The stored fit can’t be read by this version; the cause is logged. Start a new fit with the same seed.';
-    await untilDone('failing a fit', () => failUnheld(fitId, message), now);
+    await untilDone('failing a fit', () => failFit(fitId, epoch, message), now);
     return null;
   }
 }
@@ -91,7 +91,7 @@ class FitRun {
   private report: StoredReport;
 
   constructor(
-    private readonly fit: ClaimedFit,
+    private readonly fit: HeldFit,
     private readonly settings: WorkerSettings,
     private readonly stopping: Stopping,
   ) {

@@ -2,15 +2,18 @@ import { randomUUID } from 'node:crypto';
 import { Worker } from 'bullmq';
 import { config } from '@/lib/config';
 import { closeDatabase, database } from '@/lib/db';
-import { beat, closeQueue, endBeat, enqueueFit, fitJobSchema, fitsQueue, fitWorkerOptions } from '@/lib/jobs';
+import { beat, closeQueue, endBeat, fitsQueue, fitWorkerOptions } from '@/lib/jobs';
 import { log } from '@/lib/log';
 import { closeRedis, queueConnection } from '@/lib/redis';
-import { unheldFits } from '@/lib/services/fit-lease';
+import { sendDueMails } from '@/lib/services/fit-mails';
+import { takeNext } from '@/lib/services/fit-queue';
 import { deleteStrayFiles } from '@/lib/services/stray-files';
 import { closeStorage } from '@/storage';
 import { runFit } from './fit-run';
 import { every } from './every';
+import { reasonOf } from './retry';
 import { readWorkerSettings } from './settings';
+import { Taker } from './taker';
 
 /** The entry of a worker process. The main thread does I/O only: whatever computes is in threads, or leases would run out. */
 config();
@@ -21,26 +24,36 @@ const gently = new AbortController();
 const now = new AbortController();
 const connection = queueConnection();
 
-const worker = new Worker(
-  fitsQueue,
-  async (job) => {
-    const { fitId } = fitJobSchema.parse(job.data);
-    await runFit(fitId, settings, { gently: gently.signal, now: now.signal });
+const taker = new Taker({
+  places: settings.fits,
+  stepBack: 100,
+  take: () => takeNext(settings.leaseMs),
+  run: (taken) =>
+    runFit(taken, settings, { gently: gently.signal, now: now.signal }).catch((error: unknown) =>
+      log.error({ ...taken, ...reasonOf(error) }, 'a fit was let go'),
+    ),
+  // A call that wakes one worker is to reach one that has a place.
+  onFull: (full) => {
+    if (full) void worker.pause(true);
+    else worker.resume();
   },
-  { connection, concurrency: settings.fits, ...fitWorkerOptions },
-);
+});
+
+/** A job wakes this worker, and says no more: whose turn it is stands in the database. */
+const worker = new Worker(fitsQueue, () => taker.fill(), { connection, ...fitWorkerOptions });
 worker.on('error', (error) => log.debug({ err: error }, 'the queue'));
-worker.on('failed', (job, error) => log.error({ jobId: job?.id, err: error }, 'a job failed'));
+worker.on('failed', (job, error) => log.warn({ jobId: job?.id, ...reasonOf(error) }, 'a job failed'));
 
-const heartbeat = every(5_000, () => beat(workerId), 'the sign of life');
+const heartbeat = every(5_000, () => beat(workerId, settings.fits), 'the sign of life');
 
-/** Redis may have lost its jobs, or a process died between commit and queueing: what nobody holds is queued again. */
-const reconciler = every(
+/** Redis may be away or have lost its jobs, or a process died between commit and queueing: what waits is looked for anyway. */
+const reconciler = every(settings.reconcileMs, () => taker.fill(), 'the search for fits that wait');
+
+/** The end of a fit is told after it was committed, by whoever finds that it is due. */
+const postman = every(
   settings.reconcileMs,
-  async () => {
-    for (const { id, epoch } of await unheldFits()) await enqueueFit(id, epoch);
-  },
-  'the search for fits that nobody holds',
+  async () => void (await sendDueMails()),
+  'the search for mails that are due',
 );
 
 /** A process that was killed within an upload leaves files that no row names. */
@@ -53,10 +66,14 @@ const sweeper = every(
 async function close(): Promise<void> {
   heartbeat();
   reconciler();
+  postman();
   sweeper();
   const patience = setTimeout(() => now.abort(), settings.graceMs);
-  // Takes no job any more and waits for those that it has.
-  await worker.close().catch((error: unknown) => log.warn({ err: error }, 'the queue did not close'));
+  // Takes no fit any more and waits for those that it has.
+  await Promise.all([
+    worker.close().catch((error: unknown) => log.warn({ err: error }, 'the queue did not close')),
+    taker.close(),
+  ]);
   clearTimeout(patience);
   await endBeat(workerId).catch(() => undefined);
   await closeQueue();

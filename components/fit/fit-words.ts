@@ -2,7 +2,7 @@ import type { State } from '@/components/ui/state-word';
 import type { FitStatus } from '@/lib/schemas';
 
 const states: Record<FitStatus, State> = {
-  queued: { kind: 'wait', word: 'waits for a worker' },
+  queued: { kind: 'wait', word: 'waits its turn' },
   'warming-up': { kind: 'run', word: 'warming up' },
   sampling: { kind: 'run', word: 'sampling' },
   converged: { kind: 'ok', word: 'converged' },
@@ -19,7 +19,7 @@ export const isRunning = (status: FitStatus): boolean =>
 
 /** What a fit is doing or came to, as a sentence's predicate: "Fit 3 …". */
 const predicates: Record<FitStatus, string> = {
-  queued: 'waits for a worker',
+  queued: 'waits its turn',
   'warming-up': 'is warming up',
   sampling: 'is sampling',
   converged: 'has met the gate',

@@ -4,9 +4,9 @@ import { redis } from '@/lib/redis';
 const prefix = 'worker:';
 const lifetime = 15;
 
-/** Says that a worker lives; to be repeated every five seconds. */
-export async function beat(workerId: string): Promise<void> {
-  await redis().set(`${prefix}${workerId}`, '1', 'EX', lifetime);
+/** Says that a worker lives and how many fits it takes at once; to be repeated every five seconds. */
+export async function beat(workerId: string, places: number): Promise<void> {
+  await redis().set(`${prefix}${workerId}`, String(places), 'EX', lifetime);
 }
 
 /** Takes the sign of life away at an orderly end. */
@@ -14,8 +14,7 @@ export async function endBeat(workerId: string): Promise<void> {
   await redis().del(`${prefix}${workerId}`);
 }
 
-/** Number of worker processes that are alive. */
-export async function liveWorkers(): Promise<number> {
+async function beatKeys(): Promise<string[]> {
   let cursor = '0';
   const found = new Set<string>();
   do {
@@ -23,5 +22,15 @@ export async function liveWorkers(): Promise<number> {
     keys.forEach((key) => found.add(key));
     cursor = next;
   } while (cursor !== '0');
-  return found.size;
+  return [...found];
+}
+
+/** Number of worker processes that are alive. */
+export const liveWorkers = async (): Promise<number> => (await beatKeys()).length;
+
+/** Fits that all living workers together take at once. */
+export async function workerPlaces(): Promise<number> {
+  const keys = await beatKeys();
+  const values = keys.length > 0 ? await redis().mget(keys) : [];
+  return values.reduce((sum, value) => sum + Number(value ?? 0), 0);
 }

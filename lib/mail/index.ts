@@ -1,6 +1,6 @@
 import { config } from '@/lib/config';
 import { AppError } from '@/lib/errors';
-import type { Role } from '@/lib/schemas';
+import type { FitStatus, Role } from '@/lib/schemas';
 import { sendMail } from './transport';
 
 export { listMailbox, type CaughtMail } from './mailbox';
@@ -106,3 +106,40 @@ export async function sendOrLog(mail: Promise<void>): Promise<boolean> {
     return false;
   }
 }
+
+const endings: Readonly<Partial<Record<FitStatus, string>>> = {
+  converged: 'has met its target',
+  stopped: 'was stopped by another member of the group; its draws are kept',
+  'budget-spent': 'has used its draws up before its target was met',
+  failed: 'has failed; the page says why, and the draws up to there are kept',
+};
+
+/** Tells a person that a fit of theirs has ended: how, and where it is to be seen. Never a value, nor a title that may hold one. */
+export const sendFitEnded = (
+  email: string,
+  end: {
+    mailId: string;
+    groupName: string;
+    notebookId: string;
+    notebookNumber: number;
+    fitNumber: number;
+    endedAs: FitStatus;
+  },
+): Promise<void> =>
+  sendMail({
+    id: end.mailId,
+    to: email,
+    subject: `Fit ${end.fitNumber} of notebook ${end.notebookNumber} has ended`,
+    text: [
+      'Hello,',
+      '',
+      `fit ${end.fitNumber} of notebook ${end.notebookNumber} in the group “${end.groupName}” ${endings[end.endedAs] ?? 'has ended'}:`,
+      '',
+      `${config().url}/notebooks/${end.notebookId}?fit=${end.fitNumber}`,
+      '',
+      'If you want no mail about fits, switch it off on your page:',
+      '',
+      `${config().url}/account`,
+      '',
+    ].join('\n'),
+  });

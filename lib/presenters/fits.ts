@@ -10,27 +10,70 @@ import {
 } from '@/lib/schemas';
 import { emptyReport, storedReportSchema, type StoredReport } from '@/lib/schemas/stored-report';
 
-/** What a fit is shown with beside its row; none of it changes while the fit runs. */
+/** Where a fit that waits stands, and what it waits for. */
+export interface QueuePlace {
+  place: number;
+  groupRunning: number;
+  groupLimit: number;
+  /** Fits that run, of all groups. */
+  running: number;
+  /** Fits that all living workers take at once; null where that can't be told. */
+  places: number | null;
+}
+
+/** What a fit is shown with beside its row. */
 export interface FitContext {
   /** E-mail address of who started it. */
   startedBy: string;
   role: Role;
   /** While a measurement is blind nothing that was fitted to it is shown. */
   blind: boolean;
+  /** Null where it doesn't wait. */
+  queue: QueuePlace | null;
 }
+
+const ordinals = [
+  '',
+  'first',
+  'second',
+  'third',
+  'fourth',
+  'fifth',
+  'sixth',
+  'seventh',
+  'eighth',
+  'ninth',
+  'tenth',
+];
+const ordinal = (place: number): string => ordinals[place] ?? `number ${place}`;
+const fits = (count: number): string => (count === 1 ? '1 fit' : `${count} fits`);
+
+/** Its place in the queue and why it waits. */
+function waitInWords({ place, groupRunning, groupLimit, running, places }: QueuePlace): string {
+  const where = `${ordinal(place)} in the queue`;
+  if (places === 0) return `${where}; no worker is running, and it begins when one does.`;
+  if (groupRunning >= groupLimit) return `${where}; your group has ${fits(groupRunning)} running, the limit.`;
+  if (places !== null && running >= places)
+    return `${where}; every worker is busy, with ${fits(running)} running.`;
+  if (place === 1) return `${where}; a worker is about to take it up.`;
+  return `${where}; those before it begin first.`;
+}
+
+const capital = (text: string): string => text.charAt(0).toUpperCase() + text.slice(1);
 
 const isHeld = (fit: FitRow): boolean => fit.leaseUntil !== null && fit.leaseUntil.getTime() > Date.now();
 
-function messageOf(fit: FitRow, status: FitStatus): string | null {
+function messageOf(fit: FitRow, status: FitStatus, queue: QueuePlace | null): string | null {
   if (fit.message !== null) return fit.message;
   if (status === 'budget-spent') {
     return `The budget of ${fit.maxDraws} kept draws a replica was spent before every quantity met the target.`;
   }
   if (endedStatuses.includes(status)) return null;
   if (!isHeld(fit)) {
+    const wait = queue ? waitInWords(queue) : 'it waits for a worker.';
     return fit.draws === 0
-      ? 'It waits for a worker.'
-      : `It was interrupted after ${fit.draws} draws a replica and goes on by itself when a worker takes it up.`;
+      ? capital(wait)
+      : `After ${fit.draws} draws a replica it goes on by itself from there: ${wait}`;
   }
   if (fit.stopRequested) return 'It stops at the end of the present block.';
   if (fit.targetFrom > 0) return 'The target was met before: sampling goes on to the end of the budget.';
@@ -71,7 +114,7 @@ function mayOf(fit: FitRow, status: FitStatus, role: Role): string[] {
   return actionsFor(role, 'fit').filter((action) => possible[action] ?? true);
 }
 
-export function presentFit(fit: FitRow, { startedBy, role, blind }: FitContext): Fit {
+export function presentFit(fit: FitRow, { startedBy, role, blind, queue }: FitContext): Fit {
   const status = fitStatusSchema.parse(fit.status);
   const stored = fit.report === null ? emptyReport : storedReportSchema.parse(fit.report);
   const report = blind ? emptyReport : stored;
@@ -82,7 +125,8 @@ export function presentFit(fit: FitRow, { startedBy, role, blind }: FitContext):
     number: fit.number,
     revision: fit.revision,
     status,
-    message: messageOf(fit, status),
+    message: messageOf(fit, status, queue),
+    queue: queue && { place: queue.place, groupRunning: queue.groupRunning, groupLimit: queue.groupLimit },
     progress: progressOf(fit, status, stored, snapshot.warmup, snapshot.replicas),
     replicas: snapshot.replicas,
     drawsPerSecond: fit.drawsPerSecond,

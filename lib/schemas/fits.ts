@@ -89,6 +89,16 @@ export const fitSchema = z.object({
     /** Seconds of sampling so far, interruptions left out. */
     secondsSpent: z.number(),
   }),
+  /** Where it stands while it waits for its turn; the reason in words is the message. Null where it doesn't wait. */
+  queue: z
+    .object({
+      /** Counted from 1, over all groups. */
+      place: z.number().int(),
+      /** Fits of its group that run, and how many may. */
+      groupRunning: z.number().int(),
+      groupLimit: z.number().int(),
+    })
+    .nullable(),
   replicas: z.number().int(),
   /** Recorded draws a second, all replicas together; null before the first block. */
   drawsPerSecond: numberOrNull,
@@ -129,6 +139,7 @@ export const fitEventSchema = fitSchema.pick({
   status: true,
   message: true,
   progress: true,
+  queue: true,
   drawsPerSecond: true,
   acceptance: true,
   diagnostics: true,

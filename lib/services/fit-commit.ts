@@ -2,6 +2,7 @@ import { type Transaction } from 'sequelize';
 import { Fit, FitBlock, FitReplica } from '@/models';
 import { database } from '@/lib/db';
 import { endedStatuses, fitStatusSchema, type FitStatus } from '@/lib/schemas';
+import { noteEnd } from './fit-mails';
 import { writeDoubles } from './inference-spec';
 import { strideOf } from './fit-schedule';
 import type { StoredReport } from '@/lib/schemas/stored-report';
@@ -70,6 +71,8 @@ async function lockOwn({ fitId, epoch }: Fenced, transaction: Transaction): Prom
       'stopRequested',
       'millisecondsSpent',
       'status',
+      'startedBy',
+      'stoppedBy',
     ],
     transaction,
     lock: transaction.LOCK.UPDATE,
@@ -159,6 +162,7 @@ export async function commitLook(look: LookCommit): Promise<(Standing & { ended:
       { report: { ...report }, ...(ended === null ? {} : ending) },
       { where: { id: fitId, epoch }, transaction },
     );
+    if (ended !== null) await noteEnd(fit, ended, transaction);
     return { ...standing, ended };
   });
 }

@@ -4,7 +4,7 @@ import { presentFit } from '@/lib/presenters/fits';
 import { subscribe } from '@/lib/redis';
 import { endedStatuses, fitEventSchema, type FitEvent } from '@/lib/schemas';
 import type { Access } from './access';
-import { findFit, fitContext } from './fit-records';
+import { findFit, fitContext, queueOf } from './fit-records';
 
 /** Milliseconds between two events of one stream at least, and between two reads that nobody called for. */
 const pace = { between: 500, unasked: 2_000 } as const;
@@ -54,7 +54,8 @@ export async function watchFit(access: Access, watcher: FitWatcher): Promise<() 
     }
   };
   const read = async () => {
-    const event = fitEventSchema.parse(presentFit(await findFit(access), context));
+    const fit = await findFit(access);
+    const event = fitEventSchema.parse(presentFit(fit, { ...context, queue: await queueOf(fit) }));
     if (!stopped) tell(event);
   };
   const turn = async () => {

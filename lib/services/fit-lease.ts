@@ -2,6 +2,7 @@ import { QueryTypes, type Transaction } from 'sequelize';
 import { Fit, FitReplica, MeasurementVersion } from '@/models';
 import { database } from '@/lib/db';
 import { snapshotSchema, type FitStatus, type Snapshot } from '@/lib/schemas';
+import { noteEnd } from './fit-mails';
 import { fitModel, type FitModel } from './fit-model';
 import { program } from './program';
 import { emptyReport, storedReportSchema, type StoredReport } from '@/lib/schemas/stored-report';
@@ -10,12 +11,18 @@ import { emptyReport, storedReportSchema, type StoredReport } from '@/lib/schema
  * Who may write a fit. A worker takes epoch + 1 together with a lease by the database's clock; every later write says
  * `AND epoch = ?`, so that a worker that was paused and comes back changes nothing.
  */
-export const unfinished = ['queued', 'warming-up', 'sampling'] as const satisfies readonly FitStatus[];
+const unfinished = ['queued', 'warming-up', 'sampling'] as const satisfies readonly FitStatus[];
 
-const from = (milliseconds: number) =>
-  `TIMESTAMPADD(MICROSECOND, ${Math.round(milliseconds) * 1000}, UTC_TIMESTAMP(3))`;
-const running = `status IN (${unfinished.map((status) => `'${status}'`).join(', ')})`;
-const leaseOver = '(lease_until IS NULL OR lease_until < UTC_TIMESTAMP(3))';
+/** The database's clock as SQL; a test may put another moment in its place. */
+export const clockAt = (now?: Date): string =>
+  now ? database().escape(now.toISOString().replace('T', ' ').replace('Z', '')) : 'UTC_TIMESTAMP(3)';
+
+export const isUnfinished = `status IN (${unfinished.map((status) => `'${status}'`).join(', ')})`;
+export const isHeld = (at: string): string => `lease_until >= ${at}`;
+export const leaseIsOver = (at: string): string => `(lease_until IS NULL OR lease_until < ${at})`;
+
+const from = (milliseconds: number, now?: Date) =>
+  `TIMESTAMPADD(MICROSECOND, ${Math.round(milliseconds) * 1000}, ${clockAt(now)})`;
 
 /** Runs an UPDATE and says how many rows its WHERE found. */
 async function update(
@@ -31,8 +38,8 @@ async function update(
   return rows;
 }
 
-/** A fit as a worker takes it up: everything that its course depends on. */
-export interface ClaimedFit {
+/** A fit as a worker holds it: everything that its course depends on. */
+export interface HeldFit {
   fitId: string;
   epoch: number;
   model: FitModel;
@@ -48,22 +55,35 @@ export interface ClaimedFit {
   states: Map<number, Buffer>;
 }
 
-/** Takes an unfinished fit whose lease is over. Null where it has ended or another worker holds it. */
-export async function claimFit(fitId: string, leaseMs: number): Promise<ClaimedFit | null> {
+/**
+ * Takes an unfinished fit whose lease is over: its new epoch. Null where it has ended or another worker holds it. Which fit it
+ * is to be is the queue's to say.
+ */
+export async function takeLease(
+  fitId: string,
+  leaseMs: number,
+  now: Date | undefined,
+  transaction: Transaction,
+): Promise<number | null> {
+  const taken = await update(
+    `UPDATE fits SET epoch = epoch + 1, lease_until = ${from(leaseMs, now)},
+       started_at = COALESCE(started_at, ${clockAt(now)}),
+       status = IF(status = 'queued', IF(draws < JSON_VALUE(snapshot, '$.warmup'), 'warming-up', 'sampling'), status)
+     WHERE id = :fitId AND ${isUnfinished} AND ${leaseIsOver(clockAt(now))}`,
+    { fitId },
+    transaction,
+  );
+  if (taken === 0) return null;
+  const fit = await Fit.findByPk(fitId, { attributes: ['epoch'], transaction, rejectOnEmpty: true });
+  return fit.epoch;
+}
+
+/** Reads a fit that was taken at `epoch`; null where another worker has taken it since. */
+export async function readHeld(fitId: string, epoch: number): Promise<HeldFit | null> {
   return database().transaction(async (transaction) => {
-    const taken = await update(
-      `UPDATE fits SET epoch = epoch + 1, lease_until = ${from(leaseMs)},
-         started_at = COALESCE(started_at, UTC_TIMESTAMP(3))
-       WHERE id = :fitId AND ${running} AND ${leaseOver}`,
-      { fitId },
-      transaction,
-    );
-    if (taken === 0) return null;
     const fit = await Fit.findByPk(fitId, { transaction, rejectOnEmpty: true });
+    if (fit.epoch !== epoch) return null;
     const snapshot = snapshotSchema.parse(fit.snapshot);
-    if (fit.status === 'queued') {
-      await fit.update({ status: fit.draws < snapshot.warmup ? 'warming-up' : 'sampling' }, { transaction });
-    }
     const version = await MeasurementVersion.findByPk(fit.measurementVersionId, {
       transaction,
       rejectOnEmpty: true,
@@ -75,7 +95,7 @@ export async function claimFit(fitId: string, leaseMs: number): Promise<ClaimedF
     }
     return {
       fitId,
-      epoch: fit.epoch,
+      epoch,
       model: fitModel(version, snapshot),
       snapshot,
       draws: fit.draws,
@@ -92,7 +112,7 @@ export async function claimFit(fitId: string, leaseMs: number): Promise<ClaimedF
 /** Holds on to a lease; false where another worker has taken the fit. */
 export async function renewLease(fitId: string, epoch: number, leaseMs: number): Promise<boolean> {
   const rows = await update(
-    `UPDATE fits SET lease_until = ${from(leaseMs)} WHERE id = :fitId AND epoch = :epoch AND ${running}`,
+    `UPDATE fits SET lease_until = ${from(leaseMs)} WHERE id = :fitId AND epoch = :epoch AND ${isUnfinished}`,
     { fitId, epoch },
   );
   return rows === 1;
@@ -102,7 +122,7 @@ export async function renewLease(fitId: string, epoch: number, leaseMs: number):
  * Says in the fit's message when it is sampled by another program, Node.js or architecture than its snapshot names: the draws
  * from there on can't be promised to be those of an undisturbed run.
  */
-export async function noteMachine({ fitId, epoch, draws, snapshot }: ClaimedFit): Promise<void> {
+export async function noteMachine({ fitId, epoch, draws, snapshot }: HeldFit): Promise<void> {
   const named = { program: snapshot.program, node: snapshot.node, architecture: snapshot.architecture };
   const parts = (
     [
@@ -129,29 +149,21 @@ export async function releaseLease(fitId: string, epoch: number): Promise<void> 
 
 /** Ends a fit that can't be sampled, with the reason. False where another worker has taken it. */
 export async function failFit(fitId: string, epoch: number, message: string): Promise<boolean> {
-  const rows = await update(
-    `UPDATE fits SET status = 'failed', message = :message, lease_until = NULL, stop_requested = 0,
-       ended_at = UTC_TIMESTAMP(3)
-     WHERE id = :fitId AND epoch = :epoch AND ${running}`,
-    { fitId, epoch, message: message.slice(0, 1000) },
-  );
-  return rows === 1;
-}
-
-/** Ends a fit that can't even be taken up, so that it isn't queued for ever; one that somebody holds is left alone. */
-export async function failUnheld(fitId: string, message: string): Promise<void> {
-  await update(
-    `UPDATE fits SET status = 'failed', message = :message, epoch = epoch + 1, lease_until = NULL,
-       stop_requested = 0, ended_at = UTC_TIMESTAMP(3)
-     WHERE id = :fitId AND ${running} AND ${leaseOver}`,
-    { fitId, message },
-  );
-}
-
-/** Unfinished fits that nobody holds: those that a queue has to be told of (again). */
-export async function unheldFits(): Promise<{ id: string; epoch: number }[]> {
-  return database().query<{ id: string; epoch: number }>(
-    `SELECT id, epoch FROM fits WHERE ${running} AND ${leaseOver} ORDER BY created_at LIMIT 500`,
-    { type: QueryTypes.SELECT },
-  );
+  return database().transaction(async (transaction) => {
+    const rows = await update(
+      `UPDATE fits SET status = 'failed', message = :message, lease_until = NULL, stop_requested = 0,
+         ended_at = UTC_TIMESTAMP(3)
+       WHERE id = :fitId AND epoch = :epoch AND ${isUnfinished}`,
+      { fitId, epoch, message: message.slice(0, 1000) },
+      transaction,
+    );
+    if (rows !== 1) return false;
+    const attributes = ['id', 'epoch', 'startedBy', 'stoppedBy'];
+    await noteEnd(
+      await Fit.findByPk(fitId, { attributes, transaction, rejectOnEmpty: true }),
+      'failed',
+      transaction,
+    );
+    return true;
+  });
 }

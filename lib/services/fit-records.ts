@@ -1,8 +1,16 @@
 import { Fit, Measurement, MeasurementVersion } from '@/models';
 import { AppError, notFound } from '@/lib/errors';
-import { presentFit, type FitContext } from '@/lib/presenters/fits';
-import { snapshotSchema, type Fit as FitAnswer, type Snapshot } from '@/lib/schemas';
+import { workerPlaces } from '@/lib/jobs';
+import { presentFit, type FitContext, type QueuePlace } from '@/lib/presenters/fits';
+import {
+  endedStatuses,
+  fitStatusSchema,
+  snapshotSchema,
+  type Fit as FitAnswer,
+  type Snapshot,
+} from '@/lib/schemas';
 import type { Access } from './access';
+import { placeOf } from './fit-queue';
 import { emailsOf } from './people';
 
 /** The fit of `access`. */
@@ -23,7 +31,18 @@ async function isBlind(fit: Fit): Promise<boolean> {
 
 export async function fitContext(access: Access, fit: Fit): Promise<FitContext> {
   const [people, blind] = await Promise.all([emailsOf([fit.startedBy]), isBlind(fit)]);
-  return { startedBy: people.get(fit.startedBy) ?? '', role: access.role, blind };
+  const queue = await queueOf(fit);
+  return { startedBy: people.get(fit.startedBy) ?? '', role: access.role, blind, queue };
+}
+
+/** Where a fit stands in the queue; null where it runs or has ended. */
+export async function queueOf(fit: Fit): Promise<QueuePlace | null> {
+  const held = fit.leaseUntil !== null && fit.leaseUntil.getTime() > Date.now();
+  if (held || endedStatuses.includes(fitStatusSchema.parse(fit.status))) return null;
+  const [standing, places] = await Promise.all([placeOf(fit.id), workerPlaces().catch(() => null)]);
+  if (!standing) return null;
+  const { place, group, running } = standing;
+  return { place, groupRunning: group.running, groupLimit: group.limit, running, places };
 }
 
 /** The fit of `access` as its members see it. */

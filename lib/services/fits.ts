@@ -25,6 +25,8 @@ import {
 import type { Access } from './access';
 import { recordEvent } from './audit';
 import { canonicalSha256 } from './canonical-json';
+import { expectedSeconds, lastRate } from './fit-cost';
+import { noteEnd } from './fit-mails';
 import { blockDraws, warmupDraws } from './fit-schedule';
 import { readFit } from './fit-records';
 import { inferenceSpec } from './inference-spec';
@@ -103,6 +105,8 @@ export async function addFit(
 ): Promise<Fit> {
   checkFittable(inferenceSpec(version, settings).spec);
   const snapshot = freeze(version, settings, body);
+  const maxDraws = body.maxDraws ?? defaultFit.maxDraws;
+  const now = new Date();
   const last = await Fit.max<number | null, Fit>('number', {
     where: { notebookId: notebook.id },
     transaction,
@@ -116,13 +120,15 @@ export async function addFit(
       measurementVersionId: version.id,
       snapshot,
       snapshotSha256: canonicalSha256(snapshot),
-      maxDraws: body.maxDraws ?? defaultFit.maxDraws,
+      maxDraws,
       targetRhat: body.target?.rhat ?? defaultFit.rhat,
       targetEss: body.target?.ess ?? defaultFit.ess,
       status: 'queued',
       repeatsId: repeats?.id ?? null,
       startedBy: access.actor.userId,
-      createdAt: new Date(),
+      createdAt: now,
+      queuedAt: now,
+      expectedSeconds: expectedSeconds({ snapshot, draws: 0, maxDraws, rate: await lastRate(notebook.id) }),
     },
     { transaction },
   );
@@ -182,6 +188,7 @@ async function change(
     const decided = decide(fit);
     if (decided === null) return null;
     await fit.update(decided.values, { transaction });
+    if (decided.values.status === 'stopped') await noteEnd(fit, 'stopped', transaction);
     await recordChange(access, fit, action, decided.details, transaction);
     return fit.status === 'queued' ? { id: fit.id, epoch: fit.epoch } : null;
   });
@@ -195,9 +202,17 @@ const lookedAt = (fit: Fit): number =>
   (fit.report === null ? emptyReport : storedReportSchema.parse(fit.report)).draws;
 
 /** A new epoch with the new course, so that whoever held the fit before can't write any more. */
-const queuedAgain = (fit: Fit) => ({
+const queuedAgain = (fit: Fit, maxDraws = fit.maxDraws) => ({
   status: 'queued',
   stopRequested: false,
+  stoppedBy: null,
+  queuedAt: new Date(),
+  expectedSeconds: expectedSeconds({
+    snapshot: snapshotSchema.parse(fit.snapshot),
+    draws: fit.draws,
+    maxDraws,
+    rate: fit.drawsPerSecond,
+  }),
   epoch: fit.epoch + 1,
   leaseUntil: null,
   endedAt: null,
@@ -212,10 +227,16 @@ export const stopFit = (access: Access): Promise<FitAnswer> =>
     if (hasEnded(fit) || fit.stopRequested) return null;
     const details = { draws: fit.draws };
     if (!isHeld(fit) && lookedAt(fit) === fit.draws) {
-      const ended = { status: 'stopped', epoch: fit.epoch + 1, leaseUntil: null, endedAt: new Date() };
+      const ended = {
+        status: 'stopped',
+        epoch: fit.epoch + 1,
+        leaseUntil: null,
+        stoppedBy: access.actor.userId,
+        endedAt: new Date(),
+      };
       return { values: ended, details };
     }
-    return { values: { stopRequested: true }, details };
+    return { values: { stopRequested: true, stoppedBy: access.actor.userId }, details };
   });
 
 /** Goes on with a stopped or failed fit up to its budget, or takes a stop back that hasn't come about. */
@@ -223,7 +244,7 @@ export const resumeFit = (access: Access): Promise<FitAnswer> =>
   change(access, 'fit.resume', (fit) => {
     const details = { draws: fit.draws };
     if (!hasEnded(fit)) {
-      if (fit.stopRequested) return { values: { stopRequested: false }, details };
+      if (fit.stopRequested) return { values: { stopRequested: false, stoppedBy: null }, details };
       throw new AppError('conflict', 'The fit is running; there is nothing to resume.');
     }
     if (fit.status === 'stopped') return { values: queuedAgain(fit), details };
@@ -252,5 +273,5 @@ export const extendFit = (access: Access, { draws }: ExtendFit): Promise<FitAnsw
     const details = { draws, maxDraws };
     if (!ended) return { values: { maxDraws }, details };
     const targetFrom = fit.status === 'converged' ? maxDraws : fit.targetFrom;
-    return { values: { ...queuedAgain(fit), maxDraws, targetFrom }, details };
+    return { values: { ...queuedAgain(fit, maxDraws), maxDraws, targetFrom }, details };
   });

@@ -124,6 +124,7 @@ export function fitFixture(change: Partial<Fit> = {}): Fit {
       secondsLeft: 41,
       secondsSpent: 60,
     },
+    queue: null,
     replicas: 4,
     drawsPerSecond: 41200,
     acceptance: [

@@ -5,13 +5,14 @@ import { database } from '@/lib/db';
 import { closeQueue } from '@/lib/jobs';
 import { commitDraws, commitLook, type DrawsCommit } from '@/lib/services/fit-commit';
 import {
-  claimFit,
   failFit,
   releaseLease,
   renewLease,
-  unheldFits,
-  type ClaimedFit,
+  readHeld,
+  takeLease,
+  type HeldFit,
 } from '@/lib/services/fit-lease';
+import { readQueue } from '@/lib/services/fit-queue';
 import { closeConnections } from './harness';
 import { background, openDesk, openNotebook, startFit } from './sampling';
 
@@ -33,14 +34,20 @@ afterAll(async () => {
   await closeConnections();
 });
 
-const claim = async (leaseMs: number): Promise<ClaimedFit> => {
-  const claimed = await claimFit(id, leaseMs);
+/** Takes this file's fit, past the queue. */
+const claimFit = async (leaseMs: number): Promise<HeldFit | null> => {
+  const epoch = await database().transaction((transaction) => takeLease(id, leaseMs, undefined, transaction));
+  return epoch === null ? null : readHeld(id, epoch);
+};
+
+const claim = async (leaseMs: number): Promise<HeldFit> => {
+  const claimed = await claimFit(leaseMs);
   if (!claimed) throw new Error('The fit could not be taken.');
   return claimed;
 };
 
 /** Two draws of each replica, four values each. */
-const twoDraws = ({ epoch, report }: ClaimedFit, from = 0): DrawsCommit => ({
+const twoDraws = ({ epoch, report }: HeldFit, from = 0): DrawsCommit => ({
   fitId: id,
   epoch,
   from,
@@ -62,15 +69,15 @@ const twoDraws = ({ epoch, report }: ClaimedFit, from = 0): DrawsCommit => ({
 
 describe('a lease', () => {
   it('is given to one worker at a time, and again when it has run out', async () => {
-    const [one, two] = await Promise.all([claimFit(id, 60_000), claimFit(id, 60_000)]);
+    const [one, two] = await Promise.all([claimFit(60_000), claimFit(60_000)]);
     expect([one, two].filter((each) => each === null)).toHaveLength(1);
-    expect(await claimFit(id, 60_000)).toBeNull();
+    expect(await claimFit(60_000)).toBeNull();
     await releaseLease(id, 1);
     expect((await claim(60_000)).epoch).toBe(2);
   });
 
   it('keeps a fit from the search for those that nobody holds for as long as it is renewed', async () => {
-    const ids = async () => (await unheldFits()).map((fit) => fit.id);
+    const ids = async () => (await readQueue()).waiting.map((fit) => fit.id);
     expect(await ids()).toContain(id);
     const { epoch } = await claim(300);
     expect(await ids()).not.toContain(id);
