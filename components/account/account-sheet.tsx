@@ -3,12 +3,11 @@
 import Link from 'next/link';
 import { useState } from 'react';
 import useSWR from 'swr';
-import { asRequestError, detailAt, read, send, type RequestError } from '@/components/api/request';
+import { NameForm } from '@/components/api/name-form';
+import { asRequestError, read, send, type RequestError } from '@/components/api/request';
 import { RequestMessage } from '@/components/api/request-message';
 import { Asking } from '@/components/ui/asking';
-import { Button, Buttons } from '@/components/ui/button';
 import { EmptyState } from '@/components/ui/empty-state';
-import { Field } from '@/components/ui/field';
 import { IndexSection } from '@/components/ui/index-list';
 import { PageHead } from '@/components/ui/section';
 import { Sheet, SheetRow } from '@/components/ui/sheet';
@@ -20,46 +19,17 @@ import { TokenTable } from './token-table';
 const path = '/api/v1/me/tokens';
 
 function TokenForm({ onMade }: { onMade: (made: MadeToken) => void }) {
-  const [name, setName] = useState('');
-  const [error, setError] = useState<RequestError | null>(null);
-
-  async function make() {
-    setError(null);
-    try {
-      const { token } = await send<TokenCreated>('POST', path, { name: name.trim() });
-      onMade({ name: name.trim(), token });
-      setName('');
-    } catch (thrown) {
-      setError(asRequestError(thrown));
-    }
-  }
-
   return (
-    <form
-      noValidate
-      className="mt-2 max-w-[460px]"
-      onSubmit={(event) => {
-        event.preventDefault();
-        void make();
+    <NameForm
+      label="Name of a new token"
+      help="Say where it will be used, so that you know which one to revoke."
+      act="Make the token"
+      refused="No token was made"
+      onName={async (name) => {
+        const { token } = await send<TokenCreated>('POST', path, { name });
+        onMade({ name, token });
       }}
-    >
-      <Field
-        label="Name of a new token"
-        name="name"
-        value={name}
-        maxLength={120}
-        autoComplete="off"
-        onChange={(event) => setName(event.target.value)}
-        error={detailAt(error, 'name')}
-        help="Say where it will be used, so that you know which one to revoke."
-      />
-      <Buttons>
-        <Button type="submit" reason={name.trim() ? undefined : 'Give it a name first.'}>
-          Make the token
-        </Button>
-      </Buttons>
-      <RequestMessage error={error} title="No token was made" shown={['name']} />
-    </form>
+    />
   );
 }
 

@@ -10,7 +10,7 @@ import {
   type ReactNode,
 } from 'react';
 import type { FigureNumbers } from '@/lib/figures/csv';
-import { FigureTime } from '../ui/fold';
+import { FigureTime, usePrinting } from '../ui/fold';
 import { FigureCaption } from './figure-caption';
 import { NumbersTable } from './numbers-table';
 
@@ -47,7 +47,11 @@ export interface FigureProps extends FigureFacts {
   children: (size: FigureSize) => ReactNode;
 }
 
-const phone = '(max-width: 759px)';
+/** Paper is never a phone, however narrow. */
+const phone = 'screen and (max-width: 759px)';
+
+/** Width on paper, where the page is scaled to hold it; nothing can be measured in time for printing. */
+const onPaper = 720;
 
 function onPhoneChange(listener: () => void) {
   const query = window.matchMedia(phone);
@@ -71,9 +75,10 @@ export function useNarrow(): boolean {
 export function Figure(props: FigureProps) {
   const { number, caption, label, fileName, save = true, id, height, heightNarrow, numbers, above } = props;
   const holder = useRef<HTMLDivElement>(null);
-  const [width, setWidth] = useState(720);
+  const [width, setWidth] = useState(onPaper);
   const [tabled, setTabled] = useState(false);
   const narrow = useNarrow();
+  const printing = usePrinting();
   const drawn = use(FigureTime) === 'now';
 
   useEffect(() => {
@@ -97,9 +102,9 @@ export function Figure(props: FigureProps) {
         role="img"
         aria-label={label}
         style={heights}
-        className="fig-svg h-(--height) max-tablet:h-(--height-narrow)"
+        className="fig-svg min-h-(--height) max-tablet:min-h-(--height-narrow)"
       >
-        {drawn ? props.children({ width, narrow }) : null}
+        {drawn ? props.children({ width: printing ? onPaper : width, narrow }) : null}
       </div>
       <FigureCaption
         number={number}

@@ -169,7 +169,7 @@ export function ChainsSection(props: ChainsSectionProps) {
         </>
       ) : null}
       {mayStart ? (
-        <>
+        <div className="no-print">
           {fit ? <Subheading>New fit</Subheading> : null}
           <StartForm
             notebookId={notebook.id}
@@ -180,7 +180,7 @@ export function ChainsSection(props: ChainsSectionProps) {
             reason={reason}
             onStarted={props.onStarted}
           />
-        </>
+        </div>
       ) : null}
     </Section>
   );

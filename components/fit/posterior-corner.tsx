@@ -1,8 +1,7 @@
 'use client';
 
-import dynamic from 'next/dynamic';
 import { useMemo, useState } from 'react';
-import type { CornerOverlay } from '@/components/figures/corner-figure';
+import { CornerFigure, type CornerOverlay } from '@/components/figures/corner-figure';
 import { WordButton } from '@/components/ui/word-button';
 import { formatCount } from '@/lib/figures/format';
 import { quantileMcse } from '@/lib/figures/mcse';
@@ -12,9 +11,7 @@ import { isRunning } from './fit-words';
 import { samplesOf } from './overlay';
 import type { Quantity } from './quantities';
 import { useDraws } from './use-fit';
-
-const CornerFigure = dynamic(() => import('@/components/figures/corner-figure').then((m) => m.CornerFigure));
-const OverlayDrop = dynamic(() => import('./overlay-drop').then((m) => m.OverlayDrop));
+import { OverlayDrop } from './overlay-drop';
 
 /** Parameters shown at first. */
 const atFirst = 5;

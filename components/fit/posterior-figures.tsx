@@ -1,7 +1,7 @@
 'use client';
 
-import dynamic from 'next/dynamic';
 import { useMemo, useState } from 'react';
+import { PointsFigure } from '@/components/figures/points-figure';
 import { Num } from '@/components/ui/num';
 import { capital, counted, inWords } from '@/components/words/counts';
 import { keepPoints } from '@/components/notebook/kept-points';
@@ -11,9 +11,7 @@ import { formatCount, formatNumber } from '@/lib/figures/format';
 import type { Fit, Measurement } from '@/lib/schemas';
 import { bestIndex, drawValues, someKept, type FigureDraws } from './draws';
 import { curveOf, type OverlayCurve } from './overlay';
-
-const PointsFigure = dynamic(() => import('@/components/figures/points-figure').then((m) => m.PointsFigure));
-const OverlayDrop = dynamic(() => import('./overlay-drop').then((m) => m.OverlayDrop));
+import { OverlayDrop } from './overlay-drop';
 
 /** Draws behind the band of predictions. */
 const bandDraws = 400;

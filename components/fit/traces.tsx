@@ -1,14 +1,12 @@
 'use client';
 
-import dynamic from 'next/dynamic';
 import { useMemo } from 'react';
+import { TraceFigure } from '@/components/figures/trace-figure';
 import { capital, inWords, listed } from '@/components/words/counts';
 import { formatCount } from '@/lib/figures/format';
 import type { Fit } from '@/lib/schemas';
 import { byReplica, type FigureDraws } from './draws';
 import type { Quantity } from './quantities';
-
-const TraceFigure = dynamic(() => import('@/components/figures/trace-figure').then((m) => m.TraceFigure));
 
 /** What traces are drawn of: the masses; without any, the first two parameters. */
 export function tracedQuantities(quantities: ReadonlyMap<string, Quantity>, draws: FigureDraws): Quantity[] {
@@ -52,7 +50,7 @@ export function Traces({
       traces={traces}
       warmup={Math.min(warmup, warmupTotal)}
       step={draws.stride}
-      caption={`${capital(what)} in the ${inWords(draws.replicas)} replicas of fit ${fit.number} since the start: ${formatCount(warmup)} draws of warm-up, shaded, and ${formatCount(kept)} kept${draws.stride > 1 ? `; every ${formatCount(draws.stride)}th is drawn` : ''}.`}
+      caption={`${capital(what)} in the ${inWords(draws.replicas)} replicas of fit ${fit.number} since the start: ${formatCount(warmup)} draws of warm-up, shaded, and ${formatCount(kept)} kept${draws.stride > 1 ? `; one draw in ${formatCount(draws.stride)} is drawn` : ''}.`}
     />
   );
 }

@@ -1,9 +1,7 @@
-import dynamic from 'next/dynamic';
 import type { ReactNode } from 'react';
+import { PointsFigure } from '@/components/figures/points-figure';
 import { WithheldFigure } from '@/components/figures/withheld-figure';
 import type { Measurement } from '@/lib/schemas';
-
-const PointsFigure = dynamic(() => import('@/components/figures/points-figure').then((m) => m.PointsFigure));
 
 /** The points of a measurement, or of the rows of it that are given. */
 export function MeasurementFigure({

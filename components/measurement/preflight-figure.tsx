@@ -1,9 +1,7 @@
-import dynamic from 'next/dynamic';
+import { PointsFigure } from '@/components/figures/points-figure';
 import { Sym } from '@/components/ui/sym';
 import { listed } from '@/components/words/counts';
 import { marksOf, type PreflightView } from './preflight-view';
-
-const PointsFigure = dynamic(() => import('@/components/figures/points-figure').then((m) => m.PointsFigure));
 
 /** Whose errors the bars are. */
 function errorsSentence(view: PreflightView): string {

@@ -1,7 +1,7 @@
 'use client';
 
-import dynamic from 'next/dynamic';
 import { useDeferredValue, useMemo } from 'react';
+import { PointsFigure } from '@/components/figures/points-figure';
 import { RequestMessage } from '@/components/api/request-message';
 import { Message } from '@/components/ui/message';
 import { Section } from '@/components/ui/section';
@@ -27,8 +27,6 @@ import { SectionRecord } from './section-record';
 import { sectionState } from './section-states';
 import type { SectionFold } from './use-folds';
 import { useSectionSave, type NotebookState } from './use-notebook';
-
-const PointsFigure = dynamic(() => import('@/components/figures/points-figure').then((m) => m.PointsFigure));
 
 export type Priors = Readonly<Record<string, Prior>>;
 

@@ -1,7 +1,7 @@
 'use client';
 
-import dynamic from 'next/dynamic';
 import { useMemo, useState } from 'react';
+import { PointsFigure } from '@/components/figures/points-figure';
 import { RequestMessage } from '@/components/api/request-message';
 import { WithheldFigure } from '@/components/figures/withheld-figure';
 import { Button, Buttons } from '@/components/ui/button';
@@ -30,8 +30,6 @@ import { TemplateSliders } from './template-sliders';
 import { optionsInWords } from './template-words';
 import type { SectionFold } from './use-folds';
 import { useSectionSave, type NotebookState } from './use-notebook';
-
-const PointsFigure = dynamic(() => import('@/components/figures/points-figure').then((m) => m.PointsFigure));
 
 /** A point of parameter space that sliders can be set to. */
 export interface NamedPoint {

@@ -1,0 +1,55 @@
+import type { Page } from 'playwright-core';
+
+/** Signs a person in by the link that the mailbox of the instance shows. */
+export async function signIn(page: Page, url: string, email: string): Promise<void> {
+  await page.goto(`${url}/sign-in`);
+  await page.getByLabel('E-mail address').fill(email);
+  await page.getByRole('button', { name: 'Mail me a link' }).click();
+  await page.waitForURL('**/sign-in/sent**');
+  await page.goto(`${url}/mailbox`);
+  await page
+    .locator(`a[href*="/sign-in/confirm"][href*="${encodeURIComponent(email)}"]`)
+    .first()
+    .click();
+  await page.getByRole('button', { name: /sign in/i }).click();
+  await page.waitForURL('**/groups/**');
+}
+
+/** Asks the API in the name of whoever is signed in on the page. */
+export function ask<T>(page: Page, method: 'GET' | 'POST', path: string, body?: object): Promise<T> {
+  return page.evaluate(
+    async ([method, path, body]) => {
+      const answer = await fetch(`/api/v1${path}`, {
+        method,
+        headers: body ? { 'Content-Type': 'application/json' } : undefined,
+        body: body ? JSON.stringify(body) : undefined,
+      });
+      if (!answer.ok) throw new Error(`${method} ${path}: ${answer.status} ${await answer.text()}`);
+      return (await answer.json()) as T;
+    },
+    [method, path, body] as const,
+  );
+}
+
+/** A notebook of the group that the page stands on: the first one of its index. */
+export async function firstNotebook(page: Page): Promise<string> {
+  const href = await page.locator('a[href^="/notebooks/"]').first().getAttribute('href');
+  if (!href) throw new Error('The group has no notebook.');
+  return href;
+}
+
+/** Starts a fit of a notebook and waits until it has ended; gives its number. */
+export async function fitted(page: Page, notebook: string, settings: object): Promise<number> {
+  const { id } = await ask<{ id: string }>(page, 'POST', `${notebook}/fits`, settings);
+  for (;;) {
+    const fit = await ask<{ number: number; status: string; message: string | null }>(
+      page,
+      'GET',
+      `/fits/${id}`,
+    );
+    if (['converged', 'budget-spent'].includes(fit.status)) return fit.number;
+    if (['failed', 'stopped'].includes(fit.status))
+      throw new Error(`The fit ended as ${fit.status}: ${fit.message ?? ''}`);
+    await page.waitForTimeout(500);
+  }
+}
