@@ -74,7 +74,9 @@ describe('a notebook on paper', () => {
     await page.setViewportSize({ width: 643, height: 957 });
     await expect.poll(() => page.locator('#posterior .c68').count()).toBeGreaterThan(2);
     expect(
-      await page.locator('nav:visible, footer:visible, main button:visible:not(h2 button, table button)').count(),
+      await page
+        .locator('nav:visible, footer:visible, main button:visible:not(h2 button, table button)')
+        .count(),
     ).toBe(0);
     const overlapping = await page.evaluate(() =>
       [...document.querySelectorAll('figure')].flatMap((figure) => {
