@@ -26,6 +26,7 @@ export interface ListedObject {
   key: string;
   /** By the clock of the store. */
   storedAt: Date;
+  bytes: number;
 }
 
 export interface Storage {
@@ -86,8 +87,8 @@ export function openStorage(options: StorageOptions): Storage {
     do {
       const page = await client.send(new ListObjectsCommand({ Bucket, Prefix, MaxKeys, Marker }));
       const objects = page.Contents ?? [];
-      yield objects.flatMap(({ Key, LastModified }) =>
-        Key !== undefined && LastModified ? [{ key: Key, storedAt: LastModified }] : [],
+      yield objects.flatMap(({ Key, LastModified, Size = 0 }) =>
+        Key !== undefined && LastModified ? [{ key: Key, storedAt: LastModified, bytes: Size }] : [],
       );
       Marker = page.IsTruncated ? objects.at(-1)?.Key : undefined;
     } while (Marker !== undefined);

@@ -1,14 +1,17 @@
 import { randomUUID } from 'node:crypto';
+import { hostname } from 'node:os';
 import { Worker } from 'bullmq';
 import { config } from '@/lib/config';
 import { closeDatabase, database } from '@/lib/db';
 import { beat, closeQueue, endBeat, fitsQueue, fitWorkerOptions } from '@/lib/jobs';
+import { tellFacts } from '@/lib/jobs/worker-facts';
 import { log } from '@/lib/log';
 import { closeRedis, queueConnection } from '@/lib/redis';
 import { sendDueMails } from '@/lib/services/fit-mails';
 import { takeNext } from '@/lib/services/fit-queue';
 import { deleteStrayFiles } from '@/lib/services/stray-files';
 import { closeStorage } from '@/storage';
+import packageFile from '@/package.json';
 import { runFit } from './fit-run';
 import { every } from './every';
 import { reasonOf } from './retry';
@@ -46,6 +49,16 @@ worker.on('failed', (job, error) => log.warn({ jobId: job?.id, ...reasonOf(error
 
 const heartbeat = every(5_000, () => beat(workerId, settings.fits), 'the sign of life');
 
+const facts = {
+  host: hostname(),
+  pid: process.pid,
+  threads: settings.threads,
+  fits: settings.fits,
+  version: packageFile.version,
+  startedAt: new Date().toISOString(),
+};
+const telling = every(5_000, () => tellFacts(workerId, facts), 'telling of itself');
+
 /** Redis may be away or have lost its jobs, or a process died between commit and queueing: what waits is looked for anyway. */
 const reconciler = every(settings.reconcileMs, () => taker.fill(), 'the search for fits that wait');
 
@@ -65,6 +78,7 @@ const sweeper = every(
 
 async function close(): Promise<void> {
   heartbeat();
+  telling();
   reconciler();
   postman();
   sweeper();

@@ -1,4 +1,5 @@
 import type { Metadata } from 'next';
+import Link from 'next/link';
 import { cookies } from 'next/headers';
 import { redirect } from 'next/navigation';
 import { lastGroupCookie } from '@/components/account/last-group';
@@ -9,7 +10,7 @@ import { SingleTone } from '@/components/ui/motif';
 import { PageHead } from '@/components/ui/section';
 import { Sheet, SheetRow } from '@/components/ui/sheet';
 import { config } from '@/lib/config';
-import { me, version, visitor } from '@/lib/http/page-data';
+import { administersSite, me, version, visitor } from '@/lib/http/page-data';
 
 export const metadata: Metadata = { title: 'Groups' };
 
@@ -20,7 +21,7 @@ export default async function HomePage({
   searchParams: Promise<Record<string, string | string[] | undefined>>;
 }) {
   const actor = await visitor('/');
-  const { groups } = await me(actor);
+  const [{ groups }, administers] = await Promise.all([me(actor), administersSite(actor)]);
   if ((await searchParams).groups === undefined) {
     const last = (await cookies()).get(lastGroupCookie(new URL(config().url).port))?.value;
     const known = groups.find(({ id }) => id === last) ?? (groups.length === 1 ? groups[0] : undefined);
@@ -38,6 +39,11 @@ export default async function HomePage({
           }
         >
           {groups.length ? null : <SingleTone />}
+          {administers ? (
+            <p>
+              You administer this site. <Link href="/administration">Users, queue, workers and storage</Link>
+            </p>
+          ) : null}
         </PageHead>
         <SheetRow>
           {groups.length ? (

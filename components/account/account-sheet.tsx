@@ -82,7 +82,16 @@ function Tokens({ initial }: { initial: Token[] }) {
 }
 
 /** A person's own page: their tokens, and the way to their groups. */
-export function AccountSheet({ me, tokens }: { me: Me; tokens: Token[] }) {
+export function AccountSheet({
+  me,
+  tokens,
+  administers,
+}: {
+  me: Me;
+  tokens: Token[];
+  /** They administer the site. */
+  administers: boolean;
+}) {
   return (
     <Sheet>
       <PageHead title="Your account" byline={me.email} />
@@ -94,6 +103,12 @@ export function AccountSheet({ me, tokens }: { me: Me; tokens: Token[] }) {
               You belong to {counted(me.groups.length, 'group')}.{' '}
               <Link href="/?groups">See and create groups</Link>
             </p>
+            {administers ? (
+              <p>
+                You administer this site.{' '}
+                <Link href="/administration">Users, queue, workers and storage</Link>
+              </p>
+            ) : null}
           </div>
         </IndexSection>
       </SheetRow>

@@ -4,6 +4,7 @@ import type { NextAuthConfig } from 'next-auth';
 import { skipCSRFCheck } from '@auth/core';
 import { config } from '@/lib/config';
 import { log } from '@/lib/log';
+import { maySignIn, noteSignIn } from '@/lib/services/accounts';
 import { acceptInvitations } from '@/lib/services/invitations';
 import { createAdapter } from './adapter';
 import { cookieName } from './sessions';
@@ -64,6 +65,9 @@ export function authConfig(deliver: Deliver): NextAuthConfig {
       }) as EmailConfig,
     ],
     callbacks: {
+      // A link is mailed to everyone alike; only using it tells whoever owns the address that they may not come in.
+      signIn: async ({ user, email }) =>
+        email?.verificationRequest === true || !user.email || maySignIn(user.email),
       // A fresh object: the one that comes in holds the session's token.
       session: ({ user, session }) => ({
         user: { id: user.id, email: user.email },
@@ -72,7 +76,9 @@ export function authConfig(deliver: Deliver): NextAuthConfig {
     },
     events: {
       async signIn({ user }) {
-        if (user.id && user.email) await acceptInvitations(user.id, user.email);
+        if (!user.id || !user.email) return;
+        await noteSignIn(user.id);
+        await acceptInvitations(user.id, user.email);
       },
     },
     logger: {

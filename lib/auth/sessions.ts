@@ -18,11 +18,11 @@ export function cookieOf(header: string | null, name: string): string | null {
   return null;
 }
 
-/** Whose session this is; null where it is unknown or over. */
+/** Whose session this is; null where it is unknown or over, or they may not sign in. */
 export async function actorOfSession(sessionToken: string): Promise<Actor | null> {
   database();
   const session = await Session.findOne({ where: { sessionToken } });
   if (!session?.userId || session.expires.getTime() <= Date.now()) return null;
   const user = await User.findByPk(session.userId);
-  return user && { userId: user.id, email: user.email };
+  return user?.disabledAt === null ? { userId: user.id, email: user.email } : null;
 }

@@ -14,13 +14,13 @@ export const newToken = (): string => prefix + randomBytes(32).toString('base64u
 /** How stale `lastUsedAt` may be, so that reading costs no write. */
 const usedPrecision = 60_000;
 
-/** Whose token this is; null where it is unknown or revoked. */
+/** Whose token this is; null where it is unknown or revoked, or its owner may not sign in. */
 export async function actorOfToken(token: string): Promise<{ actor: Actor; tokenId: string } | null> {
   if (!token.startsWith(prefix)) return null;
   database();
   const found = await ApiToken.findOne({ where: { tokenHash: hashOfToken(token), revokedAt: null } });
   const user = found && (await User.findByPk(found.userId));
-  if (!found || !user) return null;
+  if (!found || user?.disabledAt !== null) return null;
   const now = new Date();
   if (!found.lastUsedAt || now.getTime() - found.lastUsedAt.getTime() > usedPrecision) {
     await found.update({ lastUsedAt: now });

@@ -62,7 +62,12 @@ function operationOf(path: string, row: Row): Json {
     ...(row.permission === 'anyone' ? { security: [] } : {}),
     ...(row.permission === 'anyone' || row.permission === 'user'
       ? {}
-      : { description: `Asks for the permission \`${row.permission}\` in the group.` }),
+      : {
+          description:
+            row.permission === 'administrator'
+              ? 'For site administrators; to anybody else it doesn’t exist.'
+              : `Asks for the permission \`${row.permission}\` in the group.`,
+        }),
     parameters: parametersOf(path, row),
     ...(requestBody ? { requestBody } : {}),
     responses: {

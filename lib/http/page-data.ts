@@ -9,10 +9,14 @@ import {
   groupLogSchema,
   groupSchema,
   measurementListedSchema,
+  instanceStateSchema,
   measurementSchema,
   meSchema,
   notebookSchema,
+  siteUsersSchema,
+  storageStateSchema,
   tokenSchema,
+  usersQuerySchema,
   type Fit,
   type Group,
   type GroupLog,
@@ -26,6 +30,9 @@ import {
 import type { Action } from '@/lib/policies';
 import { authorise, type Access, type RecordKind } from '@/lib/services/access';
 import { readMe } from '@/lib/services/accounts';
+import { administer, isAdministrator } from '@/lib/services/administration';
+import { readInstanceState, readStorageState } from '@/lib/services/instance-state';
+import { listSiteUsers } from '@/lib/services/site-users';
 import { readFit } from '@/lib/services/fits';
 import { readGroup } from '@/lib/services/groups';
 import { readGroupLog } from '@/lib/services/group-log';
@@ -64,6 +71,23 @@ const accessTo = (actor: Actor, kind: RecordKind, id: string, action: Action): P
   orNotFound(authorise(actor, kind, id, action));
 
 export const me = cache(async (actor: Actor): Promise<Me> => meSchema.parse(await readMe(actor)));
+
+export const administersSite = (actor: Actor): Promise<boolean> => isAdministrator(actor);
+
+/** What the site administrator's page begins with. */
+export async function administration(actor: Actor) {
+  const allowed = await orNotFound(administer(actor));
+  const [state, storage, users] = await Promise.all([
+    readInstanceState(allowed),
+    readStorageState(allowed),
+    listSiteUsers(allowed, usersQuerySchema.parse({})),
+  ]);
+  return {
+    state: instanceStateSchema.parse(state),
+    storage: storageStateSchema.parse(storage),
+    users: siteUsersSchema.parse(users),
+  };
+}
 
 /** Who may do what within a group, in words. */
 export { permissions } from '@/lib/policies/words';

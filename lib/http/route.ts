@@ -3,6 +3,7 @@ import type { z } from 'zod';
 import type { Actor } from '@/lib/auth/actor';
 import { log, pathOf } from '@/lib/log';
 import type { Action } from '@/lib/policies';
+import { administer, type Administration } from '@/lib/services/administration';
 import { authorise, type Access, type RecordKind } from '@/lib/services/access';
 import { authenticate, type Authenticated } from './authenticate';
 import { errorAnswer, json, translate } from './answer';
@@ -33,6 +34,7 @@ export type UserCall<K extends RouteKey> = Call<K> & {
   tokenId: string | null;
 };
 export type MemberCall<K extends RouteKey> = UserCall<K> & { access: Access };
+export type AdministratorCall<K extends RouteKey> = UserCall<K> & { administration: Administration };
 
 /** A handler answers with what its row's schema describes, or with a response of its own (streams, downloads). */
 type Handler<C, K extends RouteKey> = (call: C) => Promise<Answer<K> | Response> | Answer<K> | Response;
@@ -79,9 +81,19 @@ async function plainParams(context: NextContext | undefined): Promise<Record<str
 function verb<K extends RouteKey>(
   key: K,
   permission: Row['permission'],
-  run: (call: Call<K>, caller: Authenticated | null, access: Access | null) => Promise<unknown>,
+  run: (
+    call: Call<K>,
+    caller: Authenticated | null,
+    allowed: Access | Administration | null,
+  ) => Promise<unknown>,
 ): Verb {
   const row = rowOf(key);
+
+  const allow = (actor: Actor, params: Record<string, string>) => {
+    if (permission === 'anyone' || permission === 'user') return null;
+    if (permission === 'administrator') return administer(actor);
+    return authorise(actor, recordKindOf(key), params.id ?? '', permission);
+  };
 
   const serve = async (request: Request, context: NextContext | undefined, outcome: Partial<Outcome>) => {
     const caller = permission === 'anyone' ? null : await authenticate(request);
@@ -91,10 +103,7 @@ function verb<K extends RouteKey>(
       if (row.parts) await limitRate('upload', caller.tokenId);
     }
     const params = await plainParams(context);
-    const access =
-      caller && permission !== 'anyone' && permission !== 'user'
-        ? await authorise(caller.actor, recordKindOf(key), params.id ?? '', permission)
-        : null;
+    const allowed = caller && (await allow(caller.actor, params));
     const given = Object.fromEntries(new URL(request.url).searchParams);
     const call = {
       request,
@@ -102,7 +111,7 @@ function verb<K extends RouteKey>(
       query: row.query && parseOrThrow(row.query, given, 'query'),
       body: row.body && parseOrThrow(row.body, await readJson(request), 'body'),
     } as Call<K>;
-    const result = await run(call, caller, access);
+    const result = await run(call, caller, allowed);
     if (result instanceof Response) return result;
     // The answer is what its schema says: a field that nobody wrote down there stays private.
     return json(row.answer ? row.answer.parse(result) : result, row.status ?? 200);
@@ -153,4 +162,15 @@ export const withMember = <A extends Action, K extends KeysFor<A>>(
   key: K,
   handler: Handler<MemberCall<K>, K>,
 ): Verb =>
-  verb(key, action, async (call, caller, access) => handler({ ...call, ...caller!, access: access! }));
+  verb(key, action, async (call, caller, allowed) =>
+    handler({ ...call, ...caller!, access: allowed as Access }),
+  );
+
+/** Open to site administrators; to anybody else there is nothing here. */
+export const withAdministrator = <K extends KeysFor<'administrator'>>(
+  key: K,
+  handler: Handler<AdministratorCall<K>, K>,
+): Verb =>
+  verb(key, 'administrator', async (call, caller, allowed) =>
+    handler({ ...call, ...caller!, administration: allowed as Administration }),
+  );

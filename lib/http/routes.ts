@@ -2,6 +2,7 @@ import { z } from 'zod';
 import {
   allTakenUpSchema,
   changeRoleSchema,
+  changeUserSchema,
   copyNotebookSchema,
   correlationSchema,
   createGroupSchema,
@@ -19,6 +20,7 @@ import {
   groupSchema,
   healthSchema,
   idSchema,
+  instanceStateSchema,
   invitationSchema,
   inviteSchema,
   logQuerySchema,
@@ -40,12 +42,16 @@ import {
   revisionSchema,
   sampleFormats,
   shiftsSchema,
+  siteUserSchema,
+  siteUsersSchema,
   startFitSchema,
+  storageStateSchema,
   takenUpSchema,
   takeUpSchema,
   templateSchema,
   tokenCreatedSchema,
   tokenSchema,
+  usersQuerySchema,
   versionQuerySchema,
 } from '@/lib/schemas';
 import type { Action } from '@/lib/policies';
@@ -62,8 +68,8 @@ export interface PartRule {
 
 export interface Row {
   summary: string;
-  /** `anyone` needs no sign-in, `user` any signed-in person; an action is asked of the member of the record's group. */
-  permission: 'anyone' | 'user' | Action;
+  /** `anyone` needs no sign-in, `user` any signed-in person, `administrator` one who administers the site; an action is asked of the member of the record's group. */
+  permission: 'anyone' | 'user' | 'administrator' | Action;
   query?: z.ZodType;
   body?: z.ZodType;
   parts?: Readonly<Record<string, PartRule>>;
@@ -342,6 +348,33 @@ export const routes = {
     summary: 'Checksums, snapshot, seeds and versions of a fit.',
     permission: 'fit.read',
     answer: manifestSchema,
+  },
+  'GET /administration': {
+    summary: 'Services with their latency, the queue by group and notebook, workers.',
+    permission: 'administrator',
+    answer: instanceStateSchema,
+  },
+  'GET /administration/storage': {
+    summary: 'What tables and objects take up.',
+    permission: 'administrator',
+    answer: storageStateSchema,
+  },
+  'GET /administration/users': {
+    summary: 'Everybody who has an account, by address, a page at a time.',
+    permission: 'administrator',
+    query: usersQuerySchema,
+    answer: siteUsersSchema,
+  },
+  'PATCH /administration/users/:userId': {
+    summary: 'Let somebody sign in or not.',
+    permission: 'administrator',
+    body: changeUserSchema,
+    answer: siteUserSchema,
+  },
+  'DELETE /administration/users/:userId/sessions': {
+    summary: 'End every session of somebody.',
+    permission: 'administrator',
+    answer: siteUserSchema,
   },
 } as const satisfies Record<`${'GET' | 'POST' | 'PUT' | 'PATCH' | 'DELETE'} /${string}`, Row>;
 

@@ -34,3 +34,12 @@ export async function workerPlaces(): Promise<number> {
   const values = keys.length > 0 ? await redis().mget(keys) : [];
   return values.reduce((sum, value) => sum + Number(value ?? 0), 0);
 }
+
+/** The living workers, with the seconds since each one's last sign of life. */
+export async function livingWorkers(): Promise<{ workerId: string; silentFor: number }[]> {
+  const keys = await beatKeys();
+  const left = await Promise.all(keys.map((key) => redis().pttl(key)));
+  return keys.flatMap((key, i) =>
+    left[i] < 0 ? [] : [{ workerId: key.slice(prefix.length), silentFor: lifetime - left[i] / 1000 }],
+  );
+}

@@ -26,3 +26,9 @@ export async function sendMail({ to, subject, text, id }: Message): Promise<void
     });
   }
 }
+
+/** Rejects where the mail server doesn't answer; sends nothing. */
+export async function mailAnswers(): Promise<void> {
+  transport ??= createTransport(config().smtpUrl, { from: config().mailFrom });
+  await transport.verify();
+}

@@ -8,3 +8,4 @@ export * from './groups';
 export * from './tokens';
 export * from './log';
 export * from './take-up';
+export * from './administration';

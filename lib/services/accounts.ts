@@ -1,4 +1,4 @@
-import { Group, Membership } from '@/models';
+import { Group, Membership, User } from '@/models';
 import { database } from '@/lib/db';
 import { roleSchema, type Me } from '@/lib/schemas';
 import type { Actor } from './access';
@@ -20,4 +20,16 @@ export async function readMe(actor: Actor): Promise<Me> {
       return role === undefined ? [] : [{ id, name, role }];
     }),
   };
+}
+
+/** Whether the owner of an address may come in: whoever is new may, and whom no administrator has shut out. */
+export async function maySignIn(email: string): Promise<boolean> {
+  database();
+  const user = await User.findOne({ where: { email: email.toLowerCase() }, attributes: ['disabledAt'] });
+  return user === null || user.disabledAt === null;
+}
+
+/** Notes that somebody has just signed in. */
+export async function noteSignIn(userId: string): Promise<void> {
+  await User.update({ lastSignInAt: new Date() }, { where: { id: userId } });
 }

@@ -8,7 +8,8 @@ import packageFile from '@/package.json';
 /** How long one service may take to say that it is there. */
 const patience = 2_000;
 
-async function within<T>(answer: Promise<T>): Promise<T | null> {
+/** The answer, or null where it is late or fails. */
+export async function within<T>(answer: Promise<T>): Promise<T | null> {
   let timer: NodeJS.Timeout | undefined;
   const late = new Promise<null>((resolve) => {
     timer = setTimeout(() => resolve(null), patience);

@@ -8,7 +8,7 @@ import { recordKindOf, type Verb } from '@/lib/http/route';
 import { rowOf, routes, type RouteKey } from '@/lib/http/routes';
 import { actionsFor, may } from '@/lib/policies';
 import { groupSchema, roles, type Role } from '@/lib/schemas';
-import { Fit, Invitation, Measurement, MeasurementVersion, Notebook, NotebookRevision } from '@/models';
+import { Fit, Invitation, Measurement, MeasurementVersion, Notebook, NotebookRevision, User } from '@/models';
 import {
   call,
   closeConnections,
@@ -16,6 +16,8 @@ import {
   createMember,
   createMembership,
   createSession,
+  createToken,
+  createUser,
   errorOf,
   unique,
 } from './harness';
@@ -195,7 +197,7 @@ function knock(
 ) {
   const [method] = key.split(' ');
   const { permission } = rowOf(key);
-  const kind = permission === 'anyone' || permission === 'user' ? null : recordKindOf(key);
+  const kind = ['anyone', 'user', 'administrator'].includes(permission) ? null : recordKindOf(key);
   const id = how.id ?? (kind === null ? 'background' : records[kind]);
   return call(exported.get(key)!, {
     method,
@@ -218,7 +220,8 @@ describe('the table of routes', () => {
 
 const open = keys.filter((key) => rowOf(key).permission === 'anyone');
 const signedIn = keys.filter((key) => rowOf(key).permission !== 'anyone');
-const ofGroups = signedIn.filter((key) => rowOf(key).permission !== 'user');
+const ofGroups = signedIn.filter((key) => !['user', 'administrator'].includes(rowOf(key).permission));
+const ofTheSite = keys.filter((key) => rowOf(key).permission === 'administrator');
 const unsafe = signedIn.filter((key) => !key.startsWith('GET '));
 
 describe('roles × routes', () => {
@@ -243,7 +246,8 @@ describe('roles × routes', () => {
     '%s for a %s is as the policies say',
     async (key, role) => {
       const { permission } = rowOf(key);
-      if (permission === 'anyone' || permission === 'user') throw new Error('not of a group');
+      if (permission === 'anyone' || permission === 'user' || permission === 'administrator')
+        throw new Error('not of a group');
       const answer = await knock(key, await subjectOf(key, role));
       await answer.body?.cancel();
       const kind = recordKindOf(key);
@@ -257,6 +261,31 @@ describe('roles × routes', () => {
     const missing = await (await knock(key, { token: outsider.token, id: randomUUID() })).text();
     expect(JSON.parse(foreign)).toMatchObject({ error: { code: 'not_found' } });
     expect(foreign).toBe(missing);
+  });
+});
+
+describe('site administrators × routes', () => {
+  const missing = async (answer: Response) => [answer.status, await answer.text()];
+
+  it.each(ofTheSite)('%s is for a site administrator, and to anybody else not there', async (key) => {
+    const { userId } = await createUser();
+    const admin = await createUser();
+    await User.update({ siteAdmin: true }, { where: { id: admin.userId } });
+    const params = { userId };
+    const allowed = await knock(key, { token: await createToken(admin), params });
+    expect(refusal(allowed.status)).toBe(false);
+    const answers = await Promise.all(
+      [...tokens.values(), outsider.token].map(async (token) => missing(await knock(key, { token, params }))),
+    );
+    expect(new Set(answers.map((answer) => answer.join())).size).toBe(1);
+    expect(answers[0][0]).toBe(404);
+  });
+
+  it('opens no group’s records to a site administrator', async () => {
+    const admin = await createUser();
+    await User.update({ siteAdmin: true }, { where: { id: admin.userId } });
+    const token = await createToken(admin);
+    for (const key of ofGroups) expect((await knock(key, { token })).status, key).toBe(404);
   });
 });
 
