@@ -2,7 +2,6 @@ import { z } from 'zod';
 import {
   allTakenUpSchema,
   changeRoleSchema,
-  changeUserSchema,
   copyNotebookSchema,
   correlationSchema,
   createGroupSchema,
@@ -20,7 +19,6 @@ import {
   groupSchema,
   healthSchema,
   idSchema,
-  instanceStateSchema,
   invitationSchema,
   inviteSchema,
   logQuerySchema,
@@ -42,19 +40,16 @@ import {
   revisionSchema,
   sampleFormats,
   shiftsSchema,
-  siteUserSchema,
-  siteUsersSchema,
   startFitSchema,
-  storageStateSchema,
   takenUpSchema,
   takeUpSchema,
   templateSchema,
   tokenCreatedSchema,
   tokenSchema,
-  usersQuerySchema,
   versionQuerySchema,
 } from '@/lib/schemas';
 import type { Action } from '@/lib/policies';
+import { administrationRoutes } from './administration-routes';
 
 /** Largest part `meta` of an upload: a name, a description and column names. */
 export const metaLimit = 64 * 1024;
@@ -349,33 +344,7 @@ export const routes = {
     permission: 'fit.read',
     answer: manifestSchema,
   },
-  'GET /administration': {
-    summary: 'Services with their latency, the queue by group and notebook, workers.',
-    permission: 'administrator',
-    answer: instanceStateSchema,
-  },
-  'GET /administration/storage': {
-    summary: 'What tables and objects take up.',
-    permission: 'administrator',
-    answer: storageStateSchema,
-  },
-  'GET /administration/users': {
-    summary: 'Everybody who has an account, by address, a page at a time.',
-    permission: 'administrator',
-    query: usersQuerySchema,
-    answer: siteUsersSchema,
-  },
-  'PATCH /administration/users/:userId': {
-    summary: 'Let somebody sign in or not.',
-    permission: 'administrator',
-    body: changeUserSchema,
-    answer: siteUserSchema,
-  },
-  'DELETE /administration/users/:userId/sessions': {
-    summary: 'End every session of somebody.',
-    permission: 'administrator',
-    answer: siteUserSchema,
-  },
+  ...administrationRoutes,
 } as const satisfies Record<`${'GET' | 'POST' | 'PUT' | 'PATCH' | 'DELETE'} /${string}`, Row>;
 
 export type RouteKey = keyof typeof routes;

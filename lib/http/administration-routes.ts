@@ -1,0 +1,39 @@
+import {
+  changeUserSchema,
+  instanceStateSchema,
+  siteUserSchema,
+  siteUsersSchema,
+  storageStateSchema,
+  usersQuerySchema,
+} from '@/lib/schemas';
+
+/** The site administrator's rows of the table of routes. */
+export const administrationRoutes = {
+  'GET /administration': {
+    summary: 'Services with their latency, the queue by group and notebook, workers.',
+    permission: 'administrator',
+    answer: instanceStateSchema,
+  },
+  'GET /administration/storage': {
+    summary: 'What tables and objects take up.',
+    permission: 'administrator',
+    answer: storageStateSchema,
+  },
+  'GET /administration/users': {
+    summary: 'Everybody who has an account, by address, a page at a time.',
+    permission: 'administrator',
+    query: usersQuerySchema,
+    answer: siteUsersSchema,
+  },
+  'PATCH /administration/users/:userId': {
+    summary: 'Let somebody sign in or not.',
+    permission: 'administrator',
+    body: changeUserSchema,
+    answer: siteUserSchema,
+  },
+  'DELETE /administration/users/:userId/sessions': {
+    summary: 'End every session of somebody.',
+    permission: 'administrator',
+    answer: siteUserSchema,
+  },
+} as const;
