@@ -9,7 +9,8 @@ import { Stamp } from '@/components/ui/num';
 import { PageHead } from '@/components/ui/section';
 import { Sheet, SheetRow } from '@/components/ui/sheet';
 import { fileSize } from '@/components/words/counts';
-import type { InstanceState, SiteUsers, StorageState } from '@/lib/schemas';
+import type { FitLimits, InstanceState, SiteUsers, StorageState } from '@/lib/schemas';
+import { LimitTable } from './limit-table';
 import { queueNote, QueueTable, ServiceTable, StorageTable, WorkerTable } from './state-tables';
 import { UserTable } from './user-table';
 
@@ -17,6 +18,7 @@ export interface AdministrationSheetProps {
   state: InstanceState;
   storage: StorageState;
   users: SiteUsers;
+  limits: FitLimits;
   /** Who looks at it. */
   reader: string;
 }
@@ -35,6 +37,7 @@ function contentsOf(state: InstanceState, storage: StorageState, users: SiteUser
       title: 'Workers',
       note: state.workers === null ? 'unknown' : `${state.workers.length} alive`,
     },
+    { href: '#limits', title: 'Fits at once' },
     { href: '#users', number: users.count, title: 'Users' },
     {
       href: '#storage',
@@ -79,6 +82,9 @@ export function AdministrationSheet(initial: AdministrationSheetProps) {
         </IndexSection>
         <IndexSection id="workers" title="Workers">
           <WorkerTable workers={state.workers} />
+        </IndexSection>
+        <IndexSection id="limits" title="Fits at once">
+          <LimitTable initial={initial.limits} />
         </IndexSection>
         <IndexSection id="users" title="Users">
           <UserTable initial={initial.users} reader={initial.reader} />

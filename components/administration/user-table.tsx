@@ -12,7 +12,7 @@ import { Stamp } from '@/components/ui/num';
 import { StateWord } from '@/components/ui/state-word';
 import { DataTable } from '@/components/ui/table';
 import { WordButton } from '@/components/ui/word-button';
-import { counted } from '@/components/words/counts';
+import { capital, counted } from '@/components/words/counts';
 import type { SiteUser, SiteUsers } from '@/lib/schemas';
 
 const path = '/api/v1/administration/users';
@@ -93,11 +93,7 @@ function Rows({ users, reader, ask }: { users: SiteUser[]; reader: string; ask: 
             </span>
           ),
           groups: user.groups.length
-            ? user.groups.map(({ id, name, role }) => (
-                <span key={id} className="block wrap-anywhere">
-                  {name}, {role}
-                </span>
-              ))
+            ? user.groups.map(({ name, role }) => `${name}, ${role}`).join('; ')
             : 'none',
           last: user.lastSignInAt ? <Stamp at={user.lastSignInAt} /> : 'never',
           open: `${user.sessions}, ${user.tokens}`,
@@ -183,7 +179,7 @@ export function UserTable({ initial, reader }: { initial: SiteUsers; reader: str
             setSearch(event.target.value.trim());
             setPages([]);
           }}
-          help={<span role="status">{counted(data.count, 'user')} found.</span>}
+          help={<span role="status">{capital(counted(data.count, 'user'))} found.</span>}
         />
       </div>
       {data.users.length ? (

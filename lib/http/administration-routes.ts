@@ -1,6 +1,8 @@
 import {
   changeUserSchema,
+  fitLimitsSchema,
   instanceStateSchema,
+  setFitLimitSchema,
   siteUserSchema,
   siteUsersSchema,
   storageStateSchema,
@@ -18,6 +20,17 @@ export const administrationRoutes = {
     summary: 'What tables and objects take up.',
     permission: 'administrator',
     answer: storageStateSchema,
+  },
+  'GET /administration/limits': {
+    summary: 'How many fits each group may run at once, with what runs and waits.',
+    permission: 'administrator',
+    answer: fitLimitsSchema,
+  },
+  'PATCH /administration/limits': {
+    summary: 'Set how many fits a group, or every group without a limit of its own, may run at once.',
+    permission: 'administrator',
+    body: setFitLimitSchema,
+    answer: fitLimitsSchema,
   },
   'GET /administration/users': {
     summary: 'Everybody who has an account, by address, a page at a time.',

@@ -5,6 +5,7 @@ import type { Actor } from '@/lib/auth/actor';
 import { auth } from '@/lib/auth/current';
 import { AppError } from '@/lib/errors';
 import {
+  fitLimitsSchema,
   fitSchema,
   groupLogSchema,
   groupSchema,
@@ -33,6 +34,7 @@ import { readMe } from '@/lib/services/accounts';
 import { administer, isAdministrator } from '@/lib/services/administration';
 import { readInstanceState, readStorageState } from '@/lib/services/instance-state';
 import { listSiteUsers } from '@/lib/services/site-users';
+import { readFitLimits } from '@/lib/services/fit-limits';
 import { readFit } from '@/lib/services/fits';
 import { readGroup } from '@/lib/services/groups';
 import { readGroupLog } from '@/lib/services/group-log';
@@ -77,15 +79,17 @@ export const administersSite = (actor: Actor): Promise<boolean> => isAdministrat
 /** What the site administrator's page begins with. */
 export async function administration(actor: Actor) {
   const allowed = await orNotFound(administer(actor));
-  const [state, storage, users] = await Promise.all([
+  const [state, storage, users, limits] = await Promise.all([
     readInstanceState(allowed),
     readStorageState(allowed),
     listSiteUsers(allowed, usersQuerySchema.parse({})),
+    readFitLimits(actor),
   ]);
   return {
     state: instanceStateSchema.parse(state),
     storage: storageStateSchema.parse(storage),
     users: siteUsersSchema.parse(users),
+    limits: fitLimitsSchema.parse(limits),
   };
 }
 

@@ -98,3 +98,26 @@ export const siteUsersSchema = z.object({
 export type SiteUsers = z.infer<typeof siteUsersSchema>;
 
 export const changeUserSchema = z.strictObject({ disabled: z.boolean() });
+
+/** How many fits a group may run at once: its own limit, else what holds for every group, else the configuration. */
+export const fitLimitsSchema = z.object({
+  everyGroup: z.number().int().nullable(),
+  configured: z.number().int(),
+  groups: z.array(
+    z.object({
+      id: idSchema,
+      name: z.string(),
+      limit: z.number().int().nullable(),
+      running: z.number().int(),
+      waiting: z.number().int(),
+    }),
+  ),
+});
+export type FitLimits = z.infer<typeof fitLimitsSchema>;
+
+export const setFitLimitSchema = z.strictObject({
+  /** Null for every group without a limit of its own. */
+  groupId: idSchema.nullable(),
+  /** Null takes the limit back. */
+  fits: z.number().nullable(),
+});

@@ -15,7 +15,7 @@ import {
 } from '@/lib/schemas';
 import { storage } from '@/storage';
 import type { Administration } from './administration';
-import { unfinished } from './fit-lease';
+import { clockAt, isHeld, isUnfinished } from './fit-lease';
 import { within } from './health';
 
 /** Most fits that are listed. */
@@ -29,13 +29,11 @@ async function timed(name: ServiceName, answer: Promise<unknown>): Promise<Servi
 }
 
 async function readQueue(): Promise<InstanceState['queue']> {
-  const where = 'f.status IN (:unfinished)';
-  const held = '(f.lease_until IS NOT NULL AND f.lease_until >= UTC_TIMESTAMP(3))';
-  const replacements = { unfinished: [...unfinished], listed };
+  const held = `(${isHeld(clockAt())})`;
   const [[counts], rows] = await Promise.all([
     database().query<{ all: number; running: number }>(
-      `SELECT COUNT(*) AS \`all\`, COALESCE(SUM(${held}), 0) AS running FROM fits f WHERE ${where}`,
-      { replacements, type: QueryTypes.SELECT },
+      `SELECT COUNT(*) AS \`all\`, COALESCE(SUM(${held}), 0) AS running FROM fits f WHERE ${isUnfinished}`,
+      { type: QueryTypes.SELECT },
     ),
     database().query<{
       fitId: string;
@@ -49,9 +47,9 @@ async function readQueue(): Promise<InstanceState['queue']> {
     }>(
       `SELECT f.id AS fitId, f.group_id AS groupId, g.name AS groupName, f.notebook_id AS notebookId, f.number,
          f.status, ${held} AS held, COALESCE(f.started_at, f.created_at) AS since
-       FROM fits f JOIN \`groups\` g ON g.id = f.group_id WHERE ${where}
+       FROM fits f JOIN \`groups\` g ON g.id = f.group_id WHERE ${isUnfinished}
        ORDER BY held DESC, f.created_at, f.id LIMIT :listed`,
-      { replacements, type: QueryTypes.SELECT },
+      { replacements: { listed }, type: QueryTypes.SELECT },
     ),
   ]);
   const running = Number(counts.running);

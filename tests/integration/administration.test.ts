@@ -1,5 +1,6 @@
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { GET as stateRoute } from '@/app/api/v1/administration/route';
+import { PATCH as limitsRoute } from '@/app/api/v1/administration/limits/route';
 import { GET as storageRoute } from '@/app/api/v1/administration/storage/route';
 import { GET as usersRoute } from '@/app/api/v1/administration/users/route';
 import { PATCH as userRoute } from '@/app/api/v1/administration/users/[userId]/route';
@@ -12,7 +13,13 @@ import { config } from '@/lib/config';
 import { database } from '@/lib/db';
 import { beat, endBeat } from '@/lib/jobs';
 import { tellFacts } from '@/lib/jobs/worker-facts';
-import { instanceStateSchema, siteUsersSchema, siteUserSchema, storageStateSchema } from '@/lib/schemas';
+import {
+  fitLimitsSchema,
+  instanceStateSchema,
+  siteUsersSchema,
+  siteUserSchema,
+  storageStateSchema,
+} from '@/lib/schemas';
 import { Membership, User } from '@/models';
 import { storage } from '@/storage';
 import {
@@ -169,7 +176,7 @@ describe('the state of the site', () => {
 
   it('lists living workers with what they told of themselves, and forgets those that ended', async () => {
     const id = unique('worker');
-    await beat(id);
+    await beat(id, 4);
     expect((await state()).workers).toContainEqual(expect.objectContaining({ id, host: null }));
     const facts = {
       host: 'here',
@@ -199,5 +206,23 @@ describe('the state of the site', () => {
     const seen = await objects();
     expect(seen?.count).toBeGreaterThan(0);
     expect(seen?.bytes).toBeGreaterThanOrEqual(12_345);
+  });
+});
+
+describe('the limit of fits', () => {
+  const set = (json: unknown) => call(limitsRoute, { method: 'PATCH', token, json });
+
+  it('of a group is set and taken back; what is no limit is refused at its field', async () => {
+    const groupId = await createGroup();
+    const limitOf = async (answer: Response) =>
+      fitLimitsSchema.parse(await answer.json()).groups.find(({ id }) => id === groupId)?.limit;
+    expect(await limitOf(await set({ groupId, fits: 5 }))).toBe(5);
+    for (const fits of [0, 65, 1.5]) {
+      const refused = await errorOf(await set({ groupId, fits }));
+      expect([refused.status, refused.details[0].path]).toEqual([422, 'fits']);
+    }
+    expect(await limitOf(await set({ groupId, fits: null }))).toBeNull();
+    const missing = { groupId: '00000000-0000-4000-8000-000000000000', fits: 1 };
+    expect((await set(missing)).status).toBe(404);
   });
 });
