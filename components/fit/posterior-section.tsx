@@ -12,6 +12,7 @@ import { templateInWords } from '@/components/notebook/template-words';
 import type { SectionFold } from '@/components/notebook/use-folds';
 import { counted } from '@/components/words/counts';
 import type { Fit, Measurement, Notebook } from '@/lib/schemas';
+import { fieldCount } from '@/lib/templates';
 import type { FigureDraws } from './draws';
 import { MarginalTable } from './marginal-table';
 import { Corner } from './posterior-corner';
@@ -30,8 +31,8 @@ export interface PosteriorSectionProps {
 /** What limits the numbers above it. */
 function Cautions({ fit }: { fit: Fit }) {
   const { template } = fit.snapshot;
-  const fields = typeof template.options.fields === 'number' ? template.options.fields : 0;
-  const locked = template.id === 'locked-squeezed';
+  const fields = fieldCount(template.options.fields);
+  const locked = template.id.startsWith('locked-') || template.id === 'light';
   return (
     <>
       <Caution>

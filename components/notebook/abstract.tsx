@@ -5,6 +5,7 @@ import { Sym } from '@/components/ui/sym';
 import { capital, counted, inWords } from '@/components/words/counts';
 import { KappaRange } from '@/components/words/kappa';
 import type { Fit, Measurement, Notebook } from '@/lib/schemas';
+import { fieldCount } from '@/lib/templates';
 import { templateInWords } from './template-words';
 
 /** One power of κ; −1 with its true minus. */
@@ -44,7 +45,7 @@ export function TemplateInWords({
   /** True at the beginning of a sentence. */
   initial?: boolean;
 }) {
-  const words = templateInWords(id, typeof options.fields === 'number' ? options.fields : 0);
+  const words = templateInWords(id, fieldCount(options.fields));
   return (
     <>
       {initial ? capital(words) : words}

@@ -18,6 +18,8 @@ const fieldChoices: Record<string, readonly number[]> = {
   background: [],
   'free-phase': [1, 2, 3, 4],
   'locked-squeezed': [1, 2, 3],
+  'locked-exact': [1, 2, 3],
+  light: [1, 2, 3],
 };
 
 export interface CreateNotebookFormProps {

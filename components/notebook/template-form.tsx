@@ -4,7 +4,7 @@ import { detailAt, type RequestError } from '@/components/api/request';
 import { CheckField, SelectField } from '@/components/ui/field';
 import { NumberField } from '@/components/ui/number-field';
 import { inWords } from '@/components/words/counts';
-import { templateCatalogue, type OptionDeclaration } from '@/lib/templates';
+import { fieldCount, templateCatalogue, type OptionDeclaration } from '@/lib/templates';
 import type { TemplateSettings } from './prediction';
 
 const catalogue = templateCatalogue().map(({ id, title, summary, options }) => ({
@@ -15,7 +15,7 @@ const catalogue = templateCatalogue().map(({ id, title, summary, options }) => (
 }));
 
 /** Fields that can be fitted: jumps reach three with mixing, four where amplitudes are free. */
-const mostFields: Record<string, number> = { 'locked-squeezed': 3 };
+const mostFields: Record<string, number> = { 'locked-squeezed': 3, 'locked-exact': 3, light: 3 };
 
 const optionLabels: Record<string, string> = {
   fields: 'Number of fields',
@@ -50,10 +50,14 @@ const powerLabels: Record<string, string> = {
 export function carryOver(id: string, options: Record<string, unknown>): TemplateSettings {
   const names = catalogue.find((template) => template.id === id)?.options.map(({ name }) => name) ?? [];
   const kept = Object.entries(options).filter(([name]) => names.includes(name));
-  const fields = options.fields;
+  const declared = catalogue.find((template) => template.id === id)?.options ?? [];
+  const lists = declared.some(({ name, kind }) => name === 'fields' && kind === 'fields');
+  const fields = Array.isArray(options.fields) && !lists ? options.fields.length : options.fields;
   const most = mostFields[id];
   const capped =
-    most !== undefined && typeof fields === 'number' && fields > most ? [['fields', most] as const] : [];
+    typeof fields === 'number' && names.includes('fields')
+      ? [['fields', Math.min(fields, most ?? fields)] as const]
+      : [];
   return { id, options: Object.fromEntries([...kept, ...capped]) };
 }
 
@@ -84,6 +88,44 @@ function Option({ option, settings, hasEdges, error, onValue }: OptionProps) {
           error={error}
           onChange={(event) => onValue(Number(event.target.value))}
         />
+      );
+    }
+    case 'fields': {
+      const max = mostFields[settings.id] ?? option.max;
+      const count = fieldCount(value ?? option.default);
+      const light = Array.isArray(value) ? value.filter((kind) => kind === 'light').length : 0;
+      const choose = (fields: number, lightOnes: number) =>
+        onValue(
+          lightOnes === 0
+            ? fields
+            : Array.from({ length: fields }, (_, i) => (i < lightOnes ? 'light' : 'heavy')),
+        );
+      return (
+        <>
+          <SelectField
+            label={label}
+            name={name}
+            value={String(count)}
+            options={Array.from({ length: max - option.min + 1 }, (_, i) => ({
+              value: String(option.min + i),
+              label: inWords(option.min + i),
+            }))}
+            error={error}
+            onChange={(event) =>
+              choose(Number(event.target.value), Math.min(light, Number(event.target.value)))
+            }
+          />
+          <SelectField
+            label="Of them light, m < 3H/2"
+            name={`${name}-light`}
+            value={String(light)}
+            options={Array.from({ length: count + 1 }, (_, i) => ({
+              value: String(i),
+              label: i === 0 ? 'none' : inWords(i),
+            }))}
+            onChange={(event) => choose(count, Number(event.target.value))}
+          />
+        </>
       );
     }
     case 'choice':

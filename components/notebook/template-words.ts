@@ -7,6 +7,9 @@ export function templateInWords(id: string, fields: number): string {
   if (id === 'free-phase') return `${count} with free amplitudes`;
   if (id === 'locked-squeezed')
     return fields === 1 ? 'one exchanged field' : `${inWords(fields)} mixed fields`;
+  if (id === 'locked-exact')
+    return fields === 1 ? 'one exchanged field, exactly' : `${inWords(fields)} mixed fields, exactly`;
+  if (id === 'light') return fields === 1 ? 'one light field' : `${inWords(fields)} mixed light fields`;
   return count;
 }
 

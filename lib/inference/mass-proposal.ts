@@ -9,7 +9,6 @@ import {
   gatherEdges,
   temperedWeights,
 } from './mass-grid';
-import { drawOrderedMasses } from './ordered-masses';
 import { massRange, type ParameterLayout } from './parameter-layout';
 import { lnPriorDensity, priorCdf } from './priors';
 
@@ -35,10 +34,10 @@ export const noMasses: MassProposal = { draw: () => undefined, logDensity: () =>
 /** ln prior of all masses in order, fixed ones left out; −Infinity out of order or outside the supports. */
 function lnMassPrior(layout: ParameterLayout, full: Float64Array): number {
   let sum = -layout.logOrderProbability;
+  if (!layout.massOrder.holds((f) => full[layout.masses[f]])) return -Infinity;
   for (let f = 0; f < layout.masses.length; f += 1) {
     const x = full[layout.masses[f]];
     const prior = layout.massPriors[f];
-    if (f > 0 && !(x > full[layout.masses[f - 1]])) return -Infinity;
     if (prior.kind !== 'fixed') sum += lnPriorDensity(prior, x);
   }
   return sum;
@@ -72,7 +71,7 @@ export class GridMixture implements MassProposal {
       this.drawCell(rng, full);
       return;
     }
-    drawOrderedMasses(this.layout.massPriors, rng, this.drawn);
+    this.layout.massOrder.draw(rng, this.drawn);
     for (let f = 0; f < this.drawn.length; f += 1) full[this.layout.masses[f]] = this.drawn[f];
   }
 
@@ -186,8 +185,8 @@ export function planeProposal(
       full[a] = xs[i];
       system.replace(first, system.model.moments(first, xs[i]));
       for (let j = 0; j < ys.length; j += 1) {
-        // Only cells with some room for the order μ_first < μ_second.
-        if (x[i] >= y[j + 1]) continue;
+        // Only cells with some room for the order of the two masses.
+        if (!layout.massOrder.hasRoom(first, [x[i], x[i + 1]], second, [y[j], y[j + 1]])) continue;
         full[b] = ys[j];
         system.replace(second, yMoments[j]);
         for (let k = 0; k < evidences.length; k += 1) {

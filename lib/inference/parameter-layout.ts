@@ -1,7 +1,8 @@
 import type { CompiledTemplate, ParameterDeclaration, ParameterRole, Prior } from '@/lib/templates';
 import { InferenceError } from './inference-error';
 import { isScalarPrior, priorSupport, validatePrior, type ScalarPrior } from './priors';
-import { logOrderProbability, type MassPrior } from './ordered-masses';
+import { MassOrder } from './mass-order';
+import type { MassPrior } from './ordered-masses';
 import type { InferenceSpec } from './types';
 
 /** Which parameter is what, and which are sampled. Indices are into the template's parameters unless said. */
@@ -18,6 +19,7 @@ export interface ParameterLayout {
   /** Mass parameter of every field. */
   readonly masses: readonly number[];
   readonly massPriors: readonly MassPrior[];
+  readonly massOrder: MassOrder;
   /** ln P(masses come in order). */
   readonly logOrderProbability: number;
   readonly angles: readonly number[];
@@ -76,13 +78,19 @@ export function layOutParameters(spec: Pick<InferenceSpec, 'template' | 'priors'
 
   const masses = template.blocks.map((block) => block.mass);
   const massPriors = masses.map((index) => priors[index] as MassPrior);
-  const logOrder = logOrderProbability(massPriors);
+  const massOrder = new MassOrder(
+    template.blocks.map(({ kind }) => kind),
+    massPriors,
+  );
+  const logOrder = massOrder.logProbability;
   if (logOrder === -Infinity) {
     const names = masses.map((index) => parameters[index].name);
+    const signs = template.blocks.map(({ kind }) => (kind === 'light' ? ' > ' : ' < '));
+    const order = names.reduce((text, name, f) => text + signs[f] + name);
     throw new InferenceError(
       'prior_order_impossible',
       `priors.${names[names.length - 1]}`,
-      `the priors of ${names.join(', ')} leave no room for the order ${names.join(' < ')}`,
+      `the priors of ${names.join(', ')} leave no room for the order ${order}`,
       'let the ranges overlap, or exchange the priors',
     );
   }
@@ -110,6 +118,7 @@ export function layOutParameters(spec: Pick<InferenceSpec, 'template' | 'priors'
     base,
     masses,
     massPriors,
+    massOrder,
     logOrderProbability: logOrder,
     angles,
     isotropic,

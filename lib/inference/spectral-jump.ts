@@ -18,6 +18,7 @@ import { greedyGain, singleGain } from './greedy-gain';
 import { cellCentres } from './mass-grid';
 import { PairEvidence } from './pair-evidence';
 import { scalarPriorOf, type ParameterLayout } from './parameter-layout';
+import { productProposal } from './product-proposal';
 import { MixingStage } from './stage-mixing';
 import { PolarStage } from './stage-polar';
 import { QuadratureStage } from './stage-quadrature';
@@ -206,6 +207,8 @@ export function buildSpectralJump(
   else if (sampled.length === 1) masses = lineProposal(layout, grids, evidence, sampled[0], settings);
   else if (sampled.length === 2) {
     masses = planeProposal(layout, grids, evidence, [sampled[0], sampled[1]], settings);
+  } else if (!layout.massOrder.ascending) {
+    masses = productProposal(layout, sampled, (f, mass) => singleGain(model, f, mass), settings);
   } else {
     masses = new OneMassProposal(layout, grids, evidence, settings, (edges) =>
       cellCentres(edges).map((mass) => singleGain(model, 0, mass)),

@@ -2,7 +2,6 @@ import { drawIsotropicAngles, logIsotropicDensity, mixingWeights } from '@/lib/t
 import type { Rng, Target } from '@/lib/sampler';
 import { FieldUnits } from './field-units';
 import type { Likelihood } from './likelihoods';
-import { drawOrderedMasses } from './ordered-masses';
 import { scalarPriorOf, type ParameterLayout } from './parameter-layout';
 import { drawFromPrior, lnPriorDensity, type ScalarPrior } from './priors';
 import type { WhitenedField } from './whitened-field';
@@ -113,10 +112,13 @@ export function buildLogPrior(layout: ParameterLayout): (full: Float64Array) => 
     scalars.push({ index, prior, constant });
   }
   const angles = new Float64Array(layout.angles.length);
-  const { masses } = layout;
+  const { masses, massOrder } = layout;
+  let read: Float64Array;
+  const massOf = (f: number): number => read[masses[f]];
   return (full) => {
     let sum = -layout.logOrderProbability;
-    for (let f = 1; f < masses.length; f += 1) if (!(full[masses[f]] > full[masses[f - 1]])) return -Infinity;
+    read = full;
+    if (!massOrder.holds(massOf)) return -Infinity;
     for (let i = 0; i < scalars.length; i += 1) {
       const { index, prior, constant } = scalars[i];
       const x = full[index];
@@ -146,7 +148,7 @@ export function buildDrawPrior(layout: ParameterLayout): (rng: Rng, full: Float6
     return prior && !masses.includes(index) ? [{ index, prior }] : [];
   });
   return (rng, full) => {
-    if (masses.length > 0) drawOrderedMasses(layout.massPriors, rng, drawnMasses);
+    if (masses.length > 0) layout.massOrder.draw(rng, drawnMasses);
     for (let f = 0; f < masses.length; f += 1) full[masses[f]] = drawnMasses[f];
     if (layout.isotropic) {
       drawIsotropicAngles(() => rng.uniform(), angles);

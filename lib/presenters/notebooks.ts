@@ -10,6 +10,7 @@ import {
   type NotebookSummary,
   type Revision,
 } from '@/lib/schemas';
+import { fieldCount } from '@/lib/templates';
 
 /** E-mail addresses by user's id. */
 export type People = ReadonlyMap<string, string>;
@@ -50,8 +51,7 @@ export function presentNotebookCreated(
 }
 
 /** Fields of the template as its options say; a template without the option has none. */
-const fieldsOf = ({ template }: NotebookSettings): number =>
-  typeof template.options.fields === 'number' ? template.options.fields : 0;
+const fieldsOf = ({ template }: NotebookSettings): number => fieldCount(template.options.fields);
 
 export function presentNotebookSummary(
   notebook: NotebookRow,

@@ -27,7 +27,7 @@ export const parameterSchema = z.object({
 /** One option of a template: what it accepts, by `kind`. */
 export const templateOptionSchema = z.object({
   name: z.string(),
-  kind: z.enum(['integer', 'number', 'choice', 'powers', 'boolean']),
+  kind: z.enum(['integer', 'number', 'choice', 'powers', 'fields', 'boolean']),
   min: z.number().optional(),
   max: z.number().optional(),
   values: z

@@ -4,12 +4,14 @@ import type { TemplateDeclaration } from './declaration';
 import { TemplateError, quoteValue } from './errors';
 import type { TemplateFormula } from './formula';
 import { freePhase } from './free-phase';
+import { light } from './light';
+import { lockedExact } from './locked-exact';
 import { lockedSqueezed } from './locked-squeezed';
 import type { OptionDeclaration } from './options';
 import type { Axis, CompiledTemplate, DerivedDeclaration, ParameterDeclaration } from './types';
 
 /** Every template, in the order in which they are listed. A new template is one new file and one entry here. */
-const TEMPLATES: readonly TemplateDeclaration[] = [background, freePhase, lockedSqueezed];
+const TEMPLATES: readonly TemplateDeclaration[] = [background, freePhase, lockedSqueezed, lockedExact, light];
 
 /** The template of this id; throws TemplateError `unknown_template` naming those that exist. */
 export function findTemplate(id: string): TemplateDeclaration {

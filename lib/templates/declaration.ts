@@ -9,6 +9,7 @@ import type {
   CompiledTemplate,
   DerivedDeclaration,
   FieldBlock,
+  FieldKind,
   ParameterDeclaration,
 } from './types';
 
@@ -36,7 +37,14 @@ export interface TemplateSource<S extends OptionSet> {
   derived(options: OptionValues<S>): DerivedDeclaration[];
   /** Indices of the mass parameters, one for each field. */
   masses(options: OptionValues<S>): number[];
-  /** Writes the coefficients of the field columns (cosine and sine of each field); no allocation in it. */
+  /** Which fields are light, those first; all are heavy where it is left out. */
+  kinds?(options: OptionValues<S>): readonly FieldKind[];
+  /**
+   * The two columns of each field on an axis, as functions of its mass; ⟨κ^½ cos(μ ln κ)⟩ and ⟨κ^½ sin(μ ln κ)⟩ where it is
+   * left out. May throw TemplateError `invalid_axis`.
+   */
+  fieldColumns?(options: OptionValues<S>, axis: Axis): ((mass: number, out: Float64Array[]) => void)[];
+  /** Writes the coefficients of the field columns (two of each field); no allocation in it. */
   fieldCoefficients(options: OptionValues<S>): (x: ArrayLike<number>, out: Float64Array) => void;
 }
 
@@ -82,12 +90,14 @@ export function declareTemplate<S extends OptionSet>(
     compile(given, axis) {
       const options = settle(given);
       const masses = source.masses(options);
-      const oscillation = oscillationColumns(axis);
-      const blocks = masses.map<FieldBlock>((mass) => ({
-        mass,
-        width: COLUMNS_PER_FIELD,
-        fill: oscillation.fill,
-      }));
+      const kinds = source.kinds?.(options);
+      const fills = source.fieldColumns?.(options, axis);
+      const oscillation = fills ? undefined : oscillationColumns(axis).fill;
+      const length = axis.kind === 'bins' ? axis.lo.length : axis.kappa.length;
+      const blocks = masses.flatMap<FieldBlock>((mass, field) => {
+        const fill = fills?.[field] ?? oscillation;
+        return fill ? [{ mass, kind: kinds?.[field] ?? 'heavy', width: COLUMNS_PER_FIELD, fill }] : [];
+      });
       const fixedColumns = options.background.map((power) => ({
         name: backgroundName(power),
         values: powerColumn(axis, power),
@@ -108,12 +118,12 @@ export function declareTemplate<S extends OptionSet>(
         structure: source.structure(options),
         parameters,
         derived: source.derived(options),
-        length: oscillation.length,
+        length,
         blocks,
         fixedColumns,
         columnCount,
         coefficients,
-        predict: predictor(blocks, fixedColumns, oscillation.length, columnCount, coefficients),
+        predict: predictor(blocks, fixedColumns, length, columnCount, coefficients),
       };
     },
   };

@@ -9,6 +9,15 @@ export {
   writeMixtureCoefficient,
   writeSqueezedCoefficient,
 } from './squeezed-coefficient';
+export { oscillatingPart, smoothCoefficients, smoothPart, squeezedCorrection } from './exact-parts';
+export {
+  exactLightShape,
+  exactLightShapeTotal,
+  exactShape,
+  exactShapeTotal,
+  exactTriangleShape,
+} from './exact-shape';
+export { lightCoefficients } from './light-coefficients';
 export { oscillationColumns, powerColumn, validateAxis } from './bin-averages';
 export type { OscillationColumns } from './bin-averages';
 export {
@@ -19,6 +28,7 @@ export {
   logIsotropicDensity,
   mixingWeights,
 } from './mixing';
+export { fieldCount } from './options';
 export type { OptionDeclaration } from './options';
 export type { TemplateFormula } from './formula';
 export type { TemplateDeclaration } from './declaration';

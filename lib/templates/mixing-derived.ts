@@ -1,10 +1,6 @@
 import { mixingWeights } from './mixing';
-import type { DerivedDeclaration } from './types';
-
-/** m²/H² = μ² + 9/4 of a heavy field. */
-function squaredMass(mu: number): number {
-  return mu * mu + 2.25;
-}
+import { squaredMass } from './parameters';
+import type { DerivedDeclaration, FieldKind } from './types';
 
 function matrixElement(
   row: number,
@@ -24,17 +20,23 @@ function matrixElement(
 }
 
 /**
- * What the mixing angles and masses of N fields determine, for a parameter vector with the masses μ at `masses` and
- * the N − 1 angles from `angles` on; nothing for one field.
+ * What the mixing angles and masses of N fields determine, for a parameter vector with the mass parameters at `masses` and
+ * the N − 1 angles from `angles` on; nothing for one field. `kinds` says which are light; all heavy where it is left out.
  *
  * - weights w1 … wN = O_{1i}²;
  * - elements of the squared mass matrix M² = O diag(m²) Oᵀ in the flavour basis, where F₁ is what couples, in H²:
  *   M2_11 = Σ w_i m_i² for any N; for N = 2 with F₁ = cos θ σ₁ + sin θ σ₂ also M2_22 = m₁² sin²θ + m₂² cos²θ and
  *   M2_12 = (m₂² − m₁²) sin θ cos θ. For N ≥ 3 the others hang on angles that single exchange doesn't see.
  */
-export function mixingDerived(masses: readonly number[], angles: number): DerivedDeclaration[] {
+export function mixingDerived(
+  masses: readonly number[],
+  angles: number,
+  kinds?: readonly FieldKind[],
+): DerivedDeclaration[] {
   const n = masses.length;
   if (n === 1) return [];
+  const square = (x: ArrayLike<number>, i: number): number =>
+    squaredMass(kinds?.[i] ?? 'heavy', x[masses[i]]);
   const angleValues = new Float64Array(n - 1);
   const weightValues = new Float64Array(n);
   const weights = (x: ArrayLike<number>): Float64Array => {
@@ -53,18 +55,17 @@ export function mixingDerived(masses: readonly number[], angles: number): Derive
   derived.push(
     matrixElement(1, 1, (x) => {
       const w = weights(x);
-      return masses.reduce((sum, index, i) => sum + w[i] * squaredMass(x[index]), 0);
+      return masses.reduce((sum, _, i) => sum + w[i] * square(x, i), 0);
     }),
   );
   if (n === 2) {
-    const [first, second] = masses;
     derived.push(
       matrixElement(2, 2, (x) => {
         const w = weights(x);
-        return w[1] * squaredMass(x[first]) + w[0] * squaredMass(x[second]);
+        return w[1] * square(x, 0) + w[0] * square(x, 1);
       }),
       matrixElement(1, 2, (x) => {
-        const difference = squaredMass(x[second]) - squaredMass(x[first]);
+        const difference = square(x, 1) - square(x, 0);
         return difference * Math.sin(x[angles]) * Math.cos(x[angles]);
       }),
     );

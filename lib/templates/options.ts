@@ -1,4 +1,5 @@
 import { TemplateError, quoteValue } from './errors';
+import type { FieldKind } from './types';
 
 /** What an option accepts, as data for forms and for the list of templates. */
 export type OptionDeclaration =
@@ -19,6 +20,7 @@ export type OptionDeclaration =
       default: readonly number[];
       description: string;
     }
+  | { name: string; kind: 'fields'; min: number; max: number; default: number; description: string }
   | { name: string; kind: 'boolean'; default: boolean | null; description: string };
 
 type Described<D> = D extends unknown ? Omit<D, 'name'> : never;
@@ -82,6 +84,38 @@ export function choiceOption<const T extends string | number>(
       return found ?? refuse(path, value, values.map((candidate) => JSON.stringify(candidate)).join(' or '));
     },
   };
+}
+
+/**
+ * Fields as a number of heavy ones, or as a list of "heavy" and "light" in any order. Settled to the number if all are
+ * heavy, else to the list with the light ones first.
+ */
+export function fieldsOption(
+  max: number,
+  fallback: number,
+  description: string,
+): TemplateOption<number | FieldKind[]> {
+  const accepted = `a whole number from 1 to ${max}, or a list such as ["light", "heavy"] of as many`;
+  return {
+    data: { kind: 'fields', min: 1, max, default: fallback, description },
+    read(value, path) {
+      if (value === undefined) return fallback;
+      if (typeof value === 'number' && Number.isInteger(value) && value >= 1 && value <= max) return value;
+      if (!Array.isArray(value) || value.length < 1 || value.length > max)
+        return refuse(path, value, accepted);
+      const kinds = value.map((kind: unknown, i) =>
+        kind === 'heavy' || kind === 'light' ? kind : refuse(`${path}[${i}]`, kind, '"heavy" or "light"'),
+      );
+      const light = kinds.filter((kind) => kind === 'light');
+      return light.length === 0 ? kinds.length : [...light, ...kinds.filter((kind) => kind === 'heavy')];
+    },
+  };
+}
+
+/** How many fields an option `fields` says, whether a number or a list; 0 where there is none. */
+export function fieldCount(fields: unknown): number {
+  if (typeof fields === 'number') return fields;
+  return Array.isArray(fields) ? fields.length : 0;
 }
 
 /** Distinct whole powers of kappa, given in any order and settled in increasing order. */

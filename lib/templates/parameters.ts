@@ -1,12 +1,15 @@
-import type { DerivedDeclaration, ParameterDeclaration } from './types';
+import type { DerivedDeclaration, FieldKind, ParameterDeclaration } from './types';
+
+/** Largest ν: at 3/2, the massless field, the shape diverges. */
+const LIGHTEST = 1.49;
 
 /** Declarations of the parameters that several templates share, with their default priors. */
 
 const SUPERSCRIPTS: Readonly<Record<string, string>> = { '-1': '⁻¹', '2': '²', '3': '³', '4': '⁴' };
 
-/** μ of field `field` (counted from 0): frequency in ln κ, √(m²/H² − 9/4). */
-export function massParameter(field: number): ParameterDeclaration {
-  const n = String(field + 1);
+/** μ of field `field` (counted from 0), the `number`th heavy one: frequency in ln κ, √(m²/H² − 9/4). */
+export function massParameter(field: number, number = field + 1): ParameterDeclaration {
+  const n = String(number);
   return {
     name: `mu${n}`,
     tex: `\\mu_{${n}}`,
@@ -18,6 +21,23 @@ export function massParameter(field: number): ParameterDeclaration {
     range: [0, 100],
     circular: false,
     defaultPrior: { kind: 'uniform', lo: 0.2, hi: 8 },
+  };
+}
+
+/** ν of field `field` (counted from 0), the `number`th light one: √(9/4 − m²/H²), between 0 (m = 3H/2) and 3/2 (massless). */
+export function lightMassParameter(field: number, number: number): ParameterDeclaration {
+  const n = String(number);
+  return {
+    name: `nu${n}`,
+    tex: `\\nu_{${n}}`,
+    symbol: { base: 'ν', sub: n },
+    label: `light mass ${n}`,
+    unit: '',
+    role: 'mass',
+    field,
+    range: [0, LIGHTEST],
+    circular: false,
+    defaultPrior: { kind: 'uniform', lo: 0, hi: 1.4 },
   };
 }
 
@@ -147,8 +167,33 @@ export function backgroundParameters(powers: readonly number[]): ParameterDeclar
   }));
 }
 
-/** m/H = √(μ² + 9/4) of a field whose mass parameter stands at `index` of the parameter vector. */
-export function massInHubbleUnits(field: number, index: number): DerivedDeclaration {
+/** Dimensionless power of the curvature perturbation that turns g into couplings. */
+const CURVATURE_POWER = 2.1e-9;
+
+/** ρ/Λ = (ρ/H)(H/Λ) = −2π √P_ζ g, dimensionless, at P_ζ = 2.1 × 10⁻⁹, for g at `index` of the parameter vector. */
+export function couplingRatio(index: number): DerivedDeclaration {
+  return {
+    name: 'rho_over_Lambda',
+    tex: '\\rho/\\Lambda',
+    symbol: { base: 'ρ/Λ', sub: '' },
+    label: 'mixing over cutoff scale',
+    unit: '',
+    field: null,
+    evaluate: (x) => -2 * Math.PI * Math.sqrt(CURVATURE_POWER) * x[index],
+  };
+}
+
+/** m²/H² = 9/4 + μ² of a heavy field, 9/4 − ν² of a light one. */
+export function squaredMass(kind: FieldKind, mass: number): number {
+  return kind === 'heavy' ? 2.25 + mass * mass : 2.25 - mass * mass;
+}
+
+/** m/H of a field whose mass parameter stands at `index` of the parameter vector. */
+export function massInHubbleUnits(
+  field: number,
+  index: number,
+  kind: FieldKind = 'heavy',
+): DerivedDeclaration {
   const n = String(field + 1);
   return {
     name: `m${n}_over_H`,
@@ -157,6 +202,6 @@ export function massInHubbleUnits(field: number, index: number): DerivedDeclarat
     label: `mass of field ${n}`,
     unit: 'H',
     field,
-    evaluate: (x) => Math.sqrt(x[index] * x[index] + 2.25),
+    evaluate: (x) => Math.sqrt(squaredMass(kind, x[index])),
   };
 }

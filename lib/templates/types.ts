@@ -6,6 +6,9 @@
 /** Which cubic vertex: 1 = π̇²σ/Λ₁, 2 = (∂π)²σ/(a²Λ₂). */
 export type Vertex = 1 | 2;
 
+/** A field heavier than 3H/2, which oscillates (mass parameter μ), or lighter, which scales as a power (ν). */
+export type FieldKind = 'heavy' | 'light';
+
 /** A prior density of one parameter; `fixed` takes the parameter out of the sampled set. */
 export type Prior =
   | { kind: 'uniform'; lo: number; hi: number }
@@ -58,6 +61,8 @@ export type Axis =
 export interface FieldBlock {
   /** Index of the mass parameter in `parameters`. */
   mass: number;
+  /** Whether the mass parameter is μ or ν. */
+  kind: FieldKind;
   /** Number of columns. */
   width: number;
   /** Writes the columns at this mass into `out[0 … width−1]`, each of the axis' length. */

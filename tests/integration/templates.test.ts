@@ -27,7 +27,13 @@ describe('the list of templates', () => {
     const body: unknown = await answer.json();
     expect(body).toEqual(JSON.parse(JSON.stringify(templateCatalogue())));
     const templates = templateSchema.array().parse(body);
-    expect(templates.map(({ id }) => id)).toEqual(['background', 'free-phase', 'locked-squeezed']);
+    expect(templates.map(({ id }) => id)).toEqual([
+      'background',
+      'free-phase',
+      'locked-squeezed',
+      'locked-exact',
+      'light',
+    ]);
   });
 
   it('asks who is there', async () => {

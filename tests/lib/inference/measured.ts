@@ -43,14 +43,15 @@ export function measurement(
   };
 }
 
-/** The default fit of such a measurement up to κ = 0.2, some priors replaced. */
+/** The default fit of such a measurement, up to κ = 0.2 unless said, some priors replaced. */
 export function fitMeasurement(
   name: string,
   id: string,
   options: Record<string, unknown>,
   replaced: Record<string, Prior> = {},
+  kappaMax = 0.2,
 ): Inference {
-  const { axis, data } = measurement(name, 0.2);
+  const { axis, data } = measurement(name, kappaMax);
   const template = compileTemplate(id, options, axis);
   const priors = Object.fromEntries(
     template.parameters.map((p) => [p.name, replaced[p.name] ?? p.defaultPrior]),

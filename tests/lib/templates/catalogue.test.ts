@@ -12,8 +12,14 @@ const names = (id: string, options: object): string[] =>
     .map(({ name }) => name);
 
 describe('the list of templates', () => {
-  it('is background, free-phase, locked-squeezed, in this order', () => {
-    expect(templateCatalogue().map(({ id }) => id)).toEqual(['background', 'free-phase', 'locked-squeezed']);
+  it('is background, free-phase, locked-squeezed, locked-exact, light, in this order', () => {
+    expect(templateCatalogue().map(({ id }) => id)).toEqual([
+      'background',
+      'free-phase',
+      'locked-squeezed',
+      'locked-exact',
+      'light',
+    ]);
   });
   it('survives JSON unchanged', () => {
     expect(JSON.parse(JSON.stringify(templateCatalogue()))).toEqual(templateCatalogue());

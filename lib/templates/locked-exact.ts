@@ -1,0 +1,85 @@
+import { declareTemplate } from './declaration';
+import { exactHeavyColumns, exactLightColumns } from './exchange-columns';
+import {
+  exchangeCoefficients,
+  exchangeDerived,
+  exchangeFills,
+  exchangeParameters,
+  fieldKinds,
+  massTex,
+} from './exchange-template';
+import { averageDefinition, backgroundTerms, binMean, fieldClass, sumFormula } from './formula';
+import { mixingDefinition, weightTex } from './mixing-derived';
+import { choiceOption, fieldsOption, powersOption, sharedOptions } from './options';
+
+const options = {
+  fields: fieldsOption(
+    4,
+    1,
+    'Number of heavy fields, or a list that says of each whether it is heavy or light.',
+  ),
+  vertex: choiceOption(
+    [1, 2, 'mixture'],
+    1,
+    'Cubic interaction: 1 is π̇²σ/Λ₁, 2 is (∂π)²σ/(a²Λ₂), mixture is cos α of the first and sin α of the second.',
+  ),
+  ...sharedOptions,
+  background: powersOption(0, [], 'Powers of κ in the smooth background, from −1 to 4.'),
+};
+
+const TOTAL_TEX =
+  '\\hat S^{\\,\\mathrm{tot}}(\\kappa) = \\hat S(k_1,k_2;k_3) + \\hat S(k_2,k_3;k_1) + \\hat S(k_3,k_1;k_2),\\quad k_1 = k_2 = k_3/\\kappa';
+const FIRST_TEX =
+  '\\hat S_1(k_a,k_b;k_m) = \\tfrac{q}{2}\\,\\theta(\\theta+1)\\,h(r),\\quad r = \\tfrac{k_m}{k_a+k_b},\\; q = \\tfrac{k_a k_b}{(k_a+k_b)^2},\\; \\theta = r\\tfrac{\\mathrm d}{\\mathrm dr}';
+const SECOND_TEX =
+  '\\hat S_2(k_a,k_b;k_m) = -\\tfrac12\\,\\tfrac{k_a^2+k_b^2-k_m^2}{2k_ak_b}\\,(1+\\theta)(1+q\\theta)\\,h(r)';
+const EQUATION_TEX =
+  '\\bigl[(\\theta-\\tfrac12)^2 + \\tfrac{m^2}{H^2} - \\tfrac94\\bigr]h = r^2\\theta(\\theta+1)h + \\tfrac{r}{1+r},\\quad h\\ \\text{regular at}\\ r = 1';
+const MIXTURE_TEX = '\\hat S = \\cos\\alpha\\;\\hat S_1 + \\sin\\alpha\\;\\hat S_2';
+
+/**
+ * g Σ_i w_i ⟨Ŝ_total(m_i, κ)⟩ + background: single exchange of mixed fields, heavy or light, exact at tree level at every κ < 2,
+ * all three permutations, oscillating and smooth part together (exact-shape.ts).
+ */
+export const lockedExact = declareTemplate({
+  id: 'locked-exact',
+  version: 1,
+  title: 'Single exchange of mixed fields, exact shape',
+  summary:
+    'The whole tree-level shape of single exchange, oscillating and smooth part and all three permutations, for heavy and light fields that share one coupling. It needs no smooth background of its own and holds outside the squeezed limit too.',
+  assumptions: [
+    'One flavour couples, at both vertices.',
+    'Weak mixing, unit sound speed, exact scale invariance.',
+    'Isosceles triangles; others are evaluated at κ = 2k₃/(k₁ + k₂), and their further corrections, of order κ², are left out.',
+    'Heavy fields: 3H/2 < m < 20H. Light fields: the long mode left the horizon late enough for (3/2 − ν) ln 1/κ to be all there is.',
+  ],
+  options,
+  structure: () => 'mixed',
+  formula(o) {
+    const averaged = o.binAverage !== false;
+    const kinds = fieldKinds(o.fields);
+    const shape = o.vertex === 'mixture' ? '\\hat S' : `\\hat S_${o.vertex}`;
+    const terms = kinds.map((_, i) =>
+      fieldClass(
+        i,
+        `g\\,${weightTex(kinds.length, i)}${binMean(`${shape}^{\\,\\mathrm{tot}}(${massTex(kinds, i)}, \\kappa)`, averaged)}`,
+      ),
+    );
+    return sumFormula(terms, backgroundTerms(o.background, averaged), [
+      ...mixingDefinition(kinds.length),
+      ...(o.vertex === 'mixture' ? [MIXTURE_TEX] : []),
+      TOTAL_TEX,
+      ...(o.vertex === 2 ? [] : [FIRST_TEX]),
+      ...(o.vertex === 1 ? [] : [SECOND_TEX]),
+      EQUATION_TEX,
+      ...averageDefinition(averaged, o.binWeight),
+    ]);
+  },
+  parameters: (o) => exchangeParameters(fieldKinds(o.fields), o.vertex, o.background),
+  derived: (o) => exchangeDerived(fieldKinds(o.fields)),
+  masses: (o) => fieldKinds(o.fields).map((_, i) => i),
+  kinds: (o) => fieldKinds(o.fields),
+  fieldColumns: (o, axis) =>
+    exchangeFills(fieldKinds(o.fields), axis, { heavy: exactHeavyColumns, light: exactLightColumns }),
+  fieldCoefficients: (o) => exchangeCoefficients(fieldKinds(o.fields).length, o.vertex),
+});
