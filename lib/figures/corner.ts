@@ -55,13 +55,13 @@ export function joint(x: ArrayLike<number>, y: ArrayLike<number>, ax: GridAxis, 
   const density = density2d(x, y, ax, ay);
   const atDraws = densityAtDraws(density, x, y, ax, ay);
   const levels = massLevels(atDraws, cornerMasses, 'draws');
-  const above = levels.map(() => 0);
+  const [inner, outer] = levels;
+  let [aboveInner, aboveOuter] = [0, 0];
   const outside: number[] = [];
   for (let i = 0; i < atDraws.length; i++) {
-    levels.forEach((level, l) => {
-      if (atDraws[i] >= level) above[l]++;
-    });
-    if (atDraws[i] < levels[1] && inGrid(x[i], ax) && inGrid(y[i], ay)) outside.push(i);
+    if (atDraws[i] >= inner) aboveInner++;
+    if (atDraws[i] >= outer) aboveOuter++;
+    else if (inGrid(x[i], ax) && inGrid(y[i], ay)) outside.push(i);
   }
   const count = Math.min(mostDots, outside.length);
   const dots = new Float64Array(2 * count);
@@ -73,7 +73,7 @@ export function joint(x: ArrayLike<number>, y: ArrayLike<number>, ax: GridAxis, 
   return {
     levels,
     regions: contourRings(density, ax, ay, levels),
-    enclosed: above.map((n) => (atDraws.length ? n / atDraws.length : 0)),
+    enclosed: [aboveInner, aboveOuter].map((n) => n / Math.max(1, atDraws.length)),
     outside: dots,
   };
 }
