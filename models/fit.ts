@@ -50,6 +50,8 @@ export class Fit extends Model<InferAttributes<Fit>, InferCreationAttributes<Fit
   declare expectedSeconds: CreationOptional<number>;
   declare startedAt: CreationOptional<Date | null>;
   declare endedAt: CreationOptional<Date | null>;
+  /** When draws or a report were last committed, by the database's clock. */
+  declare committedAt: CreationOptional<Date | null>;
 }
 
 /** Whole sampler state of one replica at its last committed block. */
@@ -110,6 +112,7 @@ export function initFitModels(sequelize: Sequelize): void {
       expectedSeconds: { ...real(), defaultValue: 0 },
       startedAt: instant(true),
       endedAt: instant(true),
+      committedAt: instant(true),
     },
     { ...plain, modelName: 'fit', tableName: 'fits' },
   );

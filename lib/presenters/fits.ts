@@ -145,6 +145,7 @@ export function presentFit(fit: FitRow, { startedBy, role, blind, queue }: FitCo
     createdAt: fit.createdAt.toISOString(),
     startedAt: fit.startedAt?.toISOString() ?? null,
     endedAt: fit.endedAt?.toISOString() ?? null,
+    committedAt: fit.committedAt?.toISOString() ?? null,
     may: mayOf(fit, status, role),
   };
 }

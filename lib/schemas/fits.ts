@@ -129,6 +129,8 @@ export const fitSchema = z.object({
   createdAt: instantSchema,
   startedAt: instantSchema.nullable(),
   endedAt: instantSchema.nullable(),
+  /** When draws or a report were last committed, by the database's clock; null before the first. */
+  committedAt: instantSchema.nullable(),
   may: z.array(z.string()),
 });
 export type Fit = z.infer<typeof fitSchema>;
@@ -149,6 +151,7 @@ export const fitEventSchema = fitSchema.pick({
   gate: true,
   startedAt: true,
   endedAt: true,
+  committedAt: true,
   may: true,
 });
 export type FitEvent = z.infer<typeof fitEventSchema>;

@@ -1,4 +1,4 @@
-import { type Transaction } from 'sequelize';
+import { literal, type Transaction } from 'sequelize';
 import { Fit, FitBlock, FitReplica } from '@/models';
 import { database } from '@/lib/db';
 import { endedStatuses, fitStatusSchema, type FitStatus } from '@/lib/schemas';
@@ -58,6 +58,9 @@ interface Fenced {
   fitId: string;
   epoch: number;
 }
+
+/** The database's clock: the one that every reader of the row shares. */
+const committedAt = literal('UTC_TIMESTAMP(3)');
 
 /** The row, locked; null where another worker has taken the fit. */
 async function lockOwn({ fitId, epoch }: Fenced, transaction: Transaction): Promise<Fit | null> {
@@ -128,6 +131,7 @@ export async function commitDraws(commit: DrawsCommit): Promise<Standing | null>
         millisecondsSpent: Number(fit.millisecondsSpent) + commit.milliseconds,
         drawsPerSecond: commit.drawsPerSecond,
         report: { ...commit.report },
+        committedAt,
       },
       { where: { id: fitId, epoch }, transaction },
     );
@@ -159,7 +163,7 @@ export async function commitLook(look: LookCommit): Promise<(Standing & { ended:
     const ended = look.judge(standing);
     const ending = { status: ended ?? status, leaseUntil: null, stopRequested: false, endedAt: new Date() };
     await Fit.update(
-      { report: { ...report }, ...(ended === null ? {} : ending) },
+      { report: { ...report }, committedAt, ...(ended === null ? {} : ending) },
       { where: { id: fitId, epoch }, transaction },
     );
     if (ended !== null) await noteEnd(fit, ended, transaction);
