@@ -13,9 +13,14 @@ const zones = [
     from: '.',
     except: ['./lib/inference', './lib/templates', './lib/sampler', './node_modules'],
   },
+  { target: './lib/statement', from: '.', except: ['./lib/statement', './lib/figures', './node_modules'] },
   { target: './lib/measurements', from: '.', except: ['./lib/measurements', './node_modules'] },
   { target: './lib/figures', from: '.', except: ['./lib/figures', './node_modules'] },
-  { target: './lib/schemas', from: '.', except: ['./lib/schemas', './lib/templates', './node_modules'] },
+  {
+    target: './lib/schemas',
+    from: '.',
+    except: ['./lib/schemas', './lib/statement', './lib/templates', './node_modules'],
+  },
   // Pages draw; they reach data through services by way of lib/http.
   {
     target: './components',
@@ -27,6 +32,7 @@ const zones = [
       './lib/templates',
       './lib/inference',
       './lib/measurements',
+      './lib/statement',
       './node_modules',
     ],
   },
@@ -54,6 +60,7 @@ const pure = [
   'lib/inference/**',
   'lib/measurements/**',
   'lib/figures/**',
+  'lib/statement/**',
 ];
 
 const config = [

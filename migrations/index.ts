@@ -29,6 +29,8 @@ import * as mailAboutFits from './0028-mail-about-fits';
 import * as invitationsSent from './0029-invitations-sent';
 import * as auditEventsByTime from './0030-audit-events-by-time';
 import * as usersSignIn from './0031-users-sign-in';
+import * as notebookStatements from './0032-notebook-statements';
+import * as fitsCommittedAt from './0033-fits-committed-at';
 import * as measurementTruth from './0034-measurement-truth';
 import type { MigrationContext } from './table';
 
@@ -67,6 +69,8 @@ const migrations: readonly (readonly [string, Migration])[] = [
   ['0029-invitations-sent', invitationsSent],
   ['0030-audit-events-by-time', auditEventsByTime],
   ['0031-users-sign-in', usersSignIn],
+  ['0032-notebook-statements', notebookStatements],
+  ['0033-fits-committed-at', fitsCommittedAt],
   ['0034-measurement-truth', measurementTruth],
 ];
 

@@ -1,5 +1,6 @@
 import { Model, type Sequelize } from 'sequelize';
 import type { CreationOptional, InferAttributes, InferCreationAttributes } from 'sequelize';
+import { DataTypes } from 'sequelize';
 import { count, foreignKey, id, instant, json, text } from './columns';
 
 /** One inference, numbered within its group. Its settings are in its revisions. */
@@ -47,6 +48,8 @@ export class NotebookRevision extends Model<
   declare revision: number;
   declare title: string;
   declare settings: NotebookSettings;
+  /** The group's words where this revision changed them; null where they stand as before. */
+  declare statement: CreationOptional<string | null>;
   /** Sections that this revision changed. */
   declare sections: string[];
   /** The revision whose settings it brought back. */
@@ -82,6 +85,7 @@ export function initNotebookModels(sequelize: Sequelize): void {
       revision: count(),
       title: text(160),
       settings: json(),
+      statement: { type: DataTypes.TEXT, allowNull: true },
       sections: json(),
       restoredFrom: count(true),
       createdBy: foreignKey(),

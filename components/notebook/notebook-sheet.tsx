@@ -18,7 +18,10 @@ import { PageHead } from '@/components/ui/section';
 import { Sheet, SheetRow } from '@/components/ui/sheet';
 import { listed } from '@/components/words/counts';
 import { shortName } from '@/components/words/people';
-import type { Fit, Measurement, Notebook } from '@/lib/schemas';
+import { StatementSection } from '@/components/statement/statement-section';
+import { statementState } from '@/components/statement/statement-state';
+import { useStatement } from '@/components/statement/use-statement';
+import type { Fit, Measurement, Notebook, Statement } from '@/lib/schemas';
 import { Abstract } from './abstract';
 import { keepPoints } from './kept-points';
 import type { DrawnFormula } from './live-formula';
@@ -37,6 +40,7 @@ export interface NotebookSheetProps {
   measurement: Measurement;
   /** The fit that is shown first; null without any. */
   fit: Fit | null;
+  statement: Statement;
   formula: DrawnFormula;
   defaults: FitDefaults;
   /** Who reads it; what is folded is remembered for each person. */
@@ -56,7 +60,7 @@ function bestOf(fit: Fit | null, draws: FigureDraws | null): NamedPoint | null {
     : { label: `Best draw of fit ${fit.number}`, values: drawValues(draws, index, fixedValues(fit)) };
 }
 
-/** The notebook: one sheet, five sections, one fit shown in the last two. */
+/** The notebook: one sheet, six sections; chains and posterior show one of its fits. */
 export function NotebookSheet(props: NotebookSheetProps) {
   const state = useNotebook(props.notebook);
   const { notebook } = state;
@@ -85,6 +89,9 @@ export function NotebookSheet(props: NotebookSheetProps) {
   );
   const priors = useDraft<Priors>(notebook.priors, notebook.revision);
 
+  const words = useDraft(notebook.statement, notebook.revision);
+  const statement = useStatement(notebook, props.statement, null) ?? props.statement;
+
   const keptKey = JSON.stringify(cut.value.cuts);
   const points = useMemo(
     () => keepPoints(measurement, JSON.parse(keptKey) as Notebook['cuts']),
@@ -106,6 +113,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
     priors: sectionState(priors.changed, notebook),
     chains: chainsState(fit, notebook),
     posterior: posteriorState(fit, notebook),
+    statement: statementState(statement, words.changed),
   };
   const storageKey = foldKey(notebook.id, props.reader);
   const folds = useFolds(storageKey, states);
@@ -200,6 +208,15 @@ export function NotebookSheet(props: NotebookSheetProps) {
         draws={draws}
         quantities={quantities}
         fold={fold('posterior')}
+      />
+      <StatementSection
+        number={6}
+        state={state}
+        statement={statement}
+        sectionState={states.statement}
+        draft={words}
+        fold={fold('statement')}
+        onShow={show}
       />
       <FoldScript storageKey={storageKey} />
       <SheetRow>

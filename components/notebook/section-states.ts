@@ -1,7 +1,7 @@
 import type { ContentsEntry } from '@/components/ui/contents';
 import type { State } from '@/components/ui/state-word';
 import { fitState } from '@/components/fit/fit-words';
-import type { Fit, FitStatus, Notebook, NotebookSection } from '@/lib/schemas';
+import { settingSections, type Fit, type FitStatus, type Notebook } from '@/lib/schemas';
 
 /** A form that is being changed is being set; what is saved is settled. */
 export function sectionState(changed: boolean, notebook: Pick<Notebook, 'may'>): State {
@@ -10,13 +10,11 @@ export function sectionState(changed: boolean, notebook: Pick<Notebook, 'may'>):
     : { kind: 'ok', word: 'settled' };
 }
 
-/** Sections that a fit freezes; a new title makes no fit old. */
-const frozen: readonly NotebookSection[] = ['measurement', 'template', 'priors'];
-
 /** True where the notebook's settings changed after the revision that a fit froze. */
 export function isOutdated(revision: number, notebook: Pick<Notebook, 'record'>): boolean {
   return notebook.record.some(
-    (entry) => entry.revision > revision && entry.sections.some((section) => frozen.includes(section)),
+    (entry) =>
+      entry.revision > revision && entry.sections.some((section) => settingSections.includes(section)),
   );
 }
 
@@ -46,14 +44,17 @@ export function posteriorState(
     : { kind: 'open', word: `of fit ${fit.number}, so far` };
 }
 
-export const sectionIds = ['measurement', 'template', 'priors', 'chains', 'posterior'] as const;
+export const sectionIds = ['measurement', 'template', 'priors', 'chains', 'posterior', 'statement'] as const;
 export type SectionId = (typeof sectionIds)[number];
 export type SectionStates = Record<SectionId, State>;
 
-/** Where the work stands: the chains while they run, else the first section that isn't settled, else the posterior. */
+/**
+ * Where the work stands: the chains while they run, else the first section that isn't settled, else the posterior. Words
+ * are read or written last, and never called for.
+ */
 export function currentSection(states: SectionStates): SectionId {
   if (states.chains.kind === 'run' || states.chains.kind === 'wait') return 'chains';
-  return sectionIds.find((id) => states[id].kind !== 'ok') ?? 'posterior';
+  return sectionIds.find((id) => id !== 'statement' && states[id].kind !== 'ok') ?? 'posterior';
 }
 
 export function contentsEntries(states: SectionStates): ContentsEntry[] {
@@ -63,5 +64,6 @@ export function contentsEntries(states: SectionStates): ContentsEntry[] {
     { href: '#priors', number: 3, title: 'Priors', state: states.priors },
     { href: '#chains', number: 4, title: 'Chains', state: states.chains },
     { href: '#posterior', number: 5, title: 'Posterior', state: states.posterior },
+    { href: '#statement', number: 6, title: 'Statement', state: states.statement },
   ];
 }

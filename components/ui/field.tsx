@@ -2,6 +2,7 @@ import {
   useId,
   type InputHTMLAttributes,
   type ReactNode,
+  type Ref,
   type SelectHTMLAttributes,
   type TextareaHTMLAttributes,
 } from 'react';
@@ -82,7 +83,8 @@ export function Field({ label, hiddenLabel, help, error, id, ...input }: FieldPr
   );
 }
 
-export type TextFieldProps = Around & TextareaHTMLAttributes<HTMLTextAreaElement>;
+export type TextFieldProps = Around &
+  TextareaHTMLAttributes<HTMLTextAreaElement> & { ref?: Ref<HTMLTextAreaElement> };
 
 export function TextField({ label, hiddenLabel, help, error, id, ...area }: TextFieldProps) {
   return (

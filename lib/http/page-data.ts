@@ -16,6 +16,7 @@ import {
   notebookSchema,
   siteUsersSchema,
   storageStateSchema,
+  statementSchema,
   tokenSchema,
   usersQuerySchema,
   type Fit,
@@ -26,6 +27,7 @@ import {
   type Measurement,
   type MeasurementListed,
   type Notebook,
+  type Statement,
   type Token,
 } from '@/lib/schemas';
 import type { Action } from '@/lib/policies';
@@ -40,6 +42,7 @@ import { readGroup } from '@/lib/services/groups';
 import { readGroupLog } from '@/lib/services/group-log';
 import { listMeasurements, readMeasurement } from '@/lib/services/measurements';
 import { readNotebook } from '@/lib/services/notebooks';
+import { readStatement } from '@/lib/services/statements';
 import { listTokens } from '@/lib/services/tokens';
 
 /**
@@ -124,6 +127,9 @@ export const notebook = cache(async (actor: Actor, id: string): Promise<Notebook
   const access = await accessTo(actor, 'notebook', id, 'notebook.read');
   return notebookSchema.parse(await readNotebook(access));
 });
+
+export const statement = async (actor: Actor, id: string): Promise<Statement> =>
+  statementSchema.parse(await readStatement(await accessTo(actor, 'notebook', id, 'notebook.read')));
 
 export const fit = cache(async (actor: Actor, id: string): Promise<Fit> => {
   const access = await accessTo(actor, 'fit', id, 'fit.read');

@@ -41,11 +41,15 @@ import {
   sampleFormats,
   shiftsSchema,
   startFitSchema,
+  statementQuerySchema,
+  statementSchema,
   takenUpSchema,
   takeUpSchema,
   templateSchema,
   tokenCreatedSchema,
   tokenSchema,
+  typesetBodySchema,
+  typesetStatementSchema,
   versionQuerySchema,
 } from '@/lib/schemas';
 import type { Action } from '@/lib/policies';
@@ -293,6 +297,19 @@ export const routes = {
     summary: 'How every quantity moved from each fit to the one that repeats it on another version.',
     permission: 'notebook.read',
     answer: shiftsSchema,
+  },
+  'GET /notebooks/:id/statement': {
+    summary: 'The group’s words with the numbers that they refer to, as they stand or stood at a revision.',
+    permission: 'notebook.read',
+    query: statementQuerySchema,
+    answer: statementSchema,
+  },
+  'POST /notebooks/:id/statement/typeset': {
+    summary:
+      'Words with the numbers that they refer to; nothing is stored. Storing is a PATCH of the notebook.',
+    permission: 'notebook.edit',
+    body: typesetBodySchema,
+    answer: typesetStatementSchema,
   },
   'POST /notebooks/:id/fits': {
     summary: 'Freeze a snapshot and start to sample.',

@@ -84,6 +84,7 @@ export interface NotebookParts {
   /** The newest version of the measurement that there is. */
   newestVersion: number;
   settings: NotebookSettings;
+  statement: string;
   bins: { kept: number; all: number };
   /** In ascending order of revision. */
   revisions: readonly Pick<
@@ -122,6 +123,7 @@ export function presentNotebook(parts: NotebookParts): Notebook {
       options: settings.template.options,
     },
     priors: priorsSchema.parse(settings.priors),
+    statement: parts.statement,
     record: parts.revisions.map((revision) => ({
       revision: revision.revision,
       by: nameOf(people, revision.createdBy),

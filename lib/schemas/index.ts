@@ -2,6 +2,7 @@ export * from './shared';
 export * from './priors';
 export * from './templates';
 export * from './measurements';
+export * from './statements';
 export * from './notebooks';
 export * from './fits';
 export * from './groups';

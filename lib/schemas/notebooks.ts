@@ -1,6 +1,7 @@
 import { z } from 'zod';
 import { idSchema, instantSchema } from './shared';
 import { priorSchema, priorsSchema } from './priors';
+import { statementTextSchema } from './statements';
 import { templateChoiceSchema } from './templates';
 
 export const likelihoodKinds = ['normal', 'hartlap', 'sellentin-heavens', 'matched-t'] as const;
@@ -31,6 +32,7 @@ export const patchNotebookSchema = z.strictObject({
   likelihood: likelihoodSchema.optional(),
   template: templateChoiceSchema.optional(),
   priors: priorsSchema.optional(),
+  statement: statementTextSchema.optional(),
 });
 export type PatchNotebook = z.infer<typeof patchNotebookSchema>;
 
@@ -42,7 +44,9 @@ export const notebookCreatedSchema = z.object({
 export type NotebookCreated = z.infer<typeof notebookCreatedSchema>;
 
 /** What a revision of a notebook can have changed. */
-export const notebookSections = ['title', 'measurement', 'template', 'priors'] as const;
+export const notebookSections = ['title', 'measurement', 'template', 'priors', 'statement'] as const;
+/** Those that a fit freezes: a change of one makes it a fit of an earlier revision. */
+export const settingSections: readonly NotebookSection[] = ['measurement', 'template', 'priors'];
 export type NotebookSection = (typeof notebookSections)[number];
 
 export const fitStatuses = [
@@ -151,6 +155,8 @@ export const notebookSchema = z.object({
   ...settingsShape,
   /** Bins kept by the cuts, of all. */
   bins: z.object({ kept: z.number().int(), all: z.number().int() }),
+  /** The group's words as they are typed; empty where none were written. */
+  statement: z.string(),
   /** Who settled which section when: for the record in the margin. */
   record: z.array(
     z.object({

@@ -67,6 +67,7 @@ export async function readNotebook(access: Access): Promise<NotebookAnswer> {
     measurement: measuredBy(measurement, version),
     newestVersion: newest ?? version.version,
     settings,
+    statement: revisions.findLast(({ statement }) => statement !== null)?.statement ?? '',
     bins: { kept: countKept(version, settings.cuts), all: version.rows },
     revisions,
     fits,

@@ -24,6 +24,7 @@ import { refuseArchived } from './notebook-archive';
 import { tellNotebook } from './notebook-presence';
 import { readNotebook } from './notebook-records';
 import { changedSections, settleSettings, type SettingsDraft } from './notebook-settings';
+import { checkStatement, statementAt } from './statements';
 
 export { notebookSummaries, readNotebook } from './notebook-records';
 
@@ -82,7 +83,7 @@ export async function insertNotebook(
         revision: 1,
         title: title,
         settings,
-        sections: [...notebookSections],
+        sections: notebookSections.filter((section) => section !== 'statement'),
         createdBy: actor.userId,
         createdAt: now,
       },
@@ -165,6 +166,8 @@ async function lockNotebook(id: string, transaction: Transaction) {
 export interface RevisionDraft {
   title: string;
   draft: SettingsDraft;
+  /** The group's words; left out, they stay. */
+  statement?: string;
 }
 
 /**
@@ -183,12 +186,15 @@ export async function addRevision(
     const { notebook, standing, version, measurement } = await lockNotebook(access.id, transaction);
     refuseArchived(notebook);
     if (named !== notebook.revision) refuseStale(named, standing);
-    const { title, draft } = draftFrom(standing, notebook);
+    const { title, draft, statement: written } = draftFrom(standing, notebook);
     const settings = settleSettings(version, draft, measurement);
-    const sections = changedSections(
-      { title: notebook.title, settings: standing.settings },
-      { title, settings },
-    );
+    const words = await statementAt(notebook.id, notebook.revision, transaction);
+    const statement = written === words ? undefined : written;
+    if (statement !== undefined) await checkStatement(notebook.id, statement, transaction);
+    const sections = [
+      ...changedSections({ title: notebook.title, settings: standing.settings }, { title, settings }),
+      ...(statement === undefined ? [] : (['statement'] as const)),
+    ];
     if (sections.length === 0) return;
     const now = new Date();
     const revision = notebook.revision + 1;
@@ -198,6 +204,7 @@ export async function addRevision(
         revision,
         title,
         settings,
+        statement: statement ?? null,
         sections,
         restoredFrom,
         createdBy: actor.userId,
@@ -236,5 +243,6 @@ export function patchNotebook(access: Access, body: PatchNotebook): Promise<Note
       given: body.priors ?? {},
       kept: before.priors,
     },
+    statement: body.statement,
   }));
 }

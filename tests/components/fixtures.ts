@@ -58,6 +58,7 @@ export function notebookFixture(change: Partial<Notebook> = {}): Notebook {
     likelihood: { kind: 'matched-t' },
     template: { id: 'free-phase', version: 1, options: { fields: 1, background: [1], binAverage: true } },
     priors: {},
+    statement: '',
     record: [
       {
         revision: 1,
@@ -159,6 +160,7 @@ export function fitFixture(change: Partial<Fit> = {}): Fit {
     createdAt: '2027-03-10T14:03:00.000Z',
     startedAt: '2027-03-10T14:03:01.000Z',
     endedAt: null,
+    committedAt: '2027-03-10T14:04:00.000Z',
     may: ['fit.read', 'fit.stop', 'fit.extend'],
     ...change,
   };

@@ -2,7 +2,7 @@ import type { Metadata } from 'next';
 import { PageChrome } from '@/components/account/page-chrome';
 import { FormulaBlock } from '@/components/notebook/formula-block';
 import { NotebookSheet } from '@/components/notebook/notebook-sheet';
-import { fit, group, measurement, notebook, version, visitor } from '@/lib/http/page-data';
+import { fit, group, measurement, notebook, statement, version, visitor } from '@/lib/http/page-data';
 import { defaultFit } from '@/lib/schemas';
 import { findTemplate } from '@/lib/templates';
 
@@ -21,9 +21,10 @@ export default async function NotebookPage({ params, searchParams }: Props) {
   const { id } = await params;
   const actor = await visitor(`/notebooks/${id}`);
   const opened = await notebook(actor, id);
-  const [measured, { role }] = await Promise.all([
+  const [measured, { role }, words] = await Promise.all([
     measurement(actor, opened.measurement.id),
     group(actor, opened.groupId),
+    statement(actor, id),
   ]);
   const wanted = Number((await searchParams).fit);
   const last = Math.max(0, ...opened.fits.map(({ number }) => number));
@@ -44,6 +45,7 @@ export default async function NotebookPage({ params, searchParams }: Props) {
         notebook={opened}
         measurement={measured}
         fit={shown}
+        statement={words}
         formula={{ tex: formula.wide, node: <FormulaBlock formula={formula} /> }}
         defaults={{ ...defaultFit }}
         reader={actor.userId}

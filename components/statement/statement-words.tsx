@@ -1,0 +1,62 @@
+import { StateWord } from '@/components/ui/state-word';
+import type { TypesetDraft, ValuePiece } from './use-statement';
+
+function Marks({ marks, fit }: Pick<ValuePiece, 'marks' | 'fit'>) {
+  return marks.map((mark) => (
+    <span key={mark} className="ml-[6px]">
+      {mark === 'earlier-revision' ? (
+        <StateWord kind="old">of revision {fit.revision}</StateWord>
+      ) : (
+        <StateWord kind="warn">not converged</StateWord>
+      )}
+    </span>
+  ));
+}
+
+/** A number by reference, a link to its fit; or why there is none. */
+function Value({ piece, onShow }: { piece: ValuePiece; onShow: (fitId: string) => void }) {
+  const { value, because, label, fit, marks } = piece;
+  const said = value ?? `no value, because ${because}`;
+  if (fit.id === null) return <span className="text-ink-2">{said}</span>;
+  const { id } = fit;
+  return (
+    <>
+      <a
+        href={`?fit=${fit.number}#posterior`}
+        title={`${label}, fit ${fit.number}`}
+        className={`decoration-action decoration-dotted [text-decoration-thickness:1.5px] ${value === null ? 'text-ink-2' : 'text-ink lining-nums'}`}
+        onClick={() => onShow(id)}
+      >
+        {said}
+        <span className="sr-only"> ({`${label}, fit ${fit.number}`})</span>
+      </a>
+      <Marks marks={marks} fit={fit} />
+    </>
+  );
+}
+
+/** A statement as it is read. */
+export function StatementWords({
+  paragraphs,
+  onShow,
+}: {
+  paragraphs: TypesetDraft['paragraphs'];
+  /** Shows a fit in the sections above. */
+  onShow: (fitId: string) => void;
+}) {
+  return paragraphs.map((pieces, i) => (
+    <p key={i} className="mb-3 max-w-figure text-lead">
+      {pieces.map((piece, j) =>
+        piece.kind === 'text' ? (
+          piece.text
+        ) : piece.kind === 'value' ? (
+          <Value key={j} piece={piece} onShow={onShow} />
+        ) : (
+          <span key={j} className="text-ink-2">
+            {piece.reference}
+          </span>
+        ),
+      )}
+    </p>
+  ));
+}

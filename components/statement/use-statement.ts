@@ -1,0 +1,93 @@
+'use client';
+
+import { useEffect, useMemo, useState } from 'react';
+import useSWR from 'swr';
+import { read, send } from '@/components/api/request';
+import type { Notebook, Statement, StatementPiece, TypesetStatement } from '@/lib/schemas';
+import { parseStatement, referencesOf, type StatementFault } from '@/lib/statement/parse-statement';
+import { writeReference } from '@/lib/statement/reference';
+
+export type ValuePiece = Extract<StatementPiece, { kind: 'value' }>;
+
+const pathOf = ({ id }: Pick<Notebook, 'id'>) => `/api/v1/notebooks/${id}/statement`;
+
+/** What the numbers hang on beside the words: a revision makes fits old, and a fit comes to its end. */
+const standing = ({ revision, fits }: Notebook) =>
+  [revision, ...fits.map(({ number, status }) => `${number} ${status}`)].join(' ');
+
+/** The words with the numbers of now; `at` gives them as they stood at an earlier revision. */
+export function useStatement(notebook: Notebook, initial: Statement, at: number | null): Statement | null {
+  const [first] = useState(() => standing(notebook));
+  const state = standing(notebook);
+  const { data } = useSWR(
+    [at === null ? pathOf(notebook) : `${pathOf(notebook)}?revision=${at}`, state],
+    ([path]) => read<Statement>(path),
+    {
+      fallbackData: at === null && state === first ? initial : undefined,
+      revalidateOnMount: at !== null || state !== first,
+      revalidateOnFocus: false,
+      keepPreviousData: at === null,
+    },
+  );
+  return data ?? null;
+}
+
+/** A value once the hand has rested for `milliseconds`: nobody is told of a brace that they are about to close. */
+function useRested<T>(value: T, milliseconds: number): T {
+  const [rested, setRested] = useState(value);
+  useEffect(() => {
+    const timer = setTimeout(() => setRested(value), milliseconds);
+    return () => clearTimeout(timer);
+  }, [value, milliseconds]);
+  return rested;
+}
+
+const rest = 700;
+
+export interface TypesetDraft {
+  /** Words at once; a number that isn't known yet is null. */
+  paragraphs: (Exclude<StatementPiece, ValuePiece> | ValuePiece | { kind: 'pending'; reference: string })[][];
+  /** Everything that keeps the words from being saved, in order. */
+  faults: StatementFault[];
+  /** The first of them, once the hand has rested. */
+  told: StatementFault | null;
+}
+
+/** Words while they are written: read here, their numbers asked for when a reference is new. */
+export function useTypeset(notebook: Notebook, text: string): TypesetDraft {
+  const parsed = useMemo(() => parseStatement(text), [text]);
+  const references = [...new Set(referencesOf(parsed).map(({ reference }) => writeReference(reference)))];
+  const asked = references.join('\n');
+  const { data } = useSWR(
+    asked ? [`${pathOf(notebook)}/typeset`, asked, standing(notebook)] : null,
+    async ([path, words]) => {
+      const { paragraphs, faults } = await send<TypesetStatement>('POST', path, { text: words });
+      const values = paragraphs.flat().flatMap((piece) => (piece.kind === 'value' ? [piece] : []));
+      // One reference a line was sent, so a fault's line says which it is.
+      const wrong = new Map(faults.map(({ line, message }) => [words.split('\n')[line - 1], message]));
+      return { values: new Map(values.map((value) => [value.reference, value])), wrong };
+    },
+    { keepPreviousData: true, revalidateOnFocus: false },
+  );
+  const faults = [
+    ...parsed.faults,
+    ...referencesOf(parsed).flatMap(({ reference, line, column }) => {
+      const message = data?.wrong.get(writeReference(reference));
+      return message === undefined ? [] : [{ line, column, message }];
+    }),
+  ].sort((a, b) => a.line - b.line || a.column - b.column);
+  const first = faults[0] ?? null;
+  const key = first && JSON.stringify(first);
+  const rested = useRested(key, rest);
+  return {
+    paragraphs: parsed.paragraphs.map((pieces) =>
+      pieces.map((piece) => {
+        if (piece.kind === 'text') return piece;
+        const reference = writeReference(piece.reference);
+        return data?.values.get(reference) ?? { kind: 'pending' as const, reference };
+      }),
+    ),
+    faults,
+    told: key !== null && key === rested ? first : null,
+  };
+}

@@ -1,0 +1,168 @@
+import { Op, type Transaction } from 'sequelize';
+import { Fit, Measurement, MeasurementVersion, Notebook, NotebookRevision } from '@/models';
+import { AppError, notFound } from '@/lib/errors';
+import { faultOf, presentReference, type ReferredFit } from '@/lib/presenters/statements';
+import {
+  settingSections,
+  fitStatusSchema,
+  snapshotSchema,
+  type Statement,
+  type TypesetStatement,
+} from '@/lib/schemas';
+import { emptyReport, storedReportSchema } from '@/lib/schemas/stored-report';
+import { parseStatement, referencesOf, type StatementFault } from '@/lib/statement/parse-statement';
+import type { Access } from './access';
+import { countKept } from './inference-spec';
+import { emailsOf } from './people';
+
+/** The fits of a notebook as a statement may speak of them, by number. */
+async function referredFits(
+  notebookId: string,
+  transaction?: Transaction,
+): Promise<Map<number, ReferredFit>> {
+  const fits = await Fit.findAll({ where: { notebookId }, transaction });
+  if (fits.length === 0) return new Map();
+  const versionIds = [...new Set(fits.map(({ measurementVersionId }) => measurementVersionId))];
+  const [versions, changes] = await Promise.all([
+    MeasurementVersion.findAll({
+      where: { id: versionIds },
+      attributes: ['id', 'measurementId', 'version', 'rows', 'hasBinEdges', 'points'],
+      transaction,
+    }),
+    NotebookRevision.findAll({
+      where: { notebookId, revision: { [Op.gt]: 1 } },
+      attributes: ['revision', 'sections'],
+      transaction,
+    }),
+  ]);
+  const measurements = await Measurement.findAll({
+    where: { id: versions.map(({ measurementId }) => measurementId) },
+    attributes: ['id', 'name', 'blind'],
+    transaction,
+  });
+  const settled = changes.filter(({ sections }) =>
+    settingSections.some((section) => sections.includes(section)),
+  );
+  return new Map(
+    fits.flatMap((fit) => {
+      const version = versions.find(({ id }) => id === fit.measurementVersionId);
+      const measurement = measurements.find(({ id }) => id === version?.measurementId);
+      if (!version || !measurement) return [];
+      const snapshot = snapshotSchema.parse(fit.snapshot);
+      const report =
+        fit.report === null || measurement.blind ? emptyReport : storedReportSchema.parse(fit.report);
+      const referred: ReferredFit = {
+        id: fit.id,
+        number: fit.number,
+        revision: fit.revision,
+        outdated: settled.some(({ revision }) => revision > fit.revision),
+        status: fitStatusSchema.parse(fit.status),
+        blind: measurement.blind,
+        replicas: snapshot.replicas,
+        kept: Math.max(0, fit.draws - snapshot.warmup),
+        diagnostics: report.diagnostics,
+        gate: { ...report.gate, target: { rhat: fit.targetRhat, ess: fit.targetEss } },
+        template: snapshot.template,
+        priors: snapshot.priors,
+        measurement: { name: measurement.name, version: version.version },
+        bins: countKept(version, snapshot.cuts),
+        sha256: fit.snapshotSha256,
+      };
+      return [[fit.number, referred] as const];
+    }),
+  );
+}
+
+function typeset(text: string, fits: ReadonlyMap<number, ReferredFit>): TypesetStatement {
+  const parsed = parseStatement(text);
+  const references = referencesOf(parsed);
+  const unknown = references.flatMap(({ reference, line, column }): StatementFault[] => {
+    const message = faultOf(reference, fits);
+    return message === null ? [] : [{ line, column, message }];
+  });
+  const numbers = [...new Set(references.map(({ reference }) => reference.fit))].sort((a, b) => a - b);
+  return {
+    paragraphs: parsed.paragraphs.map((pieces) =>
+      pieces.map((piece) => (piece.kind === 'text' ? piece : presentReference(piece.reference, fits))),
+    ),
+    faults: [...parsed.faults, ...unknown].sort((a, b) => a.line - b.line || a.column - b.column),
+    fits: numbers.flatMap((number) => {
+      const fit = fits.get(number);
+      return fit ? [{ id: fit.id, number, revision: fit.revision, sha256: fit.sha256 }] : [];
+    }),
+  };
+}
+
+/** Words that refer to nothing are refused as a whole, each fault with its place and remedy. */
+export async function checkStatement(
+  notebookId: string,
+  text: string,
+  transaction: Transaction,
+): Promise<void> {
+  const { faults } = typeset(text, await referredFits(notebookId, transaction));
+  if (faults.length === 0) return;
+  const [{ line, column, message }] = faults;
+  const more = faults.length > 1 ? ` And ${faults.length - 1} more.` : '';
+  throw new AppError(
+    'invalid',
+    `The statement can’t be stored. Line ${line}, character ${column}: ${message}${more}`,
+    faults.map((fault) => ({ path: 'statement', ...fault })),
+  );
+}
+
+/** The words that stand at a revision: they are stored with the revision that changed them. */
+export async function statementAt(
+  notebookId: string,
+  revision: number,
+  transaction?: Transaction,
+): Promise<string> {
+  const last = await NotebookRevision.findOne({
+    where: { notebookId, revision: { [Op.lte]: revision }, statement: { [Op.ne]: null } },
+    attributes: ['statement'],
+    order: [['revision', 'DESC']],
+    transaction,
+  });
+  return last?.statement ?? '';
+}
+
+/** The statement of the notebook of `access`, as it stands or as it stood at a revision, with the numbers of now. */
+export async function readStatement(access: Access, at?: number): Promise<Statement> {
+  access.require('notebook.read');
+  const notebook = await Notebook.findByPk(access.id, { attributes: ['id', 'revision'] });
+  if (!notebook) throw notFound('notebook');
+  const revision = at ?? notebook.revision;
+  if (revision > notebook.revision) {
+    const message = `Revision ${revision} isn’t there yet; revision ${notebook.revision} stands.`;
+    throw new AppError('invalid', message, [{ path: 'revision', message }]);
+  }
+  const [text, fits, changes] = await Promise.all([
+    statementAt(notebook.id, revision),
+    referredFits(notebook.id),
+    NotebookRevision.findAll({
+      where: { notebookId: notebook.id, statement: { [Op.ne]: null } },
+      attributes: ['revision', 'createdBy', 'createdAt'],
+      order: [['revision', 'DESC']],
+    }),
+  ]);
+  const people = await emailsOf(changes.map(({ createdBy }) => createdBy));
+  const history = changes.map((change) => ({
+    revision: change.revision,
+    by: people.get(change.createdBy) ?? 'a former member',
+    at: change.createdAt.toISOString(),
+  }));
+  return {
+    text,
+    written: history.find((change) => change.revision <= revision) ?? null,
+    history,
+    ...typeset(text, fits),
+  };
+}
+
+/** Words typeset with the numbers of now and nothing stored: what a person sees while they write. */
+export async function typesetStatement(
+  access: Access,
+  { text }: { text: string },
+): Promise<TypesetStatement> {
+  access.require('notebook.edit');
+  return typeset(text, await referredFits(access.id));
+}
