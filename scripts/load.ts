@@ -1,0 +1,65 @@
+import { writeFileSync } from 'node:fs';
+import { availableParallelism } from 'node:os';
+import { parseArgs } from 'node:util';
+import { z } from 'zod';
+import { closeDatabase } from '@/lib/db';
+import { takeInstanceEnvironment } from './instance-environment';
+import { tableOf } from './load/measures';
+import { runLoad } from './load/run-load';
+
+/**
+ * `npm run load -- [--viewers 50] [--queued 20] [--seconds 60] [--json FILE]`: puts the instance that runs in BEATNOTE_STATE
+ * under load, prints how fast it answered, and ends with 1 where a target is missed.
+ */
+
+const count = z.coerce.number<string>().int().min(1);
+const { values } = parseArgs({
+  options: {
+    viewers: { type: 'string', default: '50' },
+    queued: { type: 'string', default: '20' },
+    seconds: { type: 'string', default: '60' },
+    patience: { type: 'string', default: '600' },
+    json: { type: 'string' },
+  },
+});
+takeInstanceEnvironment();
+const origin = process.env.BEATNOTE_URL;
+if (!origin) {
+  process.stderr.write('No instance runs in BEATNOTE_STATE. Start one first.\n');
+  process.exit(1);
+}
+
+/** What is wanted: pages in milliseconds at the 95th percentile, lag from commit to viewer, draws. */
+const targets = { page: 500, lag: 2_000, lost: 0 } as const;
+
+const report = await runLoad({
+  origin,
+  viewers: count.parse(values.viewers),
+  queued: count.parse(values.queued),
+  seconds: count.parse(values.seconds),
+  patience: count.parse(values.patience),
+  say: (line) => process.stderr.write(`${line}\n`),
+});
+const { answers, events, fits, draws } = report;
+const met = {
+  page: (answers.page.p95 ?? Infinity) < targets.page,
+  lag: (answers.lag.p95 ?? Infinity) < targets.lag,
+  lost: draws.lost === targets.lost,
+};
+process.stdout.write(
+  [
+    tableOf(answers),
+    '',
+    `${events.heard} events heard, ${events.backwards} of them backwards`,
+    `${fits.ended} queued fits ended by themselves, ${fits.stopped} were stopped`,
+    `${draws.committed} draws committed, ${draws.found} found, ${draws.lost} lost`,
+    '',
+    ...Object.entries(met).map(([name, good]) => `${name.padEnd(5)} ${good ? 'met' : 'missed'}`),
+    '',
+  ].join('\n'),
+);
+const machine = { processors: availableParallelism(), node: process.version, at: new Date().toISOString() };
+if (values.json)
+  writeFileSync(values.json, `${JSON.stringify({ ...report, targets, met, machine }, null, 2)}\n`);
+await closeDatabase();
+process.exit(Object.values(met).every(Boolean) ? 0 : 1);
