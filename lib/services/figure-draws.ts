@@ -1,56 +1,6 @@
-import type { Draws, DrawsHead } from '@/lib/schemas';
+import type { Draws } from '@/lib/schemas';
 import type { Access } from './access';
-import { fitBlocks, servedRows } from './fit-draws';
-import { fitColumns, fitModel, specOf } from './fit-model';
-import { findDraws } from './fit-records';
-import { strideOf } from './fit-schedule';
-
-/** Draws thinned evenly for figures: replica after replica, in order. */
-interface ThinnedDraws {
-  head: DrawsHead;
-  /** Recorded draw of each row, counted from 0 at the start of warm-up. */
-  draw: number[];
-  logLikelihood: number[];
-  /** One array a column of the head, in its order. */
-  values: number[][];
-}
-
-async function thinnedDraws(access: Access, max: number): Promise<ThinnedDraws> {
-  const source = await findDraws(access);
-  const { fit, snapshot, version } = source;
-  const { warmup, replicas } = snapshot;
-  const columns = fitColumns(specOf(fitModel(version, snapshot)));
-  const stored = strideOf(fit.draws - warmup);
-  const ofWarmup = Math.min(fit.draws, warmup);
-  const kept = Math.max(0, fit.draws - warmup);
-  const countAt = (stride: number) => Math.ceil(ofWarmup / stride) + Math.ceil(kept / stride);
-  let stride = stored;
-  while (replicas * countAt(stride) > max && stride < fit.draws) stride += stored;
-
-  const names = [...columns.sampled, ...columns.derived];
-  const made: ThinnedDraws = {
-    head: { replicas, stride, warmup, rows: Array.from({ length: replicas }, () => 0), columns: names },
-    draw: [],
-    logLikelihood: [],
-    values: names.map(() => []),
-  };
-  const derived = new Float64Array(columns.derived.length);
-  for (let replica = 0; replica < replicas; replica++) {
-    for await (const block of fitBlocks(fit.id, replica, fit.draws)) {
-      for (const { draw, row } of servedRows(block, { warmup, draws: fit.draws })) {
-        if ((draw < warmup ? draw : draw - warmup) % stride !== 0) continue;
-        const offset = row * block.width;
-        columns.derive(block.values, offset, derived);
-        made.head.rows[replica] += 1;
-        made.draw.push(draw);
-        made.logLikelihood.push(block.values[offset]);
-        columns.sampled.forEach((_, i) => made.values[i].push(block.values[offset + 2 + i]));
-        derived.forEach((value, i) => made.values[columns.sampled.length + i].push(value));
-      }
-    }
-  }
-  return made;
-}
+import { thinnedDraws, type ThinnedDraws } from './thinned-draws';
 
 /** Seven digits are more than a figure can show. */
 const shown = (value: number): number => Number(value.toPrecision(7));
@@ -74,13 +24,22 @@ export async function readDraws(access: Access, max: number): Promise<Draws> {
  * padded with spaces to a multiple of four, the draws (uint32), log-likelihoods and columns (float32), one after the other.
  */
 export async function packDraws(access: Access, max: number): Promise<ArrayBuffer> {
-  const { head, draw, logLikelihood, values } = await thinnedDraws(access, max);
+  const thinned = await thinnedDraws(access, max);
+  const known = packed.get(thinned) ?? pack(thinned);
+  packed.set(thinned, known);
+  return known;
+}
+
+/** Draws that are kept are packed once for all who ask. */
+const packed = new WeakMap<ThinnedDraws, ArrayBuffer>();
+
+function pack({ head, draw, logLikelihood, values }: ThinnedDraws): ArrayBuffer {
   const text = new TextEncoder().encode(JSON.stringify(head));
   const headBytes = 4 * Math.ceil(text.byteLength / 4);
-  const packed = new ArrayBuffer(4 + headBytes + 4 * draw.length * (2 + values.length));
-  const view = new DataView(packed);
+  const made = new ArrayBuffer(4 + headBytes + 4 * draw.length * (2 + values.length));
+  const view = new DataView(made);
   view.setUint32(0, headBytes, true);
-  const bytes = new Uint8Array(packed);
+  const bytes = new Uint8Array(made);
   bytes.fill(0x20, 4, 4 + headBytes);
   bytes.set(text, 4);
   let at = 4 + headBytes;
@@ -93,5 +52,5 @@ export async function packDraws(access: Access, max: number): Promise<ArrayBuffe
       view.setFloat32(at, value, true);
       at += 4;
     }
-  return packed;
+  return made;
 }

@@ -7,9 +7,17 @@ import type { StoredBlock } from './fit-commit';
 /** Blocks that are read at once. */
 const batch = 64;
 
-/** The stored blocks of one replica in the order of its draws; those committed after `draws` recorded draws are left out. */
-export async function* fitBlocks(fitId: string, replica: number, draws: number): AsyncGenerator<StoredBlock> {
-  let after = -1;
+/**
+ * The stored blocks of one replica in the order of its draws, from the first that begins at `from`; those committed after
+ * `draws` recorded draws are left out. Commits end where blocks do, so nothing of an earlier commit begins there.
+ */
+export async function* fitBlocks(
+  fitId: string,
+  replica: number,
+  draws: number,
+  from = 0,
+): AsyncGenerator<StoredBlock> {
+  let after = from - 1;
   for (;;) {
     const rows = await FitBlock.findAll({
       where: { fitId, replica, firstDraw: { [Op.gt]: after, [Op.lt]: draws } },

@@ -20,7 +20,7 @@ export async function findFit(access: Access): Promise<Fit> {
   return fit;
 }
 
-async function isBlind(fit: Fit): Promise<boolean> {
+export async function isBlind(fit: Pick<Fit, 'measurementVersionId'>): Promise<boolean> {
   const version = await MeasurementVersion.findByPk(fit.measurementVersionId, {
     attributes: ['measurementId'],
   });
