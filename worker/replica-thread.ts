@@ -4,11 +4,13 @@ import { buildInference } from '@/lib/inference';
 import { advance, startReplica, type ReplicaState, type SamplerSettings } from '@/lib/sampler';
 import { specOf } from '@/lib/services/fit-model';
 import { failureOf } from './failure';
+import { yieldToOthers } from './niceness';
 import type { Advance, ReplicaAnswer, ReplicaSetup } from './messages';
 
 /** A thread that samples: it builds the posterior from plain data and advances the replicas that it is given, one at a time. */
 const port = parentPort;
 if (!port) throw new Error('This file is the entry of a thread.');
+yieldToOthers();
 const { model, states } = workerData as ReplicaSetup;
 const { snapshot } = model;
 

@@ -2,11 +2,13 @@ import { parentPort, workerData } from 'node:worker_threads';
 import { fitColumns, specOf } from '@/lib/services/fit-model';
 import { KeptDraws, lookAt } from '@/lib/services/fit-report';
 import { failureOf } from './failure';
+import { yieldToOthers } from './niceness';
 import type { ReportAnswer, ReportQuestion, ReportSetup } from './messages';
 
 /** A thread that remembers a fit's committed draws and computes its diagnostics, so that the main thread can renew leases. */
 const port = parentPort;
 if (!port) throw new Error('This file is the entry of a thread.');
+yieldToOthers();
 const { model, target } = workerData as ReportSetup;
 
 const columns = fitColumns(specOf(model));

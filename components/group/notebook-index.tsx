@@ -14,13 +14,13 @@ export function notebookStates(notebook: NotebookSummary): State[] {
 }
 
 function Sentence({ notebook }: { notebook: NotebookSummary }) {
-  const { lastFit, measurementName, templateId, fields, revision, simulated } = notebook;
+  const { lastFit, measurementName, templateId, fields, settledRevision, simulated } = notebook;
   return (
     <>
       {templateTitle(templateId, fields)} in {measurementName}
       {simulated ? ', simulated' : ''}.{' '}
       {lastFit
-        ? `Fit ${lastFit.number}${lastFit.revision === revision ? '' : `, of revision ${lastFit.revision},`} ${fitPredicate(lastFit.status)}.`
+        ? `Fit ${lastFit.number}${lastFit.revision >= settledRevision ? '' : `, of revision ${lastFit.revision},`} ${fitPredicate(lastFit.status)}.`
         : 'No fit yet.'}
     </>
   );

@@ -96,7 +96,9 @@ export function ReferenceMenu({
         onChange={(event) => setGiven(event.target.value as Statistic)}
         disabled={isFact(shown)}
       />
-      <Button onClick={insert}>Insert</Button>
+      <div>
+        <Button onClick={insert}>Insert</Button>
+      </div>
     </div>
   );
 }

@@ -35,6 +35,20 @@ function Value({ piece, onShow }: { piece: ValuePiece; onShow: (fitId: string) =
   );
 }
 
+/** Greek letters are symbols, and a sign of comparison stays with what it compares. */
+function Words({ text }: { text: string }) {
+  const bound = text.replace(/ ([=<>≤≥≈±]) /g, '\u00a0$1\u00a0');
+  return bound.split(/([α-ω])/).map((part, i) =>
+    i % 2 === 1 ? (
+      <i key={i} className="sym">
+        {part}
+      </i>
+    ) : (
+      part
+    ),
+  );
+}
+
 /** A statement as it is read. */
 export function StatementWords({
   paragraphs,
@@ -48,12 +62,17 @@ export function StatementWords({
     <p key={i} className="mb-3 max-w-figure text-lead">
       {pieces.map((piece, j) =>
         piece.kind === 'text' ? (
-          piece.text
+          <Words key={j} text={piece.text} />
         ) : piece.kind === 'value' ? (
           <Value key={j} piece={piece} onShow={onShow} />
         ) : (
           <span key={j} className="text-ink-2">
             {piece.reference}
+            {piece.wrong ? (
+              <span className="ml-[6px]">
+                <StateWord kind="bad">names nothing</StateWord>
+              </span>
+            ) : null}
           </span>
         ),
       )}

@@ -45,8 +45,8 @@ function useRested<T>(value: T, milliseconds: number): T {
 const rest = 700;
 
 export interface TypesetDraft {
-  /** Words at once; a number that isn't known yet is null. */
-  paragraphs: (Exclude<StatementPiece, ValuePiece> | ValuePiece | { kind: 'pending'; reference: string })[][];
+  /** Words at once; a reference whose number isn't known yet, or that names nothing, stands as it is typed. */
+  paragraphs: (StatementPiece | { kind: 'typed'; reference: string; wrong: boolean })[][];
   /** Everything that keeps the words from being saved, in order. */
   faults: StatementFault[];
   /** The first of them, once the hand has rested. */
@@ -84,7 +84,8 @@ export function useTypeset(notebook: Notebook, text: string): TypesetDraft {
       pieces.map((piece) => {
         if (piece.kind === 'text') return piece;
         const reference = writeReference(piece.reference);
-        return data?.values.get(reference) ?? { kind: 'pending' as const, reference };
+        const value = data?.wrong.has(reference) ? undefined : data?.values.get(reference);
+        return value ?? { kind: 'typed' as const, reference, wrong: data?.wrong.has(reference) ?? false };
       }),
     ),
     faults,

@@ -15,6 +15,19 @@ const headers = {
   'X-Content-Type-Options': 'nosniff',
 };
 
+/** A state that goes to many readers is written once: it is the same object for all of them. */
+const written = new WeakMap<object, Map<string, string>>();
+
+function frameOf(event: string, data: unknown): string {
+  const write = () => `event: ${event}\ndata: ${JSON.stringify(data)}\n\n`;
+  if (typeof data !== 'object' || data === null) return write();
+  const known = written.get(data) ?? new Map<string, string>();
+  written.set(data, known);
+  const frame = known.get(event) ?? write();
+  known.set(event, frame);
+  return frame;
+}
+
 /** A server waits for open answers before it stops, so one stream would hold it up for ever. */
 const holder = globalThis as typeof globalThis & { beatnoteStreams?: Set<() => void> };
 
@@ -67,7 +80,7 @@ export function eventStream(signal: AbortSignal, start: (sink: EventSink) => Pro
           const stop = await start({
             send: (event, data) => {
               if (closed) return;
-              const frame = `event: ${event}\ndata: ${JSON.stringify(data)}\n\n`;
+              const frame = frameOf(event, data);
               if ((controller.desiredSize ?? 0) > 0) write(frame);
               else waiting.set(event, frame);
             },

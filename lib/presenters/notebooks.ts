@@ -55,7 +55,7 @@ const fieldsOf = ({ template }: NotebookSettings): number => fieldCount(template
 
 export function presentNotebookSummary(
   notebook: NotebookRow,
-  settings: NotebookSettings,
+  { settings, settled }: { settings: NotebookSettings; settled: number },
   measurement: MeasuredBy,
   lastFit: FitLine | null,
   people: People,
@@ -65,6 +65,7 @@ export function presentNotebookSummary(
     number: notebook.number,
     title: notebook.title,
     revision: notebook.revision,
+    settledRevision: settled,
     measurementName: measurement.name,
     templateId: settings.template.id,
     fields: fieldsOf(settings),

@@ -99,6 +99,8 @@ export const notebookSummarySchema = z.object({
   number: z.number().int(),
   title: z.string(),
   revision: z.number().int(),
+  /** The last revision that changed what a fit freezes. */
+  settledRevision: z.number().int(),
   measurementName: z.string(),
   templateId: z.string(),
   fields: z.number().int(),

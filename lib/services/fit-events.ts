@@ -5,6 +5,7 @@ import { subscribe } from '@/lib/redis';
 import { endedStatuses, fitEventSchema, type FitEvent } from '@/lib/schemas';
 import type { Access } from './access';
 import { findFit, fitContext, queueOf } from './fit-records';
+import { SharedReads } from './shared-reads';
 
 /** Milliseconds between two events of one stream at least, and between two reads that nobody called for. */
 const pace = { between: 500, unasked: 2_000 } as const;
@@ -15,6 +16,22 @@ export interface FitWatcher {
   onEnd(): void;
 }
 
+interface Told {
+  event: FitEvent;
+  text: string;
+}
+
+/** Everybody of one role sees the same: they are given the very same event, read, presented and written once. */
+const reads = new SharedReads<Told>();
+
+const readEvent = (access: Access): Promise<Told> =>
+  reads.read(`${access.id} ${access.role}`, async () => {
+    const fit = await findFit(access);
+    const [context, queue] = await Promise.all([fitContext(access, fit), queueOf(fit)]);
+    const event = fitEventSchema.parse(presentFit(fit, { ...context, queue }));
+    return { event, text: JSON.stringify(event) };
+  });
+
 /**
  * Watches the fit of `access`: its state from the database at once, then whenever it has changed, until it has ended. Workers
  * tell of a commit over Redis; that only makes it quicker, the database is read every two seconds without it. Resolves
@@ -22,7 +39,6 @@ export interface FitWatcher {
  */
 export async function watchFit(access: Access, watcher: FitWatcher): Promise<() => void> {
   access.require('fit.read');
-  const context = await fitContext(access, await findFit(access));
   let stopped = false;
   let timer: NodeJS.Timeout | undefined;
   let unsubscribe: (() => void) | undefined;
@@ -41,8 +57,7 @@ export async function watchFit(access: Access, watcher: FitWatcher): Promise<() 
     clearTimeout(timer);
     if (!stopped) timer = setTimeout(() => void turn(), milliseconds);
   };
-  const tell = (event: FitEvent) => {
-    const text = JSON.stringify(event);
+  const tell = ({ event, text }: Told) => {
     if (text !== told) {
       told = text;
       toldAt = Date.now();
@@ -54,8 +69,7 @@ export async function watchFit(access: Access, watcher: FitWatcher): Promise<() 
     }
   };
   const read = async () => {
-    const fit = await findFit(access);
-    const event = fitEventSchema.parse(presentFit(fit, { ...context, queue: await queueOf(fit) }));
+    const event = await readEvent(access);
     if (!stopped) tell(event);
   };
   const turn = async () => {

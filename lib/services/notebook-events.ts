@@ -7,6 +7,7 @@ import { notebookSchema, type Notebook, type Presence } from '@/lib/schemas';
 import { authorise, type Access } from './access';
 import { endPresence, othersPresent, presencePace, signPresence, tellNotebook } from './notebook-presence';
 import { readNotebook } from './notebook-records';
+import { SharedReads } from './shared-reads';
 
 /** Milliseconds between two reads that nobody called for: while changes are told, and while Redis is away. */
 const unasked = { told: 10_000, untold: 2_000 } as const;
@@ -21,6 +22,12 @@ export interface NotebookWatcher {
 
 const shut = (error: unknown): boolean =>
   error instanceof AppError && (error.code === 'not_found' || error.code === 'forbidden');
+
+/** Everybody of one role sees the same notebook, read and presented once for all who look. */
+const reads = new SharedReads<Notebook>();
+
+const readShared = (access: Access): Promise<Notebook> =>
+  reads.read(`${access.id} ${access.role}`, async () => notebookSchema.parse(await readNotebook(access)));
 
 /**
  * Watches the notebook of `access`: its state from the database at once, then whenever it has changed. Every read asks the
@@ -55,11 +62,10 @@ export async function watchNotebook(access: Access, watcher: NotebookWatcher): P
   const read = async () => {
     const present = await authorise(actor, 'notebook', id, 'notebook.read');
     const [notebook, others] = await Promise.all([
-      readNotebook(present),
+      readShared(present),
       othersPresent(id, actor.userId, Date.now()),
     ]);
-    const answer = notebookSchema.parse(notebook);
-    if (news('notebook', answer)) watcher.onNotebook(answer);
+    if (news('notebook', notebook)) watcher.onNotebook(notebook);
     if (news('presence', others)) watcher.onPresence({ others });
   };
   const turn = async () => {

@@ -11,7 +11,7 @@ import {
 import { notFound } from '@/lib/errors';
 import { actionsFor } from '@/lib/policies';
 import { presentNotebook, presentNotebookSummary, type MeasuredBy } from '@/lib/presenters/notebooks';
-import type { Notebook as NotebookAnswer, NotebookSummary } from '@/lib/schemas';
+import { settingSections, type Notebook as NotebookAnswer, type NotebookSummary } from '@/lib/schemas';
 import type { Access } from './access';
 import { countKept } from './inference-spec';
 import { emailsOf } from './people';
@@ -118,14 +118,28 @@ async function standingSettings(notebooks: readonly Notebook[]): Promise<Map<str
   return new Map(revisions.map(({ notebookId, settings }) => [notebookId, settings]));
 }
 
+/** The last revision that changed what a fit freezes, by notebook's id: words and titles make no fit old. */
+async function settledRevisions(notebooks: readonly Notebook[]): Promise<Map<string, number>> {
+  const revisions = await NotebookRevision.findAll({
+    where: { notebookId: notebooks.map(({ id }) => id) },
+    attributes: ['notebookId', 'revision', 'sections'],
+    order: [['revision', 'ASC']],
+  });
+  const settled = revisions.filter(({ sections }) =>
+    settingSections.some((section) => sections.includes(section)),
+  );
+  return new Map(settled.map(({ notebookId, revision }) => [notebookId, revision]));
+}
+
 /**
  * The notebooks of a group, last changed first. For services that have authorised: it asks for nothing itself.
  */
 export async function notebookSummaries(groupId: string): Promise<NotebookSummary[]> {
   const notebooks = await Notebook.findAll({ where: { groupId }, order: [['updatedAt', 'DESC']] });
   if (notebooks.length === 0) return [];
-  const [settings, measurements, fits] = await Promise.all([
+  const [settings, settled, measurements, fits] = await Promise.all([
     standingSettings(notebooks),
+    settledRevisions(notebooks),
     measuredByVersion(notebooks.map(({ measurementVersionId }) => measurementVersionId)),
     Fit.findAll({
       where: { notebookId: notebooks.map(({ id }) => id) },
@@ -143,6 +157,14 @@ export async function notebookSummaries(groupId: string): Promise<NotebookSummar
     const measurement = measurements.get(notebook.measurementVersionId);
     if (!standing || !measurement) return [];
     const lastFit = lastFits.get(notebook.id) ?? null;
-    return [presentNotebookSummary(notebook, standing, measurement, lastFit, people)];
+    return [
+      presentNotebookSummary(
+        notebook,
+        { settings: standing, settled: settled.get(notebook.id) ?? 1 },
+        measurement,
+        lastFit,
+        people,
+      ),
+    ];
   });
 }

@@ -49,7 +49,7 @@ const deep = simulated(
   {
     name: 'Larkfield deep field',
     description:
-      'Simulated: two mixed heavy fields over a smooth background, in a deep and narrow field that reaches far into squeezed triangles. The masses are close, so that their oscillations beat. The covariance is estimated from 600 mocks.',
+      'Two mixed heavy fields over a smooth background, in a deep and narrow field that reaches far into squeezed triangles. The masses are close, so that their oscillations beat. The covariance is estimated from 600 mocks.',
     fileName: 'larkfield-deep',
   },
   {
@@ -69,7 +69,7 @@ const wide = simulated(
   {
     name: 'Larkfield wide strip',
     description:
-      'Simulated: one heavy field with a phase of its own over a smooth background, in a wide and shallow strip. The covariance is that of the noise itself, given as a matrix.',
+      'One heavy field with a phase of its own over a smooth background, in a wide and shallow strip. The covariance is that of the noise itself, given as a matrix.',
     fileName: 'larkfield-wide',
   },
   {
@@ -89,7 +89,7 @@ const south = simulated(
   {
     name: 'Larkfield southern cap',
     description:
-      'Simulated: no heavy field at all, a smooth background alone, in the shells of the southern cap. What a group most often has in its hands. The covariance is estimated from 400 mocks.',
+      'No heavy field at all, a smooth background alone, in the shells of the southern cap. What a group most often has in its hands. The covariance is estimated from 400 mocks.',
     fileName: 'larkfield-south',
   },
   {
