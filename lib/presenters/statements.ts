@@ -1,4 +1,4 @@
-import { decimalsByMcse, formatCount, formatInterval, formatNumber } from '@/lib/figures/format';
+import { decimalsByMcse, formatCount, formatInterval, formatNumber, thinSpace } from '@/lib/figures/format';
 import { quantileMcse, weakness, type ReportedTail } from '@/lib/figures/mcse';
 import { endedStatuses, type Diagnostic, type Fit, type FitStatus, type StatementPiece } from '@/lib/schemas';
 import { factWords, statisticWords, writeReference, type Reference } from '@/lib/statement/reference';
@@ -94,7 +94,7 @@ function marginalValue(
     formatInterval(lo ?? NaN, hi ?? NaN, digits(tail));
   switch (reference.statistic) {
     case 'summary':
-      return { value: `${number(q50, digits(0.5))} (68\u00a0%: ${interval(q16, q84, 0.16)})` };
+      return { value: `${number(q50, digits(0.5))} (68${thinSpace}%: ${interval(q16, q84, 0.16)})` };
     case 'median':
       return { value: number(q50, digits(0.5)) };
     case 'mean': {

@@ -38,7 +38,7 @@ async function ensureGroup(lead: Actor): Promise<string> {
 
 async function ensureMeasurement(access: Access, wanted: DemoMeasurement): Promise<string> {
   const { groupId } = access;
-  const { name, description, fileName } = wanted;
+  const { name, description, fileName, truth } = wanted;
   const known = await Measurement.findOne({ where: { groupId, name } });
   if (known) return known.id;
   const { points, mocks, covariance } = wanted.files();
@@ -46,7 +46,7 @@ async function ensureMeasurement(access: Access, wanted: DemoMeasurement): Promi
     file: part(`${fileName}.csv`, points),
     mocks: part(`${fileName}-mocks.csv`, mocks),
     covariance: part(`${fileName}-covariance.csv`, covariance),
-    meta: part('', JSON.stringify({ name, description, simulated: true })),
+    meta: part('', JSON.stringify({ name, description, simulated: true, truth })),
   });
   return id;
 }
