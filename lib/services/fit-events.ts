@@ -4,7 +4,7 @@ import { presentFit } from '@/lib/presenters/fits';
 import { subscribe } from '@/lib/redis';
 import { endedStatuses, fitEventSchema, type FitEvent } from '@/lib/schemas';
 import type { Access } from './access';
-import { findFit, fitContext, queueOf } from './fit-records';
+import { findFit, fitContext } from './fit-records';
 import { SharedReads } from './shared-reads';
 
 /** Milliseconds between two events of one stream at least, and between two reads that nobody called for. */
@@ -27,8 +27,7 @@ const reads = new SharedReads<Told>();
 const readEvent = (access: Access): Promise<Told> =>
   reads.read(`${access.id} ${access.role}`, async () => {
     const fit = await findFit(access);
-    const [context, queue] = await Promise.all([fitContext(access, fit), queueOf(fit)]);
-    const event = fitEventSchema.parse(presentFit(fit, { ...context, queue }));
+    const event = fitEventSchema.parse(presentFit(fit, await fitContext(access, fit)));
     return { event, text: JSON.stringify(event) };
   });
 

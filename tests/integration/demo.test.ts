@@ -2,37 +2,40 @@ import { spawn } from 'node:child_process';
 import { randomBytes } from 'node:crypto';
 import { once } from 'node:events';
 import { setTimeout as sleep } from 'node:timers/promises';
-import { Sequelize } from 'sequelize';
+import { mkdirSync, mkdtempSync, rmSync } from 'node:fs';
+import { tmpdir } from 'node:os';
+import path from 'node:path';
+import type { Sequelize } from 'sequelize';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
-import { config } from '@/lib/config';
+import { openDatabase } from '@/models';
 import { measurements, notebooks } from '@/scripts/demo/scenario';
+import { choosePorts } from '../../scripts/supervisor/ports.mjs';
+import { startMariadb } from '../../scripts/supervisor/services.mjs';
 
-/** The demo is filled into a database of its own, as the first start of an instance does. */
-const name = `demo_${randomBytes(4).toString('hex')}`;
-const root = process.cwd();
-let url: string;
+// A server of its own: the demo is filled into an empty database alone.
+let server: Awaited<ReturnType<typeof startMariadb>>;
 let sequelize: Sequelize;
+const root = process.cwd();
+const state = mkdtempSync(path.join(tmpdir(), 'beatnote-demo-'));
 
 beforeAll(async () => {
-  const address = new URL(config().databaseUrl);
-  const server = new Sequelize(address.href, { dialect: 'mariadb', logging: false });
-  await server.query(`CREATE DATABASE ${name}`);
-  await server.close();
-  address.pathname = `/${name}`;
-  url = address.href;
-  sequelize = new Sequelize(url, { dialect: 'mariadb', logging: false });
+  for (const part of ['log', 'pid']) mkdirSync(path.join(state, part), { mode: 0o700 });
+  const { database: port } = (await choosePorts(state, ['database'])) as { database: number };
+  server = await startMariadb({ state, port, password: randomBytes(12).toString('hex') });
+  sequelize = openDatabase(server.url);
   expect(await run('migrate')).toBe(0);
 });
 afterAll(async () => {
-  await sequelize.query(`DROP DATABASE ${name}`);
   await sequelize.close();
+  await server.server.stop();
+  rmSync(state, { recursive: true, force: true });
 });
 
 /** Runs a script on that database; killed with -9 once `until` comes true. Gives its exit code, null where it was killed. */
 async function run(script: string, until?: () => Promise<boolean>): Promise<number | null> {
   const child = spawn(process.execPath, ['--import', 'tsx', `scripts/${script}.ts`], {
     cwd: root,
-    env: { ...process.env, DATABASE_URL: url },
+    env: { ...process.env, DATABASE_URL: server.url },
     stdio: 'ignore',
   });
   const ended = once(child, 'exit');
