@@ -113,7 +113,7 @@ export async function view(
       timed(measures.page, () => get(`/notebooks/${notebookId}`, { cookie, accept: 'text/html' })),
     ),
     repeat(pace.draws, share, over, () =>
-      timed(measures.draws, () => get(`/api/v1/fits/${fitId}/draws?max=4000`, { cookie })),
+      timed(measures.draws, () => get(`/api/v1/fits/${fitId}/draws?max=4000&format=float32`, { cookie })),
     ),
     repeat(pace.page, 1 - share, over, async () => {
       await timed(measures.fit, () => get(`/api/v1/fits/${fitId}`, bearer));
