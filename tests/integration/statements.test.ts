@@ -1,4 +1,4 @@
-import { afterAll, beforeAll, beforeEach, describe, expect, it } from 'vitest';
+import { afterAll, afterEach, beforeAll, beforeEach, describe, expect, it } from 'vitest';
 import { Fit, Measurement, NotebookRevision } from '@/models';
 import { POST as create } from '@/app/api/v1/groups/[id]/notebooks/route';
 import { POST as start } from '@/app/api/v1/notebooks/[id]/fits/route';
@@ -37,6 +37,9 @@ beforeEach(async () => {
   const begun = await call(start, { params: { id: notebook }, token: analyst.token, json: { seed: 1 } });
   fit = createdSchema.parse(await begun.json()).id;
 });
+
+// Tests share one queue: a fit that is left waiting would stand before those of others.
+afterEach(() => Fit.update({ status: 'stopped' }, { where: { groupId: group } }));
 
 /** What a worker leaves behind: 400 kept draws a replica with one diagnostic worth reading. */
 const end = (status: string) =>
