@@ -212,12 +212,19 @@ function DiagonalPanel({ one, place }: { one: ShownParameter; place: PanelPlace 
       {panelTicks(m, side).map((tick) => (
         <path key={tick.value} className="tk" d={`M${toX(tick.value).toFixed(1)} ${upper + side}v-4`} />
       ))}
-      <text className="at" x={left + 2} y={upper - 9}>
-        <SvgSym {...parameter.symbol} />
-      </text>
+      {medianWidth(text) + 26 < side ? (
+        <text className="at" x={left + 2} y={upper - 9}>
+          <SvgSym {...parameter.symbol} />
+        </text>
+      ) : null}
       <MedianText right={right} y={upper - 9} text={text} />
     </g>
   );
+}
+
+/** Width of the median with its ends in pixels; the face is monospaced, 0.6 em a character. */
+function medianWidth({ median, up, down }: ShownParameter['text']): number {
+  return 7.2 * median.length + 6 * Math.max(up.length, down.length) + 4;
 }
 
 /** Median with the ends of the 68 % interval raised and lowered after it. */
