@@ -82,8 +82,8 @@ export function OverlayDrop({ what, laid, onTable, onClear, children }: OverlayD
           'Reading the file…'
         ) : (
           <>
-            <WordButton onClick={open}>Lay {what} over it</WordButton>, or drop the file here. It stays in
-            this browser.
+            <WordButton onClick={open}>Lay {what} over it</WordButton>
+            <span className="max-tablet:hidden">, or drop the file here</span>. It stays in this browser.
           </>
         )}
       </p>
