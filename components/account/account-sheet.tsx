@@ -12,7 +12,8 @@ import { IndexSection } from '@/components/ui/index-list';
 import { PageHead } from '@/components/ui/section';
 import { Sheet, SheetRow } from '@/components/ui/sheet';
 import { counted } from '@/components/words/counts';
-import type { Me, Token, TokenCreated } from '@/lib/schemas';
+import type { Me, Settings, Token, TokenCreated } from '@/lib/schemas';
+import { MailSettings } from './mail-settings';
 import { NewToken, type MadeToken } from './new-token';
 import { TokenTable } from './token-table';
 
@@ -85,10 +86,12 @@ function Tokens({ initial }: { initial: Token[] }) {
 export function AccountSheet({
   me,
   tokens,
+  settings,
   administers,
 }: {
   me: Me;
   tokens: Token[];
+  settings: Settings;
   /** They administer the site. */
   administers: boolean;
 }) {
@@ -96,6 +99,7 @@ export function AccountSheet({
     <Sheet>
       <PageHead title="Your account" byline={me.email} />
       <SheetRow>
+        <MailSettings initial={settings} />
         <Tokens initial={tokens} />
         <IndexSection id="groups" title="Groups">
           <div className="border-t border-ink pt-2">

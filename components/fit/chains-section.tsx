@@ -41,6 +41,15 @@ export interface ChainsSectionProps {
 }
 
 function Lost({ connection }: { connection: Connection }) {
+  if (connection.kind === 'trouble') {
+    return (
+      <Message level="warning" title={connection.message}>
+        <p>
+          Figures show what was last received, at {clockTime(connection.at)}. This page follows by itself.
+        </p>
+      </Message>
+    );
+  }
   if (connection.kind !== 'lost') return null;
   return (
     <Message level="warning" title={`Connection lost at ${clockTime(connection.at)}`}>

@@ -1,7 +1,7 @@
 'use client';
 
 import { RunFigures, Ruler } from '@/components/ui/run-figures';
-import { capital, duration, inWords } from '@/components/words/counts';
+import { about, capital, duration, inWords } from '@/components/words/counts';
 import { formatCount, formatNumber, noValue } from '@/lib/figures/format';
 import type { Fit } from '@/lib/schemas';
 import { judged, meetsGate } from './quantities';
@@ -72,7 +72,7 @@ export function LiveFigures({ fit }: { fit: Fit }) {
         entries={[
           {
             label: running ? 'time left' : 'time spent',
-            value: seconds === null ? noValue : duration(seconds),
+            value: seconds === null ? noValue : running ? about(seconds) : duration(seconds),
           },
           { label: warming ? 'warm-up draws a replica' : 'draws a replica', value: drawn },
           {

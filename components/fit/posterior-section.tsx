@@ -1,7 +1,6 @@
 'use client';
 
 import { WithheldFigure } from '@/components/figures/withheld-figure';
-import { Button, Buttons } from '@/components/ui/button';
 import { Caution } from '@/components/ui/caution';
 import { Record } from '@/components/ui/record';
 import { Section } from '@/components/ui/section';
@@ -10,7 +9,6 @@ import { posteriorFoldSentence } from '@/components/notebook/fold-sentences';
 import { posteriorState } from '@/components/notebook/section-states';
 import { templateInWords } from '@/components/notebook/template-words';
 import type { SectionFold } from '@/components/notebook/use-folds';
-import { counted } from '@/components/words/counts';
 import type { Fit, Measurement, Notebook } from '@/lib/schemas';
 import { fieldCount } from '@/lib/templates';
 import type { FigureDraws } from './draws';
@@ -18,6 +16,7 @@ import { MarginalTable } from './marginal-table';
 import { Corner } from './posterior-corner';
 import { BestFit, posteriorSentence } from './posterior-figures';
 import type { Quantity } from './quantities';
+import { SampleDownloads } from './sample-downloads';
 
 export interface PosteriorSectionProps {
   notebook: Notebook;
@@ -57,21 +56,6 @@ function Cautions({ fit }: { fit: Fit }) {
       </Caution>
       <Caution>A good χ² doesn’t show that the background is sufficient.</Caution>
     </>
-  );
-}
-
-function Downloads({ fit }: { fit: Fit }) {
-  return (
-    <Buttons
-      note={`${counted(fit.diagnostics.length, 'column').replace(/^one/, 'One')} beside the likelihood and prior of each draw; the manifest holds checksums, seeds and versions.`}
-    >
-      <Button kind="primary" href={`/api/v1/fits/${fit.id}/samples?format=csv`} download>
-        Samples (CSV)
-      </Button>
-      <Button href={`/api/v1/fits/${fit.id}/manifest`} download={`fit-${fit.number}-manifest.json`}>
-        Manifest (JSON)
-      </Button>
-    </Buttons>
   );
 }
 
@@ -122,7 +106,7 @@ export function PosteriorSection(props: PosteriorSectionProps) {
           {draws && sameVersion ? (
             <BestFit fit={fit} draws={draws} measurement={measurement} number={6} />
           ) : null}
-          <Downloads fit={fit} />
+          <SampleDownloads fit={fit} />
           <Cautions fit={fit} />
         </>
       )}

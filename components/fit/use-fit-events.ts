@@ -4,9 +4,12 @@ import { useEffect, useEffectEvent, useState } from 'react';
 import type { FitEvent } from '@/lib/schemas';
 import { isRunning } from './fit-words';
 
-/** State of the stream; `lost` says when, and when it is tried again. */
+/** State of the stream; `lost` says when, and when it is tried again, `trouble` what keeps the server from reading the fit. */
 export type Connection =
-  { kind: 'off' } | { kind: 'live' } | { kind: 'lost'; at: string; secondsLeft: number; retry: () => void };
+  | { kind: 'off' }
+  | { kind: 'live' }
+  | { kind: 'trouble'; at: string; message: string }
+  | { kind: 'lost'; at: string; secondsLeft: number; retry: () => void };
 
 /** Seconds before the n-th new try. */
 const waits = [1, 2, 4, 8, 15, 30];
@@ -65,6 +68,10 @@ export function useFitEvents(id: string | null, onEvent: (event: FitEvent) => vo
         setConnection(ended ? { kind: 'off' } : { kind: 'live' });
         pacer.take(event, ended);
         if (ended) source?.close();
+      });
+      source.addEventListener('trouble', ({ data }: MessageEvent<string>) => {
+        const { message } = JSON.parse(data) as { message: string };
+        setConnection({ kind: 'trouble', at: new Date().toISOString(), message });
       });
       source.addEventListener('error', lose);
     };

@@ -14,6 +14,7 @@ import {
   measurementSchema,
   meSchema,
   notebookSchema,
+  settingsSchema,
   siteUsersSchema,
   storageStateSchema,
   statementSchema,
@@ -27,12 +28,13 @@ import {
   type Measurement,
   type MeasurementListed,
   type Notebook,
+  type Settings,
   type Statement,
   type Token,
 } from '@/lib/schemas';
 import type { Action } from '@/lib/policies';
 import { authorise, type Access, type RecordKind } from '@/lib/services/access';
-import { readMe } from '@/lib/services/accounts';
+import { readMe, readSettings } from '@/lib/services/accounts';
 import { administer, isAdministrator } from '@/lib/services/administration';
 import { readInstanceState, readStorageState } from '@/lib/services/instance-state';
 import { listSiteUsers } from '@/lib/services/site-users';
@@ -98,6 +100,9 @@ export async function administration(actor: Actor) {
 
 /** Who may do what within a group, in words. */
 export { permissions } from '@/lib/policies/words';
+
+export const settings = async (actor: Actor): Promise<Settings> =>
+  settingsSchema.parse(await readSettings(actor));
 
 export const tokens = async (actor: Actor): Promise<Token[]> =>
   tokenSchema.array().parse(await listTokens(actor));

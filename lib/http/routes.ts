@@ -2,6 +2,7 @@ import { z } from 'zod';
 import {
   allTakenUpSchema,
   changeRoleSchema,
+  changeSettingsSchema,
   copyNotebookSchema,
   correlationSchema,
   createGroupSchema,
@@ -39,6 +40,7 @@ import {
   restoreRevisionSchema,
   revisionSchema,
   sampleFormats,
+  settingsSchema,
   shiftsSchema,
   startFitSchema,
   statementQuerySchema,
@@ -96,6 +98,17 @@ export const routes = {
     answer: z.record(z.string(), z.unknown()),
   },
   'GET /me': { summary: 'Who is asking, and their groups.', permission: 'user', answer: meSchema },
+  'GET /me/settings': {
+    summary: 'What one has chosen for oneself: mail about fits.',
+    permission: 'user',
+    answer: settingsSchema,
+  },
+  'PATCH /me/settings': {
+    summary: 'Change what one has chosen.',
+    permission: 'user',
+    body: changeSettingsSchema,
+    answer: settingsSchema,
+  },
   'GET /me/tokens': {
     summary: 'One’s own personal tokens, without their secrets.',
     permission: 'user',

@@ -6,6 +6,7 @@ export * from './statements';
 export * from './notebooks';
 export * from './fits';
 export * from './groups';
+export * from './settings';
 export * from './tokens';
 export * from './log';
 export * from './take-up';

@@ -1,6 +1,6 @@
 import { Group, Membership, User } from '@/models';
 import { database } from '@/lib/db';
-import { roleSchema, type Me } from '@/lib/schemas';
+import { roleSchema, type ChangeSettings, type Me, type Settings } from '@/lib/schemas';
 import type { Actor } from './access';
 
 /** Who is asking, and the groups they belong to, by name. */
@@ -32,4 +32,18 @@ export async function maySignIn(email: string): Promise<boolean> {
 /** Notes that somebody has just signed in. */
 export async function noteSignIn(userId: string): Promise<void> {
   await User.update({ lastSignInAt: new Date() }, { where: { id: userId } });
+}
+
+/** What a person has chosen for themselves. */
+export async function readSettings(actor: Actor): Promise<Settings> {
+  database();
+  const { mailAboutFits } = await User.findByPk(actor.userId, { rejectOnEmpty: true });
+  return { mailAboutFits };
+}
+
+/** Changes what is given and leaves the rest. */
+export async function changeSettings(actor: Actor, settings: ChangeSettings): Promise<Settings> {
+  database();
+  await User.update(settings, { where: { id: actor.userId } });
+  return readSettings(actor);
 }

@@ -10,8 +10,12 @@ import { SharedReads } from './shared-reads';
 /** Milliseconds between two events of one stream at least, and between two reads that nobody called for. */
 const pace = { between: 500, unasked: 2_000 } as const;
 
+const databaseIsAway = 'The database is away; the fit goes on when it is back.';
+
 export interface FitWatcher {
   onEvent(event: FitEvent): void;
+  /** The fit can't be read for now, and why, in words; the next event says that it can again. */
+  onTrouble(message: string): void;
   /** The fit has ended and its last event was sent. */
   onEnd(): void;
 }
@@ -78,6 +82,9 @@ export async function watchFit(access: Access, watcher: FitWatcher): Promise<() 
       await read();
     } catch (error) {
       log.warn({ err: error }, 'a watched fit could not be read for now');
+      // Once for each outage; what is told next is told even if nothing has changed.
+      if (told !== '' && !stopped) watcher.onTrouble(databaseIsAway);
+      told = '';
     }
     reading = false;
     wait(called ? pace.between : pace.unasked);

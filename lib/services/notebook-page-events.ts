@@ -6,7 +6,7 @@ import { watchNotebook } from './notebook-events';
 
 /** Where the events of a page go: named, each a whole state. */
 export interface PageSink {
-  send(event: 'notebook' | 'presence' | 'fit', data: unknown): void;
+  send(event: 'notebook' | 'presence' | 'fit' | 'trouble', data: unknown): void;
   end(): void;
 }
 
@@ -33,7 +33,11 @@ export async function watchNotebookPage(
   if (fit) {
     try {
       stops.push(
-        await watchFit(fit, { onEvent: (event) => sink.send('fit', event), onEnd: () => undefined }),
+        await watchFit(fit, {
+          onEvent: (event) => sink.send('fit', event),
+          onTrouble: (message) => sink.send('trouble', { message }),
+          onEnd: () => undefined,
+        }),
       );
     } catch (error) {
       stop();

@@ -2,46 +2,16 @@ import { setTimeout as sleep } from 'node:timers/promises';
 import { QueryTypes } from 'sequelize';
 import { afterAll, afterEach, beforeAll, describe, expect, it } from 'vitest';
 import { database } from '@/lib/db';
-import { closeQueue } from '@/lib/jobs';
 import { redis } from '@/lib/redis';
-import { closeConnections } from '../integration/harness';
-import {
-  background,
-  buildWorker,
-  drawsOf,
-  endWorkers,
-  fitEnded,
-  fitOf,
-  fitWhen,
-  openDesk,
-  openNotebook,
-  samplesOf,
-  startFit,
-  startWorker,
-  type Desk,
-} from '../integration/sampling';
+import { background, drawsOf, endWorkers, fitOf, fitWhen, startWorker } from '../integration/sampling';
+import { Disturbed } from './disturbed';
 
-let desk: Desk;
-let notebook: string;
-let undisturbed: string;
-const settings = { seed: 'cut', maxDraws: 8000, target: { ess: 1e9 } };
-
+let run: Disturbed;
 beforeAll(async () => {
-  database();
-  await buildWorker();
-  desk = await openDesk();
-  notebook = await openNotebook(desk, { template: background });
-  startWorker();
-  const id = await startFit(desk, notebook, settings);
-  await fitEnded(desk, id);
-  undisturbed = await samplesOf(desk, id);
-  await endWorkers();
+  run = await Disturbed.run(background, { seed: 'cut', maxDraws: 8000, target: { ess: 1e9 } });
 });
 afterEach(endWorkers);
-afterAll(async () => {
-  await closeQueue();
-  await closeConnections();
-});
+afterAll(() => Disturbed.close());
 
 /** Breaks every connection to the database but those of this process's pool, in the middle of whatever they do. */
 async function cutDatabase(): Promise<number> {
@@ -68,29 +38,27 @@ async function cutDatabase(): Promise<number> {
 
 describe('a fit during which the services break off', () => {
   it('loses and doubles no draw when its connections to the database are cut again and again', async () => {
-    const id = await startFit(desk, notebook, settings);
+    const id = await run.start();
     startWorker();
-    await fitWhen(desk, id, (fit) => drawsOf(fit) > 0);
+    await fitWhen(run.desk, id, (fit) => drawsOf(fit) > 0);
     let cut = 0;
     for (let i = 0; i < 12; i++) {
       cut += await cutDatabase();
       await sleep(70);
     }
     expect(cut).toBeGreaterThan(3);
-    expect((await fitOf(desk, id)).endedAt).toBeNull();
-    expect((await fitEnded(desk, id)).status).toBe('budget-spent');
-    expect(await samplesOf(desk, id)).toBe(undisturbed);
+    expect((await fitOf(run.desk, id)).endedAt).toBeNull();
+    await run.expectUndisturbed(id);
   });
 
   it('goes on when its connections to Redis are cut', async () => {
-    const id = await startFit(desk, notebook, settings);
+    const id = await run.start();
     startWorker();
-    await fitWhen(desk, id, (fit) => drawsOf(fit) > 0);
+    await fitWhen(run.desk, id, (fit) => drawsOf(fit) > 0);
     for (let i = 0; i < 5; i++) {
       await redis().call('CLIENT', 'KILL', 'TYPE', 'normal', 'SKIPME', 'yes');
       await sleep(100);
     }
-    expect((await fitEnded(desk, id)).status).toBe('budget-spent');
-    expect(await samplesOf(desk, id)).toBe(undisturbed);
+    await run.expectUndisturbed(id);
   });
 });

@@ -6,6 +6,7 @@ export const GET = withMember('fit.read', 'GET /fits/:id/events', ({ access, req
   eventStream(request.signal, (sink) =>
     watchFit(access, {
       onEvent: (event) => sink.send('fit', event),
+      onTrouble: (message) => sink.send('trouble', { message }),
       onEnd: () => sink.end(),
     }),
   ),
