@@ -51,8 +51,21 @@ async function signedIn() {
   return { session, group, notebook, measurement };
 }
 
+/** Somebody else's session, for pages that only they have. */
+async function sessionOf(name: string) {
+  const context = await browser.newContext();
+  const page = await context.newPage();
+  await page.goto(await createSignInLink(demoEmail(name)));
+  await page.getByRole('button', { name: /sign in/i }).click();
+  await page.waitForURL((there) => !there.pathname.startsWith('/sign-in'));
+  const session = await context.storageState();
+  await context.close();
+  return session;
+}
+
 const { session, group, notebook, measurement } = await signedIn();
-const screens: { name: string; place: string; guest?: boolean }[] = [
+const others = { lead: await sessionOf('lead'), admin: await sessionOf('admin') };
+const screens: { name: string; place: string; guest?: boolean; as?: keyof typeof others }[] = [
   { name: 'sign-in', place: '/sign-in', guest: true },
   { name: 'link-sent', place: '/sign-in/sent', guest: true },
   { name: 'link-unusable', place: '/sign-in/error?error=Verification', guest: true },
@@ -62,6 +75,11 @@ const screens: { name: string; place: string; guest?: boolean }[] = [
   { name: 'measurement', place: measurement ?? '/' },
   { name: 'notebook-new', place: `${group}/notebooks/new` },
   { name: 'notebook', place: notebook ?? '/' },
+  { name: 'members', place: `${group}/members`, as: 'lead' },
+  { name: 'log', place: `${group}/log`, as: 'lead' },
+  { name: 'groups', place: '/?groups', as: 'lead' },
+  { name: 'no-group', place: '/', as: 'admin' },
+  { name: 'administration', place: '/administration', as: 'admin' },
   { name: 'account', place: '/account' },
   { name: 'not-found', place: '/nothing-here' },
 ];
@@ -73,12 +91,12 @@ async function settle(page: Page): Promise<void> {
 }
 
 for (const { name: look, width, colorScheme } of looks) {
-  for (const { name, place, guest } of screens) {
+  for (const { name, place, guest, as } of screens) {
     const context = await browser.newContext({
       viewport: { width, height: 900 },
       colorScheme,
       reducedMotion: 'reduce',
-      ...(guest ? {} : { storageState: session }),
+      ...(guest ? {} : { storageState: as ? others[as] : session }),
     });
     const page = await context.newPage();
     await page.goto(`${origin}${place}`);
