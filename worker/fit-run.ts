@@ -1,3 +1,4 @@
+import { deserialize } from 'node:v8';
 import { log } from '@/lib/log';
 import { redis } from '@/lib/redis';
 import { fitChannel } from '@/lib/jobs';
@@ -18,6 +19,8 @@ import {
   type HeldFit,
 } from '@/lib/services/fit-lease';
 import type { Taken } from '@/lib/services/fit-queue';
+import { factsOf, movesInReport, type ReplicaFacts } from '@/lib/services/fit-moves';
+import type { ReplicaState } from '@/lib/sampler';
 import type { StoredReport } from '@/lib/schemas/stored-report';
 import { isLook } from '@/lib/services/fit-schedule';
 import { verdict } from '@/lib/services/fit-verdict';
@@ -70,12 +73,21 @@ const aborted = (signal: AbortSignal): Promise<null> =>
     else signal.addEventListener('abort', () => resolve(null), { once: true });
   });
 
-const acceptanceOf = (turns: readonly Turn[]): StoredReport['acceptance'] =>
-  turns[0].moves.map(({ name }, move) => {
-    const proposed = turns.reduce((sum, turn) => sum + turn.moves[move].proposed, 0);
-    const accepted = turns.reduce((sum, turn) => sum + turn.moves[move].accepted, 0);
-    return { move: name, rate: proposed > 0 ? accepted / proposed : null };
-  });
+/** What the stored states of a fit say, in the order of its replicas. */
+const storedFacts = (states: ReadonlyMap<number, Uint8Array>): ReplicaFacts[] =>
+  [...states]
+    .sort(([one], [other]) => one - other)
+    .map(([, state]) => factsOf(deserialize(state) as ReplicaState));
+
+/** Adds the times of one more round to those so far, move by move. */
+function addTimes(sum: Float64Array | null, turns: readonly Turn[]): Float64Array | null {
+  let total = sum;
+  for (const { milliseconds } of turns) {
+    if (!milliseconds) continue;
+    total = milliseconds.map((each, move) => each + (total?.[move] ?? 0));
+  }
+  return total;
+}
 
 /** One worker's hold on one fit: replicas sample in threads, commits and looks follow one another here. */
 class FitRun {
@@ -89,6 +101,9 @@ class FitRun {
   private readonly renewal: NodeJS.Timeout;
   private standing: Standing;
   private report: StoredReport;
+  private facts: ReplicaFacts[];
+  /** Of each move since this worker took the fit. */
+  private milliseconds: Float64Array | null = null;
 
   constructor(
     private readonly fit: HeldFit,
@@ -100,6 +115,7 @@ class FitRun {
     this.overSettled = aborted(this.over);
     this.standing = { draws, maxDraws, targetFrom, stopRequested };
     this.report = fit.report;
+    this.facts = storedFacts(states);
     this.replicas = new ReplicaThreads(model, states, settings.threads);
     this.reporter = new ReportThread({ model, target });
     this.pace = new Pace(() => performance.now(), snapshot.replicas, draws);
@@ -186,13 +202,16 @@ class FitRun {
     });
     const blocks = made.map((turn) => storedBlock(turn, warmup)).filter((block) => block !== null);
     const states = turns.map(({ replica, state }) => ({ replica, state: Buffer.from(state) }));
-    const report = { ...this.report, acceptance: acceptanceOf(turns) };
+    const facts = turns.map((turn) => turn.facts);
+    for (const round of rounds) this.milliseconds = addTimes(this.milliseconds, round.turns);
+    const report = { ...this.report, ...movesInReport(facts, this.milliseconds) };
     const pace = this.pace.mark(to);
     const standing = await this.persist('committing draws', () =>
       commitDraws({ fitId, epoch, from, to, warmup, blocks, states, ...pace, report }),
     );
     if (!standing) return this.lost.abort();
     this.report = report;
+    this.facts = facts;
     this.take(standing);
     blocks.forEach((block) => this.tell(block));
     await this.publish();
@@ -202,7 +221,7 @@ class FitRun {
   private async look(): Promise<boolean> {
     const { fitId, epoch, snapshot } = this.fit;
     const { draws } = this.standing;
-    const report = await Promise.race([this.reporter.look(draws, this.report), this.overSettled]);
+    const report = await Promise.race([this.reporter.look(draws, this.report, this.facts), this.overSettled]);
     if (!report) return false;
     const outcome = await this.persist('writing a report', () =>
       commitLook({

@@ -1,4 +1,5 @@
 import type { FitModel } from '@/lib/services/fit-model';
+import type { ReplicaFacts } from '@/lib/services/fit-moves';
 import type { StoredReport } from '@/lib/schemas/stored-report';
 
 /** What a thread is started with. */
@@ -15,12 +16,6 @@ export interface Advance {
   draws: number;
 }
 
-export interface MoveTally {
-  name: string;
-  proposed: number;
-  accepted: number;
-}
-
 /** One block of one replica and the state at its end. */
 export interface Turn {
   kind: 'turn';
@@ -30,7 +25,9 @@ export interface Turn {
   width: number;
   values: Float64Array;
   state: Uint8Array;
-  moves: MoveTally[];
+  facts: ReplicaFacts;
+  /** Milliseconds that each move took, in their order. */
+  milliseconds: Float64Array | null;
 }
 
 /** The thread can't go on. `told` is written for the person who started the fit; null where the fault is ours. */
@@ -60,6 +57,8 @@ export interface LookRequest {
   kind: 'look';
   draws: number;
   before: StoredReport;
+  /** What the replicas' states at these draws say. */
+  facts: ReplicaFacts[];
 }
 
 export type ReportQuestion = Append | LookRequest;

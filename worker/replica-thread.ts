@@ -1,8 +1,10 @@
 import { deserialize, serialize } from 'node:v8';
 import { parentPort, workerData } from 'node:worker_threads';
 import { buildInference } from '@/lib/inference';
-import { advance, startReplica, type ReplicaState, type SamplerSettings } from '@/lib/sampler';
+import { advance, startReplica, type ReplicaState } from '@/lib/sampler';
 import { specOf } from '@/lib/services/fit-model';
+import { factsOf } from '@/lib/services/fit-moves';
+import { samplerSettings } from '@/lib/services/fit-sampler';
 import { failureOf } from './failure';
 import { yieldToOthers } from './niceness';
 import type { Advance, ReplicaAnswer, ReplicaSetup } from './messages';
@@ -18,13 +20,13 @@ const answer = (message: ReplicaAnswer, transfer: ArrayBuffer[] = []) => port.po
 
 function prepare() {
   const { target, jumps, blocks } = buildInference(specOf(model));
-  const settings: SamplerSettings = { warmup: snapshot.warmup, blocks };
+  const settings = samplerSettings(snapshot, blocks);
   const present = new Map<number, ReplicaState>(
     [...states].map(([replica, state]) => [replica, deserialize(state) as ReplicaState]),
   );
   return (replica: number, draws: number): void => {
     const state = present.get(replica) ?? startReplica(target, jumps, settings, snapshot.seed, replica);
-    const made = advance(target, jumps, settings, state, draws);
+    const made = advance(target, jumps, settings, state, draws, undefined, () => performance.now());
     present.set(replica, made.state);
     const { first, count, width, values } = made.block;
     answer(
@@ -36,7 +38,8 @@ function prepare() {
         width,
         values,
         state: serialize(made.state),
-        moves: made.state.moves.map(({ name, proposed, accepted }) => ({ name, proposed, accepted })),
+        facts: factsOf(made.state),
+        milliseconds: made.milliseconds,
       },
       [values.buffer as ArrayBuffer],
     );

@@ -1,5 +1,7 @@
 import { parentPort, workerData } from 'node:worker_threads';
+import { exactLogEvidence } from '@/lib/inference';
 import { fitColumns, specOf } from '@/lib/services/fit-model';
+import { evidenceInReport } from '@/lib/services/fit-moves';
 import { KeptDraws, lookAt } from '@/lib/services/fit-report';
 import { failureOf } from './failure';
 import { yieldToOthers } from './niceness';
@@ -11,7 +13,9 @@ if (!port) throw new Error('This file is the entry of a thread.');
 yieldToOthers();
 const { model, target } = workerData as ReportSetup;
 
-const columns = fitColumns(specOf(model));
+const spec = specOf(model);
+const columns = fitColumns(spec);
+const exact = exactLogEvidence(spec);
 const { warmup, replicas } = model.snapshot;
 const kept = new KeptDraws(columns, warmup, replicas);
 const answer = (message: ReportAnswer) => port.postMessage(message);
@@ -21,8 +25,9 @@ port.on('message', (question: ReportQuestion) => {
     if (question.kind === 'append') {
       kept.append(question.replica, question.first, question.stride, question.values);
     } else {
-      const report = lookAt(kept, columns, { warmup, draws: question.draws, target }, question.before);
-      answer({ kind: 'report', report });
+      const { draws, before, facts } = question;
+      const report = lookAt(kept, columns, { warmup, draws, target }, before);
+      answer({ kind: 'report', report: { ...report, ...evidenceInReport(facts, exact) } });
     }
   } catch (error) {
     answer(failureOf(error));

@@ -20,6 +20,7 @@ import { FitControls } from './fit-controls';
 import { FitList } from './fit-list';
 import { fitPredicate, isRunning } from './fit-words';
 import { announcement, doneShare, LiveFigures } from './live-figures';
+import { MovesTable } from './moves-table';
 import type { Quantity } from './quantities';
 import { StartForm, type FitDefaults } from './start-form';
 import { Traces } from './traces';
@@ -157,6 +158,12 @@ export function ChainsSection(props: ChainsSectionProps) {
           <FitControls key={fit.id} fit={fit} onFit={props.onFit} />
           <Lost connection={connection} />
           {fit.diagnostics.length ? <ConvergenceTable fit={fit} quantities={quantities} /> : null}
+          {fit.acceptance.length ? (
+            <>
+              <Subheading>Moves</Subheading>
+              <MovesTable fit={fit} quantities={quantities} />
+            </>
+          ) : null}
           {draws ? <Traces fit={fit} draws={draws} quantities={quantities} number={4} /> : null}
         </>
       ) : (

@@ -3,6 +3,7 @@ export type * from './types';
 export { InferenceError } from './inference-error';
 export type { InferenceErrorCode } from './inference-error';
 export { buildInference } from './build-inference';
+export { exactLogEvidence } from './exact-evidence';
 export { buildLikelihood, matchedExponent } from './likelihoods';
 export type { Likelihood } from './likelihoods';
 export {

@@ -131,10 +131,12 @@ export function presentFit(fit: FitRow, { startedBy, role, blind, queue }: FitCo
     replicas: snapshot.replicas,
     drawsPerSecond: fit.drawsPerSecond,
     acceptance: report.acceptance,
+    ladder: report.ladder,
     diagnostics: report.diagnostics,
     history: report.history,
     modes: [],
-    logEvidence: null,
+    logEvidence: report.logEvidence,
+    noEvidence: report.noEvidence,
     gate: {
       met: report.gate.met,
       target: { rhat: fit.targetRhat, ess: fit.targetEss },

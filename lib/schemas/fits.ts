@@ -43,6 +43,21 @@ export const snapshotSchema = z.object({
   replicas: z.number().int(),
   warmup: z.number().int(),
   blockDraws: z.number().int(),
+  /** How the sampler goes about it; absent in fits from before it was written down. */
+  sampler: z
+    .object({
+      version: z.number().int(),
+      walkEvery: z.number().int(),
+      differential: z.boolean(),
+      ladder: z.object({
+        everyInWarmup: z.number().int(),
+        every: z.number().int(),
+        everyWhereJumpsDo: z.number().int(),
+        maxRungs: z.number().int(),
+        rejection: z.number(),
+      }),
+    })
+    .optional(),
   program: z.string(),
   node: z.string(),
   architecture: z.string(),
@@ -67,6 +82,19 @@ export const diagnosticSchema = z.object({
   mcseSd: numberOrNull,
 });
 export type Diagnostic = z.infer<typeof diagnosticSchema>;
+
+/** ln of the evidence, with its standard error and the error's degrees of freedom. */
+export const evidenceSchema = z.object({ value: z.number(), error: z.number(), dof: z.number() });
+
+/** The ladder of temperatures, all replicas together. */
+export const ladderSchema = z.object({
+  /** Rungs of the longest, both ends counted. */
+  rungs: z.number().int(),
+  /** Ways from the posterior to the prior and back. */
+  roundTrips: z.number().int(),
+  /** True where the jumps move the chains and give the evidence, so that the ladder is advanced seldom. */
+  rests: z.boolean(),
+});
 
 export const fitSchema = z.object({
   id: idSchema,
@@ -102,7 +130,9 @@ export const fitSchema = z.object({
   replicas: z.number().int(),
   /** Recorded draws a second, all replicas together; null before the first block. */
   drawsPerSecond: numberOrNull,
-  acceptance: z.array(z.object({ move: z.string(), rate: numberOrNull })),
+  /** Each move's share of proposals accepted, and of the time; the ladder's time is all under its swaps. */
+  acceptance: z.array(z.object({ move: z.string(), rate: numberOrNull, share: numberOrNull })),
+  ladder: ladderSchema.nullable(),
   diagnostics: z.array(diagnosticSchema),
   /** R-hat and ESS as they were after each block, for the small figures. */
   history: z.array(
@@ -118,7 +148,9 @@ export const fitSchema = z.object({
       scanWeight: numberOrNull,
     }),
   ),
-  logEvidence: z.object({ value: z.number(), error: z.number(), dof: z.number() }).nullable(),
+  logEvidence: evidenceSchema.nullable(),
+  /** Why there is no evidence, to follow "because"; null where there is one. */
+  noEvidence: z.string().nullable(),
   gate: z.object({
     met: z.boolean(),
     target: z.object({ rhat: z.number(), ess: z.number() }),
@@ -144,10 +176,12 @@ export const fitEventSchema = fitSchema.pick({
   queue: true,
   drawsPerSecond: true,
   acceptance: true,
+  ladder: true,
   diagnostics: true,
   history: true,
   modes: true,
   logEvidence: true,
+  noEvidence: true,
   gate: true,
   startedAt: true,
   endedAt: true,

@@ -1,5 +1,5 @@
 import { z } from 'zod';
-import { diagnosticSchema } from './fits';
+import { diagnosticSchema, evidenceSchema, ladderSchema } from './fits';
 import { numberOrNull } from './shared';
 
 /** What is kept of the looks at a fit; column `report`. Every number is of committed draws. */
@@ -14,7 +14,11 @@ export const storedReportSchema = z.object({
   /** Kept draws a replica at which the gate is expected to be met; null where that can't be told. */
   wanted: numberOrNull,
   /** Moves of all replicas together, since the end of warm-up (during it: since the start). */
-  acceptance: z.array(z.object({ move: z.string(), rate: numberOrNull })),
+  acceptance: z.array(z.object({ move: z.string(), rate: numberOrNull, share: numberOrNull.default(null) })),
+  ladder: ladderSchema.nullable().default(null),
+  logEvidence: evidenceSchema.nullable().default(null),
+  /** Why there is no evidence, to follow "because"; null where there is one. */
+  noEvidence: z.string().nullable().default(null),
 });
 export type StoredReport = z.infer<typeof storedReportSchema>;
 
@@ -25,4 +29,7 @@ export const emptyReport: StoredReport = {
   gate: { met: false, reasons: ['No draw is kept yet: the replicas are warming up.'] },
   wanted: null,
   acceptance: [],
+  ladder: null,
+  logEvidence: null,
+  noEvidence: 'no draw is kept yet',
 };

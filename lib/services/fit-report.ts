@@ -138,5 +138,8 @@ export function lookAt(
       look.target,
     ),
     acceptance: before.acceptance,
+    ladder: before.ladder,
+    logEvidence: before.logEvidence,
+    noEvidence: before.noEvidence,
   };
 }

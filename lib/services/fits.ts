@@ -29,6 +29,7 @@ import { expectedSeconds, lastRate } from './fit-cost';
 import { noteEnd } from './fit-mails';
 import { blockDraws, warmupDraws } from './fit-schedule';
 import { readFit } from './fit-records';
+import { samplerOfNewFits } from './fit-sampler';
 import { inferenceSpec } from './inference-spec';
 import { refuseArchived } from './notebook-archive';
 import { tellNotebook } from './notebook-presence';
@@ -66,6 +67,7 @@ function freeze(version: MeasurementVersion, settings: NotebookSettings, body: S
     replicas: body.replicas ?? defaultFit.replicas,
     warmup: warmupDraws,
     blockDraws,
+    sampler: samplerOfNewFits,
     ...program,
   });
 }

@@ -3,6 +3,7 @@ import { describe, expect, it } from 'vitest';
 import { bestIndex, byReplica, drawValues, keptColumn, someKept, unpackDraws } from '@/components/fit/draws';
 import { acceptanceInWords, announcement, doneShare, gateSentence } from '@/components/fit/live-figures';
 import { MarginalTable } from '@/components/fit/marginal-table';
+import { evidenceSentence, ladderSentence, MovesTable } from '@/components/fit/moves-table';
 import { fixedValues, posteriorSentence } from '@/components/fit/posterior-figures';
 import { judged, meetsGate, quantitiesOf } from '@/components/fit/quantities';
 import type { Draws } from '@/lib/schemas';
@@ -87,6 +88,34 @@ describe('a running fit', () => {
       value: '0.57, 0.21',
     });
     expect(acceptanceInWords([]).value).toBe('–');
+  });
+});
+
+describe('the moves', () => {
+  const table = (change = {}) =>
+    renderToStaticMarkup(<MovesTable fit={fitFixture(change)} quantities={new Map()} />);
+
+  it('are told each with its acceptance and its share of the time', () => {
+    const markup = table();
+    for (const text of ['jump between modes', '0.57', '60', 'walks at higher temperatures', 'with swaps']) {
+      expect(markup).toContain(text);
+    }
+  });
+
+  it('come with what the ladder did', () => {
+    expect(ladderSentence({ rungs: 14, roundTrips: 3, rests: true })).toMatch(
+      /14 temperatures; points went down to the prior and back three times\. It is advanced seldom/,
+    );
+    expect(ladderSentence({ rungs: 9, roundTrips: 0, rests: false })).toMatch(/no point has yet gone down/);
+    expect(ladderSentence(null)).toBeNull();
+  });
+
+  it('and with the evidence, or why it has no value', () => {
+    const logEvidence = { value: 77.09432, error: 0.0021, dof: 123 };
+    expect(evidenceSentence({ logEvidence, noEvidence: null })).toMatch(/^ln evidence 77\.09\d* ± 0\.002/);
+    expect(table()).toContain('no value, because its error has fewer than 15 degrees of freedom yet');
+    const exact = { value: -2.5, error: 1e-8, dof: 1e6 };
+    expect(evidenceSentence({ logEvidence: exact, noEvidence: null })).toMatch(/exact/);
   });
 });
 

@@ -39,7 +39,8 @@ function puppets(draws: number, limit: number, replicas = 2) {
       width: 0,
       values: new Float64Array(0),
       state: new Uint8Array(0),
-      moves: [],
+      facts: { moves: [], stones: null, ladder: null },
+      milliseconds: null,
     });
     await Promise.resolve();
   };
