@@ -22,7 +22,7 @@ export interface PageChromeProps {
 export function PageChrome({ version, email, role, where, groupId, current, children }: PageChromeProps) {
   const places = [
     { href: `/groups/${groupId}#notebooks`, label: 'Notebooks', current: current === 'notebooks' },
-    { href: `/groups/${groupId}#measurements`, label: 'Measurements', current: current === 'measurements' },
+    { href: `/groups/${groupId}/measurements`, label: 'Measurements', current: current === 'measurements' },
     { href: `/groups/${groupId}/members`, label: 'Members', current: current === 'members' },
   ];
   // Readers see what is released, and measurements aren't.

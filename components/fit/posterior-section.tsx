@@ -64,7 +64,7 @@ export function PosteriorSection(props: PosteriorSectionProps) {
   const { notebook, measurement, fit, draws, quantities, fold } = props;
   const state = posteriorState(fit, notebook);
   const some = fit !== null && fit.progress.draws > 0;
-  const sameVersion = notebook.measurement.version === measurement.version;
+  const sameVersion = fit?.snapshot.measurementVersion === measurement.version;
   const truth = sameVersion ? measurement.truth : null;
   return (
     <Section

@@ -2,6 +2,7 @@ import type { ReactNode } from 'react';
 import { PointsFigure } from '@/components/figures/points-figure';
 import { WithheldFigure } from '@/components/figures/withheld-figure';
 import type { Measurement } from '@/lib/schemas';
+import { fileNameOf } from './measurement-words';
 
 /** The points of a measurement, or of the rows of it that are given. */
 export function MeasurementFigure({
@@ -24,7 +25,7 @@ export function MeasurementFigure({
     <PointsFigure
       number={number}
       label={`Points of ${name}`}
-      fileName={`${name.replace(/[^\w-]+/g, '-').toLowerCase()}-points`}
+      fileName={`${fileNameOf(name)}-points`}
       points={{
         kappa: take(points.kappa),
         value: take(points.S),

@@ -1,10 +1,13 @@
 'use client';
 
+import Link from 'next/link';
+import { useState } from 'react';
 import useSWR from 'swr';
 import { read } from '@/components/api/request';
 import { Button, Buttons } from '@/components/ui/button';
-import { Contents } from '@/components/ui/contents';
+import { Contents, type ContentsEntry } from '@/components/ui/contents';
 import { DefinitionList } from '@/components/ui/definition-list';
+import { Message } from '@/components/ui/message';
 import { Num } from '@/components/ui/num';
 import { Record } from '@/components/ui/record';
 import { PageHead, Section } from '@/components/ui/section';
@@ -18,8 +21,11 @@ import { shortName } from '@/components/words/people';
 import { summarise } from '@/lib/measurements/measurement';
 import type { Measurement } from '@/lib/schemas';
 import { ChecksTable } from './checks-table';
+import { CorrelationBody } from './correlation-section';
+import { DeleteBody, DescribeForm } from './manage-measurement';
 import { MeasurementFigure } from './measurement-figure';
 import { covarianceInWords } from './measurement-words';
+import { RestingBody, VersionsBody } from './versions-section';
 
 const partWords = { file: 'points', covariance: 'covariance', mocks: 'mocks' } as const;
 
@@ -99,48 +105,90 @@ function Files({ measurement }: { measurement: Measurement }) {
   );
 }
 
-/** A stored measurement: its points, what it covers, what the checks found, its files. */
+function entriesOf(measurement: Measurement): ContentsEntry[] {
+  const { blind, checks, covarianceSource, versions, resting, newest, files, may } = measurement;
+  const older = resting.filter(({ version }) => version < newest).length;
+  return [
+    {
+      href: '#points',
+      number: 1,
+      title: 'Points',
+      state: blind ? { kind: 'blind', word: 'blind' } : undefined,
+    },
+    {
+      href: '#correlation',
+      number: 2,
+      title: 'Correlation',
+      note: covarianceSource === 'errors' ? 'none given' : undefined,
+    },
+    { href: '#checks', number: 3, title: 'Checks', state: checksState(checks) },
+    { href: '#versions', number: 4, title: 'Versions', note: String(versions.length) },
+    {
+      href: '#notebooks',
+      number: 5,
+      title: 'Notebooks on it',
+      ...(older
+        ? { state: { kind: 'old', word: `${older} on an older version` } as const }
+        : { note: resting.length ? String(resting.length) : 'none yet' }),
+    },
+    { href: '#files', number: 6, title: 'Files', note: `${files.length} stored` },
+    ...(may.includes('measurement.delete') ? [{ href: '#delete', number: 7, title: 'Delete' }] : []),
+  ];
+}
+
+/** A stored measurement in one version: points, correlation, checks, versions, what rests on it, files. */
 export function MeasurementSheet({ initial, groupName }: { initial: Measurement; groupName: string }) {
-  const { data: measurement = initial } = useSWR(`/api/v1/measurements/${initial.id}`, read<Measurement>, {
-    fallbackData: initial,
-    revalidateOnMount: false,
-  });
-  const { id, groupId, name, version, description, blind, checks, rows } = measurement;
+  const { data: measurement = initial, mutate } = useSWR(
+    `/api/v1/measurements/${initial.id}?version=${initial.version}`,
+    read<Measurement>,
+    { fallbackData: initial, revalidateOnMount: false },
+  );
+  const [describing, setDescribing] = useState(false);
+  const { id, groupId, name, version, newest, description, blind, checks, rows, may } = measurement;
   return (
-    <Sheet
-      contents={
-        <Contents
-          label="Of this measurement"
-          entries={[
-            {
-              href: '#points',
-              number: 1,
-              title: 'Points',
-              state: blind ? { kind: 'blind', word: 'blind' } : undefined,
-            },
-            { href: '#checks', number: 2, title: 'Checks', state: checksState(checks) },
-            { href: '#files', number: 3, title: 'Files', note: `${measurement.files.length} stored` },
-          ]}
-        />
-      }
-    >
+    <Sheet contents={<Contents label="Of this measurement" entries={entriesOf(measurement)} />}>
       <PageHead
         title={name}
-        kicker={`${groupName}, measurement, version ${version}${blind ? ', blind' : ''}${measurement.simulated ? ', simulated' : ''}`}
-        abstract={description || undefined}
+        kicker={`${groupName}, measurement, version ${version}${version < newest ? ` of ${newest}` : ''}${blind ? ', blind' : ''}${measurement.simulated ? ', simulated' : ''}`}
+        abstract={describing ? undefined : description || undefined}
         margin={
           <Record at={measurement.uploadedAt}>
-            Stored by <b>{shortName(measurement.uploadedBy)}</b>
+            Version {version} stored by <b>{shortName(measurement.uploadedBy)}</b>
           </Record>
         }
       >
-        {measurement.may.includes('notebook.create') ? (
-          <Buttons>
-            <Button kind="primary" href={`/groups/${groupId}/notebooks/new?measurement=${id}`}>
-              Open a notebook on it
-            </Button>
-          </Buttons>
+        {version < newest ? (
+          <Message level="warning" quiet title={`Version ${newest} is the newest`}>
+            <p>
+              This is version {version}, as it was stored.{' '}
+              <Link href={`/measurements/${id}`}>Show version {newest}</Link>
+            </p>
+          </Message>
         ) : null}
+        {describing ? (
+          <DescribeForm
+            measurement={measurement}
+            onCancel={() => setDescribing(false)}
+            onSaved={() => {
+              setDescribing(false);
+              void mutate();
+            }}
+          />
+        ) : (
+          <Buttons>
+            {may.includes('notebook.create') ? (
+              <Button kind="primary" href={`/groups/${groupId}/notebooks/new?measurement=${id}`}>
+                Open a notebook on it
+              </Button>
+            ) : null}
+            {may.includes('measurement.upload') ? (
+              <Button href={`/measurements/${id}/versions/new`}>Add a newer version</Button>
+            ) : null}
+            {may.includes('measurement.edit') ? (
+              <Button onClick={() => setDescribing(true)}>Rename or describe</Button>
+            ) : null}
+          </Buttons>
+        )}
         <div className="h-4" />
       </PageHead>
       <Section id="points" number={1} title="Points">
@@ -156,12 +204,26 @@ export function MeasurementSheet({ initial, groupName }: { initial: Measurement;
           }
         />
       </Section>
-      <Section id="checks" number={2} title="Checks" state={checksState(checks)}>
+      <Section id="correlation" number={2} title="Correlation">
+        <CorrelationBody measurement={measurement} number={2} />
+      </Section>
+      <Section id="checks" number={3} title="Checks" state={checksState(checks)}>
         <ChecksTable checks={checks} />
       </Section>
-      <Section id="files" number={3} title="Files">
+      <Section id="versions" number={4} title="Versions">
+        <VersionsBody measurement={measurement} />
+      </Section>
+      <Section id="notebooks" number={5} title="Notebooks on it">
+        <RestingBody measurement={measurement} onChange={() => void mutate()} />
+      </Section>
+      <Section id="files" number={6} title="Files">
         <Files measurement={measurement} />
       </Section>
+      {may.includes('measurement.delete') ? (
+        <Section id="delete" number={7} title="Delete">
+          <DeleteBody measurement={measurement} />
+        </Section>
+      ) : null}
     </Sheet>
   );
 }

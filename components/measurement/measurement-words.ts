@@ -19,3 +19,6 @@ export function covarianceInWords({
 export function shortHash(sha256: string): string {
   return `${sha256.slice(0, 4)} ${sha256.slice(4, 8)}`;
 }
+
+/** A name as it stands in the names of saved files. */
+export const fileNameOf = (name: string): string => name.replace(/[^\w-]+/g, '-').toLowerCase();

@@ -12,8 +12,8 @@ export interface ColumnView {
   name: string;
   unit: string | null;
   role: ColumnRole | null;
-  first: number;
-  last: number;
+  /** Its first rows as they were read; NaN where a cell is no number. */
+  cells: number[];
 }
 
 /** What the page shows of a preflight: plain data that may come from a worker. */
@@ -21,6 +21,9 @@ export interface PreflightView {
   ok: boolean;
   rows: number;
   columns: ColumnView[];
+  /** Lines in the file of the rows that are shown, and of its head, if it has one. */
+  firstLines: number[];
+  headerLine: number | null;
   checks: Finding[];
   summary: MeasurementSummary | null;
   points: {
@@ -38,6 +41,9 @@ export interface PreflightView {
   took: number;
 }
 
+/** So many rows of the file stand in the table of columns. */
+const rowsShown = 6;
+
 function columnViews(table: ParsedTable, mapping: ColumnMapping): ColumnView[] {
   const roles = new Map(
     Object.entries(mapping).map(([role, column]) => [Number(column), role as ColumnRole] as const),
@@ -46,8 +52,7 @@ function columnViews(table: ParsedTable, mapping: ColumnMapping): ColumnView[] {
     name,
     unit: unit ?? null,
     role: roles.get(j) ?? null,
-    first: table.data[j][0],
-    last: table.data[j][table.rows - 1],
+    cells: [...table.data[j].subarray(0, rowsShown)],
   }));
 }
 
@@ -68,6 +73,8 @@ export function viewOf(result: PreflightResult, shown: ColumnMapping, took: numb
     ok: result.ok,
     rows: table?.rows ?? 0,
     columns: table ? columnViews(table, shown) : [],
+    firstLines: table ? [...table.lines.subarray(0, rowsShown)] : [],
+    headerLine: table?.headerLine ?? null,
     checks,
     summary,
     points:

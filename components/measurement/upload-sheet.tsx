@@ -13,6 +13,7 @@ import { Record } from '@/components/ui/record';
 import { Ruler } from '@/components/ui/run-figures';
 import { PageHead, Section } from '@/components/ui/section';
 import { Sheet } from '@/components/ui/sheet';
+import { capital, counted } from '@/components/words/counts';
 import { shortName } from '@/components/words/people';
 import { formatCount, formatPercent } from '@/lib/figures/format';
 import type { ColumnMapping } from '@/lib/measurements';
@@ -30,10 +31,25 @@ export interface UploadSheetProps {
   groupId: string;
   groupName: string;
   email: string;
+  /** Given: what is stored becomes a newer version of it. */
+  onto?: { id: string; name: string; newest: number; notebooks: number };
+}
+
+/** What storing a newer version does to those who use the older ones. */
+function NextVersion({ onto }: { onto: NonNullable<UploadSheetProps['onto']> }) {
+  const { name, newest, notebooks } = onto;
+  return (
+    <p>
+      It becomes version {newest + 1} of {name}; version {newest} stays.{' '}
+      {notebooks
+        ? `${capital(counted(notebooks, 'notebook'))} ${notebooks === 1 ? 'rests' : 'rest'} on an older version and ${notebooks === 1 ? 'stays' : 'stay'} there until somebody takes the newer one up.`
+        : 'No notebook rests on it yet.'}
+    </p>
+  );
 }
 
 /** From files to a stored measurement, on one page; nothing is stored before every error is gone. */
-export function UploadSheet({ groupId, groupName, email }: UploadSheetProps) {
+export function UploadSheet({ groupId, groupName, email, onto }: UploadSheetProps) {
   const router = useRouter();
   const [files, setFiles] = useState<ChosenFile[]>([]);
   const [mapping, setMapping] = useState<ColumnMapping | null>(null);
@@ -51,7 +67,7 @@ export function UploadSheet({ groupId, groupName, email }: UploadSheetProps) {
   const { view, reading, fault } = usePreflight(files, mapping, withCovariance ? mockCount : null);
   const points = files.find(({ part }) => part === 'file');
   const put = parseTruth(simulated ? truth : '');
-  const now = { files: files.length, reading, named: name.trim() !== '', share };
+  const now = { files: files.length, reading, named: onto !== undefined || name.trim() !== '', share };
   const states = uploadStates(view, now);
 
   function choose(next: ChosenFile[]) {
@@ -74,7 +90,7 @@ export function UploadSheet({ groupId, groupName, email }: UploadSheetProps) {
     const form = new FormData();
     for (const { part, file } of files) form.append(part, file, file.name);
     const meta: UploadMeta = {
-      name: name.trim(),
+      ...(onto ? {} : { name: name.trim() }),
       ...(description.trim() ? { description: description.trim() } : {}),
       ...(mapping ? { columns: mapping } : {}),
       ...(withCovariance && mockCount !== null ? { mockCount } : {}),
@@ -83,7 +99,11 @@ export function UploadSheet({ groupId, groupName, email }: UploadSheetProps) {
     };
     form.append('meta', JSON.stringify(meta));
     try {
-      const made = await upload<MeasurementCreated>(`/api/v1/groups/${groupId}/measurements`, form, setShare);
+      const made = await upload<MeasurementCreated>(
+        onto ? `/api/v1/measurements/${onto.id}/versions` : `/api/v1/groups/${groupId}/measurements`,
+        form,
+        setShare,
+      );
       router.push(`/measurements/${made.id}`);
     } catch (thrown) {
       setError(asRequestError(thrown));
@@ -103,7 +123,9 @@ export function UploadSheet({ groupId, groupName, email }: UploadSheetProps) {
     [view, reading],
   );
 
-  const reason = 'fault' in put ? 'Mend the values that were put in first.' : storeReason(view, now);
+  const put = parseTruth(simulated ? truth : '');
+  const reason = storeReason(view, now);
+  const storing = onto ? 'Store' : 'Name and store';
   return (
     <Sheet
       contents={
@@ -113,14 +135,14 @@ export function UploadSheet({ groupId, groupName, email }: UploadSheetProps) {
             { href: '#file', number: 1, title: 'File', state: states.file },
             { href: '#columns', number: 2, title: 'Columns', state: states.columns },
             { href: '#preflight', number: 3, title: 'Preflight', state: states.preflight },
-            { href: '#store', number: 4, title: 'Name and store', state: states.store },
+            { href: '#store', number: 4, title: storing, state: states.store },
           ]}
         />
       }
     >
       <div id="file">
         <PageHead
-          title="Add a measurement"
+          title={onto ? `Version ${onto.newest + 1} of ${onto.name}` : 'Add a measurement'}
           kicker={`${groupName}, measurements`}
           margin={
             <>
@@ -179,7 +201,7 @@ export function UploadSheet({ groupId, groupName, email }: UploadSheetProps) {
         }
       >
         {view?.columns.length ? (
-          <ColumnsTable columns={view.columns} onMapping={setMapping} />
+          <ColumnsTable view={view} onMapping={setMapping} />
         ) : (
           <p className="text-ink-2">The columns stand here once a file is read.</p>
         )}
@@ -205,7 +227,7 @@ export function UploadSheet({ groupId, groupName, email }: UploadSheetProps) {
           </p>
         )}
       </Section>
-      <Section id="store" number={4} title="Name and store" state={states.store}>
+      <Section id="store" number={4} title={storing} state={states.store}>
         <form
           noValidate
           onSubmit={(event) => {
@@ -213,54 +235,50 @@ export function UploadSheet({ groupId, groupName, email }: UploadSheetProps) {
             if (!reason) void store();
           }}
         >
-          <FieldPair>
-            <Field
-              label="Name"
-              name="name"
-              maxLength={120}
-              autoComplete="off"
-              value={name}
-              onChange={(event) => {
-                setName(event.target.value);
-                setNamed(true);
-              }}
-              error={detailAt(error, 'meta.name')}
-              help="New in this group; becomes version 1."
-            />
-            <Field
-              label="Description"
-              name="description"
-              maxLength={2000}
-              autoComplete="off"
-              value={description}
-              onChange={(event) => setDescription(event.target.value)}
-              error={detailAt(error, 'meta.description')}
-              help="One sentence beside it in the index; may stay empty."
-            />
-          </FieldPair>
-          <div className="mt-2">
-            <CheckField
-              label="Simulated"
-              name="simulated"
-              checked={simulated}
-              onChange={(event) => setSimulated(event.target.checked)}
-              help="Made, not measured: its notebooks and results are marked as such."
-            />
-            {simulated ? (
-              <Field
-                label="Values that were put in"
-                name="truth"
-                autoComplete="off"
-                value={truth}
-                onChange={(event) => setTruth(event.target.value)}
-                error={'fault' in put ? put.fault : detailAt(error, 'meta.truth')}
-                help="Such as mu1 = 1.3, g = 12: drawn over every posterior; may stay empty."
-              />
-            ) : null}
-          </div>
+          const put = parseTruth(simulated ? truth : '');
+          {onto ? (
+            <NextVersion onto={onto} />
+          ) : (
+            <>
+              <FieldPair>
+                <Field
+                  label="Name"
+                  name="name"
+                  maxLength={120}
+                  autoComplete="off"
+                  value={name}
+                  onChange={(event) => {
+                    setName(event.target.value);
+                    setNamed(true);
+                  }}
+                  error={detailAt(error, 'meta.name')}
+                  help="New in this group; becomes version 1."
+                />
+                <Field
+                  label="Description"
+                  name="description"
+                  maxLength={2000}
+                  autoComplete="off"
+                  value={description}
+                  onChange={(event) => setDescription(event.target.value)}
+                  error={detailAt(error, 'meta.description')}
+                  help="One sentence beside it in the index; may stay empty."
+                />
+              </FieldPair>
+              <div className="mt-2">
+                <CheckField
+                  label="Simulated"
+                  name="simulated"
+                  checked={simulated}
+                  onChange={(event) => setSimulated(event.target.checked)}
+                  help="Made, not measured: its notebooks and results are marked as such."
+                />
+              </div>
+            </>
+          )}
           <Buttons note={share === null ? undefined : `${formatPercent(share)} has left this machine.`}>
             <Button kind="primary" type="submit" reason={reason}>
-              Store version 1
+              Store version {onto ? onto.newest + 1 : 1}
             </Button>
           </Buttons>
           {share === null ? null : <Ruler done={share} label={`Upload, ${formatPercent(share)}`} />}

@@ -17,6 +17,7 @@ import { ConflictMessage } from './conflict-message';
 import { measurementSentence } from './fold-sentences';
 import { keptRows } from './kept-points';
 import { likelihoodKinds, likelihoods, type LikelihoodKind } from './likelihood-words';
+import { NewerVersion } from './newer-version';
 import { SaveRow } from './save-row';
 import type { Draft } from './section-draft';
 import { SectionRecord } from './section-record';
@@ -134,7 +135,7 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
       margin={<SectionRecord notebook={notebook} section="measurement" />}
     >
       <p>
-        <Link href={`/measurements/${measurement.id}`}>
+        <Link href={`/measurements/${measurement.id}?version=${notebook.measurement.version}`}>
           {notebook.measurement.name}, version {notebook.measurement.version}
         </Link>
         :{' '}
@@ -143,6 +144,7 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
           : `${rows.length} of ${counted(all, 'bin')} kept`}
         , {covarianceInWords(measurement)}.
       </p>
+      <NewerVersion state={state} />
       <MeasurementFigure
         measurement={measurement}
         kept={rows}

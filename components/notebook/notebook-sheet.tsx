@@ -1,8 +1,6 @@
 'use client';
 
 import { useEffect, useEffectEvent, useMemo, useState } from 'react';
-import useSWR from 'swr';
-import { read } from '@/components/api/request';
 import { ChainsSection } from '@/components/fit/chains-section';
 import { bestIndex, drawValues, type FigureDraws } from '@/components/fit/draws';
 import { isRunning } from '@/components/fit/fit-words';
@@ -11,6 +9,7 @@ import { PosteriorSection } from '@/components/fit/posterior-section';
 import { quantitiesOf } from '@/components/fit/quantities';
 import type { FitDefaults } from '@/components/fit/start-form';
 import { useDraws, useFit } from '@/components/fit/use-fit';
+import { useVersion } from '@/components/measurement/use-version';
 import { Contents } from '@/components/ui/contents';
 import { BeatEnd } from '@/components/ui/motif';
 import { Record } from '@/components/ui/record';
@@ -33,6 +32,7 @@ import { chainsState, contentsEntries, posteriorState, sectionState, type Sectio
 import { TemplateSection, tryPrediction, type NamedPoint } from './template-section';
 import { FoldScript } from './fold-script';
 import { foldKey, useFolds, type SectionFold } from './use-folds';
+import { Shifts } from './shifts';
 import { useNotebook } from './use-notebook';
 
 export interface NotebookSheetProps {
@@ -64,15 +64,12 @@ function bestOf(fit: Fit | null, draws: FigureDraws | null): NamedPoint | null {
 export function NotebookSheet(props: NotebookSheetProps) {
   const state = useNotebook(props.notebook);
   const { notebook } = state;
-  const { data: measurement = props.measurement } = useSWR(
-    `/api/v1/measurements/${props.measurement.id}`,
-    read<Measurement>,
-    { fallbackData: props.measurement, revalidateOnMount: false, revalidateOnFocus: false },
-  );
+  const measurement = useVersion(props.measurement, notebook.measurement.version);
   const [chosen, setChosen] = useState<string | null>(props.fit?.id ?? null);
   const [titling, setTitling] = useState(false);
   const { fit, connection, put } = useFit(chosen, props.fit);
   const draws = useDraws(fit);
+  const fitted = useVersion(props.measurement, fit?.snapshot.measurementVersion ?? measurement.version);
 
   // The notebook's own list of fits follows when one begins, ends or is taken up again.
   const refresh = useEffectEvent(() => void state.refresh());
@@ -203,7 +200,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
       />
       <PosteriorSection
         notebook={notebook}
-        measurement={measurement}
+        measurement={fitted}
         fit={fit}
         draws={draws}
         quantities={quantities}
@@ -218,6 +215,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
         fold={fold('statement')}
         onShow={show}
       />
+      <Shifts notebook={notebook} />
       <FoldScript storageKey={storageKey} />
       <SheetRow>
         <BeatEnd />

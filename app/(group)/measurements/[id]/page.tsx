@@ -1,10 +1,12 @@
 import type { Metadata } from 'next';
+import { notFound } from 'next/navigation';
 import { PageChrome } from '@/components/account/page-chrome';
 import { MeasurementSheet } from '@/components/measurement/measurement-sheet';
 import { group, measurement, version, visitor } from '@/lib/http/page-data';
 
 interface Props {
   params: Promise<{ id: string }>;
+  searchParams: Promise<Record<string, string | string[] | undefined>>;
 }
 
 export async function generateMetadata({ params }: Props): Promise<Metadata> {
@@ -12,10 +14,14 @@ export async function generateMetadata({ params }: Props): Promise<Metadata> {
   return { title: (await measurement(await visitor(`/measurements/${id}`), id)).name };
 }
 
-export default async function MeasurementPage({ params }: Props) {
+/** `?version=1` shows that version; without it the newest is shown. */
+export default async function MeasurementPage({ params, searchParams }: Props) {
   const { id } = await params;
   const actor = await visitor(`/measurements/${id}`);
-  const initial = await measurement(actor, id);
+  const asked = (await searchParams).version;
+  const wanted = asked === undefined ? undefined : Number(asked);
+  if (wanted !== undefined && !Number.isSafeInteger(wanted)) notFound();
+  const initial = await measurement(actor, id, wanted);
   const { name, role } = await group(actor, initial.groupId);
   return (
     <PageChrome
@@ -26,7 +32,7 @@ export default async function MeasurementPage({ params }: Props) {
       groupId={initial.groupId}
       current="measurements"
     >
-      <MeasurementSheet initial={initial} groupName={name} />
+      <MeasurementSheet key={initial.version} initial={initial} groupName={name} />
     </PageChrome>
   );
 }

@@ -22,7 +22,7 @@ export default async function NotebookPage({ params, searchParams }: Props) {
   const actor = await visitor(`/notebooks/${id}`);
   const opened = await notebook(actor, id);
   const [measured, { role }, words] = await Promise.all([
-    measurement(actor, opened.measurement.id),
+    measurement(actor, opened.measurement.id, opened.measurement.version),
     group(actor, opened.groupId),
     statement(actor, id),
   ]);
