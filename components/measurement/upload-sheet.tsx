@@ -13,7 +13,6 @@ import { Record } from '@/components/ui/record';
 import { Ruler } from '@/components/ui/run-figures';
 import { PageHead, Section } from '@/components/ui/section';
 import { Sheet } from '@/components/ui/sheet';
-import { capital, counted } from '@/components/words/counts';
 import { shortName } from '@/components/words/people';
 import { formatCount, formatPercent } from '@/lib/figures/format';
 import type { ColumnMapping } from '@/lib/measurements';
@@ -24,6 +23,7 @@ import { ColumnsTable } from './columns-table';
 import { DropZone } from './drop-zone';
 import { PreflightFigure } from './preflight-figure';
 import { parseTruth } from './truth-words';
+import { NextVersion, type NextOf } from './next-version';
 import { nameFromFile, preflightSentence, storeReason, uploadStates } from './upload-words';
 import { usePreflight, type ChosenFile } from './use-preflight';
 
@@ -32,20 +32,7 @@ export interface UploadSheetProps {
   groupName: string;
   email: string;
   /** Given: what is stored becomes a newer version of it. */
-  onto?: { id: string; name: string; newest: number; notebooks: number };
-}
-
-/** What storing a newer version does to those who use the older ones. */
-function NextVersion({ onto }: { onto: NonNullable<UploadSheetProps['onto']> }) {
-  const { name, newest, notebooks } = onto;
-  return (
-    <p>
-      It becomes version {newest + 1} of {name}; version {newest} stays.{' '}
-      {notebooks
-        ? `${capital(counted(notebooks, 'notebook'))} ${notebooks === 1 ? 'rests' : 'rest'} on an older version and ${notebooks === 1 ? 'stays' : 'stay'} there until somebody takes the newer one up.`
-        : 'No notebook rests on it yet.'}
-    </p>
-  );
+  onto?: NextOf;
 }
 
 /** From files to a stored measurement, on one page; nothing is stored before every error is gone. */
@@ -57,7 +44,7 @@ export function UploadSheet({ groupId, groupName, email, onto }: UploadSheetProp
   const [name, setName] = useState('');
   const [named, setNamed] = useState(false);
   const [description, setDescription] = useState('');
-  const [simulated, setSimulated] = useState(false);
+  const [simulated, setSimulated] = useState(onto?.simulated ?? false);
   const [truth, setTruth] = useState('');
   const [share, setShare] = useState<number | null>(null);
   const [error, setError] = useState<RequestError | null>(null);
@@ -123,8 +110,7 @@ export function UploadSheet({ groupId, groupName, email, onto }: UploadSheetProp
     [view, reading],
   );
 
-  const put = parseTruth(simulated ? truth : '');
-  const reason = storeReason(view, now);
+  const reason = 'fault' in put ? 'Mend the values that were put in first.' : storeReason(view, now);
   const storing = onto ? 'Store' : 'Name and store';
   return (
     <Sheet
@@ -235,47 +221,57 @@ export function UploadSheet({ groupId, groupName, email, onto }: UploadSheetProp
             if (!reason) void store();
           }}
         >
-          const put = parseTruth(simulated ? truth : '');
           {onto ? (
             <NextVersion onto={onto} />
           ) : (
-            <>
-              <FieldPair>
-                <Field
-                  label="Name"
-                  name="name"
-                  maxLength={120}
-                  autoComplete="off"
-                  value={name}
-                  onChange={(event) => {
-                    setName(event.target.value);
-                    setNamed(true);
-                  }}
-                  error={detailAt(error, 'meta.name')}
-                  help="New in this group; becomes version 1."
-                />
-                <Field
-                  label="Description"
-                  name="description"
-                  maxLength={2000}
-                  autoComplete="off"
-                  value={description}
-                  onChange={(event) => setDescription(event.target.value)}
-                  error={detailAt(error, 'meta.description')}
-                  help="One sentence beside it in the index; may stay empty."
-                />
-              </FieldPair>
-              <div className="mt-2">
-                <CheckField
-                  label="Simulated"
-                  name="simulated"
-                  checked={simulated}
-                  onChange={(event) => setSimulated(event.target.checked)}
-                  help="Made, not measured: its notebooks and results are marked as such."
-                />
-              </div>
-            </>
+            <FieldPair>
+              <Field
+                label="Name"
+                name="name"
+                maxLength={120}
+                autoComplete="off"
+                value={name}
+                onChange={(event) => {
+                  setName(event.target.value);
+                  setNamed(true);
+                }}
+                error={detailAt(error, 'meta.name')}
+                help="New in this group; becomes version 1."
+              />
+              <Field
+                label="Description"
+                name="description"
+                maxLength={2000}
+                autoComplete="off"
+                value={description}
+                onChange={(event) => setDescription(event.target.value)}
+                error={detailAt(error, 'meta.description')}
+                help="One sentence beside it in the index; may stay empty."
+              />
+            </FieldPair>
           )}
+          <div className="mt-2">
+            {onto ? null : (
+              <CheckField
+                label="Simulated"
+                name="simulated"
+                checked={simulated}
+                onChange={(event) => setSimulated(event.target.checked)}
+                help="Made, not measured: its notebooks and results are marked as such."
+              />
+            )}
+            {simulated ? (
+              <Field
+                label="Values that were put in"
+                name="truth"
+                autoComplete="off"
+                value={truth}
+                onChange={(event) => setTruth(event.target.value)}
+                error={'fault' in put ? put.fault : detailAt(error, 'meta.truth')}
+                help="Such as mu1 = 1.3, g = 12: drawn over every posterior; may stay empty."
+              />
+            ) : null}
+          </div>
           <Buttons note={share === null ? undefined : `${formatPercent(share)} has left this machine.`}>
             <Button kind="primary" type="submit" reason={reason}>
               Store version {onto ? onto.newest + 1 : 1}

@@ -9,7 +9,7 @@ export const metadata: Metadata = { title: 'Add a newer version' };
 export default async function NewVersionPage({ params }: { params: Promise<{ id: string }> }) {
   const { id } = await params;
   const actor = await visitor(`/measurements/${id}/versions/new`);
-  const { groupId, name, newest, may, resting } = await measurement(actor, id);
+  const { groupId, name, newest, simulated, may, resting } = await measurement(actor, id);
   if (!may.includes('measurement.upload')) notFound();
   const { name: groupName, role } = await group(actor, groupId);
   return (
@@ -25,7 +25,7 @@ export default async function NewVersionPage({ params }: { params: Promise<{ id:
         groupId={groupId}
         groupName={groupName}
         email={actor.email}
-        onto={{ id, name, newest, notebooks: resting.length }}
+        onto={{ id, name, newest, simulated, notebooks: resting.length }}
       />
     </PageChrome>
   );
