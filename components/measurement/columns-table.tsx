@@ -73,7 +73,7 @@ function Head({ view, onMapping }: { view: PreflightView; onMapping: (mapping: C
           Meaning
         </th>
         {columns.map((column, j) => (
-          <td key={j} className="min-w-[168px] border-t border-ink pl-2 align-top">
+          <td key={j} className="min-w-[126px] border-t border-ink pl-2 align-top">
             <SelectField
               hiddenLabel={`Meaning of column ${j + 1}, ${column.name}`}
               name={`meaning-${j}`}

@@ -4,8 +4,9 @@ import dynamic from 'next/dynamic';
 import useSWR from 'swr';
 import { asRequestError, read } from '@/components/api/request';
 import { Message } from '@/components/ui/message';
+import { Num } from '@/components/ui/num';
 import { Sym } from '@/components/ui/sym';
-import { formatCount, formatNumber } from '@/lib/figures/format';
+import { formatCount, formatNumber, formatPercent } from '@/lib/figures/format';
 import type { Correlation, Measurement } from '@/lib/schemas';
 import { fileNameOf } from './measurement-words';
 
@@ -18,10 +19,14 @@ function MocksMean({ mocks, bins }: { mocks: number; bins: number }) {
   return (
     <p>
       From <Sym base="n" /> = {formatCount(mocks)} mocks. A correlation that is nought in truth scatters by
-      about 1/√(
-      <Sym base="n" /> − 1) = {formatNumber(1 / Math.sqrt(mocks - 1), 3)}, so that anything smaller says
-      little; each error is known to {formatNumber(100 / Math.sqrt(2 * (mocks - 1)), 1)} %. With {bins} bins
-      there are {formatNumber(mocks / bins, 1)} mocks a bin.
+      about{' '}
+      <Num>
+        1/√(
+        <Sym base="n" /> − 1) = {formatNumber(1 / Math.sqrt(mocks - 1), 3)}
+      </Num>
+      , so that anything smaller says little; each error is known to{' '}
+      {formatPercent(1 / Math.sqrt(2 * (mocks - 1)), 1)}. With {bins} bins there are{' '}
+      {formatNumber(mocks / bins, 1)} mocks a bin.
     </p>
   );
 }
