@@ -75,7 +75,7 @@ describe('a measurement from file to versions', () => {
     expect(await rows.locator('select').count()).toBe(table[0].split(',').length);
     const s = rows.getByLabel(/, S$/);
     await s.selectOption('');
-    await expect.poll(text).toContain('There is no column for');
+    await expect.poll(text).toContain('The mapping has no column for S');
     await s.focus();
     await s.selectOption('S');
     await expect.poll(text, { timeout: 15_000 }).toContain('Nothing stops the upload');
