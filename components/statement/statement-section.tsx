@@ -69,11 +69,12 @@ export function StatementSection(props: StatementSectionProps) {
   const { number, state, statement, draft, fold, onShow } = props;
   const { notebook } = state;
   const section = useSectionSave(state);
-  const typeset = useTypeset(notebook, draft.value);
   const [opened, setOpened] = useState(false);
   const [at, setAt] = useState<number | null>(null);
   const editable = notebook.may.includes('notebook.edit');
   const writing = editable && (opened || draft.changed);
+  // Whoever only reads asks for nothing.
+  const typeset = useTypeset(notebook, writing ? draft.value : '');
   const { conflict, error } = section;
   const faults = typeset.faults.length;
 

@@ -59,7 +59,7 @@ describe('the tour', () => {
     await page.getByRole('link', { name: 'No oscillation in the Larkfield southern cap' }).first().click();
     await page.waitForURL('**/notebooks/**');
     const words = page.locator('section#statement');
-    await expect.poll(() => words.innerText()).toContain('we find no oscillation');
+    await expect.poll(() => words.innerText(), { timeout: 20_000 }).toContain('we find no oscillation');
     expect((await words.innerText()).replace(/\s+/g, ' ')).toMatch(/below A = 0\.\d+/);
   });
 
