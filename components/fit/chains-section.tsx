@@ -24,7 +24,7 @@ import { MovesTable } from './moves-table';
 import type { Quantity } from './quantities';
 import { StartForm, type FitDefaults } from './start-form';
 import { Traces } from './traces';
-import type { Connection } from './use-fit-events';
+import type { Connection } from './use-page-events';
 
 export interface ChainsSectionProps {
   notebook: Notebook;

@@ -2,29 +2,30 @@
 
 import useSWR from 'swr';
 import { read, readBytes } from '@/components/api/request';
-import type { Fit } from '@/lib/schemas';
+import type { Fit, FitEvent } from '@/lib/schemas';
 import { unpackDraws, type FigureDraws } from './draws';
 import { isRunning } from './fit-words';
-import { useFitEvents, type Connection } from './use-fit-events';
 
 export interface FitHandle {
   fit: Fit | null;
-  connection: Connection;
   /** Puts in place what a stop, resume or extend answered. */
   put: (fit: Fit) => void;
+  /** Puts in place what the page's stream told of it. */
+  take: (event: FitEvent) => void;
 }
 
-/** A fit by its id, kept live by one stream of events while it runs. */
+/** A fit by its id; the page's stream keeps it live while it runs. */
 export function useFit(id: string | null, initial: Fit | null): FitHandle {
   const { data, mutate } = useSWR(id ? `/api/v1/fits/${id}` : null, read<Fit>, {
     fallbackData: initial?.id === id ? (initial ?? undefined) : undefined,
     revalidateOnFocus: false,
   });
-  const fit = data && data.id === id ? data : null;
-  const connection = useFitEvents(fit && isRunning(fit.status) ? fit.id : null, (event) => {
-    void mutate((before) => (before ? { ...before, ...event } : before), { revalidate: false });
-  });
-  return { fit, connection, put: (next) => void mutate(next, { revalidate: false }) };
+  return {
+    fit: data && data.id === id ? data : null,
+    put: (next) => void mutate(next, { revalidate: false }),
+    take: (event) =>
+      void mutate((before) => (before ? { ...before, ...event } : before), { revalidate: false }),
+  };
 }
 
 /**

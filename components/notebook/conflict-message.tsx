@@ -13,6 +13,9 @@ export interface Side {
   mine: string;
 }
 
+/** Why a section can't be saved as usual while two versions of it stand. */
+export const twoStand = 'Choose between the two versions below.';
+
 /** Both sides of an edit that met another one, and the choice between them. */
 export function ConflictMessage({
   conflict,
@@ -53,7 +56,7 @@ export function ConflictMessage({
           }))}
         />
       ) : (
-        <p>In this section the two agree.</p>
+        <p>What you changed here they left as it was: yours can stand beside theirs.</p>
       )}
       <Buttons>
         <Button

@@ -17,7 +17,7 @@ const catalogue = templateCatalogue().map(({ id, title, summary }) => ({ id, tit
 const fieldChoices: Record<string, readonly number[]> = {
   background: [],
   'free-phase': [1, 2, 3, 4],
-  'locked-squeezed': [1, 2, 3],
+  'locked-squeezed': [1, 2, 3, 4],
   'locked-exact': [1, 2, 3],
   light: [1, 2, 3],
 };

@@ -13,13 +13,13 @@ import { DefinitionList } from '@/components/ui/definition-list';
 import { capital, counted, plain } from '@/components/words/counts';
 import { KappaRange } from '@/components/words/kappa';
 import type { Measurement, Notebook } from '@/lib/schemas';
-import { ConflictMessage } from './conflict-message';
+import { ConflictMessage, twoStand } from './conflict-message';
 import { measurementSentence } from './fold-sentences';
 import { keptRows } from './kept-points';
 import { likelihoodKinds, likelihoods, type LikelihoodKind } from './likelihood-words';
 import { NewerVersion } from './newer-version';
 import { SaveRow } from './save-row';
-import type { Draft } from './section-draft';
+import { conflictOf, type Draft } from './section-draft';
 import { SectionRecord } from './section-record';
 import { sectionState } from './section-states';
 import type { SectionFold } from './use-folds';
@@ -124,7 +124,7 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
     if (await section.save(draft.value, base)) draft.reset();
   }
 
-  const { conflict } = section;
+  const conflict = conflictOf(draft, notebook, section);
   return (
     <Section
       id="measurement"
@@ -171,7 +171,7 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
             draft={draft}
             revision={notebook.revision}
             saving={section.saving}
-            fault={rows.length ? undefined : 'The cut keeps no bin; widen it.'}
+            fault={conflict ? twoStand : rows.length ? undefined : 'The cut keeps no bin; widen it.'}
             onSave={() => void save(draft.base)}
           />
         </>

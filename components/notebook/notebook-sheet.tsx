@@ -9,14 +9,11 @@ import { PosteriorSection } from '@/components/fit/posterior-section';
 import { quantitiesOf } from '@/components/fit/quantities';
 import type { FitDefaults } from '@/components/fit/start-form';
 import { useDraws, useFit } from '@/components/fit/use-fit';
+import { usePageEvents } from '@/components/fit/use-page-events';
 import { useVersion } from '@/components/measurement/use-version';
 import { Contents } from '@/components/ui/contents';
 import { BeatEnd } from '@/components/ui/motif';
-import { Record } from '@/components/ui/record';
-import { PageHead } from '@/components/ui/section';
 import { Sheet, SheetRow } from '@/components/ui/sheet';
-import { listed } from '@/components/words/counts';
-import { shortName } from '@/components/words/people';
 import { StatementSection } from '@/components/statement/statement-section';
 import { statementState } from '@/components/statement/statement-state';
 import { useStatement } from '@/components/statement/use-statement';
@@ -25,7 +22,7 @@ import { Abstract } from './abstract';
 import { keepPoints } from './kept-points';
 import type { DrawnFormula } from './live-formula';
 import { MeasurementSection } from './measurement-section';
-import { TitleForm } from './notebook-title';
+import { NotebookHead } from './notebook-head';
 import { PriorsSection, type Priors } from './priors-section';
 import { useDraft } from './section-draft';
 import { chainsState, contentsEntries, posteriorState, sectionState, type SectionId } from './section-states';
@@ -47,11 +44,6 @@ export interface NotebookSheetProps {
   reader: string;
 }
 
-/** Everybody who has settled something, in the order of their first revision. */
-function authors(notebook: Notebook): string[] {
-  return [...new Set([notebook.createdBy, ...notebook.record.map(({ by }) => by)])].map(shortName);
-}
-
 function bestOf(fit: Fit | null, draws: FigureDraws | null): NamedPoint | null {
   if (!fit || !draws) return null;
   const index = bestIndex(draws);
@@ -66,8 +58,11 @@ export function NotebookSheet(props: NotebookSheetProps) {
   const { notebook } = state;
   const measurement = useVersion(props.measurement, notebook.measurement.version);
   const [chosen, setChosen] = useState<string | null>(props.fit?.id ?? null);
-  const [titling, setTitling] = useState(false);
-  const { fit, connection, put } = useFit(chosen, props.fit);
+  const { fit, put, take } = useFit(chosen, props.fit);
+  const stream = usePageEvents(notebook.id, fit && isRunning(fit.status) ? fit.id : null, {
+    onNotebook: state.put,
+    onFit: take,
+  });
   const draws = useDraws(fit);
   const fitted = useVersion(props.measurement, fit?.snapshot.measurementVersion ?? measurement.version);
 
@@ -116,7 +111,6 @@ export function NotebookSheet(props: NotebookSheetProps) {
   const folds = useFolds(storageKey, states);
   const fold = (id: SectionId): SectionFold => ({ state: folds.of(id), onToggle: () => folds.toggle(id) });
   const unsaved = [cut.changed ? 1 : 0, template.changed ? 2 : 0, priors.changed ? 3 : 0].filter(Boolean);
-  const last = notebook.record.find(({ revision }) => revision === notebook.revision);
 
   function show(id: string) {
     setChosen(id);
@@ -132,41 +126,13 @@ export function NotebookSheet(props: NotebookSheetProps) {
 
   return (
     <Sheet contents={<Contents label="Sections" entries={contentsEntries(states)} onGo={folds.open} />}>
-      <PageHead
-        title={notebook.title}
-        kicker={[
-          `Notebook ${notebook.number}, revision ${notebook.revision}`,
-          ...(notebook.blind ? ['blind'] : []),
-          ...(notebook.simulated ? ['simulated measurement'] : []),
-        ].join(', ')}
-        byline={
-          <>
-            {listed(authors(notebook))}
-            {notebook.may.includes('notebook.edit') && !titling ? (
-              <>
-                {' · '}
-                <button
-                  type="button"
-                  className="text-action underline decoration-1 underline-offset-[3px]"
-                  onClick={() => setTitling(true)}
-                >
-                  change the title
-                </button>
-              </>
-            ) : null}
-          </>
-        }
+      <NotebookHead
+        state={state}
+        measurement={measurement}
+        fit={fit}
+        stream={stream}
         abstract={<Abstract notebook={notebook} measurement={measurement} fit={fit} />}
-        margin={
-          last ? (
-            <Record at={last.at}>
-              Revision {last.revision} by <b>{shortName(last.by)}</b>
-            </Record>
-          ) : null
-        }
-      >
-        {titling ? <TitleForm state={state} onDone={() => setTitling(false)} /> : null}
-      </PageHead>
+      />
       <MeasurementSection state={state} measurement={measurement} draft={cut} fold={fold('measurement')} />
       <TemplateSection
         state={state}
@@ -189,7 +155,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
         notebook={notebook}
         fit={fit}
         draws={draws}
-        connection={connection}
+        connection={running ? stream.connection : { kind: 'off' }}
         quantities={quantities}
         defaults={props.defaults}
         unsaved={unsaved}

@@ -11,12 +11,13 @@ import { useSectionSave, type NotebookState } from './use-notebook';
 export function TitleForm({ state, onDone }: { state: NotebookState; onDone: () => void }) {
   const { notebook } = state;
   const section = useSectionSave(state);
-  const [title, setTitle] = useState(notebook.title);
+  const [origin] = useState(notebook.title);
+  const [title, setTitle] = useState(origin);
   const same = title.trim() === notebook.title;
+  const renamed = notebook.title !== origin && !same;
 
   async function save() {
-    if (await section.save({ title: title.trim() }, section.conflict?.theirs.revision ?? notebook.revision))
-      onDone();
+    if (await section.save({ title: title.trim() }, notebook.revision)) onDone();
   }
 
   return (
@@ -37,8 +38,8 @@ export function TitleForm({ state, onDone }: { state: NotebookState; onDone: () 
         onChange={(event) => setTitle(event.target.value)}
         error={detailAt(section.error, 'title')}
         help={
-          section.conflict
-            ? `Revision ${section.conflict.theirs.revision} was saved meanwhile, titled “${section.conflict.theirs.title}”. Saving again puts yours in its place.`
+          renamed
+            ? `Revision ${notebook.revision} is titled “${notebook.title}” meanwhile. Saving puts yours in its place.`
             : 'A new title makes a new revision; fits stay as they are.'
         }
       />

@@ -14,7 +14,7 @@ import { logOrderProbability, type MassPrior } from '@/lib/inference/ordered-mas
 import { priorPredictive, type PredictiveBand } from '@/lib/inference/prior-predictive';
 import type { Measurement } from '@/lib/schemas';
 import type { CompiledTemplate, Prior } from '@/lib/templates';
-import { ConflictMessage } from './conflict-message';
+import { ConflictMessage, twoStand } from './conflict-message';
 import { priorsSentence } from './fold-sentences';
 import type { KeptPoints } from './kept-points';
 import type { Prediction } from './prediction';
@@ -22,7 +22,7 @@ import { findPriorFaults } from './prior-faults';
 import { ParameterName, PriorDrawing, PriorFields } from './prior-row';
 import { priorInWords } from './prior-words';
 import { SaveRow } from './save-row';
-import type { Draft } from './section-draft';
+import { conflictOf, type Draft } from './section-draft';
 import { SectionRecord } from './section-record';
 import { sectionState } from './section-states';
 import type { SectionFold } from './use-folds';
@@ -161,7 +161,7 @@ export function PriorsSection(props: PriorsSectionProps) {
   const wrong = Object.keys(faults.byParameter).length;
   const band = usePredictive(prediction, draft.value, wrong === 0 && faults.joint === null);
   const editable = notebook.may.includes('notebook.edit');
-  const { conflict } = section;
+  const conflict = conflictOf(draft, notebook, section);
 
   async function save(base: number) {
     if (await section.save({ priors: ownPriors(draft) }, base)) draft.reset();
@@ -196,11 +196,13 @@ export function PriorsSection(props: PriorsSectionProps) {
               revision={notebook.revision}
               saving={section.saving}
               fault={
-                wrong
-                  ? `${counted(wrong, 'prior').replace(/^one/, 'One')} has to be mended first.`
-                  : faults.joint
-                    ? 'The priors have to go together first.'
-                    : undefined
+                conflict
+                  ? twoStand
+                  : wrong
+                    ? `${counted(wrong, 'prior').replace(/^one/, 'One')} has to be mended first.`
+                    : faults.joint
+                      ? 'The priors have to go together first.'
+                      : undefined
               }
               onSave={() => void save(draft.base)}
             />

@@ -5,6 +5,7 @@ import { CheckField, SelectField } from '@/components/ui/field';
 import { NumberField } from '@/components/ui/number-field';
 import { inWords } from '@/components/words/counts';
 import { fieldCount, templateCatalogue, type OptionDeclaration } from '@/lib/templates';
+import { choiceLabels, optionLabels, powerLabels } from './option-words';
 import type { TemplateSettings } from './prediction';
 
 const catalogue = templateCatalogue().map(({ id, title, summary, options }) => ({
@@ -14,37 +15,8 @@ const catalogue = templateCatalogue().map(({ id, title, summary, options }) => (
   options,
 }));
 
-/** Fields that can be fitted: jumps reach three with mixing, four where amplitudes are free. */
-const mostFields: Record<string, number> = { 'locked-squeezed': 3, 'locked-exact': 3, light: 3 };
-
-const optionLabels: Record<string, string> = {
-  fields: 'Number of fields',
-  amplitudes: 'Oscillation as',
-  vertex: 'Cubic interaction',
-  phases: 'Phases',
-  binAverage: 'Prediction',
-  binWeight: 'Weight of the average, power of κ',
-};
-
-const choiceLabels: Record<string, string> = {
-  quadrature: 'cosine and sine amplitude',
-  'amplitude-phase': 'amplitude and phase',
-  // A dot over π is drawn badly by system menus.
-  '1': 'in time, (∂ₜπ)²σ/Λ₁',
-  '2': 'in space, (∂ᵢπ)²σ/(a²Λ₂)',
-  mixture: 'mixture of both, angle α',
-  locked: 'locked to the interaction',
-  free: 'free, amplitude |C(μ)| kept',
-};
-
-const powerLabels: Record<string, string> = {
-  '-1': 'κ⁻¹',
-  '0': 'constant',
-  '1': 'κ',
-  '2': 'κ²',
-  '3': 'κ³',
-  '4': 'κ⁴',
-};
+/** Fields that are offered, where that is fewer than the template declares. */
+const mostFields: Record<string, number> = { 'locked-exact': 3, light: 3 };
 
 /** Options that another template takes over from this one; those that it doesn't have go. */
 export function carryOver(id: string, options: Record<string, unknown>): TemplateSettings {
@@ -75,13 +47,12 @@ function Option({ option, settings, hasEdges, error, onValue }: OptionProps) {
   const label = optionLabels[name] ?? name;
   switch (option.kind) {
     case 'integer': {
-      const max = mostFields[settings.id] ?? option.max;
       return (
         <SelectField
           label={label}
           name={name}
           value={String(value ?? option.default)}
-          options={Array.from({ length: max - option.min + 1 }, (_, i) => ({
+          options={Array.from({ length: option.max - option.min + 1 }, (_, i) => ({
             value: String(option.min + i),
             label: inWords(option.min + i),
           }))}

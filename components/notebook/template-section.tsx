@@ -14,20 +14,20 @@ import { formatNumber } from '@/lib/figures/format';
 import type { Measurement } from '@/lib/schemas';
 import { findTemplate, TemplateError, type Prior } from '@/lib/templates';
 import { withBestAmplitudes } from './best-amplitudes';
-import { ConflictMessage } from './conflict-message';
+import { ConflictMessage, twoStand } from './conflict-message';
 import { templateSentence } from './fold-sentences';
 import type { KeptPoints } from './kept-points';
 import { LiveFormula, type DrawnFormula } from './live-formula';
 import { compilePrediction, curvesOf, judge, type Prediction, type TemplateSettings } from './prediction';
 import { startValues } from './prior-values';
 import { SaveRow } from './save-row';
-import type { Draft } from './section-draft';
+import { conflictOf, type Draft } from './section-draft';
 import { SectionRecord } from './section-record';
 import { sectionState } from './section-states';
 import { TemplateCautions } from './template-cautions';
 import { TemplateForm } from './template-form';
 import { TemplateSliders } from './template-sliders';
-import { optionsInWords } from './template-words';
+import { templateSides } from './option-words';
 import type { SectionFold } from './use-folds';
 import { useSectionSave, type NotebookState } from './use-notebook';
 
@@ -165,7 +165,7 @@ export function TemplateSection(props: TemplateSectionProps) {
   const template = findTemplate(settings.id);
   const tried = useMemo(() => tryPrediction(settings, points), [settings, points]);
   const editable = notebook.may.includes('notebook.edit');
-  const { conflict } = section;
+  const conflict = conflictOf(draft, notebook, section);
 
   async function save(base: number) {
     if (await section.save({ template: settings }, base)) draft.reset();
@@ -196,7 +196,7 @@ export function TemplateSection(props: TemplateSectionProps) {
             draft={draft}
             revision={notebook.revision}
             saving={section.saving}
-            fault={'fault' in tried ? tried.fault : undefined}
+            fault={conflict ? twoStand : 'fault' in tried ? tried.fault : undefined}
             onSave={() => void save(draft.base)}
           />
         </>
@@ -205,14 +205,7 @@ export function TemplateSection(props: TemplateSectionProps) {
         <ConflictMessage
           conflict={conflict}
           section={section}
-          sides={[
-            {
-              key: 'template',
-              what: 'Template',
-              theirs: optionsInWords(conflict.theirs.template),
-              mine: optionsInWords(settings),
-            },
-          ]}
+          sides={templateSides(conflict.theirs.template, settings)}
           onMine={(base) => void save(base)}
           onTheirs={() => {
             section.settle();

@@ -15,11 +15,3 @@ export function templateInWords(id: string, fields: number): string {
 
 /** The same at the beginning of a sentence. */
 export const templateTitle = (id: string, fields: number): string => capital(templateInWords(id, fields));
-
-/** Template and options as one line, for setting two choices beside each other. */
-export function optionsInWords({ id, options }: { id: string; options: Record<string, unknown> }): string {
-  const said = Object.entries(options)
-    .filter(([, value]) => value !== undefined && value !== null)
-    .map(([name, value]) => `${name} ${Array.isArray(value) ? value.join(', ') || 'none' : String(value)}`);
-  return [id, ...said].join('; ');
-}

@@ -7,9 +7,9 @@ import type { Notebook, PatchNotebook } from '@/lib/schemas';
 
 export type Edit = Omit<PatchNotebook, 'revision'>;
 
-/** A save that was refused because somebody else saved first: their notebook beside one's own edit. */
+/** Somebody else saved first: what stands now, beside an edit of what stood before. */
 export interface Conflict {
-  mine: Edit;
+  /** The revision that the edit was begun on. */
   base: number;
   theirs: Notebook;
 }
@@ -31,7 +31,11 @@ export function useNotebook(initial: Notebook): NotebookState {
   return {
     notebook,
     refresh: () => mutate(),
-    put: (saved) => mutate(saved, { revalidate: false }),
+    // An answer that was overtaken by news of a later revision doesn't take that back.
+    put: (saved) =>
+      mutate((standing) => (standing && standing.revision > saved.revision ? standing : saved), {
+        revalidate: false,
+      }),
   };
 }
 
@@ -62,8 +66,10 @@ export function useSectionSave({ notebook, put }: NotebookState): SectionSave {
     } catch (thrown) {
       const refused = asRequestError(thrown);
       const theirs = refused.code === 'stale_revision' ? await read<Notebook>(path).catch(() => null) : null;
-      if (theirs) setConflict({ mine: edit, base, theirs });
-      else setError(refused);
+      if (theirs) {
+        setConflict({ base, theirs });
+        void put(theirs);
+      } else setError(refused);
       return false;
     } finally {
       setSaving(false);
