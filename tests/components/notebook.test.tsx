@@ -205,11 +205,11 @@ describe('priors in words and fields', () => {
 });
 
 describe('another template', () => {
-  it('takes over the options that it has, and no more fields than it can fit', () => {
+  it('takes over the options that it has, and no others', () => {
     const options = { fields: 4, amplitudes: 'quadrature', background: [1, 2, 3] };
     expect(carryOver('locked-squeezed', options)).toEqual({
       id: 'locked-squeezed',
-      options: { fields: 3, background: [1, 2, 3] },
+      options: { fields: 4, background: [1, 2, 3] },
     });
     expect(carryOver('background', options).options).toEqual({ background: [1, 2, 3] });
   });

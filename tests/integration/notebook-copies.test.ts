@@ -1,6 +1,5 @@
 import { randomUUID } from 'node:crypto';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
-import { migrator } from '@/migrations';
 import { AuditEvent, Notebook, NotebookRevision } from '@/models';
 import { POST as extendRoute } from '@/app/api/v1/fits/[id]/extend/route';
 import { GET as groupRoute } from '@/app/api/v1/groups/[id]/route';
@@ -254,21 +253,5 @@ describe('a notebook that is put away', () => {
     expect((await errorOf(await call(GET, { params: { id }, token: lead.token }))).status).toBe(404);
     const logged = await AuditEvent.findOne({ where: { subjectId: id, action: 'notebook.delete' } });
     expect(logged?.details).toMatchObject({ title: 'Sampling' });
-  });
-});
-
-describe('the migrations of it', () => {
-  it('go up, down and up again', async () => {
-    const steps = migrator(database());
-    const columns = async (table: string) =>
-      Object.keys(await database().getQueryInterface().describeTable(table));
-    await steps.down({ to: '0022-notebooks-archived' });
-    expect(await columns('notebooks')).not.toContain('archived_at');
-    expect(await columns('notebooks')).not.toContain('archived_by');
-    expect(await columns('notebook_revisions')).not.toContain('restored_from');
-    await steps.up();
-    expect(await columns('notebooks')).toEqual(
-      expect.arrayContaining(['archived_at', 'archived_by', 'origin']),
-    );
   });
 });
