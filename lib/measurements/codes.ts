@@ -10,6 +10,10 @@ const table = {
   'empty-file': 'Choose a file with a header line and one line a bin.',
   'file-too-large': 'Hand in a smaller file: drop unused columns, or write fewer digits.',
   'format-not-read': saveAsText,
+  'damaged-file': 'Write the file again, or fetch it again: it is cut off, altered, or made up.',
+  'several-tables': 'Hand in a file with one table, or name the arrays after what they are.',
+  'unread-column': 'Nothing has to be done unless the column is needed.',
+  'trailing-bytes': 'Check that the file was written in one go; what was read is whole.',
   'not-text': saveAsText,
   'wrong-encoding': 'Save the file in the encoding UTF-8.',
   'not-utf8': 'Nothing has to be done; saved as UTF-8 the odd characters would be read as they were meant.',
@@ -41,6 +45,8 @@ const table = {
   'kappa-given-twice': 'Map one of: kappa; kappaLo and kappaHi; kLong and kShort; k1, k2 and k3.',
   'bispectrum-not-read': 'Hand in the shape function S instead of the bispectrum B.',
   // The measurement
+  'units-differ': 'Give both wavenumbers in one unit, or in units that differ by a metric prefix alone.',
+  'units-converted': 'Nothing has to be done: only the ratio of the wavenumbers is used.',
   'kappa-not-positive': 'Give wavenumbers and their ratio as positive numbers.',
   'kappa-too-large':
     'κ = k_long/k_short: check that long and short are not swapped, and that it is not a wavenumber.',

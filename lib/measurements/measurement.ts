@@ -1,7 +1,8 @@
 import { completeMapping, roleName } from './columns';
-import { finding, FindingList, showNumber } from './errors';
+import { finding, FindingList, showCell, showNumber } from './errors';
 import { median } from './mocks';
 import type { FindingCode } from './codes';
+import { wavenumberUnit } from './units';
 import type {
   ColumnMapping,
   ColumnRole,
@@ -155,11 +156,17 @@ function kappaOf(
   if (lo && hi) return { kappa: lo.map((value, row) => Math.sqrt(value * hi[row])), column: columns.kappaLo };
   if (long && short) {
     checkPositive(table, columns, ['kLong', 'kShort'], found);
-    return { kappa: long.map((value, row) => value / short[row]), column: columns.kLong };
+    const scale = scaleBetween(table, columns, 'kLong', 'kShort', found);
+    return { kappa: long.map((value, row) => (value * scale) / short[row]), column: columns.kLong };
   }
   const [k1, k2, k3] = [pick('k1'), pick('k2'), pick('k3')];
   if (!k1 || !k2 || !k3) throw new Error('A complete mapping gives κ.');
   checkPositive(table, columns, ['k1', 'k2', 'k3'], found);
+  for (const role of ['k1', 'k2'] as const) {
+    if (scaleBetween(table, columns, role, 'k3', found) === 1) continue;
+    const message = `${roleName(role)} and k3 are in different units.`;
+    found.add('units-differ', 'error', table.headerLine ?? 1, columns[role], () => message);
+  }
   k3.forEach((value, row) => {
     const slack = 1e-6 * (k1[row] + k2[row]);
     if (value > k1[row] + k2[row] + slack || value < Math.abs(k1[row] - k2[row]) - slack) {
@@ -173,6 +180,33 @@ function kappaOf(
     }
   });
   return { kappa: k3.map((value, row) => (2 * value) / (k1[row] + k2[row])), column: columns.k3 };
+}
+
+/** What turns a wavenumber of one column into the unit of another: 1 where units are the same or not said. */
+function scaleBetween(
+  table: ParsedTable,
+  columns: Columns,
+  role: ColumnRole,
+  other: ColumnRole,
+  found: RowFindings,
+): number {
+  const unitOf = (which: ColumnRole): string => {
+    const column = columns[which];
+    return (column === undefined ? undefined : table.columns[column].unit) ?? '';
+  };
+  const [from, to] = [unitOf(role), unitOf(other)];
+  if (from === to || from === '' || to === '') return 1;
+  const [a, b] = [wavenumberUnit(from), wavenumberUnit(to)];
+  const said = `${roleName(role)} is in ${showCell(from)} and ${roleName(other)} in ${showCell(to)}`;
+  const line = table.headerLine ?? 1;
+  if (!a || !b || a.hubble !== b.hubble) {
+    found.add('units-differ', 'error', line, columns[role], () => `${said}: κ can’t be taken from them.`);
+    return 1;
+  }
+  if (a.perMpc !== b.perMpc) {
+    found.add('units-converted', 'note', line, columns[role], () => `${said}; both were taken in one unit.`);
+  }
+  return a.perMpc / b.perMpc;
 }
 
 function checkPositive(table: ParsedTable, columns: Columns, roles: ColumnRole[], found: RowFindings): void {

@@ -1,7 +1,9 @@
 import { detectDialect, isComment, splitLine, UnclosedQuote } from './delimiter';
 import { recogniseNames } from './columns';
 import { finding, FindingList, MeasurementError, showCell, showNumber } from './errors';
-import { decodeText, hasDecimalComma, isWord, readCell, refuseOtherFormats } from './text';
+import { openFile } from './formats/open-file';
+import { findNotFinite, type NumberTable } from './formats/table';
+import { decodeText, hasDecimalComma, isWord, MAX_BYTES, readCell } from './text';
 import type { Finding, NumericMatrix, Part } from './types';
 
 /** Longest line of a matrix, bytes: a row of some hundred thousand numbers. */
@@ -31,9 +33,11 @@ const [TAB, LF, CR, SPACE, QUOTE, HASH, PERCENT, PLUS, COMMA, MINUS, POINT, SEMI
  */
 export function parseMatrix(bytes: Uint8Array, fileName: string, options: MatrixOptions): NumericMatrix {
   const { part } = options;
-  refuseOtherFormats(bytes, fileName, part, options.maxBytes);
-  const start = readStart(bytes, part);
-  const reader = new MatrixReader(bytes, start.comma, start.decimalComma, options);
+  const opened = openFile(bytes, fileName, part, options.maxBytes ?? MAX_BYTES);
+  if (opened.kind === 'numbers') return matrixOf(opened.table, part, options.withoutValues ?? false);
+  // The names of an ECSV table are one line above its rows, which is all that a matrix needs to know of it.
+  const start = readStart(opened.bytes, part, opened.ecsv !== null);
+  const reader = new MatrixReader(opened.bytes, start.comma, start.decimalComma, options);
   reader.read(start.headerLine);
   const findings: Finding[] = [];
   if (start.headerLine > 0) {
@@ -47,6 +51,29 @@ export function parseMatrix(bytes: Uint8Array, fileName: string, options: Matrix
   return reader.finish(findings);
 }
 
+/** Columns of numbers as a matrix, row by row; rows stand in for lines. */
+function matrixOf(table: NumberTable, part: 'covariance' | 'mocks', withoutValues: boolean): NumericMatrix {
+  const { rows, data } = table;
+  if (rows === 0) throw new MeasurementError('no-rows', 'The file has columns but no rows.', { part });
+  if (recogniseNames(table.columns.map(({ name }) => name))) {
+    const message = 'The file has named columns of κ or S: it looks like a measurement.';
+    throw new MeasurementError('looks-like-table', message, { part });
+  }
+  const findings = [...table.findings, ...findNotFinite(table, part, withoutValues)];
+  const columns = data.length;
+  const values = new Float64Array(rows * columns);
+  for (let j = 0; j < columns; j += 1) {
+    for (let i = 0; i < rows; i += 1) values[i * columns + j] = data[j][i];
+  }
+  return {
+    rows,
+    columns,
+    data: values,
+    lines: Int32Array.from({ length: rows }, (_, row) => row + 1),
+    findings,
+  };
+}
+
 interface Start {
   /** Byte that separates cells besides white space; 0 if only white space does. */
   comma: number;
@@ -55,7 +82,7 @@ interface Start {
 }
 
 /** Looks at the first lines for delimiter, decimal sign and header. */
-function readStart(bytes: Uint8Array, part: Part): Start {
+function readStart(bytes: Uint8Array, part: Part, named: boolean): Start {
   const sample: { line: string; number: number }[] = [];
   let at = 0;
   let number = 0;
@@ -92,7 +119,7 @@ function readStart(bytes: Uint8Array, part: Part): Start {
     const message = 'The file has named columns of κ or S: it looks like a measurement.';
     throw new MeasurementError('looks-like-table', message, { part, line: first.number });
   }
-  const header = words || (sample.length > 1 && countsColumns(cells));
+  const header = named || words || (sample.length > 1 && countsColumns(cells));
   const comma = dialect.delimiter === ',' ? COMMA : dialect.delimiter === ';' ? SEMICOLON : 0;
   return { comma, decimalComma: dialect.decimalComma, headerLine: header ? first.number : 0 };
 }

@@ -1,24 +1,13 @@
-import {
-  detectDialect,
-  forEachLine,
-  isComment,
-  readName,
-  splitLine,
-  splitNames,
-  UnclosedQuote,
-} from './delimiter';
-import type { ColumnName, Dialect } from './delimiter';
+import { forEachLine, isComment } from './delimiter';
+import type { ColumnName } from './delimiter';
 import { finding, FindingList, MeasurementError, showCell, showName } from './errors';
-import { decodeText, hasDecimalComma, isWord, readCell, refuseOtherFormats, type Cell } from './text';
+import { cellsOf, dropTrailing, MAX_COLUMNS, readEcsvHead, readHead, type Head } from './head';
+import type { EcsvHeader } from './formats/ecsv';
+import { openFile } from './formats/open-file';
+import { findNotFinite, type NumberTable } from './formats/table';
+import { decodeText, hasDecimalComma, isWord, MAX_BYTES, readCell, type Cell } from './text';
 import { requireColumns } from './columns';
 import type { ColumnMapping, Finding, ParsedTable } from './types';
-
-/** Longest line of a measurement file, characters. */
-export const MAX_LINE = 1_000_000;
-/** Most columns of a measurement file. */
-export const MAX_COLUMNS = 1_000;
-/** Lines from which the delimiter is found. */
-const SAMPLE = 64;
 
 export interface ParseOptions {
   /** Which column means what; every column named here must exist. */
@@ -29,18 +18,8 @@ export interface ParseOptions {
   withoutValues?: boolean;
 }
 
-/** The start of a file: what is needed before the first row can be read. */
-interface Head {
-  dialect: Dialect;
-  names: ColumnName[];
-  /** Line of the header, 0 if the names come from a comment or there are none. */
-  headerLine: number;
-  /** Line of the names, header or comment; 0 if there are none. */
-  namesLine: number;
-}
-
 /**
- * Reads delimited text: comma, semicolon, tab or runs of spaces; comments, blank lines, one header line, or names in
+ * Reads a table of a measurement: delimited text (gzip too), ECSV, NPY, NPZ, or a FITS binary table. Text: comma, semicolon, tab or runs of spaces; comments, blank lines, one header line, or names in
  * the last comment before the data, or none ("column 1", …). Time and memory are linear in the size of the file.
  *
  * Cells that are no finite numbers become NaN and a finding of level error with line and column; rows with missing or
@@ -51,12 +30,45 @@ export function parseMeasurement(
   fileName: string,
   options: ParseOptions = {},
 ): ParsedTable {
-  refuseOtherFormats(bytes, fileName, 'file', options.maxBytes);
+  const opened = openFile(bytes, fileName, 'file', options.maxBytes ?? MAX_BYTES);
+  const table =
+    opened.kind === 'numbers'
+      ? namedTable(opened.table, options.withoutValues ?? false)
+      : readText(opened.bytes, opened.ecsv, options.withoutValues ?? false);
+  if (options.columns) requireColumns(table, options.columns);
+  return table;
+}
+
+/** Columns of numbers as a table; rows stand in for lines. */
+function namedTable(numbers: NumberTable, withoutValues: boolean): ParsedTable {
+  const { rows, data } = numbers;
+  if (rows === 0)
+    throw new MeasurementError('no-rows', 'The file has columns but no rows.', { part: 'file' });
+  if (data.length > MAX_COLUMNS) {
+    throw new MeasurementError('too-many-columns', `The file has ${data.length} columns.`, { part: 'file' });
+  }
+  if (data.length < 2) {
+    throw new MeasurementError('single-column', 'The file has a single column; κ and S are two.', {
+      part: 'file',
+    });
+  }
+  const given = numbers.columns.map(({ name, unit }, j) => ({
+    name: name === '' ? `column ${j + 1}` : name,
+    ...(unit === undefined ? {} : { unit }),
+  }));
+  const { columns, duplicates } = distinctNames(given, 0);
+  const notFinite = findNotFinite(numbers, 'file', withoutValues);
+  const findings = [...numbers.findings, ...duplicates, ...notFinite];
+  return { columns, rows, data, lines: Int32Array.from({ length: rows }, (_, row) => row + 1), findings };
+}
+
+function readText(bytes: Uint8Array, ecsv: EcsvHeader | null, withoutValues: boolean): ParsedTable {
   const { text, utf8 } = decodeText(bytes);
-  const head = readHead(text);
-  const reader = new RowReader(head, options.withoutValues ?? false);
+  const head = ecsv ? readEcsvHead(text, ecsv) : readHead(text);
+  const reader = new RowReader(head, withoutValues);
   forEachLine(text, (line, number) => {
-    if (number === head.headerLine || line.trim() === '' || isComment(line)) return;
+    if (number === head.headerLine || number === head.unitsLine || line.trim() === '' || isComment(line))
+      return;
     reader.read(cellsOf(line, number, head.dialect), number);
   });
   if (reader.rows === 0)
@@ -73,100 +85,7 @@ export function parseMeasurement(
     findings.push(finding('decimal-comma', 'warning', message, { part: 'file' }));
   }
   const read = reader.finish(columns, findings);
-  const table = head.namesLine > 0 ? { columns, ...read, headerLine: head.namesLine } : { columns, ...read };
-  if (options.columns) requireColumns(table, options.columns);
-  return table;
-}
-
-interface Line {
-  line: string;
-  number: number;
-}
-
-function readHead(text: string): Head {
-  const sample: Line[] = [];
-  const comments: Line[] = [];
-  forEachLine(text, (line, number) => {
-    if (line.length > MAX_LINE) {
-      const message = `Line ${number} is longer than a million characters.`;
-      throw new MeasurementError('line-too-long', message, { part: 'file', line: number });
-    }
-    if (line.trim() === '') return true;
-    if (!isComment(line)) sample.push({ line, number });
-    // Names can only stand in a comment before the data; a long preamble is kept by its end.
-    else if (sample.length === 0) {
-      comments.push({ line, number });
-      if (comments.length > SAMPLE) comments.shift();
-    }
-    return sample.length < SAMPLE;
-  });
-  if (sample.length === 0) {
-    const message = 'The file holds nothing but blank lines and comments.';
-    throw new MeasurementError('empty-file', message, { part: 'file' });
-  }
-  const dialect = detectDialect(sample.map(({ line }) => line));
-  const first = sample[0];
-  const cells = dropTrailing(cellsOf(first.line, first.number, dialect));
-  if (dialect.cells < 2) {
-    const message = `Line ${first.number} has a single column; κ and S are two.`;
-    throw new MeasurementError('single-column', message, { part: 'file', line: first.number });
-  }
-  // A line with a number in it is data even if another cell is text: a row must not be eaten as a header.
-  const isHeader = cells.some(isWord) && !cells.some((cell) => isNumber(cell, dialect));
-  const headerCells = dialect.delimiter === ' ' && isHeader ? splitNames(first.line) : cells;
-  const rows = sample.slice(isHeader ? 1 : 0);
-  const trailing = rows.every(({ line }) => line.trimEnd().endsWith(dialect.delimiter));
-  const width = dialect.cells - (trailing && dialect.delimiter !== ' ' && rows.length > 0 ? 1 : 0);
-  const commented = isHeader ? null : namesOfComments(comments, width, dialect);
-  const names = isHeader
-    ? headerCells.map(readName)
-    : (commented?.names ?? Array.from({ length: width }, (_, j) => ({ name: `column ${j + 1}` })));
-  if (names.length > MAX_COLUMNS) {
-    const message = `The file has ${names.length} columns.`;
-    throw new MeasurementError('too-many-columns', message, { part: 'file', line: first.number });
-  }
-  const headerLine = isHeader ? first.number : 0;
-  return { dialect, names, headerLine, namesLine: headerLine || (commented?.number ?? 0) };
-}
-
-function isNumber(cell: string, dialect: Dialect): boolean {
-  return typeof readCell(cell) === 'number' || (dialect.decimalComma && hasDecimalComma(cell));
-}
-
-function cellsOf(line: string, number: number, dialect: Dialect): string[] {
-  if (line.length > MAX_LINE) {
-    const message = `Line ${number} is longer than a million characters.`;
-    throw new MeasurementError('line-too-long', message, { part: 'file', line: number });
-  }
-  try {
-    return splitLine(line, dialect.delimiter);
-  } catch (error) {
-    if (!(error instanceof UnclosedQuote)) throw error;
-    const message = `A quote on line ${number} is not closed.`;
-    throw new MeasurementError('unclosed-quote', message, { part: 'file', line: number });
-  }
-}
-
-/** A delimiter at the end of the line leaves an empty last cell. */
-function dropTrailing(cells: string[]): string[] {
-  return cells.length > 1 && cells[cells.length - 1].trim() === '' ? cells.slice(0, -1) : cells;
-}
-
-/** The names in the last comment that has one word a column, with or without "columns:" before them. */
-function namesOfComments(
-  comments: Line[],
-  width: number,
-  dialect: Dialect,
-): { names: ColumnName[]; number: number } | null {
-  for (const { line, number } of comments.toReversed()) {
-    const words = line.replace(/^\s*[#%!\s]+/, '').replace(/^(?:columns?|names?)\s*[:=]\s*/i, '');
-    for (const cells of [splitNames(words), words.split(dialect.delimiter), words.split(',')]) {
-      const names = cells.map(readName);
-      if (names.length === width && names.every(({ name }) => /^["$\\]?\p{L}/u.test(name)))
-        return { names, number };
-    }
-  }
-  return null;
+  return head.namesLine > 0 ? { columns, ...read, headerLine: head.namesLine } : { columns, ...read };
 }
 
 /** Two columns of one name are told apart by their number, so that a mapping by name cannot take the wrong one. */

@@ -12,9 +12,7 @@ interface Signature {
 
 /** First bytes of formats that are not delimited text, by name. Longer ones before those that they begin with. */
 const signatures: Signature[] = [
-  { name: 'a FITS file', starts: 'SIMPLE  =' },
-  { name: 'an NPY array', starts: '\x93NUMPY' },
-  { name: 'a gzip archive', starts: '\x1f\x8b' },
+  { name: 'a gzip archive within another', starts: '\x1f\x8b' },
   { name: 'a bzip2 archive', starts: 'BZh' },
   { name: 'an xz archive', starts: '\xfd7zXZ\0' },
   { name: 'a Zstandard archive', starts: '\x28\xb5\x2f\xfd' },
@@ -27,36 +25,34 @@ const signatures: Signature[] = [
 ];
 
 function refuse(name: string, part: Part): MeasurementError {
-  return new MeasurementError('format-not-read', `This is ${name}, which is not read yet.`, {
+  return new MeasurementError('format-not-read', `This is ${name}, which is not read.`, {
     part,
     line: 1,
   });
 }
 
-/** A zip archive by what lies in it: NPZ, an Excel workbook, an OpenDocument table, or just zip. */
+/** A zip archive by what lies in it: an Excel workbook, an OpenDocument table, or just zip. */
 function nameOfZip(start: string, fileName: string): string {
-  if (/\.npy/.test(start) || /\.npz$/i.test(fileName)) return 'an NPZ archive';
   if (/\[Content_Types\]|xl\//.test(start) || /\.xls[xm]$/i.test(fileName)) return 'an Excel workbook';
   if (/opendocument/.test(start) || /\.ods$/i.test(fileName)) return 'an OpenDocument table';
   return 'a zip archive';
 }
 
-/**
- * Throws unless the bytes are delimited text of an acceptable size: formats that are recognised by their first
- * bytes are refused by name (`format-not-read`), UTF-16 and UTF-32 as `wrong-encoding`, other binary content as
- * `not-text` with its line. What the file is called matters only to name what a zip archive holds.
- */
-export function refuseOtherFormats(
-  bytes: Uint8Array,
-  fileName: string,
-  part: Part,
-  maxBytes = MAX_BYTES,
-): void {
+/** Refuses an empty file (`empty-file`) and one beyond the limit (`file-too-large`). */
+export function requireSize(bytes: Uint8Array, part: Part, maxBytes = MAX_BYTES): void {
   if (bytes.length > maxBytes) {
     const limit = `${Math.floor(maxBytes / 1024 / 1024)} MB`;
     throw new MeasurementError('file-too-large', `The file is larger than ${limit}.`, { part });
   }
   if (bytes.length === 0) throw new MeasurementError('empty-file', 'The file is empty.', { part });
+}
+
+/**
+ * Throws unless the bytes are delimited text: formats that are recognised by their first
+ * bytes are refused by name (`format-not-read`), UTF-16 and UTF-32 as `wrong-encoding`, other binary content as
+ * `not-text` with its line. What the file is called matters only to name what a zip archive holds.
+ */
+export function refuseOtherFormats(bytes: Uint8Array, fileName: string, part: Part): void {
   // Byte by byte: the decoder that is called latin1 is Windows-1252 and would change the bytes of signatures.
   const start = String.fromCharCode(...bytes.subarray(0, 4096));
   if (/^(\xff\xfe|\xfe\xff|\0\0\xfe\xff)/.test(start) || looksLikeUtf16(bytes)) {
@@ -66,7 +62,6 @@ export function refuseOtherFormats(
   const known = signatures.find((signature) => start.startsWith(signature.starts));
   if (known) throw refuse(known.name, part);
   const words = start.replace(/^\xef\xbb\xbf/, '').trimStart();
-  if (/^#\s*%ECSV/.test(words)) throw refuse('an ECSV table', part);
   if (/^<(!doctype\s+html|html|head|body)/i.test(words)) throw refuse('an HTML page', part);
   if (words.startsWith('<')) throw refuse('an XML document', part);
   if (/^[{[]\s*["{[\]}\-\d]/.test(words)) throw refuse('a JSON document', part);

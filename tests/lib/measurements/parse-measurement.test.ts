@@ -127,7 +127,7 @@ describe('what is no measurement', () => {
     ['kappa,S\n0.1,\u00072\n', 'not-text'],
     ['\xff\xfek\0a\0', 'wrong-encoding'],
     ['k\0a\0p\0p\0a\0,\0S\0\n\0', 'wrong-encoding'],
-    ['\x1f\x8b\x08\0', 'format-not-read'],
+    ['\x1f\x8b\x08\0', 'damaged-file'],
     ['%PDF-1.7\n', 'format-not-read'],
     ['<!DOCTYPE html><html>', 'format-not-read'],
     ['<?xml version="1.0"?>', 'format-not-read'],

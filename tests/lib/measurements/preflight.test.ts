@@ -140,7 +140,7 @@ describe('a bad upload', () => {
     expect(errors({ file: file(one), mocks: file(one) })).toEqual([['looks-like-table', 2]]);
     expect(errors({ file: file(one), mocks: load('two-field-mocks.csv') })).toEqual([['mocks-size']]);
     expect(errors({ file: file(one), covariance: load('files/cov_ok.txt') })).toEqual([['covariance-size']]);
-    expect(errors({ file: load('files/table.fits'), mocks: good })).toEqual([['format-not-read', 1]]);
+    expect(errors({ file: file('%PDF-1.7', 'a.pdf'), mocks: good })).toEqual([['format-not-read', 1]]);
   });
 
   it('with a mock that holds no number names its line and column', () => {
