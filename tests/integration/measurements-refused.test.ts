@@ -39,7 +39,7 @@ describe('a bad upload', () => {
   const cases: [string, () => Record<string, FormPart>, { path: string; line?: number; says: RegExp }][] = [
     [
       'a file that is no table',
-      () => ({ file: { name: 'points.fits', bytes: dataFile('files/table.fits') } }),
+      () => ({ file: { name: 'points.pdf', bytes: new TextEncoder().encode('%PDF-1.7') } }),
       { path: 'file', says: /Save the table as CSV/ },
     ],
     ['an empty file', () => ({ file: { name: 'empty.csv', bytes: '' } }), { path: 'file', says: /bin/ }],
