@@ -5,7 +5,7 @@ import { database } from '@/lib/db';
 import { mocksLimit, pointsLimit } from '@/lib/schemas';
 import { storage } from '@/storage';
 import { call, closeConnections, createGroup, createMember, errorOf } from './harness';
-import { dataFile, dataLines as lines, filePart, kept, uploadData, uploadTo, type FormPart } from './uploads';
+import { dataLines as lines, filePart, kept, uploadData, uploadTo, type FormPart } from './uploads';
 
 beforeAll(() => void database());
 afterAll(closeConnections);
