@@ -32,6 +32,7 @@ import * as usersSignIn from './0031-users-sign-in';
 import * as notebookStatements from './0032-notebook-statements';
 import * as fitsCommittedAt from './0033-fits-committed-at';
 import * as measurementTruth from './0034-measurement-truth';
+import * as scans from './0035-scans';
 import type { MigrationContext } from './table';
 
 interface Migration {
@@ -72,6 +73,7 @@ const migrations: readonly (readonly [string, Migration])[] = [
   ['0032-notebook-statements', notebookStatements],
   ['0033-fits-committed-at', fitsCommittedAt],
   ['0034-measurement-truth', measurementTruth],
+  ['0035-scans', scans],
 ];
 
 /** The migrator of an open database; run it with one process at a time. */

@@ -5,6 +5,7 @@ import { Measurement, MeasurementVersion, initMeasurementModels } from './measur
 import { Notebook, NotebookRevision, initNotebookModels } from './notebook';
 import { Fit, FitBlock, FitReplica, initFitModels } from './fit';
 import { FitMail, initFitQueueModels } from './fit-queue';
+import { Scan, initScanModel } from './scan';
 
 export { Account, ApiToken, Session, User, VerificationToken } from './account';
 export { AuditEvent, Group, Invitation, Membership } from './group';
@@ -12,6 +13,7 @@ export { Measurement, MeasurementVersion, type StoredFile } from './measurement'
 export { Notebook, NotebookRevision, type NotebookOrigin, type NotebookSettings } from './notebook';
 export { Fit, FitBlock, FitReplica } from './fit';
 export { FitLimit, FitMail } from './fit-queue';
+export { Scan } from './scan';
 
 /** All associations in one place. */
 function associate(): void {
@@ -45,6 +47,9 @@ function associate(): void {
   Fit.hasMany(FitMail, { foreignKey: 'fitId', as: 'mails' });
   FitMail.belongsTo(Fit, { foreignKey: 'fitId' });
   FitMail.belongsTo(User, { foreignKey: 'userId' });
+  Notebook.hasMany(Scan, { foreignKey: 'notebookId' });
+  Scan.belongsTo(Notebook, { foreignKey: 'notebookId' });
+  Scan.belongsTo(MeasurementVersion, { foreignKey: 'measurementVersionId' });
 }
 
 interface QueryingConnection {
@@ -82,6 +87,7 @@ export function openDatabase(url: string, options: { poolMax?: number } = {}): S
   initNotebookModels(sequelize);
   initFitModels(sequelize);
   initFitQueueModels(sequelize);
+  initScanModel(sequelize);
   associate();
   return sequelize;
 }

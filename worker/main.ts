@@ -3,16 +3,27 @@ import { hostname } from 'node:os';
 import { Worker } from 'bullmq';
 import { config } from '@/lib/config';
 import { closeDatabase, database } from '@/lib/db';
-import { beat, closeQueue, endBeat, fitsQueue, fitWorkerOptions } from '@/lib/jobs';
+import {
+  beat,
+  closeQueue,
+  endBeat,
+  enqueueScan,
+  fitsQueue,
+  fitWorkerOptions,
+  scanJobSchema,
+  scansQueue,
+} from '@/lib/jobs';
 import { tellFacts } from '@/lib/jobs/worker-facts';
 import { log } from '@/lib/log';
 import { closeRedis, queueConnection } from '@/lib/redis';
 import { sendDueMails } from '@/lib/services/fit-mails';
 import { takeNext } from '@/lib/services/fit-queue';
+import { unheldScans } from '@/lib/services/scan-lease';
 import { deleteStrayFiles } from '@/lib/services/stray-files';
 import { closeStorage } from '@/storage';
 import packageFile from '@/package.json';
 import { runFit } from './fit-run';
+import { runScanJob } from './scan-run';
 import { every } from './every';
 import { reasonOf } from './retry';
 import { readWorkerSettings } from './settings';
@@ -47,6 +58,16 @@ const worker = new Worker(fitsQueue, () => taker.fill(), { connection, ...fitWor
 worker.on('error', (error) => log.debug({ err: error }, 'the queue'));
 worker.on('failed', (job, error) => log.warn({ jobId: job?.id, ...reasonOf(error) }, 'a job failed'));
 
+/** Scans take seconds, so one at a time is enough; fits don't wait for them. */
+const scanConnection = queueConnection();
+const scanner = new Worker(
+  scansQueue,
+  async (job) => runScanJob(scanJobSchema.parse(job.data).scanId, settings, now.signal),
+  { connection: scanConnection, concurrency: 1, ...fitWorkerOptions },
+);
+scanner.on('error', (error) => log.debug({ err: error }, 'the queue of scans'));
+scanner.on('failed', (job, error) => log.warn({ jobId: job?.id, ...reasonOf(error) }, 'a job failed'));
+
 const heartbeat = every(5_000, () => beat(workerId, settings.fits), 'the sign of life');
 
 const facts = {
@@ -61,6 +82,13 @@ const telling = every(5_000, () => tellFacts(workerId, facts), 'telling of itsel
 
 /** Redis may be away or have lost its jobs, or a process died between commit and queueing: what waits is looked for anyway. */
 const reconciler = every(settings.reconcileMs, () => taker.fill(), 'the search for fits that wait');
+const scanReconciler = every(
+  settings.reconcileMs,
+  async () => {
+    for (const { id, epoch } of await unheldScans()) await enqueueScan(id, epoch);
+  },
+  'the search for scans that nobody holds',
+);
 
 /** The end of a fit is told after it was committed, by whoever finds that it is due. */
 const postman = every(
@@ -80,18 +108,21 @@ async function close(): Promise<void> {
   heartbeat();
   telling();
   reconciler();
+  scanReconciler();
   postman();
   sweeper();
   const patience = setTimeout(() => now.abort(), settings.graceMs);
   // Takes no fit any more and waits for those that it has.
   await Promise.all([
     worker.close().catch((error: unknown) => log.warn({ err: error }, 'the queue did not close')),
+    scanner.close().catch((error: unknown) => log.warn({ err: error }, 'the queue of scans did not close')),
     taker.close(),
   ]);
   clearTimeout(patience);
   await endBeat(workerId).catch(() => undefined);
   await closeQueue();
   connection.disconnect();
+  scanConnection.disconnect();
   await closeRedis();
   await closeDatabase();
   closeStorage();

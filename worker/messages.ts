@@ -1,5 +1,6 @@
 import type { FitModel } from '@/lib/services/fit-model';
 import type { ReplicaFacts } from '@/lib/services/fit-moves';
+import type { FinishedScan } from '@/lib/services/scan-model';
 import type { StoredReport } from '@/lib/schemas/stored-report';
 
 /** What a thread is started with. */
@@ -63,3 +64,7 @@ export interface LookRequest {
 
 export type ReportQuestion = Append | LookRequest;
 export type ReportAnswer = { kind: 'report'; report: StoredReport } | Failure;
+
+/** How far a scan is, what it found, or why it can't. Buffers arrive as plain bytes. */
+export type ScanThreadAnswer =
+  { kind: 'progress'; fraction: number } | { kind: 'scan'; finished: FinishedScan } | Failure;

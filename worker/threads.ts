@@ -13,7 +13,8 @@ const unexpected = (error: Error): Failure => ({
   stack: error.stack ?? error.message,
 });
 
-function start<Message>(
+/** Starts one of the worker's threads; `onEnd` hears of every end that isn't its being closed. */
+export function startThread<Message>(
   file: string,
   workerData: unknown,
   onMessage: (message: Message) => void,
@@ -37,7 +38,7 @@ export class ReplicaThreads {
     this.threads = Array.from({ length: Math.min(count, replicas) }, (_, index) => {
       const own = new Map([...states].filter(([replica]) => replica % Math.min(count, replicas) === index));
       const setup: ReplicaSetup = { model, states: own };
-      return start('./replica-thread.mjs', setup, this.receive, this.fail);
+      return startThread('./replica-thread.mjs', setup, this.receive, this.fail);
     });
   }
 
@@ -75,7 +76,7 @@ export class ReportThread {
   private broken: Failure | null = null;
 
   constructor(setup: ReportSetup) {
-    this.thread = start('./report-thread.mjs', setup, this.receive, this.fail);
+    this.thread = startThread('./report-thread.mjs', setup, this.receive, this.fail);
   }
 
   append(replica: number, first: number, stride: number, values: Float64Array): void {

@@ -56,6 +56,7 @@ const recordKinds: Readonly<Record<string, RecordKind>> = {
   measurements: 'measurement',
   notebooks: 'notebook',
   fits: 'fit',
+  scans: 'scan',
 };
 
 export function recordKindOf(key: RouteKey): RecordKind {

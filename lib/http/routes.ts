@@ -41,10 +41,12 @@ import {
   revisionSchema,
   sampleFormats,
   settingsSchema,
+  scanSchema,
   shiftsSchema,
   startFitSchema,
   statementQuerySchema,
   statementSchema,
+  startScanSchema,
   takenUpSchema,
   takeUpSchema,
   templateSchema,
@@ -52,6 +54,7 @@ import {
   tokenSchema,
   typesetBodySchema,
   typesetStatementSchema,
+  trialsSchema,
   versionQuerySchema,
 } from '@/lib/schemas';
 import type { Action } from '@/lib/policies';
@@ -331,6 +334,19 @@ export const routes = {
     answer: createdSchema,
     status: 202,
   },
+  'POST /notebooks/:id/scan': {
+    summary: 'Scan for frequencies; answers when it has ended, or 202 with its id after a minute.',
+    permission: 'scan.start',
+    body: startScanSchema,
+    answer: scanSchema,
+  },
+  'GET /notebooks/:id/trials': {
+    summary:
+      'Everything that a notebook was scanned with, and the significance that is left of the best of it.',
+    permission: 'notebook.read',
+    answer: trialsSchema,
+  },
+  'GET /scans/:id': { summary: 'A scan with its result.', permission: 'scan.read', answer: scanSchema },
   'GET /fits/:id': { summary: 'A fit with its diagnostics.', permission: 'fit.read', answer: fitSchema },
   'GET /fits/:id/events': {
     summary: 'The changing parts of a fit as server-sent events.',

@@ -1,4 +1,6 @@
 export { fitChannel, fitJobId, fitJobOptions, fitJobSchema, fitsQueue, fitWorkerOptions } from './fits';
 export type { FitJob } from './fits';
-export { closeQueue, enqueueFit } from './queue';
+export { scanJobSchema, scansQueue } from './scans';
+export type { ScanJob } from './scans';
+export { closeQueue, enqueueFit, enqueueScan } from './queue';
 export { beat, endBeat, liveWorkers, workerPlaces } from './heartbeat';

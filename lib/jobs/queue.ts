@@ -1,38 +1,40 @@
 import { Queue } from 'bullmq';
 import { queueConnection } from '@/lib/redis';
 import { fitJobId, fitJobOptions, fitJobSchema, fitsQueue, type FitJob } from './fits';
+import { scanJobId, scanJobSchema, scansQueue, type ScanJob } from './scans';
 
 interface OpenQueue {
-  queue: Queue<FitJob>;
+  queue: Queue<FitJob | ScanJob>;
   connection: ReturnType<typeof queueConnection>;
 }
 
 /** Hot reloading evaluates modules anew; connections have to outlive that. */
-const holder = globalThis as typeof globalThis & { beatnoteQueue?: OpenQueue };
+const holder = globalThis as typeof globalThis & { beatnoteQueues?: Map<string, OpenQueue> };
 
-function fits(): OpenQueue {
-  if (!holder.beatnoteQueue) {
+function open(name: string): Queue<FitJob | ScanJob> {
+  const queues = (holder.beatnoteQueues ??= new Map<string, OpenQueue>());
+  let found = queues.get(name);
+  if (!found) {
     const connection = queueConnection();
-    const queue = new Queue<FitJob>(fitsQueue, { connection });
+    const queue = new Queue<FitJob | ScanJob>(name, { connection });
     // The connection itself says when Redis is away.
     queue.on('error', () => undefined);
-    holder.beatnoteQueue = { queue, connection };
+    found = { queue, connection };
+    queues.set(name, found);
   }
-  return holder.beatnoteQueue;
+  return found.queue;
 }
 
 /** How long a request waits for a queue that doesn't answer; the reconciler queues what was left. */
 const patience = 1_500;
 
-/** Wakes a worker for a fit at this epoch. Rejects when the queue doesn't answer in time. */
-export async function enqueueFit(fitId: string, epoch: number): Promise<void> {
-  const payload = fitJobSchema.parse({ fitId });
+async function enqueue(name: string, job: string, payload: FitJob | ScanJob, jobId: string): Promise<void> {
   let timer: NodeJS.Timeout | undefined;
   const late = new Promise<never>((_, reject) => {
     timer = setTimeout(() => reject(new Error('The queue took too long.')), patience);
   });
   try {
-    const adding = fits().queue.add('fit', payload, { ...fitJobOptions, jobId: fitJobId(fitId, epoch) });
+    const adding = open(name).add(job, payload, { ...fitJobOptions, jobId });
     adding.catch(() => undefined);
     await Promise.race([adding, late]);
   } finally {
@@ -40,10 +42,19 @@ export async function enqueueFit(fitId: string, epoch: number): Promise<void> {
   }
 }
 
+/** Wakes a worker for a fit at this epoch. Rejects when the queue doesn't answer in time. */
+export const enqueueFit = (fitId: string, epoch: number): Promise<void> =>
+  enqueue(fitsQueue, 'fit', fitJobSchema.parse({ fitId }), fitJobId(fitId, epoch));
+
+/** The same for a scan. */
+export const enqueueScan = (scanId: string, epoch: number): Promise<void> =>
+  enqueue(scansQueue, 'scan', scanJobSchema.parse({ scanId }), scanJobId(scanId, epoch));
+
 export async function closeQueue(): Promise<void> {
-  const open = holder.beatnoteQueue;
-  holder.beatnoteQueue = undefined;
-  if (!open) return;
-  await open.queue.close().catch(() => undefined);
-  open.connection.disconnect();
+  const queues = [...(holder.beatnoteQueues?.values() ?? [])];
+  holder.beatnoteQueues = undefined;
+  for (const { queue, connection } of queues) {
+    await queue.close().catch(() => undefined);
+    connection.disconnect();
+  }
 }

@@ -28,6 +28,8 @@ const actionWords: Record<Action, string> = {
   'fit.stop': 'start, stop and extend fits',
   'fit.resume': 'start, stop and extend fits',
   'fit.extend': 'start, stop and extend fits',
+  'scan.read': 'read notebooks and fits',
+  'scan.start': 'scan for frequencies',
 };
 
 /** One thing that members may do, and which roles may do all of it. */

@@ -11,3 +11,4 @@ export * from './tokens';
 export * from './log';
 export * from './take-up';
 export * from './administration';
+export * from './scans';

@@ -1,5 +1,5 @@
 import type { Actor } from '@/lib/auth/actor';
-import { Fit, Group, Measurement, Membership, Notebook } from '@/models';
+import { Fit, Group, Measurement, Membership, Notebook, Scan } from '@/models';
 import { database } from '@/lib/db';
 import { notFound } from '@/lib/errors';
 import { idSchema, roleSchema, type Role } from '@/lib/schemas';
@@ -7,7 +7,7 @@ import { may, mayOrThrow, type Action } from '@/lib/policies';
 
 export type { Actor };
 
-export type RecordKind = 'group' | 'measurement' | 'notebook' | 'fit';
+export type RecordKind = 'group' | 'measurement' | 'notebook' | 'fit' | 'scan';
 
 const proof = Symbol('authorised');
 
@@ -20,7 +20,7 @@ export interface Access {
   readonly actor: Actor;
   readonly role: Role;
   readonly groupId: string;
-  /** Id of the group, measurement, notebook or fit that was authorised. */
+  /** Id of the group, measurement, notebook, fit or scan that was authorised. */
   readonly id: string;
   readonly kind: RecordKind;
   /** Throws `forbidden` unless the role allows it too. */
@@ -38,6 +38,8 @@ async function groupOf(kind: RecordKind, id: string): Promise<string | null> {
       return (await Notebook.findByPk(id, { attributes }))?.groupId ?? null;
     case 'fit':
       return (await Fit.findByPk(id, { attributes }))?.groupId ?? null;
+    case 'scan':
+      return (await Scan.findByPk(id, { attributes }))?.groupId ?? null;
   }
 }
 

@@ -27,6 +27,8 @@ const shownDetails = [
   'draws',
   'maxDraws',
   'restoredFrom',
+  'muMin',
+  'muMax',
 ] as const;
 
 function detailsOf(event: AuditEvent): LogEvent['details'] {

@@ -34,6 +34,7 @@ const whileArchived: ReadonlySet<string> = new Set([
   'notebook.archive',
   'notebook.delete',
   'fit.read',
+  'scan.read',
 ]);
 
 /** The notebook of `access` as it stands, with its record and its fits. */
@@ -77,9 +78,11 @@ export async function readNotebook(access: Access): Promise<NotebookAnswer> {
       ...revisions.map(({ createdBy }) => createdBy),
       ...fits.map(({ startedBy }) => startedBy),
     ]),
-    may: [...actionsFor(access.role, 'notebook'), ...actionsFor(access.role, 'fit')].filter(
-      (action) => notebook.archivedAt === null || whileArchived.has(action),
-    ),
+    may: [
+      ...actionsFor(access.role, 'notebook'),
+      ...actionsFor(access.role, 'fit'),
+      ...actionsFor(access.role, 'scan'),
+    ].filter((action) => notebook.archivedAt === null || whileArchived.has(action)),
   });
 }
 

@@ -8,7 +8,16 @@ import { recordKindOf, type Verb } from '@/lib/http/route';
 import { rowOf, routes, type RouteKey } from '@/lib/http/routes';
 import { actionsFor, may } from '@/lib/policies';
 import { groupSchema, roles, type Role } from '@/lib/schemas';
-import { Fit, Invitation, Measurement, MeasurementVersion, Notebook, NotebookRevision, User } from '@/models';
+import {
+  Fit,
+  Invitation,
+  Measurement,
+  MeasurementVersion,
+  Notebook,
+  NotebookRevision,
+  Scan,
+  User,
+} from '@/models';
 import {
   call,
   closeConnections,
@@ -98,7 +107,8 @@ async function createRecords(groupId: string, userId: string, { number = 1, fit:
     createdBy: userId,
     createdAt: now,
   });
-  if (!fitted) return { group: groupId, measurement: measurement.id, notebook: notebook.id, fit: '' };
+  if (!fitted)
+    return { group: groupId, measurement: measurement.id, notebook: notebook.id, fit: '', scan: '' };
   const fit = await Fit.create({
     groupId,
     notebookId: notebook.id,
@@ -114,7 +124,18 @@ async function createRecords(groupId: string, userId: string, { number = 1, fit:
     startedBy: userId,
     createdAt: now,
   });
-  return { group: groupId, measurement: measurement.id, notebook: notebook.id, fit: fit.id };
+  const scan = await Scan.create({
+    notebookId: notebook.id,
+    groupId,
+    number: 1,
+    measurementVersionId: version.id,
+    request: {},
+    requestSha256: sha256,
+    status: 'failed',
+    startedBy: userId,
+    createdAt: now,
+  });
+  return { group: groupId, measurement: measurement.id, notebook: notebook.id, fit: fit.id, scan: scan.id };
 }
 
 let records: Awaited<ReturnType<typeof createRecords>>;

@@ -19,3 +19,5 @@ export { aliasesOf, spectralWindow } from './spectral-window';
 export type { SpectralWindow } from './spectral-window';
 export { reachOf, runScan } from './run-scan';
 export type { PlaneOutcome, ScanOutcome, ScanRequest } from './run-scan';
+export { jointSignificance } from './trials';
+export type { JointSignificance, Look } from './trials';

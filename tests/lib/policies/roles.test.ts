@@ -26,6 +26,8 @@ const table: Record<Action, string> = {
   'fit.stop': 'LA',
   'fit.resume': 'LA',
   'fit.extend': 'LA',
+  'scan.read': 'LAF',
+  'scan.start': 'LA',
 };
 const letters: Record<Role, string> = { lead: 'L', analyst: 'A', referee: 'F', reader: 'R' };
 

@@ -1,0 +1,103 @@
+import { QueryTypes } from 'sequelize';
+import { MeasurementVersion, Scan } from '@/models';
+import { database } from '@/lib/db';
+import { scanRequestSchema } from '@/lib/schemas';
+import type { FinishedScan, ScanJobModel } from './scan-model';
+
+/** Who may write a scan: as with fits, a worker takes epoch + 1 with a lease, and every later write says `AND epoch = ?`. */
+const from = (milliseconds: number) =>
+  `TIMESTAMPADD(MICROSECOND, ${Math.round(milliseconds) * 1000}, UTC_TIMESTAMP(3))`;
+const running = "status IN ('queued', 'running')";
+const leaseOver = '(lease_until IS NULL OR lease_until < UTC_TIMESTAMP(3))';
+
+async function update(sql: string, values: Record<string, unknown>): Promise<boolean> {
+  const [, rows] = await database().query(sql, { replacements: values, type: QueryTypes.UPDATE });
+  return rows > 0;
+}
+
+export interface ClaimedScan {
+  scanId: string;
+  epoch: number;
+  model: ScanJobModel;
+}
+
+/** Takes an unfinished scan that nobody holds; null where there is nothing to take. */
+export async function claimScan(scanId: string, leaseMs: number): Promise<ClaimedScan | null> {
+  return database().transaction(async (transaction) => {
+    const [, rows] = await database().query(
+      `UPDATE scans SET epoch = epoch + 1, status = 'running', progress = 0, lease_until = ${from(leaseMs)}
+       WHERE id = :scanId AND ${running} AND ${leaseOver}`,
+      { replacements: { scanId }, type: QueryTypes.UPDATE, transaction },
+    );
+    if (rows === 0) return null;
+    const scan = await Scan.findByPk(scanId, { transaction, rejectOnEmpty: true });
+    const version = await MeasurementVersion.findByPk(scan.measurementVersionId, {
+      transaction,
+      rejectOnEmpty: true,
+    });
+    const { points, covariance, hasBinEdges, mockCount } = version;
+    return {
+      scanId,
+      epoch: scan.epoch,
+      model: {
+        numbers: { rows: version.rows, hasBinEdges, mockCount, points, covariance },
+        request: scanRequestSchema.parse(scan.request),
+        seed: `nulls/${version.sha256}`,
+      },
+    };
+  });
+}
+
+/** Holds on to a scan and says how far it is; false where another worker has it. */
+export const renewScan = (
+  { scanId, epoch }: ClaimedScan,
+  leaseMs: number,
+  progress: number,
+): Promise<boolean> =>
+  update(
+    `UPDATE scans SET lease_until = ${from(leaseMs)}, progress = :progress
+     WHERE id = :scanId AND epoch = :epoch AND ${running}`,
+    { scanId, epoch, progress },
+  );
+
+/** Stores what was found; false where another worker has the scan by now. */
+export async function commitScan(
+  { scanId, epoch }: ClaimedScan,
+  { result, heights, planeHeights }: FinishedScan,
+): Promise<boolean> {
+  const [rows] = await Scan.update(
+    {
+      status: 'done',
+      progress: 1,
+      leaseUntil: null,
+      result: JSON.stringify(result),
+      heights,
+      planeHeights,
+      endedAt: new Date(),
+    },
+    { where: { id: scanId, epoch, status: 'running' } },
+  );
+  return rows > 0;
+}
+
+/** Ends a scan that can't be done, with the reason. */
+export const failScan = ({ scanId, epoch }: ClaimedScan, message: string): Promise<boolean> =>
+  update(
+    `UPDATE scans SET status = 'failed', message = :message, lease_until = NULL, ended_at = UTC_TIMESTAMP(3)
+     WHERE id = :scanId AND epoch = :epoch AND ${running}`,
+    { scanId, epoch, message: message.slice(0, 1000) },
+  );
+
+/** Gives a scan back that this worker can't finish. */
+export const releaseScan = ({ scanId, epoch }: ClaimedScan): Promise<boolean> =>
+  update(
+    `UPDATE scans SET status = 'queued', lease_until = NULL WHERE id = :scanId AND epoch = :epoch AND ${running}`,
+    { scanId, epoch },
+  );
+
+/** Unfinished scans that nobody holds. */
+export const unheldScans = (): Promise<{ id: string; epoch: number }[]> =>
+  database().query<{ id: string; epoch: number }>(
+    `SELECT id, epoch FROM scans WHERE ${running} AND ${leaseOver} ORDER BY created_at LIMIT 200`,
+    { type: QueryTypes.SELECT },
+  );
