@@ -2,7 +2,9 @@ import { parentPort, workerData } from 'node:worker_threads';
 import { exactLogEvidence } from '@/lib/inference';
 import { fitColumns, specOf } from '@/lib/services/fit-model';
 import { evidenceInReport } from '@/lib/services/fit-moves';
-import { KeptDraws, lookAt } from '@/lib/services/fit-report';
+import { scannedModes } from '@/lib/services/fit-modes';
+import { KeptDraws, lookAt, type ScannedModes } from '@/lib/services/fit-report';
+import { judgedFrom } from '@/lib/services/fit-schedule';
 import { failureOf } from './failure';
 import { yieldToOthers } from './niceness';
 import type { ReportAnswer, ReportQuestion, ReportSetup } from './messages';
@@ -20,13 +22,17 @@ const { warmup, replicas } = model.snapshot;
 const kept = new KeptDraws(columns, warmup, replicas);
 const answer = (message: ReportAnswer) => port.postMessage(message);
 
+/** The scan takes a few seconds: it is made when it is first needed, which the number of draws alone decides. */
+let scanned: ScannedModes | null | undefined;
+
 port.on('message', (question: ReportQuestion) => {
   try {
     if (question.kind === 'append') {
       kept.append(question.replica, question.first, question.stride, question.values);
     } else {
       const { draws, before, facts } = question;
-      const report = lookAt(kept, columns, { warmup, draws, target }, before);
+      if (draws - warmup >= judgedFrom && scanned === undefined) scanned = scannedModes(model);
+      const report = lookAt(kept, columns, { warmup, draws, target }, before, scanned ?? null);
       answer({ kind: 'report', report: { ...report, ...evidenceInReport(facts, exact) } });
     }
   } catch (error) {

@@ -134,7 +134,7 @@ export function presentFit(fit: FitRow, { startedBy, role, blind, queue }: FitCo
     ladder: report.ladder,
     diagnostics: report.diagnostics,
     history: report.history,
-    modes: [],
+    modes: report.modes,
     logEvidence: report.logEvidence,
     noEvidence: report.noEvidence,
     gate: {

@@ -96,6 +96,18 @@ export const ladderSchema = z.object({
   rests: z.boolean(),
 });
 
+/** An interval of masses between minima of the collapsed density: its share of the draws, and of the posterior by the scan. */
+export const modeSchema = z.object({
+  mu: z.array(z.number()),
+  lo: z.array(z.number()),
+  hi: z.array(z.number()),
+  weight: numberOrNull,
+  mcse: numberOrNull,
+  /** Null where its error is above 0.02. */
+  scanWeight: numberOrNull,
+});
+export type Mode = z.infer<typeof modeSchema>;
+
 export const fitSchema = z.object({
   id: idSchema,
   notebookId: idSchema,
@@ -138,16 +150,7 @@ export const fitSchema = z.object({
   history: z.array(
     z.object({ draws: z.number().int(), rhat: z.array(numberOrNull), ess: z.array(numberOrNull) }),
   ),
-  modes: z.array(
-    z.object({
-      mu: z.array(z.number()),
-      lo: z.array(z.number()),
-      hi: z.array(z.number()),
-      weight: numberOrNull,
-      mcse: numberOrNull,
-      scanWeight: numberOrNull,
-    }),
-  ),
+  modes: z.array(modeSchema),
   logEvidence: evidenceSchema.nullable(),
   /** Why there is no evidence, to follow "because"; null where there is one. */
   noEvidence: z.string().nullable(),

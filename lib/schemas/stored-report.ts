@@ -1,5 +1,5 @@
 import { z } from 'zod';
-import { diagnosticSchema, evidenceSchema, ladderSchema } from './fits';
+import { diagnosticSchema, evidenceSchema, ladderSchema, modeSchema } from './fits';
 import { numberOrNull } from './shared';
 
 /** What is kept of the looks at a fit; column `report`. Every number is of committed draws. */
@@ -19,6 +19,8 @@ export const storedReportSchema = z.object({
   logEvidence: evidenceSchema.nullable().default(null),
   /** Why there is no evidence, to follow "because"; null where there is one. */
   noEvidence: z.string().nullable().default(null),
+  /** Empty before the first look, and where there is no scan to compare with. */
+  modes: z.array(modeSchema).default([]),
 });
 export type StoredReport = z.infer<typeof storedReportSchema>;
 
@@ -32,4 +34,5 @@ export const emptyReport: StoredReport = {
   ladder: null,
   logEvidence: null,
   noEvidence: 'no draw is kept yet',
+  modes: [],
 };

@@ -18,9 +18,14 @@ export interface FitModel {
   snapshot: Snapshot;
 }
 
-export function fitModel(version: MeasurementVersion, snapshot: Snapshot): FitModel {
+/** Those of a row; its fields are getters, which a spread would miss. */
+export function storedNumbers(version: MeasurementVersion): StoredNumbers {
   const { rows, hasBinEdges, mockCount, points, covariance } = version;
-  return { numbers: { rows, hasBinEdges, mockCount, points, covariance }, snapshot };
+  return { rows, hasBinEdges, mockCount, points, covariance };
+}
+
+export function fitModel(version: MeasurementVersion, snapshot: Snapshot): FitModel {
+  return { numbers: storedNumbers(version), snapshot };
 }
 
 const asBuffer = (bytes: Uint8Array): Buffer => Buffer.from(bytes.buffer, bytes.byteOffset, bytes.byteLength);

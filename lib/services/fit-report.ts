@@ -1,4 +1,5 @@
-import type { Diagnostic } from '@/lib/schemas';
+import type { Diagnostic, Mode } from '@/lib/schemas';
+import { judgeModes, modeTable, type ModeRow, type ModeScan } from '@/lib/inference/scan';
 import { diagnose, judgeGate, type Diagnosis, type GateTarget } from '@/lib/sampler';
 import type { FitColumns } from './fit-model';
 import { judgedFrom, storedOf, strideOf } from './fit-schedule';
@@ -90,6 +91,21 @@ function decimate(history: StoredReport['history']): StoredReport['history'] {
   return history.filter((_, i) => (last - i) % 2 === 0);
 }
 
+/** The scan's modes of a fit's own posterior, and the names of its masses. */
+export interface ScannedModes {
+  scan: ModeScan;
+  masses: readonly string[];
+}
+
+const presentMode = ({ mu, lo, hi, weight, mcse, scanWeight }: ModeRow): Mode => ({
+  mu,
+  lo,
+  hi,
+  weight: orNull(weight),
+  mcse: orNull(mcse),
+  scanWeight: orNull(scanWeight),
+});
+
 export interface Look {
   warmup: number;
   /** Recorded draws a replica, warm-up included. */
@@ -99,7 +115,7 @@ export interface Look {
 
 /**
  * Looks at a fit: diagnostics of every sampled parameter and derived quantity over exactly the draws that are served, and
- * the gate. An angle's numbers are of its coordinate in (−π, π]. A derived quantity that is one number throughout (because what
+ * the gate, which wants the shares of the modes to be those of the scan too, where there is one. An angle's numbers are of its coordinate in (−π, π]. A derived quantity that is one number throughout (because what
  * it depends on is fixed) is reported but not judged: it is a function of parameters that are judged themselves.
  */
 export function lookAt(
@@ -107,6 +123,7 @@ export function lookAt(
   columns: FitColumns,
   look: Look,
   before: StoredReport,
+  scanned: ScannedModes | null = null,
 ): StoredReport {
   const kept = Math.max(0, look.draws - look.warmup);
   const chains = draws.chains(kept);
@@ -121,6 +138,14 @@ export function lookAt(
     look.target,
     judgedFrom,
   );
+  const table =
+    scanned && kept > 0
+      ? modeTable(
+          scanned.scan,
+          scanned.masses.map((name) => chains.get(name) ?? []),
+        )
+      : [];
+  const apart = scanned && kept >= judgedFrom ? judgeModes(scanned.scan, table) : [];
   const entry = {
     draws: kept,
     rhat: found.map(({ diagnosis }) => orNull(diagnosis.rhat)),
@@ -131,7 +156,7 @@ export function lookAt(
     draws: look.draws,
     diagnostics: found.map(({ name, diagnosis }) => present(name, derived.has(name), diagnosis)),
     history: kept > 0 ? decimate([...earlier, entry]) : [],
-    gate,
+    gate: { met: gate.met && apart.length === 0, reasons: [...gate.reasons, ...apart] },
     wanted: expectedDraws(
       kept,
       judged.map(({ diagnosis }) => diagnosis),
@@ -141,5 +166,6 @@ export function lookAt(
     ladder: before.ladder,
     logEvidence: before.logEvidence,
     noEvidence: before.noEvidence,
+    modes: table.map(presentMode),
   };
 }

@@ -2,6 +2,7 @@ import { QueryTypes } from 'sequelize';
 import { MeasurementVersion, Scan } from '@/models';
 import { database } from '@/lib/db';
 import { scanRequestSchema } from '@/lib/schemas';
+import { storedNumbers } from './fit-model';
 import type { FinishedScan, ScanJobModel } from './scan-model';
 
 /** Who may write a scan: as with fits, a worker takes epoch + 1 with a lease, and every later write says `AND epoch = ?`. */
@@ -35,12 +36,11 @@ export async function claimScan(scanId: string, leaseMs: number): Promise<Claime
       transaction,
       rejectOnEmpty: true,
     });
-    const { points, covariance, hasBinEdges, mockCount } = version;
     return {
       scanId,
       epoch: scan.epoch,
       model: {
-        numbers: { rows: version.rows, hasBinEdges, mockCount, points, covariance },
+        numbers: storedNumbers(version),
         request: scanRequestSchema.parse(scan.request),
         seed: `nulls/${version.sha256}`,
       },

@@ -19,6 +19,7 @@ import { recordEvent } from './audit';
 import { canonicalSha256 } from './canonical-json';
 import { refusingFaults } from './inference-faults';
 import { refuseArchived } from './notebook-archive';
+import { storedNumbers } from './fit-model';
 import { emailsOf } from './people';
 import { program } from './program';
 import { checkScannable, scanSpecs, type ScanSpecs } from './scan-model';
@@ -107,7 +108,7 @@ async function request(access: Access, body: StartScan): Promise<Scan> {
       program: program.program,
     });
     const specs = refusingFaults(() => {
-      const found = scanSpecs(version, parsed);
+      const found = scanSpecs(storedNumbers(version), parsed);
       checkScannable(found);
       return found;
     });

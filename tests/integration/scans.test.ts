@@ -9,7 +9,7 @@ import { scanSchema, trialsSchema, type Scan } from '@/lib/schemas';
 import { claimScan, commitScan, renewScan } from '@/lib/services/scan-lease';
 import { performScan } from '@/lib/services/scan-model';
 import { Measurement, Scan as ScanRow } from '@/models';
-import { call, closeConnections, errorOf } from './harness';
+import { call, closeConnections, createMember, errorOf } from './harness';
 import {
   background,
   buildWorker,
@@ -95,7 +95,7 @@ describe('scans', () => {
     await scanned(notebook, { muMin: 1, muMax: 2, nulls: 100 });
     const refused = await call(deleteNotebook, {
       method: 'DELETE',
-      token: desk.token,
+      token: (await createMember(desk.group, 'lead')).token,
       params: { id: notebook },
     });
     expect((await errorOf(refused)).status).toBe(409);

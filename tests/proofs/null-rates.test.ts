@@ -48,7 +48,7 @@ describe('nulls', () => {
     {
       name: 'null-rates',
       claim:
-        'a 5 % threshold from one set of nulls is exceeded by 5 % of another, with known covariance and with mocks; upcrossings give the simulated global p',
+        'a 5 % threshold from one set of nulls is exceeded by 5 % of another, with known covariance and with mocks; upcrossings give the simulated global p with free phases and bound it with locked ones',
       unit: 'simulated nulls, each of two sets',
       gate: 1_500,
       full: 20_000,
@@ -74,16 +74,18 @@ describe('nulls', () => {
                 );
               })
             : [];
-        return { name, height, rate, upcrossingsOverSimulation: ratios };
+        return { name, freedom, height, rate, upcrossingsOverSimulation: ratios };
       });
       record({ found });
-      for (const { name, rate, upcrossingsOverSimulation } of found) {
+      for (const { name, freedom, rate, upcrossingsOverSimulation } of found) {
         expect(Math.abs(rate - 0.05), name).toBeLessThan(3.5 * Math.sqrt(0.0475 * (2 / size)));
         // Widened by the error of a small sample's quantile: √((1 − p)/(p n)) at p = 0.01, beyond that of the full size.
         const wider = 3 * (Math.sqrt(0.99 / (0.01 * size)) - Math.sqrt(0.99 / (0.01 * full)));
         for (const ratio of upcrossingsOverSimulation) {
           expect(ratio, name).toBeGreaterThan(0.85 / (1 + wider));
-          expect(ratio, name).toBeLessThan(1.2 * (1 + wider));
+          // A locked phase oscillates faster in μ than its envelope: one excursion crosses several times, and the mean number
+          // of crossings is more than the probability of any.
+          if (freedom === 2) expect(ratio, name).toBeLessThan(1.2 * (1 + wider));
         }
       }
     },

@@ -21,3 +21,7 @@ export { reachOf, runScan } from './run-scan';
 export type { PlaneOutcome, ScanOutcome, ScanRequest } from './run-scan';
 export { jointSignificance } from './trials';
 export type { JointSignificance, Look } from './trials';
+export { edgesBetweenModes, scanModes } from './modes';
+export type { ModeScan, ScanMode } from './modes';
+export { judgeModes, modeTable } from './mode-table';
+export type { ModeRow } from './mode-table';
