@@ -13,6 +13,7 @@ import type { Fit, Measurement, Notebook } from '@/lib/schemas';
 import { fieldCount } from '@/lib/templates';
 import type { FigureDraws } from './draws';
 import { MarginalTable } from './marginal-table';
+import { ModesTable } from './modes-table';
 import { Corner } from './posterior-corner';
 import { BestFit, posteriorSentence } from './posterior-figures';
 import type { Quantity } from './quantities';
@@ -103,6 +104,7 @@ export function PosteriorSection(props: PosteriorSectionProps) {
           {fit.diagnostics.length ? (
             <MarginalTable fit={fit} quantities={quantities} number={2} truth={truth} />
           ) : null}
+          <ModesTable fit={fit} />
           {draws && sameVersion ? (
             <BestFit fit={fit} draws={draws} measurement={measurement} number={6} />
           ) : null}

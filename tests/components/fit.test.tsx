@@ -3,6 +3,7 @@ import { describe, expect, it } from 'vitest';
 import { bestIndex, byReplica, drawValues, keptColumn, someKept, unpackDraws } from '@/components/fit/draws';
 import { acceptanceInWords, announcement, doneShare, gateSentence } from '@/components/fit/live-figures';
 import { MarginalTable } from '@/components/fit/marginal-table';
+import { ModesTable } from '@/components/fit/modes-table';
 import { evidenceSentence, ladderSentence, MovesTable } from '@/components/fit/moves-table';
 import { fixedValues, posteriorSentence } from '@/components/fit/posterior-figures';
 import { judged, meetsGate, quantitiesOf } from '@/components/fit/quantities';
@@ -188,5 +189,20 @@ describe('packed draws', () => {
 
   it('are refused where bytes are missing', () => {
     expect(() => unpackDraws(bytes.buffer.slice(0, -4))).toThrow(/which isn't what their head says/);
+  });
+});
+
+describe('the modes', () => {
+  it('stand with their share of the draws beside that by the scan, and no value where there is none', () => {
+    const mode = { mu: [2.3], lo: [0.5], hi: [11.08], weight: 0.551, mcse: 0.004, scanWeight: 0.548 };
+    const html = renderToStaticMarkup(
+      <ModesTable
+        fit={{ modes: [mode, { ...mode, lo: [11.08], hi: [22.2], weight: 0, scanWeight: null }] }}
+      />,
+    );
+    expect(html).toMatch(/0\.50 to 11\.08/);
+    expect(html).toMatch(/0\.551.*0\.004.*0\.548/);
+    expect(html).toMatch(/11\.08 to 22\.20.*0\.000.*–/);
+    expect(renderToStaticMarkup(<ModesTable fit={{ modes: [] }} />)).toBe('');
   });
 });
