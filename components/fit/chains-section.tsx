@@ -25,6 +25,7 @@ import type { Quantity } from './quantities';
 import { StartForm, type FitDefaults } from './start-form';
 import { Traces } from './traces';
 import type { Connection } from './use-page-events';
+import { figureNumber, sectionNumber } from '@/components/notebook/sections';
 
 export interface ChainsSectionProps {
   notebook: Notebook;
@@ -125,7 +126,7 @@ function Margin({ fit }: { fit: Fit }) {
   );
 }
 
-/** Section 4: settings of the sampler, and a fit as it goes. */
+/** Settings of the sampler, and a fit as it goes. */
 export function ChainsSection(props: ChainsSectionProps) {
   const { notebook, fit, draws, connection, quantities, unsaved, fold } = props;
   const mayStart = notebook.may.includes('fit.start');
@@ -137,7 +138,7 @@ export function ChainsSection(props: ChainsSectionProps) {
   return (
     <Section
       id="chains"
-      number={4}
+      number={sectionNumber('chains')}
       title="Chains"
       state={chainsState(fit, notebook)}
       fold={{ ...fold, sentence: chainsSentence(fit) }}
@@ -164,7 +165,9 @@ export function ChainsSection(props: ChainsSectionProps) {
               <MovesTable fit={fit} quantities={quantities} />
             </>
           ) : null}
-          {draws ? <Traces fit={fit} draws={draws} quantities={quantities} number={4} /> : null}
+          {draws ? (
+            <Traces fit={fit} draws={draws} quantities={quantities} number={figureNumber('traces')} />
+          ) : null}
         </>
       ) : (
         <p>

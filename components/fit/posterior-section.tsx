@@ -18,6 +18,7 @@ import { Corner } from './posterior-corner';
 import { BestFit, posteriorSentence } from './posterior-figures';
 import type { Quantity } from './quantities';
 import { SampleDownloads } from './sample-downloads';
+import { figureNumber, sectionNumber } from '@/components/notebook/sections';
 
 export interface PosteriorSectionProps {
   notebook: Notebook;
@@ -60,7 +61,7 @@ function Cautions({ fit }: { fit: Fit }) {
   );
 }
 
-/** Section 5: what the draws say. */
+/** What the draws say. */
 export function PosteriorSection(props: PosteriorSectionProps) {
   const { notebook, measurement, fit, draws, quantities, fold } = props;
   const state = posteriorState(fit, notebook);
@@ -70,7 +71,7 @@ export function PosteriorSection(props: PosteriorSectionProps) {
   return (
     <Section
       id="posterior"
-      number={5}
+      number={sectionNumber('posterior')}
       title="Posterior"
       state={state}
       fold={{ ...fold, sentence: posteriorFoldSentence(fit, notebook.blind) }}
@@ -88,25 +89,36 @@ export function PosteriorSection(props: PosteriorSectionProps) {
             Masses, amplitudes and every figure of data against model are withheld until the measurement is
             unblinded.
           </p>
-          <WithheldFigure number={5} label="Posterior" caption="Posterior, after unblinding." />
+          <WithheldFigure
+            number={figureNumber('corner')}
+            label="Posterior"
+            caption="Posterior, after unblinding."
+          />
         </>
       ) : !some ? (
         <p>
-          Waits for section 4: the posterior stands here as soon as a fit has kept its first draws, and moves
-          while it samples.
+          Waits for section {sectionNumber('chains')}: the posterior stands here as soon as a fit has kept its
+          first draws, and moves while it samples.
         </p>
       ) : (
         <>
           <p>{posteriorSentence(fit)}</p>
           {draws ? (
-            <Corner key={fit.id} fit={fit} draws={draws} quantities={quantities} number={5} truth={truth} />
+            <Corner
+              key={fit.id}
+              fit={fit}
+              draws={draws}
+              quantities={quantities}
+              number={figureNumber('corner')}
+              truth={truth}
+            />
           ) : null}
           {fit.diagnostics.length ? (
             <MarginalTable fit={fit} quantities={quantities} number={2} truth={truth} />
           ) : null}
           <ModesTable fit={fit} />
           {draws && sameVersion ? (
-            <BestFit fit={fit} draws={draws} measurement={measurement} number={6} />
+            <BestFit fit={fit} draws={draws} measurement={measurement} number={figureNumber('best-fit')} />
           ) : null}
           <SampleDownloads fit={fit} />
           <Cautions fit={fit} />

@@ -10,6 +10,7 @@ import { capital, counted, inWords } from '@/components/words/counts';
 import type { CreateNotebook, MeasurementSummary, NotebookCreated } from '@/lib/schemas';
 import { templateCatalogue } from '@/lib/templates';
 import { templateTitle } from './template-words';
+import { sectionNumber } from './sections';
 
 const catalogue = templateCatalogue().map(({ id, title, summary }) => ({ id, title, summary }));
 
@@ -82,7 +83,11 @@ export function CreateNotebookForm({ groupId, measurements, measurementId }: Cre
         }))}
         error={detailAt(error, 'measurement')}
         onChange={(event) => setMeasurement(event.target.value)}
-        help={measured ? `${capital(counted(measured.rows, 'bin'))}; cuts come in section 1.` : undefined}
+        help={
+          measured
+            ? `${capital(counted(measured.rows, 'bin'))}; cuts come in section ${sectionNumber('measurement')}.`
+            : undefined
+        }
       />
       <SelectField
         label="Template"

@@ -10,6 +10,7 @@ import { keptRows } from './kept-points';
 import { likelihoods } from './likelihood-words';
 import type { TemplateSettings } from './prediction';
 import { priorInWords } from './prior-words';
+import { sectionNumber } from './sections';
 
 /** "36 of 40 bins, covariance from 600 mocks, likelihood t with matched prior." */
 export function measurementSentence(
@@ -42,7 +43,7 @@ function parametersOf({ id, options }: TemplateSettings): readonly ParameterDecl
 /** "Nine parameters, of which one is fixed; mass 1 uniform 1 to 12." */
 export function priorsSentence(template: TemplateSettings, priors: Readonly<Record<string, Prior>>): string {
   const parameters = parametersOf(template);
-  if (!parameters.length) return 'Waits for section 2.';
+  if (!parameters.length) return `Waits for section ${sectionNumber('template')}.`;
   const of = (declaration: ParameterDeclaration) => priors[declaration.name] ?? declaration.defaultPrior;
   const fixed = parameters.filter((each) => of(each).kind === 'fixed').length;
   const share = fixed ? `, of which ${fixed === 1 ? 'one is' : `${inWords(fixed)} are`} fixed` : '';
@@ -64,6 +65,6 @@ export function chainsSentence(fit: Fit | null): string {
 /** What the posterior is made from; nothing of a blind measurement. */
 export function posteriorFoldSentence(fit: Fit | null, blind: boolean): string {
   if (blind) return 'Withheld until the measurement is unblinded.';
-  if (!fit || fit.progress.draws === 0) return 'Waits for section 4.';
+  if (!fit || fit.progress.draws === 0) return `Waits for section ${sectionNumber('chains')}.`;
   return posteriorSentence(fit);
 }

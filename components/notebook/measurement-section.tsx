@@ -24,6 +24,7 @@ import { SectionRecord } from './section-record';
 import { sectionState } from './section-states';
 import type { SectionFold } from './use-folds';
 import { useSectionSave, type NotebookState } from './use-notebook';
+import { figureNumber, sectionNumber } from './sections';
 
 export interface MeasurementSettings {
   cuts: Notebook['cuts'];
@@ -111,7 +112,7 @@ function settingsInWords({ cuts, likelihood }: MeasurementSettings) {
   };
 }
 
-/** Section 1: which data, cut how, with which likelihood. */
+/** Which data, cut how, with which likelihood. */
 export function MeasurementSection({ state, measurement, draft, fold }: MeasurementSectionProps) {
   const { notebook } = state;
   const section = useSectionSave(state);
@@ -128,7 +129,7 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
   return (
     <Section
       id="measurement"
-      number={1}
+      number={sectionNumber('measurement')}
       title="Measurement"
       state={sectionState(draft.changed, notebook)}
       fold={{ ...fold, sentence: measurementSentence(measurement, draft.value) }}
@@ -148,7 +149,7 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
       <MeasurementFigure
         measurement={measurement}
         kept={rows}
-        number={1}
+        number={figureNumber('measurement')}
         caption={
           <>
             {capital(counted(rows.length, 'bin'))} of {notebook.measurement.name} against <Sym base="κ" />
@@ -201,7 +202,11 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
           }}
         />
       ) : null}
-      <RequestMessage error={section.error} title="Section 1 was not saved" shown={['cuts', 'likelihood']} />
+      <RequestMessage
+        error={section.error}
+        title={`Section ${sectionNumber('measurement')} was not saved`}
+        shown={['cuts', 'likelihood']}
+      />
     </Section>
   );
 }

@@ -25,7 +25,8 @@ import { MeasurementSection } from './measurement-section';
 import { NotebookHead } from './notebook-head';
 import { PriorsSection, type Priors } from './priors-section';
 import { useDraft } from './section-draft';
-import { chainsState, contentsEntries, posteriorState, sectionState, type SectionId } from './section-states';
+import { chainsState, contentsEntries, posteriorState, sectionState } from './section-states';
+import { sectionNumber, type SectionId } from './sections';
 import { TemplateSection, tryPrediction, type NamedPoint } from './template-section';
 import { FoldScript } from './fold-script';
 import { foldKey, useFolds, type SectionFold } from './use-folds';
@@ -173,7 +174,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
         fold={fold('posterior')}
       />
       <StatementSection
-        number={6}
+        number={sectionNumber('statement')}
         state={state}
         statement={statement}
         sectionState={states.statement}

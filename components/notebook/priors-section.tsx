@@ -27,6 +27,7 @@ import { SectionRecord } from './section-record';
 import { sectionState } from './section-states';
 import type { SectionFold } from './use-folds';
 import { useSectionSave, type NotebookState } from './use-notebook';
+import { figureNumber, sectionNumber } from './sections';
 
 export type Priors = Readonly<Record<string, Prior>>;
 
@@ -148,7 +149,7 @@ function usePredictive(prediction: Prediction | null, priors: Priors, sound: boo
   }, [prediction, settled, sound]);
 }
 
-/** Section 3: what is believed before the data, and what that claims about them. */
+/** What is believed before the data, and what that claims about them. */
 export function PriorsSection(props: PriorsSectionProps) {
   const { state, measurement, points, prediction, draft, fold } = props;
   const { notebook } = state;
@@ -170,7 +171,7 @@ export function PriorsSection(props: PriorsSectionProps) {
   return (
     <Section
       id="priors"
-      number={3}
+      number={sectionNumber('priors')}
       title="Priors"
       state={sectionState(draft.changed, notebook)}
       fold={{ ...fold, sentence: priorsSentence(notebook.template, draft.value) }}
@@ -227,10 +228,10 @@ export function PriorsSection(props: PriorsSectionProps) {
               }}
             />
           ) : null}
-          <RequestMessage error={section.error} title="Section 3 was not saved" />
+          <RequestMessage error={section.error} title={`Section ${sectionNumber('priors')} was not saved`} />
           {band ? (
             <PointsFigure
-              number={3}
+              number={figureNumber('prior-predictive')}
               label="Range of predictions of the priors over the points"
               fileName="prior-predictive"
               points={
@@ -256,7 +257,9 @@ export function PriorsSection(props: PriorsSectionProps) {
           ) : null}
         </>
       ) : (
-        <p className="text-ink-2">The priors stand here once section 2 can be evaluated.</p>
+        <p className="text-ink-2">
+          The priors stand here once section {sectionNumber('template')} can be evaluated.
+        </p>
       )}
     </Section>
   );

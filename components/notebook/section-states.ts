@@ -2,6 +2,7 @@ import type { ContentsEntry } from '@/components/ui/contents';
 import type { State } from '@/components/ui/state-word';
 import { fitState } from '@/components/fit/fit-words';
 import { settingSections, type Fit, type FitStatus, type Notebook } from '@/lib/schemas';
+import { sectionIds, sectionNumber, sectionTitle, type SectionId } from './sections';
 
 /** A form that is being changed is being set; what is saved is settled. */
 export function sectionState(changed: boolean, notebook: Pick<Notebook, 'may'>): State {
@@ -37,15 +38,13 @@ export function posteriorState(
   notebook: Pick<Notebook, 'record' | 'blind'>,
 ): State {
   if (notebook.blind) return { kind: 'blind', word: 'blind' };
-  if (!fit || fit.progress.draws === 0) return { kind: 'wait', word: 'waits for 4' };
+  if (!fit || fit.progress.draws === 0) return { kind: 'wait', word: `waits for ${sectionNumber('chains')}` };
   if (isOutdated(fit.revision, notebook)) return { kind: 'old', word: `of revision ${fit.revision}` };
   return fit.status === 'converged'
     ? { kind: 'ok', word: `of fit ${fit.number}` }
     : { kind: 'open', word: `of fit ${fit.number}, so far` };
 }
 
-export const sectionIds = ['measurement', 'template', 'priors', 'chains', 'posterior', 'statement'] as const;
-export type SectionId = (typeof sectionIds)[number];
 export type SectionStates = Record<SectionId, State>;
 
 /**
@@ -58,12 +57,10 @@ export function currentSection(states: SectionStates): SectionId {
 }
 
 export function contentsEntries(states: SectionStates): ContentsEntry[] {
-  return [
-    { href: '#measurement', number: 1, title: 'Measurement', state: states.measurement },
-    { href: '#template', number: 2, title: 'Template', state: states.template },
-    { href: '#priors', number: 3, title: 'Priors', state: states.priors },
-    { href: '#chains', number: 4, title: 'Chains', state: states.chains },
-    { href: '#posterior', number: 5, title: 'Posterior', state: states.posterior },
-    { href: '#statement', number: 6, title: 'Statement', state: states.statement },
-  ];
+  return sectionIds.map((id) => ({
+    href: `#${id}`,
+    number: sectionNumber(id),
+    title: sectionTitle(id),
+    state: states[id],
+  }));
 }

@@ -30,6 +30,7 @@ import { TemplateSliders } from './template-sliders';
 import { templateSides } from './option-words';
 import type { SectionFold } from './use-folds';
 import { useSectionSave, type NotebookState } from './use-notebook';
+import { figureNumber, sectionNumber } from './sections';
 
 /** A point of parameter space that sliders can be set to. */
 export interface NamedPoint {
@@ -95,10 +96,14 @@ function Explore({
   return (
     <>
       {measurement.blind ? (
-        <WithheldFigure number={2} label="Prediction over the points" caption="Prediction over the points." />
+        <WithheldFigure
+          number={figureNumber('template')}
+          label="Prediction over the points"
+          caption="Prediction over the points."
+        />
       ) : (
         <PointsFigure
-          number={2}
+          number={figureNumber('template')}
           label="Prediction at the values of the sliders over the points"
           fileName="prediction"
           points={{
@@ -156,7 +161,7 @@ function Explore({
   );
 }
 
-/** Section 2: which template, its formula, and what it predicts over the points. */
+/** Which template, its formula, and what it predicts over the points. */
 export function TemplateSection(props: TemplateSectionProps) {
   const { state, measurement, points, draft, drawn, best, fold } = props;
   const { notebook } = state;
@@ -174,7 +179,7 @@ export function TemplateSection(props: TemplateSectionProps) {
   return (
     <Section
       id="template"
-      number={2}
+      number={sectionNumber('template')}
       title="Template"
       state={sectionState(draft.changed, notebook)}
       fold={{ ...fold, sentence: templateSentence(settings) }}
@@ -214,7 +219,11 @@ export function TemplateSection(props: TemplateSectionProps) {
           }}
         />
       ) : null}
-      <RequestMessage error={section.error} title="Section 2 was not saved" shown={['template.id']} />
+      <RequestMessage
+        error={section.error}
+        title={`Section ${sectionNumber('template')} was not saved`}
+        shown={['template.id']}
+      />
       <Subheading>What it predicts</Subheading>
       {'prediction' in tried ? (
         <Explore

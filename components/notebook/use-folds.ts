@@ -3,7 +3,8 @@
 import { useEffect, useEffectEvent, useState, useSyncExternalStore } from 'react';
 import { useNarrow } from '@/components/figures/figure';
 import type { Fold, FoldState } from '@/components/ui/fold';
-import { currentSection, sectionIds, type SectionId, type SectionStates } from './section-states';
+import { currentSection, type SectionStates } from './section-states';
+import { sectionIds, type SectionId } from './sections';
 
 /** What a reader chose, section by section; a section that was never touched isn't in it. */
 export type FoldChoice = Partial<Record<SectionId, 'open' | 'folded'>>;
