@@ -12,16 +12,16 @@ import { templateCatalogue } from '@/lib/templates';
 import { templateTitle } from './template-words';
 import { sectionNumber } from './sections';
 
-const catalogue = templateCatalogue().map(({ id, title, summary }) => ({ id, title, summary }));
+const catalogue = templateCatalogue();
 
-/** Fields that each template offers here; a notebook can change them later. */
-const fieldChoices: Record<string, readonly number[]> = {
-  background: [],
-  'free-phase': [1, 2, 3, 4],
-  'locked-squeezed': [1, 2, 3, 4],
-  'locked-exact': [1, 2, 3],
-  light: [1, 2, 3],
-};
+/** Numbers of fields that a template declares; none for the smooth background. A notebook can change it later. */
+function fieldChoices(id: string): number[] {
+  const option = catalogue
+    .find((template) => template.id === id)
+    ?.options.find(({ name }) => name === 'fields');
+  if (option?.kind !== 'integer' && option?.kind !== 'fields') return [];
+  return Array.from({ length: option.max - option.min + 1 }, (_, i) => option.min + i);
+}
 
 export interface CreateNotebookFormProps {
   groupId: string;
@@ -42,7 +42,7 @@ export function CreateNotebookForm({ groupId, measurements, measurementId }: Cre
   const [error, setError] = useState<RequestError | null>(null);
   const [opening, setOpening] = useState(false);
 
-  const choices = fieldChoices[template] ?? [];
+  const choices = fieldChoices(template);
   const count = choices.includes(fields) ? fields : (choices[choices.length - 1] ?? 0);
   const measured = measurements.find(({ id }) => id === measurement);
   const title = ownTitle ?? `${templateTitle(template, count)} in ${measured?.name ?? 'a measurement'}`;

@@ -4,8 +4,10 @@ import { PriorSketch } from '@/components/figures/prior-sketch';
 import { SelectField } from '@/components/ui/field';
 import { NumberField } from '@/components/ui/number-field';
 import { Sym, symbolName } from '@/components/ui/sym';
+import { plain } from '@/components/words/counts';
+import type { OrderedMarginal } from '@/lib/inference/ordered-masses';
 import { isScalarPrior, sketchPrior } from '@/lib/inference/priors';
-import { logIsotropicDensity, type ParameterDeclaration, type Prior } from '@/lib/templates';
+import { isotropicMarginal, type ParameterDeclaration, type Prior } from '@/lib/templates';
 import { priorEnds } from './prior-values';
 import { convertPrior, fieldWords, kindsFor, priorFields, priorInWords, priorKinds } from './prior-words';
 
@@ -85,8 +87,19 @@ export function PriorFields({
 /** Seven figures are enough to read; the stored number keeps all of its own unless it is written over. */
 const shown = (value: number) => Number(value.toPrecision(7));
 
-/** The density on a grid; null for what has none to draw. */
-export function sketchOf(prior: Prior, angles: number): { x: Float64Array; density: Float64Array } | null {
+/** One mixing angle among those that share the isotropic prior. */
+export interface AngleOf {
+  /** Number of fields. */
+  fields: number;
+  /** Which of their fields − 1 angles, from 0. */
+  index: number;
+}
+
+/** The density on a grid, of an angle with the others integrated out; null for what has none to draw. */
+export function sketchOf(
+  prior: Prior,
+  angle: AngleOf | null,
+): { x: Float64Array; density: Float64Array } | null {
   if (prior.kind === 'fixed') return null;
   if (isScalarPrior(prior)) {
     try {
@@ -96,25 +109,25 @@ export function sketchOf(prior: Prior, angles: number): { x: Float64Array; densi
       return null;
     }
   }
+  if (angle === null) return null;
   const x = Float64Array.from({ length: 65 }, (_, i) => (i / 64) * (Math.PI / 2));
-  // Of several angles the density depends on the last; the others' is flat.
-  return {
-    x,
-    density: x.map((angle) => Math.exp(logIsotropicDensity(angles > 1 ? [Math.PI / 4, angle] : [angle]))),
-  };
+  return { x, density: x.map((at) => isotropicMarginal(angle.fields, angle.index, at)) };
 }
 
 export function PriorDrawing({
   declaration,
   prior,
-  angles,
+  angle,
+  induced,
 }: {
   declaration: ParameterDeclaration;
   prior: Prior;
-  /** Number of mixing angles that share the isotropic prior; 1 where this one's density is flat. */
-  angles: number;
+  /** Where it stands among the mixing angles; null for what is none. */
+  angle: AngleOf | null;
+  /** What order leaves of a mass' prior. */
+  induced: OrderedMarginal | null;
 }) {
-  const sketch = sketchOf(prior, angles);
+  const sketch = sketchOf(prior, angle);
   if (!sketch)
     return (
       <span className="font-controls text-note text-ink-2">{prior.kind === 'fixed' ? 'one value' : ''}</span>
@@ -123,8 +136,24 @@ export function PriorDrawing({
     <PriorSketch
       x={sketch.x}
       density={sketch.density}
+      induced={induced ? within(induced, sketch.x) : undefined}
       field={declaration.role === 'mass' ? declaration.field : null}
-      label={`Prior of ${symbolName(declaration.symbol)}, ${priorInWords(prior, declaration)}`}
+      label={`Prior of ${symbolName(declaration.symbol)}, ${priorInWords(prior, declaration)}${induced ? `; in order its median is ${plain(medianOf(induced), 3)}` : ''}`}
     />
   );
+}
+
+/** The part of an induced marginal that the stated density's drawing has room for: beyond it there is no density. */
+function within({ x, density }: OrderedMarginal, room: Float64Array): { x: number[]; density: number[] } {
+  const [lo, hi] = [room[0], room[room.length - 1]];
+  const inside = Array.from(x.keys()).filter((i) => x[i] >= lo && x[i] <= hi);
+  return { x: inside.map((i) => x[i]), density: inside.map((i) => density[i]) };
+}
+
+/** Where its distribution function passes one half. */
+function medianOf({ x, cdf }: OrderedMarginal): number {
+  const above = cdf.findIndex((value) => value >= 0.5);
+  if (above <= 0) return x[0];
+  const part = (0.5 - cdf[above - 1]) / (cdf[above] - cdf[above - 1]);
+  return x[above - 1] + part * (x[above] - x[above - 1]);
 }

@@ -5,7 +5,8 @@ import {
   priorSupport,
   type ScalarPrior,
 } from '@/lib/inference/priors';
-import type { ParameterDeclaration, Prior } from '@/lib/templates';
+import { massChains } from '@/lib/inference/mass-order';
+import type { CompiledTemplate, ParameterDeclaration, Prior } from '@/lib/templates';
 
 /** Ends between which a parameter's slider runs: the prior's, or mean ± 4 sd where it has none. */
 export function priorEnds(prior: Prior, declaration: ParameterDeclaration): [number, number] {
@@ -41,31 +42,33 @@ const sized = new Set(['quadrature', 'amplitude', 'coupling']);
  * oscillation starts at its upper quartile where the median is zero, because a flat line shows nothing.
  */
 export function startValues(
-  parameters: readonly ParameterDeclaration[],
+  { parameters, blocks }: Pick<CompiledTemplate, 'parameters' | 'blocks'>,
   priors: Readonly<Record<string, Prior>>,
 ): Float64Array {
-  const masses = parameters.filter(({ role }) => role === 'mass');
-  const x = Float64Array.from(parameters, (declaration) => {
+  const chains = massChains(blocks.map(({ kind }) => kind)).map((chain) => chain.map((f) => blocks[f].mass));
+  const x = Float64Array.from(parameters, (declaration, i) => {
     const prior = priors[declaration.name] ?? declaration.defaultPrior;
     if (prior.kind === 'fixed') return prior.value;
     if (!isScalarPrior(prior)) return Math.PI / 4;
     if (declaration.role === 'mass') {
-      return priorQuantile(prior, (masses.indexOf(declaration) + 1) / (masses.length + 1));
+      const own = chains.find((chain) => chain.includes(i)) ?? [i];
+      return priorQuantile(prior, (own.indexOf(i) + 1) / (own.length + 1));
     }
     const median = priorQuantile(prior, 0.5);
     if (declaration.role === 'quadrature' && declaration.name.startsWith('b')) return tidy(median);
     return sized.has(declaration.role) && Math.abs(median) < 1e-9 ? priorQuantile(prior, 0.75) : tidy(median);
   });
-  return ascending(x, parameters);
+  return inOrder(x, chains);
 }
 
 const tidy = (value: number): number => (Math.abs(value) < 1e-9 ? 0 : value);
 
-/** Masses in order, as the template counts its fields. */
-function ascending(x: Float64Array, parameters: readonly ParameterDeclaration[]): Float64Array {
-  const places = parameters.flatMap(({ role }, i) => (role === 'mass' ? [i] : []));
-  const sorted = places.map((i) => x[i]).sort((a, b) => a - b);
-  places.forEach((place, i) => (x[place] = sorted[i]));
+/** Masses of each kind in order, as the template counts its fields. */
+function inOrder(x: Float64Array, chains: readonly (readonly number[])[]): Float64Array {
+  for (const places of chains) {
+    const sorted = places.map((i) => x[i]).sort((a, b) => a - b);
+    places.forEach((place, i) => (x[place] = sorted[i]));
+  }
   return x;
 }
 

@@ -4,13 +4,15 @@ import { useDeferredValue, useMemo } from 'react';
 import { PointsFigure } from '@/components/figures/points-figure';
 import { RequestMessage } from '@/components/api/request-message';
 import { Message } from '@/components/ui/message';
+import { useShown } from '@/components/ui/fold';
 import { Section } from '@/components/ui/section';
 import { Num } from '@/components/ui/num';
 import { Sym } from '@/components/ui/sym';
 import { StateWord } from '@/components/ui/state-word';
 import { DataTable } from '@/components/ui/table';
 import { counted, inWords, plain } from '@/components/words/counts';
-import { logOrderProbability, type MassPrior } from '@/lib/inference/ordered-masses';
+import { inducedMarginals, massChains, MassOrder } from '@/lib/inference/mass-order';
+import type { MassPrior, OrderedMarginal } from '@/lib/inference/ordered-masses';
 import { priorPredictive, type PredictiveBand } from '@/lib/inference/prior-predictive';
 import type { Measurement } from '@/lib/schemas';
 import type { CompiledTemplate, Prior } from '@/lib/templates';
@@ -56,6 +58,7 @@ function PriorsTable({
   editable: boolean;
 }) {
   const angles = template.parameters.filter(({ role }) => role === 'angle');
+  const induced = useInduced(template, draft.value, faults);
   const change = (name: string, prior: Prior) => {
     const next: Record<string, Prior> = { ...draft.value, [name]: prior };
     // The isotropic prior is one density of all angles: they take it, and leave it, together.
@@ -108,7 +111,12 @@ function PriorsTable({
               <PriorDrawing
                 declaration={declaration}
                 prior={prior}
-                angles={angles.length > 1 && name === angles[angles.length - 1].name ? angles.length : 1}
+                angle={
+                  declaration.role === 'angle'
+                    ? { fields: angles.length + 1, index: angles.indexOf(declaration) }
+                    : null
+                }
+                induced={induced.get(name) ?? null}
               />
             ),
           },
@@ -125,16 +133,61 @@ export function ownPriors({ value, origin }: Pick<Draft<Priors>, 'value' | 'orig
   );
 }
 
-/** Says what order does to the joint prior. */
+/** The priors of the fields' masses, in the order of the fields. */
+const massPriors = (template: CompiledTemplate, priors: Priors): MassPrior[] =>
+  template.blocks.map(({ mass }) => {
+    const { name, defaultPrior } = template.parameters[mass];
+    return (priors[name] ?? defaultPrior) as MassPrior;
+  });
+
+/** What order leaves of the masses' priors, by name; nothing while a prior has to be mended. */
+function useInduced(
+  template: CompiledTemplate,
+  priors: Priors,
+  faults: ReturnType<typeof findPriorFaults>,
+): ReadonlyMap<string, OrderedMarginal> {
+  const sound = faults.joint === null && Object.keys(faults.byParameter).length === 0;
+  // Other priors are typed into without these being computed again.
+  const key = JSON.stringify(massPriors(template, priors));
+  return useMemo(() => {
+    if (!sound) return new Map<string, OrderedMarginal>();
+    const marginals = inducedMarginals(
+      template.blocks.map(({ kind }) => kind),
+      JSON.parse(key) as MassPrior[],
+    );
+    return new Map(
+      template.blocks.flatMap(({ mass }, field) => {
+        const marginal = marginals[field];
+        return marginal ? [[template.parameters[mass].name, marginal] as const] : [];
+      }),
+    );
+  }, [template, key, sound]);
+}
+
+/** Says what order does to the joint prior, and what the two curves of a mass are. */
 function OrderNote({ template, priors }: { template: CompiledTemplate; priors: Priors }) {
-  const masses = template.parameters.filter(({ role }) => role === 'mass');
-  if (masses.length < 2) return null;
-  const given = masses.map(({ name, defaultPrior }) => (priors[name] ?? defaultPrior) as MassPrior);
-  const z = Math.exp(logOrderProbability(given));
+  const kinds = template.blocks.map(({ kind }) => kind);
+  const chains = massChains(kinds).filter((chain) => chain.length > 1);
+  if (chains.length === 0) return null;
+  const z = Math.exp(new MassOrder(kinds, massPriors(template, priors)).logProbability);
   return (
-    <p className="text-small text-ink-2">
-      Masses are put in order, <Sym base="μ" sub="1" /> first. Of independent draws a share{' '}
-      <Num>Z = {plain(z, 4)}</Num> is in order; the joint prior is divided by it.
+    <p className="max-w-figure text-small text-ink-2">
+      Masses are put in order,{' '}
+      {chains.map((chain, i) => (
+        <span key={chain[0]}>
+          {i ? ' and ' : ''}
+          {[...chain]
+            .sort((a, b) => a - b)
+            .map((field, place) => (
+              <span key={field} className="whitespace-nowrap">
+                {place ? (kinds[field] === 'heavy' ? ' < ' : ' > ') : ''}
+                <Sym {...template.parameters[template.blocks[field].mass].symbol} />
+              </span>
+            ))}
+        </span>
+      ))}
+      . Of independent draws a share <Num>Z = {plain(z, 4)}</Num> is in order; the joint prior is divided by
+      it. Grey: the density as stated. Line: what order leaves of it.
     </p>
   );
 }
@@ -160,7 +213,8 @@ export function PriorsSection(props: PriorsSectionProps) {
     [template, draft.value],
   );
   const wrong = Object.keys(faults.byParameter).length;
-  const band = usePredictive(prediction, draft.value, wrong === 0 && faults.joint === null);
+  const shown = useShown(fold);
+  const band = usePredictive(prediction, draft.value, shown && wrong === 0 && faults.joint === null);
   const editable = notebook.may.includes('notebook.edit');
   const conflict = conflictOf(draft, notebook, section);
 

@@ -15,9 +15,6 @@ const catalogue = templateCatalogue().map(({ id, title, summary, options }) => (
   options,
 }));
 
-/** Fields that are offered, where that is fewer than the template declares. */
-const mostFields: Record<string, number> = { 'locked-exact': 3, light: 3 };
-
 /** Options that another template takes over from this one; those that it doesn't have go. */
 export function carryOver(id: string, options: Record<string, unknown>): TemplateSettings {
   const names = catalogue.find((template) => template.id === id)?.options.map(({ name }) => name) ?? [];
@@ -25,7 +22,9 @@ export function carryOver(id: string, options: Record<string, unknown>): Templat
   const declared = catalogue.find((template) => template.id === id)?.options ?? [];
   const lists = declared.some(({ name, kind }) => name === 'fields' && kind === 'fields');
   const fields = Array.isArray(options.fields) && !lists ? options.fields.length : options.fields;
-  const most = mostFields[id];
+  const most = declared.flatMap((option) =>
+    option.name === 'fields' && 'max' in option ? [option.max] : [],
+  )[0];
   const capped =
     typeof fields === 'number' && names.includes('fields')
       ? [['fields', Math.min(fields, most ?? fields)] as const]
@@ -62,7 +61,6 @@ function Option({ option, settings, hasEdges, error, onValue }: OptionProps) {
       );
     }
     case 'fields': {
-      const max = mostFields[settings.id] ?? option.max;
       const count = fieldCount(value ?? option.default);
       const light = Array.isArray(value) ? value.filter((kind) => kind === 'light').length : 0;
       const choose = (fields: number, lightOnes: number) =>
@@ -77,7 +75,7 @@ function Option({ option, settings, hasEdges, error, onValue }: OptionProps) {
             label={label}
             name={name}
             value={String(count)}
-            options={Array.from({ length: max - option.min + 1 }, (_, i) => ({
+            options={Array.from({ length: option.max - option.min + 1 }, (_, i) => ({
               value: String(option.min + i),
               label: inWords(option.min + i),
             }))}

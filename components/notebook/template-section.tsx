@@ -7,6 +7,7 @@ import { WithheldFigure } from '@/components/figures/withheld-figure';
 import { Button, Buttons } from '@/components/ui/button';
 import { Message } from '@/components/ui/message';
 import { Num } from '@/components/ui/num';
+import { useShown } from '@/components/ui/fold';
 import { Section, Subheading } from '@/components/ui/section';
 import { counted } from '@/components/words/counts';
 import { Raised } from '@/components/words/raised';
@@ -79,7 +80,7 @@ function Explore({
   const { parameters } = prediction.fine;
   const [set, setSet] = useState<Readonly<Record<string, number>>>({});
   const start = useMemo(
-    () => withBestAmplitudes(prediction, parameters, priors, startValues(parameters, priors)),
+    () => withBestAmplitudes(prediction, parameters, priors, startValues(prediction.fine, priors)),
     [prediction, parameters, priors],
   );
   const x = useMemo(
@@ -129,7 +130,7 @@ function Explore({
         />
       )}
       <TemplateSliders
-        parameters={parameters}
+        template={prediction.fine}
         priors={priors}
         x={x}
         onMove={(values) => setSet({ ...set, ...named(values) })}
@@ -168,7 +169,11 @@ export function TemplateSection(props: TemplateSectionProps) {
   const section = useSectionSave(state);
   const settings = draft.value;
   const template = findTemplate(settings.id);
-  const tried = useMemo(() => tryPrediction(settings, points), [settings, points]);
+  const shown = useShown(fold);
+  const tried = useMemo(
+    () => (shown ? tryPrediction(settings, points) : { fault: 'The section is folded.' }),
+    [settings, points, shown],
+  );
   const editable = notebook.may.includes('notebook.edit');
   const conflict = conflictOf(draft, notebook, section);
 

@@ -1,6 +1,6 @@
 'use client';
 
-import { createContext, useState, useSyncExternalStore, type ReactNode } from 'react';
+import { createContext, memo, useState, useSyncExternalStore, type ReactNode } from 'react';
 
 /** `phone`: folded where the screen is narrow, by the style sheet, until the browser's own choice is known. */
 export type FoldState = 'open' | 'folded' | 'phone';
@@ -30,19 +30,36 @@ export function usePrinting(): boolean {
   );
 }
 
+/** Whether what a section holds is to be seen: not while it is folded, except on paper. */
+export function useShown({ state }: Pick<Fold, 'state'>): boolean {
+  return usePrinting() || state !== 'folded';
+}
+
+/** Stays as it was last drawn while it isn't shown, whatever its section is given meanwhile. */
+const Held = memo(
+  function Held({ children }: { shown: boolean; children: ReactNode }) {
+    return children;
+  },
+  (_, next) => !next.shown,
+);
+
 /**
  * What a section holds. Once opened it stays in place when it is folded, so that nothing half written in it is lost;
- * its figures go, and one that was never opened isn't made at all.
+ * its figures go and
+ * nothing of it is computed again until it is opened. One that was never opened isn't made at all.
  */
 export function FoldBody({ id, state, children }: { id: string; state: FoldState; children: ReactNode }) {
   const printing = usePrinting();
+  const shown = useShown({ state });
   const [seen, setSeen] = useState(state === 'open');
   if (state === 'open' && !seen) setSeen(true);
-  const made = state !== 'folded' || seen || printing;
+  const made = seen || shown;
   return (
     <div id={id} className="folded:hidden">
       {made ? (
-        <FigureTime value={printing || state === 'open' ? 'now' : 'never'}>{children}</FigureTime>
+        <FigureTime value={printing || state === 'open' ? 'now' : 'never'}>
+          <Held shown={shown}>{children}</Held>
+        </FigureTime>
       ) : null}
     </div>
   );

@@ -18,6 +18,7 @@ export {
 } from './priors';
 export type { ScalarPrior } from './priors';
 export { logOrderProbability, orderedMarginal } from './ordered-masses';
+export { inducedMarginals, massChains } from './mass-order';
 export type { OrderedMarginal } from './ordered-masses';
 export { predictiveBand, priorPredictive } from './prior-predictive';
 export type { PredictiveBand } from './prior-predictive';

@@ -1,6 +1,39 @@
 import type { FieldKind } from '@/lib/templates';
 import type { Rng } from '@/lib/sampler';
-import { drawOrderedMasses, logOrderProbability, type MassPrior } from './ordered-masses';
+import {
+  drawOrderedMasses,
+  logOrderProbability,
+  orderedMarginal,
+  type MassPrior,
+  type OrderedMarginal,
+} from './ordered-masses';
+
+/**
+ * The fields of each kind (counted from 0) in the order in which their mass parameters ascend: μ ascends among heavy fields, ν
+ * descends among light ones. Light ones first; a kind without a field is left out.
+ */
+export function massChains(kinds: readonly FieldKind[]): number[][] {
+  const of = (kind: FieldKind) => kinds.flatMap((own, f) => (own === kind ? [f] : []));
+  return [of('light').reverse(), of('heavy')].filter((chain) => chain.length > 0);
+}
+
+/**
+ * What order leaves of each field's stated prior, a marginal a field: `orderedMarginal` within the field's own kind, since light
+ * and heavy ones don't restrain each other. Null for a field that is alone of its kind, for a fixed mass, and where no order is
+ * possible.
+ */
+export function inducedMarginals(
+  kinds: readonly FieldKind[],
+  priors: readonly MassPrior[],
+): (OrderedMarginal | null)[] {
+  const induced = kinds.map((): OrderedMarginal | null => null);
+  for (const chain of massChains(kinds)) {
+    if (chain.length < 2) continue;
+    const own = chain.map((field) => priors[field]);
+    chain.forEach((field, place) => (induced[field] = orderedMarginal(own, place)));
+  }
+  return induced;
+}
 
 /** Fields of one kind: which of all fields, in the order in which their parameters ascend. */
 interface Group {
@@ -24,12 +57,11 @@ export class MassOrder {
     private readonly kinds: readonly FieldKind[],
     priors: readonly MassPrior[],
   ) {
-    const group = (kind: FieldKind): Group => {
-      const fields = kinds.flatMap((own, f) => (own === kind ? [f] : []));
-      if (kind === 'light') fields.reverse();
-      return { fields, priors: fields.map((f) => priors[f]), drawn: new Float64Array(fields.length) };
-    };
-    this.groups = [group('light'), group('heavy')].filter(({ fields }) => fields.length > 0);
+    this.groups = massChains(kinds).map((fields) => ({
+      fields,
+      priors: fields.map((f) => priors[f]),
+      drawn: new Float64Array(fields.length),
+    }));
     this.logProbability = this.groups.reduce((sum, own) => sum + logOrderProbability(own.priors), 0);
   }
 

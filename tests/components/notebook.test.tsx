@@ -105,19 +105,32 @@ describe('predictions under the sliders', () => {
 });
 
 describe('sliders', () => {
-  const { parameters } = compilePrediction(twoFields, keepPoints(measurement, {})).fine;
+  const template = compilePrediction(twoFields, keepPoints(measurement, {})).fine;
+  const { parameters } = template;
 
   it('start with masses of one prior spread over it in order', () => {
-    const start = startValues(parameters, {});
+    const start = startValues(template, {});
     expect(start[0]).toBeCloseTo(0.2 + 7.8 / 3, 9);
     expect(start[3]).toBeCloseTo(0.2 + (2 * 7.8) / 3, 9);
   });
 
   it('take the masses that they pass along', () => {
     const x = [2, 0, 0, 5, 0, 0, 0];
-    expect(moved(x, parameters, 0, 6)[3]).toBe(6);
-    expect(moved(x, parameters, 3, 1)[0]).toBe(1);
-    expect(moved(x, parameters, 1, 9)).toEqual([2, 9, 0, 5, 0, 0, 0]);
+    expect(moved(x, template, 0, 6)[3]).toBe(6);
+    expect(moved(x, template, 3, 1)[0]).toBe(1);
+    expect(moved(x, template, 1, 9)).toEqual([2, 9, 0, 5, 0, 0, 0]);
+  });
+
+  it('keep ν descending among light fields and leave heavy ones alone', () => {
+    const kinds = { id: 'locked-exact', options: { fields: ['light', 'light', 'heavy'], background: [1] } };
+    const mixed = compilePrediction(kinds, keepPoints(measurement, {})).fine;
+    expect(mixed.parameters.slice(0, 3).map(({ name }) => name)).toEqual(['nu1', 'nu2', 'mu1']);
+    const start = startValues(mixed, {});
+    expect(start[0]).toBeCloseTo((1.4 * 2) / 3, 9);
+    expect(start[1]).toBeCloseTo(1.4 / 3, 9);
+    expect(start[2]).toBeCloseTo(0.2 + 7.8 / 2, 9);
+    expect(moved(start, mixed, 1, 1.2).slice(0, 3)).toEqual([1.2, 1.2, start[2]]);
+    expect(moved(start, mixed, 2, 0.3).slice(0, 3)).toEqual([start[0], start[1], 0.3]);
   });
 
   it('run over the prior, or four standard deviations about its mean', () => {

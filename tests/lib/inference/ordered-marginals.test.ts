@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { createRng } from '@/lib/sampler/rng';
-import { orderedMarginal, type OrderedMarginal } from '@/lib/inference';
+import { inducedMarginals, massChains, orderedMarginal, type OrderedMarginal } from '@/lib/inference';
 import { drawOrderedMasses, logOrderProbability, type MassPrior } from '@/lib/inference/ordered-masses';
 import { lnPriorDensity } from '@/lib/inference/priors';
 
@@ -125,5 +125,27 @@ describe('the marginal that order leaves of a mass', () => {
     const distance = marginal.x.reduce((worst, x, i) => Math.max(worst, Math.abs(marginal.cdf[i] - x)), 0);
     expect(distance).toBeCloseTo(0.4725, 2);
     expect(Math.exp(logOrderProbability(priors))).toBeCloseTo(1 / 24, 12);
+  });
+});
+
+describe('what order leaves of the masses of two kinds', () => {
+  it('counts light fields backwards: ν descends, and neither kind restrains the other', () => {
+    expect(massChains(['light', 'light', 'heavy', 'heavy'])).toEqual([
+      [1, 0],
+      [2, 3],
+    ]);
+    expect(massChains(['heavy'])).toEqual([[0]]);
+    const kinds = ['light', 'light', 'heavy'] as const;
+    const [largest, smallest, alone] = inducedMarginals(kinds, [uniform(0, 1), uniform(0, 1), uniform(0, 8)]);
+    expect(alone).toBeNull();
+    // Of two uniforms on [0, 1] the larger has the density 2x, the smaller 2(1 − x).
+    largest!.x.forEach((x, i) => expect(Math.abs(largest!.density[i] - 2 * x)).toBeLessThan(1e-10));
+    smallest!.x.forEach((x, i) => expect(Math.abs(smallest!.density[i] - 2 * (1 - x))).toBeLessThan(1e-10));
+  });
+
+  it('has none for a fixed mass, and none where no order is possible', () => {
+    const heavy = ['heavy', 'heavy'] as const;
+    expect(inducedMarginals(heavy, [{ kind: 'fixed', value: 2 }, uniform(1, 4)])[0]).toBeNull();
+    expect(inducedMarginals(heavy, [uniform(3, 4), uniform(1, 2)])).toEqual([null, null]);
   });
 });
