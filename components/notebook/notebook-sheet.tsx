@@ -119,6 +119,18 @@ export function NotebookSheet(props: NotebookSheetProps) {
     if (number !== undefined) window.history.replaceState(null, '', `?fit=${number}${window.location.hash}`);
   }
 
+  /** Goes to a fit's posterior, as a link to it would: address, section and focus. */
+  function goTo(id: string) {
+    setChosen(id);
+    const number = notebook.fits.find((each) => each.id === id)?.number;
+    if (number === undefined) return;
+    window.history.pushState(null, '', `?fit=${number}#posterior`);
+    folds.open('#posterior');
+    const section = document.getElementById('posterior');
+    section?.scrollIntoView();
+    section?.querySelector<HTMLElement>('h2 button')?.focus({ preventScroll: true });
+  }
+
   async function started(id: string) {
     await state.refresh();
     setChosen(id);
@@ -180,7 +192,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
         sectionState={states.statement}
         draft={words}
         fold={fold('statement')}
-        onShow={show}
+        onShow={goTo}
       />
       <Shifts notebook={notebook} />
       <FoldScript storageKey={storageKey} />

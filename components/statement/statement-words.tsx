@@ -13,7 +13,10 @@ function Marks({ marks, fit }: Pick<ValuePiece, 'marks' | 'fit'>) {
   ));
 }
 
-/** A number by reference, a link to its fit; or why there is none. */
+/**
+ * A number by reference, a link to its fit; or why there is none. The page itself goes there: the router writes its own address
+ * after a change of `?fit`, and would take back one that the browser had set meanwhile.
+ */
 function Value({ piece, onShow }: { piece: ValuePiece; onShow: (fitId: string) => void }) {
   const { value, because, label, fit, marks } = piece;
   const said = value ?? `no value, because ${because}`;
@@ -25,7 +28,12 @@ function Value({ piece, onShow }: { piece: ValuePiece; onShow: (fitId: string) =
         href={`?fit=${fit.number}#posterior`}
         title={`${label}, fit ${fit.number}`}
         className={`decoration-action decoration-dotted [text-decoration-thickness:1.5px] ${value === null ? 'text-ink-2' : 'text-ink lining-nums'}`}
-        onClick={() => onShow(id)}
+        onClick={(event) => {
+          // With a key held the browser opens the address elsewhere.
+          if (event.metaKey || event.ctrlKey || event.shiftKey || event.altKey) return;
+          event.preventDefault();
+          onShow(id);
+        }}
       >
         {said}
         <span className="sr-only"> ({`${label}, fit ${fit.number}`})</span>
@@ -55,7 +63,7 @@ export function StatementWords({
   onShow,
 }: {
   paragraphs: TypesetDraft['paragraphs'];
-  /** Shows a fit in the sections above. */
+  /** Shows a fit in the sections above, and goes there. */
   onShow: (fitId: string) => void;
 }) {
   return paragraphs.map((pieces, i) => (

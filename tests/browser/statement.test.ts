@@ -46,6 +46,21 @@ describe('the statement of the demo’s beat', () => {
   it('links each number to the fit that it comes from', async () => {
     const link = statement().getByRole('link', { name: /median with its 68 % interval, mass 1, fit 1/ });
     expect(await link.getAttribute('href')).toBe('?fit=1#posterior');
+    const loads = analyst.loads();
+    await link.click();
+    const address = () => page.evaluate(() => window.location.search + window.location.hash);
+    await expect.poll(address).toBe('?fit=1#posterior');
+    // The router writes addresses a little later: it stays.
+    await page.waitForTimeout(1_000);
+    expect(await address()).toBe('?fit=1#posterior');
+    expect(analyst.loads()).toBe(loads);
+    expect(
+      await page.locator('#posterior h2 button').evaluate((title) => title === document.activeElement),
+    ).toBe(true);
+    const top = () => page.locator('#posterior').evaluate((each) => each.getBoundingClientRect().top);
+    await expect.poll(async () => Math.abs(await top())).toBeLessThan(120);
+    await page.goBack();
+    await expect.poll(address).toBe('#statement');
   });
 
   it('is written by keyboard alone: a number from the menu lands at the caret, and the preview follows', async () => {
