@@ -26,7 +26,7 @@ export function groupContents(group: Group): ContentsEntry[] {
   return [
     {
       href: '#notebooks',
-      number: notebooks.length,
+      number: notebooks.filter(({ archivedAt }) => archivedAt === null).length,
       title: 'Notebooks',
       note: notebooks.length === 0 ? 'none yet' : running ? `${running} sampling` : undefined,
     },
@@ -49,7 +49,7 @@ export function groupContents(group: Group): ContentsEntry[] {
   ];
 }
 
-function Notebooks({ group }: { group: Group }) {
+function Notebooks({ group, onChanged }: { group: Group; onChanged: () => void }) {
   const { id, notebooks, measurements, may } = group;
   const create = may.includes('notebook.create');
   const upload = may.includes('measurement.upload');
@@ -61,7 +61,11 @@ function Notebooks({ group }: { group: Group }) {
         title="Notebooks"
         action={create ? <Button href={`/groups/${id}/notebooks/new`}>New notebook</Button> : null}
       >
-        <NotebookIndex notebooks={notebooks} />
+        <NotebookIndex
+          notebooks={notebooks}
+          restorable={may.includes('notebook.archive')}
+          onChanged={onChanged}
+        />
       </IndexSection>
     );
   const actions = measurements.length ? (
@@ -114,7 +118,7 @@ function Measurements({ group }: { group: Group }) {
 
 /** A group's home: notebooks, measurements, members. */
 export function GroupSheet({ initial }: { initial: Group }) {
-  const { data: group = initial } = useSWR(`/api/v1/groups/${initial.id}`, read<Group>, {
+  const { data: group = initial, mutate } = useSWR(`/api/v1/groups/${initial.id}`, read<Group>, {
     fallbackData: initial,
   });
   const nothing = group.notebooks.length === 0 && group.measurements.length === 0;
@@ -132,7 +136,7 @@ export function GroupSheet({ initial }: { initial: Group }) {
         {nothing ? <SingleTone /> : <BeatRule />}
       </PageHead>
       <SheetRow margin={group.may.includes('group.audit') ? <LatestEvents groupId={group.id} /> : undefined}>
-        <Notebooks group={group} />
+        <Notebooks group={group} onChanged={() => void mutate()} />
         <Measurements group={group} />
         <Members group={group} />
       </SheetRow>

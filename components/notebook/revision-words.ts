@@ -31,7 +31,7 @@ export function originInWords({ number, title, revision, fit }: NonNullable<Note
 }
 
 /** What a revision settles, or a notebook as it stands. */
-export type Settled = Pick<Revision, 'title' | 'cuts' | 'likelihood' | 'template' | 'priors'>;
+export type Settled = Pick<Revision, 'title' | 'cuts' | 'likelihood' | 'template' | 'priors' | 'statement'>;
 
 /** One thing that a revision settles, in words. */
 export interface SettledLine {
@@ -55,7 +55,7 @@ const fieldsOf = ({ template: { options } }: Settled): number =>
 
 /** Everything that a revision settles, field by field. */
 export function settledLines(settled: Settled): SettledLine[] {
-  const { title, cuts, likelihood, template, priors } = settled;
+  const { title, cuts, likelihood, template, priors, statement } = settled;
   const end = (value: number | undefined) => (value === undefined ? 'no cut' : plain(value, 6));
   const declared = new Map(parametersOf(settled).map((each) => [each.name, each]));
   return [
@@ -89,6 +89,7 @@ export function settledLines(settled: Settled): SettledLine[] {
         value: priorInWords(prior, declaration),
       };
     }),
+    { key: 'statement', section: 'statement', what: 'Statement', value: statement || 'no words' },
   ];
 }
 

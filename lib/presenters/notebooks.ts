@@ -57,7 +57,7 @@ export function presentNotebookSummary(
   notebook: NotebookRow,
   { settings, settled }: { settings: NotebookSettings; settled: number },
   measurement: MeasuredBy,
-  lastFit: FitLine | null,
+  { lastFit, finishedFit }: { lastFit: FitLine | null; finishedFit: FitLine | null },
   people: People,
 ): NotebookSummary {
   return {
@@ -66,12 +66,15 @@ export function presentNotebookSummary(
     title: notebook.title,
     revision: notebook.revision,
     settledRevision: settled,
+    measurementId: measurement.id,
     measurementName: measurement.name,
+    measurementVersion: measurement.version,
     templateId: settings.template.id,
     fields: fieldsOf(settings),
     blind: measurement.blind,
     simulated: measurement.simulated,
     lastFit: lastFit && presentFitSummary(lastFit, people),
+    finishedFit: finishedFit && finishedFit.id,
     updatedBy: nameOf(people, notebook.updatedBy),
     updatedAt: notebook.updatedAt.toISOString(),
     archivedAt: notebook.archivedAt?.toISOString() ?? null,
@@ -144,7 +147,7 @@ export function presentNotebook(parts: NotebookParts): Notebook {
   };
 }
 
-export function presentRevision(revision: NotebookRevision, people: People): Revision {
+export function presentRevision(revision: NotebookRevision, statement: string, people: People): Revision {
   const { settings } = revision;
   return {
     revision: revision.revision,
@@ -157,5 +160,6 @@ export function presentRevision(revision: NotebookRevision, people: People): Rev
     likelihood: likelihoodSchema.parse(settings.likelihood),
     template: settings.template,
     priors: priorsSchema.parse(settings.priors),
+    statement,
   };
 }

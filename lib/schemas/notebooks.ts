@@ -101,12 +101,17 @@ export const notebookSummarySchema = z.object({
   revision: z.number().int(),
   /** The last revision that changed what a fit freezes. */
   settledRevision: z.number().int(),
+  measurementId: idSchema,
   measurementName: z.string(),
+  /** The version that it rests on. */
+  measurementVersion: z.number().int(),
   templateId: z.string(),
   fields: z.number().int(),
   blind: z.boolean(),
   simulated: z.boolean(),
   lastFit: fitSummarySchema.nullable(),
+  /** The last fit that came to its own end, for a figure of what it found. */
+  finishedFit: idSchema.nullable(),
   updatedBy: z.string(),
   updatedAt: instantSchema,
   archivedAt: instantSchema.nullable(),
@@ -135,6 +140,8 @@ export const revisionSchema = z.object({
   sections: z.array(z.enum(notebookSections)),
   restoredFrom: z.number().int().nullable(),
   ...settingsShape,
+  /** The group's words as they stood then, with references for their numbers. */
+  statement: z.string(),
 });
 export type Revision = z.infer<typeof revisionSchema>;
 

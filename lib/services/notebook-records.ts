@@ -151,6 +151,11 @@ export async function notebookSummaries(groupId: string): Promise<NotebookSummar
     }),
   ]);
   const lastFits = new Map(fits.map((fit) => [fit.notebookId, fit]));
+  const finished = new Map(
+    fits
+      .filter(({ status }) => status === 'converged' || status === 'budget-spent')
+      .map((fit) => [fit.notebookId, fit]),
+  );
   const people = await emailsOf([
     ...notebooks.map(({ updatedBy }) => updatedBy),
     ...[...lastFits.values()].map(({ startedBy }) => startedBy),
@@ -165,7 +170,7 @@ export async function notebookSummaries(groupId: string): Promise<NotebookSummar
         notebook,
         { settings: standing, settled: settled.get(notebook.id) ?? 1 },
         measurement,
-        lastFit,
+        { lastFit, finishedFit: finished.get(notebook.id) ?? null },
         people,
       ),
     ];

@@ -4,6 +4,7 @@ import { presentRevision } from '@/lib/presenters/notebooks';
 import type { Notebook as NotebookAnswer, RestoreRevision, Revision } from '@/lib/schemas';
 import type { Access } from './access';
 import { addRevision } from './notebooks';
+import { statementAt } from './statements';
 import { emailsOf } from './people';
 
 /** One revision of the notebook of `access`; what isn't the number of one is answered as missing. */
@@ -19,11 +20,15 @@ async function findRevision(access: Access, number: string): Promise<NotebookRev
 export async function readRevision(access: Access, number: string): Promise<Revision> {
   access.require('notebook.read');
   const revision = await findRevision(access, number);
-  return presentRevision(revision, await emailsOf([revision.createdBy]));
+  const [people, statement] = await Promise.all([
+    emailsOf([revision.createdBy]),
+    statementAt(access.id, revision.revision),
+  ]);
+  return presentRevision(revision, statement, people);
 }
 
 /**
- * Makes an earlier revision's title and settings stand again, as a new revision: nothing between is lost. They are settled anew
+ * Makes an earlier revision's title, settings and words stand again, as a new revision: nothing between is lost. They are settled anew
  * on the notebook's measurement, and refused where they can't be fitted to it any more. `stale_revision` as for an edit.
  */
 export async function restoreRevision(
@@ -34,8 +39,10 @@ export async function restoreRevision(
   access.require('notebook.edit');
   const earlier = await findRevision(access, number);
   const { cuts, likelihood, template, priors } = earlier.settings;
+  const statement = await statementAt(access.id, earlier.revision);
   return addRevision(access, body.revision, earlier.revision, () => ({
     title: earlier.title,
+    statement,
     draft: {
       cuts,
       likelihood,

@@ -185,6 +185,32 @@ describe('revisions', () => {
     expect((await read(id)).revision).toBe(4);
   });
 
+  it('bring the words back with the settings, also that there were none', async () => {
+    const id = await open();
+    await edit(id, { revision: 1, statement: 'No oscillation is seen.' });
+    await edit(id, { revision: 2, title: 'Second' });
+    await edit(id, { revision: 3, statement: 'Nothing is claimed yet.' });
+    const words = async (number: number) => {
+      const answer = await call(revision, {
+        params: { id, revision: String(number) },
+        token: analyst.token,
+      });
+      return revisionSchema.parse(await answer.json()).statement;
+    };
+    expect(await Promise.all([1, 2, 3, 4].map(words))).toEqual([
+      '',
+      'No oscillation is seen.',
+      'No oscillation is seen.',
+      'Nothing is claimed yet.',
+    ]);
+    await restored(id, 3, 4);
+    const now = await read(id);
+    expect(now).toMatchObject({ revision: 5, title: 'Second', statement: 'No oscillation is seen.' });
+    expect(now.record.at(-1)).toMatchObject({ restoredFrom: 3, sections: ['statement'] });
+    await restored(id, 1, 5);
+    expect(await read(id)).toMatchObject({ revision: 6, title: 'Sampling', statement: '' });
+  });
+
   it.each(['0', '9', '01', '-1', '1.0', 'x', '1; drop'])('%s is none', async (number) => {
     const id = await open();
     const answer = await call(revision, { params: { id, revision: number }, token: analyst.token });
@@ -209,7 +235,7 @@ describe('a notebook that is put away', () => {
     expect((await post(archive, id, {}, lead.token)).status).toBe(200);
     const away = await read(id);
     expect(away.archived?.by).toBe(lead.user.email);
-    expect(away.may).toEqual(['notebook.read', 'notebook.create', 'fit.read']);
+    expect(away.may).toEqual(['notebook.read', 'notebook.create', 'fit.read', 'scan.read']);
     expect(away.fits).toHaveLength(1);
     const answer = await call(PATCH, {
       method: 'PATCH',
