@@ -41,6 +41,16 @@ export function remapped(
   return mapping;
 }
 
+/**
+ * The columns with the meanings that were chosen last: the checks that run on them in the background may still be about the
+ * choice before, and a choice made meanwhile must not be lost.
+ */
+export function withMapping(columns: readonly ColumnView[], mapping: ColumnMapping | null): ColumnView[] {
+  if (!mapping) return [...columns];
+  const roles = new Map(Object.entries(mapping).map(([role, j]) => [Number(j), role as ColumnRole]));
+  return columns.map((column, j) => ({ ...column, role: roles.get(j) ?? null }));
+}
+
 /** Errors of the mapping as a whole: they stand above the table, those of one column below its choice. */
 const ofMapping: ReadonlySet<Finding['code']> = new Set([
   'missing-column',
@@ -111,12 +121,16 @@ function Head({ view, onMapping }: { view: PreflightView; onMapping: (mapping: C
 
 /** The first rows of the file as they were read; what each column means is chosen above it. */
 export function ColumnsTable({
-  view,
+  view: checked,
+  mapping,
   onMapping,
 }: {
   view: PreflightView;
+  /** Set by hand; null where names were recognised. */
+  mapping: ColumnMapping | null;
   onMapping: (mapping: ColumnMapping) => void;
 }) {
+  const view = { ...checked, columns: withMapping(checked.columns, mapping) };
   const { columns, checks, firstLines, rows } = view;
   const faults = checks.filter((check) => isError(check) && ofMapping.has(check.code));
   return (

@@ -187,7 +187,7 @@ export function UploadSheet({ groupId, groupName, email, onto }: UploadSheetProp
         }
       >
         {view?.columns.length ? (
-          <ColumnsTable view={view} onMapping={setMapping} />
+          <ColumnsTable view={view} mapping={mapping} onMapping={setMapping} />
         ) : (
           <p className="text-ink-2">The columns stand here once a file is read.</p>
         )}

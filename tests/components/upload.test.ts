@@ -1,7 +1,7 @@
 import { parseTruth } from '@/components/measurement/truth-words';
 import { describe, expect, it } from 'vitest';
 import { addFiles, changePart } from '@/components/measurement/chosen-files';
-import { cellNumber, remapped } from '@/components/measurement/columns-table';
+import { cellNumber, remapped, withMapping } from '@/components/measurement/columns-table';
 import { placeOf } from '@/components/measurement/checks-table';
 import { levelCounts, marksOf, partByName, viewOf } from '@/components/measurement/preflight-view';
 import {
@@ -74,6 +74,14 @@ describe('columns', () => {
     const { columns } = viewed([header, ...rows]);
     expect(remapped(columns, 3, 'S')).toEqual({ kappaLo: 0, kappaHi: 1, S: 3 });
     expect(remapped(columns, 2, null)).toEqual({ kappaLo: 0, kappaHi: 1, sigma: 3 });
+  });
+
+  it('keep a choice that is made before the checks of the one before have ended', () => {
+    const { columns } = viewed([header, ...rows]);
+    const first = remapped(columns, 2, null);
+    const second = remapped(withMapping(columns, first), 3, 'S');
+    expect(second).toEqual({ kappaLo: 0, kappaHi: 1, S: 3 });
+    expect(withMapping(columns, null)).toEqual(columns);
   });
 });
 
