@@ -22,6 +22,43 @@ export function massRangeOf(
 /** Share of the envelope to which the page asks the leading template to hold. */
 const share = 0.05;
 
+/** The exact shape holds at every κ of an isosceles triangle; what it can't know is the rest of the triangle. */
+function ExactCautions({ highest }: { highest: number }) {
+  return (
+    <Caution>
+      Exact at tree level for isosceles triangles. Others are evaluated at{' '}
+      <Num>
+        <Sym base="κ" /> = 2<Sym base="k" sub="3" />
+        /(
+        <Sym base="k" sub="1" /> + <Sym base="k" sub="2" />)
+      </Num>
+      ; their further corrections, of the order of <Sym base="κ" />
+      ², are left out. The bins reach{' '}
+      <Num>
+        <Sym base="κ" /> = {plain(highest, 3)}
+      </Num>
+      .
+    </Caution>
+  );
+}
+
+/** Three leading terms: what is beyond them, and where light fields stop being this simple. */
+function LightCautions() {
+  return (
+    <>
+      <Caution>
+        The leading terms of the squeezed limit. What follows them are powers of <Sym base="κ" /> from{' '}
+        <Sym base="κ" /> on, which the background has to take up.
+      </Caution>
+      <Caution>
+        Towards <Sym base="ν" /> = 3/2, the massless field, the shape grows without bound and depends on how
+        long inflation lasts: it is meant where (3/2 − <Sym base="ν" />) ln 1/
+        <Sym base="κ" /> is not small.
+      </Caution>
+    </>
+  );
+}
+
 /** What limits the template at this cut and these masses. */
 export function TemplateCautions({
   settings,
@@ -37,6 +74,8 @@ export function TemplateCautions({
 }) {
   const range = massRangeOf(parameters, priors);
   if (!range) return null;
+  if (settings.id === 'locked-exact') return <ExactCautions highest={highest} />;
+  if (settings.id === 'light') return <LightCautions />;
   const vertex = settings.options.vertex;
   const reach = accurateKappa(range[0], range[1], share, vertex === 1 ? [1] : vertex === 2 ? [2] : [1, 2]);
   const powers = Array.isArray(settings.options.background) ? (settings.options.background as number[]) : [];
