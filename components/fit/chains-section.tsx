@@ -6,7 +6,7 @@ import { Stamp } from '@/components/ui/num';
 import { Record } from '@/components/ui/record';
 import { Section, Subheading } from '@/components/ui/section';
 import { clockTime } from '@/components/words/dates';
-import { inWords } from '@/components/words/counts';
+import { inWords, listed } from '@/components/words/counts';
 import { shortName } from '@/components/words/people';
 import { shortHash } from '@/components/measurement/measurement-words';
 import { chainsSentence } from '@/components/notebook/fold-sentences';
@@ -126,6 +126,10 @@ function Margin({ fit }: { fit: Fit }) {
   );
 }
 
+const frozen = listed(
+  (['measurement', 'template', 'priors'] as const).map((id) => String(sectionNumber(id))),
+);
+
 /** Settings of the sampler, and a fit as it goes. */
 export function ChainsSection(props: ChainsSectionProps) {
   const { notebook, fit, draws, connection, quantities, unsaved, fold } = props;
@@ -133,7 +137,7 @@ export function ChainsSection(props: ChainsSectionProps) {
   const running = notebook.fits.some(({ status }) => isRunning(status));
   const number = Math.max(0, ...notebook.fits.map((each) => each.number)) + 1;
   const reason = unsaved.length
-    ? `Save or drop the changes of section ${unsaved.join(' and ')} first.`
+    ? `Save or drop the changes of section ${listed(unsaved.map(String))} first.`
     : undefined;
   return (
     <Section
@@ -171,8 +175,8 @@ export function ChainsSection(props: ChainsSectionProps) {
         </>
       ) : (
         <p>
-          No fit yet. A fit freezes sections 1 to 3 and samples their posterior; it goes on when this page is
-          closed.
+          No fit yet. A fit freezes sections {frozen} and samples their posterior; it goes on when this page
+          is closed.
         </p>
       )}
       {fit && notebook.fits.length > 1 ? (

@@ -14,10 +14,14 @@ import { useVersion } from '@/components/measurement/use-version';
 import { Contents } from '@/components/ui/contents';
 import { BeatEnd } from '@/components/ui/motif';
 import { Sheet, SheetRow } from '@/components/ui/sheet';
+import { bestOfScan } from '@/components/scan/best-point';
+import { ScanSection } from '@/components/scan/scan-section';
+import { scanState } from '@/components/scan/scan-words';
+import { useScans } from '@/components/scan/use-scans';
 import { StatementSection } from '@/components/statement/statement-section';
 import { statementState } from '@/components/statement/statement-state';
 import { useStatement } from '@/components/statement/use-statement';
-import type { Fit, Measurement, Notebook, Statement } from '@/lib/schemas';
+import type { Fit, Measurement, Notebook, Statement, Trials } from '@/lib/schemas';
 import { Abstract } from './abstract';
 import { keepPoints } from './kept-points';
 import type { DrawnFormula } from './live-formula';
@@ -39,6 +43,8 @@ export interface NotebookSheetProps {
   /** The fit that is shown first; null without any. */
   fit: Fit | null;
   statement: Statement;
+  /** Looks for a signal so far. */
+  trials: Trials;
   formula: DrawnFormula;
   defaults: FitDefaults;
   /** Who reads it; what is folded is remembered for each person. */
@@ -53,7 +59,7 @@ function bestOf(fit: Fit | null, draws: FigureDraws | null): NamedPoint | null {
     : { label: `Best draw of fit ${fit.number}`, values: drawValues(draws, index, fixedValues(fit)) };
 }
 
-/** The notebook: one sheet, six sections; chains and posterior show one of its fits. */
+/** The notebook: one sheet of sections; chains and posterior show one of its fits. */
 export function NotebookSheet(props: NotebookSheetProps) {
   const state = useNotebook(props.notebook);
   const { notebook } = state;
@@ -98,11 +104,16 @@ export function NotebookSheet(props: NotebookSheetProps) {
     () => quantitiesOf(fit ? fit.snapshot.template : notebook.template),
     [fit, notebook.template],
   );
-  const best = useMemo(() => bestOf(fit, draws), [fit, draws]);
+  const scans = useScans(notebook.id, props.trials);
+  const found = useMemo(
+    () => [bestOf(fit, draws), bestOfScan(scans.scan)].filter((point) => point !== null),
+    [fit, draws, scans.scan],
+  );
 
   const states = {
     measurement: sectionState(cut.changed, notebook),
     template: sectionState(template.changed, notebook),
+    scan: scanState(scans.trials, scans.scan, notebook),
     priors: sectionState(priors.changed, notebook),
     chains: chainsState(fit, notebook),
     posterior: posteriorState(fit, notebook),
@@ -111,7 +122,13 @@ export function NotebookSheet(props: NotebookSheetProps) {
   const storageKey = foldKey(notebook.id, props.reader);
   const folds = useFolds(storageKey, states);
   const fold = (id: SectionId): SectionFold => ({ state: folds.of(id), onToggle: () => folds.toggle(id) });
-  const unsaved = [cut.changed ? 1 : 0, template.changed ? 2 : 0, priors.changed ? 3 : 0].filter(Boolean);
+  const unsaved = (
+    [
+      ['measurement', cut.changed],
+      ['template', template.changed],
+      ['priors', priors.changed],
+    ] as const
+  ).flatMap(([id, changed]) => (changed ? [sectionNumber(id)] : []));
 
   function show(id: string) {
     setChosen(id);
@@ -153,9 +170,10 @@ export function NotebookSheet(props: NotebookSheetProps) {
         points={points}
         draft={template}
         drawn={props.formula}
-        best={best}
+        found={found}
         fold={fold('template')}
       />
+      <ScanSection notebook={notebook} points={points} handle={scans} unsaved={unsaved} fold={fold('scan')} />
       <PriorsSection
         state={state}
         measurement={measurement}

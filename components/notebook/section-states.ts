@@ -47,13 +47,13 @@ export function posteriorState(
 
 export type SectionStates = Record<SectionId, State>;
 
-/**
- * Where the work stands: the chains while they run, else the first section that isn't settled, else the posterior. Words
- * are read or written last, and never called for.
- */
+/** Sections that are never called for: a scan may be left out, and words are read or written last. */
+const uncalled: readonly SectionId[] = ['scan', 'statement'];
+
+/** Where the work stands: the chains while they run, else the first section that isn't settled, else the posterior. */
 export function currentSection(states: SectionStates): SectionId {
   if (states.chains.kind === 'run' || states.chains.kind === 'wait') return 'chains';
-  return sectionIds.find((id) => id !== 'statement' && states[id].kind !== 'ok') ?? 'posterior';
+  return sectionIds.find((id) => !uncalled.includes(id) && states[id].kind !== 'ok') ?? 'posterior';
 }
 
 export function contentsEntries(states: SectionStates): ContentsEntry[] {

@@ -3,6 +3,7 @@
 const sections = [
   { id: 'measurement', title: 'Measurement' },
   { id: 'template', title: 'Template' },
+  { id: 'scan', title: 'Coverage and scan' },
   { id: 'priors', title: 'Priors' },
   { id: 'chains', title: 'Chains' },
   { id: 'posterior', title: 'Posterior' },
@@ -21,7 +22,17 @@ export function sectionTitle(id: SectionId): string {
   return sections[sectionNumber(id) - 1].title;
 }
 
-const figures = ['measurement', 'template', 'prior-predictive', 'traces', 'corner', 'best-fit'] as const;
+const figures = [
+  'measurement',
+  'template',
+  'window',
+  'scan',
+  'plane',
+  'prior-predictive',
+  'traces',
+  'corner',
+  'best-fit',
+] as const;
 export type NotebookFigure = (typeof figures)[number];
 
 /** From 1, in the order of the page. */

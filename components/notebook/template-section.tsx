@@ -38,6 +38,8 @@ export interface NamedPoint {
   /** "Best draw of fit 3" */
   label: string;
   values: Readonly<Record<string, number>>;
+  /** Parameters that it has no value for stay as they are, but for amplitudes, which are fitted there. */
+  fillIn?: boolean;
 }
 
 export interface TemplateSectionProps {
@@ -46,7 +48,8 @@ export interface TemplateSectionProps {
   points: KeptPoints;
   draft: Draft<TemplateSettings>;
   drawn: DrawnFormula;
-  best: NamedPoint | null;
+  /** Points that fits and scans found. */
+  found: readonly NamedPoint[];
   fold: SectionFold;
 }
 
@@ -69,13 +72,13 @@ function Explore({
   measurement,
   prediction,
   priors,
-  best,
+  found,
 }: {
   settings: TemplateSettings;
   measurement: Measurement;
   prediction: Prediction;
   priors: Readonly<Record<string, Prior>>;
-  best: NamedPoint | null;
+  found: readonly NamedPoint[];
 }) {
   const { parameters } = prediction.fine;
   const [set, setSet] = useState<Readonly<Record<string, number>>>({});
@@ -93,7 +96,18 @@ function Explore({
   const fields = prediction.fine.blocks.length;
   const named = (values: readonly number[]) =>
     Object.fromEntries(parameters.map(({ name }, i) => [name, values[i]]));
-  const fits = best && parameters.every(({ name }) => best.values[name] !== undefined) ? best : null;
+  const known = ({ values }: NamedPoint) => parameters.filter(({ name }) => values[name] !== undefined);
+  const usable = found.filter((point) =>
+    point.fillIn ? known(point).length > 0 : known(point).length === parameters.length,
+  );
+
+  function go(point: NamedPoint) {
+    const there = { ...set, ...point.values };
+    if (known(point).length === parameters.length) return setSet(there);
+    const from = parameters.map(({ name }, i) => point.values[name] ?? x[i]);
+    setSet({ ...there, ...named([...withBestAmplitudes(prediction, parameters, priors, from)]) });
+  }
+
   return (
     <>
       {measurement.blind ? (
@@ -136,7 +150,11 @@ function Explore({
         onMove={(values) => setSet({ ...set, ...named(values) })}
       />
       <Buttons>
-        {fits ? <Button onClick={() => setSet({ ...set, ...fits.values })}>{fits.label}</Button> : null}
+        {usable.map((point) => (
+          <Button key={point.label} onClick={() => go(point)}>
+            {point.label}
+          </Button>
+        ))}
         {measurement.blind ? null : (
           <Button
             onClick={() =>
@@ -164,7 +182,7 @@ function Explore({
 
 /** Which template, its formula, and what it predicts over the points. */
 export function TemplateSection(props: TemplateSectionProps) {
-  const { state, measurement, points, draft, drawn, best, fold } = props;
+  const { state, measurement, points, draft, drawn, found, fold } = props;
   const { notebook } = state;
   const section = useSectionSave(state);
   const settings = draft.value;
@@ -236,7 +254,7 @@ export function TemplateSection(props: TemplateSectionProps) {
           measurement={measurement}
           prediction={tried.prediction}
           priors={notebook.priors}
-          best={best}
+          found={found}
         />
       ) : (
         <Message level="warning" title="Nothing can be drawn with these options" quiet>

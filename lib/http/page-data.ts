@@ -19,6 +19,7 @@ import {
   storageStateSchema,
   statementSchema,
   tokenSchema,
+  trialsSchema,
   usersQuerySchema,
   type Fit,
   type Group,
@@ -31,6 +32,7 @@ import {
   type Settings,
   type Statement,
   type Token,
+  type Trials,
 } from '@/lib/schemas';
 import type { Action } from '@/lib/policies';
 import { authorise, type Access, type RecordKind } from '@/lib/services/access';
@@ -46,6 +48,7 @@ import { listMeasurements, readMeasurement } from '@/lib/services/measurements';
 import { readNotebook } from '@/lib/services/notebooks';
 import { readStatement } from '@/lib/services/statements';
 import { listTokens } from '@/lib/services/tokens';
+import { readTrials } from '@/lib/services/trials';
 
 /**
  * What pages are first drawn with: the very services behind the API's GETs, asked on behalf of the session, and
@@ -135,6 +138,9 @@ export const notebook = cache(async (actor: Actor, id: string): Promise<Notebook
 
 export const statement = async (actor: Actor, id: string): Promise<Statement> =>
   statementSchema.parse(await readStatement(await accessTo(actor, 'notebook', id, 'notebook.read')));
+
+export const trials = async (actor: Actor, id: string): Promise<Trials> =>
+  trialsSchema.parse(await readTrials(await accessTo(actor, 'notebook', id, 'notebook.read')));
 
 export const fit = cache(async (actor: Actor, id: string): Promise<Fit> => {
   const access = await accessTo(actor, 'fit', id, 'fit.read');

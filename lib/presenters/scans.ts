@@ -25,6 +25,7 @@ const nothing: { [K in keyof ScanResult]: null } = {
   globalP: null,
   nulls: null,
   globalPUpcrossing: null,
+  thresholds: null,
   aliases: null,
   coverage: null,
   window: null,

@@ -45,6 +45,9 @@ const heightSchema = {
   nulls: z.number().int(),
 };
 
+/** Heights that a share p of the nulls reaches anywhere in the range. */
+const thresholdsSchema = z.array(z.object({ p: z.number(), deltaChi2: z.number() }));
+
 export const scanResultSchema = z.object({
   mu: z.array(z.number()),
   deltaChi2: z.array(z.number()),
@@ -57,6 +60,8 @@ export const scanResultSchema = z.object({
   freedom: z.number().int().nullable(),
   ...heightSchema,
   globalPUpcrossing: numberOrNull,
+  /** Δχ² whose global p is 5 % and 1 %, of the nulls; empty where there are none, or too few. */
+  thresholds: thresholdsSchema.default([]),
   aliases: z.array(z.number()),
   coverage: z.object({
     length: z.number(),
@@ -103,6 +108,7 @@ export const scanSchema = z.object({
   globalP: found.globalP,
   nulls: found.nulls.nullable(),
   globalPUpcrossing: found.globalPUpcrossing,
+  thresholds: thresholdsSchema.nullable(),
   aliases: found.aliases.nullable(),
   coverage: found.coverage.nullable(),
   window: found.window.nullable(),
@@ -121,6 +127,8 @@ export const trialSchema = z.object({
   measurementVersion: z.number().int(),
   muMin: z.number(),
   muMax: z.number(),
+  /** Simulated measurements behind its global p; as many as were asked for until it has ended. */
+  nulls: z.number().int(),
   best: z.array(z.number()).nullable(),
   deltaChi2: numberOrNull,
   localP: numberOrNull,

@@ -1,6 +1,6 @@
 import { layOutParameters } from '@/lib/inference/parameter-layout';
 import type { InferenceSpec } from '@/lib/inference';
-import { reachOf, runScan, type NullHeights, type ScanOutcome } from '@/lib/inference/scan';
+import { nullThreshold, reachOf, runScan, type NullHeights, type ScanOutcome } from '@/lib/inference/scan';
 import { templateCoordinates } from '@/lib/inference/scan/template-coordinates';
 import { findTemplate, type Prior } from '@/lib/templates';
 import type { ScanRequest, ScanResult } from '@/lib/schemas';
@@ -124,6 +124,14 @@ export function performScan(
 
 const heightsOf = (nulls: NullHeights | null): Buffer | null => nulls && writeDoubles(nulls.heights);
 
+/** Global p whose heights a scan's figure shows. */
+const drawnLevels = [0.05, 0.01];
+
+function thresholdOf({ heights }: NullHeights, p: number): ScanResult['thresholds'] {
+  const deltaChi2 = nullThreshold(heights, p);
+  return deltaChi2 === null ? [] : [{ p, deltaChi2 }];
+}
+
 function present(outcome: ScanOutcome, { one }: ScanSpecs): ScanResult {
   const { line, nulls, plane, facts, window } = outcome;
   return {
@@ -137,6 +145,7 @@ function present(outcome: ScanOutcome, { one }: ScanSpecs): ScanResult {
     globalP: nulls?.globalP ?? null,
     nulls: nulls?.heights.length ?? 0,
     globalPUpcrossing: outcome.globalPUpcrossing,
+    thresholds: nulls ? drawnLevels.flatMap((p) => thresholdOf(nulls, p)) : [],
     aliases: outcome.aliases,
     coverage: facts,
     window: { mu: listed(window.mu), power: listed(window.power) },

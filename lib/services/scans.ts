@@ -3,7 +3,7 @@ import type { Transaction } from 'sequelize';
 import { Measurement, MeasurementVersion, Notebook, NotebookRevision, Scan } from '@/models';
 import { database } from '@/lib/db';
 import { AppError, notFound } from '@/lib/errors';
-import { priorSupport, priorMoments, isScalarPrior } from '@/lib/inference';
+import { scanRange } from '@/lib/inference/scan/scan-range';
 import { enqueueScan } from '@/lib/jobs';
 import { log } from '@/lib/log';
 import { presentScan } from '@/lib/presenters/scans';
@@ -27,44 +27,33 @@ import { checkScannable, scanSpecs, type ScanSpecs } from './scan-model';
 /** How long an answer waits for its scan. */
 const patience = 60_000;
 const pause = 200;
-/** Sds of a prior without ends that a scan reaches to. */
-const REACH = 4;
 
-/** The range that the mass priors reach over, within where the template is defined. */
+/** The range that was asked for, or else the one that the mass priors reach over, within where the template is defined. */
 function rangeOf(
   specs: ScanSpecs,
   priors: ScanRequest['priors'],
   body: StartScan,
 ): { muMin: number; muMax: number } {
-  const declared = specs.one.template.parameters.find(({ role }) => role === 'mass');
-  if (!declared) {
+  const range = scanRange(
+    (specs.two ?? specs.one).template.parameters.filter(({ role }) => role === 'mass'),
+    priors,
+  );
+  if (!range) {
     const message = 'The template has no frequency to scan for: choose one with a field.';
     throw new AppError('invalid', message, [{ path: 'template', message }]);
   }
-  const names = (specs.two ?? specs.one).template.parameters.filter(({ role }) => role === 'mass');
-  let [lo, hi] = [Infinity, -Infinity];
-  for (const { name } of names) {
-    const prior = priors[name];
-    if (!prior || !isScalarPrior(prior)) continue;
-    const { mean, sd } = priorMoments(prior);
-    const [from, to] = priorSupport(prior);
-    lo = Math.min(lo, Number.isFinite(from) ? from : mean - REACH * sd);
-    hi = Math.max(hi, Number.isFinite(to) ? to : mean + REACH * sd);
-  }
-  const [least, most] = declared.range;
-  const smallest = declared.exclusiveMinimum ? Math.max(least, 0.01) : least;
-  const muMin = body.muMin ?? Math.max(smallest, Math.min(lo, most));
-  const muMax = body.muMax ?? Math.min(most, hi);
+  const { least, most } = range;
+  const { muMin = range.lo, muMax = range.hi } = body;
   const refuse = (path: string, message: string): never => {
     throw new AppError('invalid', message, [{ path, message }]);
   };
   if (!Number.isFinite(muMin) || !Number.isFinite(muMax)) {
     refuse('muMin', 'The mass is fixed: say from where to where to scan (muMin, muMax).');
   }
-  if (muMin < smallest || muMax > most) {
+  if (muMin < least || muMax > most) {
     refuse(
-      muMin < smallest ? 'muMin' : 'muMax',
-      `The template is defined from ${smallest} to ${most}: keep the range within.`,
+      muMin < least ? 'muMin' : 'muMax',
+      `The template is defined from ${least} to ${most}: keep the range within.`,
     );
   }
   if (!(muMin < muMax))

@@ -38,6 +38,7 @@ function looksOf(scan: Scan, version: string, by: string): { trial: Trial; look:
       trial: {
         ...common,
         kind: 'one',
+        nulls: result?.nulls ?? request.nulls,
         best: result && [result.best.mu],
         deltaChi2: result?.best.deltaChi2 ?? null,
         localP: result?.localP ?? null,
@@ -52,6 +53,7 @@ function looksOf(scan: Scan, version: string, by: string): { trial: Trial; look:
             trial: {
               ...common,
               kind: 'two' as const,
+              nulls: plane.nulls,
               best: plane.best.mu,
               deltaChi2: plane.best.deltaChi2,
               localP: null,

@@ -250,7 +250,7 @@ describe('states of the sections', () => {
   });
 
   it('let the posterior wait for draws, and withhold it while blind', () => {
-    expect(posteriorState(null, notebook)).toEqual({ kind: 'wait', word: 'waits for 4' });
+    expect(posteriorState(null, notebook)).toEqual({ kind: 'wait', word: 'waits for 5' });
     expect(posteriorState(fitFixture({ status: 'converged' }), notebook)).toEqual({
       kind: 'ok',
       word: 'of fit 4',

@@ -12,7 +12,7 @@ export { planeGrid, scanPlane } from './plane-scan';
 export type { PlaneScan } from './plane-scan';
 export { NullDraws } from './null-draws';
 export type { NullSource } from './null-draws';
-export { globalTail, lineNulls, planeNulls, trialColumns } from './scan-nulls';
+export { globalTail, lineNulls, nullThreshold, planeNulls, trialColumns } from './scan-nulls';
 export type { NullHeights } from './scan-nulls';
 export { chiSquareTail, fTail, localTail, upcrossingTail } from './significance';
 export { aliasesOf, spectralWindow } from './spectral-window';

@@ -33,6 +33,16 @@ export const globalTail = (heights: ArrayLike<number>, observed: number): number
 };
 
 /**
+ * The height above which global p = (k + 1)/(n + 1) is at most `p`: with k = ⌊p (n + 1)⌋ − 1, the height that k of the n nulls
+ * exceed. Null where n nulls can't tell a p so small.
+ */
+export function nullThreshold(heights: ArrayLike<number>, p: number): number | null {
+  // A product such as 0.05 × 20 isn't always 1 in binary.
+  const k = Math.floor(p * (heights.length + 1) * (1 + 1e-12)) - 1;
+  return k < 0 ? null : Float64Array.from(heights).sort()[heights.length - 1 - k];
+}
+
+/**
  * The columns that a scan of one field tries at every place, whitened, or null where they aren't linear or there is more than one
  * block.
  */

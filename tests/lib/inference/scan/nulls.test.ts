@@ -2,8 +2,10 @@ import { describe, expect, it } from 'vitest';
 import { createRng } from '@/lib/sampler';
 import {
   buildCollapsedModel,
+  globalTail,
   lineNulls,
   NullDraws,
+  nullThreshold,
   planeNulls,
   runScan,
   trialColumns,
@@ -34,6 +36,23 @@ const whole = (spec: ReturnType<typeof madeUpSpec>, mocks: number | null) => ({
 
 const draws = (source: ConstructorParameters<typeof NullDraws>[0], seed = 'nulls'): NullDraws =>
   new NullDraws(source, createRng(`${seed}/data`), createRng(`${seed}/mocks`));
+
+describe('the height that a share of the nulls exceeds', () => {
+  it('is where global p comes down to it, by its own definition', () => {
+    const rng = createRng('thresholds');
+    const heights = Float64Array.from({ length: 199 }, () => rng.uniform());
+    for (const p of [0.005, 0.01, 0.05, 0.5]) {
+      const height = nullThreshold(heights, p) ?? NaN;
+      expect(globalTail(heights, height + 1e-12)).toBeLessThanOrEqual(p + 1e-12);
+      expect(globalTail(heights, height - 1e-12)).toBeGreaterThan(p);
+    }
+  });
+
+  it('is unknown where the nulls are too few', () => {
+    expect(nullThreshold(new Float64Array(18), 0.05)).toBeNull();
+    expect(nullThreshold(new Float64Array(19).fill(3), 0.05)).toBe(3);
+  });
+});
 
 describe('nulls', () => {
   it.each([
