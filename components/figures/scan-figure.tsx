@@ -153,16 +153,24 @@ function Zero({ panel, word }: { panel: Panel; word: string | null }) {
   );
 }
 
+/** Dashed heights with their global p; where two lie too close for two lines of text, the upper one names both. */
 function Thresholds({ thresholds, panel }: { thresholds: ScanFigureProps['thresholds']; panel: Panel }) {
   const pixels = usePixels('main');
-  return thresholds.map(({ p, deltaChi2 }) => {
+  const rising = [...thresholds].sort((a, b) => a.deltaChi2 - b.deltaChi2);
+  const close = (i: number) =>
+    i + 1 < rising.length && pixels.y(rising[i].deltaChi2) - pixels.y(rising[i + 1].deltaChi2) < 17;
+  return rising.map(({ p, deltaChi2 }, i) => {
     const at = pixels.y(deltaChi2);
+    const lower = i > 0 && close(i - 1) ? `${formatPercent(rising[i - 1].p)} and ` : '';
     return (
       <g key={p}>
         <path className="sum dash" d={`M${panel.left} ${at.toFixed(1)}H${panel.right}`} />
-        <text className="an" x={panel.right - 4} y={at - 5} textAnchor="end">
-          global p = {formatPercent(p)}
-        </text>
+        {close(i) ? null : (
+          <text className="an" x={panel.right - 4} y={at - 5} textAnchor="end">
+            global p = {lower}
+            {formatPercent(p)}
+          </text>
+        )}
       </g>
     );
   });

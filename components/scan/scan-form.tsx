@@ -6,6 +6,7 @@ import { RequestMessage } from '@/components/api/request-message';
 import { sectionNumber } from '@/components/notebook/sections';
 import { Button, Buttons } from '@/components/ui/button';
 import { NumberField } from '@/components/ui/number-field';
+import { Sym } from '@/components/ui/sym';
 import { plain } from '@/components/words/counts';
 import { formatCount } from '@/lib/figures/format';
 import type { ScanRange } from '@/lib/inference/scan/scan-range';
@@ -60,7 +61,11 @@ export function ScanForm({
     >
       <div className="grid max-w-figure grid-cols-3 gap-x-4 gap-y-2 max-tablet:grid-cols-1">
         <NumberField
-          label="From μ"
+          label={
+            <>
+              From <Sym base="μ" />
+            </>
+          }
           name="muMin"
           value={muMin}
           onValue={(value) => setWritten({ ...written, muMin: value })}
@@ -72,7 +77,11 @@ export function ScanForm({
           }
         />
         <NumberField
-          label="To μ"
+          label={
+            <>
+              To <Sym base="μ" />
+            </>
+          }
           name="muMax"
           value={muMax}
           onValue={(value) => setWritten({ ...written, muMax: value })}

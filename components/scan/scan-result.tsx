@@ -30,7 +30,7 @@ export function Significance({ scan }: { scan: Scan }) {
           <Sym base="μ" /> = {formatNumber(best.mu, 3)}
         </Num>
         , where one field lowers χ² by <Num>{formatNumber(best.deltaChi2, 1)}</Num>.{' '}
-        {globalP === null ? '' : verdict(globalP)}
+        {globalP === null ? '' : verdict(globalP, nulls ?? 0)}
       </p>
       <DefinitionList
         entries={[

@@ -1,11 +1,11 @@
-import { counted, inWords, plain } from '@/components/words/counts';
+import { inWords, plain } from '@/components/words/counts';
 import { formatCount, formatNumber } from '@/lib/figures/format';
 import type { Notebook, Scan, Trials } from '@/lib/schemas';
 import type { State } from '@/components/ui/state-word';
 import { isLocked } from './coverage';
 
 /** A probability with the two figures that matter: 0.013, 5 × 10⁻⁵. */
-export const probability = (p: number): string => (p > 0.995 ? '1' : plain(p, 2));
+export const probability = (p: number): string => (p > 0.995 ? '1' : plain(p, 2).replace(/^1 × /, ''));
 
 export const isPending = ({ status }: Pick<Scan, 'status'>): boolean =>
   status === 'queued' || status === 'running';
@@ -20,11 +20,14 @@ export function globalWords(p: number, nulls: number): string {
 }
 
 /** What the global p comes to, in calm words. */
-export function verdict(p: number): string {
+export function verdict(p: number, nulls: number): string {
   if (p > 0.05)
     return 'Nothing stands out: measurements without a signal rise as high often enough. That is a result like any other, and bounds what a signal could be.';
-  if (p > 0.003) return 'That is unusual without a signal, and not enough by itself to speak of one.';
-  return 'That is hard to come by without a signal. What else could make it, such as the covariance or the background, is not judged by this number.';
+  if (p <= 0.003)
+    return 'That is hard to come by without a signal. What else could make it, such as the covariance or the background, is not judged by this number.';
+  if (Math.round(p * (nulls + 1)) <= 1)
+    return 'It is rarer than so few nulls can tell; a scan with more of them says how rare.';
+  return 'That is unusual without a signal, and not enough by itself to speak of one.';
 }
 
 /** What the local p was read off. */
@@ -45,11 +48,10 @@ export function upcrossingWords(scan: Pick<Scan, 'request' | 'globalPUpcrossing'
   return `From the upcrossings of the nulls, by Gross and Vitells’ formula, p ≈ ${probability(scan.globalPUpcrossing)}.`;
 }
 
-/** "Three looks for a signal are in the log. Counting all of them, p = 0.2." */
-export function trialWords({ trials, smallestP, globalP }: Trials): string {
-  const looks = `${counted(trials.length, 'look')} for a signal ${trials.length === 1 ? 'is' : 'are'} in the log`;
-  if (globalP === null || smallestP === null) return `${looks}.`;
-  return `${looks}; the smallest p of one alone is ${probability(smallestP)}. Counting all of them, p = ${probability(globalP)}.`;
+/** The sentence of the log, with the smallest p alone and what is left of it beside the other looks. */
+export function trialWords({ statement, method, smallestP, globalP }: Trials): string {
+  if (globalP === null || smallestP === null || method === 'none') return statement;
+  return `${statement} The smallest p of one look alone is ${probability(smallestP)}; counting all of them, p = ${probability(globalP)}.`;
 }
 
 /** JSON with the names of every object in order, so that equal settings are equal texts. */

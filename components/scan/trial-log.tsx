@@ -6,7 +6,7 @@ import { Stamp } from '@/components/ui/num';
 import { Subheading } from '@/components/ui/section';
 import { StateWord } from '@/components/ui/state-word';
 import { DataTable } from '@/components/ui/table';
-import { capital, plain } from '@/components/words/counts';
+import { plain } from '@/components/words/counts';
 import { KappaRange } from '@/components/words/kappa';
 import { shortName } from '@/components/words/people';
 import { formatCount, formatNumber, noValue } from '@/lib/figures/format';
@@ -33,9 +33,7 @@ export function TrialLog({
   return (
     <>
       <Subheading>Log of looks</Subheading>
-      <p>
-        {capital(trialWords(trials))} {trials.statement}
-      </p>
+      <p>{trialWords(trials)}</p>
       <DataTable
         ruled
         caption="Looks for a signal in this notebook. None is ever removed, whatever it found."
@@ -43,8 +41,13 @@ export function TrialLog({
         columns={[
           { key: 'scan', head: 'Scan', phone: { area: '1 / 1' } },
           { key: 'what', head: 'What was looked for', phone: { area: '2 / 1 / 3 / 3' } },
-          { key: 'range', head: 'From, to μ', numeric: true, phone: { area: '3 / 1', label: 'μ' } },
-          { key: 'best', head: 'best μ', numeric: true, phone: { area: '3 / 2', label: 'best', end: true } },
+          {
+            key: 'range',
+            head: 'From, to μ',
+            numeric: true,
+            phone: { area: '3 / 1 / 4 / 3', label: 'range' },
+          },
+          { key: 'best', head: 'best μ', numeric: true, phone: { area: '4 / 1 / 5 / 3', label: 'best μ' } },
           { key: 'nulls', head: 'nulls', numeric: true, phone: 'drop' },
           { key: 'p', head: 'global p', numeric: true, phone: { area: '1 / 2', label: 'p', end: true } },
         ]}

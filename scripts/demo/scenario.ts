@@ -144,7 +144,7 @@ The measurement is simulated. What was put in is μ₁ = 1.9, μ₂ = 3.1 and θ
     seed: 'larkfield south',
     statement: `In the Larkfield southern cap we find no oscillation in ln κ. Whatever the mass of a heavy field within its prior, 97.5 % of the draws leave its amplitude below A = {97.5 % A1 of fit 1}, from all {bins of fit 1} bins.
 
-The mass itself stays open, as it has to where there is nothing to weigh: 95 % of the draws lie between μ = {95 % mu1 of fit 1}. The bound depends on the priors that section 3 prints, and holds for one field with a free phase.`,
+The mass itself stays open, as it has to where there is nothing to weigh: 95 % of the draws lie between μ = {95 % mu1 of fit 1}. The bound depends on the priors that section 4 prints, and holds for one field with a free phase.`,
   },
   {
     title: 'Would one field do for the Larkfield deep field?',

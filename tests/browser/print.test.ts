@@ -58,7 +58,7 @@ describe('a notebook on paper', () => {
     await page.waitForLoadState('networkidle');
     expect(await page.locator('figure svg').count()).toBe(0);
     const { pdf, onPaper } = await printed();
-    expect(onPaper.figures.map(({ label }) => label)).toHaveLength(6);
+    expect(onPaper.figures.map(({ label }) => label)).toHaveLength(7);
     for (const { label, marks, width } of onPaper.figures) {
       expect(marks, label).toBeGreaterThan(8);
       expect(width, label).toBe(720);

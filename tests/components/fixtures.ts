@@ -1,4 +1,4 @@
-import type { Fit, Measurement, Notebook } from '@/lib/schemas';
+import type { Fit, Measurement, Notebook, Scan, Trials } from '@/lib/schemas';
 
 /** A measurement of four bins with edges and a diagonal covariance. */
 export function measurementFixture(change: Partial<Measurement> = {}): Measurement {
@@ -168,6 +168,86 @@ export function fitFixture(change: Partial<Fit> = {}): Fit {
     endedAt: null,
     committedAt: '2027-03-10T14:04:00.000Z',
     may: ['fit.read', 'fit.stop', 'fit.extend'],
+    ...change,
+  };
+}
+
+/** A scan of `notebookFixture` that has ended. */
+export function scanFixture(change: Partial<Scan> = {}): Scan {
+  const { cuts, likelihood, template, priors, measurement } = notebookFixture();
+  return {
+    id: '7f2b6c0e-3a53-4b6a-9d8c-0d6f2f7a1b07',
+    notebookId: '7f2b6c0e-3a53-4b6a-9d8c-0d6f2f7a1b03',
+    number: 1,
+    status: 'done',
+    message: null,
+    progress: 1,
+    blind: false,
+    request: {
+      inputs: ['a'.repeat(64)],
+      measurementVersion: measurement.version,
+      cuts,
+      likelihood,
+      mockCount: null,
+      template,
+      priors,
+      muMin: 0.5,
+      muMax: 8,
+      nulls: 1000,
+      program: 'test',
+      sha256: 'b'.repeat(64),
+    },
+    startedBy: 'analyst@demo.beatnote.example',
+    createdAt: '2027-03-10T16:00:00.000Z',
+    endedAt: '2027-03-10T16:00:04.000Z',
+    mu: [0.5, 2.4, 8],
+    deltaChi2: [1, 13.4, 2],
+    logEvidence: [-10, -5, -11],
+    backgroundLogEvidence: -9,
+    best: { mu: 2.4, deltaChi2: 13.4, parameters: { mu1: 2.4, a1: 0.1, b1: 0.2, c1: 0.3 } },
+    localP: 0.00123,
+    freedom: 2,
+    globalP: 36 / 1001,
+    nulls: 1000,
+    globalPUpcrossing: 0.0351,
+    thresholds: [{ p: 0.05, deltaChi2: 12.1 }],
+    aliases: [6.66],
+    coverage: { length: 2.77, resolution: 2.27, spacing: 0.69, nyquist: 4.53 },
+    window: { mu: [0, 1], power: [1, 0.5] },
+    plane: null,
+    ...change,
+  };
+}
+
+export function trialsFixture(change: Partial<Trials> = {}): Trials {
+  const { id, number, status, request, startedBy, createdAt, localP, globalP } = scanFixture();
+  return {
+    trials: [
+      {
+        scan: id,
+        number,
+        kind: 'one',
+        status,
+        template: request.template,
+        cuts: request.cuts,
+        measurementVersion: 1,
+        muMin: request.muMin,
+        muMax: request.muMax,
+        nulls: request.nulls,
+        best: [2.4],
+        deltaChi2: 13.4,
+        localP,
+        globalP,
+        shared: true,
+        by: startedBy,
+        at: createdAt,
+      },
+    ],
+    smallestP: globalP,
+    globalP,
+    nulls: request.nulls,
+    method: 'none',
+    statement: 'One look for a signal was made, so there is nothing to correct for.',
     ...change,
   };
 }
