@@ -2,7 +2,7 @@ import { layOutParameters } from '@/lib/inference/parameter-layout';
 import type { InferenceSpec } from '@/lib/inference';
 import { nullThreshold, reachOf, runScan, type NullHeights, type ScanOutcome } from '@/lib/inference/scan';
 import { templateCoordinates } from '@/lib/inference/scan/template-coordinates';
-import { findTemplate, type Prior } from '@/lib/templates';
+import { fieldCount, findTemplate, type Prior } from '@/lib/templates';
 import type { ScanRequest, ScanResult } from '@/lib/schemas';
 import type { NotebookSettings } from '@/models';
 import {
@@ -26,13 +26,6 @@ export interface ScanJobModel {
 type Settings = Pick<ScanRequest, 'cuts' | 'likelihood' | 'template' | 'priors'>;
 
 const asBuffer = (bytes: Uint8Array): Buffer => Buffer.from(bytes.buffer, bytes.byteOffset, bytes.byteLength);
-
-/** How many fields a template's options ask for: a number, or a list of kinds. */
-export function fieldsOf(options: Record<string, unknown>): number {
-  const { fields } = options;
-  if (typeof fields === 'number') return fields;
-  return Array.isArray(fields) ? fields.length : 0;
-}
 
 /** The settings with `count` fields: priors of parameters that remain, the template's own for those that appear. */
 function withFields(settings: Settings, count: number): NotebookSettings {
@@ -66,7 +59,7 @@ export function scanSpecs(numbers: StoredNumbers, settings: Settings): ScanSpecs
   const points = cutPoints(stored, settings.cuts);
   const one = specOnPoints(points, numbers.mockCount, withFields(settings, 1));
   const two =
-    fieldsOf(settings.template.options) > 1
+    fieldCount(settings.template.options.fields) > 1
       ? specOnPoints(points, numbers.mockCount, withFields(settings, 2))
       : null;
   return { one: one.spec, two: two?.spec ?? null, notebook: one };

@@ -42,6 +42,10 @@ function rangeOf(
     const message = 'The template has no frequency to scan for: choose one with a field.';
     throw new AppError('invalid', message, [{ path: 'template', message }]);
   }
+  if ((specs.two ?? specs.one).template.blocks.some(({ kind }) => kind === 'light')) {
+    const message = 'A light field has no frequency to scan for: choose a template of heavy fields.';
+    throw new AppError('invalid', message, [{ path: 'template.options.fields', message }]);
+  }
   const { least, most } = range;
   const { muMin = range.lo, muMax = range.hi } = body;
   const refuse = (path: string, message: string): never => {

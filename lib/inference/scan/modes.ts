@@ -94,6 +94,8 @@ export function scanModes(
   const sampled = layout.masses.flatMap((index, f) => (layout.position[index] >= 0 ? [f] : []));
   if (layout.masses.length < 1 || layout.masses.length > 2 || sampled.length !== layout.masses.length)
     return null;
+  // The plane is one grid of μ for both fields: masses of different kinds have no such plane.
+  if (layout.masses.length === 2 && !layout.massOrder.ascending) return null;
   const ranges = layout.massPriors.map((prior) => massRange(prior));
   if (ranges.some(([lo, hi]) => !Number.isFinite(hi - lo))) return null;
   const [jump] = inference.jumps;

@@ -1,5 +1,6 @@
 import { describe, expect, it } from 'vitest';
-import { buildInference } from '@/lib/inference';
+import { buildInference, type InferenceSpec } from '@/lib/inference';
+import { scanModes } from '@/lib/inference/scan';
 import { createRng } from '@/lib/sampler';
 import { compileTemplate, type Prior } from '@/lib/templates';
 import { diagnoseAll, runReplicas } from './sampling';
@@ -8,17 +9,21 @@ const kappa = Float64Array.from({ length: 24 }, (_, i) => 0.004 * Math.exp(0.16 
 const covariance = (sd: number): Float64Array =>
   Float64Array.from({ length: 24 * 24 }, (_, k) => (k % 25 === 0 ? sd * sd : 0));
 
-function inferenceOf(fields: ('heavy' | 'light')[], truth: number[], sd: number, replaced = {}) {
+function specOf(fields: ('heavy' | 'light')[], truth: number[], sd: number, replaced = {}): InferenceSpec {
   const template = compileTemplate('locked-exact', { fields, vertex: 2 }, { kind: 'points', kappa });
   const priors: Record<string, Prior> = Object.fromEntries(
     template.parameters.map((p) => [p.name, p.defaultPrior]),
   );
-  return buildInference({
+  return {
     data: { S: template.predict(truth), covariance: covariance(sd), mockCount: null },
     likelihood: 'normal',
     template,
     priors: { ...priors, ...replaced },
-  });
+  };
+}
+
+function inferenceOf(...given: Parameters<typeof specOf>) {
+  return buildInference(specOf(...given));
 }
 
 describe('posteriors with light fields', () => {
@@ -66,5 +71,11 @@ describe('posteriors with light fields', () => {
     }
     expect(Math.abs(nu1.mean - 0.8)).toBeLessThan(3 * nu1.sd);
     expect(nu1.sd).toBeLessThan(0.3);
+  });
+
+  it('have modes of ν for one field, and none to compare where masses are of two kinds', () => {
+    const one = scanModes(specOf(['light'], [0.8, 5], 0.05), 'modes');
+    expect(one?.modes.length).toBeGreaterThan(0);
+    expect(scanModes(specOf(['light', 'heavy'], [0.8, 1.5, 0.7, 5], 0.05), 'modes')).toBeNull();
   });
 });
