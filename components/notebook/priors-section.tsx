@@ -140,6 +140,17 @@ const massPriors = (template: CompiledTemplate, priors: Priors): MassPrior[] =>
     return (priors[name] ?? defaultPrior) as MassPrior;
   });
 
+/** Share of independent draws in order below which drawing from the priors would keep the page waiting. */
+const rare = 1e-3;
+
+const shareInOrder = (template: CompiledTemplate, priors: Priors): number =>
+  Math.exp(
+    new MassOrder(
+      template.blocks.map(({ kind }) => kind),
+      massPriors(template, priors),
+    ).logProbability,
+  );
+
 /** What order leaves of the masses' priors, by name; nothing while a prior has to be mended. */
 function useInduced(
   template: CompiledTemplate,
@@ -169,7 +180,7 @@ function OrderNote({ template, priors }: { template: CompiledTemplate; priors: P
   const kinds = template.blocks.map(({ kind }) => kind);
   const chains = massChains(kinds).filter((chain) => chain.length > 1);
   if (chains.length === 0) return null;
-  const z = Math.exp(new MassOrder(kinds, massPriors(template, priors)).logProbability);
+  const z = shareInOrder(template, priors);
   return (
     <p className="max-w-figure text-small text-ink-2">
       Masses are put in order,{' '}
@@ -188,6 +199,9 @@ function OrderNote({ template, priors }: { template: CompiledTemplate; priors: P
       ))}
       . Of independent draws a share <Num>Z = {plain(z, 4)}</Num> is in order; the joint prior is divided by
       it. Grey: the density as stated. Line: what order leaves of it.
+      {z < rare
+        ? ' So few are in order that no band of predictions is drawn: bring the ranges of the masses nearer to their order.'
+        : ''}
     </p>
   );
 }
@@ -198,6 +212,7 @@ function usePredictive(prediction: Prediction | null, priors: Priors, sound: boo
     if (!prediction || !sound) return null;
     if (findPriorFaults(prediction.fine, settled).joint !== null) return null;
     if (Object.keys(findPriorFaults(prediction.fine, settled).byParameter).length) return null;
+    if (shareInOrder(prediction.fine, settled) < rare) return null;
     return priorPredictive(prediction.fine, settled, draws);
   }, [prediction, settled, sound]);
 }
