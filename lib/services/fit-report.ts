@@ -2,6 +2,7 @@ import type { Diagnostic, Mode } from '@/lib/schemas';
 import { judgeModes, modeTable, type ModeRow, type ModeScan } from '@/lib/inference/scan';
 import { diagnose, judgeGate, type Diagnosis, type GateTarget } from '@/lib/sampler';
 import type { FitColumns } from './fit-model';
+import { expectedEnd } from './fit-expectation';
 import { judgedFrom, storedOf, strideOf } from './fit-schedule';
 import type { StoredReport } from '@/lib/schemas/stored-report';
 
@@ -76,15 +77,6 @@ export class KeptDraws {
   }
 }
 
-/** Kept draws at which every quantity should reach its target, if sizes grow and R-hat falls as they must on average. */
-function expectedDraws(kept: number, judged: readonly Diagnosis[], target: GateTarget): number | null {
-  let factor = 0;
-  for (const { rhat, essBulk, essTail } of judged) {
-    factor = Math.max(factor, target.ess / Math.min(essBulk, essTail), (rhat - 1) / (target.rhat - 1));
-  }
-  return Number.isFinite(factor) && judged.length > 0 ? Math.max(judgedFrom, Math.ceil(factor * kept)) : null;
-}
-
 function decimate(history: StoredReport['history']): StoredReport['history'] {
   if (history.length <= longestHistory) return history;
   const last = history.length - 1;
@@ -152,16 +144,19 @@ export function lookAt(
     ess: found.map(({ diagnosis }) => orNull(Math.min(diagnosis.essBulk, diagnosis.essTail))),
   };
   const earlier = before.history.filter((past) => past.draws < kept);
+  const met = gate.met && apart.length === 0;
+  const isJudged = found.map((each) => judged.includes(each));
+  const ofJudged = ({ draws: at, rhat, ess }: typeof entry) => ({
+    draws: at,
+    rhat: rhat.filter((_, k) => isJudged[k]),
+    ess: ess.filter((_, k) => isJudged[k]),
+  });
   return {
     draws: look.draws,
     diagnostics: found.map(({ name, diagnosis }) => present(name, derived.has(name), diagnosis)),
     history: kept > 0 ? decimate([...earlier, entry]) : [],
-    gate: { met: gate.met && apart.length === 0, reasons: [...gate.reasons, ...apart] },
-    wanted: expectedDraws(
-      kept,
-      judged.map(({ diagnosis }) => diagnosis),
-      look.target,
-    ),
+    gate: { met, reasons: [...gate.reasons, ...apart] },
+    wanted: expectedEnd([...earlier, entry].map(ofJudged), look.target, met),
     acceptance: before.acceptance,
     ladder: before.ladder,
     logEvidence: before.logEvidence,
