@@ -87,7 +87,7 @@ function ScanDrawing({ figure, size }: { figure: ScanFigureProps; size: FigureSi
         />
       </clipPath>
       <Thresholds thresholds={thresholds} panel={upper} />
-      <Marks figure={figure} upper={upper} bottom={known ? lower.bottom : upper.bottom} />
+      <Marks figure={figure} upper={upper} lower={known ? lower : null} />
       <Line axis="main" clip={clip} mu={mu} values={deltaChi2} />
       <BestPoint best={best} />
       <Frame
@@ -177,14 +177,15 @@ function Thresholds({ thresholds, panel }: { thresholds: ScanFigureProps['thresh
 }
 
 /** A line through both panels at the best frequency, and a tick above the frame at each of its aliases. */
-function Marks({ figure, upper, bottom }: { figure: ScanFigureProps; upper: Panel; bottom: number }) {
+function Marks({ figure, upper, lower }: { figure: ScanFigureProps; upper: Panel; lower: Panel | null }) {
   const pixels = usePixels('main');
   const best = pixels.x(figure.best.mu);
   const aliases = figure.aliases.map(pixels.x);
   const right = best < upper.left + 0.75 * (upper.right - upper.left);
   return (
     <g>
-      <path className="lead" d={`M${best.toFixed(1)} ${upper.top - 8}V${bottom}`} />
+      <path className="lead" d={`M${best.toFixed(1)} ${upper.top - 8}V${upper.bottom}`} />
+      {lower ? <path className="lead" d={`M${best.toFixed(1)} ${lower.top}V${lower.bottom}`} /> : null}
       <text
         className="an strong"
         x={best + (right ? 6 : -6)}

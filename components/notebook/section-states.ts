@@ -1,7 +1,8 @@
 import type { ContentsEntry } from '@/components/ui/contents';
 import type { State } from '@/components/ui/state-word';
 import { fitState } from '@/components/fit/fit-words';
-import { settingSections, type Fit, type FitStatus, type Notebook } from '@/lib/schemas';
+import type { Fit, FitStatus, Notebook } from '@/lib/schemas';
+import { settingSections } from '@/lib/schemas/notebook-sections';
 import { sectionIds, sectionNumber, sectionTitle, type SectionId } from './sections';
 
 /** A form that is being changed is being set; what is saved is settled. */

@@ -1,5 +1,6 @@
 'use client';
 
+import dynamic from 'next/dynamic';
 import { useMemo } from 'react';
 import type { KeptPoints } from '@/components/notebook/kept-points';
 import { sectionNumber } from '@/components/notebook/sections';
@@ -17,10 +18,14 @@ import { fieldCount } from '@/lib/templates';
 import { rangeOf } from './coverage';
 import { CoveragePart } from './coverage-part';
 import { ScanForm } from './scan-form';
-import { ScanResultPart } from './scan-result';
 import { isOtherSettings, isPending, scanSentence, scanState } from './scan-words';
 import { TrialLog } from './trial-log';
 import type { ScanHandle } from './use-scans';
+
+/** Figures of a result are loaded where there is one; its room is kept meanwhile, as while it is being read. */
+const ScanResultPart = dynamic(() => import('./scan-result').then((module) => module.ScanResultPart), {
+  loading: () => <div aria-busy="true" className="min-h-[840px]" />,
+});
 
 function Progress({ scan, starting }: { scan: Scan | null; starting: boolean }) {
   const pending = scan && isPending(scan) ? scan : null;

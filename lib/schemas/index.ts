@@ -3,6 +3,7 @@ export * from './priors';
 export * from './templates';
 export * from './measurements';
 export * from './statements';
+export * from './notebook-sections';
 export * from './notebooks';
 export * from './fits';
 export * from './groups';

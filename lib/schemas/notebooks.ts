@@ -1,3 +1,4 @@
+import { notebookSections } from './notebook-sections';
 import { z } from 'zod';
 import { idSchema, instantSchema } from './shared';
 import { priorSchema, priorsSchema } from './priors';
@@ -42,12 +43,6 @@ export const notebookCreatedSchema = z.object({
   blind: z.boolean(),
 });
 export type NotebookCreated = z.infer<typeof notebookCreatedSchema>;
-
-/** What a revision of a notebook can have changed. */
-export const notebookSections = ['title', 'measurement', 'template', 'priors', 'statement'] as const;
-/** Those that a fit freezes: a change of one makes it a fit of an earlier revision. */
-export const settingSections: readonly NotebookSection[] = ['measurement', 'template', 'priors'];
-export type NotebookSection = (typeof notebookSections)[number];
 
 export const fitStatuses = [
   'queued',

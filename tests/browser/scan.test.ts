@@ -114,7 +114,7 @@ describe('the scan of one field', () => {
   it('gives its numbers as a table and as a file', async () => {
     const figure = section()
       .locator('figure')
-      .filter({ has: named(/^Rise of χ² and evidence/) });
+      .filter({ has: page.getByRole('img', { name: /^Rise of χ² and evidence/ }) });
     await figure.locator('summary').press('Enter');
     const download = page.waitForEvent('download');
     await figure.getByRole('button', { name: /CSV/ }).press('Enter');
