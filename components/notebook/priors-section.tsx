@@ -13,11 +13,12 @@ import { DataTable } from '@/components/ui/table';
 import { counted, inWords, plain } from '@/components/words/counts';
 import { inducedMarginals, massChains, MassOrder } from '@/lib/inference/mass-order';
 import type { MassPrior, OrderedMarginal } from '@/lib/inference/ordered-masses';
-import { priorPredictive, type PredictiveBand } from '@/lib/inference/prior-predictive';
+import type { PredictiveBand } from '@/lib/inference/prior-predictive';
 import type { Measurement } from '@/lib/schemas';
 import type { CompiledTemplate, Prior } from '@/lib/templates';
 import { ConflictMessage, twoStand } from './conflict-message';
 import { priorsSentence } from './fold-sentences';
+import { keptBand } from './kept-band';
 import type { KeptPoints } from './kept-points';
 import type { Prediction } from './prediction';
 import { findPriorFaults } from './prior-faults';
@@ -213,7 +214,7 @@ function usePredictive(prediction: Prediction | null, priors: Priors, sound: boo
     if (findPriorFaults(prediction.fine, settled).joint !== null) return null;
     if (Object.keys(findPriorFaults(prediction.fine, settled).byParameter).length) return null;
     if (shareInOrder(prediction.fine, settled) < rare) return null;
-    return priorPredictive(prediction.fine, settled, draws);
+    return keptBand(prediction, settled, draws);
   }, [prediction, settled, sound]);
 }
 
