@@ -29,6 +29,7 @@ import {
   type Measurement,
   type MeasurementListed,
   type Notebook,
+  type Role,
   type Settings,
   type Statement,
   type Token,
@@ -114,6 +115,10 @@ export const group = cache(async (actor: Actor, id: string): Promise<Group> => {
   const access = await accessTo(actor, 'group', id, 'group.read');
   return groupSchema.parse(await readGroup(access));
 });
+
+/** The role of somebody in a group, for pages that need no more of it. */
+export const roleIn = async (actor: Actor, groupId: string): Promise<Role> =>
+  (await accessTo(actor, 'group', groupId, 'group.read')).role;
 
 export const groupLog = async (actor: Actor, id: string, query: LogQuery): Promise<GroupLog> => {
   const access = await accessTo(actor, 'group', id, 'group.audit');

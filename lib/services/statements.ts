@@ -15,11 +15,13 @@ import type { Access } from './access';
 import { countKept } from './inference-spec';
 import { emailsOf } from './people';
 
-/** The fits of a notebook as a statement may speak of them, by number. */
+/** The fits of a notebook as a statement may speak of them, by number; none are read for words that refer to nothing. */
 async function referredFits(
   notebookId: string,
+  text: string,
   transaction?: Transaction,
 ): Promise<Map<number, ReferredFit>> {
+  if (referencesOf(parseStatement(text)).length === 0) return new Map();
   const fits = await Fit.findAll({ where: { notebookId }, transaction });
   if (fits.length === 0) return new Map();
   const versionIds = [...new Set(fits.map(({ measurementVersionId }) => measurementVersionId))];
@@ -99,7 +101,7 @@ export async function checkStatement(
   text: string,
   transaction: Transaction,
 ): Promise<void> {
-  const { faults } = typeset(text, await referredFits(notebookId, transaction));
+  const { faults } = typeset(text, await referredFits(notebookId, text, transaction));
   if (faults.length === 0) return;
   const [{ line, column, message }] = faults;
   const more = faults.length > 1 ? ` And ${faults.length - 1} more.` : '';
@@ -135,9 +137,9 @@ export async function readStatement(access: Access, at?: number): Promise<Statem
     const message = `Revision ${revision} isn’t there yet; revision ${notebook.revision} stands.`;
     throw new AppError('invalid', message, [{ path: 'revision', message }]);
   }
-  const [text, fits, changes] = await Promise.all([
-    statementAt(notebook.id, revision),
-    referredFits(notebook.id),
+  const text = await statementAt(notebook.id, revision);
+  const [fits, changes] = await Promise.all([
+    referredFits(notebook.id, text),
     NotebookRevision.findAll({
       where: { notebookId: notebook.id, statement: { [Op.ne]: null } },
       attributes: ['revision', 'createdBy', 'createdAt'],
@@ -164,5 +166,5 @@ export async function typesetStatement(
   { text }: { text: string },
 ): Promise<TypesetStatement> {
   access.require('notebook.edit');
-  return typeset(text, await referredFits(access.id));
+  return typeset(text, await referredFits(access.id, text));
 }

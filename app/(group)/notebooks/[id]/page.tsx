@@ -2,7 +2,7 @@ import type { Metadata } from 'next';
 import { PageChrome } from '@/components/account/page-chrome';
 import { FormulaBlock } from '@/components/notebook/formula-block';
 import { NotebookSheet } from '@/components/notebook/notebook-sheet';
-import { fit, group, measurement, notebook, statement, trials, version, visitor } from '@/lib/http/page-data';
+import { fit, measurement, notebook, roleIn, statement, trials, version, visitor } from '@/lib/http/page-data';
 import { defaultFit } from '@/lib/schemas';
 import { findTemplate } from '@/lib/templates';
 
@@ -21,9 +21,9 @@ export default async function NotebookPage({ params, searchParams }: Props) {
   const { id } = await params;
   const actor = await visitor(`/notebooks/${id}`);
   const opened = await notebook(actor, id);
-  const [measured, { role }, words, looks] = await Promise.all([
+  const [measured, role, words, looks] = await Promise.all([
     measurement(actor, opened.measurement.id, opened.measurement.version),
-    group(actor, opened.groupId),
+    roleIn(actor, opened.groupId),
     statement(actor, id),
     trials(actor, id),
   ]);
