@@ -3,16 +3,21 @@ import { endedStatuses, snapshotSchema } from '@/lib/schemas';
 import { fitBlocks, servedRows } from '@/lib/services/fit-draws';
 import { strideOf } from '@/lib/services/fit-schedule';
 import { Fit } from '@/models';
-import { newMeasures, type Summary } from './measures';
+import { Measure, newMeasures, type Summary } from './measures';
+import { webCpuReader } from './server-cpu';
 import { setStage } from './stage';
-import { view } from './viewer';
+import { ask, view, type Asked, type Sight } from './viewer';
 
 export interface LoadSettings {
   origin: string;
+  /** The state folder of the instance, for the processor time of its web server. */
+  state: string;
   viewers: number;
   queued: number;
   /** Seconds for which the viewers look. */
   seconds: number;
+  /** Mean seconds between two loads of the page by one viewer. */
+  think: number;
   /** Seconds that the queued fits may take to their end afterwards; then they are stopped. */
   patience: number;
   say(line: string): void;
@@ -22,6 +27,11 @@ export interface LoadReport {
   viewers: number;
   queued: number;
   seconds: number;
+  think: number;
+  /** Milliseconds of the web server's processor time that one answer costs, asked for again and again by one person. */
+  cost: Record<Asked, number>;
+  /** Processor time of the web server while the viewers looked, as a share of one core. */
+  busy: number;
   answers: Record<'page' | 'fit' | 'draws' | 'notebook' | 'lag', Summary>;
   events: { heard: number; backwards: number };
   fits: { ended: number; stopped: number };
@@ -55,32 +65,60 @@ async function untilEnded(ids: readonly string[], seconds: number): Promise<bool
   }
 }
 
+/** Answers of one kind that are weighed together: the kernel counts in steps of 10 ms. */
+const weighed = 30;
+
+/** What one answer costs the web server, less what it uses anyway; the first answers, which fill what is kept, don't count. */
+async function weigh(sight: Sight, cpu: () => number): Promise<Record<Asked, number>> {
+  const idle = { begun: performance.now(), cpu: cpu() };
+  await sleep(2_000);
+  const usedAnyway = (cpu() - idle.cpu) / (performance.now() - idle.begun);
+  const one = async (what: Asked): Promise<number> => {
+    const none = new Measure();
+    for (let i = 0; i < 5; i++) await ask(sight, what, none);
+    const begun = performance.now();
+    const before = cpu();
+    for (let i = 0; i < weighed; i++) await ask(sight, what, none);
+    return (cpu() - before - usedAnyway * (performance.now() - begun)) / weighed;
+  };
+  return {
+    page: await one('page'),
+    fit: await one('fit'),
+    draws: await one('draws'),
+    notebook: await one('notebook'),
+  };
+}
+
+async function untilDraws(id: string, seconds: number): Promise<void> {
+  const until = Date.now() + 1000 * seconds;
+  while (Date.now() < until) {
+    if ((await Fit.findByPk(id, { attributes: ['draws'] }))?.draws) return;
+    await sleep(200);
+  }
+  throw new Error('The fit that is to be watched made no draw: does a worker run?');
+}
+
 /** Puts an instance under load and says how it bore it. Works on groups of its own, which are removed in the end. */
 export async function runLoad(settings: LoadSettings): Promise<LoadReport> {
-  const { origin, viewers, queued, seconds, patience, say } = settings;
+  const { origin, viewers, queued, seconds, think, patience, say } = settings;
+  const cpu = webCpuReader(settings.state);
   say(`Setting up ${viewers} viewers of one fit and ${queued} queued fits`);
   const stage = await setStage({ viewers, queued });
   try {
+    const sights = stage.viewers.map(({ cookie, token }): Sight => {
+      return { origin, notebookId: stage.notebookId, fitId: stage.watchedId, cookie, token };
+    });
+    await untilDraws(stage.watchedId, 120);
     const measures = newMeasures();
     const over = AbortSignal.timeout(seconds * 1000);
     say(`Looking for ${seconds} s`);
-    const sights = await Promise.all(
-      stage.viewers.map(({ cookie, token }, i) =>
-        view(
-          {
-            origin,
-            notebookId: stage.notebookId,
-            fitId: stage.watchedId,
-            cookie,
-            token,
-            pace: { page: 15_000, draws: 5_000 },
-          },
-          i / viewers,
-          measures,
-          over,
-        ),
-      ),
-    );
+    const begun = performance.now();
+    const before = cpu();
+    const pace = { think: think * 1000, draws: 5_000 };
+    const seen = await Promise.all(sights.map((sight, i) => view(sight, pace, i / viewers, measures, over)));
+    const busy = (cpu() - before) / (performance.now() - begun);
+    say('Weighing single answers');
+    const cost = await weigh(sights[0], cpu);
     say('Waiting for the queued fits');
     await untilEnded(stage.queuedIds, patience);
     await stage.stopAll();
@@ -99,6 +137,9 @@ export async function runLoad(settings: LoadSettings): Promise<LoadReport> {
       viewers,
       queued,
       seconds,
+      think,
+      cost,
+      busy,
       answers: {
         page: measures.page.summary,
         fit: measures.fit.summary,
@@ -107,8 +148,8 @@ export async function runLoad(settings: LoadSettings): Promise<LoadReport> {
         lag: measures.lag.summary,
       },
       events: {
-        heard: sights.reduce((sum, { events }) => sum + events, 0),
-        backwards: sights.reduce((sum, { backwards }) => sum + backwards, 0),
+        heard: seen.reduce((sum, { events }) => sum + events, 0),
+        backwards: seen.reduce((sum, { backwards }) => sum + backwards, 0),
       },
       fits: { ended: ended - stopped, stopped },
       draws: { ...draws, lost: draws.committed - draws.found },

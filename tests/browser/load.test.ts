@@ -11,9 +11,11 @@ beforeAll(async () => {
   takeInstanceEnvironment();
   report = await runLoad({
     origin: url,
+    state,
     viewers: 10,
     queued: 3,
-    seconds: 12,
+    seconds: 24,
+    think: 6,
     patience: 90,
     say: () => undefined,
   });
