@@ -2,7 +2,16 @@ import type { Metadata } from 'next';
 import { PageChrome } from '@/components/account/page-chrome';
 import { FormulaBlock } from '@/components/notebook/formula-block';
 import { NotebookSheet } from '@/components/notebook/notebook-sheet';
-import { fit, measurement, notebook, roleIn, statement, trials, version, visitor } from '@/lib/http/page-data';
+import {
+  fit,
+  measurement,
+  notebook,
+  roleIn,
+  statement,
+  trials,
+  version,
+  visitor,
+} from '@/lib/http/page-data';
 import { defaultFit } from '@/lib/schemas';
 import { findTemplate } from '@/lib/templates';
 
