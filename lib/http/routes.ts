@@ -59,6 +59,7 @@ import {
 } from '@/lib/schemas';
 import type { Action } from '@/lib/policies';
 import { administrationRoutes } from './administration-routes';
+import { comparisonRoutes } from './comparison-routes';
 
 /** Largest part `meta` of an upload: a name, a description and column names. */
 export const metaLimit = 64 * 1024;
@@ -334,6 +335,7 @@ export const routes = {
     answer: createdSchema,
     status: 202,
   },
+  ...comparisonRoutes,
   'POST /notebooks/:id/scan': {
     summary: 'Scan for frequencies; answers when it has ended, or 202 with its id after a minute.',
     permission: 'scan.start',

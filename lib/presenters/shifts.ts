@@ -28,7 +28,8 @@ function diagnosticsOf({ fit }: Side): readonly Diagnostic[] {
   return storedReportSchema.parse(fit.report).diagnostics;
 }
 
-function marginalOf(diagnostic: Diagnostic | undefined): Marginal | null {
+/** Median and 68 % interval as they are shown; null where they have no value. */
+export function marginalOf(diagnostic: Diagnostic | undefined): Marginal | null {
   if (!diagnostic) return null;
   const { q50, q16, q84, sd, mcseMean } = diagnostic;
   if (q50 === null || q16 === null || q84 === null || sd === null) return null;

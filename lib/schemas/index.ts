@@ -13,3 +13,4 @@ export * from './log';
 export * from './take-up';
 export * from './administration';
 export * from './scans';
+export * from './comparison';

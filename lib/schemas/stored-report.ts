@@ -1,5 +1,6 @@
 import { z } from 'zod';
 import { diagnosticSchema, evidenceSchema, ladderSchema, modeSchema } from './fits';
+import { widthCurveSchema } from './comparison';
 import { numberOrNull } from './shared';
 
 /** What is kept of the looks at a fit; column `report`. Every number is of committed draws. */
@@ -21,6 +22,8 @@ export const storedReportSchema = z.object({
   noEvidence: z.string().nullable().default(null),
   /** Empty before the first look, and where there is no scan to compare with. */
   modes: z.array(modeSchema).default([]),
+  /** How the evidence hangs on the width of the amplitudes' prior; of the look that ended the fit, where it has one. */
+  widths: widthCurveSchema.nullable().default(null),
 });
 export type StoredReport = z.infer<typeof storedReportSchema>;
 
@@ -35,4 +38,5 @@ export const emptyReport: StoredReport = {
   logEvidence: null,
   noEvidence: 'no draw is kept yet',
   modes: [],
+  widths: null,
 };

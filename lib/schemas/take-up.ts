@@ -39,7 +39,7 @@ const shiftedFitSchema = z.object({
 });
 
 /** Median and 68 % interval of a marginal; `mcse` is the Monte Carlo standard error of the median. */
-const marginalSchema = z.object({
+export const marginalSchema = z.object({
   median: z.number(),
   lo68: z.number(),
   hi68: z.number(),

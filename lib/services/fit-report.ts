@@ -162,5 +162,6 @@ export function lookAt(
     logEvidence: before.logEvidence,
     noEvidence: before.noEvidence,
     modes: table.map(presentMode),
+    widths: null,
   };
 }

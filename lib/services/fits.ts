@@ -51,7 +51,8 @@ export async function wakeFit(fitId: string, epoch: number): Promise<void> {
   }
 }
 
-function freeze(version: MeasurementVersion, settings: NotebookSettings, body: StartFit): Snapshot {
+/** What a fit with these settings freezes; without a seed in `body` each call draws another. */
+export function freeze(version: MeasurementVersion, settings: NotebookSettings, body: StartFit): Snapshot {
   const { cuts, likelihood, template, priors } = settings;
   // Only what the schema lists is frozen, in the form in which it is hashed.
   return snapshotSchema.parse({
@@ -73,7 +74,7 @@ function freeze(version: MeasurementVersion, settings: NotebookSettings, body: S
 }
 
 /** The notebook of `access` as it stands, locked so that its fits are numbered one by one. */
-async function lockNotebook(access: Access, transaction: Transaction) {
+export async function lockNotebook(access: Access, transaction: Transaction) {
   const notebook = await Notebook.findByPk(access.id, { lock: true, transaction });
   if (!notebook) throw notFound('notebook');
   const [revision, version] = await Promise.all([

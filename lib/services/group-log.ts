@@ -24,6 +24,7 @@ const shownDetails = [
   'version',
   'revision',
   'sections',
+  'fields',
   'draws',
   'maxDraws',
   'restoredFrom',
