@@ -230,7 +230,10 @@ class FitRun {
   private async look(): Promise<boolean> {
     const { fitId, epoch, snapshot } = this.fit;
     const { draws } = this.standing;
-    const report = await Promise.race([this.reporter.look(draws, this.report, this.facts), this.overSettled]);
+    const report = await Promise.race([
+      this.reporter.look(this.standing, this.report, this.facts),
+      this.overSettled,
+    ]);
     if (!report) return false;
     const outcome = await this.persist('writing a report', () =>
       commitLook({

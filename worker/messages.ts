@@ -1,5 +1,6 @@
 import type { FitModel } from '@/lib/services/fit-model';
 import type { ReplicaFacts } from '@/lib/services/fit-moves';
+import type { Standing } from '@/lib/services/fit-commit';
 import type { FinishedScan } from '@/lib/services/scan-model';
 import type { StoredReport } from '@/lib/schemas/stored-report';
 
@@ -60,6 +61,8 @@ export interface LookRequest {
   before: StoredReport;
   /** What the replicas' states at these draws say. */
   facts: ReplicaFacts[];
+  /** What is asked of the fit, by which the look may end it. */
+  standing: Standing;
 }
 
 export type ReportQuestion = Append | LookRequest;

@@ -4,6 +4,8 @@ import { fitColumns, specOf } from '@/lib/services/fit-model';
 import { evidenceInReport } from '@/lib/services/fit-moves';
 import { scannedModes } from '@/lib/services/fit-modes';
 import { KeptDraws, lookAt, type ScannedModes } from '@/lib/services/fit-report';
+import { verdict } from '@/lib/services/fit-verdict';
+import { widthsOf } from '@/lib/services/fit-widths';
 import { judgedFrom } from '@/lib/services/fit-schedule';
 import { failureOf } from './failure';
 import { yieldToOthers } from './niceness';
@@ -30,10 +32,13 @@ port.on('message', (question: ReportQuestion) => {
     if (question.kind === 'append') {
       kept.append(question.replica, question.first, question.stride, question.values);
     } else {
-      const { draws, before, facts } = question;
+      const { draws, before, facts, standing } = question;
       if (draws - warmup >= judgedFrom && scanned === undefined) scanned = scannedModes(model);
       const report = lookAt(kept, columns, { warmup, draws, target }, before, scanned ?? null);
-      answer({ kind: 'report', report: { ...report, ...evidenceInReport(facts, exact) } });
+      // A fit that goes on gets other draws: only the last look says how the evidence hangs on the prior.
+      const ends = verdict(model.snapshot, report.gate.met, standing) !== null;
+      const widths = ends ? widthsOf(spec, kept, draws - warmup) : null;
+      answer({ kind: 'report', report: { ...report, ...evidenceInReport(facts, exact), widths } });
     }
   } catch (error) {
     answer(failureOf(error));

@@ -1,5 +1,6 @@
 import { Worker } from 'node:worker_threads';
 import type { FitModel } from '@/lib/services/fit-model';
+import type { Standing } from '@/lib/services/fit-commit';
 import type { ReplicaFacts } from '@/lib/services/fit-moves';
 import type { StoredReport } from '@/lib/schemas/stored-report';
 import { ThreadError } from './failure';
@@ -83,11 +84,11 @@ export class ReportThread {
     this.thread.postMessage({ kind: 'append', replica, first, stride, values });
   }
 
-  look(draws: number, before: StoredReport, facts: ReplicaFacts[]): Promise<StoredReport> {
+  look(standing: Standing, before: StoredReport, facts: ReplicaFacts[]): Promise<StoredReport> {
     return new Promise((resolve, reject) => {
       if (this.broken) return reject(new ThreadError(this.broken));
       this.waiting = { resolve, reject };
-      this.thread.postMessage({ kind: 'look', draws, before, facts });
+      this.thread.postMessage({ kind: 'look', draws: standing.draws, before, facts, standing });
     });
   }
 

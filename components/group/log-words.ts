@@ -33,8 +33,7 @@ const sentences: Readonly<Record<string, Say>> = {
   'notebook.archive': (subject) => `archived ${subject}`,
   'notebook.unarchive': (subject) => `took ${subject} out of the archive`,
   'notebook.delete': (_, told) => `deleted the notebook “${told('title')}”`,
-  'notebook.compare': (subject, told) =>
-    `compared numbers of fields in ${subject}: ${told('fields')}`,
+  'notebook.compare': (subject, told) => `compared numbers of fields in ${subject}: ${told('fields')}`,
   'scan.start': (subject, told) => `scanned ${subject} from μ = ${told('muMin')} to ${told('muMax')}`,
   'fit.start': (subject) => `started ${subject}`,
   'fit.stop': (subject, told, event) => `stopped ${draws(subject, told, event)}`,

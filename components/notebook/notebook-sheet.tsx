@@ -1,6 +1,8 @@
 'use client';
 
 import { useEffect, useEffectEvent, useMemo, useState } from 'react';
+import { ComparisonSection, comparisonState } from '@/components/comparison/comparison-section';
+import { useComparison } from '@/components/comparison/use-comparison';
 import { ChainsSection } from '@/components/fit/chains-section';
 import { bestIndex, drawValues, type FigureDraws } from '@/components/fit/draws';
 import { isRunning } from '@/components/fit/fit-words';
@@ -96,6 +98,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
     () => keepPoints(measurement, JSON.parse(keptKey) as Notebook['cuts']),
     [measurement, keptKey],
   );
+  const comparison = useComparison(notebook);
   const stored = useMemo(() => {
     const tried = tryPrediction(notebook.template, points);
     return 'prediction' in tried ? tried.prediction : null;
@@ -117,6 +120,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
     priors: sectionState(priors.changed, notebook),
     chains: chainsState(fit, notebook),
     posterior: posteriorState(fit, notebook),
+    comparison: comparisonState(notebook),
     statement: statementState(statement, words.changed),
   };
   const storageKey = foldKey(notebook.id, props.reader);
@@ -202,6 +206,14 @@ export function NotebookSheet(props: NotebookSheetProps) {
         draws={draws}
         quantities={quantities}
         fold={fold('posterior')}
+      />
+      <ComparisonSection
+        notebook={notebook}
+        comparison={comparison}
+        unsaved={unsaved}
+        fold={fold('comparison')}
+        onShow={show}
+        onStarted={state.refresh}
       />
       <StatementSection
         number={sectionNumber('statement')}

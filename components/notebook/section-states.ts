@@ -12,12 +12,31 @@ export function sectionState(changed: boolean, notebook: Pick<Notebook, 'may'>):
     : { kind: 'ok', word: 'settled' };
 }
 
-/** True where the notebook's settings changed after the revision that a fit froze. */
+/**
+ * Which revision settled what each one stands for. One that brings another back stands for what that one did, unless the
+ * measurement changed in between: it may rest on another version then.
+ */
+function settledBy({ record }: Pick<Notebook, 'record'>): Map<number, number> {
+  const settled = new Map<number, number>();
+  let last = 1;
+  for (const { revision, sections, restoredFrom } of record) {
+    if (sections.some((section) => settingSections.includes(section))) {
+      const between = record.filter(
+        (each) => each.revision > (restoredFrom ?? 0) && each.revision <= revision,
+      );
+      const sameNumbers = between.every((each) => !each.sections.includes('measurement'));
+      last = (restoredFrom !== null && sameNumbers ? settled.get(restoredFrom) : undefined) ?? revision;
+    }
+    settled.set(revision, last);
+  }
+  return settled;
+}
+
+/** True where the notebook's settings aren't those any more that a fit of this revision froze. */
 export function isOutdated(revision: number, notebook: Pick<Notebook, 'record'>): boolean {
-  return notebook.record.some(
-    (entry) =>
-      entry.revision > revision && entry.sections.some((section) => settingSections.includes(section)),
-  );
+  const settled = settledBy(notebook);
+  const standing = notebook.record.at(-1)?.revision ?? revision;
+  return settled.get(revision) !== settled.get(standing);
 }
 
 interface SomeFit {
@@ -49,7 +68,7 @@ export function posteriorState(
 export type SectionStates = Record<SectionId, State>;
 
 /** Sections that are never called for: a scan may be left out, and words are read or written last. */
-const uncalled: readonly SectionId[] = ['scan', 'statement'];
+const uncalled: readonly SectionId[] = ['scan', 'comparison', 'statement'];
 
 /** Where the work stands: the chains while they run, else the first section that isn't settled, else the posterior. */
 export function currentSection(states: SectionStates): SectionId {

@@ -7,6 +7,7 @@ const sections = [
   { id: 'priors', title: 'Priors' },
   { id: 'chains', title: 'Chains' },
   { id: 'posterior', title: 'Posterior' },
+  { id: 'comparison', title: 'Comparison' },
   { id: 'statement', title: 'Statement' },
 ] as const;
 
@@ -32,6 +33,8 @@ const figures = [
   'traces',
   'corner',
   'best-fit',
+  'bayes-factors',
+  'prior-widths',
 ] as const;
 export type NotebookFigure = (typeof figures)[number];
 

@@ -1,10 +1,10 @@
 import { comparisonSchema, comparisonStartedSchema, startComparisonSchema } from '@/lib/schemas';
-import type { Row } from './routes';
 
 /** Rows of the comparison of a notebook's fits. */
 export const comparisonRoutes = {
   'POST /notebooks/:id/comparisons': {
-    summary: 'Start the fits with 0, 1 and 2 fields, or as many as are named; those that are there are taken.',
+    summary:
+      'Start the fits with 0, 1 and 2 fields, or as many as are named; those that are there are taken.',
     permission: 'fit.start',
     body: startComparisonSchema,
     answer: comparisonStartedSchema,
@@ -15,4 +15,4 @@ export const comparisonRoutes = {
     permission: 'notebook.read',
     answer: comparisonSchema,
   },
-} as const satisfies Record<string, Row>;
+} as const;

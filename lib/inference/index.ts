@@ -4,6 +4,8 @@ export { InferenceError } from './inference-error';
 export type { InferenceErrorCode } from './inference-error';
 export { buildInference } from './build-inference';
 export { exactLogEvidence } from './exact-evidence';
+export { amplitudePriors, exactWidths, reweightedWidths } from './width-evidence';
+export type { WidthDraws, WidthPoint } from './width-evidence';
 export { buildLikelihood, matchedExponent } from './likelihoods';
 export type { Likelihood } from './likelihoods';
 export {

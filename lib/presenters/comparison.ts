@@ -75,7 +75,8 @@ function difference(set: Question, standing: Question): string {
 export function logRatio(one: LogEvidence | null, other: LogEvidence | null): LogEvidence | null {
   if (!one || !other) return null;
   const [a, b] = [one.error ** 2, other.error ** 2];
-  const dof = a + b > 0 ? (a + b) ** 2 / (a ** 2 / one.dof + b ** 2 / other.dof) : Math.min(one.dof, other.dof);
+  const dof =
+    a + b > 0 ? (a + b) ** 2 / (a ** 2 / one.dof + b ** 2 / other.dof) : Math.min(one.dof, other.dof);
   return { value: one.value - other.value, error: Math.sqrt(a + b), dof };
 }
 
@@ -127,7 +128,9 @@ function presentCompared(frozen: FrozenFit, factors: ReturnType<typeof factorsOf
     measurementVersion: snapshot.measurementVersion,
     cuts: snapshot.cuts,
     likelihood: snapshot.likelihood,
-    progress: ended ? 1 : Math.min(1, kept / Math.max(1, Math.min(fit.maxDraws, report.wanted ?? fit.maxDraws))),
+    progress: ended
+      ? 1
+      : Math.min(1, kept / Math.max(1, Math.min(fit.maxDraws, report.wanted ?? fit.maxDraws))),
     gate: report.gate,
     logEvidence,
     noEvidence: logEvidence ? null : ended ? report.noEvidence : 'the fit hasn’t ended yet',

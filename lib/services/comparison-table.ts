@@ -1,4 +1,11 @@
-import { Fit, Measurement, MeasurementVersion, Notebook, NotebookRevision, type NotebookSettings } from '@/models';
+import {
+  Fit,
+  Measurement,
+  MeasurementVersion,
+  Notebook,
+  NotebookRevision,
+  type NotebookSettings,
+} from '@/models';
 import { AppError, notFound } from '@/lib/errors';
 import {
   blindComparison,

@@ -49,31 +49,51 @@ export class KeptDraws {
 
   /** Every reported quantity's draws, one array a replica, as they are served when `kept` draws have been made. */
   chains(kept: number): Map<string, Float64Array[]> {
-    const { sampled, derived, width } = this.columns;
+    const { sampled, derived } = this.columns;
     const names = [...sampled, ...derived];
-    const stride = strideOf(kept);
-    const length = storedOf(kept);
     const result = new Map(names.map((name) => [name, [] as Float64Array[]]));
     const computed = new Float64Array(derived.length);
-    for (const blocks of this.blocks) {
-      const chains = names.map(() => new Float64Array(length));
-      let at = 0;
-      for (const block of blocks) {
-        const rows = block.values.length / width;
-        for (let row = 0; row < rows; row++) {
-          const draw = block.firstKept + row * block.stride;
-          if (draw >= kept || draw % stride !== 0) continue;
-          const offset = row * width;
-          for (let i = 0; i < sampled.length; i++) chains[i][at] = block.values[offset + 2 + i];
-          this.columns.derive(block.values, offset, computed);
-          for (let i = 0; i < derived.length; i++) chains[sampled.length + i][at] = computed[i];
-          at++;
-        }
-      }
-      if (at !== length) throw new Error(`A replica has ${at} stored draws where ${length} are due.`);
+    for (let replica = 0; replica < this.blocks.length; replica++) {
+      const chains = names.map(() => new Float64Array(storedOf(kept)));
+      this.visit(replica, kept, (values, offset, at) => {
+        for (let i = 0; i < sampled.length; i++) chains[i][at] = values[offset + 2 + i];
+        this.columns.derive(values, offset, computed);
+        for (let i = 0; i < derived.length; i++) chains[sampled.length + i][at] = computed[i];
+      });
       names.forEach((name, i) => result.get(name)?.push(chains[i]));
     }
     return result;
+  }
+
+  /** ln likelihood of the same draws, one array a replica. */
+  logLikelihood(kept: number): Float64Array[] {
+    return this.blocks.map((_, replica) => {
+      const chain = new Float64Array(storedOf(kept));
+      this.visit(replica, kept, (values, offset, at) => (chain[at] = values[offset]));
+      return chain;
+    });
+  }
+
+  /** Shows every served draw of a replica: the stored values that hold it, where it begins, and which it is. */
+  private visit(
+    replica: number,
+    kept: number,
+    show: (values: Float64Array, offset: number, at: number) => void,
+  ): void {
+    const { width } = this.columns;
+    const stride = strideOf(kept);
+    let at = 0;
+    for (const block of this.blocks[replica]) {
+      const rows = block.values.length / width;
+      for (let row = 0; row < rows; row++) {
+        const draw = block.firstKept + row * block.stride;
+        if (draw >= kept || draw % stride !== 0) continue;
+        show(block.values, row * width, at);
+        at++;
+      }
+    }
+    if (at !== storedOf(kept))
+      throw new Error(`A replica has ${at} stored draws where ${storedOf(kept)} are due.`);
   }
 }
 
