@@ -127,7 +127,8 @@ export async function startComparison(access: Access, body: StartComparison): Pr
       await write(settings, notebook.revision);
       await notebook.update({ revision, updatedBy: actor.userId, updatedAt: now }, { transaction });
     }
-    const { fields: _, ...start } = body;
+    const { seed, replicas, maxDraws, target } = body;
+    const start = { seed, replicas, maxDraws, target };
     const made = new Map<number, Fit>();
     for (const { fields, settings: each } of order) {
       const origin = { notebook, version, settings: each, revision: revisions.get(fields) ?? revision };
