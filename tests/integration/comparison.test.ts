@@ -166,6 +166,14 @@ describe('comparing the number of fields', () => {
         [1, false],
         [2, false],
       ]);
+      expect(table.widths.map(({ fields, curve }) => [fields, curve.method, curve.parameters])).toEqual([
+        [1, 'exact', ['a1', 'b1']],
+        [2, 'reweighted', ['a1', 'b1', 'a2', 'b2']],
+      ]);
+      for (const { curve } of table.widths) {
+        expect(curve.sd).toBe(known.model.prior_osc.sd);
+        expect(curve.points.find(({ factor }) => factor === 1)?.difference).toBeCloseTo(0, 9);
+      }
       // A further field has the priors of the first one.
       const { snapshot } = await fitOf(desk, fits[2].id);
       const { mean, sd } = known.model.prior_smooth;
