@@ -16,7 +16,11 @@ const more = Array.from({ length: mostFields + 1 }, (_, n) => n).filter(
 /** "Fits 3 and 4 were queued; fit 2 was there already." */
 function startedInWords({ fits, skipped }: ComparisonStarted): string {
   const numbers = (reused: boolean) =>
-    fits.filter((fit) => fit.reused === reused).map(({ number }) => String(number));
+    fits
+      .filter((fit) => fit.reused === reused)
+      .map(({ number }) => number)
+      .sort((a, b) => a - b)
+      .map(String);
   const name = (of: string[]) => `${of.length === 1 ? 'fit' : 'fits'} ${listed(of)}`;
   const were = (of: string[]) => (of.length === 1 ? 'was' : 'were');
   const [queued, there] = [numbers(false), numbers(true)];

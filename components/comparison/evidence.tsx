@@ -16,6 +16,8 @@ export function Missing({ children }: { children: ReactNode }) {
 
 /** A value with its error below it, and the error's degrees of freedom where they are asked for. */
 export function ValueWithError({ of, dof = false }: { of: WithError; dof?: boolean }) {
+  // Against itself.
+  if (of.value === 0 && of.error === 0) return '0';
   const { value, error } = withError(of);
   return (
     <>

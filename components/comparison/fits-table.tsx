@@ -15,7 +15,7 @@ function Gate({ fit }: { fit: ComparedFit }) {
   return (
     <span title={fit.gate.reasons.join(' ')}>
       <StateWord kind="open">not met</StateWord>
-      {reason ? <span className="sr-only">, because {reason}</span> : null}
+      {reason ? <span className="sr-only">: {reason}</span> : null}
     </span>
   );
 }

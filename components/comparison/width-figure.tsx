@@ -69,7 +69,7 @@ function Drawing({ lines, of, size }: Pick<WidthFigureProps, 'lines' | 'of'> & {
   );
   const panel: Panel = {
     left: size.narrow ? 44 : 52,
-    right: size.width - (size.narrow ? 62 : 84),
+    right: size.width - 84,
     top: 32,
     bottom: 203,
   };
@@ -94,7 +94,7 @@ function Drawing({ lines, of, size }: Pick<WidthFigureProps, 'lines' | 'of'> & {
       />
       <ZeroLine panel={panel} yAxisId="main" />
       <Own sd={lines[0].sd} panel={panel} />
-      <Lines lines={lines} panel={panel} />
+      <Lines lines={lines} />
     </Chart>
   );
 }
@@ -113,7 +113,7 @@ function Own({ sd, panel }: { sd: number; panel: Panel }) {
 }
 
 /** Each curve with its bars, and its marker and name at its last value. */
-function Lines({ lines, panel }: { lines: readonly WidthLine[]; panel: Panel }) {
+function Lines({ lines }: { lines: readonly WidthLine[] }) {
   const pixels = usePixels('main');
   const ends = lines.map(({ points }) => points.findLast(({ value }) => Number.isFinite(value)) ?? points[0]);
   const labels = spread(
@@ -144,7 +144,7 @@ function Lines({ lines, panel }: { lines: readonly WidthLine[]; panel: Panel }) 
             className={`mk f${fields}`}
             d={markerPath(fields - 1, pixels.x(ends[i].sd), pixels.y(ends[i].value), 3.6)}
           />
-          <text className="an" x={panel.right + 9} y={labels[i] + 5}>
+          <text className="an" x={pixels.x(ends[i].sd) + 9} y={labels[i] + 5}>
             {label}
           </text>
         </>

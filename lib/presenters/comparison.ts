@@ -70,10 +70,11 @@ function difference(set: Question, standing: Question): string {
 
 /**
  * ln of the ratio of two evidences: errors add in quadrature, degrees of freedom by Welch and Satterthwaite,
- * ν = (Σ s²)² / Σ (s⁴/ν).
+ * ν = (Σ s²)² / Σ (s⁴/ν). One and the same evidence has no error against itself.
  */
 export function logRatio(one: LogEvidence | null, other: LogEvidence | null): LogEvidence | null {
   if (!one || !other) return null;
+  if (one.value === other.value && one.error === other.error) return { value: 0, error: 0, dof: one.dof };
   const [a, b] = [one.error ** 2, other.error ** 2];
   const dof =
     a + b > 0 ? (a + b) ** 2 / (a ** 2 / one.dof + b ** 2 / other.dof) : Math.min(one.dof, other.dof);
