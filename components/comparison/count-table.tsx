@@ -48,6 +48,7 @@ export function CountTable({
     <>
       <DataTable
         ruled
+        label="Evidence against the number of fields"
         caption="Evidence against the number of fields. B is the ratio of evidences; errors are standard errors, with their degrees of freedom (dof), and no digit is finer than twice its error."
         columns={columns}
         rows={rows.map(({ count, fit }) => ({

@@ -26,6 +26,7 @@ export function FitsTable({ set, onShow }: { set: FitSet; onShow: (id: string) =
   return (
     <DataTable
       ruled
+      label={set.standing ? 'Fits that may be compared' : `Fits set apart, because ${set.apart ?? ''}`}
       caption={
         set.standing
           ? `Fits of the same numbers, bins and likelihood as the notebook’s (evidences: ${kind}); Bayes factors to the best of them.`

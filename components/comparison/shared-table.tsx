@@ -31,6 +31,7 @@ export function SharedTable({ fits }: { fits: readonly ComparedFit[] }) {
   if (!shared.length) return null;
   return (
     <DataTable
+      label="Parameters that the fits share"
       caption="Parameters that the fits share: median and 68 % interval, and the difference of the medians from the first row’s in units of √(sd² + sd²). Fields are told apart by their masses, so that μ₁ is the lightest of as many as the fit has."
       columns={[
         { key: 'parameter', head: 'Parameter' },

@@ -52,7 +52,7 @@ describe('the comparison of a notebook', () => {
   it('fills the table as the fits end, without a reload', { timeout: 240_000 }, async () => {
     const loads = analyst.loads();
     await expect.poll(async () => (await read()).includes('under way'), { timeout: 200_000 }).toBe(false);
-    const table = section().getByRole('table').first();
+    const table = section().getByRole('table', { name: 'Evidence against the number of fields' });
     await expect.poll(() => table.getByRole('row').count(), { timeout: 20_000 }).toBe(4);
     const none = (await table.getByRole('row', { name: /^No field/ }).innerText()).replace(/\s+/g, ' ');
     expect(none).toContain('exact');
