@@ -66,7 +66,7 @@ function NumberOfFields({
         each amplitude that the data settle. They compare the models that are listed, and say nothing of
         others.
       </Caution>
-      <WidthsPart comparison={comparison} />
+      {points.length > 1 ? <WidthsPart comparison={comparison} /> : null}
       <SharedTable fits={compared} />
     </>
   );
