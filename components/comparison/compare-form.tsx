@@ -6,7 +6,8 @@ import { RequestMessage } from '@/components/api/request-message';
 import { Button, Buttons } from '@/components/ui/button';
 import { CheckField } from '@/components/ui/field';
 import { capital, inWords, listed } from '@/components/words/counts';
-import { defaultFieldCounts, mostFields, type ComparisonStarted } from '@/lib/schemas';
+import type { ComparisonStarted } from '@/lib/schemas';
+import { defaultFieldCounts, mostFields } from '@/lib/schemas/field-counts';
 import { fieldsInWords } from './comparison-words';
 
 const more = Array.from({ length: mostFields + 1 }, (_, n) => n).filter(

@@ -1,12 +1,9 @@
 import { z } from 'zod';
+import { mostFields } from './field-counts';
 import { evidenceSchema, snapshotSchema, startFitSchema } from './fits';
 import { fitStatusSchema } from './notebooks';
 import { marginalSchema } from './take-up';
 import { idSchema, numberOrNull } from './shared';
-
-/** Numbers of fields that are compared where none are named, and the most there can be. */
-export const defaultFieldCounts: readonly number[] = [0, 1, 2];
-export const mostFields = 4;
 
 const fieldCountSchema = z.number().int().min(0).max(mostFields);
 

@@ -13,4 +13,5 @@ export * from './log';
 export * from './take-up';
 export * from './administration';
 export * from './scans';
+export * from './field-counts';
 export * from './comparison';
