@@ -15,6 +15,8 @@ export interface AmplitudeMap {
   /** Fields whose amplitude or phase is not drawn. */
   readonly amplitudeHeld: readonly boolean[];
   readonly phaseHeld: readonly boolean[];
+  /** True where the priors are the same at all masses, so that `prepare` does nothing. */
+  readonly constant: boolean;
   /** Settles the priors at the masses of the system. */
   prepare(system: FieldSystem, full: Float64Array): void;
   /** Before a draw: chooses what is discrete, then reads what is held. */
@@ -102,6 +104,7 @@ export function polarAmplitudes(layout: ParameterLayout): AmplitudeMap {
     phase,
     amplitudeHeld: amplitudes.map((index) => position[index] < 0),
     phaseHeld: phases.map((index) => position[index] < 0),
+    constant: true,
     prepare: () => undefined,
     begin: (_, full) => read(full),
     read,
@@ -172,6 +175,7 @@ export function mixedAmplitudes(layout: ParameterLayout): AmplitudeMap {
     phase,
     amplitudeHeld: priors.map(() => !free),
     phaseHeld: phases.map((index) => position[index] < 0),
+    constant: false,
     prepare(system, full) {
       const values = units.of(system, full);
       for (let f = 0; f < fields; f += 1) {

@@ -2,9 +2,12 @@ import { choleskyInto, forwardSolve, logDeterminant } from './cholesky';
 import {
   linearReference,
   drawCoefficient,
+  isExactReference,
+  lnPriorOverReference,
   lnCoefficientDensity,
   type LinearReference,
 } from './linear-reference';
+import type { FieldSystem } from './field-system';
 import type { ParameterLayout } from './parameter-layout';
 import type { WhitenedField } from './whitened-field';
 import type { Whitening } from './whitening';
@@ -24,8 +27,10 @@ import type { Rng } from '@/lib/sampler';
 export class LinearModel {
   /** Number of sampled background coefficients. */
   readonly count: number;
-  /** Parameter index of each. */
+  /** Parameter index of each; those drawn first, before the fields, stand last. */
   readonly indices: readonly number[];
+  /** How many are drawn first. */
+  readonly first: number;
   readonly weight: number;
   /** λ dᵀd + m_BᵀD_B⁻¹m_B − vᵀv. */
   readonly baseQuadratic: number;
@@ -33,6 +38,9 @@ export class LinearModel {
   readonly baseLogDeterminant: number;
   /** Constant of the log evidence: −½ (p ln 2π + ln |C| − p ln λ). */
   readonly constant: number;
+  /** What the background drawn first has of |v|² and of ln |P_B|. */
+  readonly firstQuadratic: number;
+  readonly firstLogDeterminant: number;
   private readonly p: number;
   private readonly data: Float64Array;
   private readonly columns: Float64Array;
@@ -49,6 +57,7 @@ export class LinearModel {
     background: Float64Array,
     weight: number,
     private readonly tail: { exponent: number; spread: number } | null = null,
+    boundedFirst = false,
   ) {
     const p = whitening.length;
     this.p = p;
@@ -59,6 +68,10 @@ export class LinearModel {
       if (layout.position[index] >= 0) free.push(j);
       else for (let i = 0; i < p; i += 1) this.data[i] -= layout.base[index] * background[j * p + i];
     });
+    const isFirst = (j: number): boolean =>
+      boundedFirst && !isExactReference(layout.priors[layout.background[j]]);
+    free.sort((a, b) => Number(isFirst(a)) - Number(isFirst(b)));
+    this.first = free.filter(isFirst).length;
     this.count = free.length;
     this.indices = free.map((j) => layout.background[j]);
     this.references = this.indices.map((index) => linearReference(layout.priors[index]));
@@ -85,6 +98,14 @@ export class LinearModel {
     forwardSolve(this.factor, n, this.v);
     this.baseQuadratic = quadratic - dotProduct(this.v, 0, this.v, 0, n);
     this.baseLogDeterminant = logDeterminant(this.factor, n) + logPrior;
+    let firstQuadratic = 0;
+    let firstLogDeterminant = 0;
+    for (let k = n - this.first; k < n; k += 1) {
+      firstQuadratic += this.v[k] * this.v[k];
+      firstLogDeterminant += 2 * Math.log(this.factor[k * n + k]);
+    }
+    this.firstQuadratic = firstQuadratic;
+    this.firstLogDeterminant = firstLogDeterminant;
     this.constant = -0.5 * (p * Math.log((2 * Math.PI) / weight) + whitening.logDeterminant);
     this.rest = new Float64Array(n);
     this.stores = fields.map(() => ({
@@ -178,7 +199,7 @@ export class LinearModel {
   ): void {
     this.settleRest(moments, coefficients);
     const n = this.count;
-    for (let j = n - 1; j >= 0; j -= 1) {
+    for (let j = n - 1 - this.first; j >= 0; j -= 1) {
       const { precision, linear } = this.conditional(j, full);
       full[this.indices[j]] = drawCoefficient(rng, this.references[j], precision, linear);
     }
@@ -192,11 +213,111 @@ export class LinearModel {
   ): number {
     this.settleRest(moments, coefficients);
     let sum = 0;
-    for (let j = this.count - 1; j >= 0; j -= 1) {
+    for (let j = this.count - 1 - this.first; j >= 0; j -= 1) {
       const { precision, linear } = this.conditional(j, full);
       sum += lnCoefficientDensity(full[this.indices[j]], this.references[j], precision, linear);
     }
     return sum;
+  }
+
+  /**
+   * The normal equations of the fields' coefficients and, behind them, of the background drawn first, the rest of the background
+   * integrated out: `out` row-major (lower triangle), `linear` the right-hand side. The fields have no reference in it yet.
+   */
+  joinFirst(
+    { size, gram, linear: own, moments }: Pick<FieldSystem, 'size' | 'gram' | 'linear' | 'moments'>,
+    out: Float64Array,
+    linear: Float64Array,
+  ): void {
+    const { count: n, first, factor, v } = this;
+    const total = size + first;
+    const from = n - first;
+    for (let i = 0; i < size; i += 1) {
+      const vi = moments[i >> 1].v;
+      const io = (i & 1) * n;
+      for (let j = 0; j <= i; j += 1) {
+        const vj = moments[j >> 1].v;
+        const jo = (j & 1) * n;
+        let sum = gram[i * size + j];
+        for (let k = from; k < n; k += 1) sum += vi[io + k] * vj[jo + k];
+        out[i * total + j] = sum;
+      }
+      let sum = own[i];
+      for (let k = from; k < n; k += 1) sum += vi[io + k] * v[k];
+      linear[i] = sum;
+    }
+    for (let i = from; i < n; i += 1) {
+      const row = (size + i - from) * total;
+      for (let j = 0; j < size; j += 1) {
+        const vj = moments[j >> 1].v;
+        const jo = (j & 1) * n;
+        let sum = 0;
+        for (let k = from; k <= i; k += 1) sum += factor[i * n + k] * vj[jo + k];
+        out[row + j] = sum;
+      }
+      for (let j = from; j <= i; j += 1) {
+        let sum = 0;
+        for (let k = from; k <= j; k += 1) sum += factor[i * n + k] * factor[j * n + k];
+        out[row + size + j - from] = sum;
+      }
+      let sum = 0;
+      for (let k = from; k <= i; k += 1) sum += factor[i * n + k] * v[k];
+      linear[size + i - from] = sum;
+    }
+  }
+
+  /** Draws the background that comes before the fields, from the factorised system of `joinFirst` (size × size) and its solved right-hand side. */
+  drawFirst(rng: Rng, factor: Float64Array, rest: Float64Array, full: Float64Array): void {
+    for (let k = this.first - 1; k >= 0; k -= 1) {
+      const { precision, linear } = this.conditionalFirst(k, factor, rest, full);
+      const j = this.count - this.first + k;
+      full[this.indices[j]] = drawCoefficient(rng, this.references[j], precision, linear);
+    }
+  }
+
+  /** ln density of `drawFirst` giving what stands in `full`. */
+  lnFirstDensity(factor: Float64Array, rest: Float64Array, full: Float64Array): number {
+    let sum = 0;
+    for (let k = this.first - 1; k >= 0; k -= 1) {
+      const { precision, linear } = this.conditionalFirst(k, factor, rest, full);
+      const j = this.count - this.first + k;
+      sum += lnCoefficientDensity(full[this.indices[j]], this.references[j], precision, linear);
+    }
+    return sum;
+  }
+
+  /**
+   * ln of what the priors of the background drawn first make of its integral, relative to their references, up to a constant; each
+   * coefficient with those after it at their `mean`.
+   */
+  firstCorrection(factor: Float64Array, rest: Float64Array, mean: Float64Array): number {
+    const n = rest.length;
+    let sum = 0;
+    for (let at = n - this.first; at < n; at += 1) {
+      const diagonal = factor[at * n + at];
+      const precision = diagonal * diagonal;
+      // The mean of the conditional at the means of the later ones is the mean itself.
+      sum += lnPriorOverReference(this.references[this.count - n + at], precision, precision * mean[at]);
+    }
+    return sum;
+  }
+
+  private conditionalFirst(
+    k: number,
+    factor: Float64Array,
+    solved: Float64Array,
+    full: Float64Array,
+  ): { precision: number; linear: number } {
+    const n = solved.length;
+    const at = n - this.first + k;
+    const diagonal = factor[at * n + at];
+    let rest = solved[at];
+    for (let i = at + 1; i < n; i += 1) {
+      rest -= factor[i * n + at] * full[this.indices[this.count - n + i]];
+    }
+    this.pair.precision = diagonal * diagonal;
+    this.pair.linear = diagonal * rest;
+    return this.pair;
   }
 
   /** v − Σ_f V_f c_f: what is left of the data for the background. */

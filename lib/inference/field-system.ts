@@ -10,6 +10,9 @@ export class FieldSystem {
   readonly gram: Float64Array;
   readonly linear: Float64Array;
   readonly moments: FieldMoments[] = [];
+  /** Counts the changes of what stands here, so that what was made of it can be kept. */
+  version = 0;
+  private readonly placed: Float64Array;
   private readonly block = new Float64Array(4);
 
   constructor(
@@ -19,6 +22,7 @@ export class FieldSystem {
     this.size = 2 * fields;
     this.gram = new Float64Array(this.size * this.size);
     this.linear = new Float64Array(this.size);
+    this.placed = new Float64Array(fields).fill(NaN);
   }
 
   /** Puts field `f` in place; its cross products are stale until `link`. */
@@ -26,6 +30,8 @@ export class FieldSystem {
     const n = this.size;
     const at = 2 * f * n + 2 * f;
     this.moments[f] = moments;
+    this.placed[f] = moments.mass;
+    this.version += 1;
     this.gram[at] = moments.gram[0];
     this.gram[at + 1] = moments.gram[1];
     this.gram[at + n] = moments.gram[1];
@@ -40,12 +46,22 @@ export class FieldSystem {
     for (let other = 0; other < this.fields; other += 1) if (other !== f) this.link(f, other);
   }
 
-  /** Settles the system for the masses of all fields (read through `mass`); no allocation. */
+  /** Settles the system for the masses of all fields (read through `mass`); no allocation. The same again costs nothing. */
   load(mass: (field: number) => number): void {
+    if (this.holds(mass)) return;
     for (let f = 0; f < this.fields; f += 1) {
       this.place(f, this.model.moments(f, mass(f)));
       for (let other = 0; other < f; other += 1) this.link(f, other);
     }
+  }
+
+  /** Whether it stands for these masses, with moments that weren't overwritten since. */
+  private holds(mass: (field: number) => number): boolean {
+    for (let f = 0; f < this.fields; f += 1) {
+      const wanted = mass(f);
+      if (this.placed[f] !== wanted || this.moments[f].mass !== wanted) return false;
+    }
+    return true;
   }
 
   private link(a: number, b: number): void {

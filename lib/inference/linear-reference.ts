@@ -1,6 +1,6 @@
 import type { Prior } from '@/lib/templates';
 import type { Rng } from '@/lib/sampler';
-import { drawTruncatedNormal, lnTruncatedNormal } from './gaussian-tail';
+import { drawTruncatedNormal, lnNormalInterval, lnTruncatedNormal } from './gaussian-tail';
 import { priorMoments, priorSupport, type ScalarPrior } from './priors';
 
 /**
@@ -82,4 +82,23 @@ export function lnCoefficientDensity(
 ): number {
   drawnNormal(reference, precision, linear, scratch);
   return lnTruncatedNormal(c, scratch[0], scratch[1], reference.lo, reference.hi);
+}
+
+/**
+ * ln of ∫ prior / ∫ reference of a coefficient whose conditional under the reference is exp(−½ precision c² + linear c), up to a
+ * constant of the prior.
+ */
+export function lnPriorOverReference(reference: LinearReference, precision: number, linear: number): number {
+  drawnNormal(reference, precision, linear, scratch);
+  const [mean, sd] = scratch;
+  const { lo, hi } = reference;
+  const inside =
+    lo === -Infinity && hi === Infinity ? 0 : lnNormalInterval((lo - mean) / sd, (hi - mean) / sd);
+  return (
+    0.5 * (mean / sd) ** 2 +
+    Math.log(sd) +
+    inside -
+    (0.5 * linear * linear) / precision +
+    0.5 * Math.log(precision)
+  );
 }

@@ -129,8 +129,8 @@ function samePoint(a: Float64Array, b: Float64Array): boolean {
   return true;
 }
 
-function stageOf(layout: ParameterLayout): FieldStage | null {
-  const inner = stageAtVertex(layout);
+function stageOf(layout: ParameterLayout, first: number): FieldStage | null {
+  const inner = stageAtVertex(layout, first);
   const { vertexAngle, position } = layout;
   return inner && vertexAngle >= 0 && position[vertexAngle] >= 0
     ? new VertexAngleStage(layout, inner)
@@ -138,16 +138,16 @@ function stageOf(layout: ParameterLayout): FieldStage | null {
 }
 
 /** The stage of the fields' parameters but for a sampled vertex angle. */
-function stageAtVertex(layout: ParameterLayout): FieldStage | null {
+function stageAtVertex(layout: ParameterLayout, first: number): FieldStage | null {
   switch (layout.template.structure) {
     case 'background':
       return null;
     case 'linear':
       return new QuadratureStage(layout);
     case 'polar':
-      return new PolarStage(polarAmplitudes(layout), layout.masses.length);
+      return new PolarStage(polarAmplitudes(layout), layout.masses.length, first);
     case 'mixed-polar':
-      return new PolarStage(mixedAmplitudes(layout), layout.masses.length);
+      return new PolarStage(mixedAmplitudes(layout), layout.masses.length, first);
     case 'mixed':
       return new MixingStage(layout);
   }
@@ -176,8 +176,9 @@ function massSettings(
   stage: FieldStage,
   likelihood: Likelihood,
 ): MassProposalSettings {
+  const near = layout.template.structure === 'polar' || (stage.exact && likelihood.exponent === null);
   return {
-    temper: stage.exact && likelihood.exponent === null ? 0.9 : 1 / 1.5,
+    temper: near ? 0.9 : 1 / 1.5,
     floor: 0.05,
     explorer: layout.template.structure === 'mixed' ? new LooseEvidence(layout) : null,
   };
@@ -196,7 +197,7 @@ export function buildSpectralJump(
 ): JumpProposal {
   const model = referenceModel(layout, likelihood, whitening, fields, background);
   const system = new FieldSystem(model, fields.length);
-  const stage = stageOf(layout);
+  const stage = stageOf(layout, model.first);
   if (!stage) return new SpectralJump(layout, noMasses, system, null);
   const grids = new FieldSystem(model, fields.length);
   const settings = massSettings(layout, stage, likelihood);
@@ -228,8 +229,9 @@ function referenceModel(
   fields: readonly WhitenedField[],
   background: Float64Array,
 ): LinearModel {
+  const polar = layout.template.structure === 'polar' || layout.template.structure === 'mixed-polar';
   const make = (weight: number, tail: { exponent: number; spread: number } | null): LinearModel =>
-    new LinearModel(layout, whitening, fields, background, weight, tail);
+    new LinearModel(layout, whitening, fields, background, weight, tail, polar);
   const { exponent, spread } = likelihood;
   if (exponent === null || spread === null) return make(likelihood.scale, null);
   const first = make(exponent / (spread + whitening.length), null);
