@@ -91,6 +91,7 @@ function showP1(p1: P1Result, baselines: Baseline[]): void {
     soon === null ? 'not reached' : soon.toFixed(2),
   );
   row('likelihood evaluations a CPU second', whole(p1.evaluationsPerCpuSecond));
+  if (baselines.length === 0 && Number(values.runs) === 0) return;
   if (baselines.length === 0) {
     process.stdout.write(
       '  No comparison: Python 3 with emcee (Debian: python3-emcee) is not installed here.\n',

@@ -3,7 +3,13 @@ import type { TemplateSettings } from '@/components/notebook/prediction';
 import { coverageFacts, type CoverageFacts } from '@/lib/inference/summary';
 import { scanRange, type ScanRange } from '@/lib/inference/scan/scan-range';
 import { spectralWindow, type SpectralWindow } from '@/lib/inference/scan/spectral-window';
-import { findTemplate, TemplateError, type ParameterDeclaration, type Prior } from '@/lib/templates';
+import {
+  findTemplate,
+  isLightMass,
+  TemplateError,
+  type ParameterDeclaration,
+  type Prior,
+} from '@/lib/templates';
 
 export interface Coverage {
   facts: CoverageFacts;
@@ -56,7 +62,10 @@ function scannedMasses({ id, options }: TemplateSettings): readonly ParameterDec
 export const rangeOf = (
   template: TemplateSettings,
   priors: Readonly<Record<string, Prior>>,
-): ScanRange | null => scanRange(scannedMasses(template), priors);
+): ScanRange | null => {
+  const masses = scannedMasses(template);
+  return masses.some(isLightMass) ? null : scanRange(masses, priors);
+};
 
 /** True where a field's phase is a function of its mass: no parameter of the template turns it. */
 export function isLocked({ id, options }: Pick<TemplateSettings, 'id' | 'options'>): boolean {

@@ -75,7 +75,7 @@ function ScanPart({
       <Subheading>Scan</Subheading>
       {range === null ? (
         <p>
-          The template has no frequency to scan for: choose one with a field in section{' '}
+          The template has no frequency to scan for: choose one of heavy fields in section{' '}
           {sectionNumber('template')}.
         </p>
       ) : (

@@ -29,6 +29,7 @@ export {
   mixingWeights,
 } from './mixing';
 export { fieldCount } from './options';
+export { isLightMass } from './parameters';
 export type { OptionDeclaration } from './options';
 export type { TemplateFormula } from './formula';
 export type { TemplateDeclaration } from './declaration';

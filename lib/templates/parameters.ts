@@ -41,6 +41,11 @@ export function lightMassParameter(field: number, number: number): ParameterDecl
   };
 }
 
+/** True for the mass parameter of a light field, ν, which has no frequency. */
+export function isLightMass({ role, symbol }: Pick<ParameterDeclaration, 'role' | 'symbol'>): boolean {
+  return role === 'mass' && symbol.base === 'ν';
+}
+
 /** a (cosine) or b (sine) of field `field`. */
 export function quadratureParameter(field: number, which: 'a' | 'b'): ParameterDeclaration {
   const n = String(field + 1);
