@@ -18,8 +18,8 @@ import {
 export class Disturbed {
   private constructor(
     readonly desk: Desk,
-    private readonly notebook: string,
-    private readonly settings: Record<string, unknown>,
+    readonly notebook: string,
+    readonly settings: Record<string, unknown>,
     private readonly undisturbed: Outcome,
     /** Seconds that the undisturbed fit was sampled. */
     readonly seconds: number,
