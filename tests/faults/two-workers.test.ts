@@ -1,3 +1,4 @@
+import { loadavg } from 'node:os';
 import { Op } from 'sequelize';
 import { afterAll, beforeAll, describe, expect } from 'vitest';
 import { Fit } from '@/models';
@@ -51,6 +52,8 @@ interface Round {
   shares: number[];
   /** From the first fit that was taken to the last end, by the database's clock. */
   seconds: number;
+  /** Processes that wanted a core in the last minute: with more than the round's own, its seconds say little. */
+  load: number;
   /** Sample files in the order of the seeds. */
   files: string[];
 }
@@ -65,6 +68,7 @@ async function sample(workers: number, count: number): Promise<Round> {
     fits.push({ desk, id: await startFit(desk, notebook, settings) });
   }
   for (const { desk, id } of fits) expect((await fitEnded(desk, id)).status).toBe('budget-spent');
+  const [load] = loadavg();
   for (const worker of started) await worker.stop();
   const files: string[] = [];
   for (const { desk, id } of fits) files.push(await samplesOf(desk, id));
@@ -76,7 +80,7 @@ async function sample(workers: number, count: number): Promise<Round> {
   const over = Math.max(...rows.map(({ endedAt }) => endedAt!.getTime()));
   const shares = started.map(({ fits: held }) => ids.filter((id) => held.has(id)).length);
   expect(shares.reduce((sum, share) => sum + share)).toBe(count);
-  return { shares, seconds: (over - begun) / 1000, files };
+  return { shares, seconds: (over - begun) / 1000, load, files };
 }
 
 describe('a second worker', () => {
@@ -98,6 +102,8 @@ describe('a second worker', () => {
         shares: two.shares,
         secondsWithOne: one.seconds,
         secondsWithTwo: two.seconds,
+        loadWithOne: one.load,
+        loadWithTwo: two.load,
         ratio: two.seconds / one.seconds,
       });
       // Of eight fits of one length three at least: each is free for another whenever its own has ended.
