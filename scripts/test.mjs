@@ -59,9 +59,11 @@ async function suite(project, env = {}) {
     report = { numPassedTests: 0, numFailedTests: 0, numFailedTestSuites: 1 };
   }
   passed += report.numPassedTests;
-  // A file that couldn't be loaded has no tests; it counts as one that failed, and so does a crash after the last test.
+  // A file that failed without a test of its own that did (not loaded, or its set-up failed) counts as one, and so does a
+  // crash after the last test.
   const broken = (report.testResults ?? []).filter(
-    (result) => result.status === 'failed' && result.assertionResults.length === 0,
+    ({ status, assertionResults }) =>
+      status === 'failed' && !assertionResults.some((each) => each.status === 'failed'),
   ).length;
   const faults = report.numFailedTests + broken;
   failed += code !== 0 && faults === 0 ? 1 : faults;

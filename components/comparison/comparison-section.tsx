@@ -1,21 +1,23 @@
 'use client';
 
+import dynamic from 'next/dynamic';
 import { isRunning } from '@/components/fit/fit-words';
-import { figureNumber, sectionNumber } from '@/components/notebook/sections';
+import { sectionNumber } from '@/components/notebook/sections';
 import type { SectionFold } from '@/components/notebook/use-folds';
-import { Caution } from '@/components/ui/caution';
 import { Section, Subheading } from '@/components/ui/section';
 import type { State } from '@/components/ui/state-word';
 import { capital, counted, listed } from '@/components/words/counts';
-import type { ComparedFit, Comparison, Notebook } from '@/lib/schemas';
-import { defaultFieldCounts } from '@/lib/schemas/field-counts';
+import type { Comparison, Notebook } from '@/lib/schemas';
 import { CompareForm } from './compare-form';
-import { CountFigure, type CountPoint } from './count-figure';
-import { CountTable } from './count-table';
 import { fieldsInWords, fitsById } from './comparison-words';
 import { FitsTable } from './fits-table';
-import { SharedTable } from './shared-table';
-import { WidthsPart } from './widths-part';
+
+/** Tables and figures of a comparison are loaded where there is one. */
+const NumberOfFields = dynamic(() => import('./number-of-fields').then((module) => module.NumberOfFields));
+
+/** True once two numbers of fields have a fit each: one alone compares nothing. */
+const compares = ({ counts, noFamily }: Comparison): boolean =>
+  !noFamily && counts.filter(({ fit }) => fit !== null).length > 1;
 
 export function comparisonState(notebook: Pick<Notebook, 'blind' | 'fits'>): State {
   if (notebook.blind) return { kind: 'blind', word: 'blind' };
@@ -32,45 +34,6 @@ export function comparisonSentence(notebook: Pick<Notebook, 'blind' | 'fits'>): 
   const { fits } = notebook;
   if (!fits.length) return 'No fit to compare yet.';
   return `${capital(counted(fits.length, 'fit'))} side by side.`;
-}
-
-/** Bayes factors for the figure: to no field where that has an evidence, else to the best. */
-function pointsOf(counts: Comparison['counts']): { points: CountPoint[]; against: string } {
-  const toNone = counts.some(({ lnBayesNone }) => lnBayesNone);
-  const points = counts.flatMap(({ fields, lnBayesNone, lnBayesBest }) => {
-    const factor = toNone ? lnBayesNone : lnBayesBest;
-    return factor ? [{ fields, value: factor.value, error: factor.error }] : [];
-  });
-  return { points, against: toNone ? 'no field' : 'the best' };
-}
-
-function NumberOfFields({
-  comparison,
-  fits,
-}: {
-  comparison: Comparison;
-  fits: ReadonlyMap<string, ComparedFit>;
-}) {
-  const counts = comparison.counts.filter(
-    ({ fields, fit }) => fit !== null || defaultFieldCounts.includes(fields),
-  );
-  const { points, against } = pointsOf(counts);
-  const compared = counts.flatMap(({ fit }) => (fit ? (fits.get(fit) ?? []) : []));
-  return (
-    <>
-      <CountTable counts={counts} fits={fits} />
-      {points.length > 1 ? (
-        <CountFigure number={figureNumber('bayes-factors')} points={points} against={against} />
-      ) : null}
-      <Caution>
-        Bayes factors depend on the amplitude prior’s width: a prior twice as wide takes about ln 2 off for
-        each amplitude that the data settle. They compare the models that are listed, and say nothing of
-        others.
-      </Caution>
-      {points.length > 1 ? <WidthsPart comparison={comparison} /> : null}
-      <SharedTable fits={compared} />
-    </>
-  );
 }
 
 export interface ComparisonSectionProps {
@@ -118,7 +81,7 @@ export function ComparisonSection(props: ComparisonSectionProps) {
           ) : null}
           {comparison && fits && some ? (
             <>
-              {comparison.noFamily ? null : <NumberOfFields comparison={comparison} fits={fits} />}
+              {compares(comparison) ? <NumberOfFields comparison={comparison} fits={fits} /> : null}
               <Subheading>All fits of this notebook</Subheading>
               {comparison.sets.map((set) => (
                 <FitsTable key={set.apart ?? 'standing'} set={set} onShow={props.onShow} />

@@ -1,8 +1,7 @@
 'use client';
 
 import type { ReactNode, RefObject } from 'react';
-import { toCsv, type FigureNumbers } from '@/lib/figures/csv';
-import { savePng, saveSvg, saveText } from './save-figure';
+import type { FigureNumbers } from '@/lib/figures/csv';
 
 export interface Saved {
   numbers: () => FigureNumbers;
@@ -22,6 +21,9 @@ export interface FigureCaptionProps {
 const item =
   'cursor-pointer px-[4px] text-action underline decoration-1 underline-offset-[3px] max-tablet:py-[8px]';
 
+/** Loaded when somebody saves a figure. */
+const saving = () => import('./save-figure');
+
 /** Opens in line at the right of the caption. */
 function Save({
   number,
@@ -32,9 +34,9 @@ function Save({
 }: Omit<FigureCaptionProps, 'children' | 'saved'> & { saved: Saved }) {
   const { numbers, fileName } = saved;
   const svg = () => drawing.current?.querySelector('svg');
-  const save = (how: (svg: SVGSVGElement, name: string) => Promise<void>) => () => {
+  const save = (how: 'saveSvg' | 'savePng') => async () => {
     const found = svg();
-    if (found) void how(found, fileName);
+    if (found) await (await saving())[how](found, fileName);
   };
   return (
     <details className="no-print group ml-auto flex-none text-right font-controls text-note max-tablet:mt-[2px] max-tablet:text-left">
@@ -50,12 +52,12 @@ function Save({
       </summary>
       <ul className="max-tablet:flex max-tablet:flex-wrap max-tablet:gap-3 max-tablet:pb-[8px]">
         <li>
-          <button type="button" className={item} onClick={save(saveSvg)}>
+          <button type="button" className={item} onClick={save('saveSvg')}>
             SVG
           </button>
         </li>
         <li>
-          <button type="button" className={item} onClick={save(savePng)}>
+          <button type="button" className={item} onClick={save('savePng')}>
             PNG
           </button>
         </li>
@@ -63,7 +65,7 @@ function Save({
           <button
             type="button"
             className={item}
-            onClick={() => saveText(toCsv(numbers()), `${fileName}.csv`, 'text/csv')}
+            onClick={async () => (await saving()).saveCsv(numbers(), fileName)}
           >
             Numbers (CSV)
           </button>

@@ -1,3 +1,5 @@
+import { toCsv, type FigureNumbers } from '@/lib/figures/csv';
+
 /** What a drawing takes from style sheets; written into each element of a saved one, which has none. */
 const inherited = [
   'fill',
@@ -107,11 +109,16 @@ async function withFonts(svg: SVGSVGElement) {
 }
 
 /** Saves any text as a file. */
-export function saveText(text: string, name: string, type: string) {
+function saveText(text: string, name: string, type: string) {
   download(new Blob([text], { type: `${type};charset=utf-8` }), name);
 }
 
 /** Saves a drawing as SVG with its colours and fonts inside. */
+/** The numbers of a figure as CSV. */
+export function saveCsv(numbers: FigureNumbers, name: string): void {
+  saveText(toCsv(numbers), `${name}.csv`, 'text/csv');
+}
+
 export async function saveSvg(svg: SVGSVGElement, name: string): Promise<void> {
   saveText((await withFonts(svg)).text, `${name}.svg`, 'image/svg+xml');
 }

@@ -1,6 +1,8 @@
 'use client';
 
+import dynamic from 'next/dynamic';
 import Link from 'next/link';
+import { useState } from 'react';
 import { RequestMessage } from '@/components/api/request-message';
 import { detailAt } from '@/components/api/request';
 import { MeasurementFigure } from '@/components/measurement/measurement-figure';
@@ -17,7 +19,6 @@ import { ConflictMessage, twoStand } from './conflict-message';
 import { measurementSentence } from './fold-sentences';
 import { keptRows } from './kept-points';
 import { likelihoodKinds, likelihoods, type LikelihoodKind } from './likelihood-words';
-import { NewerVersion } from './newer-version';
 import { SaveRow } from './save-row';
 import { conflictOf, type Draft } from './section-draft';
 import { SectionRecord } from './section-record';
@@ -25,6 +26,9 @@ import { sectionState } from './section-states';
 import type { SectionFold } from './use-folds';
 import { useSectionSave, type NotebookState } from './use-notebook';
 import { figureNumber, sectionNumber } from './sections';
+
+/** Loaded where the measurement has a newer version than the notebook. */
+const NewerVersion = dynamic(() => import('./newer-version').then((module) => module.NewerVersion));
 
 export interface MeasurementSettings {
   cuts: Notebook['cuts'];
@@ -120,6 +124,9 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
   const rows = keptRows(measurement.points, cuts);
   const all = measurement.rows;
   const editable = notebook.may.includes('notebook.edit');
+  // Once a newer version was spoken of, what came of taking it up is said in the same place.
+  const [older, setOlder] = useState(false);
+  if (!older && notebook.measurement.newest > notebook.measurement.version) setOlder(true);
 
   async function save(base: number) {
     if (await section.save(draft.value, base)) draft.reset();
@@ -145,7 +152,7 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
           : `${rows.length} of ${counted(all, 'bin')} kept`}
         , {covarianceInWords(measurement)}.
       </p>
-      <NewerVersion state={state} />
+      {older ? <NewerVersion state={state} /> : null}
       <MeasurementFigure
         measurement={measurement}
         kept={rows}

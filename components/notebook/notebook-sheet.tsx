@@ -1,5 +1,6 @@
 'use client';
 
+import dynamic from 'next/dynamic';
 import { useEffect, useEffectEvent, useMemo, useState } from 'react';
 import { ComparisonSection, comparisonState } from '@/components/comparison/comparison-section';
 import { useComparison } from '@/components/comparison/use-comparison';
@@ -36,8 +37,10 @@ import { sectionNumber, type SectionId } from './sections';
 import { TemplateSection, tryPrediction, type NamedPoint } from './template-section';
 import { FoldScript } from './fold-script';
 import { foldKey, useFolds, type SectionFold } from './use-folds';
-import { Shifts } from './shifts';
 import { useNotebook } from './use-notebook';
+
+/** Stands where the measurement has had more than one version, and is loaded there. */
+const Shifts = dynamic(() => import('./shifts').then((module) => module.Shifts));
 
 export interface NotebookSheetProps {
   notebook: Notebook;
@@ -224,7 +227,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
         fold={fold('statement')}
         onShow={goTo}
       />
-      <Shifts notebook={notebook} />
+      {notebook.measurement.version > 1 ? <Shifts notebook={notebook} /> : null}
       <FoldScript storageKey={storageKey} />
       <SheetRow>
         <BeatEnd />

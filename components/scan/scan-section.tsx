@@ -19,8 +19,10 @@ import { rangeOf } from './coverage';
 import { CoveragePart } from './coverage-part';
 import { ScanForm } from './scan-form';
 import { isOtherSettings, isPending, scanSentence, scanState } from './scan-words';
-import { TrialLog } from './trial-log';
 import type { ScanHandle } from './use-scans';
+
+/** Loaded where there is something to list. */
+const TrialLog = dynamic(() => import('./trial-log').then((module) => module.TrialLog));
 
 /** Figures of a result are loaded where there is one; its room is kept meanwhile, as while it is being read. */
 const ScanResultPart = dynamic(() => import('./scan-result').then((module) => module.ScanResultPart), {
@@ -106,7 +108,7 @@ function ScanPart({
       {shown !== null && !pending && !starting && scan?.status !== 'failed' ? (
         <ScanResultPart scan={scan} two={looks.some(({ kind }) => kind === 'two')} />
       ) : null}
-      <TrialLog trials={trials} shown={shown} onShow={handle.show} />
+      {trials.trials.length ? <TrialLog trials={trials} shown={shown} onShow={handle.show} /> : null}
     </>
   );
 }

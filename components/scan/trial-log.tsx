@@ -29,7 +29,6 @@ export function TrialLog({
   shown: string | null;
   onShow: (id: string) => void;
 }) {
-  if (!trials.trials.length) return null;
   return (
     <>
       <Subheading>Log of looks</Subheading>

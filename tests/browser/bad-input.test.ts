@@ -1,8 +1,10 @@
 import type { Browser, Page } from 'playwright-core';
 import { afterAll, beforeAll, describe, expect, inject, it } from 'vitest';
 import { launchBrowser, visit, type Visit } from './browser';
+import { freshLinks } from './instance';
 
-const { url, links } = inject('instance');
+const { url, state } = inject('instance');
+const links = freshLinks(state);
 
 let browser: Browser;
 let person: Visit;

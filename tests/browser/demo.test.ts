@@ -3,8 +3,10 @@ import { afterAll, beforeAll, describe, expect, inject, it } from 'vitest';
 import type { Group, Statement } from '@/lib/schemas';
 import { measurements, notebooks } from '@/scripts/demo/scenario';
 import { launchBrowser, visit, type Visit } from './browser';
+import { freshLinks } from './instance';
 
-const { url, links } = inject('instance');
+const { url, state } = inject('instance');
+const links = freshLinks(state);
 
 let browser: Browser;
 let person: Visit;

@@ -1,4 +1,4 @@
-import { spawn, type ChildProcess } from 'node:child_process';
+import { execFileSync, spawn, type ChildProcess } from 'node:child_process';
 import { mkdtempSync, readFileSync, readdirSync, rmSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import net from 'node:net';
@@ -21,6 +21,20 @@ export const linksIn = (printed: string): Record<string, string> =>
   Object.fromEntries(
     [...printed.matchAll(/(\S+@demo\.beatnote\.example)\s+(http\S+)/g)].map((match) => [match[1], match[2]]),
   );
+
+/** New one-time links into a running instance: those that its terminal printed serve one test file each at most. */
+export function freshLinks(state: string): Record<string, string> {
+  const environment = JSON.parse(readFileSync(path.join(state, 'instance.json'), 'utf8')) as Record<
+    string,
+    string
+  >;
+  const printed = execFileSync(process.execPath, ['--import', 'tsx', 'scripts/sign-in-links.ts'], {
+    cwd: root,
+    env: { ...process.env, ...environment },
+    encoding: 'utf8',
+  });
+  return linksIn(printed);
+}
 
 export function freePort(): Promise<number> {
   return new Promise((resolve, reject) => {

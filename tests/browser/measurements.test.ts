@@ -5,8 +5,10 @@ import type { AxeResults } from 'axe-core';
 import type { Browser, Page } from 'playwright-core';
 import { afterAll, beforeAll, describe, expect, inject, it } from 'vitest';
 import { launchBrowser, visit, type Visit } from './browser';
+import { freshLinks } from './instance';
 
-const { url, links } = inject('instance');
+const { url, state } = inject('instance');
+const links = freshLinks(state);
 const data = path.resolve(import.meta.dirname, '../data/measurements');
 const axe = readFileSync(createRequire(import.meta.url).resolve('axe-core/axe.min.js'), 'utf8');
 

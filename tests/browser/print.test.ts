@@ -30,7 +30,11 @@ async function printed(): Promise<{ pdf: Buffer; onPaper: OnPaper }> {
     const look = () => {
       const figures = [...document.querySelectorAll('figure [role=img]')].map((image) => ({
         label: image.getAttribute('aria-label') ?? '',
-        marks: image.querySelectorAll('svg path, svg circle').length,
+        // Points and pieces of lines: a figure of one long curve is drawn too.
+        marks: [...image.querySelectorAll('svg path, svg circle')].reduce(
+          (sum, mark) => sum + Math.max(1, (mark.getAttribute('d')?.match(/[A-Za-z]/g)?.length ?? 0) / 10),
+          0,
+        ),
         width: Number(image.querySelector('svg')?.getAttribute('width') ?? 0),
       }));
       const sections = document.querySelectorAll('section[id] > div[id]').length;

@@ -1,8 +1,7 @@
-import { execFileSync } from 'node:child_process';
 import { readFileSync } from 'node:fs';
 import path from 'node:path';
 import type { TestProject } from 'vitest/node';
-import { StartedInstance, linksIn, type RunningInstance } from './instance';
+import { freshLinks, StartedInstance, type RunningInstance } from './instance';
 
 declare module 'vitest' {
   export interface ProvidedContext {
@@ -16,11 +15,7 @@ function running(state: string): RunningInstance {
     string,
     string
   >;
-  const printed = execFileSync(process.execPath, ['--import', 'tsx', 'scripts/sign-in-links.ts'], {
-    env: { ...process.env, ...environment },
-    encoding: 'utf8',
-  });
-  return { url: environment.BEATNOTE_URL, state, links: linksIn(printed), secondsToReady: 0 };
+  return { url: environment.BEATNOTE_URL, state, links: freshLinks(state), secondsToReady: 0 };
 }
 
 /** One instance for all browser tests of a run. */
