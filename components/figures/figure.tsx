@@ -1,5 +1,6 @@
 'use client';
 
+import dynamic from 'next/dynamic';
 import {
   use,
   useEffect,
@@ -12,7 +13,9 @@ import {
 import type { FigureNumbers } from '@/lib/figures/csv';
 import { FigureTime, usePrinting } from '../ui/fold';
 import { FigureCaption } from './figure-caption';
-import { NumbersTable } from './numbers-table';
+
+/** Loaded when somebody asks for the numbers. */
+const NumbersTable = dynamic(() => import('./numbers-table').then((module) => module.NumbersTable));
 
 /** What every figure is given beside its data. */
 export interface FigureFacts {

@@ -1,7 +1,6 @@
 'use client';
 
-import { useState, type ReactNode } from 'react';
-import { useDropzone } from 'react-dropzone';
+import { useRef, useState, type DragEvent, type ReactNode } from 'react';
 import { Message } from '@/components/ui/message';
 import { WordButton } from '@/components/ui/word-button';
 import type { ParsedTable } from '@/lib/measurements';
@@ -41,7 +40,12 @@ export interface OverlayDropProps {
   children: ReactNode;
 }
 
-/** A figure on which a file can be dropped; what it holds is drawn here and stored nowhere. */
+const holdsFiles = ({ dataTransfer }: DragEvent): boolean => dataTransfer.types.includes('Files');
+
+/**
+ * A figure on which a file can be dropped; what it holds is drawn here and stored nowhere. One file of any kind: the browser's
+ * own events are enough, and the upload page's drop zone would be a tenth of the notebook page's script.
+ */
 export function OverlayDrop({ what, laid, onTable, onClear, children }: OverlayDropProps) {
   const [fault, setFault] = useState<{ name: string; words: string } | null>(null);
   const [reading, setReading] = useState(false);
@@ -60,15 +64,38 @@ export function OverlayDrop({ what, laid, onTable, onClear, children }: OverlayD
     }
   }
 
-  const { getRootProps, getInputProps, open, isDragActive } = useDropzone({
-    onDrop: (files) => void take(files),
-    noClick: true,
-    noKeyboard: true,
-    multiple: false,
-  });
+  const input = useRef<HTMLInputElement>(null);
+  const [over, setOver] = useState(false);
   return (
-    <div {...getRootProps({ className: isDragActive ? 'outline outline-dashed outline-action' : '' })}>
-      <input {...getInputProps({ 'aria-label': `Lay ${what} over the figure` })} />
+    <div
+      className={over ? 'outline outline-dashed outline-action' : ''}
+      onDragOver={(event) => {
+        if (!holdsFiles(event)) return;
+        event.preventDefault();
+        setOver(true);
+      }}
+      onDragLeave={(event) => {
+        if (!event.currentTarget.contains(event.relatedTarget as Node | null)) setOver(false);
+      }}
+      onDrop={(event) => {
+        if (!holdsFiles(event)) return;
+        event.preventDefault();
+        setOver(false);
+        void take([...event.dataTransfer.files]);
+      }}
+    >
+      <input
+        ref={input}
+        type="file"
+        hidden
+        aria-label={`Lay ${what} over the figure`}
+        onChange={(event) => {
+          const chosen = [...(event.target.files ?? [])];
+          // The same file can be chosen again.
+          event.target.value = '';
+          void take(chosen);
+        }}
+      />
       {children}
       <p className="no-print -mt-2 mb-3 font-controls text-note text-ink-2">
         {laid ? (
@@ -82,7 +109,7 @@ export function OverlayDrop({ what, laid, onTable, onClear, children }: OverlayD
           'Reading the file…'
         ) : (
           <>
-            <WordButton onClick={open}>Lay {what} over it</WordButton>
+            <WordButton onClick={() => input.current?.click()}>Lay {what} over it</WordButton>
             <span className="max-tablet:hidden">, or drop the file here</span>. It stays in this browser.
           </>
         )}

@@ -1,6 +1,6 @@
 import { listed } from '@/components/words/counts';
 import { findTemplate, TemplateError } from '@/lib/templates';
-import type { Side } from './conflict-message';
+import type { Side } from './conflict-choice';
 import type { TemplateSettings } from './prediction';
 
 /** What each option is called beside its form. */
