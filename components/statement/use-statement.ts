@@ -53,22 +53,37 @@ export interface TypesetDraft {
   told: StatementFault | null;
 }
 
+/** Numbers of the references, one a line, and what is wrong with those that name nothing. */
+async function askNumbers(path: string, words: string) {
+  const answer = await send<TypesetStatement>('POST', path, { text: words });
+  const lines = words.split('\n');
+  const pieces = answer.paragraphs.flat().flatMap((piece) => (piece.kind === 'value' ? [piece] : []));
+  return {
+    values: new Map(pieces.map((piece) => [piece.reference, piece])),
+    wrong: new Map(answer.faults.map(({ line, message }) => [lines[line - 1], message])),
+  };
+}
+
 /** Words while they are written: read here, their numbers asked for when a reference is new. */
 export function useTypeset(notebook: Notebook, text: string): TypesetDraft {
   const parsed = useMemo(() => parseStatement(text), [text]);
   const references = [...new Set(referencesOf(parsed).map(({ reference }) => writeReference(reference)))];
   const asked = references.join('\n');
-  const { data } = useSWR(
-    asked ? [`${pathOf(notebook)}/typeset`, asked, standing(notebook)] : null,
-    async ([path, words]) => {
-      const { paragraphs, faults } = await send<TypesetStatement>('POST', path, { text: words });
-      const values = paragraphs.flat().flatMap((piece) => (piece.kind === 'value' ? [piece] : []));
-      // One reference a line was sent, so a fault's line says which it is.
-      const wrong = new Map(faults.map(({ line, message }) => [words.split('\n')[line - 1], message]));
-      return { values: new Map(values.map((value) => [value.reference, value])), wrong };
-    },
-    { keepPreviousData: true, revalidateOnFocus: false },
-  );
+  const path = `${pathOf(notebook)}/typeset`;
+  const stand = standing(notebook);
+  const [data, setData] = useState<Awaited<ReturnType<typeof askNumbers>> | null>(null);
+  useEffect(() => {
+    if (!asked) return undefined;
+    let wanted = true;
+    // Where it fails the numbers before stand on, and saving the words says what is wrong.
+    void askNumbers(path, asked).then(
+      (found) => (wanted ? setData(found) : undefined),
+      () => undefined,
+    );
+    return () => {
+      wanted = false;
+    };
+  }, [path, asked, stand]);
   const faults = [
     ...parsed.faults,
     ...referencesOf(parsed).flatMap(({ reference, line, column }) => {
