@@ -100,6 +100,7 @@ class FitRun {
   private readonly rounds: Rounds;
   private readonly pace: Pace;
   private readonly renewal: NodeJS.Timeout;
+  private renewing: Promise<void> = Promise.resolve();
   private standing: Standing;
   private report: StoredReport;
   private facts: ReplicaFacts[];
@@ -128,7 +129,7 @@ class FitRun {
       course: snapshot,
       advance: (replica, count) => this.replicas.advance(replica, count),
     });
-    this.renewal = setInterval(() => void this.renew(), settings.leaseMs / 4);
+    this.renewal = setInterval(() => (this.renewing = this.renew()), settings.leaseMs / 4);
   }
 
   async sample(): Promise<void> {
@@ -150,7 +151,14 @@ class FitRun {
       const batch = await Promise.race([this.rounds.take(), this.overSettled]);
       if (batch) await this.commit(batch);
     }
-    if (!this.lost.signal.aborted) await releaseLease(fitId, epoch);
+    await this.giveBack();
+  }
+
+  /** Ends the lease; a renewal that is under way must not land behind it. */
+  private async giveBack(): Promise<void> {
+    clearInterval(this.renewal);
+    await this.renewing;
+    if (!this.lost.signal.aborted) await releaseLease(this.fit.fitId, this.fit.epoch);
   }
 
   /** Ends the fit with the reason, where it is still this worker's; a fault of ours is logged and can be resumed from. */
@@ -158,7 +166,7 @@ class FitRun {
     const { fitId, epoch } = this.fit;
     if (this.lost.signal.aborted) return;
     try {
-      if (this.stopping.now.aborted) return await releaseLease(fitId, epoch);
+      if (this.stopping.now.aborted) return await this.giveBack();
       const told = error instanceof ThreadError ? error.failure.told : null;
       log[told === null ? 'error' : 'warn']({ fitId, ...reasonOf(error) }, 'a fit failed');
       const ours = `An unexpected error ended the sampling after ${this.standing.draws} draws; it is logged. Resume tries again from there.`;
