@@ -43,11 +43,22 @@ describe('the tour', () => {
   });
 
   it('comes to its fits by itself, each with its gate met', async () => {
+    // The demo's own fit of a notebook is its first; other tests start further ones.
     const states = async () =>
-      (await listed()).map(({ wanted, found }) => [wanted.seed !== null, found?.lastFit?.status ?? null]);
+      Promise.all(
+        (await listed()).flatMap(({ wanted, found }) =>
+          wanted.seed === null || !found
+            ? []
+            : [
+                ask<{ fits: { number: number; status: string }[] }>(`/notebooks/${found.id}`).then(
+                  ({ fits }) => fits.find(({ number }) => number === 1)?.status,
+                ),
+              ],
+        ),
+      );
     await expect
       .poll(states, { timeout: 170_000, interval: 1_000 })
-      .toEqual(notebooks.map(({ seed }) => (seed === null ? [false, null] : [true, 'converged'])));
+      .toEqual(notebooks.filter(({ seed }) => seed !== null).map(() => 'converged'));
   });
 
   it('says the null in numbers, as plainly as the beat', async () => {
