@@ -1,5 +1,5 @@
 import { evidenceLikelihood } from './evidence-likelihood';
-import { InferenceError } from './inference-error';
+import { requireLength } from './inference-error';
 import { buildLikelihood } from './likelihoods';
 import { layOutParameters, massRange, parameterGroups } from './parameter-layout';
 import { buildSpectralJump } from './spectral-jump';
@@ -15,14 +15,7 @@ import { buildWhitening } from './whitening';
  */
 export function buildInference(spec: InferenceSpec): Inference {
   const { data, template } = spec;
-  if (template.length !== data.S.length) {
-    throw new InferenceError(
-      'data_length',
-      'data.S',
-      `${data.S.length} data values for a template compiled at ${template.length} places`,
-      'compile the template on the axis that is left after the cuts',
-    );
-  }
+  requireLength(spec);
   const layout = layOutParameters(spec);
   const whitening = buildWhitening(data);
   const likelihood = buildLikelihood(

@@ -1,3 +1,5 @@
+import type { InferenceSpec } from './types';
+
 /** What can be wrong with priors, data, likelihood or template when a posterior is built. */
 export type InferenceErrorCode =
   | 'prior_missing'
@@ -31,4 +33,15 @@ export class InferenceError extends Error {
     this.path = path;
     this.remedy = remedy;
   }
+}
+
+/** Throws InferenceError `data_length` where a template was compiled at other places than the data are at. */
+export function requireLength({ data, template }: Pick<InferenceSpec, 'data' | 'template'>): void {
+  if (template.length === data.S.length) return;
+  throw new InferenceError(
+    'data_length',
+    'data.S',
+    `${data.S.length} data values for a template compiled at ${template.length} places`,
+    'compile the template on the axis that is left after the cuts',
+  );
 }

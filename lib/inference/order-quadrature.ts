@@ -1,3 +1,4 @@
+import { gaussLegendre } from '@/lib/templates';
 import type { ScalarPrior } from './priors';
 import { lnPriorDensity, priorMoments, priorSupport } from './priors';
 
@@ -10,25 +11,14 @@ const PARTS = 8;
 
 /** Gauss–Legendre nodes on (−1, 1), and the matrix that integrates the interpolant from −1 to each node and to 1. */
 export const COLLOCATION = ((): { nodes: Float64Array; toNode: Float64Array[]; weights: Float64Array } => {
-  const legendre = (n: number, x: number): { p: Float64Array; slope: number } => {
-    const p = new Float64Array(n + 2);
+  const { nodes, weights } = gaussLegendre(NODES);
+  const polynomials = Array.from(nodes, (x) => {
+    const p = new Float64Array(NODES + 2);
     p[0] = 1;
     p[1] = x;
-    for (let k = 1; k <= n; k += 1) p[k + 1] = ((2 * k + 1) * x * p[k] - k * p[k - 1]) / (k + 1);
-    return { p, slope: (n * (x * p[n] - p[n - 1])) / (x * x - 1) };
-  };
-  const nodes = new Float64Array(NODES);
-  const weights = new Float64Array(NODES);
-  for (let j = 0; j < NODES; j += 1) {
-    let x = -Math.cos((Math.PI * (j + 0.75)) / (NODES + 0.5));
-    for (let step = 0; step < 50; step += 1) {
-      const { p, slope } = legendre(NODES, x);
-      x -= p[NODES] / slope;
-    }
-    nodes[j] = x;
-    weights[j] = 2 / ((1 - x * x) * legendre(NODES, x).slope ** 2);
-  }
-  const polynomials = Array.from(nodes, (x) => legendre(NODES, x).p);
+    for (let k = 1; k <= NODES; k += 1) p[k + 1] = ((2 * k + 1) * x * p[k] - k * p[k - 1]) / (k + 1);
+    return p;
+  });
   const toNode = polynomials.map((upper, i) => {
     const row = new Float64Array(NODES);
     for (let j = 0; j < NODES; j += 1) {

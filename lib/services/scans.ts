@@ -1,6 +1,5 @@
 import { setTimeout as sleep } from 'node:timers/promises';
-import type { Transaction } from 'sequelize';
-import { Measurement, MeasurementVersion, Notebook, NotebookRevision, Scan } from '@/models';
+import { Measurement, MeasurementVersion, Scan } from '@/models';
 import { database } from '@/lib/db';
 import { AppError, notFound } from '@/lib/errors';
 import { scanRange } from '@/lib/inference/scan/scan-range';
@@ -20,6 +19,7 @@ import { canonicalSha256 } from './canonical-json';
 import { refusingFaults } from './inference-faults';
 import { refuseArchived } from './notebook-archive';
 import { storedNumbers } from './fit-model';
+import { lockNotebook } from './fits';
 import { emailsOf } from './people';
 import { program } from './program';
 import { checkScannable, scanSpecs, type ScanSpecs } from './scan-model';
@@ -63,21 +63,6 @@ function rangeOf(
   if (!(muMin < muMax))
     refuse('muMin', `The range from ${muMin} to ${muMax} is empty: muMin must be below muMax.`);
   return { muMin, muMax };
-}
-
-async function lockNotebook(access: Access, transaction: Transaction) {
-  const notebook = await Notebook.findByPk(access.id, { lock: true, transaction });
-  if (!notebook) throw notFound('notebook');
-  const [revision, version] = await Promise.all([
-    NotebookRevision.findOne({
-      where: { notebookId: notebook.id, revision: notebook.revision },
-      transaction,
-    }),
-    MeasurementVersion.findByPk(notebook.measurementVersionId, { transaction }),
-  ]);
-  const measurement = version && (await Measurement.findByPk(version.measurementId, { transaction }));
-  if (!revision || !version || !measurement) throw notFound('notebook');
-  return { notebook, revision, version, measurement };
 }
 
 /** Freezes what is to be scanned; the row that asked for the same before, if there is one, answers again. */

@@ -1,5 +1,7 @@
 import type { ExchangeColumns } from './exchange-columns';
-import { mixingDerived } from './mixing-derived';
+import { averageDefinition, backgroundTerms, binMean, fieldClass, sumFormula } from './formula';
+import type { TemplateFormula } from './formula';
+import { mixingDefinition, mixingDerived, weightTex } from './mixing-derived';
 import { mixingWeights } from './mixing';
 import {
   angleParameters,
@@ -95,7 +97,41 @@ export function exchangeFills(
 }
 
 /** TeX of a field's mass parameter: ν of the light ones, which come first, else μ. */
-export function massTex(kinds: readonly FieldKind[], field: number): string {
+function massTex(kinds: readonly FieldKind[], field: number): string {
   const light = kinds.filter((kind) => kind === 'light').length;
   return kinds[field] === 'light' ? `\\nu_{${field + 1}}` : `\\mu_{${field - light + 1}}`;
+}
+
+interface ExchangeFormula {
+  kinds: readonly FieldKind[];
+  options: {
+    vertex: Vertex | 'mixture';
+    background: readonly number[];
+    binAverage?: boolean;
+    binWeight: number;
+  };
+  /** Written behind Ŝ of a field: "^{tot}". */
+  mark: string;
+  /** What Ŝ stands for, at the vertices that are there. */
+  shapes(vertices: { first: boolean; second: boolean }): readonly string[];
+}
+
+/** g Σ_i w_i ⟨Ŝ(m_i, κ)⟩ + background, typeset, with what its symbols stand for. */
+export function exchangeFormula({ kinds, options, mark, shapes }: ExchangeFormula): TemplateFormula {
+  const { vertex, background, binWeight } = options;
+  const averaged = options.binAverage !== false;
+  const mixed = vertex === 'mixture';
+  const shape = `${mixed ? '\\hat S' : `\\hat S_${vertex}`}${mark}`;
+  const terms = kinds.map((_, i) =>
+    fieldClass(
+      i,
+      `g\\,${weightTex(kinds.length, i)}${binMean(`${shape}(${massTex(kinds, i)}, \\kappa)`, averaged)}`,
+    ),
+  );
+  return sumFormula(terms, backgroundTerms(background, averaged), [
+    ...mixingDefinition(kinds.length),
+    ...(mixed ? ['\\hat S = \\cos\\alpha\\;\\hat S_1 + \\sin\\alpha\\;\\hat S_2'] : []),
+    ...shapes({ first: vertex !== 2, second: vertex !== 1 }),
+    ...averageDefinition(averaged, binWeight),
+  ]);
 }

@@ -2,6 +2,7 @@
 export type * from './types';
 export { TemplateError } from './errors';
 export type { TemplateErrorCode } from './errors';
+export { gaussLegendre } from './gauss-legendre';
 export { complexLogGamma } from './log-gamma';
 export {
   squeezedCoefficient,

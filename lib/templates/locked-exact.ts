@@ -4,13 +4,11 @@ import {
   exchangeCoefficients,
   exchangeDerived,
   exchangeFills,
+  exchangeFormula,
   exchangeParameters,
   fieldKinds,
-  massTex,
 } from './exchange-template';
-import { averageDefinition, backgroundTerms, binMean, fieldClass, sumFormula } from './formula';
-import { mixingDefinition, weightTex } from './mixing-derived';
-import { choiceOption, fieldsOption, powersOption, sharedOptions } from './options';
+import { fieldsOption, powersOption, sharedOptions, vertexOption } from './options';
 
 const options = {
   fields: fieldsOption(
@@ -18,11 +16,7 @@ const options = {
     1,
     'Number of heavy fields, or a list that says of each whether it is heavy or light.',
   ),
-  vertex: choiceOption(
-    [1, 2, 'mixture'],
-    1,
-    'Cubic interaction: 1 is π̇²σ/Λ₁, 2 is (∂π)²σ/(a²Λ₂), mixture is cos α of the first and sin α of the second.',
-  ),
+  vertex: vertexOption,
   ...sharedOptions,
   background: powersOption(0, [], 'Powers of κ in the smooth background, from −1 to 4.'),
 };
@@ -35,7 +29,6 @@ const SECOND_TEX =
   '\\hat S_2(k_a,k_b;k_m) = -\\tfrac12\\,\\tfrac{k_a^2+k_b^2-k_m^2}{2k_ak_b}\\,(1+\\theta)(1+q\\theta)\\,h(r)';
 const EQUATION_TEX =
   '\\bigl[(\\theta-\\tfrac12)^2 + \\tfrac{m^2}{H^2} - \\tfrac94\\bigr]h = r^2\\theta(\\theta+1)h + \\tfrac{r}{1+r},\\quad h\\ \\text{regular at}\\ r = 1';
-const MIXTURE_TEX = '\\hat S = \\cos\\alpha\\;\\hat S_1 + \\sin\\alpha\\;\\hat S_2';
 
 /**
  * g Σ_i w_i ⟨Ŝ_total(m_i, κ)⟩ + background: single exchange of mixed fields, heavy or light, exact at tree level at every κ < 2,
@@ -55,26 +48,18 @@ export const lockedExact = declareTemplate({
   ],
   options,
   structure: () => 'mixed',
-  formula(o) {
-    const averaged = o.binAverage !== false;
-    const kinds = fieldKinds(o.fields);
-    const shape = o.vertex === 'mixture' ? '\\hat S' : `\\hat S_${o.vertex}`;
-    const terms = kinds.map((_, i) =>
-      fieldClass(
-        i,
-        `g\\,${weightTex(kinds.length, i)}${binMean(`${shape}^{\\,\\mathrm{tot}}(${massTex(kinds, i)}, \\kappa)`, averaged)}`,
-      ),
-    );
-    return sumFormula(terms, backgroundTerms(o.background, averaged), [
-      ...mixingDefinition(kinds.length),
-      ...(o.vertex === 'mixture' ? [MIXTURE_TEX] : []),
-      TOTAL_TEX,
-      ...(o.vertex === 2 ? [] : [FIRST_TEX]),
-      ...(o.vertex === 1 ? [] : [SECOND_TEX]),
-      EQUATION_TEX,
-      ...averageDefinition(averaged, o.binWeight),
-    ]);
-  },
+  formula: (o) =>
+    exchangeFormula({
+      kinds: fieldKinds(o.fields),
+      options: o,
+      mark: '^{\\,\\mathrm{tot}}',
+      shapes: ({ first, second }) => [
+        TOTAL_TEX,
+        ...(first ? [FIRST_TEX] : []),
+        ...(second ? [SECOND_TEX] : []),
+        EQUATION_TEX,
+      ],
+    }),
   parameters: (o) => exchangeParameters(fieldKinds(o.fields), o.vertex, o.background),
   derived: (o) => exchangeDerived(fieldKinds(o.fields)),
   masses: (o) => fieldKinds(o.fields).map((_, i) => i),

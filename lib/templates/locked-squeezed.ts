@@ -2,7 +2,7 @@ import { declareTemplate } from './declaration';
 import { averageDefinition, backgroundTerms, binMean, fieldClass, sumFormula } from './formula';
 import { mixingDefinition, mixingDerived, weightTex } from './mixing-derived';
 import { mixingWeights } from './mixing';
-import { choiceOption, integerOption, sharedOptions } from './options';
+import { choiceOption, integerOption, sharedOptions, vertexOption } from './options';
 import {
   angleParameters,
   backgroundParameters,
@@ -21,11 +21,7 @@ import type { Vertex } from './types';
 
 const options = {
   fields: integerOption(1, 4, 1, 'Number of heavy fields.'),
-  vertex: choiceOption(
-    [1, 2, 'mixture'],
-    1,
-    'Cubic interaction: 1 is π̇²σ/Λ₁, 2 is (∂π)²σ/(a²Λ₂), mixture is cos α of the first and sin α of the second.',
-  ),
+  vertex: vertexOption,
   phases: choiceOption(
     ['locked', 'free'],
     'locked',

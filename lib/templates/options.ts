@@ -192,6 +192,13 @@ export function optionDeclarations(set: OptionSet): OptionDeclaration[] {
   return Object.entries(set).map(([name, option]) => ({ name, ...option.data }));
 }
 
+/** Which cubic interaction, of the templates of an exchange. */
+export const vertexOption = choiceOption(
+  [1, 2, 'mixture'],
+  1,
+  'Cubic interaction: 1 is π̇²σ/Λ₁, 2 is (∂π)²σ/(a²Λ₂), mixture is cos α of the first and sin α of the second.',
+);
+
 /** The options that every template has: the smooth background and the averaging over bins. */
 export const sharedOptions = {
   background: powersOption(0, [1, 2], 'Powers of κ in the smooth background, from −1 to 4.'),

@@ -28,7 +28,8 @@ const p1 = JSON.parse(readFileSync(file, 'utf8')) as ReferenceFile;
 
 const uniform = (lo: number, hi: number): Prior => ({ kind: 'uniform', lo, hi });
 
-function buildP1(): Inference {
+/** P1 as `buildInference` makes it. */
+export function buildP1(): Inference {
   return buildInference({
     data: {
       S: Float64Array.from(p1.S),

@@ -1,35 +1,11 @@
 import { describe, expect, it } from 'vitest';
-import { buildInference } from '@/lib/inference';
-import { compileTemplate, type Prior } from '@/lib/templates';
+import { buildP1 } from '../../scripts/bench/p1';
 import { diagnoseAll, runReplicas } from '../lib/inference/sampling';
 import reference from './data/posteriors/p1.json';
 
 /** Reference by importance sampling, derived by us (see data/posteriors/README.md). */
 describe('the benchmark posterior of two fields in amplitude–phase form', () => {
-  const uniform = (lo: number, hi: number): Prior => ({ kind: 'uniform', lo, hi });
-  const inference = buildInference({
-    data: {
-      S: Float64Array.from(reference.S),
-      covariance: Float64Array.from(reference.covariance.flat()),
-      mockCount: null,
-    },
-    likelihood: 'normal',
-    template: compileTemplate(
-      'free-phase',
-      { fields: 2, amplitudes: 'amplitude-phase', background: [1, 2] },
-      { kind: 'points', kappa: Float64Array.from(reference.kappa) },
-    ),
-    priors: {
-      mu1: uniform(0.3, 8),
-      mu2: uniform(0.3, 8),
-      A1: uniform(0, 3),
-      A2: uniform(0, 3),
-      phi1: uniform(-Math.PI, Math.PI),
-      phi2: uniform(-Math.PI, Math.PI),
-      c1: uniform(-3, 3),
-      c2: uniform(-3, 3),
-    },
-  });
+  const inference = buildP1();
 
   it('has its means and sds within the errors, with half of the jumps accepted, started over the prior', () => {
     const run = runReplicas(inference, 6000);

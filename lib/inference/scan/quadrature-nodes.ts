@@ -1,33 +1,16 @@
+import { gaussLegendre as gaussLegendreRule } from '@/lib/templates';
+
 /** Nodes of an integral with their weights. */
 export interface Nodes {
   readonly at: Float64Array;
   readonly weight: Float64Array;
 }
 
-/**
- * Gauss–Legendre on [lo, hi] with n nodes: exact for polynomials of degree 2n − 1. Nodes by Newton's method on P_n from
- * Tricomi's starting values.
- */
+/** Gauss–Legendre on [lo, hi] with n nodes, ascending: exact for polynomials of degree 2n − 1. */
 export function gaussLegendre(lo: number, hi: number, n: number): Nodes {
-  const at = new Float64Array(n);
-  const weight = new Float64Array(n);
+  const { nodes, weights } = gaussLegendreRule(n);
   const half = 0.5 * (hi - lo);
-  for (let j = 0; j < n; j += 1) {
-    let x = Math.cos((Math.PI * (j + 0.75)) / (n + 0.5));
-    let slope = 1;
-    for (let step = 0; step < 60; step += 1) {
-      let before = 1;
-      let p = x;
-      for (let k = 1; k < n; k += 1) [before, p] = [p, ((2 * k + 1) * x * p - k * before) / (k + 1)];
-      slope = (n * (x * p - before)) / (x * x - 1);
-      const change = p / slope;
-      x -= change;
-      if (Math.abs(change) < 1e-15) break;
-    }
-    at[n - 1 - j] = lo + half * (1 + x);
-    weight[n - 1 - j] = (2 * half) / ((1 - x * x) * slope * slope);
-  }
-  return { at, weight };
+  return { at: nodes.map((x) => lo + half * (1 + x)), weight: weights.map((w) => half * w) };
 }
 
 /** The whole circle in n equal steps: converges geometrically for a smooth periodic function. */

@@ -1,4 +1,4 @@
-import { InferenceError } from '../inference-error';
+import { requireLength } from '../inference-error';
 import { buildLikelihood } from '../likelihoods';
 import { layOutParameters, scalarPriorOf, type ParameterLayout } from '../parameter-layout';
 import type { InferenceSpec, LikelihoodKind } from '../types';
@@ -213,14 +213,7 @@ export function backgroundPriors(layout: ParameterLayout): LinearPrior[] {
 
 function buildBlock(spec: InferenceSpec, layout: ParameterLayout, kind: LikelihoodKind) {
   const { data, template } = spec;
-  if (template.length !== data.S.length) {
-    throw new InferenceError(
-      'data_length',
-      'data.S',
-      `${data.S.length} data values for a template compiled at ${template.length} places`,
-      'compile the template on the axis that is left after the cuts',
-    );
-  }
+  requireLength(spec);
   const whitening = buildWhitening(data);
   const p = whitening.length;
   const likelihood = buildLikelihood(kind, data.mockCount, p, layout.free.length, whitening.logDeterminant);
