@@ -4,6 +4,7 @@ import type { AxeResults } from 'axe-core';
 import type { Browser } from 'playwright-core';
 import { afterAll, beforeAll, describe, expect, inject, it } from 'vitest';
 import { launchBrowser, visit, type Visit } from './browser';
+import { signInBy } from './fitted-notebook';
 import { freshLinks } from './instance';
 
 const { url, state } = inject('instance');
@@ -30,9 +31,7 @@ let screens: string[] = [];
 beforeAll(async () => {
   browser = await launchBrowser();
   const first = await visit(browser);
-  await first.page.goto(links['referee@demo.beatnote.example']);
-  await first.page.getByRole('button', { name: /sign in/i }).click();
-  await first.page.waitForURL('**/groups/**');
+  await signInBy(first.page, links['referee@demo.beatnote.example']);
   const group = new URL(first.page.url()).pathname;
   const own = await first.page
     .locator('a[href^="/notebooks/"], a[href^="/measurements/"]')

@@ -1,6 +1,7 @@
 import type { Browser, Page } from 'playwright-core';
 import { afterAll, beforeAll, describe, expect, inject, it } from 'vitest';
 import { launchBrowser, visit, type Visit } from './browser';
+import { signInBy } from './fitted-notebook';
 import { freshLinks } from './instance';
 
 const { url, state } = inject('instance');
@@ -22,9 +23,7 @@ beforeAll(async () => {
   browser = await launchBrowser();
   person = await visit(browser);
   page = person.page;
-  await page.goto(links['lead@demo.beatnote.example']);
-  await page.getByRole('button', { name: /sign in/i }).click();
-  await page.waitForURL('**/groups/**');
+  await signInBy(page, links['lead@demo.beatnote.example']);
   before = await measurements();
   expect(before.length).toBeGreaterThan(0);
 });

@@ -5,7 +5,7 @@ import type { Browser, Page } from 'playwright-core';
 import { afterAll, beforeAll, describe, expect, inject, it } from 'vitest';
 import { launchBrowser, visit, type Visit } from './browser';
 import { freshLinks } from './instance';
-import { ask } from './fitted-notebook';
+import { ask, signInBy } from './fitted-notebook';
 
 const { url, state } = inject('instance');
 const links = freshLinks(state);
@@ -26,9 +26,7 @@ beforeAll(async () => {
   browser = await launchBrowser();
   analyst = await visit(browser);
   page = analyst.page;
-  await page.goto(links['analyst@demo.beatnote.example']);
-  await page.getByRole('button', { name: /sign in/i }).click();
-  await page.waitForURL('**/groups/**');
+  await signInBy(page, links['analyst@demo.beatnote.example']);
   const group = new URL(page.url()).pathname;
   const measurements = await ask<Listed[]>(page, 'GET', `${group}/measurements`);
   const { id } = await ask<{ id: string }>(page, 'POST', `${group}/notebooks`, {
@@ -132,9 +130,7 @@ describe('the comparison of a notebook', () => {
 
   it('is read by a referee, who is offered no command', async () => {
     const referee = await visit(browser);
-    await referee.page.goto(links['referee@demo.beatnote.example']);
-    await referee.page.getByRole('button', { name: /sign in/i }).click();
-    await referee.page.waitForURL('**/groups/**');
+    await signInBy(referee.page, links['referee@demo.beatnote.example']);
     await referee.page.goto(`${url}${place}#comparison`);
     await expect.poll(() => read(referee.page), { timeout: 20_000 }).toContain('Evidence against the number');
     expect(

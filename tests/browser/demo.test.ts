@@ -3,6 +3,7 @@ import { afterAll, beforeAll, describe, expect, inject, it } from 'vitest';
 import type { Group, Statement } from '@/lib/schemas';
 import { measurements, notebooks } from '@/scripts/demo/scenario';
 import { launchBrowser, visit, type Visit } from './browser';
+import { signInBy } from './fitted-notebook';
 import { freshLinks } from './instance';
 
 const { url, state } = inject('instance');
@@ -17,9 +18,7 @@ beforeAll(async () => {
   browser = await launchBrowser();
   person = await visit(browser);
   page = person.page;
-  await page.goto(links['lead@demo.beatnote.example']);
-  await page.getByRole('button', { name: /sign in/i }).click();
-  await page.waitForURL('**/groups/**');
+  await signInBy(page, links['lead@demo.beatnote.example']);
   home = new URL(page.url()).pathname;
 });
 afterAll(() => browser.close());

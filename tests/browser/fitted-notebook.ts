@@ -15,6 +15,13 @@ export async function signIn(page: Page, url: string, email: string): Promise<vo
   await page.waitForURL('**/groups/**');
 }
 
+/** Signs a person in by one of the one-time links of `freshLinks`. */
+export async function signInBy(page: Page, link: string): Promise<void> {
+  await page.goto(link);
+  await page.getByRole('button', { name: /sign in/i }).click();
+  await page.waitForURL('**/groups/**');
+}
+
 /** Asks the API in the name of whoever is signed in on the page. */
 export function ask<T>(page: Page, method: 'GET' | 'POST', path: string, body?: object): Promise<T> {
   return page.evaluate(

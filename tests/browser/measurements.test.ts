@@ -5,6 +5,7 @@ import type { AxeResults } from 'axe-core';
 import type { Browser, Page } from 'playwright-core';
 import { afterAll, beforeAll, describe, expect, inject, it } from 'vitest';
 import { launchBrowser, visit, type Visit } from './browser';
+import { signInBy } from './fitted-notebook';
 import { freshLinks } from './instance';
 
 const { url, state } = inject('instance');
@@ -60,9 +61,7 @@ beforeAll(async () => {
   browser = await launchBrowser();
   person = await visit(browser);
   page = person.page;
-  await page.goto(links['lead@demo.beatnote.example']);
-  await page.getByRole('button', { name: /sign in/i }).click();
-  await page.waitForURL('**/groups/**');
+  await signInBy(page, links['lead@demo.beatnote.example']);
   group = new URL(page.url()).pathname;
 });
 afterAll(() => browser.close());

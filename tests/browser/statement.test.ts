@@ -4,6 +4,7 @@ import type { AxeResults } from 'axe-core';
 import type { Browser, Page } from 'playwright-core';
 import { afterAll, beforeAll, describe, expect, inject, it } from 'vitest';
 import { launchBrowser, visit, type Visit } from './browser';
+import { signInBy } from './fitted-notebook';
 import { freshLinks } from './instance';
 
 const { url, state } = inject('instance');
@@ -20,9 +21,7 @@ beforeAll(async () => {
   browser = await launchBrowser();
   analyst = await visit(browser);
   page = analyst.page;
-  await page.goto(links['analyst@demo.beatnote.example']);
-  await page.getByRole('button', { name: /sign in/i }).click();
-  await page.waitForURL('**/groups/**');
+  await signInBy(page, links['analyst@demo.beatnote.example']);
   place = (await page.getByRole('link', { name: title }).first().getAttribute('href')) ?? '';
 });
 afterAll(() => browser.close());
@@ -134,9 +133,7 @@ describe('the statement of the demo’s beat', () => {
 
   it('is read by a referee, who is offered no change', async () => {
     const referee = await visit(browser, { width: 390, colorScheme: 'dark' });
-    await referee.page.goto(links['referee@demo.beatnote.example']);
-    await referee.page.getByRole('button', { name: /sign in/i }).click();
-    await referee.page.waitForURL('**/groups/**');
+    await signInBy(referee.page, links['referee@demo.beatnote.example']);
     await referee.page.goto(`${url}${place}#statement`);
     await expect.poll(() => read(referee.page), { timeout: 20_000 }).toContain('beat against each other');
     expect(await statement(referee.page).getByRole('button', { name: 'Change the words' }).count()).toBe(0);
