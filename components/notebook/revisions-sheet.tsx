@@ -39,7 +39,7 @@ function List({ notebook, onRead }: { notebook: Notebook; onRead: (revision: num
         { key: 'what', head: 'Changed', phone: { area: '1 / 2' } },
         { key: 'who', head: 'By', phone: { area: '2 / 2' } },
         { key: 'when', head: 'When', phone: { area: '3 / 2' } },
-        { key: 'fits', head: 'Fits', phone: { area: '4 / 2' } },
+        { key: 'fits', head: 'Fits', phone: { area: '4 / 2', label: 'Fits' } },
         { key: 'read', head: '', phone: { area: '5 / 2' } },
       ]}
       rows={newest.map((entry) => {
@@ -47,7 +47,14 @@ function List({ notebook, onRead }: { notebook: Notebook; onRead: (revision: num
         return {
           key: String(entry.revision),
           cells: {
-            revision: entry.revision === notebook.revision ? `${entry.revision}, stands` : entry.revision,
+            revision: (
+              <>
+                {entry.revision}
+                {entry.revision === notebook.revision ? (
+                  <span className="block font-controls text-note text-ink-2">stands</span>
+                ) : null}
+              </>
+            ),
             what: capital(revisionInWords(entry)),
             who: shortName(entry.by),
             when: <Stamp at={entry.at} />,
