@@ -85,14 +85,28 @@ function writeMeans(places: Places, at: Float64Array, out: Float64Array): void {
 /** How the mass parameter of a kind of field maps to z, and how its range is cut into panels. */
 interface MassScale {
   square(mass: number): number;
-  /** Panel width in the parameter. */
-  panel: number;
+  /** Lower and upper end of the panel that holds the parameter. */
+  panel(mass: number): readonly [number, number];
   /** A factor that takes the pole at the end of the range out of the columns. */
   tame(mass: number): number;
 }
 
-const heavyScale: MassScale = { square: heavySquare, panel: 1, tame: () => 1 };
-const lightScale: MassScale = { square: lightSquare, panel: 0.375, tame: (nu) => 1.5 - nu };
+const heavyScale: MassScale = {
+  square: heavySquare,
+  panel: (mu) => [Math.floor(mu), Math.floor(mu) + 1],
+  tame: () => 1,
+};
+
+/** Panels of ν: on each of them the leading terms, which change between 3/4 and 9/10, are analytic too. */
+const LIGHT_EDGES = [0, 0.375, 0.75, 0.9, 1.2, 1.5] as const;
+const lightScale: MassScale = {
+  square: lightSquare,
+  panel(nu) {
+    const upper = LIGHT_EDGES.findIndex((edge) => edge > nu);
+    return [LIGHT_EDGES[upper - 1], LIGHT_EDGES[upper]];
+  },
+  tame: (nu) => 1.5 - nu,
+};
 
 /** Chebyshev nodes a panel: J_28 of half a panel times |ln κ| ≤ 7 is below 1e-13. */
 const NODES = 28;
@@ -113,10 +127,10 @@ function exchangeColumns(axis: Axis, kernel: Kernel, scale: MassScale): Exchange
 
   const at = [new Float64Array(places.kappa.length), new Float64Array(places.kappa.length)];
   /** Node by node the columns of both vertices, one after the other. */
-  const layPanel = (panel: number): Float64Array => {
+  const layPanel = (lo: number, hi: number): Float64Array => {
     const table = new Float64Array(NODES * 2 * length);
     for (let k = 0; k < NODES; k += 1) {
-      const mass = (panel + 0.5 * (1 + CHEBYSHEV[k])) * scale.panel;
+      const mass = lo + 0.5 * (hi - lo) * (1 + CHEBYSHEV[k]);
       writeShapes(scale.square(mass), kernel, places, at);
       const tame = scale.tame(mass);
       for (let v = 0; v < 2; v += 1) {
@@ -133,13 +147,13 @@ function exchangeColumns(axis: Axis, kernel: Kernel, scale: MassScale): Exchange
     length,
     fill(mass, out) {
       scale.square(mass);
-      const panel = Math.floor(mass / scale.panel);
-      let table = panels.get(panel);
+      const [lo, hi] = scale.panel(mass);
+      let table = panels.get(lo);
       if (table === undefined) {
-        table = layPanel(panel);
-        panels.set(panel, table);
+        table = layPanel(lo, hi);
+        panels.set(lo, table);
       }
-      const x = 2 * (mass / scale.panel - panel) - 1;
+      const x = (2 * (mass - lo)) / (hi - lo) - 1;
       let total = 0;
       let hit = -1;
       for (let k = 0; k < NODES; k += 1) {
@@ -191,15 +205,7 @@ export function exactLightColumns(axis: Axis): ExchangeColumns {
   return exchangeColumns(axis, exactKernel, lightScale);
 }
 
-/** The leading terms of a light field (light-coefficients.ts), 0 ≤ ν < 3/2; evaluated at every call. */
+/** The leading terms of a light field (light-coefficients.ts), 0 ≤ ν < 3/2. */
 export function leadingLightColumns(axis: Axis): ExchangeColumns {
-  const places = placesOf(axis);
-  const at = [new Float64Array(places.kappa.length), new Float64Array(places.kappa.length)];
-  return {
-    length: places.first.length - 1,
-    fill(nu, out) {
-      writeShapes(lightSquare(nu), addLeadingLight, places, at);
-      for (let v = 0; v < 2; v += 1) writeMeans(places, at[v], out[v]);
-    },
-  };
+  return exchangeColumns(axis, addLeadingLight, lightScale);
 }

@@ -8,6 +8,8 @@ import {
   TemplateError,
 } from '@/lib/templates';
 import type { Axis, CompiledTemplate } from '@/lib/templates';
+import { regularStencil } from '@/lib/templates/exchange-function';
+import { addLeadingLight } from '@/lib/templates/light-coefficients';
 import { binMeanByQuadrature } from './gauss-legendre';
 
 const points = (...kappa: number[]): Axis => ({ kind: 'points', kappa: Float64Array.from(kappa) });
@@ -103,6 +105,21 @@ describe('the light template', () => {
       kappa.forEach((x, i) => {
         const wanted = 2 * (minus * x ** (0.5 - nu) + plus * x ** (0.5 + nu) + smooth * x);
         expect(Math.abs(found[i] - wanted)).toBeLessThan(1e-11 * Math.abs(minus) + 1e-13);
+      });
+    }
+  });
+
+  it('is read from its panels as it is evaluated, to 1e-10, also where its terms change', () => {
+    const kappa = Float64Array.of(1e-4, 0.01, 0.3);
+    const template = compileTemplate('light', {}, { kind: 'points', kappa });
+    for (const nu of [0, 0.01, 0.374, 0.499, 0.74, 0.76, 0.82, 0.899, 0.91, 0.97, 1.001, 1.19, 1.21, 1.45]) {
+      const wanted = [new Float64Array(3), new Float64Array(3)];
+      const { z, weight } = regularStencil(-nu * nu);
+      z.forEach((node, k) => addLeadingLight(node, weight[k], kappa, wanted));
+      const found = columns(template, 0, nu);
+      found.forEach((column, v) => {
+        const size = Math.max(...wanted[v].map(Math.abs));
+        column.forEach((value, i) => expect(Math.abs(value - wanted[v][i])).toBeLessThan(1e-10 * size));
       });
     }
   });
