@@ -1,12 +1,11 @@
 import { evidenceLikelihood } from './evidence-likelihood';
 import { requireLength } from './inference-error';
-import { buildLikelihood } from './likelihoods';
+import { buildMetric } from './metric';
 import { layOutParameters, massRange, parameterGroups } from './parameter-layout';
 import { buildSpectralJump } from './spectral-jump';
 import { buildChiSquare, buildTarget, fillIn, whitenBackground } from './target';
 import type { Inference, InferenceSpec } from './types';
 import { buildWhitenedField } from './whitened-field';
-import { buildWhitening } from './whitening';
 
 /**
  * Makes a posterior out of measurement, likelihood, template and priors: whitens once, tabulates the fields' columns,
@@ -17,24 +16,18 @@ export function buildInference(spec: InferenceSpec): Inference {
   const { data, template } = spec;
   requireLength(spec);
   const layout = layOutParameters(spec);
-  const whitening = buildWhitening(data);
-  const likelihood = buildLikelihood(
-    spec.likelihood,
-    data.mockCount,
-    whitening.length,
-    layout.free.length,
-    whitening.logDeterminant,
-  );
+  const metric = buildMetric(data, spec.likelihood, layout.free.length);
+  const { whitening } = metric;
   const fields = template.blocks.map((block, f) =>
     buildWhitenedField(block, whitening, massRange(layout.massPriors[f])),
   );
   const background = whitenBackground(layout, whitening);
-  const chiSquareOf = buildChiSquare(layout, whitening, fields, background);
+  const chiSquares = buildChiSquare(layout, metric, fields, background);
   const full = Float64Array.from(layout.base);
-  const evidence = evidenceLikelihood(likelihood, data.mockCount, whitening.length, whitening.logDeterminant);
+  const evidence = evidenceLikelihood(metric, data.mockCount);
   return {
-    target: { ...buildTarget(layout, likelihood, chiSquareOf), ...(evidence ? { evidence } : {}) },
-    jumps: [buildSpectralJump(layout, likelihood, whitening, fields, background)],
+    target: { ...buildTarget(layout, metric, chiSquares), ...(evidence ? { evidence } : {}) },
+    jumps: [buildSpectralJump(layout, metric, fields, background)],
     blocks: parameterGroups(layout),
     sampled: layout.free.map((index) => template.parameters[index]),
     expand(x, out) {
@@ -45,7 +38,7 @@ export function buildInference(spec: InferenceSpec): Inference {
     },
     chiSquare(x) {
       fillIn(layout, x, full);
-      return chiSquareOf(full);
+      return chiSquares.total(full);
     },
     logOrderProbability: layout.logOrderProbability,
   };

@@ -2,10 +2,16 @@
 export type * from './types';
 export { InferenceError } from './inference-error';
 export type { InferenceErrorCode } from './inference-error';
+export { assemble, assembleData, likelihoodFor } from './assembly';
+export type { Assembly, AssemblyPart } from './assembly';
+export { assembledParameters, assembleTemplate, theoryOfPart } from './assembled-template';
+export type { AssemblyColumn, PartModel } from './assembled-template';
 export { buildInference } from './build-inference';
 export { exactLogEvidence } from './exact-evidence';
 export { amplitudePriors, exactWidths, reweightedWidths } from './width-evidence';
 export type { WidthDraws, WidthPoint } from './width-evidence';
+export { buildMetric } from './metric';
+export type { LikelihoodPart, Metric } from './metric';
 export { buildLikelihood, matchedExponent } from './likelihoods';
 export type { Likelihood } from './likelihoods';
 export {

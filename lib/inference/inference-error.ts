@@ -14,6 +14,11 @@ export type InferenceErrorCode =
   | 'covariance_not_positive_definite'
   | 'mock_count_missing'
   | 'too_few_mocks'
+  | 'likelihood_not_joint'
+  | 'theory_covariance_not_exact'
+  | 'window_size'
+  | 'column_size'
+  | 'column_name'
   | 'nothing_to_sample'
   | 'no_frequency';
 

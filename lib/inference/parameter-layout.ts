@@ -130,9 +130,12 @@ export function layOutParameters(spec: Pick<InferenceSpec, 'template' | 'priors'
       const pair = quadrature.filter((index) => parameters[index].field === field);
       return pair.length === 2 ? [[pair[0], pair[1]] as const] : [];
     }),
-    background: withRole('background'),
+    background: parameters.flatMap(({ role }, index) => (isFixedColumn(role) ? [index] : [])),
   };
 }
+
+/** Whether a parameter is the coefficient of a column that hangs on no parameter. */
+export const isFixedColumn = (role: ParameterRole): boolean => role === 'background' || role === 'column';
 
 /** The prior of a sampled parameter that has a density of its own; null for fixed and isotropic ones. */
 export function scalarPriorOf(layout: ParameterLayout, index: number): ScalarPrior | null {
@@ -154,7 +157,7 @@ export function parameterGroups(layout: ParameterLayout): number[][] {
   const own = (declaration: ParameterDeclaration, field: number): boolean => declaration.field === field;
   const groups = blocks.map((_, field) => parameters.flatMap((d, index) => (own(d, field) ? [index] : [])));
   const mixing = parameters.flatMap((d, index) =>
-    d.field === null && d.role !== 'background' ? [index] : [],
+    d.field === null && !isFixedColumn(d.role) ? [index] : [],
   );
   return [...groups, mixing, [...layout.background]]
     .map((group) => group.map((index) => layout.position[index]).filter((position) => position >= 0))

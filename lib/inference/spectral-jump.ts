@@ -1,10 +1,9 @@
 import type { JumpProposal, Rng } from '@/lib/sampler';
 import { AmplitudeEvidence } from './amplitude-evidence';
 import { mixedAmplitudes, polarAmplitudes } from './amplitude-maps';
-import { LinearModel } from './collapsed';
 import { FieldSystem, type FieldStage, type MassEvidence } from './field-system';
 import { LooseEvidence } from './loose-evidence';
-import type { Likelihood } from './likelihoods';
+import type { Metric } from './metric';
 import {
   lineProposal,
   noMasses,
@@ -14,18 +13,18 @@ import {
   type MassProposalSettings,
 } from './mass-proposal';
 import { EitherMassProposal, latticeProposal } from './mass-lattice';
-import { greedyGain, singleGain } from './greedy-gain';
+import { singleGain } from './greedy-gain';
 import { cellCentres } from './mass-grid';
 import { PairEvidence } from './pair-evidence';
 import { scalarPriorOf, type ParameterLayout } from './parameter-layout';
 import { productProposal } from './product-proposal';
+import { referenceModel } from './reference-model';
 import { MixingStage } from './stage-mixing';
 import { PolarStage } from './stage-polar';
 import { QuadratureStage } from './stage-quadrature';
 import { VertexAngleStage } from './stage-vertex-angle';
 import { buildCoefficients, buildDrawPrior, buildLogPrior, fillIn } from './target';
 import type { WhitenedField } from './whitened-field';
-import type { Whitening } from './whitening';
 
 /** Part of the jumps that draws every parameter from the prior. */
 const FLOOR = 0.02;
@@ -171,12 +170,10 @@ function onLattice({ template, masses, vertexAngle, position }: ParameterLayout)
 }
 
 /** How sharp the proposal of the masses may be: nearly the evidence itself where that is exact. */
-function massSettings(
-  layout: ParameterLayout,
-  stage: FieldStage,
-  likelihood: Likelihood,
-): MassProposalSettings {
-  const near = layout.template.structure === 'polar' || (stage.exact && likelihood.exponent === null);
+function massSettings(layout: ParameterLayout, stage: FieldStage, metric: Metric): MassProposalSettings {
+  const near =
+    layout.template.structure === 'polar' ||
+    (stage.exact && metric.parts.every(({ likelihood }) => likelihood.exponent === null));
   return {
     temper: near ? 0.9 : 1 / 1.5,
     floor: 0.05,
@@ -184,23 +181,19 @@ function massSettings(
   };
 }
 
-/**
- * The spectral jump of a posterior. For a t likelihood the reference is a normal one whose covariance is C/λ,
- * λ = m/(N − 1 + χ²) at the χ² of the best masses: the curvature of the t form at its best fit.
- */
+/** The spectral jump of a posterior, made with its reference model. */
 export function buildSpectralJump(
   layout: ParameterLayout,
-  likelihood: Likelihood,
-  whitening: Whitening,
+  metric: Metric,
   fields: readonly WhitenedField[],
   background: Float64Array,
 ): JumpProposal {
-  const model = referenceModel(layout, likelihood, whitening, fields, background);
+  const model = referenceModel(layout, metric, fields, background);
   const system = new FieldSystem(model, fields.length);
   const stage = stageOf(layout, model.first);
   if (!stage) return new SpectralJump(layout, noMasses, system, null);
   const grids = new FieldSystem(model, fields.length);
-  const settings = massSettings(layout, stage, likelihood);
+  const settings = massSettings(layout, stage, metric);
   const evidence = massEvidence(layout, stage);
   const sampled = layout.masses.flatMap((index, f) => (layout.position[index] >= 0 ? [f] : []));
   let masses: MassProposal;
@@ -220,21 +213,4 @@ export function buildSpectralJump(
     }
   }
   return new SpectralJump(layout, masses, system, stage);
-}
-
-function referenceModel(
-  layout: ParameterLayout,
-  likelihood: Likelihood,
-  whitening: Whitening,
-  fields: readonly WhitenedField[],
-  background: Float64Array,
-): LinearModel {
-  const polar = layout.template.structure === 'polar' || layout.template.structure === 'mixed-polar';
-  const make = (weight: number, tail: { exponent: number; spread: number } | null): LinearModel =>
-    new LinearModel(layout, whitening, fields, background, weight, tail, polar);
-  const { exponent, spread } = likelihood;
-  if (exponent === null || spread === null) return make(likelihood.scale, null);
-  const first = make(exponent / (spread + whitening.length), null);
-  const chiSquare = Math.max(0, first.baseQuadratic - 2 * greedyGain(layout, first)) / first.weight;
-  return make(exponent / (spread + chiSquare), { exponent, spread });
 }

@@ -1,7 +1,7 @@
 import { drawIsotropicAngles, logIsotropicDensity, mixingWeights } from '@/lib/templates';
 import type { Rng, Target } from '@/lib/sampler';
 import { FieldUnits } from './field-units';
-import type { Likelihood } from './likelihoods';
+import type { Metric } from './metric';
 import { scalarPriorOf, type ParameterLayout } from './parameter-layout';
 import { drawFromPrior, lnPriorDensity, type ScalarPrior } from './priors';
 import type { WhitenedField } from './whitened-field';
@@ -50,23 +50,30 @@ export function buildCoefficients(layout: ParameterLayout): (full: Float64Array,
   };
 }
 
+/** χ² of a full parameter vector, and that of every part of the data at the vector that it was last asked for. */
+export interface ChiSquares {
+  total(full: Float64Array): number;
+  readonly byPart: Float64Array;
+}
+
 /**
  * χ² of a full parameter vector with the covariance as given, from whitened columns: Σ_i (d_i − Σ_j c_j B_ij)².
  * No allocation after construction.
  */
 export function buildChiSquare(
   layout: ParameterLayout,
-  whitening: Whitening,
+  { whitening, parts }: Pick<Metric, 'whitening' | 'parts'>,
   fields: readonly WhitenedField[],
   background: Float64Array,
-): (full: Float64Array) => number {
+): ChiSquares {
   const p = whitening.length;
+  const byPart = new Float64Array(parts.length);
   const { template, masses } = layout;
   const coefficients = new Float64Array(template.columnCount);
   const residual = new Float64Array(p);
   const fixedCount = template.fixedColumns.length;
   const write = buildCoefficients(layout);
-  return (full) => {
+  const total = (full: Float64Array): number => {
     write(full, coefficients);
     residual.set(whitening.data);
     let at = 0;
@@ -88,10 +95,16 @@ export function buildChiSquare(
       const c = coefficients[at + j];
       for (let i = 0; i < p; i += 1) residual[i] -= c * background[j * p + i];
     }
-    let sum = 0;
-    for (let i = 0; i < p; i += 1) sum += residual[i] * residual[i];
-    return sum;
+    let all = 0;
+    for (let k = 0; k < parts.length; k += 1) {
+      let sum = 0;
+      for (let i = parts[k].from; i < parts[k].to; i += 1) sum += residual[i] * residual[i];
+      byPart[k] = sum;
+      all += sum;
+    }
+    return all;
   };
+  return { total, byPart };
 }
 
 /**
@@ -159,11 +172,7 @@ export function buildDrawPrior(layout: ParameterLayout): (rng: Rng, full: Float6
 }
 
 /** Assembles what the sampler is given. Phases have period 2π. */
-export function buildTarget(
-  layout: ParameterLayout,
-  likelihood: Likelihood,
-  chiSquare: (full: Float64Array) => number,
-): Target {
+export function buildTarget(layout: ParameterLayout, metric: Metric, chiSquares: ChiSquares): Target {
   const { parameters } = layout.template;
   const full = Float64Array.from(layout.base);
   const logPrior = buildLogPrior(layout);
@@ -177,7 +186,8 @@ export function buildTarget(
     },
     logLikelihood(x) {
       fillIn(layout, x, full);
-      return likelihood.logDensity(chiSquare(full));
+      chiSquares.total(full);
+      return metric.logDensity(chiSquares.byPart);
     },
     drawPrior(rng, out) {
       drawPrior(rng, full);

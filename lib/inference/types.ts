@@ -3,14 +3,29 @@ import type { JumpProposal, Target } from '@/lib/sampler';
 
 export type LikelihoodKind = 'normal' | 'hartlap' | 'sellentin-heavens' | 'matched-t';
 
+/** One of several measurements that stand one after the other in the data, independent of the others. */
+export interface FitPart {
+  /** Number of its values. */
+  length: number;
+  /** Number of mocks behind its covariance; null where that is taken as known. */
+  mockCount: number | null;
+}
+
 /** What is fitted, after cuts. All dimensionless. */
 export interface FitData {
-  /** Measured shape function S, length p. */
+  /** Measured shape function S (or what stands for it), length p. */
   S: Float64Array;
   /** Covariance of S, p × p row-major; the sample covariance (divisor N − 1) when it comes from N mocks. */
   covariance: Float64Array;
   /** Number of mocks behind the covariance; null where it is taken as known. */
   mockCount: number | null;
+  /**
+   * The independent measurements that the data consist of, where there are several whose covariances don't have one set of mocks behind
+   * them: the likelihood is the product of theirs. The covariance is 0 between parts, `mockCount` null. Left out for one measurement.
+   */
+  parts?: readonly FitPart[];
+  /** Known covariance of what the theory leaves out, p × p row-major, added to that of the data; left out for none. */
+  theoryCovariance?: Float64Array;
 }
 
 export interface InferenceSpec {

@@ -10,6 +10,8 @@ export interface Whitening {
   readonly data: Float64Array;
   /** ln |C|. */
   readonly logDeterminant: number;
+  /** ln |C| of the values from `from` to before `to`, where C is 0 between them and the others. */
+  logDeterminantOf(from: number, to: number): number;
   /** Replaces the vector of length p that starts at `offset` by L⁻¹ times it. */
   apply(vector: Float64Array, offset?: number): void;
 }
@@ -84,6 +86,11 @@ export function buildWhitening(data: FitData): Whitening {
     length: p,
     data: whitened,
     logDeterminant: logDeterminant(l, p),
+    logDeterminantOf(from, to) {
+      let sum = 0;
+      for (let i = from; i < to; i += 1) sum += 2 * Math.log(l[i * p + i]);
+      return sum;
+    },
     apply: (vector, offset = 0) => forwardSolve(l, p, vector, offset),
   };
 }

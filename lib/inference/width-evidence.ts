@@ -69,8 +69,8 @@ export function exactWidths(
   const [mass] = layOutParameters(spec).massPriors;
   const [lo, hi] = massRange(mass);
   if (!Number.isFinite(hi - lo)) return null;
-  const own = buildCollapsedModel([spec]);
-  const models = factors.map((factor) => buildCollapsedModel([widened(spec, amplitudes, factor)]));
+  const own = buildCollapsedModel(spec);
+  const models = factors.map((factor) => buildCollapsedModel(widened(spec, amplitudes, factor)));
   const density = (mu: number) => (mass.kind === 'fixed' ? 0 : lnPriorDensity(mass, mu));
   const nodes = (panels: number) => {
     const node = (mu: number, logWeight: number) => ({ mu, logWeight, columns: [own.columns(0, mu)] });

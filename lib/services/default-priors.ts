@@ -1,4 +1,4 @@
-import type { ParameterDeclaration, Prior } from '@/lib/templates';
+import { partOfName, type ParameterDeclaration, type Prior } from '@/lib/templates';
 
 /** The data that default priors may look at: κ and S of the kept bins. */
 export interface DataScale {
@@ -15,8 +15,8 @@ function roundUp(value: number): number {
 const largest = (length: number, value: (i: number) => number): number =>
   Array.from({ length }, (_, i) => Math.abs(value(i))).reduce((a, b) => Math.max(a, b), 0);
 
-/** Power p of a background coefficient `cm1`, `c0`, … `c4`. */
-const powerOf = (name: string): number => Number(name.slice(1).replace('m', '-'));
+/** Power p of a background coefficient `cm1`, `c0`, … `c4`, of one measurement or of one among several. */
+const powerOf = (name: string): number => Number(partOfName(name).name.slice(1).replace('m', '-'));
 
 /** The middle of the values, the upper one of two. */
 const middle = (values: number[]): number => values.sort((a, b) => a - b)[values.length >> 1];

@@ -123,20 +123,23 @@ export function declareTemplate<S extends OptionSet>(
         fixedColumns,
         columnCount,
         coefficients,
-        predict: predictor(blocks, fixedColumns, length, columnCount, coefficients),
+        predict: predictColumns({ blocks, fixedColumns, length, columnCount, coefficients }),
       };
     },
   };
 }
 
-/** Σ_j column_j × coefficient_j, with working space of its own. */
-function predictor(
-  blocks: readonly FieldBlock[],
-  fixedColumns: CompiledTemplate['fixedColumns'],
-  length: number,
-  columnCount: number,
-  coefficients: CompiledTemplate['coefficients'],
-): CompiledTemplate['predict'] {
+/** Σ_j column_j × coefficient_j at every place, with working space of its own. No allocation where `out` is given. */
+export function predictColumns({
+  blocks,
+  fixedColumns,
+  length,
+  columnCount,
+  coefficients,
+}: Pick<
+  CompiledTemplate,
+  'blocks' | 'fixedColumns' | 'length' | 'columnCount' | 'coefficients'
+>): CompiledTemplate['predict'] {
   const weights = new Float64Array(columnCount);
   const columns = Array.from({ length: COLUMNS_PER_FIELD }, () => new Float64Array(length));
   return (x, out = new Float64Array(length)) => {

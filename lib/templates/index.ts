@@ -33,6 +33,8 @@ export { fieldCount } from './options';
 export { isLightMass } from './parameters';
 export type { OptionDeclaration } from './options';
 export type { TemplateFormula } from './formula';
+export { columnNameFault, columnParameter, ofPart, partOfName } from './column-parameters';
+export { predictColumns } from './declaration';
 export type { TemplateDeclaration } from './declaration';
 export { compileTemplate, findTemplate, parameterData, templateCatalogue } from './catalogue';
 export type { CatalogueEntry, CatalogueParameter } from './catalogue';

@@ -20,7 +20,16 @@ export type Prior =
   | { kind: 'isotropic' };
 
 export type ParameterRole =
-  'mass' | 'angle' | 'phase' | 'amplitude' | 'quadrature' | 'coupling' | 'vertex-angle' | 'background';
+  | 'mass'
+  | 'angle'
+  | 'phase'
+  | 'amplitude'
+  | 'quadrature'
+  | 'coupling'
+  | 'vertex-angle'
+  | 'background'
+  /** Coefficient of a column that came with the measurement. */
+  | 'column';
 
 export interface ParameterDeclaration {
   /** Name in the API, in sample files and in priors: `mu1`, `a1`, `theta`, `g`, `c1`. */
@@ -103,7 +112,10 @@ export interface CompiledTemplate {
   /** Number of predicted values. */
   length: number;
   blocks: readonly FieldBlock[];
-  /** Columns that depend on no parameter: the smooth background ⟨kappa^p⟩, one a power. */
+  /**
+   * Columns that depend on no parameter: the smooth background ⟨kappa^p⟩, one a power, then those that came with the measurement. Their
+   * coefficients are the last parameters, in this order.
+   */
   fixedColumns: readonly { name: string; values: Float64Array }[];
   /** Total number of columns: Σ widths + fixedColumns.length. */
   columnCount: number;

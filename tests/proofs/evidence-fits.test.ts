@@ -138,7 +138,7 @@ describe('evidences as fits find them', () => {
 
 /** ln evidence by quadrature over one frequency with a uniform prior, everything else integrated at each. */
 function overFrequency(spec: InferenceSpec, lo: number, hi: number): number {
-  const model = buildCollapsedModel([spec]);
+  const model = buildCollapsedModel(spec);
   const width = hi - lo;
   const panels = 400;
   const step = width / panels;

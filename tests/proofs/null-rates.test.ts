@@ -29,7 +29,7 @@ function nullsOf(
     data: { ...base.data, mockCount: mocks },
     likelihood: mocks === null ? ('normal' as const) : ('sellentin-heavens' as const),
   };
-  const model = buildCollapsedModel([spec]);
+  const model = buildCollapsedModel(spec);
   const places = trialColumns(model, scanGrid(0.5, 12, id === 'free-phase' ? Math.log(25) : 6)) ?? [];
   const draws = new NullDraws(
     { covariance: spec.data.covariance, rows, kept, mocks },

@@ -102,7 +102,7 @@ export function scanModes(
   if (!jump?.normalised) return null;
   const lo = Math.max(1e-3, Math.min(...ranges.map(([from]) => from)));
   const hi = Math.max(...ranges.map(([, to]) => to));
-  const model = buildCollapsedModel([spec], (kind) => kind);
+  const model = buildCollapsedModel(spec, (kind) => kind);
   const reach = reachOf(spec);
   const lnPrior = (at: ArrayLike<number>): number =>
     layout.massPriors.reduce(

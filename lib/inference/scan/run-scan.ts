@@ -61,13 +61,23 @@ function placesOf(axis: Axis): Float64Array {
   return axis.lo.map((lo, i) => 0.5 * Math.log(lo * axis.hi[i]));
 }
 
+/**
+ * Whether nulls can be drawn as the data's own scatter: one covariance that is known, or estimated from one set of mocks. Not with several
+ * sets of mocks, nor where a known covariance is added to an estimated one: such a scan has Δχ² and evidence, and no p.
+ */
+function canDrawNulls(spec: InferenceSpec, model: CollapsedModel, { mocks }: NullSource): boolean {
+  const { parts, theoryCovariance } = spec.data;
+  if (model.blocks.length > 1 || (theoryCovariance && mocks !== null)) return false;
+  return parts?.every(({ mockCount }) => mockCount === null) ?? true;
+}
+
 /** The whole scan of a notebook, with what it means. `onProgress` hears of 0 to 1. Pure and deterministic. */
 export function runScan(
   request: ScanRequest,
   onProgress: (fraction: number) => void = () => undefined,
 ): ScanOutcome {
   const { one, two, axis, muMin, muMax, source, seed } = request;
-  const model = buildCollapsedModel([one]);
+  const model = buildCollapsedModel(one);
   const locked = one.template.structure === 'mixed';
   const reach = reachOf(axis, locked);
   // Shares of the time, by what each part costs about.
@@ -77,9 +87,12 @@ export function runScan(
 
   const grid = scanGrid(muMin, muMax, reach);
   const line = scanLine(model, grid, within(0));
+  const drawable = canDrawNulls(one, model, source);
   const draws = (): NullDraws => new NullDraws(source, createRng(`${seed}/data`), createRng(`${seed}/mocks`));
   // Each null's own covariance makes every place dear; with the parabola half of the places see the same peaks.
-  const places = trialColumns(model, source.mocks === null ? grid : grid.filter((_, i) => i % 2 === 0));
+  const places = drawable
+    ? trialColumns(model, source.mocks === null ? grid : grid.filter((_, i) => i % 2 === 0))
+    : null;
   const nulls =
     places && lineNulls(model, places, { count: request.nulls, draws: draws(), onPart: within(1) });
 
@@ -87,7 +100,9 @@ export function runScan(
   const { freedom } = model.coordinates;
   const chiSquare = { without: model.background().chiSquare[0], with: line.best.fit.chiSquare[0] };
   const localP =
-    freedom === null ? null : localTail(block, source.mocks, chiSquare, freedom, block.fixed.length);
+    freedom === null || !drawable
+      ? null
+      : localTail(block, source.mocks, chiSquare, freedom, block.fixed.length);
   const facts = coverageFacts(axis);
   const logKappa = placesOf(axis);
   const weights = Float64Array.from(logKappa, (_, i) => 1 / one.data.covariance[i * logKappa.length + i]);
@@ -115,14 +130,14 @@ function planeOf(
   line: LineScan,
   how: { reach: number; within: (part: number) => (fraction: number) => void; draws: () => NullDraws },
 ): PlaneOutcome {
-  const pair = buildCollapsedModel([two]);
+  const pair = buildCollapsedModel(two);
   const grid = planeGrid(muMin, muMax, how.reach);
   const start: [number, number] =
     line.best.mu < 0.5 * (muMin + muMax)
       ? [line.best.mu, line.best.mu + 0.5 * (muMax - line.best.mu)]
       : [muMin + 0.5 * (line.best.mu - muMin), line.best.mu];
   const plane = scanPlane(pair, grid, { starts: [start], onPart: how.within(2) });
-  const places = trialColumns(single, grid);
+  const places = canDrawNulls(two, single, source) ? trialColumns(single, grid) : null;
   const designs = pair.coordinates.profile([grid[0], grid[1]]);
   const fits = designs.length === 1 && places !== null && designs[0].design.count === 2 * places[0].length;
   const count = source.mocks === null ? nulls : Math.min(nulls, PLANE_NULLS_WITH_MOCKS);

@@ -1,8 +1,9 @@
 import { requireLength } from '../inference-error';
-import { buildLikelihood } from '../likelihoods';
+import { buildMetric } from '../metric';
 import { layOutParameters, scalarPriorOf, type ParameterLayout } from '../parameter-layout';
 import type { InferenceSpec, LikelihoodKind } from '../types';
-import { buildWhitening } from '../whitening';
+import { whitenBackground } from '../target';
+import type { Whitening } from '../whitening';
 import { CollapsedEvidence } from './collapsed-evidence';
 import type { Coordinates } from './coordinates';
 import { linearPrior, type LinearPrior } from './linear-prior';
@@ -178,29 +179,20 @@ export const comparingKind = (kind: LikelihoodKind): LikelihoodKind =>
   kind === 'matched-t' ? 'sellentin-heavens' : kind;
 
 /**
- * A notebook's measurement (or several jointly: one spec each, the same template on its own axis) as a collapsed model.
- * Masses, amplitudes, coupling, phases and angles are shared and take the first spec's priors; each block has its own
- * background. Throws InferenceError as `buildInference` does, and `no_frequency` for a template without or with more than two fields.
+ * A notebook's measurement as a collapsed model: one block, or one for each of several independent parts that don't share a likelihood.
+ * Throws InferenceError as `buildInference` does, and `no_frequency` for a template without or with more than two fields.
  */
 export function buildCollapsedModel(
-  specs: readonly InferenceSpec[],
+  spec: InferenceSpec,
   kindOf: (kind: LikelihoodKind) => LikelihoodKind = comparingKind,
 ): CollapsedModel {
-  const layouts = specs.map((spec) => layOutParameters(spec));
-  const coordinates = templateCoordinates(layouts[0]);
-  const counts = layouts.map(
-    (layout) => layout.background.filter((index) => layout.position[index] >= 0).length,
+  const layout = layOutParameters(spec);
+  const coordinates = templateCoordinates(layout);
+  return new CollapsedModel(
+    collapsedBlocks(spec, layout, kindOf(spec.likelihood)),
+    coordinates,
+    backgroundPriors(layout),
   );
-  const total = counts.reduce((sum, count) => sum + count, 0);
-  let before = 0;
-  const blocks = specs.map((spec, s) => {
-    const fixed = new Array<Float64Array | null>(total).fill(null);
-    const block = buildBlock(spec, layouts[s], kindOf(spec.likelihood));
-    block.own.forEach((column, k) => (fixed[before + k] = column));
-    before += counts[s];
-    return { ...block.rest, fixed };
-  });
-  return new CollapsedModel(blocks, coordinates, layouts.flatMap(backgroundPriors));
 }
 
 /** Priors of a layout's sampled background coefficients. */
@@ -211,36 +203,59 @@ export function backgroundPriors(layout: ParameterLayout): LinearPrior[] {
   });
 }
 
-function buildBlock(spec: InferenceSpec, layout: ParameterLayout, kind: LikelihoodKind) {
+/** The parts of a spec's data in their own metric, fixed coefficients taken off the data. */
+export function collapsedBlocks(
+  spec: InferenceSpec,
+  layout: ParameterLayout,
+  kind: LikelihoodKind,
+): CollapsedBlock[] {
   const { data, template } = spec;
   requireLength(spec);
-  const whitening = buildWhitening(data);
+  const { whitening, parts } = buildMetric(data, kind, layout.free.length);
   const p = whitening.length;
-  const likelihood = buildLikelihood(kind, data.mockCount, p, layout.free.length, whitening.logDeterminant);
   const values = Float64Array.from(whitening.data);
+  const background = whitenBackground(layout, whitening);
   const own: Float64Array[] = [];
   layout.background.forEach((index, j) => {
-    const column = Float64Array.from(template.fixedColumns[j].values);
-    whitening.apply(column);
+    const column = background.subarray(j * p, (j + 1) * p);
     if (layout.position[index] >= 0) own.push(column);
     else for (let i = 0; i < p; i += 1) values[i] -= layout.base[index] * column[i];
   });
-  const scratch = template.blocks.map(({ width }) =>
-    Array.from({ length: width }, () => new Float64Array(p)),
-  );
-  return {
-    own,
-    rest: {
-      data: values,
-      likelihood,
-      widths: template.blocks.map(({ width }) => width),
-      fill(field: number, mass: number, out: Float64Array): void {
-        template.blocks[field].fill(mass, scratch[field]);
-        scratch[field].forEach((column, c) => {
-          out.set(column, c * p);
-          whitening.apply(out, c * p);
-        });
-      },
+  const whole = wholeColumns(spec, whitening);
+  return parts.map(({ from, to, likelihood }) => ({
+    data: values.subarray(from, to),
+    likelihood,
+    fixed: own.map((column) => {
+      const part = column.subarray(from, to);
+      return part.every((value) => value === 0) ? null : part;
+    }),
+    widths: template.blocks.map(({ width }) => width),
+    fill(field, mass, out) {
+      const columns = whole(field, mass);
+      const length = to - from;
+      for (let c = 0; c < template.blocks[field].width; c += 1) {
+        out.set(columns.subarray(c * p + from, c * p + to), c * length);
+      }
     },
+  }));
+}
+
+/** Whitened columns of a field over all the data, kept while the next call is for the same mass: every part asks in turn. */
+function wholeColumns({ template }: InferenceSpec, { length: p, apply }: Whitening) {
+  const kept = template.blocks.map(({ width }) => ({
+    mass: NaN,
+    scratch: Array.from({ length: width }, () => new Float64Array(p)),
+    columns: new Float64Array(width * p),
+  }));
+  return (field: number, mass: number): Float64Array => {
+    const own = kept[field];
+    if (own.mass === mass) return own.columns;
+    template.blocks[field].fill(mass, own.scratch);
+    own.scratch.forEach((column, c) => {
+      own.columns.set(column, c * p);
+      apply(own.columns, c * p);
+    });
+    own.mass = mass;
+    return own.columns;
   };
 }

@@ -49,7 +49,7 @@ function specOf(
 
 /** ln Z of one field by a plain sum over a fine grid of masses, apart from the code under test. */
 function logZ(spec: InferenceSpec): number {
-  const model = buildCollapsedModel([spec]);
+  const model = buildCollapsedModel(spec);
   const { at, weight } = gaussLegendre(0.2, 8, 400);
   return logSumExp(
     Array.from(at, (mu, i) => Math.log(weight[i] / 7.8) + (model.logEvidence([mu], 1) ?? NaN)),

@@ -1,8 +1,8 @@
 import { describe, expect, it } from 'vitest';
-import { buildInference, type InferenceSpec } from '@/lib/inference';
+import { assemble, buildInference, type InferenceSpec } from '@/lib/inference';
 import { buildCollapsedModel } from '@/lib/inference/scan';
 import { compileTemplate, type Prior } from '@/lib/templates';
-import { madeUpData, madeUpSpec } from '../fixtures';
+import { binned, madeUpData, madeUpSpec } from '../fixtures';
 
 /**
  * ln ∫ exp f over a box that holds all of it, by the trapezoidal rule in every direction: f is smooth and falls to nothing at
@@ -65,7 +65,7 @@ describe('the log evidence at fixed frequencies is that of brute-force quadratur
         data: madeUpData(0.05, likelihood === 'normal' ? null : 30),
         likelihood,
       };
-      const exact = buildCollapsedModel([spec]).logEvidence([2.1], 1);
+      const exact = buildCollapsedModel(spec).logEvidence([2.1], 1);
       const brute = bruteForce(posterior(spec, [2.1]).f, [
         { lo: -2.4, hi: 2.4, n: 110 },
         { lo: -2.4, hi: 2.6, n: 110 },
@@ -85,7 +85,7 @@ describe('the log evidence at fixed frequencies is that of brute-force quadratur
       data: madeUpData(0.05, 40),
       likelihood: 'matched-t' as const,
     };
-    const exact = buildCollapsedModel([spec], (kind) => kind).logEvidence([1.4], 1);
+    const exact = buildCollapsedModel(spec, (kind) => kind).logEvidence([1.4], 1);
     const fixedMass = { ...spec, priors: { ...spec.priors, mu1: { kind: 'fixed' as const, value: 1.4 } } };
     const { target } = buildInference(fixedMass);
     // Fixing the mass takes a parameter from the matched exponent: put it in place by hand.
@@ -107,7 +107,7 @@ describe('the log evidence at fixed frequencies is that of brute-force quadratur
       data: madeUpData(0.05, 40),
       likelihood: 'sellentin-heavens' as const,
     };
-    const exact = buildCollapsedModel([spec]).logEvidence([0.9, 2.2], 6);
+    const exact = buildCollapsedModel(spec).logEvidence([0.9, 2.2], 6);
     const { f, names } = posterior(spec, [0.9, 2.2]);
     expect(names).toEqual(['theta', 'g']);
     // Weights are even in the angle: mirrored, the integrand is periodic, and the trapezoidal rule converges geometrically.
@@ -129,7 +129,7 @@ describe('the log evidence at fixed frequencies is that of brute-force quadratur
         A1: { kind: 'uniform', lo: 0, hi: 0.25 },
       },
     );
-    const exact = buildCollapsedModel([spec]).logEvidence([2.1], 2);
+    const exact = buildCollapsedModel(spec).logEvidence([2.1], 2);
     const { f } = posterior(spec, [2.1]);
     // Midpoints converge as h² at an edge: Richardson's step takes the leading error away.
     const at = (n: number): number =>
@@ -152,7 +152,7 @@ describe('the log evidence at fixed frequencies is that of brute-force quadratur
         c2: { kind: 'log-uniform', lo: 0.01, hi: 1 },
       },
     );
-    const exact = buildCollapsedModel([spec]).logEvidence([2.1], 1);
+    const exact = buildCollapsedModel(spec).logEvidence([2.1], 1);
     const { f } = posterior(spec, [2.1]);
     const brute = bruteForce(f, [
       { lo: -0.05, hi: 0.06, n: 30 },
@@ -178,7 +178,17 @@ describe('the log evidence at fixed frequencies is that of brute-force quadratur
       template: compileTemplate('free-phase', { ...options, background: [1] }, secondAxis),
       priors: { ...first.priors, c1: normal(0.5) },
     };
-    const exact = buildCollapsedModel([first, second]).logEvidence([2.1], 1);
+    const joint = assemble({
+      parts: [
+        { label: 'first', axis: binned, data: first.data },
+        { label: 'second', axis: secondAxis, data: second.data },
+      ],
+      template: { id: 'free-phase', options: { ...options, background: [1] } },
+      likelihood: 'sellentin-heavens',
+      // The first measurement's slope is held at nothing.
+      priors: { ...first.priors, c1_1: { kind: 'fixed', value: 0 }, c1_2: normal(0.5) },
+    });
+    const exact = buildCollapsedModel(joint).logEvidence([2.1], 1);
     const one = posterior(first, [2.1]);
     const two = posterior(second, [2.1]);
     const amplitudes = (x: Float64Array): number =>
@@ -201,7 +211,16 @@ describe('the best fit with flat linear terms', () => {
     const options = { fields: 1, background: [1] };
     const first = madeUpSpec('free-phase', options);
     const second = { ...first, data: madeUpData(0.08, 35), likelihood: 'sellentin-heavens' as const };
-    const model = buildCollapsedModel([first, second]);
+    const joined = assemble({
+      parts: [
+        { label: 'first', axis: binned, data: first.data },
+        { label: 'second', axis: binned, data: second.data },
+      ],
+      template: { id: 'free-phase', options },
+      likelihood: 'sellentin-heavens',
+      priors: { ...first.priors, c1_1: first.priors.c1, c1_2: first.priors.c1 },
+    });
+    const model = buildCollapsedModel(joined);
     const { coefficients, logLikelihood } = model.fit([2.1]);
     const [one, two] = [posterior(first, [2.1]), posterior(second, [2.1])];
     const priorOf = (spec: InferenceSpec, x: Float64Array): number => {

@@ -19,7 +19,7 @@ it.each([
   { timeout: 60_000 },
   (id, options, priors) => {
     const spec = madeUpSpec(id, { ...options, background: [1] }, priors);
-    const model = buildCollapsedModel([spec]);
+    const model = buildCollapsedModel(spec);
     const at = options.fields === 1 ? [2.1] : [1.1, 2.6];
     expect(Number.isFinite(model.fit(at).logLikelihood)).toBe(true);
     expect(model.fit(at).logLikelihood).toBeGreaterThanOrEqual(model.background().logLikelihood - 20);

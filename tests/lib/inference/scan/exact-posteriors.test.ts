@@ -34,7 +34,7 @@ function modelOf(reference: typeof alias | typeof two, fields: number) {
     covariance: Float64Array.from(reference.covariance.flat()),
     mockCount: null,
   };
-  return buildCollapsedModel([{ data, likelihood: 'normal', template, priors }]);
+  return buildCollapsedModel({ data, likelihood: 'normal', template, priors });
 }
 
 /** Composite Gauss–Legendre on [lo, hi]. */

@@ -63,7 +63,7 @@ describe('nulls', () => {
   ] as const)('%s: the local p of one frequency is uniform', (_, id, options, mocks) => {
     const base = madeUpSpec(id, { ...options, fields: 1, background: [1] });
     const spec = { ...base, data: { ...base.data, mockCount: mocks } };
-    const model = buildCollapsedModel([spec]);
+    const model = buildCollapsedModel(spec);
     const places = trialColumns(model, Float64Array.of(2.3)) ?? [];
     const statistics = new NullStatistics(
       model.blocks[0].fixed.map((c) => c ?? new Float64Array(16)),
@@ -83,7 +83,7 @@ describe('nulls', () => {
   it('a χ² tail would not do for 40 mocks: the same test fails with it', () => {
     const base = madeUpSpec('free-phase', { fields: 1, background: [1] });
     const spec = { ...base, data: { ...base.data, mockCount: 40 } };
-    const model = buildCollapsedModel([spec]);
+    const model = buildCollapsedModel(spec);
     const places = trialColumns(model, Float64Array.of(2.3)) ?? [];
     const statistics = new NullStatistics(
       model.blocks[0].fixed.map((c) => c ?? new Float64Array(16)),
@@ -107,7 +107,7 @@ describe('nulls', () => {
     choleskyInto(lower, 16, lower);
     const grid = Float64Array.of(0.5, 1.7, 3.1, 6);
     const spec = { ...base, data, likelihood: 'sellentin-heavens' as const };
-    const model = buildCollapsedModel([spec]);
+    const model = buildCollapsedModel(spec);
     const statistics = new NullStatistics(
       model.blocks[0].fixed.map((c) => c ?? new Float64Array(16)),
       trialColumns(model, grid) ?? [],
@@ -134,7 +134,7 @@ describe('nulls', () => {
           for (let k = 0; k < 16; k += 1) covariance[i * 16 + j] += root[i * 16 + k] * root[j * 16 + k];
         }
       }
-      const simulated = buildCollapsedModel([{ ...spec, data: { S, covariance, mockCount: 40 } }]);
+      const simulated = buildCollapsedModel({ ...spec, data: { S, covariance, mockCount: 40 } });
       const without = simulated.background().chiSquare[0];
       expect(statistics.chiSquare).toBeCloseTo(without, 8);
       grid.forEach((mu, i) => expect(gains[i]).toBeCloseTo(without - simulated.fit([mu]).chiSquare[0], 7));
@@ -148,8 +148,8 @@ describe('nulls', () => {
   ] as const)('%s: every pair of the plane falls as the two-field fit does', (id, options, sameSign) => {
     const one = madeUpSpec(id, { ...options, fields: 1, background: [1] });
     const two = madeUpSpec(id, { ...options, fields: 2, background: [1] });
-    const single = buildCollapsedModel([one]);
-    const pair = buildCollapsedModel([two]);
+    const single = buildCollapsedModel(one);
+    const pair = buildCollapsedModel(two);
     const grid = Float64Array.of(0.6, 1.5, 2.9, 4.2, 6.5);
     const statistics = new NullStatistics(
       single.blocks[0].fixed.map((c) => c ?? new Float64Array(16)),
@@ -210,7 +210,7 @@ describe('nulls', () => {
 
   it('planes count nulls too', () => {
     const one = madeUpSpec('locked-squeezed', { vertex: 1, fields: 1, background: [1] });
-    const single = buildCollapsedModel([one]);
+    const single = buildCollapsedModel(one);
     const places =
       trialColumns(
         single,
