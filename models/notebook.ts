@@ -28,11 +28,18 @@ export interface NotebookOrigin {
   revision: number;
   /** Number of the fit whose snapshot it took; null for the revision itself. */
   fit: number | null;
+  /** Bins that were left out there and aren't in the measurement it was copied to; absent where there are none. */
+  droppedBins?: number;
 }
 
 /** The settings of sections 1, 2 and 4, complete, as of one revision. */
 export interface NotebookSettings {
-  cuts: { kappaMin?: number; kappaMax?: number };
+  cuts: {
+    kappaMin?: number;
+    kappaMax?: number;
+    /** Single bins left out, ascending; absent where there are none. */
+    excluded?: { bin: number; reason: string; kappa?: [number, number] }[];
+  };
   likelihood: { kind: string };
   template: { id: string; version: number; options: Record<string, unknown> };
   priors: Record<string, { kind: string } & Record<string, unknown>>;

@@ -1,6 +1,7 @@
 import { isRunning } from '@/components/fit/fit-words';
 import { likelihoods } from '@/components/notebook/likelihood-words';
 import { counted, plain } from '@/components/words/counts';
+import { withoutBins } from '@/components/words/left-out';
 import { decimalsByMcse, formatNumber } from '@/lib/figures/format';
 import type { ComparedFit, Comparison } from '@/lib/schemas';
 import type { LikelihoodKind } from '@/components/notebook/likelihood-words';
@@ -31,6 +32,7 @@ export function dataInWords({
   const ends = [
     ...(kappaMin === undefined ? [] : [`κ ≥ ${plain(kappaMin)}`]),
     ...(kappaMax === undefined ? [] : [`κ ≤ ${plain(kappaMax)}`]),
+    ...(cuts.excluded?.length ? [withoutBins(cuts)] : []),
   ];
   return [`version ${measurementVersion}`, ...(ends.length ? ends : ['all bins'])].join(', ');
 }

@@ -21,6 +21,8 @@ export interface MeasuredPoints {
   hi?: ArrayLike<number>;
   /** Points that are framed, with a word beside them: {index: 12, word: 'row 13'}. */
   flags?: readonly { index: number; word: string }[];
+  /** Points that are shown and not used, with the reason why: drawn hollow. */
+  hollow?: readonly { index: number; reason: string }[];
   /** Places without a point: {kappa: 0.11, word: 'row 32: no number'}. */
   gaps?: readonly { kappa: number; word: string }[];
 }
@@ -56,6 +58,8 @@ export interface PointsFigureProps extends FigureFacts {
   xDomain?: readonly [number, number];
   yDomain?: readonly [number, number];
   yName?: ReactNode;
+  /** Called with the index of a point that was clicked; keep it the same function while curves move. */
+  onPick?: (index: number) => void;
 }
 
 /** From the back to the front, whatever order the key has. */
@@ -123,6 +127,7 @@ function PointsDrawing({ figure, size, keys }: DrawingProps) {
         narrow={size.narrow}
         clip={clip}
         yName={figure.yName}
+        onPick={figure.onPick}
       />
       {[...curves]
         .sort((a, b) => depth.indexOf(a.role) - depth.indexOf(b.role))
@@ -156,13 +161,14 @@ interface GroundProps {
   narrow: boolean;
   clip: string;
   yName?: ReactNode;
+  onPick?: (index: number) => void;
 }
 
 const residualDomain: [number, number] = [-3, 3];
 
 /** All that stands still while curves move: axes, frames, band and points. */
 const Ground = memo(function Ground(props: GroundProps) {
-  const { points, band, places, xDomain, yDomain, narrow, clip, yName } = props;
+  const { points, band, places, xDomain, yDomain, narrow, clip, yName, onPick } = props;
   const { main, residual } = places;
   const xTicks = logTicks(xDomain[0], xDomain[1], narrow ? 4 : 5);
   return (
@@ -183,7 +189,7 @@ const Ground = memo(function Ground(props: GroundProps) {
         yName={yName ?? <ShapeName />}
       />
       <ZeroLine panel={main} yAxisId="main" />
-      {points ? <Points points={points} panel={main} /> : null}
+      {points ? <Points points={points} panel={main} onPick={onPick} /> : null}
       {points ? <Flags points={points} panel={main} /> : null}
       {residual ? <ResidualGround panel={residual} xTicks={xTicks} /> : null}
     </>

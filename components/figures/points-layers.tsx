@@ -49,9 +49,16 @@ export function ZeroLine({ panel, yAxisId }: { panel: Panel; yAxisId: string }) 
   return <path className="zero" d={`M${panel.left} ${y.toFixed(1)}H${panel.right}`} />;
 }
 
-/** Points with error bars without caps; beyond the axis an open circle at its edge. */
-export function Points({ points, panel }: { points: MeasuredPoints; panel: Panel }) {
+export interface PointsProps {
+  points: MeasuredPoints;
+  panel: Panel;
+  onPick?: (index: number) => void;
+}
+
+/** Points with error bars without caps, hollow where they aren't used; beyond the axis an open circle at its edge. */
+export function Points({ points, panel, onPick }: PointsProps) {
   const pixels = usePixels('main');
+  const reasons = new Map((points.hollow ?? []).map(({ index, reason }) => [index, reason]));
   const inside = (v: number) => Math.min(panel.bottom, Math.max(panel.top, v));
   return (
     <g>
@@ -63,12 +70,20 @@ export function Points({ points, panel }: { points: MeasuredPoints; panel: Panel
         const out = y < panel.top || y > panel.bottom;
         const upper = inside(pixels.y(value + error));
         const lower = inside(pixels.y(value - error));
+        const reason = reasons.get(i);
         return (
-          <g key={i}>
+          <g key={i} data-point={i} className={onPick ? 'pick' : undefined} onClick={() => onPick?.(i)}>
+            {reason === undefined ? null : <title>{`Left out: ${reason}`}</title>}
             {Number.isFinite(error) && upper !== lower ? (
               <path className="err" d={`M${x.toFixed(1)} ${upper.toFixed(1)}V${lower.toFixed(1)}`} />
             ) : null}
-            <Dot className={out ? 'pt out' : 'pt'} cx={x} cy={inside(y)} r={out ? 2.2 : 2.4} />
+            <Dot
+              className={out ? 'pt out' : reason === undefined ? 'pt' : 'pt hollow'}
+              cx={x}
+              cy={inside(y)}
+              r={out ? 2.2 : reason === undefined ? 2.4 : 3.1}
+            />
+            {onPick || reason !== undefined ? <circle className="reach" cx={x} cy={inside(y)} r={9} /> : null}
           </g>
         );
       })}

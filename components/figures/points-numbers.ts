@@ -27,11 +27,13 @@ export function pointsNumbers({ points, curves = [], band, residuals }: PointsFi
       }))
     : [];
   const all = [...lines, ...bands];
+  const hollow = points?.hollow?.length ? new Set(points.hollow.map(({ index }) => index)) : null;
   return {
     columns: [
       ...(edges ? ['kappa_lo', 'kappa_hi'] : []),
       'kappa',
       ...(points ? ['S', 'standard_error'] : []),
+      ...(hollow ? ['left_out'] : []),
       ...(residuals ? ['residual_sd'] : []),
       ...all.map((line) => line.name),
     ],
@@ -39,6 +41,7 @@ export function pointsNumbers({ points, curves = [], band, residuals }: PointsFi
       ...(edges ? [edges.lo[i], edges.hi[i]] : []),
       k,
       ...(points ? [points.value[i], points.error[i]] : []),
+      ...(hollow ? [hollow.has(i) ? 1 : 0] : []),
       ...(residuals ? [residuals[i]] : []),
       ...all.map((line) => at(line.kappa, line.y, k)),
     ]),

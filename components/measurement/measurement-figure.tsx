@@ -8,18 +8,24 @@ import { fileNameOf } from './measurement-words';
 export function MeasurementFigure({
   measurement,
   kept,
+  leftOut = [],
+  onPick,
   number,
   caption,
 }: {
   measurement: Measurement;
   /** Rows to draw; left out, all. */
   kept?: readonly number[];
+  /** Bins that are drawn hollow among them, with the reason why. */
+  leftOut?: readonly { bin: number; reason: string }[];
+  /** Called with the number of a bin whose point was clicked. */
+  onPick?: (bin: number) => void;
   number: number;
   caption: ReactNode;
 }) {
   const { points, name, blind } = measurement;
   if (blind) return <WithheldFigure number={number} label={`Points of ${name}`} caption={caption} />;
-  const rows = kept ?? points.kappa.map((_, i) => i);
+  const rows = [...(kept ?? points.kappa.keys()), ...leftOut.map(({ bin }) => bin - 1)].sort((a, b) => a - b);
   const take = (values: readonly (number | null)[]) => rows.map((i) => values[i] ?? NaN);
   return (
     <PointsFigure
@@ -32,7 +38,9 @@ export function MeasurementFigure({
         error: take(points.sigma),
         lo: points.kappaLo ? take(points.kappaLo) : undefined,
         hi: points.kappaHi ? take(points.kappaHi) : undefined,
+        hollow: leftOut.map(({ bin, reason }) => ({ index: rows.indexOf(bin - 1), reason })),
       }}
+      onPick={onPick && ((index) => onPick(rows[index] + 1))}
       caption={caption}
     />
   );

@@ -125,13 +125,17 @@ function Difference({ measurement, before }: { measurement: Measurement; before:
 function Outcome({ done }: { done: AllTakenUp }) {
   return (
     <div role="status">
-      {done.notebooks.map(({ id, number, title, revision, fits, skipped }) => (
+      {done.notebooks.map(({ id, number, title, revision, fits, skipped, dropped }) => (
         <p key={id} className="mb-1 text-small">
           <Link href={`/notebooks/${id}#shifts`}>
             Notebook {number}, {title}
           </Link>
           , stands at revision {revision}; {counted(fits.length, 'fit')} queued
-          {skipped.length ? `, ${counted(skipped.length, 'fit')} not repeated` : ''}.
+          {skipped.length ? `, ${counted(skipped.length, 'fit')} not repeated` : ''}
+          {dropped.length
+            ? `; left out before and not in this version: bin ${dropped.map(({ bin, reason }) => `${bin} (${reason})`).join(', ')}`
+            : ''}
+          .
         </p>
       ))}
       {done.refused.map(({ id, number, title, reason }) => (

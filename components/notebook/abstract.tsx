@@ -4,6 +4,7 @@ import { judged, meetsGate } from '@/components/fit/quantities';
 import { Sym } from '@/components/ui/sym';
 import { capital, counted, inWords } from '@/components/words/counts';
 import { KappaRange } from '@/components/words/kappa';
+import { withoutBins } from '@/components/words/left-out';
 import type { Fit, Measurement, Notebook } from '@/lib/schemas';
 import { fieldCount } from '@/lib/templates';
 import { templateInWords } from './template-words';
@@ -81,8 +82,9 @@ export function Abstract({
   return (
     <>
       {capital(counted(bins.kept, 'bin'))} with{' '}
-      <KappaRange lo={cuts.kappaMin ?? measurement.kappaMin} hi={cuts.kappaMax ?? measurement.kappaMax} />;{' '}
-      <TemplateInWords template={template} />. {fitInWords(fit)}
+      <KappaRange lo={cuts.kappaMin ?? measurement.kappaMin} hi={cuts.kappaMax ?? measurement.kappaMax} />
+      {cuts.excluded?.length ? `, ${withoutBins(cuts)}` : ''}; <TemplateInWords template={template} />.{' '}
+      {fitInWords(fit)}
     </>
   );
 }

@@ -19,8 +19,11 @@ export interface KeptPoints {
 /** Relative tolerance at both ends of a cut, as on the server. */
 const tolerance = 1e-9;
 
-/** Rows inside the cuts with their edges, or with κ where there are none. */
-export function keptRows(points: Measurement['points'], cuts: Notebook['cuts']): number[] {
+/** Rows inside a range of κ with their edges, or with κ where there are none. */
+function rowsInRange(
+  points: Measurement['points'],
+  cuts: Pick<Notebook['cuts'], 'kappaMin' | 'kappaMax'>,
+): number[] {
   const low = (cuts.kappaMin ?? 0) * (1 - tolerance);
   const high = (cuts.kappaMax ?? Infinity) * (1 + tolerance);
   const [lower, upper] = [points.kappaLo ?? points.kappa, points.kappaHi ?? points.kappa];
@@ -35,6 +38,21 @@ function factorOf(covariance: readonly (readonly number[])[], rows: readonly num
   );
   const factor = new Float64Array(p * p);
   return choleskyInto(cut, p, factor) < 0 ? factor : null;
+}
+
+/** Rows that the cuts keep: inside the range, and not left out one by one. */
+export function keptRows(points: Measurement['points'], cuts: Notebook['cuts']): number[] {
+  const out = new Set((cuts.excluded ?? []).map(({ bin }) => bin - 1));
+  return rowsInRange(points, cuts).filter((row) => !out.has(row));
+}
+
+/** Of the bins left out one by one those inside the range, where they would be kept else. */
+export function leftOut(
+  points: Measurement['points'],
+  cuts: Notebook['cuts'],
+): NonNullable<Notebook['cuts']['excluded']> {
+  const inside = new Set(rowsInRange(points, cuts));
+  return (cuts.excluded ?? []).filter(({ bin }) => inside.has(bin - 1));
 }
 
 export function keepPoints(measurement: Measurement, cuts: Notebook['cuts']): KeptPoints {

@@ -14,10 +14,12 @@ import { Sym } from '@/components/ui/sym';
 import { DefinitionList } from '@/components/ui/definition-list';
 import { capital, counted, plain } from '@/components/words/counts';
 import { KappaRange } from '@/components/words/kappa';
+import { leftOutInWords } from '@/components/words/left-out';
 import type { Measurement, Notebook } from '@/lib/schemas';
 import { ConflictMessage, twoStand } from './conflict-message';
 import { measurementSentence } from './fold-sentences';
-import { keptRows } from './kept-points';
+import { keptRows, leftOut } from './kept-points';
+import { LeftOutBins } from './left-out-bins';
 import { likelihoodKinds, likelihoods, type LikelihoodKind } from './likelihood-words';
 import { SaveRow } from './save-row';
 import { conflictOf, type Draft } from './section-draft';
@@ -43,8 +45,12 @@ export interface MeasurementSectionProps {
 }
 
 /** A cut's two ends without those that are left open. */
-function cutsOf(kappaMin: number | null | undefined, kappaMax: number | null | undefined): Notebook['cuts'] {
+function cutsOf(
+  before: Notebook['cuts'],
+  { kappaMin, kappaMax }: { kappaMin: number | null | undefined; kappaMax: number | null | undefined },
+): Notebook['cuts'] {
   return {
+    ...(before.excluded ? { excluded: before.excluded } : {}),
     ...(kappaMin === null || kappaMin === undefined ? {} : { kappaMin }),
     ...(kappaMax === null || kappaMax === undefined ? {} : { kappaMax }),
   };
@@ -72,7 +78,7 @@ function Choice({
         }
         name="kappaMin"
         value={cuts.kappaMin ?? null}
-        onValue={(value) => setCuts(cutsOf(value, cuts.kappaMax))}
+        onValue={(value) => setCuts(cutsOf(cuts, { kappaMin: value, kappaMax: cuts.kappaMax }))}
         error={detailAt(error, 'cuts.kappaMin')}
         help="Empty: no cut."
       />
@@ -84,7 +90,7 @@ function Choice({
         }
         name="kappaMax"
         value={cuts.kappaMax ?? null}
-        onValue={(value) => setCuts(cutsOf(cuts.kappaMin, value))}
+        onValue={(value) => setCuts(cutsOf(cuts, { kappaMin: cuts.kappaMin, kappaMax: value }))}
         error={detailAt(error, 'cuts.kappaMax') ?? detailAt(error, 'cuts')}
         help={reach}
       />
@@ -112,6 +118,7 @@ function settingsInWords({ cuts, likelihood }: MeasurementSettings) {
   return {
     kappaMin: end(cuts.kappaMin),
     kappaMax: end(cuts.kappaMax),
+    excluded: leftOutInWords(cuts.excluded ?? []) || 'no bin left out',
     likelihood: likelihoods[likelihood.kind].label,
   };
 }
@@ -122,6 +129,8 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
   const section = useSectionSave(state);
   const { cuts } = draft.value;
   const rows = keptRows(measurement.points, cuts);
+  const hollow = leftOut(measurement.points, cuts);
+  const [picked, setPicked] = useState<number | null>(null);
   const all = measurement.rows;
   const editable = notebook.may.includes('notebook.edit');
   // Once a newer version was spoken of, what came of taking it up is said in the same place.
@@ -156,11 +165,13 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
       <MeasurementFigure
         measurement={measurement}
         kept={rows}
+        leftOut={hollow}
+        onPick={editable ? setPicked : undefined}
         number={figureNumber('measurement')}
         caption={
           <>
             {capital(counted(rows.length, 'bin'))} of {notebook.measurement.name} against <Sym base="κ" />
-            {rows.length === all ? (
+            {cuts.kappaMin === undefined && cuts.kappaMax === undefined ? (
               ''
             ) : (
               <>
@@ -168,13 +179,25 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
                 inside the cut <KappaRange lo={cuts.kappaMin} hi={cuts.kappaMax} />
               </>
             )}
-            ; {covarianceInWords(measurement)}.
+            {hollow.length ? `, ${leftOutInWords(hollow)}` : ''}; {covarianceInWords(measurement)}.
           </>
         }
       />
       {editable ? (
         <>
           <Choice measurement={measurement} draft={draft} error={section.error} />
+          <LeftOutBins
+            points={measurement.points}
+            cuts={cuts}
+            onExcluded={(excluded) => {
+              const { kappaMin, kappaMax } = cuts;
+              const next = excluded.length ? { excluded } : {};
+              draft.change({ ...draft.value, cuts: cutsOf(next, { kappaMin, kappaMax }) });
+            }}
+            picked={picked}
+            onPicked={setPicked}
+            error={section.error?.details.find(({ path }) => path?.startsWith('cuts.excluded'))?.message}
+          />
           <SaveRow
             draft={draft}
             revision={notebook.revision}
@@ -187,6 +210,7 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
         <DefinitionList
           entries={[
             { term: 'Cut', text: <KappaRange lo={cuts.kappaMin} hi={cuts.kappaMax} /> },
+            ...(cuts.excluded ? [{ term: 'Left out', text: capital(leftOutInWords(cuts.excluded)) }] : []),
             { term: 'Likelihood', text: likelihoods[draft.value.likelihood.kind].meaning },
           ]}
         />
@@ -195,9 +219,14 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
         <ConflictMessage
           conflict={conflict}
           section={section}
-          sides={(['kappaMin', 'kappaMax', 'likelihood'] as const).map((key) => ({
+          sides={(['kappaMin', 'kappaMax', 'excluded', 'likelihood'] as const).map((key) => ({
             key,
-            what: { kappaMin: 'Lowest κ', kappaMax: 'Highest κ', likelihood: 'Likelihood' }[key],
+            what: {
+              kappaMin: 'Lowest κ',
+              kappaMax: 'Highest κ',
+              excluded: 'Bins left out',
+              likelihood: 'Likelihood',
+            }[key],
             theirs: settingsInWords(conflict.theirs)[key],
             mine: settingsInWords(draft.value)[key],
           }))}

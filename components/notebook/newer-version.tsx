@@ -12,7 +12,7 @@ import type { NotebookState } from './use-notebook';
 
 /** What came of taking a version up: how many fits were queued, and which could not be. */
 function Outcome({ taken }: { taken: TakenUp }) {
-  const { version, revision, fits, skipped } = taken;
+  const { version, revision, fits, skipped, dropped } = taken;
   return (
     <Message level="warning" title={`Version ${version} is taken up as revision ${revision}`}>
       <p>
@@ -20,6 +20,12 @@ function Outcome({ taken }: { taken: TakenUp }) {
           ? `${capital(counted(fits.length, 'fit'))} ${fits.length === 1 ? 'repeats' : 'repeat'} what had finished before. How the results move stands at the end of this notebook.`
           : 'No fit had finished before, so none is repeated.'}
       </p>
+      {dropped.length ? (
+        <p>
+          Version {version} has no bins with the edges of those left out before, which are dropped:{' '}
+          {dropped.map(({ bin, reason }) => `${bin} (${reason})`).join(', ')}.
+        </p>
+      ) : null}
       {skipped.map(({ number, reason }) => (
         <p key={number}>
           Fit {number} is not repeated. {reason}

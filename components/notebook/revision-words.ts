@@ -1,4 +1,5 @@
-import { listed, plain } from '@/components/words/counts';
+import { counted, listed, plain } from '@/components/words/counts';
+import { leftOutInWords } from '@/components/words/left-out';
 import { fieldCount, findTemplate, TemplateError, type ParameterDeclaration } from '@/lib/templates';
 import type { Notebook, NotebookSection, Revision } from '@/lib/schemas';
 import { likelihoods } from './likelihood-words';
@@ -25,9 +26,13 @@ export function revisionInWords({
 }
 
 /** "Copied from notebook 3, “Two fields”, as fit 2 froze it" */
-export function originInWords({ number, title, revision, fit }: NonNullable<Notebook['origin']>): string {
+export function originInWords(origin: NonNullable<Notebook['origin']>): string {
+  const { number, title, revision, fit, droppedBins = 0 } = origin;
   const how = fit === null ? `revision ${revision}` : `as fit ${fit} froze it`;
-  return `Copied from notebook ${number}, “${title}”, ${how}`;
+  const dropped = droppedBins
+    ? `; ${counted(droppedBins, 'bin')} left out there ${droppedBins === 1 ? 'isn’t' : 'aren’t'} in this measurement`
+    : '';
+  return `Copied from notebook ${number}, “${title}”, ${how}${dropped}`;
 }
 
 /** What a revision settles, or a notebook as it stands. */
@@ -62,6 +67,12 @@ export function settledLines(settled: Settled): SettledLine[] {
     { key: 'title', section: 'title', what: 'Title', value: title },
     { key: 'kappaMin', section: 'measurement', what: 'Lowest κ', value: end(cuts.kappaMin) },
     { key: 'kappaMax', section: 'measurement', what: 'Highest κ', value: end(cuts.kappaMax) },
+    {
+      key: 'excluded',
+      section: 'measurement',
+      what: 'Bins left out',
+      value: leftOutInWords(cuts.excluded ?? []) || 'none',
+    },
     {
       key: 'likelihood',
       section: 'measurement',

@@ -8,6 +8,7 @@ import { StateWord } from '@/components/ui/state-word';
 import { DataTable } from '@/components/ui/table';
 import { plain } from '@/components/words/counts';
 import { KappaRange } from '@/components/words/kappa';
+import { withoutBins } from '@/components/words/left-out';
 import { shortName } from '@/components/words/people';
 import { formatCount, formatNumber, noValue } from '@/lib/figures/format';
 import type { Trial, Trials } from '@/lib/schemas';
@@ -77,7 +78,8 @@ export function TrialLog({
                 {trial.kind === 'two' ? 'Two fields together' : 'One field'};{' '}
                 <span className="text-ink-2">
                   <TemplateInWords template={trial.template} />,{' '}
-                  <KappaRange lo={trial.cuts.kappaMin} hi={trial.cuts.kappaMax} />, version{' '}
+                  <KappaRange lo={trial.cuts.kappaMin} hi={trial.cuts.kappaMax} />,{' '}
+                  {trial.cuts.excluded?.length ? `${withoutBins(trial.cuts)}, ` : ''}version{' '}
                   {trial.measurementVersion}
                 </span>
               </>

@@ -5,10 +5,20 @@ import type { Measurement } from './types';
 /** Relative tolerance at both ends of a cut. */
 const TOLERANCE = 1e-9;
 
-/** The range of κ to keep; an end that is left out does not cut. */
+/** A single bin that is left out, and why. */
+export interface ExcludedBin {
+  /** Its number in ascending κ, from 1. */
+  bin: number;
+  reason: string;
+  /** Its edges, or its κ twice where there are none: what it is known by in another version. */
+  kappa?: [number, number];
+}
+
+/** The range of κ to keep, where an end that is left out does not cut, and the single bins in it that are left out. */
 export interface Cuts {
   kappaMin?: number | null;
   kappaMax?: number | null;
+  excluded?: readonly Pick<ExcludedBin, 'bin'>[];
 }
 
 /** A measurement after cuts. */
@@ -21,8 +31,8 @@ export interface CutMeasurement {
 }
 
 /**
- * Indices of the bins that lie inside [kappaMin, kappaMax] with their edges, or with κ where there are none, ascending;
- * relative tolerance 1e-9 at both ends. Throws `cut-empty` if nothing is left.
+ * Indices of the bins that lie inside [kappaMin, kappaMax] with their edges, or with κ where there are none, and are not
+ * excluded, ascending; relative tolerance 1e-9 at both ends. Throws `cut-empty` if nothing is left.
  */
 export function keptBins(
   { kappa, kappaLo, kappaHi }: Pick<Measurement, 'kappa' | 'kappaLo' | 'kappaHi'>,
@@ -30,8 +40,9 @@ export function keptBins(
 ): number[] {
   const low = (cuts.kappaMin ?? 0) * (1 - TOLERANCE);
   const high = (cuts.kappaMax ?? Infinity) * (1 + TOLERANCE);
+  const out = new Set((cuts.excluded ?? []).map(({ bin }) => bin - 1));
   const kept = Array.from(kappa.keys()).filter(
-    (i) => (kappaLo ?? kappa)[i] >= low && (kappaHi ?? kappa)[i] <= high,
+    (i) => (kappaLo ?? kappa)[i] >= low && (kappaHi ?? kappa)[i] <= high && !out.has(i),
   );
   if (kept.length === 0) throw new MeasurementError('cut-empty', 'No bin lies inside the cut.');
   return kept;

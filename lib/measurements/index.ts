@@ -9,7 +9,8 @@ export { applyMapping, summarise, type AppliedMapping } from './measurement';
 export { checkCovariance, permuteMatrix, type CovarianceCheck, type CovarianceOptions } from './covariance';
 export { checkMockCount, covarianceFromMocks, hartlapFactor, type MockCovariance } from './mocks';
 export { findSuspiciousPoints, type SuspiciousPoint } from './suspicious-points';
-export { applyCuts, keptBins, type CutMeasurement, type Cuts } from './cuts';
+export { applyCuts, keptBins, type CutMeasurement, type Cuts, type ExcludedBin } from './cuts';
+export { carryExcluded, type CarriedBins, type PlacedBin } from './excluded-bins';
 export {
   MAX_BINS,
   preflight,

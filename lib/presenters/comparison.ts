@@ -42,14 +42,15 @@ export const questionOf = (snapshot: Omit<Question, 'kind'> & Pick<Snapshot, 'li
   kind: comparingKind(snapshot.likelihood.kind),
 });
 
+/** What of the cuts settles which bins are kept: the words beside a bin that is left out don't. */
+const binsOf = ({ kappaMin, kappaMax, excluded = [] }: Question['cuts']) => [
+  kappaMin ?? null,
+  kappaMax ?? null,
+  excluded.map(({ bin }) => bin),
+];
+
 const keyOf = ({ inputs, cuts, mockCount, kind }: Question): string =>
-  JSON.stringify([
-    inputs.map(({ part, sha256 }) => [part, sha256]),
-    cuts.kappaMin,
-    cuts.kappaMax,
-    mockCount,
-    kind,
-  ]);
+  JSON.stringify([inputs.map(({ part, sha256 }) => [part, sha256]), binsOf(cuts), mockCount, kind]);
 
 /** Why a set can't be compared with the notebook as it stands: "it rests on version 1 of the measurement and has other cuts" */
 function difference(set: Question, standing: Question): string {
@@ -60,9 +61,7 @@ function difference(set: Question, standing: Question): string {
       : same(set.inputs, standing.inputs) && set.mockCount === standing.mockCount
         ? []
         : ['it rests on other files']),
-    ...(set.cuts.kappaMin === standing.cuts.kappaMin && set.cuts.kappaMax === standing.cuts.kappaMax
-      ? []
-      : ['it keeps other bins']),
+    ...(same(binsOf(set.cuts), binsOf(standing.cuts)) ? [] : ['it keeps other bins']),
     ...(set.kind === standing.kind ? [] : ['its likelihood is another']),
   ];
   return reasons.join(' and ');

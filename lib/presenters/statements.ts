@@ -1,6 +1,13 @@
 import { decimalsByMcse, formatCount, formatInterval, formatNumber, thinSpace } from '@/lib/figures/format';
 import { quantileMcse, weakness, type ReportedTail } from '@/lib/figures/mcse';
-import { endedStatuses, type Diagnostic, type Fit, type FitStatus, type StatementPiece } from '@/lib/schemas';
+import {
+  endedStatuses,
+  type Diagnostic,
+  type ExcludedBin,
+  type Fit,
+  type FitStatus,
+  type StatementPiece,
+} from '@/lib/schemas';
 import { factWords, statisticWords, writeReference, type Reference } from '@/lib/statement/reference';
 import { findTemplate } from '@/lib/templates';
 
@@ -23,6 +30,8 @@ export interface ReferredFit {
   measurement: { name: string; version: number };
   /** Bins that its cuts keep. */
   bins: number;
+  /** Single bins that they leave out. */
+  excluded: readonly ExcludedBin[];
   sha256: string;
 }
 
@@ -117,6 +126,13 @@ function templateName({ template: { id, options } }: ReferredFit): string {
   return fields === 0 ? plain : `${plain}, ${fields} ${fields === 1 ? 'field' : 'fields'}`;
 }
 
+/** "bins 7 (beam not modelled) and 9 (one mock field missing)" */
+function leftOutValue({ excluded }: ReferredFit): string {
+  if (excluded.length === 0) return 'no bin';
+  const each = excluded.map(({ bin, reason }) => `${bin} (${reason})`);
+  return `${excluded.length === 1 ? 'bin' : 'bins'} ${listed(each)}`;
+}
+
 function gateValue({ gate, diagnostics }: ReferredFit): Value {
   const { rhat, ess } = gate.target;
   const wanted = `R-hat below ${rhat} and effective sample size above ${formatCount(ess)}`;
@@ -131,6 +147,7 @@ function valueOf(reference: Reference, fit: ReferredFit): Value {
     }
     if (reference.fact === 'template') return { value: templateName(fit) };
     if (reference.fact === 'bins') return { value: formatCount(fit.bins) };
+    if (reference.fact === 'left out') return { value: leftOutValue(fit) };
     if (reference.fact === 'replicas') return { value: formatCount(fit.replicas) };
     if (reference.fact === 'snapshot')
       return { value: `${fit.sha256.slice(0, 4)} ${fit.sha256.slice(4, 8)}` };

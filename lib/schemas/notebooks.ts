@@ -8,9 +8,22 @@ import { templateChoiceSchema } from './templates';
 export const likelihoodKinds = ['normal', 'hartlap', 'sellentin-heavens', 'matched-t'] as const;
 export const likelihoodSchema = z.strictObject({ kind: z.enum(likelihoodKinds) });
 
+/** A bin left out: its number in ascending κ, from 1, and why. `kappa`, its edges, is what it is known by in another version. */
+export const excludedBinSchema = z.strictObject({
+  bin: z.number().int().min(1),
+  reason: z
+    .string()
+    .trim()
+    .min(1, 'Say why the bin is left out.')
+    .max(200, 'Say it in at most 200 characters.'),
+  kappa: z.tuple([z.number().positive(), z.number().positive()]).optional(),
+});
+export type ExcludedBin = z.infer<typeof excludedBinSchema>;
+
 export const cutsSchema = z.strictObject({
   kappaMin: z.number().positive().optional(),
   kappaMax: z.number().positive().optional(),
+  excluded: z.array(excludedBinSchema).max(500).optional(),
 });
 
 export const titleSchema = z.string().trim().min(1).max(160);
@@ -74,6 +87,8 @@ export const originSchema = z.object({
   title: z.string(),
   revision: z.number().int(),
   fit: z.number().int().nullable(),
+  /** Bins left out there that the measurement it was copied to hasn't got. */
+  droppedBins: z.number().int().optional(),
 });
 
 /** A line about a fit in a notebook. */

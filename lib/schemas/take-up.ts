@@ -1,5 +1,5 @@
 import { z } from 'zod';
-import { fitStatusSchema } from './notebooks';
+import { excludedBinSchema, fitStatusSchema } from './notebooks';
 import { idSchema, numberOrNull } from './shared';
 
 /** Moves a notebook to another version of its measurement and repeats its finished fits there. */
@@ -19,6 +19,8 @@ export const takenUpSchema = z.object({
   /** Fits that were queued, with the numbers of those that they repeat. */
   fits: z.array(z.object({ id: idSchema, number: z.number().int(), repeats: z.number().int() })),
   skipped: z.array(skippedSchema),
+  /** Bins that were left out and that the version taken up hasn't got, by their numbers before. */
+  dropped: z.array(excludedBinSchema),
 });
 export type TakenUp = z.infer<typeof takenUpSchema>;
 

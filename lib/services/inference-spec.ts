@@ -38,7 +38,8 @@ export function writeDoubles(...columns: Float64Array[]): Buffer {
   return bytes;
 }
 
-function readColumns(version: StoredColumns): Omit<Points, 'covariance'> {
+/** The stored columns of a version without its covariance, which is the square of the rest. */
+export function readColumns(version: StoredColumns): Omit<Points, 'covariance'> {
   const { rows, hasBinEdges } = version;
   const all = readDoubles(version.points, 'points', 4 * rows);
   const column = (index: number): Float64Array => all.slice(index * rows, (index + 1) * rows);

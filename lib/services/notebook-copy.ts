@@ -10,7 +10,7 @@ import { AppError, notFound } from '@/lib/errors';
 import { presentNotebookCreated } from '@/lib/presenters/notebooks';
 import { snapshotSchema, type CopyNotebook, type NotebookCreated } from '@/lib/schemas';
 import type { Access } from './access';
-import { settleSettings } from './notebook-settings';
+import { carryCuts, settleSettings } from './notebook-settings';
 import { findMeasured, insertNotebook } from './notebooks';
 
 /** Longest title of a notebook. */
@@ -71,7 +71,8 @@ export async function copyNotebook(access: Access, body: CopyNotebook): Promise<
   const original = await originalOf(notebook, body.fit);
   const own = await versionOf(original.versionId);
   const target = body.measurement === undefined ? own : await findMeasured(access.groupId, body.measurement);
-  const { cuts, likelihood, template, priors } = original.settings;
+  const { likelihood, template, priors } = original.settings;
+  const { cuts, dropped } = carryCuts(target.version, original.settings.cuts);
   const alike = (own.version.mockCount === null) === (target.version.mockCount === null);
   const { binAverage, ...others } = template.options;
   const edges = own.version.hasBinEdges === target.version.hasBinEdges;
@@ -95,6 +96,7 @@ export async function copyNotebook(access: Access, body: CopyNotebook): Promise<
       title: notebook.title,
       revision: original.revision,
       fit: original.fit,
+      ...(dropped.length ? { droppedBins: dropped.length } : {}),
     },
   });
   return presentNotebookCreated(made, target.measurement);

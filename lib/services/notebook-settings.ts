@@ -3,11 +3,12 @@ import type { MeasurementVersion, NotebookSettings } from '@/models';
 import { AppError } from '@/lib/errors';
 import { buildLikelihood, type InferenceSpec } from '@/lib/inference';
 import { layOutParameters } from '@/lib/inference/parameter-layout';
+import { carryExcluded, type ExcludedBin } from '@/lib/measurements';
 import type { CreateNotebook, NotebookSection } from '@/lib/schemas';
 import { findTemplate, type ParameterDeclaration, type Prior } from '@/lib/templates';
 import { defaultPrior, type DataScale } from './default-priors';
 import { refusingFaults } from './inference-faults';
-import { cutPoints, specOnPoints } from './inference-spec';
+import { cutPoints, readColumns, specOnPoints } from './inference-spec';
 
 /** What a person gave for a notebook, and what stood before. */
 export interface SettingsDraft {
@@ -55,6 +56,39 @@ export function checkFittable({ data, likelihood, template, priors }: InferenceS
   });
 }
 
+type Columns = Pick<MeasurementVersion, 'rows' | 'hasBinEdges' | 'points'>;
+
+/**
+ * Cuts carried to a version: single bins are found by their edges, and what that version hasn't got is dropped. Without any
+ * left out `excluded` is absent, so that the same cuts always read the same.
+ */
+export function carryCuts(
+  version: Columns,
+  { excluded = [], ...range }: NotebookSettings['cuts'],
+): { cuts: NotebookSettings['cuts']; dropped: ExcludedBin[] } {
+  if (excluded.length === 0) return { cuts: range, dropped: [] };
+  const carried = carryExcluded(readColumns(version), excluded);
+  return {
+    cuts: { ...range, ...(carried.excluded.length ? { excluded: carried.excluded } : {}) },
+    dropped: carried.dropped,
+  };
+}
+
+/** The cuts with the place of every bin left out. `invalid` where a bin isn't there or is left out twice. */
+function settleCuts(version: Columns, cuts: NotebookSettings['cuts']): NotebookSettings['cuts'] {
+  const { cuts: settled, dropped } = carryCuts(version, cuts);
+  if (dropped.length === 0) return settled;
+  const [{ bin, kappa }] = dropped;
+  const at = (cuts.excluded ?? []).indexOf(dropped[0]);
+  const what = kappa
+    ? `bin ${bin} with κ from ${kappa[0]} to ${kappa[1]}`
+    : bin > version.rows
+      ? `bin ${bin}; it has ${version.rows}`
+      : `bin ${bin} that isn't left out already`;
+  const message = `The measurement has no ${what}. Name each bin once, by its number from 1 to ${version.rows}.`;
+  throw new AppError('invalid', message, [{ path: `cuts.excluded.${at}.bin`, message }]);
+}
+
 /**
  * The complete settings of sections 1, 2 and 4 that a draft means on a measurement's version: options with all
  * defaults, a prior for every parameter. `invalid` with place and remedy where they can't be fitted.
@@ -64,11 +98,12 @@ export function settleSettings(
   draft: SettingsDraft,
   measurement: { blind: boolean },
 ): NotebookSettings {
-  const points = cutPoints(version, draft.cuts);
+  const cuts = settleCuts(version, draft.cuts);
+  const points = cutPoints(version, cuts);
   const { id, options } = draft.template;
   const parameters = refusingFaults(() => findTemplate(id).parameters(options));
   const settings: NotebookSettings = {
-    cuts: draft.cuts,
+    cuts,
     likelihood: draft.likelihood ?? { kind: version.mockCount === null ? 'normal' : 'matched-t' },
     template: { id, version: 0, options },
     priors: settlePriors(parameters, draft, measurement.blind ? null : points),

@@ -68,6 +68,7 @@ async function referredFits(
         priors: snapshot.priors,
         measurement: { name: measurement.name, version: version.version },
         bins: countKept(version, snapshot.cuts),
+        excluded: snapshot.cuts.excluded ?? [],
         sha256: fit.snapshotSha256,
       };
       return [[fit.number, referred] as const];

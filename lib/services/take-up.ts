@@ -24,7 +24,7 @@ import { canonicalJson } from './canonical-json';
 import { addFit, refuseBlind, wakeFit } from './fits';
 import { refuseArchived } from './notebook-archive';
 import { tellNotebook } from './notebook-presence';
-import { changedSections, settleSettings } from './notebook-settings';
+import { carryCuts, changedSections, settleSettings } from './notebook-settings';
 
 /** Fits that came to their end by themselves: their settings are worth repeating. */
 const finished = ['converged', 'budget-spent'];
@@ -73,13 +73,14 @@ async function fitsToRepeat(notebookId: string, versionId: string, transaction: 
   return [...bySnapshot.values()].sort((a, b) => a.number - b.number);
 }
 
-/** Settings as they are on another version: all that was chosen stays, the template as the program has it now. */
+/** Settings as they are on another version: all that was chosen and is there stays, the template as the program has it now. */
 function settledOn(
   version: MeasurementVersion,
-  { cuts, likelihood, template, priors }: NotebookSettings,
+  { cuts: before, likelihood, template, priors }: NotebookSettings,
   measurement: Measurement,
 ): NotebookSettings {
   const { id, options } = template;
+  const { cuts } = carryCuts(version, before);
   return settleSettings(
     version,
     { cuts, likelihood, template: { id, options }, given: {}, kept: priors },
@@ -201,7 +202,8 @@ export async function takeUpVersion(access: Access, { version: wanted }: TakeUp)
       transaction,
     );
     const { id, number, title } = notebook;
-    return { id, number, title, version: wanted, revision, fits: made, skipped };
+    const { dropped } = carryCuts(version, standing.settings.cuts);
+    return { id, number, title, version: wanted, revision, fits: made, skipped, dropped };
   });
   for (const { id } of answer.fits) await wakeFit(id, 0);
   void tellNotebook(answer.id);

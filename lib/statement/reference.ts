@@ -8,7 +8,16 @@ export const statistics = ['summary', 'median', 'mean', '68 %', '95 %', '97.5 %'
 export type Statistic = (typeof statistics)[number];
 
 /** What of the fit itself can be named, in the order of the menu. */
-export const facts = ['measurement', 'template', 'bins', 'draws', 'replicas', 'gate', 'snapshot'] as const;
+export const facts = [
+  'measurement',
+  'template',
+  'bins',
+  'left out',
+  'draws',
+  'replicas',
+  'gate',
+  'snapshot',
+] as const;
 export type Fact = (typeof facts)[number];
 
 export type Reference =
@@ -32,6 +41,7 @@ export const factWords: Readonly<Record<Fact, string>> = {
   measurement: 'name of the measurement',
   template: 'name of the template',
   bins: 'number of bins',
+  'left out': 'bins left out, with the reasons',
   draws: 'number of kept draws',
   replicas: 'number of replicas',
   gate: 'whether the gate is met',
