@@ -25,6 +25,20 @@ export const choiceLabels: Record<string, string> = {
   free: 'free, amplitude |C(μ)| kept',
 };
 
+/** The usual powers q of the weight κ^q, by what they count: k₃ soft, hard sides fixed. */
+export const binWeightLabels: Record<string, string> = {
+  '0': '0: uniform in ln κ',
+  '2': '2: triangles by k₃ dk₃',
+  '3': '3: triangles by k₃² dk₃',
+};
+
+/** "the mean of each bin with weight κ²"; null where the prediction is at κ, or the weight uniform. */
+export function weightInWords(options: Readonly<Record<string, unknown>>, hasEdges: boolean): string | null {
+  const power = Number(options.binWeight ?? 0);
+  if (!hasEdges || options.binAverage === false || power === 0) return null;
+  return `averaged over each bin with weight ${powerLabels[String(power)] ?? `κ^${String(power).replace('-', '−')}`}`;
+}
+
 /** Powers of κ. */
 export const powerLabels: Record<string, string> = {
   '-1': 'κ⁻¹',

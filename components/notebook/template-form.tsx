@@ -2,9 +2,9 @@
 
 import { detailAt, type RequestError } from '@/components/api/request';
 import { CheckField, SelectField } from '@/components/ui/field';
-import { NumberField } from '@/components/ui/number-field';
 import { inWords } from '@/components/words/counts';
 import { fieldCount, templateCatalogue, type OptionDeclaration } from '@/lib/templates';
+import { BinWeightField } from './bin-weight-field';
 import { choiceLabels, optionLabels, powerLabels } from './option-words';
 import type { TemplateSettings } from './prediction';
 
@@ -126,17 +126,15 @@ function Option({ option, settings, hasEdges, error, onValue }: OptionProps) {
           onChange={(event) => onValue(event.target.value === 'true')}
         />
       );
+    // The one number among the options: the others are choices.
     case 'number':
       return (
-        <NumberField
-          label={label}
+        <BinWeightField
           name={name}
+          label={label}
           value={typeof value === 'number' ? value : option.default}
-          help="0 is uniform in ln κ."
           error={error}
-          onValue={(next) => {
-            if (next !== null) onValue(next);
-          }}
+          onValue={onValue}
         />
       );
     case 'powers': {

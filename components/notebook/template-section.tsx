@@ -28,7 +28,7 @@ import { sectionState } from './section-states';
 import { TemplateCautions } from './template-cautions';
 import { TemplateForm } from './template-form';
 import { TemplateSliders } from './template-sliders';
-import { templateSides } from './option-words';
+import { templateSides, weightInWords } from './option-words';
 import type { SectionFold } from './use-folds';
 import { useSectionSave, type NotebookState } from './use-notebook';
 import { figureNumber, sectionNumber } from './sections';
@@ -94,6 +94,7 @@ function Explore({
   const judged = useMemo(() => judge(prediction, x), [prediction, x]);
   const { points } = prediction;
   const fields = prediction.fine.blocks.length;
+  const weight = weightInWords(settings.options, points.lo !== null);
   const named = (values: readonly number[]) =>
     Object.fromEntries(parameters.map(({ name }, i) => [name, values[i]]));
   const known = ({ values }: NamedPoint) => parameters.filter(({ name }) => values[name] !== undefined);
@@ -134,7 +135,8 @@ function Explore({
             <>
               Prediction at the values below over the {counted(points.rows.length, 'bin')}
               {fields ? `, with ${fields === 1 ? 'the field' : 'each field'} drawn alone` : ''}
-              {fields === 2 ? ' and the envelope of their beat' : ''};{' '}
+              {fields === 2 ? ' and the envelope of their beat' : ''}
+              {weight ? `, ${weight}` : ''};{' '}
               <Num>
                 <i className="sym">χ</i>² = {formatNumber(judged.chiSquare, 1)}
               </Num>

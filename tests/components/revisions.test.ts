@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { templateSides } from '@/components/notebook/option-words';
+import { templateSides, weightInWords } from '@/components/notebook/option-words';
 import {
   differences,
   originInWords,
@@ -122,5 +122,34 @@ describe('two templates beside each other', () => {
     ).filter(({ theirs, mine }) => theirs !== mine);
     expect(other.map(({ key }) => key)).toEqual(['template', 'fields', 'amplitudes', 'vertex', 'phases']);
     expect(other.find(({ key }) => key === 'vertex')?.theirs).toBe('doesn’t apply');
+  });
+});
+
+describe('the weight of a bin’s average', () => {
+  it('is said where it isn’t uniform in ln κ and there are bins to average over', () => {
+    expect(weightInWords({ binWeight: 2 }, true)).toBe('averaged over each bin with weight κ²');
+    expect(weightInWords({ binWeight: -0.5 }, true)).toBe('averaged over each bin with weight κ^−0.5');
+    expect(weightInWords({ binWeight: 0 }, true)).toBeNull();
+    expect(weightInWords({ binWeight: 2 }, false)).toBeNull();
+    expect(weightInWords({ binWeight: 2, binAverage: false }, true)).toBeNull();
+  });
+});
+
+describe('bins left out', () => {
+  const excluded = [
+    { bin: 7, reason: 'beam not modelled.' },
+    { bin: 9, reason: 'one mock field missing' },
+  ];
+
+  it('stand among what a revision settles, with their reasons', () => {
+    const [before, after] = [notebookFixture({ cuts: {} }), notebookFixture({ cuts: { excluded } })];
+    expect(differences(before, after)).toEqual([
+      {
+        key: 'excluded',
+        what: 'Bins left out',
+        before: 'none',
+        after: 'two bins left out: 7 (beam not modelled) and 9 (one mock field missing)',
+      },
+    ]);
   });
 });
