@@ -1,9 +1,10 @@
 import type { Actor } from '@/lib/auth/actor';
-import { Fit, Group, Measurement, Membership, Notebook, Scan } from '@/models';
+import { QueryTypes } from 'sequelize';
 import { database } from '@/lib/db';
-import { notFound } from '@/lib/errors';
+import { AppError, notFound } from '@/lib/errors';
 import { idSchema, roleSchema, type Role } from '@/lib/schemas';
 import { may, mayOrThrow, type Action } from '@/lib/policies';
+import { SharedReads } from './shared-reads';
 
 export type { Actor };
 
@@ -27,36 +28,79 @@ export interface Access {
   require(action: Action): void;
 }
 
-async function groupOf(kind: RecordKind, id: string): Promise<string | null> {
-  const attributes = ['groupId'];
-  switch (kind) {
-    case 'group':
-      return (await Group.findByPk(id, { attributes: ['id'] }))?.id ?? null;
-    case 'measurement':
-      return (await Measurement.findByPk(id, { attributes }))?.groupId ?? null;
-    case 'notebook':
-      return (await Notebook.findByPk(id, { attributes }))?.groupId ?? null;
-    case 'fit':
-      return (await Fit.findByPk(id, { attributes }))?.groupId ?? null;
-    case 'scan':
-      return (await Scan.findByPk(id, { attributes }))?.groupId ?? null;
-  }
+/** Where a record of each kind says which group it is of. */
+const records: Readonly<Record<RecordKind, { table: string; group: string }>> = {
+  group: { table: '`groups`', group: 'id' },
+  measurement: { table: 'measurements', group: 'group_id' },
+  notebook: { table: 'notebooks', group: 'group_id' },
+  fit: { table: 'fits', group: 'group_id' },
+  scan: { table: 'scans', group: 'group_id' },
+};
+
+interface Member {
+  groupId: string;
+  userId: string;
+  role: string;
 }
 
 /** Ids that aren't UUIDs name nothing. */
 const wellFormed = (id: unknown): id is string => idSchema.safeParse(id).success;
+
+/** Members of the group of a record who may sign in: all of them, or the one that is asked for. Nobody where there is no such record. */
+async function membersOf(kind: RecordKind, id: string, userId: string | null): Promise<Member[]> {
+  if (!wellFormed(id)) return [];
+  const { table, group } = records[kind];
+  return database().query<Member>(
+    `SELECT m.group_id AS groupId, m.user_id AS userId, m.role
+       FROM ${table} AS r
+       JOIN memberships AS m ON m.group_id = r.${group}
+       JOIN users AS u ON u.id = m.user_id AND u.disabled_at IS NULL
+      WHERE r.id = :id ${userId === null ? '' : 'AND m.user_id = :userId'}`,
+    { replacements: { id, userId }, type: QueryTypes.SELECT },
+  );
+}
+
+/** One read tells of everybody who watches a record. */
+const watched = new SharedReads<Member[]>();
+
+/** Whether a failure says that the record isn't there for this person, now or any more. */
+export const isShut = (error: unknown): boolean =>
+  error instanceof AppError && (error.code === 'not_found' || error.code === 'forbidden');
 
 /**
  * What `actor` may do on one record: `not_found` where they aren't of its group or may not read it, so that nobody
  * learns of what they may not see; `forbidden` where the role is too small for the action.
  */
 export async function authorise(actor: Actor, kind: RecordKind, id: string, action: Action): Promise<Access> {
-  database();
-  const groupId = wellFormed(id) ? await groupOf(kind, id) : null;
-  const membership =
-    groupId === null ? null : await Membership.findOne({ where: { groupId, userId: actor.userId } });
-  if (groupId === null || membership === null) throw notFound(kind);
-  const role = roleSchema.parse(membership.role);
+  const [member] = await membersOf(kind, id, actor.userId);
+  return permit(actor, member, kind, id, action);
+}
+
+/**
+ * The same for one of many who watch a record and are told of its changes together: the members of its group are read once for
+ * all who ask at about the same time, after they asked, so that whoever was removed sees nothing of what comes after.
+ */
+export async function authoriseWatcher(
+  actor: Actor,
+  kind: RecordKind,
+  id: string,
+  action: Action,
+): Promise<Access> {
+  const members = await watched.read(`${kind} ${id}`, () => membersOf(kind, id, null));
+  const member = members.find(({ userId }) => userId === actor.userId);
+  return permit(actor, member, kind, id, action);
+}
+
+function permit(
+  actor: Actor,
+  member: Member | undefined,
+  kind: RecordKind,
+  id: string,
+  action: Action,
+): Access {
+  if (!member) throw notFound(kind);
+  const { groupId } = member;
+  const role = roleSchema.parse(member.role);
   if (!may(role, `${kind}.read`)) throw notFound(kind);
   mayOrThrow(role, action);
   return {

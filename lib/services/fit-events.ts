@@ -3,7 +3,7 @@ import { log } from '@/lib/log';
 import { presentFit } from '@/lib/presenters/fits';
 import { subscribe } from '@/lib/redis';
 import { endedStatuses, fitEventSchema, type FitEvent } from '@/lib/schemas';
-import type { Access } from './access';
+import { authoriseWatcher, isShut, type Access } from './access';
 import { findFit, fitContext } from './fit-records';
 import { SharedReads } from './shared-reads';
 
@@ -16,7 +16,7 @@ export interface FitWatcher {
   onEvent(event: FitEvent): void;
   /** The fit can't be read for now, and why, in words; the next event says that it can again. */
   onTrouble(message: string): void;
-  /** The fit has ended and its last event was sent. */
+  /** The fit has ended and its last event was sent, or this person may not read it any more. */
   onEnd(): void;
 }
 
@@ -37,8 +37,8 @@ const readEvent = (access: Access): Promise<Told> =>
 
 /**
  * Watches the fit of `access`: its state from the database at once, then whenever it has changed, until it has ended. Workers
- * tell of a commit over Redis; that only makes it quicker, the database is read every two seconds without it. Resolves
- * once the first event was given, with how to stop.
+ * tell of a commit over Redis; that only makes it quicker, the database is read every two seconds without it. Every read but the
+ * first, for which `access` was just given, asks the policies anew. Resolves once the first event was given, with how to stop.
  */
 export async function watchFit(access: Access, watcher: FitWatcher): Promise<() => void> {
   access.require('fit.read');
@@ -71,16 +71,20 @@ export async function watchFit(access: Access, watcher: FitWatcher): Promise<() 
       watcher.onEnd();
     }
   };
-  const read = async () => {
-    const event = await readEvent(access);
+  const read = async (present: Access) => {
+    const event = await readEvent(present);
     if (!stopped) tell(event);
   };
   const turn = async () => {
     reading = true;
     called = false;
     try {
-      await read();
+      await read(await authoriseWatcher(access.actor, 'fit', access.id, 'fit.read'));
     } catch (error) {
+      if (isShut(error)) {
+        stop();
+        return watcher.onEnd();
+      }
       log.warn({ err: error }, 'a watched fit could not be read for now');
       // Once for each outage; what is told next is told even if nothing has changed.
       if (told !== '' && !stopped) watcher.onTrouble(databaseIsAway);
@@ -103,7 +107,7 @@ export async function watchFit(access: Access, watcher: FitWatcher): Promise<() 
     },
     (error: unknown) => log.warn({ err: error }, 'a fit is watched without being told of commits'),
   );
-  await read();
+  await read(access);
   wait(called ? pace.between : pace.unasked);
   return stop;
 }

@@ -1,16 +1,25 @@
 import { randomUUID } from 'node:crypto';
-import { AppError } from '@/lib/errors';
 import { notebookChannel } from '@/lib/jobs/notebooks';
 import { log } from '@/lib/log';
 import { subscribe } from '@/lib/redis';
 import { notebookSchema, type Notebook, type Presence } from '@/lib/schemas';
-import { authorise, type Access } from './access';
-import { endPresence, othersPresent, presencePace, signPresence, tellNotebook } from './notebook-presence';
+import { authoriseWatcher, isShut, type Access } from './access';
+import {
+  endPresence,
+  othersPresent,
+  presencePace,
+  signPresence,
+  tellNotebook,
+  type NotebookNews,
+} from './notebook-presence';
 import { readNotebook } from './notebook-records';
 import { SharedReads } from './shared-reads';
 
 /** Milliseconds between two reads that nobody called for: while changes are told, and while Redis is away. */
 const unasked = { told: 10_000, untold: 2_000 } as const;
+
+/** Milliseconds between two tellings of who else has it open: people come and go by the dozen, and nobody waits for it. */
+const betweenPresence = 1_000;
 
 export interface NotebookWatcher {
   /** The whole notebook as this person sees it. */
@@ -20,18 +29,23 @@ export interface NotebookWatcher {
   onEnd(): void;
 }
 
-const shut = (error: unknown): boolean =>
-  error instanceof AppError && (error.code === 'not_found' || error.code === 'forbidden');
+interface Told {
+  notebook: Notebook;
+  text: string;
+}
 
-/** Everybody of one role sees the same notebook, read and presented once for all who look. */
-const reads = new SharedReads<Notebook>();
+/** Everybody of one role sees the same notebook: read, presented and written once for all who look. */
+const reads = new SharedReads<Told>();
 
-const readShared = (access: Access): Promise<Notebook> =>
-  reads.read(`${access.id} ${access.role}`, async () => notebookSchema.parse(await readNotebook(access)));
+const readShared = (access: Access): Promise<Told> =>
+  reads.read(`${access.id} ${access.role}`, async () => {
+    const notebook = notebookSchema.parse(await readNotebook(access));
+    return { notebook, text: JSON.stringify(notebook) };
+  });
 
 /**
- * Watches the notebook of `access`: its state from the database at once, then whenever it has changed. Every read asks the
- * policies anew, so that a member who was removed sees no more of it. Resolves once the first state was given, with how to stop.
+ * Watches the notebook of `access`: its state from the database at once, then whenever it has changed. Every read but the first,
+ * for which `access` was just given, asks the policies anew, so that a member who was removed sees no more of it. Resolves once the first state was given, with how to stop.
  */
 export async function watchNotebook(access: Access, watcher: NotebookWatcher): Promise<() => void> {
   access.require('notebook.read');
@@ -39,9 +53,13 @@ export async function watchNotebook(access: Access, watcher: NotebookWatcher): P
   const page = { notebookId: id, userId: actor.userId, pageId: randomUUID() };
   let stopped = false;
   let reading = false;
-  let called = false;
+  /** What was told since the last read began. */
+  let called: NotebookNews | null = null;
   let timer: NodeJS.Timeout | undefined;
   let unsubscribe: (() => void) | undefined;
+  let toldAt = 0;
+  /** When the notebook itself was last read, and not only who is there. */
+  let wholeAt = 0;
   const told = { notebook: '', presence: '' };
 
   const stop = () => {
@@ -53,40 +71,50 @@ export async function watchNotebook(access: Access, watcher: NotebookWatcher): P
     unsubscribe = undefined;
     void endPresence(page);
   };
-  const news = (kind: keyof typeof told, value: unknown): boolean => {
-    const text = JSON.stringify(value);
+  const news = (kind: keyof typeof told, text: string): boolean => {
     if (stopped || text === told[kind]) return false;
     told[kind] = text;
     return true;
   };
-  const read = async () => {
-    const present = await authorise(actor, 'notebook', id, 'notebook.read');
-    const [notebook, others] = await Promise.all([
-      readShared(present),
-      othersPresent(id, actor.userId, Date.now()),
+  const read = async (present: Access, what: NotebookNews) => {
+    const [state, others] = await Promise.all([
+      what === 'changed' ? readShared(present) : null,
+      othersPresent(id, actor.userId),
     ]);
-    if (news('notebook', notebook)) watcher.onNotebook(notebook);
-    if (news('presence', others)) watcher.onPresence({ others });
+    toldAt = Date.now();
+    if (state) wholeAt = toldAt;
+    if (state && news('notebook', state.text)) watcher.onNotebook(state.notebook);
+    if (news('presence', JSON.stringify(others))) watcher.onPresence({ others });
   };
-  const turn = async () => {
+  const wait = (milliseconds: number, what: NotebookNews) => {
     clearTimeout(timer);
+    if (!stopped) timer = setTimeout(() => void turn(what), milliseconds);
+  };
+  /** When to read next, by what was told since the last time. */
+  const next = () => {
+    if (called === 'changed') wait(0, 'changed');
+    else if (called === 'presence') wait(Math.max(0, toldAt + betweenPresence - Date.now()), 'presence');
+    else wait(unsubscribe ? unasked.told : unasked.untold, 'changed');
+  };
+  const turn = async (what: NotebookNews) => {
     reading = true;
-    called = false;
+    called = null;
+    const due = Date.now() - wholeAt >= unasked.told ? 'changed' : what;
     try {
-      await read();
+      await read(await authoriseWatcher(actor, 'notebook', id, 'notebook.read'), due);
     } catch (error) {
-      if (shut(error)) {
+      if (isShut(error)) {
         stop();
         watcher.onEnd();
       } else log.warn({ err: error }, 'a watched notebook could not be read for now');
     }
     reading = false;
-    if (stopped) return;
-    timer = setTimeout(() => void turn(), called ? 0 : unsubscribe ? unasked.told : unasked.untold);
+    next();
   };
-  const onChange = () => {
-    called = true;
-    if (!reading && !stopped) void turn();
+  const onNews = (message: string) => {
+    if (called === 'changed' || stopped) return;
+    called = message === 'presence' ? 'presence' : 'changed';
+    if (!reading) next();
   };
   const sign = () =>
     signPresence(page, Date.now()).catch((error: unknown) =>
@@ -95,20 +123,22 @@ export async function watchNotebook(access: Access, watcher: NotebookWatcher): P
   const signing = setInterval(() => void sign(), presencePace.sign);
 
   // Before the first read, so that no change falls between the two; not waited for, since Redis may be away.
-  void subscribe(notebookChannel(id), onChange).then(
+  void subscribe(notebookChannel(id), onNews).then(
     (end) => {
       if (stopped) end();
       else unsubscribe = end;
     },
     (error: unknown) => log.warn({ err: error }, 'a notebook is watched without being told of changes'),
   );
-  void sign().then(() => tellNotebook(id));
+  void sign().then(() => tellNotebook(id, 'presence'));
+  reading = true;
   try {
-    await read();
+    await read(access, 'changed');
   } catch (error) {
     stop();
     throw error;
   }
-  timer = setTimeout(() => void turn(), called ? 0 : unasked.untold);
+  reading = false;
+  next();
   return stop;
 }

@@ -1,12 +1,13 @@
-import { afterAll, beforeAll, describe, expect, it } from 'vitest';
-import { MeasurementVersion, Fit } from '@/models';
+import { afterAll, beforeAll, describe, expect, it, vi } from 'vitest';
+import { Fit, MeasurementVersion, Membership, User } from '@/models';
 import { GET as events } from '@/app/api/v1/fits/[id]/events/route';
 import { database } from '@/lib/db';
 import { closeQueue, fitChannel } from '@/lib/jobs';
 import { subscribe } from '@/lib/redis';
 import { fitEventSchema, type FitEvent } from '@/lib/schemas';
+import { authorise, authoriseWatcher } from '@/lib/services/access';
 import { readPoints, writeDoubles } from '@/lib/services/inference-spec';
-import { call, closeConnections } from './harness';
+import { call, closeConnections, createMember } from './harness';
 import {
   background,
   buildWorker,
@@ -19,6 +20,7 @@ import {
   resumeFit,
   startFit,
   startWorker,
+  stopFit,
   type Desk,
 } from './sampling';
 
@@ -40,8 +42,8 @@ interface Arrival {
 }
 
 /** Reads a stream to its end; every frame of ours is one event named `fit` with one line of data. */
-async function readEvents(id: string): Promise<Arrival[]> {
-  const answer = await call(events, { params: { id }, token: desk.token });
+async function readEvents(id: string, token = desk.token): Promise<Arrival[]> {
+  const answer = await call(events, { params: { id }, token });
   expect(answer.headers.get('content-type')).toContain('text/event-stream');
   const arrivals: Arrival[] = [];
   const decoder = new TextDecoder();
@@ -97,6 +99,43 @@ describe('the events of a fit', () => {
     await fitEnded(desk, id);
     const arrivals = await readEvents(id);
     expect(arrivals.map(({ event }) => event.status)).toEqual(['budget-spent']);
+  });
+});
+
+describe('the events of a fit that many watch', () => {
+  it('cost one look at the group for all of them', async () => {
+    await endWorkers();
+    const notebook = await openNotebook(desk, { template: background });
+    const id = await startFit(desk, notebook, { seed: 1 });
+    const member = await createMember(desk.group, 'referee');
+    const access = await authorise(member.user, 'fit', id, 'fit.read');
+    const query = vi.spyOn(database(), 'query');
+    const accesses = await Promise.all(
+      Array.from({ length: 30 }, () => authoriseWatcher(member.user, 'fit', id, 'fit.read')),
+    );
+    expect(query.mock.calls.length).toBeLessThanOrEqual(2);
+    query.mockRestore();
+    expect(new Set(accesses.map(({ role }) => role))).toEqual(new Set([access.role]));
+    await stopFit(desk, id);
+  });
+
+  it.each(['removed', 'shut out'] as const)('end within seconds for somebody who is %s', async (how) => {
+    const notebook = await openNotebook(desk, { template: background });
+    const id = await startFit(desk, notebook, { seed: 1 });
+    const guest = await createMember(desk.group, 'referee');
+    let ended = 0;
+    const reading = readEvents(id, guest.token).then((arrivals) => {
+      ended = Date.now();
+      return arrivals;
+    });
+    await expect.poll(async () => (await fitOf({ ...desk, token: guest.token }, id)).status).toBe('queued');
+    const { userId } = guest.user;
+    if (how === 'removed') await Membership.destroy({ where: { userId } });
+    else await User.update({ disabledAt: new Date() }, { where: { id: userId } });
+    const shut = Date.now();
+    expect((await reading).map(({ event }) => event.status)).toEqual(['queued']);
+    expect(ended - shut).toBeLessThan(5_000);
+    await stopFit(desk, id);
   });
 });
 
