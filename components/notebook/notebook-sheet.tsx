@@ -24,12 +24,13 @@ import { useScans } from '@/components/scan/use-scans';
 import { StatementSection } from '@/components/statement/statement-section';
 import { statementState } from '@/components/statement/statement-state';
 import { useStatement } from '@/components/statement/use-statement';
-import type { Fit, Measurement, Notebook, Statement, Trials } from '@/lib/schemas';
+import type { Fit, Notebook, Statement, Trials } from '@/lib/schemas';
 import { Abstract } from './abstract';
 import { keepPoints } from './kept-points';
 import type { DrawnFormula } from './live-formula';
 import { MeasurementSection } from './measurement-section';
 import { NotebookHead } from './notebook-head';
+import { unpackMeasurement, type PackedMeasurement } from './packed-measurement';
 import { PriorsSection, type Priors } from './priors-section';
 import { useDraft } from './section-draft';
 import { chainsState, contentsEntries, posteriorState, sectionState } from './section-states';
@@ -44,7 +45,7 @@ const Shifts = dynamic(() => import('./shifts').then((module) => module.Shifts))
 
 export interface NotebookSheetProps {
   notebook: Notebook;
-  measurement: Measurement;
+  measurement: PackedMeasurement;
   /** The fit that is shown first; null without any. */
   fit: Fit | null;
   statement: Statement;
@@ -68,7 +69,8 @@ function bestOf(fit: Fit | null, draws: FigureDraws | null): NamedPoint | null {
 export function NotebookSheet(props: NotebookSheetProps) {
   const state = useNotebook(props.notebook);
   const { notebook } = state;
-  const measurement = useVersion(props.measurement, notebook.measurement.version);
+  const [given] = useState(() => unpackMeasurement(props.measurement));
+  const measurement = useVersion(given, notebook.measurement.version);
   const [chosen, setChosen] = useState<string | null>(props.fit?.id ?? null);
   const { fit, put, take } = useFit(chosen, props.fit);
   const stream = usePageEvents(notebook.id, fit && isRunning(fit.status) ? fit.id : null, {
@@ -76,7 +78,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
     onFit: take,
   });
   const draws = useDraws(fit);
-  const fitted = useVersion(props.measurement, fit?.snapshot.measurementVersion ?? measurement.version);
+  const fitted = useVersion(given, fit?.snapshot.measurementVersion ?? measurement.version);
 
   // The notebook's own list of fits follows when one begins, ends or is taken up again.
   const refresh = useEffectEvent(() => void state.refresh());

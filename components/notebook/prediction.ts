@@ -27,8 +27,20 @@ export function fineKappa({ lo, hi, kappa }: KeptPoints, count = drawn): Float64
   return Float64Array.from({ length: count }, (_, i) => first * Math.exp(i * step));
 }
 
+/** What was compiled last on some points: several parts of a page predict with the same template. */
+const compiled = new WeakMap<KeptPoints, { key: string; prediction: Prediction }>();
+
 /** Compiles a template on these points; throws TemplateError where options or axis don't fit. */
-export function compilePrediction({ id, options }: TemplateSettings, points: KeptPoints): Prediction {
+export function compilePrediction(settings: TemplateSettings, points: KeptPoints): Prediction {
+  const key = JSON.stringify([settings.id, settings.options]);
+  const known = compiled.get(points);
+  if (known?.key === key) return known.prediction;
+  const prediction = compile(settings, points);
+  compiled.set(points, { key, prediction });
+  return prediction;
+}
+
+function compile({ id, options }: TemplateSettings, points: KeptPoints): Prediction {
   const kappa = fineKappa(points);
   return {
     onData: compileTemplate(id, options, dataAxis(points, options)),

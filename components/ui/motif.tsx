@@ -1,14 +1,12 @@
+'use client';
+
 import { beatPath, tonePath } from '@/lib/figures/beat';
+
+const brand = beatPath({ width: 39, height: 14, carriers: 5.5, beats: 2, start: 'node' });
 
 /** Two close tones and their envelope, in the head of every page. */
 export function BrandMark() {
-  const { carrier, upper, lower } = beatPath({
-    width: 39,
-    height: 14,
-    carriers: 5.5,
-    beats: 2,
-    start: 'node',
-  });
+  const { carrier, upper, lower } = brand;
   return (
     <svg className="fig-svg flex-none" width="40" height="16" viewBox="-0.5 -1 40 16" aria-hidden="true">
       <path className="car" d={carrier} />

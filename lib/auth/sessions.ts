@@ -1,3 +1,4 @@
+import { Op } from 'sequelize';
 import { Session, User } from '@/models';
 import { config } from '@/lib/config';
 import { database } from '@/lib/db';
@@ -21,8 +22,18 @@ export function cookieOf(header: string | null, name: string): string | null {
 /** Whose session this is; null where it is unknown or over, or they may not sign in. */
 export async function actorOfSession(sessionToken: string): Promise<Actor | null> {
   database();
-  const session = await Session.findOne({ where: { sessionToken } });
-  if (!session?.userId || session.expires.getTime() <= Date.now()) return null;
-  const user = await User.findByPk(session.userId);
-  return user?.disabledAt === null ? { userId: user.id, email: user.email } : null;
+  const user = await User.findOne({
+    attributes: ['id', 'email'],
+    where: { disabledAt: null },
+    include: [
+      {
+        model: Session,
+        attributes: [],
+        where: { sessionToken, expires: { [Op.gt]: new Date() } },
+        required: true,
+      },
+    ],
+    subQuery: false,
+  });
+  return user && { userId: user.id, email: user.email };
 }

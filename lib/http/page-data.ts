@@ -3,7 +3,6 @@ import { cache } from 'react';
 import packageFile from '@/package.json';
 import type { Actor } from '@/lib/auth/actor';
 import { auth } from '@/lib/auth/current';
-import { AppError } from '@/lib/errors';
 import {
   fitLimitsSchema,
   fitSchema,
@@ -36,7 +35,7 @@ import {
   type Trials,
 } from '@/lib/schemas';
 import type { Action } from '@/lib/policies';
-import { authorise, type Access, type RecordKind } from '@/lib/services/access';
+import { authorise, isShut, type Access, type RecordKind } from '@/lib/services/access';
 import { readMe, readSettings } from '@/lib/services/accounts';
 import { administer, isAdministrator } from '@/lib/services/administration';
 import { readInstanceState, readStorageState } from '@/lib/services/instance-state';
@@ -48,6 +47,7 @@ import { readGroupLog } from '@/lib/services/group-log';
 import { listMeasurements, readMeasurement } from '@/lib/services/measurements';
 import { readNotebook } from '@/lib/services/notebooks';
 import { readStatement } from '@/lib/services/statements';
+import { within, type Reading } from '@/lib/services/reading';
 import { listTokens } from '@/lib/services/tokens';
 import { readTrials } from '@/lib/services/trials';
 
@@ -73,13 +73,20 @@ async function orNotFound<T>(answer: Promise<T>): Promise<T> {
   try {
     return await answer;
   } catch (error) {
-    if (error instanceof AppError && (error.code === 'not_found' || error.code === 'forbidden')) notFound();
+    if (isShut(error)) notFound();
     throw error;
   }
 }
 
-const accessTo = (actor: Actor, kind: RecordKind, id: string, action: Action): Promise<Access> =>
-  orNotFound(authorise(actor, kind, id, action));
+/** What one page has read so far: its parts are put together of the same rows. */
+const pageReading = cache((): Reading => new Map());
+
+const reading = <T>(act: () => Promise<T>): Promise<T> => within(pageReading(), act);
+
+/** Asked for once a page, however many of its parts are about the same record. */
+const accessTo = cache((actor: Actor, kind: RecordKind, id: string, action: Action): Promise<Access> =>
+  orNotFound(authorise(actor, kind, id, action)),
+);
 
 export const me = cache(async (actor: Actor): Promise<Me> => meSchema.parse(await readMe(actor)));
 
@@ -116,9 +123,9 @@ export const group = cache(async (actor: Actor, id: string): Promise<Group> => {
   return groupSchema.parse(await readGroup(access));
 });
 
-/** The role of somebody in a group, for pages that need no more of it. */
-export const roleIn = async (actor: Actor, groupId: string): Promise<Role> =>
-  (await accessTo(actor, 'group', groupId, 'group.read')).role;
+/** The role of whoever looks at a notebook in its group. */
+export const roleAt = async (actor: Actor, notebookId: string): Promise<Role> =>
+  (await accessTo(actor, 'notebook', notebookId, 'notebook.read')).role;
 
 export const groupLog = async (actor: Actor, id: string, query: LogQuery): Promise<GroupLog> => {
   const access = await accessTo(actor, 'group', id, 'group.audit');
@@ -128,7 +135,7 @@ export const groupLog = async (actor: Actor, id: string, query: LogQuery): Promi
 /** In its newest version, or the one that is given. */
 export const measurement = cache(async (actor: Actor, id: string, version?: number): Promise<Measurement> => {
   const access = await accessTo(actor, 'measurement', id, 'measurement.read');
-  return measurementSchema.parse(await orNotFound(readMeasurement(access, version)));
+  return measurementSchema.parse(await orNotFound(reading(() => readMeasurement(access, version))));
 });
 
 export const measurements = async (actor: Actor, groupId: string): Promise<MeasurementListed[]> => {
@@ -138,16 +145,20 @@ export const measurements = async (actor: Actor, groupId: string): Promise<Measu
 
 export const notebook = cache(async (actor: Actor, id: string): Promise<Notebook> => {
   const access = await accessTo(actor, 'notebook', id, 'notebook.read');
-  return notebookSchema.parse(await readNotebook(access));
+  return notebookSchema.parse(await reading(() => readNotebook(access)));
 });
 
-export const statement = async (actor: Actor, id: string): Promise<Statement> =>
-  statementSchema.parse(await readStatement(await accessTo(actor, 'notebook', id, 'notebook.read')));
+export const statement = async (actor: Actor, id: string): Promise<Statement> => {
+  const access = await accessTo(actor, 'notebook', id, 'notebook.read');
+  return statementSchema.parse(await reading(() => readStatement(access)));
+};
 
-export const trials = async (actor: Actor, id: string): Promise<Trials> =>
-  trialsSchema.parse(await readTrials(await accessTo(actor, 'notebook', id, 'notebook.read')));
+export const trials = async (actor: Actor, id: string): Promise<Trials> => {
+  const access = await accessTo(actor, 'notebook', id, 'notebook.read');
+  return trialsSchema.parse(await reading(() => readTrials(access)));
+};
 
 export const fit = cache(async (actor: Actor, id: string): Promise<Fit> => {
   const access = await accessTo(actor, 'fit', id, 'fit.read');
-  return fitSchema.parse(await readFit(access));
+  return fitSchema.parse(await reading(() => readFit(access)));
 });

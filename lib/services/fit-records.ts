@@ -1,4 +1,4 @@
-import { Fit, Measurement, MeasurementVersion } from '@/models';
+import { Fit, MeasurementVersion } from '@/models';
 import { AppError, notFound } from '@/lib/errors';
 import { workerPlaces } from '@/lib/jobs';
 import { presentFit, type FitContext, type QueuePlace } from '@/lib/presenters/fits';
@@ -12,6 +12,7 @@ import {
 import type { Access } from './access';
 import { placeOf } from './fit-queue';
 import { emailsOf } from './people';
+import { isBlindVersion } from './version-lines';
 
 /** The fit of `access`. */
 export async function findFit(access: Access): Promise<Fit> {
@@ -20,17 +21,11 @@ export async function findFit(access: Access): Promise<Fit> {
   return fit;
 }
 
-export async function isBlind(fit: Pick<Fit, 'measurementVersionId'>): Promise<boolean> {
-  const version = await MeasurementVersion.findByPk(fit.measurementVersionId, {
-    attributes: ['measurementId'],
-  });
-  const measurement =
-    version && (await Measurement.findByPk(version.measurementId, { attributes: ['blind'] }));
-  return measurement?.blind ?? true;
-}
-
 export async function fitContext(access: Access, fit: Fit): Promise<FitContext> {
-  const [people, blind] = await Promise.all([emailsOf([fit.startedBy]), isBlind(fit)]);
+  const [people, blind] = await Promise.all([
+    emailsOf([fit.startedBy]),
+    isBlindVersion(fit.measurementVersionId),
+  ]);
   const queue = await queueOf(fit);
   return { startedBy: people.get(fit.startedBy) ?? '', role: access.role, blind, queue };
 }
@@ -63,7 +58,7 @@ export interface FitSource {
 export async function findDraws(access: Access): Promise<FitSource> {
   access.require('fit.read');
   const fit = await findFit(access);
-  if (await isBlind(fit)) {
+  if (await isBlindVersion(fit.measurementVersionId)) {
     throw new AppError(
       'blind',
       'The measurement is blind: its samples can’t be read before it is unblinded.',

@@ -15,6 +15,8 @@ import { settingSections, type Notebook as NotebookAnswer, type NotebookSummary 
 import type { Access } from './access';
 import { countKept } from './inference-spec';
 import { emailsOf } from './people';
+import { readOnce } from './reading';
+import { versionLine } from './version-lines';
 
 const fitLine = [
   'id',
@@ -37,36 +39,48 @@ const whileArchived: ReadonlySet<string> = new Set([
   'scan.read',
 ]);
 
+/** The row of the notebook of `access`. */
+export async function findNotebook({ id }: Access): Promise<Notebook> {
+  const notebook = await readOnce(`notebook ${id}`, () => Notebook.findByPk(id));
+  if (!notebook) throw notFound('notebook');
+  return notebook;
+}
+
+/** The record of a notebook, first revision first, without the settings of each. */
+export const recordOf = (notebookId: string): Promise<NotebookRevision[]> =>
+  readOnce(`record ${notebookId}`, () =>
+    NotebookRevision.findAll({
+      where: { notebookId },
+      attributes: { exclude: ['settings'] },
+      order: [['revision', 'ASC']],
+    }),
+  );
+
 /** The notebook of `access` as it stands, with its record and its fits. */
 export async function readNotebook(access: Access): Promise<NotebookAnswer> {
   access.require('notebook.read');
-  const notebook = await Notebook.findByPk(access.id);
-  if (!notebook) throw notFound('notebook');
-  const [group, version, revisions, fits] = await Promise.all([
-    Group.findByPk(notebook.groupId),
-    // Without its covariance, which is the square of the rest.
-    MeasurementVersion.findByPk(notebook.measurementVersionId, {
-      attributes: ['measurementId', 'version', 'rows', 'hasBinEdges', 'points'],
+  const notebook = await findNotebook(access);
+  const [group, version, standing, revisions, fits] = await Promise.all([
+    Group.findByPk(notebook.groupId, { attributes: ['name'] }),
+    versionLine(notebook.measurementVersionId),
+    NotebookRevision.findOne({
+      where: { notebookId: notebook.id, revision: notebook.revision },
+      attributes: ['settings'],
     }),
-    NotebookRevision.findAll({ where: { notebookId: notebook.id }, order: [['revision', 'ASC']] }),
+    recordOf(notebook.id),
     Fit.findAll({
       where: { notebookId: notebook.id },
       attributes: [...fitLine],
       order: [['number', 'DESC']],
     }),
   ]);
-  const measurement = version && (await Measurement.findByPk(version.measurementId));
-  const newest = await MeasurementVersion.max<number | null, MeasurementVersion>('version', {
-    where: { measurementId: version?.measurementId ?? '' },
-  });
-  const standing = revisions.find(({ revision }) => revision === notebook.revision);
-  if (!group || !version || !measurement || !standing) throw notFound('notebook');
+  if (!group || !version || !standing) throw notFound('notebook');
   const { settings } = standing;
   return presentNotebook({
     notebook,
     groupName: group.name,
-    measurement: measuredBy(measurement, version),
-    newestVersion: newest ?? version.version,
+    measurement: { ...measuredBy(version, version), id: version.measurementId },
+    newestVersion: version.newest,
     settings,
     statement: revisions.findLast(({ statement }) => statement !== null)?.statement ?? '',
     bins: { kept: countKept(version, settings.cuts), all: version.rows },
@@ -86,7 +100,10 @@ export async function readNotebook(access: Access): Promise<NotebookAnswer> {
   });
 }
 
-const measuredBy = (measurement: Measurement, { version }: { version: number }): MeasuredBy => ({
+const measuredBy = (
+  measurement: Omit<MeasuredBy, 'version'>,
+  { version }: { version: number },
+): MeasuredBy => ({
   id: measurement.id,
   name: measurement.name,
   version,

@@ -1,5 +1,5 @@
 import { setTimeout as sleep } from 'node:timers/promises';
-import { Measurement, MeasurementVersion, Scan } from '@/models';
+import { Scan } from '@/models';
 import { database } from '@/lib/db';
 import { AppError, notFound } from '@/lib/errors';
 import { scanRange } from '@/lib/inference/scan/scan-range';
@@ -23,6 +23,7 @@ import { lockNotebook } from './fits';
 import { emailsOf } from './people';
 import { program } from './program';
 import { checkScannable, scanSpecs, type ScanSpecs } from './scan-model';
+import { isBlindVersion } from './version-lines';
 
 /** How long an answer waits for its scan. */
 const patience = 60_000;
@@ -164,15 +165,8 @@ async function present(id: string): Promise<ScanAnswer> {
   const people = await emailsOf([scan.startedBy]);
   return presentScan(scan, {
     startedBy: people.get(scan.startedBy) ?? 'a former member',
-    blind: await isBlind(scan.measurementVersionId),
+    blind: await isBlindVersion(scan.measurementVersionId),
   });
-}
-
-export async function isBlind(measurementVersionId: string): Promise<boolean> {
-  const version = await MeasurementVersion.findByPk(measurementVersionId, { attributes: ['measurementId'] });
-  const measurement =
-    version && (await Measurement.findByPk(version.measurementId, { attributes: ['blind'] }));
-  return measurement?.blind ?? true;
 }
 
 /** The scan of `access` as its members see it. */

@@ -1,6 +1,6 @@
 import { Op, type Transaction } from 'sequelize';
-import { Fit, Measurement, MeasurementVersion, Notebook, NotebookRevision } from '@/models';
-import { AppError, notFound } from '@/lib/errors';
+import { Fit, NotebookRevision } from '@/models';
+import { AppError } from '@/lib/errors';
 import { faultOf, presentReference, type ReferredFit } from '@/lib/presenters/statements';
 import {
   settingSections,
@@ -13,60 +13,69 @@ import { emptyReport, storedReportSchema } from '@/lib/schemas/stored-report';
 import { parseStatement, referencesOf, type StatementFault } from '@/lib/statement/parse-statement';
 import type { Access } from './access';
 import { countKept } from './inference-spec';
+import { findNotebook, recordOf } from './notebook-records';
 import { emailsOf } from './people';
+import { versionLines } from './version-lines';
 
-/** The fits of a notebook as a statement may speak of them, by number; none are read for words that refer to nothing. */
+/** Which sections each revision changed. */
+const changesOf = (
+  notebookId: string,
+  transaction?: Transaction,
+): Promise<Pick<NotebookRevision, 'revision' | 'sections'>[]> =>
+  transaction
+    ? NotebookRevision.findAll({
+        where: { notebookId },
+        attributes: ['revision', 'sections'],
+        transaction,
+      })
+    : recordOf(notebookId);
+
+/**
+ * The fits of a notebook as a text may speak of them, by number. Those that it speaks of; all of them where it speaks of one that
+ * isn't there, so that it can be told which are.
+ */
 async function referredFits(
   notebookId: string,
   text: string,
   transaction?: Transaction,
 ): Promise<Map<number, ReferredFit>> {
-  if (referencesOf(parseStatement(text)).length === 0) return new Map();
-  const fits = await Fit.findAll({ where: { notebookId }, transaction });
+  const numbers = [...new Set(referencesOf(parseStatement(text)).map(({ reference }) => reference.fit))];
+  if (numbers.length === 0) return new Map();
+  const named = await Fit.findAll({ where: { notebookId, number: numbers }, transaction });
+  const fits =
+    named.length === numbers.length ? named : await Fit.findAll({ where: { notebookId }, transaction });
   if (fits.length === 0) return new Map();
-  const versionIds = [...new Set(fits.map(({ measurementVersionId }) => measurementVersionId))];
   const [versions, changes] = await Promise.all([
-    MeasurementVersion.findAll({
-      where: { id: versionIds },
-      attributes: ['id', 'measurementId', 'version', 'rows', 'hasBinEdges', 'points'],
+    versionLines(
+      fits.map(({ measurementVersionId }) => measurementVersionId),
       transaction,
-    }),
-    NotebookRevision.findAll({
-      where: { notebookId, revision: { [Op.gt]: 1 } },
-      attributes: ['revision', 'sections'],
-      transaction,
-    }),
+    ),
+    changesOf(notebookId, transaction),
   ]);
-  const measurements = await Measurement.findAll({
-    where: { id: versions.map(({ measurementId }) => measurementId) },
-    attributes: ['id', 'name', 'blind'],
-    transaction,
-  });
-  const settled = changes.filter(({ sections }) =>
-    settingSections.some((section) => sections.includes(section)),
+  const settled = changes.filter(
+    ({ revision, sections }) => revision > 1 && settingSections.some((section) => sections.includes(section)),
   );
   return new Map(
     fits.flatMap((fit) => {
-      const version = versions.find(({ id }) => id === fit.measurementVersionId);
-      const measurement = measurements.find(({ id }) => id === version?.measurementId);
-      if (!version || !measurement) return [];
+      const version = versions.get(fit.measurementVersionId);
+      if (!version) return [];
       const snapshot = snapshotSchema.parse(fit.snapshot);
       const report =
-        fit.report === null || measurement.blind ? emptyReport : storedReportSchema.parse(fit.report);
+        fit.report === null || version.blind ? emptyReport : storedReportSchema.parse(fit.report);
       const referred: ReferredFit = {
         id: fit.id,
         number: fit.number,
         revision: fit.revision,
         outdated: settled.some(({ revision }) => revision > fit.revision),
         status: fitStatusSchema.parse(fit.status),
-        blind: measurement.blind,
+        blind: version.blind,
         replicas: snapshot.replicas,
         kept: Math.max(0, fit.draws - snapshot.warmup),
         diagnostics: report.diagnostics,
         gate: { ...report.gate, target: { rhat: fit.targetRhat, ess: fit.targetEss } },
         template: snapshot.template,
         priors: snapshot.priors,
-        measurement: { name: measurement.name, version: version.version },
+        measurement: { name: version.name, version: version.version },
         bins: countKept(version, snapshot.cuts),
         excluded: snapshot.cuts.excluded ?? [],
         sha256: fit.snapshotSha256,
@@ -131,22 +140,15 @@ export async function statementAt(
 /** The statement of the notebook of `access`, as it stands or as it stood at a revision, with the numbers of now. */
 export async function readStatement(access: Access, at?: number): Promise<Statement> {
   access.require('notebook.read');
-  const notebook = await Notebook.findByPk(access.id, { attributes: ['id', 'revision'] });
-  if (!notebook) throw notFound('notebook');
+  const notebook = await findNotebook(access);
   const revision = at ?? notebook.revision;
   if (revision > notebook.revision) {
     const message = `Revision ${revision} isn’t there yet; revision ${notebook.revision} stands.`;
     throw new AppError('invalid', message, [{ path: 'revision', message }]);
   }
-  const text = await statementAt(notebook.id, revision);
-  const [fits, changes] = await Promise.all([
-    referredFits(notebook.id, text),
-    NotebookRevision.findAll({
-      where: { notebookId: notebook.id, statement: { [Op.ne]: null } },
-      attributes: ['revision', 'createdBy', 'createdAt'],
-      order: [['revision', 'DESC']],
-    }),
-  ]);
+  const changes = (await recordOf(notebook.id)).filter(({ statement }) => statement !== null).reverse();
+  const text = changes.find((change) => change.revision <= revision)?.statement ?? '';
+  const fits = await referredFits(notebook.id, text);
   const people = await emailsOf(changes.map(({ createdBy }) => createdBy));
   const history = changes.map((change) => ({
     revision: change.revision,

@@ -4,8 +4,9 @@ import { endedStatuses, fitStatusSchema, type DrawsHead } from '@/lib/schemas';
 import type { Access } from './access';
 import { fitBlocks, servedRows } from './fit-draws';
 import { fitColumns, fitModel, specOf, type FitColumns } from './fit-model';
-import { findDraws, isBlind } from './fit-records';
+import { findDraws } from './fit-records';
 import { strideOf } from './fit-schedule';
+import { isBlindVersion } from './version-lines';
 
 /**
  * Draws for figures. A page asks for them every few seconds while a fit runs, and so does every other page that shows it: the
@@ -177,7 +178,7 @@ export async function thinnedDraws(access: Access, max: number): Promise<Thinned
     attributes: ['id', 'status', 'draws', 'measurementVersionId'],
   });
   if (!fit) throw notFound('fit');
-  if (await isBlind(fit)) {
+  if (await isBlindVersion(fit.measurementVersionId)) {
     throw new AppError('blind', 'The measurement is blind: its draws can’t be read before it is unblinded.');
   }
   const key = `${fit.id} ${max}`;

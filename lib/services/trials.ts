@@ -1,12 +1,12 @@
-import { Notebook, Scan } from '@/models';
-import { notFound } from '@/lib/errors';
+import { Scan } from '@/models';
 import { jointSignificance, type Look } from '@/lib/inference/scan';
 import { storedResult } from '@/lib/presenters/scans';
 import { scanRequestSchema, scanStatusSchema, type Trial, type Trials } from '@/lib/schemas';
 import type { Access } from './access';
 import { readDoubles } from './inference-spec';
+import { findNotebook } from './notebook-records';
 import { emailsOf } from './people';
-import { isBlind } from './scans';
+import { isBlindVersion } from './version-lines';
 
 const doubles = (bytes: Buffer | null): Float64Array | null =>
   bytes && readDoubles(bytes, 'heights of the nulls', bytes.byteLength / 8);
@@ -70,9 +70,8 @@ function looksOf(scan: Scan, version: string, by: string): { trial: Trial; look:
 /** Everything that the notebook of `access` was scanned with, and what is left of the best of it. */
 export async function readTrials(access: Access): Promise<Trials> {
   access.require('notebook.read');
-  const notebook = await Notebook.findByPk(access.id);
-  if (!notebook) throw notFound('notebook');
-  const blind = await isBlind(notebook.measurementVersionId);
+  const notebook = await findNotebook(access);
+  const blind = await isBlindVersion(notebook.measurementVersionId);
   const scans = await Scan.findAll({ where: { notebookId: notebook.id }, order: [['number', 'ASC']] });
   const people = await emailsOf(scans.map(({ startedBy }) => startedBy));
   const all = scans.flatMap((scan) =>

@@ -2,11 +2,12 @@ import type { Metadata } from 'next';
 import { PageChrome } from '@/components/account/page-chrome';
 import { FormulaBlock } from '@/components/notebook/formula-block';
 import { NotebookSheet } from '@/components/notebook/notebook-sheet';
+import { packMeasurement } from '@/components/notebook/packed-measurement';
 import {
   fit,
   measurement,
   notebook,
-  roleIn,
+  roleAt,
   statement,
   trials,
   version,
@@ -32,7 +33,7 @@ export default async function NotebookPage({ params, searchParams }: Props) {
   const opened = await notebook(actor, id);
   const [measured, role, words, looks] = await Promise.all([
     measurement(actor, opened.measurement.id, opened.measurement.version),
-    roleIn(actor, opened.groupId),
+    roleAt(actor, id),
     statement(actor, id),
     trials(actor, id),
   ]);
@@ -53,7 +54,7 @@ export default async function NotebookPage({ params, searchParams }: Props) {
     >
       <NotebookSheet
         notebook={opened}
-        measurement={measured}
+        measurement={packMeasurement(measured)}
         fit={shown}
         statement={words}
         trials={looks}
