@@ -30,5 +30,5 @@ export { inducedMarginals, massChains } from './mass-order';
 export type { OrderedMarginal } from './ordered-masses';
 export { predictiveBand, priorPredictive } from './prior-predictive';
 export type { PredictiveBand } from './prior-predictive';
-export { bestDraw, coverageFacts, posteriorBand } from './summary';
+export { bestDraw, coverageFacts, jointCoverage, posteriorBand } from './summary';
 export type { CoverageFacts } from './summary';

@@ -49,6 +49,19 @@ export interface CoverageFacts {
   nyquist: number;
 }
 
+/** Coverage of several measurements together: from the lowest to the highest κ, in the steps of the one with the finest. */
+export function jointCoverage(axes: readonly Axis[]): CoverageFacts {
+  if (axes.length === 1) return coverageFacts(axes[0]);
+  const ends = axes.map((axis): [number, number] =>
+    axis.kind === 'bins'
+      ? [axis.lo[0], axis.hi[axis.hi.length - 1]]
+      : [axis.kappa[0], axis.kappa[axis.kappa.length - 1]],
+  );
+  const length = Math.log(Math.max(...ends.map(([, high]) => high)) / Math.min(...ends.map(([low]) => low)));
+  const spacing = Math.min(...axes.map((axis) => coverageFacts(axis).spacing));
+  return { length, resolution: (2 * Math.PI) / length, spacing, nyquist: Math.PI / spacing };
+}
+
 /** Coverage of bins (their edges; spacing is the widest bin) or points. At least two values, ascending. */
 export function coverageFacts(axis: Axis): CoverageFacts {
   const low = axis.kind === 'bins' ? axis.lo : axis.kappa;

@@ -72,7 +72,7 @@ export function checkScannable({ one, two }: ScanSpecs): void {
 
 /** The reach of the columns in ln κ, which settles the grid. */
 export const reachOfSpecs = ({ one, notebook }: ScanSpecs): number =>
-  reachOf(notebook.axis, one.template.structure === 'mixed');
+  reachOf([notebook.axis], one.template.structure === 'mixed');
 
 const orNull = (value: number): number | null => (Number.isFinite(value) ? value : null);
 const listed = (values: ArrayLike<number>): number[] => Array.from(values);
@@ -94,7 +94,7 @@ export function performScan(
     {
       one: specs.one,
       two: specs.two,
-      axis: axisOf(cutPoints(stored, request.cuts), specs.one.template.options),
+      axes: [axisOf(cutPoints(stored, request.cuts), specs.one.template.options)],
       muMin: request.muMin,
       muMax: request.muMax,
       nulls: request.nulls,

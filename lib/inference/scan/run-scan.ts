@@ -1,6 +1,6 @@
 import { createRng } from '@/lib/sampler';
 import type { Axis } from '@/lib/templates';
-import { coverageFacts, type CoverageFacts } from '../summary';
+import { jointCoverage, type CoverageFacts } from '../summary';
 import type { InferenceSpec } from '../types';
 import { scanGrid, scanLine, type LineScan } from './line-scan';
 import { NullDraws, type NullSource } from './null-draws';
@@ -18,7 +18,8 @@ export interface ScanRequest {
   one: InferenceSpec;
   /** The same with two fields, or null where the notebook has one. */
   two: InferenceSpec | null;
-  axis: Axis;
+  /** Where the values of each measurement are, one after the other: their own bins or points, whatever window lies between. */
+  axes: readonly Axis[];
   muMin: number;
   muMax: number;
   /** Number of simulated nulls. */
@@ -48,10 +49,10 @@ export interface ScanOutcome {
 }
 
 /** How fast the columns turn with μ: ln κ_max/κ_min, and with locked phases the largest |ln κ/4| too. */
-export function reachOf(axis: Axis, locked: boolean): number {
-  const { length } = coverageFacts(axis);
+export function reachOf(axes: readonly Axis[], locked: boolean): number {
+  const { length } = jointCoverage(axes);
   if (!locked) return length;
-  const low = axis.kind === 'bins' ? axis.lo[0] : axis.kappa[0];
+  const low = Math.min(...axes.map((axis) => (axis.kind === 'bins' ? axis.lo[0] : axis.kappa[0])));
   return Math.max(length, Math.abs(Math.log(low / 4)));
 }
 
@@ -76,10 +77,10 @@ export function runScan(
   request: ScanRequest,
   onProgress: (fraction: number) => void = () => undefined,
 ): ScanOutcome {
-  const { one, two, axis, muMin, muMax, source, seed } = request;
+  const { one, two, axes, muMin, muMax, source, seed } = request;
   const model = buildCollapsedModel(one);
   const locked = one.template.structure === 'mixed';
-  const reach = reachOf(axis, locked);
+  const reach = reachOf(axes, locked);
   // Shares of the time, by what each part costs about.
   const parts = two ? [0.1, 0.4, 0.3, 0.2] : [0.2, 0.8, 0, 0];
   const within = (part: number) => (fraction: number) =>
@@ -103,8 +104,8 @@ export function runScan(
     freedom === null || !drawable
       ? null
       : localTail(block, source.mocks, chiSquare, freedom, block.fixed.length);
-  const facts = coverageFacts(axis);
-  const logKappa = placesOf(axis);
+  const facts = jointCoverage(axes);
+  const logKappa = Float64Array.from(axes.flatMap((axis) => Array.from(placesOf(axis))));
   const weights = Float64Array.from(logKappa, (_, i) => 1 / one.data.covariance[i * logKappa.length + i]);
   return {
     line,

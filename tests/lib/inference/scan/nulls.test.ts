@@ -192,7 +192,7 @@ describe('nulls', () => {
     const found = runScan({
       one: spec,
       two: null,
-      axis: binned,
+      axes: [binned],
       muMin: 0.2,
       muMax: 8,
       nulls: 500,
