@@ -33,6 +33,8 @@ import * as notebookStatements from './0032-notebook-statements';
 import * as fitsCommittedAt from './0033-fits-committed-at';
 import * as measurementTruth from './0034-measurement-truth';
 import * as scans from './0035-scans';
+import * as checks from './0038-checks';
+import * as checkBlocks from './0039-check-blocks';
 import type { MigrationContext } from './table';
 
 interface Migration {
@@ -74,6 +76,8 @@ const migrations: readonly (readonly [string, Migration])[] = [
   ['0033-fits-committed-at', fitsCommittedAt],
   ['0034-measurement-truth', measurementTruth],
   ['0035-scans', scans],
+  ['0038-checks', checks],
+  ['0039-check-blocks', checkBlocks],
 ];
 
 /** The migrator of an open database; run it with one process at a time. */

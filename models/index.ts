@@ -6,6 +6,7 @@ import { Notebook, NotebookRevision, initNotebookModels } from './notebook';
 import { Fit, FitBlock, FitReplica, initFitModels } from './fit';
 import { FitMail, initFitQueueModels } from './fit-queue';
 import { Scan, initScanModel } from './scan';
+import { Check, CheckBlock, initCheckModels } from './check';
 
 export { Account, ApiToken, Session, User, VerificationToken } from './account';
 export { AuditEvent, Group, Invitation, Membership } from './group';
@@ -14,6 +15,7 @@ export { Notebook, NotebookRevision, type NotebookOrigin, type NotebookSettings 
 export { Fit, FitBlock, FitReplica } from './fit';
 export { FitLimit, FitMail } from './fit-queue';
 export { Scan } from './scan';
+export { Check, CheckBlock } from './check';
 
 /** All associations in one place. */
 function associate(): void {
@@ -50,6 +52,10 @@ function associate(): void {
   Notebook.hasMany(Scan, { foreignKey: 'notebookId' });
   Scan.belongsTo(Notebook, { foreignKey: 'notebookId' });
   Scan.belongsTo(MeasurementVersion, { foreignKey: 'measurementVersionId' });
+  Notebook.hasMany(Check, { foreignKey: 'notebookId' });
+  Check.belongsTo(Notebook, { foreignKey: 'notebookId' });
+  Check.belongsTo(MeasurementVersion, { foreignKey: 'measurementVersionId' });
+  Check.hasMany(CheckBlock, { foreignKey: 'checkId', as: 'blocks' });
 }
 
 interface QueryingConnection {
@@ -88,6 +94,7 @@ export function openDatabase(url: string, options: { poolMax?: number } = {}): S
   initFitModels(sequelize);
   initFitQueueModels(sequelize);
   initScanModel(sequelize);
+  initCheckModels(sequelize);
   associate();
   return sequelize;
 }

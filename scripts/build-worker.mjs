@@ -11,6 +11,7 @@ await build({
     main: 'worker/main.ts',
     'replica-thread': 'worker/replica-thread.ts',
     'report-thread': 'worker/report-thread.ts',
+    'check-thread': 'worker/check-thread.ts',
     'scan-thread': 'worker/scan-thread.ts',
     // Threads of the web processes.
     'preflight-thread': 'lib/services/preflight-thread.ts',

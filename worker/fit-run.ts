@@ -40,7 +40,11 @@ export interface Stopping {
 }
 
 /** Samples a fit that was taken for as long as this process holds it; returns when it has ended, or isn't this worker's any more. */
-export async function runFit(taken: Taken, settings: WorkerSettings, stopping: Stopping): Promise<void> {
+export async function runFit(
+  taken: Extract<Taken, { kind: 'fit' }>,
+  settings: WorkerSettings,
+  stopping: Stopping,
+): Promise<void> {
   const held = await takeUp(taken, stopping.now);
   if (!held) return;
   const run = new FitRun(held, settings, stopping);
@@ -54,7 +58,10 @@ export async function runFit(taken: Taken, settings: WorkerSettings, stopping: S
 }
 
 /** Reads a fit that was taken; one whose row or states can't be read ends here, since no worker will ever do better. */
-async function takeUp({ fitId, epoch }: Taken, now: AbortSignal): Promise<HeldFit | null> {
+async function takeUp(
+  { fitId, epoch }: Pick<HeldFit, 'fitId' | 'epoch'>,
+  now: AbortSignal,
+): Promise<HeldFit | null> {
   try {
     return await untilDone('reading a fit', () => readHeld(fitId, epoch), now);
   } catch (error) {

@@ -22,6 +22,7 @@ import { unheldScans } from '@/lib/services/scan-lease';
 import { deleteStrayFiles } from '@/lib/services/stray-files';
 import { closeStorage } from '@/storage';
 import packageFile from '@/package.json';
+import { runCheck } from './check-run';
 import { runFit } from './fit-run';
 import { runScanJob } from './scan-run';
 import { every } from './every';
@@ -42,10 +43,14 @@ const taker = new Taker({
   places: settings.fits,
   stepBack: 100,
   take: () => takeNext(settings.leaseMs),
-  run: (taken) =>
-    runFit(taken, settings, { gently: gently.signal, now: now.signal }).catch((error: unknown) =>
-      log.error({ ...taken, ...reasonOf(error) }, 'a fit was let go'),
-    ),
+  run: (taken) => {
+    const stopping = { gently: gently.signal, now: now.signal };
+    const run =
+      taken.kind === 'fit' ? runFit(taken, settings, stopping) : runCheck(taken, settings, stopping);
+    return run.catch((error: unknown) =>
+      log.error({ ...taken, ...reasonOf(error) }, `a ${taken.kind} was let go`),
+    );
+  },
   // A call that wakes one worker is to reach one that has a place.
   onFull: (full) => {
     if (full) void worker.pause(true);

@@ -1,3 +1,5 @@
+import type { DatasetRanks } from '@/lib/inference/calibration';
+import type { CalibrationResult } from '@/lib/schemas';
 import type { FitModel } from '@/lib/services/fit-model';
 import type { ReplicaFacts } from '@/lib/services/fit-moves';
 import type { Standing } from '@/lib/services/fit-commit';
@@ -67,6 +69,14 @@ export interface LookRequest {
 
 export type ReportQuestion = Append | LookRequest;
 export type ReportAnswer = { kind: 'report'; report: StoredReport } | Failure;
+
+/** Asks for one block of a check's data sets, or for what all of them come to. */
+export type CheckQuestion = { kind: 'block'; first: number } | { kind: 'result'; found: DatasetRanks[] };
+
+export type CheckAnswer =
+  | { kind: 'block'; first: number; found: DatasetRanks[] }
+  | { kind: 'result'; result: CalibrationResult }
+  | Failure;
 
 /** How far a scan is, what it found, or why it can't. Buffers arrive as plain bytes. */
 export type ScanThreadAnswer =

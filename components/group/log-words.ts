@@ -35,6 +35,9 @@ const sentences: Readonly<Record<string, Say>> = {
   'notebook.delete': (_, told) => `deleted the notebook “${told('title')}”`,
   'notebook.compare': (subject, told) => `compared numbers of fields in ${subject}: ${told('fields')}`,
   'scan.start': (subject, told) => `scanned ${subject} from μ = ${told('muMin')} to ${told('muMax')}`,
+  'check.start': (subject, told) =>
+    `checked the calibration of ${subject} on ${told('datasets')} simulated data sets`,
+  'check.stop': (subject, told) => `stopped check ${told('number')} of ${subject}`,
   'fit.start': (subject) => `started ${subject}`,
   'fit.stop': (subject, told, event) => `stopped ${draws(subject, told, event)}`,
   'fit.resume': (subject, told, event) => `resumed ${draws(subject, told, event)}`,

@@ -57,6 +57,7 @@ const recordKinds: Readonly<Record<string, RecordKind>> = {
   notebooks: 'notebook',
   fits: 'fit',
   scans: 'scan',
+  checks: 'check',
 };
 
 export function recordKindOf(key: RouteKey): RecordKind {

@@ -41,12 +41,10 @@ import {
   revisionSchema,
   sampleFormats,
   settingsSchema,
-  scanSchema,
   shiftsSchema,
   startFitSchema,
   statementQuerySchema,
   statementSchema,
-  startScanSchema,
   takenUpSchema,
   takeUpSchema,
   templateSchema,
@@ -54,12 +52,13 @@ import {
   tokenSchema,
   typesetBodySchema,
   typesetStatementSchema,
-  trialsSchema,
   versionQuerySchema,
 } from '@/lib/schemas';
 import type { Action } from '@/lib/policies';
 import { administrationRoutes } from './administration-routes';
+import { checkRoutes } from './check-routes';
 import { comparisonRoutes } from './comparison-routes';
+import { scanRoutes } from './scan-routes';
 
 /** Largest part `meta` of an upload: a name, a description and column names. */
 export const metaLimit = 64 * 1024;
@@ -336,19 +335,7 @@ export const routes = {
     status: 202,
   },
   ...comparisonRoutes,
-  'POST /notebooks/:id/scan': {
-    summary: 'Scan for frequencies; answers when it has ended, or 202 with its id after a minute.',
-    permission: 'scan.start',
-    body: startScanSchema,
-    answer: scanSchema,
-  },
-  'GET /notebooks/:id/trials': {
-    summary:
-      'Everything that a notebook was scanned with, and the significance that is left of the best of it.',
-    permission: 'notebook.read',
-    answer: trialsSchema,
-  },
-  'GET /scans/:id': { summary: 'A scan with its result.', permission: 'scan.read', answer: scanSchema },
+  ...scanRoutes,
   'GET /fits/:id': { summary: 'A fit with its diagnostics.', permission: 'fit.read', answer: fitSchema },
   'GET /fits/:id/events': {
     summary: 'The changing parts of a fit as server-sent events.',
@@ -392,6 +379,7 @@ export const routes = {
     permission: 'fit.read',
     answer: manifestSchema,
   },
+  ...checkRoutes,
   ...administrationRoutes,
 } as const satisfies Record<`${'GET' | 'POST' | 'PUT' | 'PATCH' | 'DELETE'} /${string}`, Row>;
 

@@ -27,5 +27,11 @@ export const fitWorkerOptions = {
   maxStalledCount: 1_000,
 } as const;
 
+/** A check of a posterior waits in the same queue: either job wakes a worker, and whose turn it is stands in the database. */
+export const checkJobSchema = z.object({ checkId: z.uuid() });
+export type CheckJob = z.infer<typeof checkJobSchema>;
+
+export const checkJobId = (checkId: string, epoch: number): string => `check-${checkId}-${epoch}`;
+
 /** Channel on which every commit of a fit is told. */
 export const fitChannel = (fitId: string): string => `fit:${fitId}`;

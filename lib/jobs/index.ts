@@ -2,5 +2,5 @@ export { fitChannel, fitJobId, fitJobOptions, fitJobSchema, fitsQueue, fitWorker
 export type { FitJob } from './fits';
 export { scanJobSchema, scansQueue } from './scans';
 export type { ScanJob } from './scans';
-export { closeQueue, enqueueFit, enqueueScan } from './queue';
+export { closeQueue, enqueueCheck, enqueueFit, enqueueScan } from './queue';
 export { beat, endBeat, liveWorkers, workerPlaces } from './heartbeat';

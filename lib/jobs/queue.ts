@@ -1,22 +1,33 @@
 import { Queue } from 'bullmq';
 import { queueConnection } from '@/lib/redis';
-import { fitJobId, fitJobOptions, fitJobSchema, fitsQueue, type FitJob } from './fits';
+import {
+  checkJobId,
+  checkJobSchema,
+  fitJobId,
+  fitJobOptions,
+  fitJobSchema,
+  fitsQueue,
+  type CheckJob,
+  type FitJob,
+} from './fits';
 import { scanJobId, scanJobSchema, scansQueue, type ScanJob } from './scans';
 
+type Job = FitJob | CheckJob | ScanJob;
+
 interface OpenQueue {
-  queue: Queue<FitJob | ScanJob>;
+  queue: Queue<Job>;
   connection: ReturnType<typeof queueConnection>;
 }
 
 /** Hot reloading evaluates modules anew; connections have to outlive that. */
 const holder = globalThis as typeof globalThis & { beatnoteQueues?: Map<string, OpenQueue> };
 
-function open(name: string): Queue<FitJob | ScanJob> {
+function open(name: string): Queue<Job> {
   const queues = (holder.beatnoteQueues ??= new Map<string, OpenQueue>());
   let found = queues.get(name);
   if (!found) {
     const connection = queueConnection();
-    const queue = new Queue<FitJob | ScanJob>(name, { connection });
+    const queue = new Queue<Job>(name, { connection });
     // The connection itself says when Redis is away.
     queue.on('error', () => undefined);
     found = { queue, connection };
@@ -28,7 +39,7 @@ function open(name: string): Queue<FitJob | ScanJob> {
 /** How long a request waits for a queue that doesn't answer; the reconciler queues what was left. */
 const patience = 1_500;
 
-async function enqueue(name: string, job: string, payload: FitJob | ScanJob, jobId: string): Promise<void> {
+async function enqueue(name: string, job: string, payload: Job, jobId: string): Promise<void> {
   let timer: NodeJS.Timeout | undefined;
   const late = new Promise<never>((_, reject) => {
     timer = setTimeout(() => reject(new Error('The queue took too long.')), patience);
@@ -45,6 +56,10 @@ async function enqueue(name: string, job: string, payload: FitJob | ScanJob, job
 /** Wakes a worker for a fit at this epoch. Rejects when the queue doesn't answer in time. */
 export const enqueueFit = (fitId: string, epoch: number): Promise<void> =>
   enqueue(fitsQueue, 'fit', fitJobSchema.parse({ fitId }), fitJobId(fitId, epoch));
+
+/** The same for a check. */
+export const enqueueCheck = (checkId: string, epoch: number): Promise<void> =>
+  enqueue(fitsQueue, 'check', checkJobSchema.parse({ checkId }), checkJobId(checkId, epoch));
 
 /** The same for a scan. */
 export const enqueueScan = (scanId: string, epoch: number): Promise<void> =>

@@ -1,5 +1,6 @@
 import type { Role } from '@/lib/schemas';
 import { AppError } from '@/lib/errors';
+import { checkRules } from './check';
 import { fitRules } from './fit';
 import { groupRules } from './group';
 import { measurementRules } from './measurement';
@@ -13,6 +14,7 @@ export const rules = {
   ...notebookRules,
   ...fitRules,
   ...scanRules,
+  ...checkRules,
 } as const;
 
 export type Action = keyof typeof rules;
@@ -23,7 +25,7 @@ export const may = (role: Role, action: Action): boolean => (rules[action] as re
 /** What a role may do, of all actions or of those on one kind of record: the same rules tell pages what to offer. */
 export const actionsFor = (
   role: Role,
-  kind?: 'group' | 'measurement' | 'notebook' | 'fit' | 'scan',
+  kind?: 'group' | 'measurement' | 'notebook' | 'fit' | 'scan' | 'check',
 ): Action[] =>
   actions.filter((action) => may(role, action) && (kind === undefined || action.startsWith(`${kind}.`)));
 

@@ -30,6 +30,9 @@ const actionWords: Record<Action, string> = {
   'fit.extend': 'start, stop and extend fits',
   'scan.read': 'read notebooks and fits',
   'scan.start': 'scan for frequencies',
+  'check.read': 'read notebooks and fits',
+  'check.start': 'start and stop checks',
+  'check.stop': 'start and stop checks',
 };
 
 /** One thing that members may do, and which roles may do all of it. */

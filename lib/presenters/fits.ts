@@ -49,7 +49,7 @@ const ordinal = (place: number): string => ordinals[place] ?? `number ${place}`;
 const fits = (count: number): string => (count === 1 ? '1 fit' : `${count} fits`);
 
 /** Its place in the queue and why it waits. */
-function waitInWords({ place, groupRunning, groupLimit, running, places }: QueuePlace): string {
+export function waitInWords({ place, groupRunning, groupLimit, running, places }: QueuePlace): string {
   const where = `${ordinal(place)} in the queue`;
   if (places === 0) return `${where}; no worker is running, and it begins when one does.`;
   if (groupRunning >= groupLimit) return `${where}; your group has ${fits(groupRunning)} running, the limit.`;
@@ -59,7 +59,7 @@ function waitInWords({ place, groupRunning, groupLimit, running, places }: Queue
   return `${where}; those before it begin first.`;
 }
 
-const capital = (text: string): string => text.charAt(0).toUpperCase() + text.slice(1);
+export const capital = (text: string): string => text.charAt(0).toUpperCase() + text.slice(1);
 
 const isHeld = (fit: FitRow): boolean => fit.leaseUntil !== null && fit.leaseUntil.getTime() > Date.now();
 

@@ -15,3 +15,4 @@ export * from './administration';
 export * from './scans';
 export * from './field-counts';
 export * from './comparison';
+export * from './checks';

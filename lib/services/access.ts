@@ -8,7 +8,7 @@ import { SharedReads } from './shared-reads';
 
 export type { Actor };
 
-export type RecordKind = 'group' | 'measurement' | 'notebook' | 'fit' | 'scan';
+export type RecordKind = 'group' | 'measurement' | 'notebook' | 'fit' | 'scan' | 'check';
 
 const proof = Symbol('authorised');
 
@@ -21,7 +21,7 @@ export interface Access {
   readonly actor: Actor;
   readonly role: Role;
   readonly groupId: string;
-  /** Id of the group, measurement, notebook, fit or scan that was authorised. */
+  /** Id of the group, measurement, notebook, fit, scan or check that was authorised. */
   readonly id: string;
   readonly kind: RecordKind;
   /** Throws `forbidden` unless the role allows it too. */
@@ -35,6 +35,7 @@ const records: Readonly<Record<RecordKind, { table: string; group: string }>> = 
   notebook: { table: 'notebooks', group: 'group_id' },
   fit: { table: 'fits', group: 'group_id' },
   scan: { table: 'scans', group: 'group_id' },
+  check: { table: 'checks', group: 'group_id' },
 };
 
 interface Member {

@@ -2,6 +2,7 @@ import { QueryTypes, Transaction } from 'sequelize';
 import { FitLimit } from '@/models';
 import { config } from '@/lib/config';
 import { database } from '@/lib/db';
+import { checkUnfinished, takeCheckLease } from './check-lease';
 import { clockAt, isHeld, isUnfinished, leaseIsOver, takeLease } from './fit-lease';
 import { nextFit, turnOrder, type GroupLoad, type Loads, type WaitingFit } from './fit-turns';
 
@@ -14,7 +15,7 @@ export const everyGroup = 'site';
 export interface QueueState {
   waiting: WaitingFit[];
   loads: Loads;
-  /** Fits that workers hold, of all groups. */
+  /** Fits and checks that workers hold, of all groups. */
   running: number;
   now: number;
 }
@@ -25,26 +26,35 @@ export async function readQueue(now?: Date, transaction?: Transaction): Promise<
   const select = <T extends object>(sql: string, values: Record<string, unknown> = {}) =>
     database().query<T>(sql, { replacements: values, type: QueryTypes.SELECT, transaction });
   const waiting = await select<{
+    kind: 'fit' | 'check';
     id: string;
     groupId: string;
     status: string;
     queuedAt: Date;
     expectedSeconds: number;
   }>(
-    `SELECT id, group_id AS groupId, status, COALESCE(queued_at, created_at) AS queuedAt,
+    `SELECT 'fit' AS kind, id, group_id AS groupId, status, COALESCE(queued_at, created_at) AS queuedAt,
        expected_seconds AS expectedSeconds
-     FROM fits WHERE ${isUnfinished} AND ${leaseIsOver(at)}`,
+     FROM fits WHERE ${isUnfinished} AND ${leaseIsOver(at)}
+     UNION ALL
+     SELECT 'check', id, group_id, status, queued_at, expected_seconds
+     FROM checks WHERE ${checkUnfinished} AND ${leaseIsOver(at)}`,
   );
   const running = await select<{ groupId: string; running: number }>(
-    `SELECT group_id AS groupId, COUNT(*) AS running FROM fits
-     WHERE ${isUnfinished} AND ${isHeld(at)} GROUP BY group_id`,
+    `SELECT groupId, COUNT(*) AS running FROM (
+       SELECT group_id AS groupId FROM fits WHERE ${isUnfinished} AND ${isHeld(at)}
+       UNION ALL SELECT group_id FROM checks WHERE ${checkUnfinished} AND ${isHeld(at)}
+     ) held GROUP BY groupId`,
   );
   const used = await select<{ groupId: string; seconds: number; servedAt: Date | null }>(
-    `SELECT group_id AS groupId,
+    `SELECT groupId,
        SUM(milliseconds_spent / 1000 * POW(0.5, TIMESTAMPDIFF(SECOND, COALESCE(ended_at, ${at}), ${at}) / 3600)) AS seconds,
        MAX(ended_at) AS servedAt
-     FROM fits WHERE milliseconds_spent > 0
-       AND (ended_at IS NULL OR ended_at > TIMESTAMPADD(HOUR, -${hoursLooked}, ${at})) GROUP BY group_id`,
+     FROM (
+       SELECT group_id AS groupId, milliseconds_spent, ended_at FROM fits
+       UNION ALL SELECT group_id, milliseconds_spent, ended_at FROM checks
+     ) used WHERE milliseconds_spent > 0
+       AND (ended_at IS NULL OR ended_at > TIMESTAMPADD(HOUR, -${hoursLooked}, ${at})) GROUP BY groupId`,
   );
   const clock = now ?? (await select<{ now: Date }>(`SELECT ${at} AS now`))[0].now;
   const limits = new Map((await FitLimit.findAll({ transaction })).map(({ scope, fits }) => [scope, fits]));
@@ -61,7 +71,8 @@ export async function readQueue(now?: Date, transaction?: Transaction): Promise<
     });
   }
   return {
-    waiting: waiting.map(({ id, groupId, status, queuedAt, expectedSeconds }) => ({
+    waiting: waiting.map(({ kind, id, groupId, status, queuedAt, expectedSeconds }) => ({
+      kind,
       id,
       groupId,
       begun: status !== 'queued',
@@ -74,13 +85,11 @@ export async function readQueue(now?: Date, transaction?: Transaction): Promise<
   };
 }
 
-export interface Taken {
-  fitId: string;
-  epoch: number;
-}
+export type Taken =
+  { kind: 'fit'; fitId: string; epoch: number } | { kind: 'check'; checkId: string; epoch: number };
 
 /**
- * Takes the fit whose turn it is, with epoch + 1 and a lease; null where none may be taken. Claims of one group go one by one,
+ * Takes the fit or check whose turn it is, with epoch + 1 and a lease; null where none may be taken. Claims of one group go one by one,
  * so that its limit holds whoever asks; one that is locked by another worker is passed over and asked for again later.
  */
 export async function takeNext(leaseMs: number, now?: Date): Promise<Taken | null> {
@@ -106,9 +115,14 @@ export async function takeNext(leaseMs: number, now?: Date): Promise<Taken | nul
         }
         continue;
       }
-      if (await lockRow('fits', next.id, transaction)) {
-        const epoch = await takeLease(next.id, leaseMs, now, transaction);
-        if (epoch !== null) return { fitId: next.id, epoch };
+      const { kind, id } = next;
+      if (kind === 'fit' && (await lockRow('fits', id, transaction))) {
+        const epoch = await takeLease(id, leaseMs, now, transaction);
+        if (epoch !== null) return { kind, fitId: id, epoch };
+      }
+      if (kind === 'check' && (await lockRow('checks', id, transaction))) {
+        const epoch = await takeCheckLease(id, leaseMs, now, transaction);
+        if (epoch !== null) return { kind, checkId: id, epoch };
       }
       waiting = waiting.filter(({ id }) => id !== next.id);
     }
@@ -116,7 +130,11 @@ export async function takeNext(leaseMs: number, now?: Date): Promise<Taken | nul
 }
 
 /** Locks a row unless another holds it. */
-async function lockRow(table: '`groups`' | 'fits', id: string, transaction: Transaction): Promise<boolean> {
+async function lockRow(
+  table: '`groups`' | 'fits' | 'checks',
+  id: string,
+  transaction: Transaction,
+): Promise<boolean> {
   const rows = await database().query(`SELECT id FROM ${table} WHERE id = :id FOR UPDATE SKIP LOCKED`, {
     replacements: { id },
     type: QueryTypes.SELECT,

@@ -1,7 +1,8 @@
 /** Whose turn it is: arithmetic on counts and times alone, so that the page's place in the queue is the workers' own order. */
 
-/** A fit that nobody holds and that isn't to its end. */
+/** A fit, or a check, that nobody holds and that isn't to its end: both take turns in one queue. */
 export interface WaitingFit {
+  kind: 'fit' | 'check';
   id: string;
   groupId: string;
   /** It was sampled before: its worker died or gave it back. */
@@ -13,7 +14,7 @@ export interface WaitingFit {
 
 /** What a group uses and may use. */
 export interface GroupLoad {
-  /** Fits that workers hold. */
+  /** Fits and checks that workers hold. */
   running: number;
   limit: number;
   /** Seconds of sampling, each weighed by a half for every hour since. */

@@ -37,6 +37,7 @@ const whileArchived: ReadonlySet<string> = new Set([
   'notebook.delete',
   'fit.read',
   'scan.read',
+  'check.read',
 ]);
 
 /** The row of the notebook of `access`. */
@@ -96,6 +97,7 @@ export async function readNotebook(access: Access): Promise<NotebookAnswer> {
       ...actionsFor(access.role, 'notebook'),
       ...actionsFor(access.role, 'fit'),
       ...actionsFor(access.role, 'scan'),
+      ...actionsFor(access.role, 'check'),
     ].filter((action) => notebook.archivedAt === null || whileArchived.has(action)),
   });
 }

@@ -100,6 +100,7 @@ async function simulate(
     while (running.length < places) {
       const taken = await takeNext(lease, moment(second));
       if (!taken) break;
+      if (taken.kind !== 'fit') throw new Error('Only fits are queued here.');
       const fit = await Fit.findByPk(taken.fitId, { rejectOnEmpty: true });
       running.push({ id: fit.id, group: fit.groupId, from: second, to: second + fit.expectedSeconds });
     }
@@ -165,7 +166,7 @@ describe('the queue of fits', () => {
       const taken: string[] = [];
       for (let empty = 0; empty < 5;) {
         const next = await takeNext(lease, moment(100));
-        if (next) taken.push(next.fitId);
+        if (next?.kind === 'fit') taken.push(next.fitId);
         else empty += 1;
       }
       return taken;

@@ -9,6 +9,7 @@ import { rowOf, routes, type RouteKey } from '@/lib/http/routes';
 import { actionsFor, may } from '@/lib/policies';
 import { groupSchema, roles, type Role } from '@/lib/schemas';
 import {
+  Check,
   Fit,
   Invitation,
   Measurement,
@@ -50,6 +51,24 @@ async function exportedVerbs(): Promise<Map<string, Verb>> {
 
 const exported = await exportedVerbs();
 const keys = Object.keys(routes) as RouteKey[];
+
+/** What a check says of itself, whole enough to be read. */
+const checkRequest = {
+  kind: 'calibration',
+  inputs: [],
+  measurementVersion: 1,
+  cuts: {},
+  likelihood: { kind: 'normal' },
+  mockCount: null,
+  template: { id: 'background', version: 1, options: {} },
+  priors: {},
+  datasets: 50,
+  draws: 99,
+  seed: 1,
+  warmup: 200,
+  sampler: 3,
+  program: '0',
+};
 
 /** One of each record, with nothing in it but what it needs to exist. */
 async function createRecords(groupId: string, userId: string, { number = 1, fit: fitted = true } = {}) {
@@ -108,7 +127,14 @@ async function createRecords(groupId: string, userId: string, { number = 1, fit:
     createdAt: now,
   });
   if (!fitted)
-    return { group: groupId, measurement: measurement.id, notebook: notebook.id, fit: '', scan: '' };
+    return {
+      group: groupId,
+      measurement: measurement.id,
+      notebook: notebook.id,
+      fit: '',
+      scan: '',
+      check: '',
+    };
   const fit = await Fit.create({
     groupId,
     notebookId: notebook.id,
@@ -135,7 +161,29 @@ async function createRecords(groupId: string, userId: string, { number = 1, fit:
     startedBy: userId,
     createdAt: now,
   });
-  return { group: groupId, measurement: measurement.id, notebook: notebook.id, fit: fit.id, scan: scan.id };
+  const check = await Check.create({
+    notebookId: notebook.id,
+    groupId,
+    number: 1,
+    kind: 'calibration',
+    revision: 1,
+    measurementVersionId: version.id,
+    request: checkRequest,
+    requestSha256: sha256,
+    status: 'failed',
+    queuedAt: now,
+    expectedSeconds: 0,
+    startedBy: userId,
+    createdAt: now,
+  });
+  return {
+    group: groupId,
+    measurement: measurement.id,
+    notebook: notebook.id,
+    fit: fit.id,
+    scan: scan.id,
+    check: check.id,
+  };
 }
 
 let records: Awaited<ReturnType<typeof createRecords>>;

@@ -44,6 +44,20 @@ export function rankCounts(ranks: readonly number[], L: number, K: number): numb
   return Array.from({ length: K - 1 }, (_, i) => ranks.filter((r) => r * K < (i + 1) * (L + 1)).length);
 }
 
+/**
+ * Quantiles γ/2 and 1 − γ/2 of Binomial(N, p): a count leaves them with probability γ or less.
+ *
+ * @param N trials, at least 1
+ * @param p in (0, 1)
+ * @param gamma in (0, 1)
+ */
+export function binomialBounds(N: number, p: number, gamma: number): [number, number] {
+  if (!(Number.isInteger(N) && N >= 1 && p > 0 && p < 1 && gamma > 0 && gamma < 1)) {
+    throw new RangeError(`no bounds for ${N} trials of ${p} at ${gamma}`);
+  }
+  return bounds(N, p, gamma / 2, lnFactorials(N));
+}
+
 function lnFactorials(N: number): Float64Array {
   return Float64Array.from({ length: N + 1 }, (_, k) => logGamma(k + 1));
 }

@@ -1,5 +1,6 @@
 import { advance, createRng, essBulk, startReplica, type Rng, type SamplerSettings } from '@/lib/sampler';
 import type { Inference } from '../types';
+import { coveredLevels } from './interval-coverage';
 
 /** What is to be calibrated: how truths and data arise, and the posterior that is made of the data. */
 export interface CalibrationProblem {
@@ -19,6 +20,8 @@ export interface CalibrationProblem {
 export interface DatasetRanks {
   /** By parameter, and of ln likelihood under `log likelihood`. */
   ranks: Record<string, number>;
+  /** How many of `coverageLevels`' central intervals of the L draws hold the truth; by parameter. */
+  covered: Record<string, number>;
   /** Draws made after warm-up. */
   made: number;
   /** Least effective size of them (bulk). The L that are kept are far enough apart once it is 2 L. */
@@ -66,20 +69,21 @@ export function rankDataset(problem: CalibrationProblem, L: number, seed: string
   const made = columns[0].length;
   const step = Math.floor(made / L);
   const truths = [problem.logLikelihood?.(data, truth) ?? target.logLikelihood(truth), ...truth];
-  const ranks = Object.fromEntries(
-    names.map((name, q) => {
-      let below = 0;
-      let equal = 0;
-      for (let l = 1; l <= L; l += 1) {
-        const value = columns[q][l * step - 1];
-        if (value < truths[q]) below += 1;
-        else if (value === truths[q]) equal += 1;
-      }
-      // Ties (a likelihood that is constant) are broken at random, or they would all be rank 0.
-      return [name, below + (equal > 0 ? Math.floor(rng.uniform() * (equal + 1)) : 0)];
-    }),
-  );
-  return { ranks, made, ess, reached: ess >= 2 * L };
+  const ranks: Record<string, number> = {};
+  const covered: Record<string, number> = {};
+  names.forEach((name, q) => {
+    const kept = Float64Array.from({ length: L }, (_, l) => columns[q][(l + 1) * step - 1]);
+    let below = 0;
+    let equal = 0;
+    for (const value of kept) {
+      if (value < truths[q]) below += 1;
+      else if (value === truths[q]) equal += 1;
+    }
+    // Ties (a likelihood that is constant) are broken at random, or they would all be rank 0.
+    ranks[name] = below + (equal > 0 ? Math.floor(rng.uniform() * (equal + 1)) : 0);
+    if (q > 0) covered[name] = coveredLevels(kept, truths[q]);
+  });
+  return { ranks, covered, made, ess, reached: ess >= 2 * L };
 }
 
 /** Least bulk effective size of columns that move; a column that is constant says nothing of the chain. */

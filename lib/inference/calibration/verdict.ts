@@ -1,7 +1,8 @@
 import { rankBand, rankCounts, type RankBand } from './rank-bands';
 
 /** How ranks leave the band: what the posterior is, next to the truth. */
-export type RankShape = 'too low' | 'too high' | 'too narrow' | 'too wide';
+export const rankShapes = ['too low', 'too high', 'too narrow', 'too wide'] as const;
+export type RankShape = (typeof rankShapes)[number];
 
 /** One quantity's ranks, judged. */
 export interface RankVerdict {

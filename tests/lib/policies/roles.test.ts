@@ -28,6 +28,9 @@ const table: Record<Action, string> = {
   'fit.extend': 'LA',
   'scan.read': 'LAF',
   'scan.start': 'LA',
+  'check.read': 'LAF',
+  'check.start': 'LA',
+  'check.stop': 'LA',
 };
 const letters: Record<Role, string> = { lead: 'L', analyst: 'A', referee: 'F', reader: 'R' };
 

@@ -8,6 +8,7 @@ const waits = (
   expectedSeconds = 60,
   begun = false,
 ): WaitingFit => ({
+  kind: 'fit',
   id,
   groupId,
   begun,

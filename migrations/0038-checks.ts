@@ -1,0 +1,47 @@
+import { DataTypes } from 'sequelize';
+import {
+  count,
+  flag,
+  id,
+  instant,
+  json,
+  maybe,
+  maybeInstant,
+  real,
+  reference,
+  sha256,
+  table,
+  text,
+  uuid,
+} from './table';
+
+/** A check goes with its notebook and with the version that it was made on: unlike a scan it is no look at the data. */
+export const { up, down } = table(
+  'checks',
+  {
+    id,
+    notebook_id: reference('notebooks', true),
+    group_id: reference('groups', true),
+    number: count,
+    kind: text(16),
+    revision: count,
+    measurement_version_id: reference('measurement_versions', true),
+    request: json,
+    request_sha256: sha256,
+    status: text(16),
+    message: maybe(text(1000)),
+    stop_requested: flag,
+    epoch: { ...count, defaultValue: 0 },
+    lease_until: maybeInstant,
+    queued_at: instant,
+    expected_seconds: real,
+    done: { ...count, defaultValue: 0 },
+    milliseconds_spent: { type: DataTypes.BIGINT, allowNull: false, defaultValue: 0 },
+    result: { type: DataTypes.TEXT('long'), allowNull: true },
+    started_by: reference('users'),
+    stopped_by: { type: uuid, allowNull: true },
+    created_at: instant,
+    ended_at: maybeInstant,
+  },
+  { checks_number: ['notebook_id', 'number'], checks_request: ['notebook_id', 'request_sha256'] },
+);
