@@ -2,6 +2,9 @@
 
 import dynamic from 'next/dynamic';
 import { useEffect, useEffectEvent, useMemo, useState } from 'react';
+import { ChecksSection } from '@/components/checks/checks-section';
+import { checksState } from '@/components/checks/check-words';
+import { useChecks } from '@/components/checks/use-checks';
 import { ComparisonSection, comparisonState } from '@/components/comparison/comparison-section';
 import { useComparison } from '@/components/comparison/use-comparison';
 import { ChainsSection } from '@/components/fit/chains-section';
@@ -24,7 +27,7 @@ import { useScans } from '@/components/scan/use-scans';
 import { StatementSection } from '@/components/statement/statement-section';
 import { statementState } from '@/components/statement/statement-state';
 import { useStatement } from '@/components/statement/use-statement';
-import type { Fit, Notebook, Statement, Trials } from '@/lib/schemas';
+import type { CheckListed, Fit, Notebook, Statement, Trials } from '@/lib/schemas';
 import { Abstract } from './abstract';
 import { keepPoints } from './kept-points';
 import type { DrawnFormula } from './live-formula';
@@ -51,6 +54,8 @@ export interface NotebookSheetProps {
   statement: Statement;
   /** Looks for a signal so far. */
   trials: Trials;
+  /** Checks so far. */
+  checks: readonly CheckListed[];
   formula: DrawnFormula;
   defaults: FitDefaults;
   /** Who reads it; what is folded is remembered for each person. */
@@ -113,6 +118,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
     [fit, notebook.template],
   );
   const scans = useScans(notebook.id, props.trials);
+  const checks = useChecks(notebook.id, props.checks);
   const found = useMemo(
     () => [bestOf(fit, draws), bestOfScan(scans.scan)].filter((point) => point !== null),
     [fit, draws, scans.scan],
@@ -126,6 +132,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
     chains: chainsState(fit, notebook),
     posterior: posteriorState(fit, notebook),
     comparison: comparisonState(notebook),
+    checks: checksState(checks, notebook),
     statement: statementState(statement, words.changed),
   };
   const storageKey = foldKey(notebook.id, props.reader);
@@ -220,6 +227,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
         onShow={show}
         onStarted={state.refresh}
       />
+      <ChecksSection notebook={notebook} handle={checks} unsaved={unsaved} fold={fold('checks')} />
       <StatementSection
         number={sectionNumber('statement')}
         state={state}

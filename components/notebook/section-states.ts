@@ -67,8 +67,8 @@ export function posteriorState(
 
 export type SectionStates = Record<SectionId, State>;
 
-/** Sections that are never called for: a scan may be left out, and words are read or written last. */
-const uncalled: readonly SectionId[] = ['scan', 'comparison', 'statement'];
+/** Sections that are never called for: a scan or a check may be left out, and words are read or written last. */
+const uncalled: readonly SectionId[] = ['scan', 'comparison', 'checks', 'statement'];
 
 /** Where the work stands: the chains while they run, else the first section that isn't settled, else the posterior. */
 export function currentSection(states: SectionStates): SectionId {

@@ -8,6 +8,7 @@ const sections = [
   { id: 'chains', title: 'Chains' },
   { id: 'posterior', title: 'Posterior' },
   { id: 'comparison', title: 'Comparison' },
+  { id: 'checks', title: 'Checks' },
   { id: 'statement', title: 'Statement' },
 ] as const;
 
@@ -35,6 +36,8 @@ const figures = [
   'best-fit',
   'bayes-factors',
   'prior-widths',
+  'rank-histograms',
+  'rank-differences',
 ] as const;
 export type NotebookFigure = (typeof figures)[number];
 

@@ -65,8 +65,13 @@ function ordered(value: unknown): unknown {
   );
 }
 
-/** True where the notebook has other settings by now than those that were scanned. */
-export function isOtherSettings(request: Scan['request'], notebook: Notebook): boolean {
+type AskedSettings = Pick<
+  Scan['request'],
+  'cuts' | 'likelihood' | 'template' | 'priors' | 'measurementVersion'
+>;
+
+/** True where the notebook has other settings by now than those that were scanned, or checked. */
+export function isOtherSettings(request: AskedSettings, notebook: Notebook): boolean {
   const asked = {
     cuts: request.cuts,
     likelihood: request.likelihood,

@@ -4,6 +4,7 @@ import packageFile from '@/package.json';
 import type { Actor } from '@/lib/auth/actor';
 import { auth } from '@/lib/auth/current';
 import {
+  checkListedSchema,
   fitLimitsSchema,
   fitSchema,
   groupLogSchema,
@@ -20,6 +21,7 @@ import {
   tokenSchema,
   trialsSchema,
   usersQuerySchema,
+  type CheckListed,
   type Fit,
   type Group,
   type GroupLog,
@@ -40,6 +42,7 @@ import { readMe, readSettings } from '@/lib/services/accounts';
 import { administer, isAdministrator } from '@/lib/services/administration';
 import { readInstanceState, readStorageState } from '@/lib/services/instance-state';
 import { listSiteUsers } from '@/lib/services/site-users';
+import { listChecks } from '@/lib/services/checks';
 import { readFitLimits } from '@/lib/services/fit-limits';
 import { readFit } from '@/lib/services/fits';
 import { readGroup } from '@/lib/services/groups';
@@ -157,6 +160,10 @@ export const trials = async (actor: Actor, id: string): Promise<Trials> => {
   const access = await accessTo(actor, 'notebook', id, 'notebook.read');
   return trialsSchema.parse(await reading(() => readTrials(access)));
 };
+
+/** The checks of a notebook, without what they found. */
+export const checks = async (actor: Actor, id: string): Promise<CheckListed[]> =>
+  checkListedSchema.array().parse(await listChecks(await accessTo(actor, 'notebook', id, 'notebook.read')));
 
 export const fit = cache(async (actor: Actor, id: string): Promise<Fit> => {
   const access = await accessTo(actor, 'fit', id, 'fit.read');

@@ -1,6 +1,7 @@
 import { advance, createRng, essBulk, startReplica, type Rng, type SamplerSettings } from '@/lib/sampler';
 import type { Inference } from '../types';
 import { coveredLevels } from './interval-coverage';
+import { LOG_LIKELIHOOD } from './quantity-name';
 
 /** What is to be calibrated: how truths and data arise, and the posterior that is made of the data. */
 export interface CalibrationProblem {
@@ -29,9 +30,6 @@ export interface DatasetRanks {
   /** False where the effective size wasn't reached within the limit of draws. */
   reached: boolean;
 }
-
-/** Name under which the rank of the log-likelihood at the truth stands. */
-export const LOG_LIKELIHOOD = 'log likelihood';
 
 /** Draws at most, as a multiple of L. */
 const MOST = 80;

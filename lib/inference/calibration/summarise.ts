@@ -1,6 +1,7 @@
 import { countCoverage, type IntervalCoverage } from './interval-coverage';
 import { binomialBounds } from './rank-bands';
-import { LOG_LIKELIHOOD, type DatasetRanks } from './rank-dataset';
+import { LOG_LIKELIHOOD } from './quantity-name';
+import type { DatasetRanks } from './rank-dataset';
 import { judgeRanks, type RankVerdict } from './verdict';
 
 /** Intervals of ranks that are compared with the band, and bars of the histogram. */

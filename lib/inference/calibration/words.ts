@@ -1,4 +1,4 @@
-import { LOG_LIKELIHOOD } from './rank-dataset';
+import { LOG_LIKELIHOOD } from './quantity-name';
 import type { CalibrationSummary } from './summarise';
 import type { RankShape } from './verdict';
 

@@ -4,6 +4,7 @@ import { FormulaBlock } from '@/components/notebook/formula-block';
 import { NotebookSheet } from '@/components/notebook/notebook-sheet';
 import { packMeasurement } from '@/components/notebook/packed-measurement';
 import {
+  checks,
   fit,
   measurement,
   notebook,
@@ -31,11 +32,12 @@ export default async function NotebookPage({ params, searchParams }: Props) {
   const { id } = await params;
   const actor = await visitor(`/notebooks/${id}`);
   const opened = await notebook(actor, id);
-  const [measured, role, words, looks] = await Promise.all([
+  const [measured, role, words, looks, checked] = await Promise.all([
     measurement(actor, opened.measurement.id, opened.measurement.version),
     roleAt(actor, id),
     statement(actor, id),
     trials(actor, id),
+    checks(actor, id),
   ]);
   const wanted = Number((await searchParams).fit);
   const last = Math.max(0, ...opened.fits.map(({ number }) => number));
@@ -58,6 +60,7 @@ export default async function NotebookPage({ params, searchParams }: Props) {
         fit={shown}
         statement={words}
         trials={looks}
+        checks={checked}
         formula={{ tex: formula.wide, node: <FormulaBlock formula={formula} /> }}
         defaults={{ ...defaultFit }}
         reader={actor.userId}
