@@ -18,7 +18,8 @@ const ofLikelihood: Readonly<Record<RankShape, string>> = {
     'the log-likelihood at the truth ranks high: posterior draws fit their data worse than the truth does',
   'too high':
     'the log-likelihood at the truth ranks low: posterior draws fit their data better than they should',
-  'too narrow': 'the log-likelihood at the truth has U-shaped ranks',
+  'too narrow':
+    'the log-likelihood at the truth has U-shaped ranks: data scatter otherwise than the likelihood takes them to',
   'too wide': 'the log-likelihood at the truth ranks in the middle too often',
 };
 
@@ -36,9 +37,9 @@ export function unmixedWords({
   if (unmixed.length === 0) return '';
   const which = unmixed.slice(0, 8).join(', ');
   const more = unmixed.length > 8 ? ` and ${unmixed.length - 8} more` : '';
-  const [chains, their] =
-    unmixed.length === 1 ? ['chain did', 'its ranks are'] : ['chains did', 'their ranks are'];
-  return `${unmixed.length} of ${datasets} ${chains} not mix (data sets ${which}${more}): ${their} counted with the others, so that a departure may be the sampler’s and not the posterior’s.`;
+  const [sets, their] =
+    unmixed.length === 1 ? ['data set', 'its ranks are'] : ['data sets', 'their ranks are'];
+  return `${unmixed.length} of ${datasets} chains did not mix (${sets} ${which}${more}): ${their} counted with the others, so that a departure may be the sampler’s and not the posterior’s.`;
 }
 
 /**
