@@ -119,7 +119,7 @@ describe('the calibration of a notebook’s posterior', () => {
 });
 
 describe('the verdict in words', () => {
-  const found = (count: number, rank: (k: number) => number, mixed = (_: number) => true) =>
+  const found = (count: number, rank: (k: number) => number, mixed: (k: number) => boolean = () => true) =>
     Array.from({ length: count }, (_, k) => ({
       ranks: { mu1: rank(k) },
       covered: { mu1: 4 },
