@@ -172,6 +172,7 @@ export async function readCheck(access: Access): Promise<CheckAnswer> {
 export async function listChecks(access: Access): Promise<CheckListed[]> {
   access.require('notebook.read');
   const checks = await Check.findAll({ where: { notebookId: access.id }, order: [['number', 'ASC']] });
+  if (checks.length === 0) return [];
   const people = await emailsOf(checks.map(({ startedBy }) => startedBy));
   return Promise.all(
     checks.map(async (check) =>
