@@ -27,6 +27,7 @@ export function sectionTitle(id: SectionId): string {
 const figures = [
   'measurement',
   'template',
+  'accuracy',
   'window',
   'scan',
   'plane',

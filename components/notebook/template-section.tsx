@@ -1,5 +1,6 @@
 'use client';
 
+import dynamic from 'next/dynamic';
 import { useMemo, useState } from 'react';
 import { PointsFigure } from '@/components/figures/points-figure';
 import { RequestMessage } from '@/components/api/request-message';
@@ -32,6 +33,12 @@ import { templateSides, weightInWords } from './option-words';
 import type { SectionFold } from './use-folds';
 import { useSectionSave, type NotebookState } from './use-notebook';
 import { figureNumber, sectionNumber } from './sections';
+
+/** Brings the exact shape along; loaded when the section is on the screen. */
+const AccuracyPart = dynamic(() => import('./accuracy-part').then((module) => module.AccuracyPart));
+
+/** Templates of the squeezed limit; the others are exact, or have no field. */
+const squeezed = new Set(['free-phase', 'locked-squeezed', 'light']);
 
 /** A point of parameter space that sliders can be set to. */
 export interface NamedPoint {
@@ -263,6 +270,16 @@ export function TemplateSection(props: TemplateSectionProps) {
           <p>{tried.fault}</p>
         </Message>
       )}
+      {'prediction' in tried && squeezed.has(settings.id) ? (
+        <AccuracyPart
+          settings={settings}
+          parameters={tried.prediction.fine.parameters}
+          priors={notebook.priors}
+          measurement={measurement}
+          cuts={notebook.cuts}
+          kept={points.rows.length}
+        />
+      ) : null}
       {template.assumptions.length ? (
         <p className="mt-3 text-small text-ink-2">
           Assumed: <Raised>{template.assumptions.join(' ')}</Raised>
