@@ -32,6 +32,9 @@ import { figureNumber, sectionNumber } from './sections';
 /** Loaded where the measurement has a newer version than the notebook. */
 const NewerVersion = dynamic(() => import('./newer-version').then((module) => module.NewerVersion));
 
+/** Simulates; loaded where the covariance comes from mocks. */
+const CoverageTable = dynamic(() => import('./coverage-table').then((module) => module.CoverageTable));
+
 export interface MeasurementSettings {
   cuts: Notebook['cuts'];
   likelihood: Notebook['likelihood'];
@@ -132,6 +135,7 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
   const hollow = leftOut(measurement.points, cuts);
   const [picked, setPicked] = useState<number | null>(null);
   const all = measurement.rows;
+  const sampled = Object.values(notebook.priors).filter(({ kind }) => kind !== 'fixed').length;
   const editable = notebook.may.includes('notebook.edit');
   // Once a newer version was spoken of, what came of taking it up is said in the same place.
   const [older, setOlder] = useState(false);
@@ -215,6 +219,14 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
           ]}
         />
       )}
+      {measurement.mockCount !== null && sampled > 0 && rows.length > sampled ? (
+        <CoverageTable
+          bins={rows.length}
+          mocks={measurement.mockCount}
+          parameters={sampled}
+          chosen={draft.value.likelihood.kind}
+        />
+      ) : null}
       {conflict ? (
         <ConflictMessage
           conflict={conflict}

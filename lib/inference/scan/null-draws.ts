@@ -1,5 +1,6 @@
 import type { Rng } from '@/lib/sampler';
 import { choleskyInto, forwardSolve } from '../cholesky';
+import { drawGamma } from '../gamma-draw';
 
 /** One simulated measurement without a signal, in the metric of the real one (whitened by the real covariance). */
 export interface NullDraw {
@@ -114,16 +115,4 @@ function cutMap(covariance: Float64Array, rows: number, kept: readonly number[])
     for (let i = 0; i < p; i += 1) map[i * rows + j] = column[i];
   }
   return map;
-}
-
-/** A draw of Gamma(shape, 1), shape > ½: Marsaglia and Tsang (2000), ACM Trans. Math. Softw. 26, 363; below 1 by Γ(shape + 1) U^{1/shape}. */
-function drawGamma(rng: Rng, shape: number): number {
-  if (shape < 1) return drawGamma(rng, shape + 1) * rng.uniform() ** (1 / shape);
-  const d = shape - 1 / 3;
-  const c = 1 / Math.sqrt(9 * d);
-  for (;;) {
-    const z = rng.normal();
-    const v = (1 + c * z) ** 3;
-    if (v > 0 && Math.log(rng.uniform()) < 0.5 * z * z + d * (1 - v + Math.log(v))) return d * v;
-  }
 }
