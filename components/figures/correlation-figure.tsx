@@ -1,6 +1,6 @@
 'use client';
 
-import { useId, useMemo, useState, type KeyboardEvent, type PointerEvent } from 'react';
+import { useCallback, useId, useMemo, useState, type KeyboardEvent, type PointerEvent } from 'react';
 import { formatNumber, minus } from '@/lib/figures/format';
 import { plain } from '../words/counts';
 import { Figure, useNarrow, type FigureFacts } from './figure';
@@ -117,6 +117,14 @@ export function CorrelationFigure({ kappa, values, ...facts }: CorrelationFigure
         : { positive: correlationMask(values, rows, 1), negative: correlationMask(values, rows, -1) },
     [values, rows],
   );
+  // Kept the same while the pointer moves over the matrix: its table is made of a quarter of a million numbers.
+  const numbers = useCallback(
+    () => ({
+      columns: ['kappa', ...kappa.map((_, j) => `r${j + 1}`)],
+      rows: kappa.map((value, i) => [value, ...kappa.map((_, j) => correlationAt(values, i, j))]),
+    }),
+    [kappa, values],
+  );
   const within = (index: number) => Math.max(0, Math.min(rows - 1, index));
 
   function point(event: PointerEvent<HTMLDivElement>) {
@@ -153,10 +161,7 @@ export function CorrelationFigure({ kappa, values, ...facts }: CorrelationFigure
       {...facts}
       height={heights.wide}
       heightNarrow={heights.narrow}
-      numbers={() => ({
-        columns: ['kappa', ...kappa.map((_, j) => `r${j + 1}`)],
-        rows: kappa.map((value, i) => [value, ...kappa.map((_, j) => correlationAt(values, i, j))]),
-      })}
+      numbers={numbers}
       above={
         <>
           <p

@@ -118,7 +118,7 @@ export function Figure(props: FigureProps) {
       >
         {caption}
       </FigureCaption>
-      {tabled && saved ? <NumbersTable numbers={saved.numbers()} label={label} /> : null}
+      {tabled && saved ? <NumbersTable numbers={saved.numbers} label={label} /> : null}
     </figure>
   );
 }

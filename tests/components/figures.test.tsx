@@ -3,6 +3,7 @@ import { describe, expect, it } from 'vitest';
 import { BeatFigure } from '@/components/figures/beat-figure';
 import { ConvergenceSpark } from '@/components/figures/convergence-spark';
 import { CornerFigure } from '@/components/figures/corner-figure';
+import { NumbersTable } from '@/components/figures/numbers-table';
 import { PointsFigure, type PointsFigureProps } from '@/components/figures/points-figure';
 import { pointsNumbers } from '@/components/figures/points-numbers';
 import { PriorSketch } from '@/components/figures/prior-sketch';
@@ -245,5 +246,28 @@ describe('small figures', () => {
     expect(html.match(/<path class="tr f1" d="M[^"]+L[^"]+"/g)).toHaveLength(2);
     expect(html.match(/class="[^"]*\bax"/g)).toHaveLength(2);
     expect(html).toContain('>warm-up</text>');
+  });
+});
+
+describe('the numbers of a figure as a table', () => {
+  const cells = (html: string) => html.match(/<t[dh][ >]/g)?.length ?? 0;
+  const square = (size: number) => ({
+    columns: ['kappa', ...Array.from({ length: size }, (_, j) => `r${j + 1}`)],
+    rows: Array.from({ length: size }, (_, i) => [i / 8, ...Array.from({ length: size }, (_, j) => -i * j)]),
+  });
+
+  it('shows all of a short one, with true minus signs, and says nothing of a rest', () => {
+    const html = renderToStaticMarkup(<NumbersTable numbers={() => square(3)} label="r" />);
+    expect(cells(html)).toBe(4 * 4);
+    expect(html).toContain('>−4</td>');
+    expect(html).not.toContain('The first');
+  });
+
+  it('of 500 bins against 500 makes 2 020 cells and no more, and says where the rest is', () => {
+    const html = renderToStaticMarkup(<NumbersTable numbers={() => square(500)} label="r" />);
+    expect(cells(html)).toBe(20 + 100 * 20);
+    expect(html).toContain(
+      'The first 100 of 500 rows and 20 of 501 columns; “Numbers (CSV)” holds all of them.',
+    );
   });
 });
