@@ -1,12 +1,8 @@
-import { readFileSync } from 'node:fs';
-import { createRequire } from 'node:module';
-import type { AxeResults } from 'axe-core';
 import type { Browser, Page } from 'playwright-core';
 import { afterAll, beforeAll, describe, expect, inject, it } from 'vitest';
 import { launchBrowser, visit, type Visit } from './browser';
 
 const { url } = inject('instance');
-const axe = readFileSync(createRequire(import.meta.url).resolve('axe-core/axe.min.js'), 'utf8');
 const word = Date.now().toString(36);
 const leadAddress = `lead-${word}@people.example`;
 const guestAddress = `guest-${word}@people.example`;
@@ -193,69 +189,5 @@ describe('people, by keyboard alone', () => {
     expect(await way.getAttribute('href')).toBe(
       `/sign-in?callbackUrl=${encodeURIComponent(`${group}/members`)}`,
     );
-  });
-});
-
-describe.each([
-  { width: 1440, colorScheme: 'light' },
-  { width: 390, colorScheme: 'dark' },
-] as const)('the pages of people at $width, $colorScheme', ({ width, colorScheme }) => {
-  it('have no serious accessibility finding, no sideways scroll and no fault', async () => {
-    const person = await visit(browser, { width, colorScheme });
-    const { page } = person;
-    await signIn(page, 'lead@demo.beatnote.example');
-    const home = new URL(page.url()).pathname;
-    const findings = async (place: string) => {
-      await page.goto(`${url}${place}`);
-      await page.waitForLoadState('networkidle');
-      await page.evaluate(axe);
-      const { violations } = await page.evaluate(() =>
-        (globalThis as unknown as { axe: { run(): Promise<AxeResults> } }).axe.run(),
-      );
-      const [content, window] = await page.evaluate(() => [
-        document.documentElement.scrollWidth,
-        document.documentElement.clientWidth,
-      ]);
-      expect(content, place).toBeLessThanOrEqual(window);
-      return violations
-        .filter(({ impact }) => impact === 'serious' || impact === 'critical')
-        .map(({ id, nodes }) => `${place}: ${id}: ${nodes[0].target.join(' ')}`);
-    };
-    const all = [
-      ...(await findings(`${home}/members`)),
-      ...(await findings(`${home}/log`)),
-      ...(await findings('/?groups')),
-    ];
-    expect(person.faults).toEqual([]);
-    // To whoever doesn't administer the site there is no such page, in the words of any other that is missing.
-    await page.goto(`${url}/administration`);
-    const refused = await text(page);
-    await page.goto(`${url}/nothing-here`);
-    expect(await text(page)).toBe(refused);
-    await person.context.close();
-
-    const admin = await visit(browser, { width, colorScheme });
-    await signIn(admin.page, 'admin@demo.beatnote.example', '/administration');
-    await admin.page.goto(`${url}/administration`);
-    await admin.page.waitForLoadState('load');
-    await admin.page.evaluate(axe);
-    const { violations } = await admin.page.evaluate(() =>
-      (globalThis as unknown as { axe: { run(): Promise<AxeResults> } }).axe.run(),
-    );
-    all.push(
-      ...violations
-        .filter(({ impact }) => impact === 'serious' || impact === 'critical')
-        .map(({ id, nodes }) => `/administration: ${id}: ${nodes[0].target.join(' ')}`),
-    );
-    expect(all).toEqual([]);
-    const users = admin.page.getByRole('region', { name: 'Users' }).last();
-    expect(await users.innerText()).toContain('lead@demo.beatnote.example');
-    const [content, window] = await admin.page.evaluate(() => [
-      document.documentElement.scrollWidth,
-      document.documentElement.clientWidth,
-    ]);
-    expect(content).toBeLessThanOrEqual(window);
-    expect(admin.faults).toEqual([]);
-    await admin.context.close();
   });
 });
