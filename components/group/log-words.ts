@@ -10,6 +10,7 @@ const draws: Say = (subject, told) => (told('draws') ? `${subject} at draw ${tol
 
 /** What was done, after the name of who did it; the subject is put in where it stands. */
 const sentences: Readonly<Record<string, Say>> = {
+  'group.demo': () => 'filled the group with the demo’s measurements and notebooks',
   'group.create': () => 'created the group',
   'group.rename': (_, told) => `renamed the group from “${told('from')}” to “${told('name')}”`,
   'group.invite': (_, told, { details }) =>

@@ -5,6 +5,7 @@ import { detailAt } from '@/components/api/request';
 import { RequestMessage } from '@/components/api/request-message';
 import { Button, Buttons } from '@/components/ui/button';
 import { Field } from '@/components/ui/field';
+import { Message } from '@/components/ui/message';
 import { useSectionSave, type NotebookState } from './use-notebook';
 
 /** Changes the title in place. */
@@ -49,6 +50,18 @@ export function TitleForm({ state, onDone }: { state: NotebookState; onDone: () 
         </Button>
         <Button onClick={onDone}>Leave it</Button>
       </Buttons>
+      {section.conflict ? (
+        <Message
+          level="warning"
+          title={`Revision ${section.conflict.theirs.revision} was saved while you wrote; the title was not`}
+        >
+          <p>
+            {renamed
+              ? 'Both titles stand above: save yours in place of theirs, or leave it.'
+              : 'It left the title as it was. Nothing of yours is lost: save it again.'}
+          </p>
+        </Message>
+      ) : null}
       <RequestMessage error={section.error} title="The title was not saved" shown={['title']} />
     </form>
   );

@@ -4,9 +4,9 @@ import dynamic from 'next/dynamic';
 import { useState } from 'react';
 import { detailAt } from '@/components/api/request';
 import { RequestMessage } from '@/components/api/request-message';
-import { ConflictMessage } from '@/components/notebook/conflict-message';
+import { ConflictMessage, twoStand } from '@/components/notebook/conflict-message';
 import { SaveRow } from '@/components/notebook/save-row';
-import type { Draft } from '@/components/notebook/section-draft';
+import { conflictOf, type Draft } from '@/components/notebook/section-draft';
 import type { SectionFold } from '@/components/notebook/use-folds';
 import { useSectionSave, type NotebookState } from '@/components/notebook/use-notebook';
 import { Button, Buttons } from '@/components/ui/button';
@@ -75,7 +75,8 @@ export function StatementSection(props: StatementSectionProps) {
   const writing = editable && (opened || draft.changed);
   // Whoever only reads asks for nothing.
   const typeset = useTypeset(notebook, writing ? draft.value : '');
-  const { conflict, error } = section;
+  const { error } = section;
+  const conflict = conflictOf(draft, notebook, section);
   const faults = typeset.faults.length;
 
   async function save(base: number) {
@@ -110,9 +111,11 @@ export function StatementSection(props: StatementSectionProps) {
             revision={notebook.revision}
             saving={section.saving}
             fault={
-              faults
-                ? `${capital(counted(faults, 'reference'))} ${faults === 1 ? 'has' : 'have'} to be mended first.`
-                : undefined
+              conflict
+                ? twoStand
+                : faults
+                  ? `${capital(counted(faults, 'reference'))} ${faults === 1 ? 'has' : 'have'} to be mended first.`
+                  : undefined
             }
             onSave={() => void save(draft.base)}
           />

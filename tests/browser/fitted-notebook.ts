@@ -1,7 +1,12 @@
 import type { Page } from 'playwright-core';
 
-/** Signs a person in by the link that the mailbox of the instance shows. */
-export async function signIn(page: Page, url: string, email: string): Promise<void> {
+/** Signs a person in by the link that the mailbox of the instance shows, and waits for the place they come to. */
+export async function signIn(
+  page: Page,
+  url: string,
+  email: string,
+  place: string | RegExp = '**/groups/**',
+): Promise<void> {
   await page.goto(`${url}/sign-in`);
   await page.getByLabel('E-mail address').fill(email);
   await page.getByRole('button', { name: 'Mail me a link' }).click();
@@ -12,14 +17,18 @@ export async function signIn(page: Page, url: string, email: string): Promise<vo
     .first()
     .click();
   await page.getByRole('button', { name: /sign in/i }).click();
-  await page.waitForURL('**/groups/**');
+  await page.waitForURL(place);
 }
 
 /** Signs a person in by one of the one-time links of `freshLinks`. */
-export async function signInBy(page: Page, link: string): Promise<void> {
+export async function signInBy(
+  page: Page,
+  link: string,
+  place: string | RegExp = '**/groups/**',
+): Promise<void> {
   await page.goto(link);
   await page.getByRole('button', { name: /sign in/i }).click();
-  await page.waitForURL('**/groups/**');
+  await page.waitForURL(place);
 }
 
 /** Asks the API in the name of whoever is signed in on the page. */
