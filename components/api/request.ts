@@ -49,6 +49,7 @@ export async function send<T>(
   method: 'GET' | 'POST' | 'PATCH' | 'DELETE',
   path: string,
   body?: unknown,
+  signal?: AbortSignal,
 ): Promise<T> {
   let response: Response;
   try {
@@ -56,6 +57,7 @@ export async function send<T>(
       method,
       headers: body === undefined ? undefined : { 'Content-Type': 'application/json' },
       body: body === undefined ? undefined : JSON.stringify(body),
+      signal,
     });
   } catch {
     throw unreachable();
@@ -66,7 +68,9 @@ export async function send<T>(
   return answer as T;
 }
 
-export const read = <T>(path: string): Promise<T> => send<T>('GET', path);
+/** Asks for what stands at a path; an answer that isn't wanted any more is let go by its signal. */
+export const read = <T>(path: string, signal?: AbortSignal): Promise<T> =>
+  send<T>('GET', path, undefined, signal);
 
 /** Asks the API for bytes; an answer that isn't 2xx is thrown as a RequestError. */
 export async function readBytes(path: string): Promise<ArrayBuffer> {

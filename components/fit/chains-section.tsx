@@ -5,8 +5,9 @@ import { BrokenTone } from '@/components/ui/motif';
 import { Stamp } from '@/components/ui/num';
 import { Record } from '@/components/ui/record';
 import { Section, Subheading } from '@/components/ui/section';
+import { WordButton } from '@/components/ui/word-button';
 import { clockTime } from '@/components/words/dates';
-import { inWords, listed } from '@/components/words/counts';
+import { counted, inWords, listed } from '@/components/words/counts';
 import { shortName } from '@/components/words/people';
 import { shortHash } from '@/components/measurement/measurement-words';
 import { chainsSentence } from '@/components/notebook/fold-sentences';
@@ -42,30 +43,35 @@ export interface ChainsSectionProps {
   onStarted: (id: string) => Promise<unknown>;
 }
 
+const awayWords = {
+  server: 'The server can’t be reached; the fit goes on without this page.',
+  database: 'The database is away; the fit goes on when it is back.',
+} as const;
+
+/** Says what is away, once; the seconds to the next try are read by whoever looks, and not called out each second. */
 function Lost({ connection }: { connection: Connection }) {
-  if (connection.kind === 'trouble') {
-    return (
-      <Message level="warning" title={connection.message}>
-        <p>
-          Figures show what was last received, at {clockTime(connection.at)}. This page follows by itself.
-        </p>
-      </Message>
-    );
-  }
-  if (connection.kind !== 'lost') return null;
+  const away = connection.kind === 'away' ? connection : null;
   return (
-    <Message level="warning" title={`Connection lost at ${clockTime(connection.at)}`}>
-      <p>
-        Figures show what was last received. Trying again in {connection.secondsLeft} s.{' '}
-        <button
-          type="button"
-          className="min-h-target text-action underline decoration-1 underline-offset-[3px]"
-          onClick={connection.retry}
-        >
-          Try now
-        </button>
+    <>
+      <p role="status" className="sr-only">
+        {away ? awayWords[away.what] : ''}
       </p>
-    </Message>
+      {away ? (
+        <Message level="warning" quiet title={awayWords[away.what]}>
+          <p>
+            Figures show what was last received, at {clockTime(away.at)}. This page follows by itself
+            {away.secondsLeft === null ? (
+              '.'
+            ) : (
+              <>
+                , and tries again {away.secondsLeft > 0 ? `in ${counted(away.secondsLeft, 'second')}` : 'now'}
+                . <WordButton onClick={away.retry}>Try now</WordButton>
+              </>
+            )}
+          </p>
+        </Message>
+      ) : null}
+    </>
   );
 }
 

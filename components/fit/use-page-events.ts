@@ -6,21 +6,27 @@ import { isRunning } from './fit-words';
 import type { FitEvent, Notebook, Presence } from '@/lib/schemas';
 
 /**
- * State of the stream; `lost` says when, and when it is tried again, `trouble` what keeps the server from
- * reading the fit, `gone` that the notebook isn't there for this person.
+ * State of the stream; `away` says what doesn't answer, since when, and when it is tried again (null: the server follows it
+ * by itself), `gone` that the notebook isn't there for this person.
  */
-export type Connection =
-  | { kind: 'off' }
-  | { kind: 'live' }
-  | { kind: 'trouble'; at: string; message: string }
-  | { kind: 'lost'; at: string; secondsLeft: number; retry: () => void }
-  | { kind: 'gone' };
+export type Connection = { kind: 'off' } | { kind: 'live' } | Away | { kind: 'gone' };
+
+export interface Away {
+  kind: 'away';
+  what: 'server' | 'database';
+  at: string;
+  secondsLeft: number | null;
+  retry: () => void;
+}
 
 /** Seconds before the n-th new try. */
 const waits = [1, 2, 4, 8, 15, 30];
 
 /** A page that nobody looks at lets its stream go after so long: a browser holds only a few to one server. */
 const hiddenFor = 60_000;
+
+/** The server says every 15 s that it is there; a stream that is silent for so long is dead, whatever the network says. */
+const silentFor = 40_000;
 
 /** Live figures are drawn anew once a second at most; five with reduced motion. */
 function pace(): number {
@@ -78,62 +84,86 @@ export function usePageEvents(notebookId: string, fitId: string | null, events: 
     const path = `${notebookPath}/events${fitId ? `?fit=${fitId}` : ''}`;
     let source: EventSource | null = null;
     let tries = 0;
+    let since: string | null = null;
+    let what: Away['what'] = 'server';
+    let asked: AbortController | undefined;
     let ticking: number | undefined;
     let hiding: number | undefined;
+    let silence: number | undefined;
     const pacer = paced<FitEvent>((event) => onFit(event));
 
     const close = () => {
       window.clearInterval(ticking);
+      window.clearTimeout(silence);
+      asked?.abort();
       source?.close();
       source = null;
+    };
+    const hear = () => {
+      window.clearTimeout(silence);
+      silence = window.setTimeout(() => {
+        tries = Math.max(tries, 1);
+        lose();
+      }, silentFor);
+    };
+    const live = () => {
+      tries = 0;
+      since = null;
+      what = 'server';
+      setConnection({ kind: 'live' });
     };
     const open = () => {
       close();
       source = new EventSource(path);
-      source.addEventListener('notebook', (event: MessageEvent<string>) => {
-        tries = 0;
-        setConnection({ kind: 'live' });
-        onNotebook(parse<Notebook>(event));
+      hear();
+      const on = <T>(name: string, take: (value: T) => void) =>
+        source?.addEventListener(name, (event: MessageEvent<string>) => {
+          hear();
+          take(parse<T>(event));
+        });
+      on<unknown>('beat', () => undefined);
+      on<Notebook>('notebook', (notebook) => {
+        live();
+        onNotebook(notebook);
       });
-      source.addEventListener('presence', (event: MessageEvent<string>) =>
-        setOthers(parse<Presence>(event).others),
-      );
-      source.addEventListener('fit', (message: MessageEvent<string>) => {
-        const event = parse<FitEvent>(message);
-        tries = 0;
-        setConnection({ kind: 'live' });
+      on<Presence>('presence', (present) => setOthers(present.others));
+      on<FitEvent>('fit', (event) => {
+        live();
         pacer.take(event, !isRunning(event.status));
       });
-      source.addEventListener('trouble', (event: MessageEvent<string>) =>
-        setConnection({
-          kind: 'trouble',
-          at: new Date().toISOString(),
-          message: parse<{ message: string }>(event).message,
-        }),
-      );
+      on<unknown>('trouble', () => {
+        since ??= new Date().toISOString();
+        what = 'database';
+        setConnection({ kind: 'away', what, at: since, secondsLeft: null, retry: open });
+      });
       source.addEventListener('error', lose);
     };
 
     const lose = () => {
       close();
       setOthers([]);
-      const at = new Date().toISOString();
+      const at = (since ??= new Date().toISOString());
       let secondsLeft = waits[Math.min(tries, waits.length - 1)];
       tries += 1;
-      const tell = () => setConnection({ kind: 'lost', at, secondsLeft, retry: open });
-      // A stream that comes back at once is no news.
+      const tell = () => setConnection({ kind: 'away', what, at, secondsLeft, retry: open });
+      // A stream that comes back at once is no news; what else is said depends on what a plain question is answered.
       if (tries > 1) {
-        tell();
-        void read(notebookPath).catch((error: unknown) => {
-          if (asRequestError(error).status !== 404) return;
-          close();
-          setConnection({ kind: 'gone' });
-        });
+        const { signal } = (asked = new AbortController());
+        void read(notebookPath, signal)
+          .catch((error: unknown) => {
+            const { status, code } = asRequestError(error);
+            if (signal.aborted) return;
+            what = code === 'unavailable' ? 'database' : 'server';
+            if (status !== 404) return;
+            close();
+            setConnection({ kind: 'gone' });
+          })
+          .then(() => signal.aborted || tell());
       }
       ticking = window.setInterval(() => {
         secondsLeft -= 1;
+        if (tries > 1) tell();
         if (secondsLeft <= 0) open();
-        else if (tries > 1) tell();
       }, 1_000);
     };
 

@@ -7,9 +7,10 @@ import type { PageStream } from '@/components/fit/use-page-events';
 import { Message } from '@/components/ui/message';
 import { Record } from '@/components/ui/record';
 import { PageHead } from '@/components/ui/section';
+import { StateWord } from '@/components/ui/state-word';
 import { WordButton } from '@/components/ui/word-button';
 import { listed } from '@/components/words/counts';
-import { dayAndMonth } from '@/components/words/dates';
+import { clockTime, dayAndMonth } from '@/components/words/dates';
 import { shortName } from '@/components/words/people';
 import type { Fit, Measurement, Notebook } from '@/lib/schemas';
 import { TitleForm } from './notebook-title';
@@ -45,11 +46,16 @@ function Actions({ notebook, onDo }: { notebook: Notebook; onDo: (doing: Doing) 
 
 /** The others who have the notebook open, and whether this page hears of what they save. */
 function Company({ stream: { others, connection } }: { stream: PageStream }) {
-  if (connection.kind === 'lost') {
+  if (connection.kind === 'away') {
+    const { what, at, secondsLeft, retry } = connection;
     return (
       <Record>
-        What others save isn’t heard since the connection was lost.{' '}
-        <WordButton onClick={connection.retry}>Try now</WordButton>
+        <StateWord kind="warn">
+          {what === 'server' ? 'The server can’t be reached' : 'The database is away'} since {clockTime(at)}
+        </StateWord>
+        <br />
+        What others save is seen when it is back, which this page notices by itself. What you write stays here
+        until then. {secondsLeft === null ? null : <WordButton onClick={retry}>Try now</WordButton>}
       </Record>
     );
   }

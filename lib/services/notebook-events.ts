@@ -25,6 +25,8 @@ export interface NotebookWatcher {
   /** The whole notebook as this person sees it. */
   onNotebook(notebook: Notebook): void;
   onPresence(presence: Presence): void;
+  /** It can't be read for now; once for each outage, and the notebook is told anew after it. */
+  onTrouble(message: string): void;
   /** It was deleted, or this person may not read it any more. */
   onEnd(): void;
 }
@@ -33,6 +35,8 @@ interface Told {
   notebook: Notebook;
   text: string;
 }
+
+const databaseIsAway = 'The database is away. What is saved is seen when it is back.';
 
 /** Everybody of one role sees the same notebook: read, presented and written once for all who look. */
 const reads = new SharedReads<Told>();
@@ -106,7 +110,11 @@ export async function watchNotebook(access: Access, watcher: NotebookWatcher): P
       if (isShut(error)) {
         stop();
         watcher.onEnd();
-      } else log.warn({ err: error }, 'a watched notebook could not be read for now');
+      } else {
+        log.warn({ err: error }, 'a watched notebook could not be read for now');
+        if (told.notebook !== '' && !stopped) watcher.onTrouble(databaseIsAway);
+        told.notebook = '';
+      }
     }
     reading = false;
     next();
