@@ -71,7 +71,8 @@ describe.each([1440, 390])('a save that is refused because somebody else saved f
     });
     for (const { page } of [first, second]) {
       await page.goto(`${url}${place}`);
-      await page.waitForLoadState('load');
+      // Before the script has taken over nobody knows what is folded.
+      await page.waitForLoadState('networkidle');
       for (const name of ['measurement', 'statement']) await unfold(page, name);
     }
   });
