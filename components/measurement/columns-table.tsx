@@ -15,7 +15,8 @@ export const meanings: readonly { role: ColumnRole; label: string }[] = [
   { role: 'k2', label: 'k2, a hard side' },
   { role: 'k3', label: 'k3, the soft side' },
   { role: 'S', label: 'shape function S' },
-  { role: 'sigma', label: 'standard error of S' },
+  { role: 'B', label: 'bispectrum B of ζ' },
+  { role: 'sigma', label: 'standard error of S or B' },
 ];
 
 /** A cell's number as a file has it: plain in ordinary sizes, with an exponent else. */
@@ -58,7 +59,7 @@ const ofMapping: ReadonlySet<Finding['code']> = new Set([
   'unknown-column',
   'column-used-twice',
   'kappa-given-twice',
-  'bispectrum-not-read',
+  'shape-given-twice',
 ]);
 
 const isError = ({ level, part }: Finding): boolean => level === 'error' && (part ?? 'file') === 'file';

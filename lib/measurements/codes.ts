@@ -43,7 +43,17 @@ const table = {
   'unknown-column': 'Use a name from the header, or a number counted from 0.',
   'column-used-twice': 'Give each meaning a column of its own.',
   'kappa-given-twice': 'Map one of: kappa; kappaLo and kappaHi; kLong and kShort; k1, k2 and k3.',
-  'bispectrum-not-read': 'Hand in the shape function S instead of the bispectrum B.',
+  'shape-given-twice': 'Map either the shape function S or the bispectrum B.',
+  'spectrum-missing':
+    'Give amplitude A_s, tilt n_s and pivot k_* of the power spectrum below the columns, or in meta.spectrum.',
+  'spectrum-value':
+    'Give A_s itself, near 2e-9 (not ln 10^10 A_s), n_s near 1, k_* above zero, and h near 0.7.',
+  'spectrum-unused': 'Nothing has to be done: the file gives S, which needs no power spectrum.',
+  'unit-missing':
+    'Choose 1/Mpc or h/Mpc for wavenumbers and Mpc^6 or (Mpc/h)^6 for B, or write the units behind the names in the file.',
+  'hubble-missing': 'Give h, or all of them in units of one kind.',
+  'bispectrum-converted':
+    'Nothing has to be done: the formula stands below the columns, and the file is kept as it is.',
   // The measurement
   'units-differ': 'Give both wavenumbers in one unit, or in units that differ by a metric prefix alone.',
   'units-converted': 'Nothing has to be done: only the ratio of the wavenumbers is used.',

@@ -2,6 +2,16 @@ import { readName } from './delimiter';
 import { finding, MeasurementError, showName } from './errors';
 import type { ColumnMapping, ColumnRef, ColumnRole, Finding, ParsedTable } from './types';
 
+/** Names of a standard error that don't say of what. */
+const anyErrors = ['sigma', 'err', 'error', 'stderr', 'standarderror', 'std', 'sd', 'uncertainty'];
+
+/** Names of the standard error of a quantity, itself a letter. */
+function errorsOf(quantity: 's' | 'b'): string[] {
+  const before = ['sigma', 'err', 'error', 'stderr', 'std', 'sd', 'delta', 'd'];
+  const behind = ['err', 'error', 'sigma', 'stderr', 'std', 'sd'];
+  return [...before.map((word) => word + quantity), ...behind.map((word) => quantity + word)];
+}
+
 /** Names by which a meaning is recognised, the most exact first; letters and digits only, lower case, Greek spelt out. */
 const knownNames: Record<ColumnRole, string[]> = {
   kappa: [
@@ -43,27 +53,12 @@ const knownNames: Record<ColumnRole, string[]> = {
   k2: ['k2'],
   k3: ['k3'],
   S: ['s', 'shape', 'shapefunction', 'sshape', 'smean', 'sobs', 'sdata', 'smeasured'],
-  sigma: [
-    ...[
-      'sigmas',
-      'serr',
-      'serror',
-      'errs',
-      'errors',
-      'ssigma',
-      'stderrs',
-      'sstderr',
-      'sstd',
-      'stds',
-      'ssd',
-      'sds',
-    ],
-    ...['deltas', 'ds', 'sigma', 'err', 'error', 'stderr', 'standarderror', 'std', 'sd', 'uncertainty'],
-  ],
+  B: ['b', 'bk', 'bispectrum', 'bk1k2k3', 'bzeta', 'bsqueezed', 'bmean', 'bobs', 'bdata', 'bmeasured'],
+  sigma: [...errorsOf('s'), ...anyErrors],
 };
 
-/** Names of the bispectrum itself, which is not the shape function. */
-const bispectrumNames = ['b', 'bk', 'bispectrum', 'bk1k2k3', 'bsqueezed'];
+/** The same for a file that gives B and no S: the standard errors are those of B. */
+const namesWithB: Record<ColumnRole, string[]> = { ...knownNames, sigma: [...errorsOf('b'), ...anyErrors] };
 
 const roles = Object.keys(knownNames) as ColumnRole[];
 
@@ -74,6 +69,16 @@ const kappaWays: ColumnRole[][] = [
   ['kLong', 'kShort'],
   ['k1', 'k2', 'k3'],
 ];
+
+/** Those that B is turned into S by. */
+const wavenumberWays = kappaWays.slice(2);
+
+const needOfB = 'the wavenumbers that B needs (k_long and k_short, or k1, k2 and k3)';
+
+/** The first way of giving wavenumbers that is complete; none is an empty list. */
+function wavenumbersOf(columns: Partial<Record<ColumnRole, unknown>>): ColumnRole[] {
+  return wavenumberWays.find((way) => way.every((role) => columns[role] !== undefined)) ?? [];
+}
 
 /** What one column was recognised as; null where it is not used. */
 export interface RecognisedColumn {
@@ -105,27 +110,30 @@ function comparable(name: string): string[] {
   return [spell(name), spell(name.replace(/\([^)]*\)|\[[^\]]*\]/g, ''))];
 }
 
-function rankOf(name: string, role: ColumnRole): number {
+function rankOf(name: string, role: ColumnRole, known = knownNames): number {
   const forms = comparable(name);
   // "errors(S)" is a standard error, not S: the whole name decides before its part outside brackets.
   for (const form of forms) {
-    const owner = roles.find((other) => knownNames[other].includes(form));
-    if (owner !== undefined) return owner === role ? knownNames[role].indexOf(form) : -1;
+    const owner = roles.find((other) => known[other].includes(form));
+    if (owner !== undefined) return owner === role ? known[role].indexOf(form) : -1;
   }
   return -1;
 }
 
 /**
- * Recognises columns by their names: κ (or its edges, k_long and k_short, or k1, k2, k3), S and its standard error.
+ * Recognises columns by their names: κ (or its edges, k_long and k_short, or k1, k2, k3), S and its standard error; or, in a
+ * file without S, the bispectrum B, its standard error and the wavenumbers that it is turned into S by.
  * Upper and lower case, brackets, underscores and units do not matter. Two columns of equally good names are an
  * `ambiguous-column`; what is missing is a `missing-column` that says what the file has.
  */
 export function recogniseColumns(table: ParsedTable): Recognition {
   const found: Partial<Record<ColumnRole, number>> = {};
   const findings: Finding[] = [];
+  const named = (role: ColumnRole) => table.columns.some(({ name }) => rankOf(name, role) >= 0);
+  const known = !named('S') && named('B') ? namesWithB : knownNames;
   for (const role of roles) {
     const ranked = table.columns
-      .map(({ name }, column) => ({ column, rank: rankOf(name, role) }))
+      .map(({ name }, column) => ({ column, rank: rankOf(name, role, known) }))
       .filter(({ rank }) => rank >= 0)
       .sort((a, b) => a.rank - b.rank);
     if (ranked.length === 0) continue;
@@ -138,16 +146,14 @@ export function recogniseColumns(table: ParsedTable): Recognition {
   }
   const mapping = chooseKappa(found);
   if (found.S !== undefined) mapping.S = found.S;
+  else if (found.B !== undefined) {
+    mapping.B = found.B;
+    for (const role of wavenumbersOf(found)) mapping[role] = found[role];
+  }
   if (found.sigma !== undefined) mapping.sigma = found.sigma;
   const ambiguous = findings.length > 0;
   const missing = missingFrom(mapping, found);
-  const bispectrum = table.columns.findIndex(({ name }) =>
-    comparable(name).some((form) => bispectrumNames.includes(form)),
-  );
-  if (found.S === undefined && bispectrum >= 0) {
-    const message = `Column ${bispectrum + 1} is a bispectrum B, which is not read yet.`;
-    findings.push(finding('bispectrum-not-read', 'error', message, { part: 'file', column: bispectrum + 1 }));
-  } else if (missing.length > 0 && !ambiguous) findings.push(missingColumn(table, missing));
+  if (missing.length > 0 && !ambiguous) findings.push(missingColumn(table, missing));
   const how = table.columns.map(({ name }, column) => ({
     column,
     name,
@@ -172,7 +178,8 @@ function missingFrom(mapping: ColumnMapping, found: Partial<Record<ColumnRole, n
     const rest = begun?.filter((role) => found[role] === undefined).map(roleName);
     missing.push(rest ? rest.join(' and ') : 'κ (or its edges, or k_long and k_short)');
   }
-  if (mapping.S === undefined) missing.push('S');
+  if (mapping.S === undefined && mapping.B === undefined) missing.push('S');
+  if (mapping.B !== undefined && wavenumbersOf(mapping).length === 0) missing.push(needOfB);
   return missing;
 }
 
@@ -205,7 +212,7 @@ export function roleName(role: ColumnRole): string {
     kappaHi: 'the upper edge in κ',
     kLong: 'k_long',
     kShort: 'k_short',
-    sigma: 'the standard error of S',
+    sigma: 'the standard error',
   };
   return names[role] ?? role;
 }
@@ -256,8 +263,8 @@ export function requireColumns(
 }
 
 /**
- * A mapping by numbers that can be applied: S and exactly one way of giving κ (κ beside its edges is one way).
- * Throws what `requireColumns` throws, `missing-column` or `kappa-given-twice`.
+ * A mapping by numbers that can be applied: S or B, and exactly one way of giving κ (κ beside its edges is one way). With B, which needs
+ * wavenumbers, κ or its edges may stand beside them. Throws what `requireColumns` throws, `missing-column`, `shape-given-twice` or `kappa-given-twice`.
  */
 export function completeMapping(
   table: ParsedTable,
@@ -268,12 +275,19 @@ export function completeMapping(
   const missing: string[] = [];
   if (begun.length === 0) missing.push('κ');
   for (const way of begun) missing.push(...way.filter((role) => columns[role] === undefined).map(roleName));
-  if (columns.S === undefined) missing.push('S');
+  if (columns.S === undefined && columns.B === undefined) missing.push('S');
+  const sides = columns.B === undefined ? [] : wavenumbersOf(columns);
+  if (columns.B !== undefined && sides.length === 0) missing.push(needOfB);
   if (missing.length > 0) {
     const message = `The mapping has no column for ${missing.join(', nor for ')}.`;
     throw new MeasurementError('missing-column', message, { part: 'file' });
   }
-  const ways = begun.filter((way) => !(way[0] === 'kappa' && columns.kappaLo !== undefined));
+  if (columns.S !== undefined && columns.B !== undefined) {
+    const message = 'Both the shape function S and the bispectrum B are mapped.';
+    throw new MeasurementError('shape-given-twice', message, { part: 'file', column: columns.B + 1 });
+  }
+  const besideB = (way: ColumnRole[]) => begun.length > 1 && way.every((role) => sides.includes(role));
+  const ways = begun.filter((way) => !(way[0] === 'kappa' && columns.kappaLo !== undefined) && !besideB(way));
   if (ways.length > 1) {
     const message = `κ is given in ${ways.length} ways: ${ways.map((way) => way.map(roleName).join(' and ')).join('; ')}.`;
     throw new MeasurementError('kappa-given-twice', message, { part: 'file' });

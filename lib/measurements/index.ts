@@ -6,6 +6,7 @@ export { parseMeasurement, type ParseOptions } from './parse-measurement';
 export { parseMatrix, type MatrixOptions } from './parse-matrix';
 export { recogniseColumns, type Recognition, type RecognisedColumn } from './columns';
 export { applyMapping, summarise, type AppliedMapping } from './measurement';
+export { shapeFactor } from './spectrum';
 export { checkCovariance, permuteMatrix, type CovarianceCheck, type CovarianceOptions } from './covariance';
 export { checkMockCount, covarianceFromMocks, hartlapFactor, type MockCovariance } from './mocks';
 export { findSuspiciousPoints, type SuspiciousPoint } from './suspicious-points';

@@ -1,3 +1,4 @@
+import { convertBispectrum, type ConvertedShape } from './bispectrum';
 import { completeMapping, roleName } from './columns';
 import { finding, FindingList, showCell, showNumber } from './errors';
 import { median } from './mocks';
@@ -11,6 +12,7 @@ import type {
   Measurement,
   MeasurementSummary,
   ParsedTable,
+  PowerSpectrum,
 } from './types';
 
 /** Largest κ of a closed triangle: κ = 2k3/(k1+k2) ≤ 2. */
@@ -27,6 +29,8 @@ export interface AppliedMapping {
   /** Null where κ cannot be ordered (a κ that is no number or not positive). S and σ may hold NaN where a finding says so. */
   measurement: Measurement | null;
   findings: Finding[];
+  /** What B was turned into S by; null where the file gives S. */
+  conversion: Pick<ConvertedShape, 'factors' | 'spectrum'> | null;
 }
 
 /** Adds findings of each code up to a limit, so that one fault in every row is not ten thousand lines. */
@@ -55,13 +59,22 @@ class RowFindings {
  * Takes the mapped columns as a measurement, rows in ascending κ, and checks them: κ and σ positive, edges in order and
  * without overlap, κ inside its bin, no κ twice, triangles closed, squeezed.
  *
- * κ is the κ column, else √(lo·hi), else k_long/k_short, else 2k3/(k1+k2). Throws MeasurementError where the
+ * κ is the κ column, else √(lo·hi), else k_long/k_short, else 2k3/(k1+k2). A bispectrum B becomes S by the power spectrum, and
+ * without one there is no measurement. Throws MeasurementError where the
  * mapping names no such column or does not give S and κ.
  */
-export function applyMapping(table: ParsedTable, mapping: ColumnMapping): AppliedMapping {
+export function applyMapping(
+  table: ParsedTable,
+  mapping: ColumnMapping,
+  spectrum: PowerSpectrum | null = null,
+): AppliedMapping {
   const columns = completeMapping(table, mapping);
   const take = (role: ColumnRole) => (columns[role] === undefined ? null : table.data[columns[role]]);
-  const [lo, hi, S, sigma] = [take('kappaLo'), take('kappaHi'), take('S'), take('sigma')];
+  const [lo, hi] = [take('kappaLo'), take('kappaHi')];
+  const fromB = columns.B === undefined ? null : convertBispectrum(table, columns, spectrum ?? {});
+  const conversion = fromB?.converted ?? null;
+  const S = fromB ? (conversion?.S ?? null) : take('S');
+  const sigma = conversion ? conversion.sigma : take('sigma');
   const found = new RowFindings();
   findMissing(table, columns, found);
   const { kappa, column } = kappaOf(table, columns, found);
@@ -79,7 +92,10 @@ export function applyMapping(table: ParsedTable, mapping: ColumnMapping): Applie
         );
     });
   }
-  if (!ordered || !S) return { measurement: null, findings: found.toFindings() };
+  const ofSpectrum = fromB?.findings ?? [];
+  if (!ordered || !S) {
+    return { measurement: null, findings: [...ofSpectrum, ...found.toFindings()], conversion };
+  }
 
   const order = Int32Array.from(kappa, (_, row) => row).sort((a, b) => kappa[a] - kappa[b] || a - b);
   const permute = (values: Float64Array | null) =>
@@ -109,7 +125,7 @@ export function applyMapping(table: ParsedTable, mapping: ColumnMapping): Applie
       () => 'The rows are not in ascending κ; they were sorted.',
     );
   }
-  return { measurement, findings: found.toFindings() };
+  return { measurement, findings: [...ofSpectrum, ...found.toFindings()], conversion };
 }
 
 type Columns = Partial<Record<ColumnRole, number>>;

@@ -13,6 +13,8 @@ import type {
   MeasurementSummary,
   NumericMatrix,
   ParsedTable,
+  PowerSpectrum,
+  ResolvedSpectrum,
 } from './types';
 
 /**
@@ -35,6 +37,8 @@ export interface PreflightInput {
   mocks?: UploadedFile | NumericMatrix | null;
   /** Recognised by names where it is left out. */
   mapping?: ColumnMapping | null;
+  /** The power spectrum by which a bispectrum B becomes S; its covariance and mocks are of B too. */
+  spectrum?: PowerSpectrum | null;
   /** Number of mocks from which a covariance was estimated. */
   mockCount?: number | null;
   /** Leaves values of the measurement out of every message. */
@@ -59,6 +63,8 @@ export interface PreflightPassed {
   covarianceSource: CovarianceSource;
   /** Mean of the mocks, if there were any. */
   mockMean: Float64Array | null;
+  /** What a bispectrum was turned into S by; null where the file gives S. */
+  spectrum: ResolvedSpectrum | null;
   checks: Finding[];
 }
 
@@ -102,11 +108,17 @@ export function preflight(input: PreflightInput): PreflightResult {
   const mapping = table && findMapping(checks, table, input.mapping ?? null);
   const found = table ? relevantFindings(table, mapping) : [];
   checks.push(...(withoutValues ? found.map(withhold) : found));
-  const applied = table && mapping && attempt(checks, () => applyMapping(table, mapping));
+  const given = input.spectrum ?? null;
+  const applied = table && mapping && attempt(checks, () => applyMapping(table, mapping, given));
+  if (given && mapping && mapping.B === undefined) {
+    const message = 'A power spectrum was given, and the file holds the shape function S.';
+    checks.push(finding('spectrum-unused', 'warning', message, { part: 'file' }));
+  }
   const measurement = applied?.measurement ?? null;
   if (applied) checks.push(...applied.findings);
   if (table) checks.push(...checkSize(table));
-  const known = resolveCovariance(input, checks, measurement, table);
+  const factors = applied?.conversion?.factors ?? null;
+  const known = resolveCovariance(input, checks, measurement, table, factors);
   if (table && measurement) checks.push(...passedChecks(checks, measurement));
   if (table && measurement && known) {
     checks.push(...suspiciousPoints(table, measurement, known.covariance, withoutValues));
@@ -114,7 +126,8 @@ export function preflight(input: PreflightInput): PreflightResult {
   checks.sort((a, b) => levels[a.level] - levels[b.level]);
   const summary = measurement && summarise(measurement);
   if (table && mapping && measurement && summary && known && !hasErrors(checks)) {
-    return { ok: true, table, mapping, measurement, summary, ...known, checks };
+    const spectrum = applied?.conversion?.spectrum ?? null;
+    return { ok: true, table, mapping, measurement, summary, spectrum, ...known, checks };
   }
   return { ok: false, table, mapping, measurement, summary, checks };
 }
@@ -168,6 +181,7 @@ function resolveCovariance(
   checks: Finding[],
   measurement: Measurement | null,
   table: ParsedTable | null,
+  factors: Float64Array | null,
 ): KnownCovariance | null {
   const options = { maxBytes: input.maxBytes, withoutValues: input.withoutValues };
   const read = (upload: UploadedFile | NumericMatrix, part: 'covariance' | 'mocks') => {
@@ -187,10 +201,25 @@ function resolveCovariance(
   }
   // Against what cannot be read, or is too large, nothing more can be checked.
   if (!measurement || !table || table.rows > MAX_BINS || hasRaggedRows(covariance ?? mocks)) return null;
-  if (covariance) return fromCovariance(covariance, measurement, input.mockCount ?? null, checks);
-  if (mocks) return fromMocks(mocks, measurement, input.mockCount ?? null, checks);
+  if (covariance)
+    return fromCovariance(scaled(covariance, factors, true), measurement, input.mockCount ?? null, checks);
+  if (mocks) return fromMocks(scaled(mocks, factors, false), measurement, input.mockCount ?? null, checks);
   if (input.covariance || input.mocks) return null;
   return fromErrors(measurement, checks);
+}
+
+/**
+ * A matrix of B as one of S: every column by its bin's factor, and of a covariance every row too. A new one: what was read may be
+ * checked again with another spectrum. Of a wrong size it stays as it is, which is found out next.
+ */
+function scaled(matrix: NumericMatrix, factors: Float64Array | null, rowsToo: boolean): NumericMatrix {
+  const { rows, columns, data } = matrix;
+  if (!factors || columns !== factors.length || (rowsToo && rows !== columns)) return matrix;
+  const scaledData = data.map((value, k) => {
+    const ofRow = rowsToo ? factors[Math.floor(k / columns)] : 1;
+    return value * factors[k % columns] * ofRow;
+  });
+  return { ...matrix, data: scaledData };
 }
 
 function hasRaggedRows(matrix: NumericMatrix | null): boolean {

@@ -60,7 +60,37 @@ export interface ColumnMapping {
   k2?: ColumnRef;
   k3?: ColumnRef;
   S?: ColumnRef;
+  /** The bispectrum of ζ, in the place of S. */
+  B?: ColumnRef;
+  /** Standard error of S, or of B. */
   sigma?: ColumnRef;
+}
+
+/** The power spectrum by which B becomes S: P(k) = A_s (k/k_*)^(n_s − 1), dimensionless. Units as they are written. */
+export interface PowerSpectrum {
+  amplitude?: number;
+  /** n_s; 1 for none, and then the pivot doesn't matter. */
+  tilt?: number;
+  pivot?: number;
+  /** `1/Mpc` unless given. */
+  pivotUnit?: string;
+  /** Where the file doesn't say it: `1/Mpc`, `h/Mpc`. */
+  wavenumberUnit?: string;
+  /** Where the file doesn't say it: `Mpc^6`, `(Mpc/h)^6`. */
+  bispectrumUnit?: string;
+  /** H₀/(100 km/s/Mpc), where units with and without h meet. */
+  h?: number;
+}
+
+/** The same with everything that was used, and null for what was not. */
+export interface ResolvedSpectrum {
+  amplitude: number;
+  tilt: number;
+  pivot: number | null;
+  pivotUnit: string | null;
+  wavenumberUnit: string;
+  bispectrumUnit: string;
+  h: number | null;
 }
 
 /** What a column can mean. */

@@ -21,6 +21,29 @@ export function wavenumberUnit(text: string): WavenumberUnit | null {
   return { hubble: before || behind ? 1 : 0, perMpc: 1 / PREFIXES[over ?? power] };
 }
 
+/**
+ * Reads the unit of a bispectrum, the sixth power of a length: `Mpc^6`, `(Mpc/h)^6`, `Mpc**6 h**-6`, `h^-6 Mpc^6`, … Its
+ * `perMpc` is that of the inverse length, as of a wavenumber. Null for anything else.
+ */
+export function bispectrumUnit(text: string): WavenumberUnit | null {
+  const plain = text
+    .replace(/[\s*·^[\]{}$\\]/g, '')
+    .replaceAll('−', '-')
+    .replace('⁻⁶', '-6')
+    .replace('⁻¹', '-1')
+    .replace('⁶', '6');
+  const length = '(Gpc|Mpc|kpc|pc)';
+  const bare = new RegExp(`^\\(?${length}\\)?6$`).exec(plain);
+  if (bare) return { hubble: 0, perMpc: 1 / PREFIXES[bare[1]] };
+  const withHubble = [
+    `\\(${length}(?:/h|h-1)\\)6`,
+    `\\(h-1${length}\\)6`,
+    `${length}6(?:/h6|h-6)`,
+    `h-6${length}6`,
+  ].flatMap((form) => new RegExp(`^${form}$`).exec(plain)?.[1] ?? []);
+  return withHubble.length ? { hubble: 1, perMpc: 1 / PREFIXES[withHubble[0]] } : null;
+}
+
 /** True where a column says that it has no unit. */
 export function isDimensionless(text: string): boolean {
   return /^\s*(?:1|none|dimensionless|-+|)\s*$/i.test(text);

@@ -37,7 +37,7 @@ describe('columns recognised by name', () => {
     ['kappa,value', 'missing-column', /no column for S\. The file has kappa, value\./],
     ['x,S', 'missing-column', /no column for κ/],
     ['k_long,S', 'missing-column', /no column for k_short/],
-    ['kappa,B', 'bispectrum-not-read', /Column 2/],
+    ['kappa,B', 'missing-column', /wavenumbers that B needs/],
     ['S,s,kappa', 'ambiguous-column', /Columns 1 and 2/],
     ['0.1,0.2', 'missing-column', /2 columns without names/],
     [Array.from({ length: 30 }, (_, j) => j + 1).join(','), 'looks-like-matrix', /30 columns/],
