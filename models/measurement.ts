@@ -23,6 +23,17 @@ export interface StoredFile {
   sha256: string;
 }
 
+/** Power spectrum P(k) = amplitude · (k/pivot)^(tilt − 1) with the units of the file; null for what wasn't used. */
+export interface Spectrum {
+  amplitude: number;
+  tilt: number;
+  pivot: number | null;
+  pivotUnit: string | null;
+  wavenumberUnit: string;
+  bispectrumUnit: string;
+  h: number | null;
+}
+
 /**
  * One version of a measurement. Numbers are little-endian float64: `points` holds kappa, kappaLo, kappaHi (NaN
  * where there are no edges), S one after the other, each `rows` long; `covariance` is rows × rows, row-major.
@@ -47,6 +58,8 @@ export class MeasurementVersion extends Model<
   declare points: Buffer;
   declare covariance: Buffer;
   declare truth: Record<string, number> | null;
+  /** What the file's bispectrum was turned into S by; null where it gives S. */
+  declare spectrum: CreationOptional<Spectrum | null>;
   declare createdBy: string;
   declare createdAt: Date;
 }
@@ -84,6 +97,7 @@ export function initMeasurementModels(sequelize: Sequelize): void {
       points: bytes(),
       covariance: bytes(),
       truth: json(true),
+      spectrum: json(true),
       createdBy: foreignKey(),
       createdAt: instant(),
     },

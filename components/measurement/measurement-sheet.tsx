@@ -15,16 +15,17 @@ import { Sheet } from '@/components/ui/sheet';
 import { Sym } from '@/components/ui/sym';
 import { DataTable } from '@/components/ui/table';
 import { checksState } from '@/components/group/measurement-index';
-import { capital, counted, fileSize, plain } from '@/components/words/counts';
+import { capital, counted, fileSize, listed, plain } from '@/components/words/counts';
 import { KappaRange } from '@/components/words/kappa';
 import { shortName } from '@/components/words/people';
 import { summarise } from '@/lib/measurements/measurement';
-import type { Measurement } from '@/lib/schemas';
+import type { Measurement, Spectrum } from '@/lib/schemas';
 import { ChecksTable } from './checks-table';
 import { CorrelationBody } from './correlation-section';
 import { DeleteBody, DescribeForm } from './manage-measurement';
 import { MeasurementFigure } from './measurement-figure';
 import { covarianceInWords } from './measurement-words';
+import { SpectrumFormula } from './spectrum-fields';
 import { RestingBody, VersionsBody } from './versions-section';
 
 const partWords = { file: 'points', covariance: 'covariance', mocks: 'mocks' } as const;
@@ -43,8 +44,25 @@ function coverage({ points }: Measurement) {
   });
 }
 
+/** "the bispectrum B in (Mpc/h)^6 with k in h/Mpc, by Aₛ = 2.1 × 10⁻⁹, nₛ = 0.965, k∗ = 0.05 1/Mpc and h = 0.7" */
+function OfBispectrum({ spectrum }: { spectrum: Spectrum }) {
+  const { amplitude, tilt, pivot, pivotUnit, wavenumberUnit, bispectrumUnit, h } = spectrum;
+  const parts = [
+    `Aₛ = ${plain(amplitude)}`,
+    `nₛ = ${plain(tilt)}`,
+    ...(pivot === null ? [] : [`k∗ = ${plain(pivot)} ${pivotUnit}`]),
+    ...(h === null ? [] : [`h = ${plain(h)}`]),
+  ];
+  return (
+    <>
+      The bispectrum <Sym base="B" /> in {bispectrumUnit} with <Sym base="k" /> in {wavenumberUnit}, by{' '}
+      {listed(parts)}
+    </>
+  );
+}
+
 function Facts({ measurement }: { measurement: Measurement }) {
-  const { rows, kappaMin, kappaMax, hasBinEdges, simulated, version } = measurement;
+  const { rows, kappaMin, kappaMax, hasBinEdges, simulated, version, spectrum } = measurement;
   const { resolution, nyquist } = coverage(measurement);
   return (
     <DefinitionList
@@ -69,6 +87,7 @@ function Facts({ measurement }: { measurement: Measurement }) {
             </>
           ),
         },
+        ...(spectrum ? [{ term: 'From', text: <OfBispectrum spectrum={spectrum} /> }] : []),
         { term: 'Origin', text: simulated ? 'Simulated' : 'Measured' },
       ]}
     />
@@ -193,6 +212,7 @@ export function MeasurementSheet({ initial, groupName }: { initial: Measurement;
       </PageHead>
       <Section id="points" number={1} title="Points">
         <Facts measurement={measurement} />
+        {measurement.spectrum ? <SpectrumFormula /> : null}
         <MeasurementFigure
           measurement={measurement}
           number={1}

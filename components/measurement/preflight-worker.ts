@@ -7,6 +7,7 @@ import {
   type ColumnMapping,
   type NumericMatrix,
   type ParsedTable,
+  type PowerSpectrum,
   type UploadedFile,
 } from '@/lib/measurements';
 import { viewOf, type PreflightView } from './preflight-view';
@@ -25,6 +26,8 @@ export interface PreflightRequest {
   /** Which column means what; null lets the names decide. */
   mapping: ColumnMapping | null;
   mockCount: number | null;
+  /** By which a bispectrum becomes S; null where nothing was given. */
+  spectrum: PowerSpectrum | null;
 }
 
 export type PreflightReply = { id: number; view: PreflightView } | { id: number; fault: string };
@@ -56,7 +59,7 @@ function matrix(file: WorkerFile | undefined): NumericMatrix | UploadedFile | nu
   return readOnce(`${part}:${key}`, ({ bytes, name }) => parseMatrix(bytes, name, { part }));
 }
 
-function run({ files, mapping, mockCount }: PreflightRequest): PreflightView {
+function run({ files, mapping, mockCount, spectrum }: PreflightRequest): PreflightView {
   const started = performance.now();
   for (const { key, name, bytes } of files) {
     if (bytes) bytesByKey.set(key, { bytes: new Uint8Array(bytes), name });
@@ -71,6 +74,7 @@ function run({ files, mapping, mockCount }: PreflightRequest): PreflightView {
     mocks: matrix(byPart('mocks')),
     mapping,
     mockCount,
+    spectrum,
   });
   const shown = mapping ?? (result.table ? recogniseColumns(result.table).mapping : {});
   return viewOf(result, shown, performance.now() - started);

@@ -15,12 +15,13 @@ import { PageHead, Section } from '@/components/ui/section';
 import { Sheet } from '@/components/ui/sheet';
 import { shortName } from '@/components/words/people';
 import { formatCount, formatPercent } from '@/lib/figures/format';
-import type { ColumnMapping } from '@/lib/measurements';
+import type { ColumnMapping, PowerSpectrum } from '@/lib/measurements';
 import type { MeasurementCreated, UploadMeta } from '@/lib/schemas';
 import { addFiles, changePart } from './chosen-files';
 import { ChecksTable } from './checks-table';
-import { ColumnsTable } from './columns-table';
+import { ColumnsTable, withMapping } from './columns-table';
 import { DropZone } from './drop-zone';
+import { SpectrumFields } from './spectrum-fields';
 import { PreflightFigure } from './preflight-figure';
 import { parseTruth } from './truth-words';
 import { NextVersion, type NextOf } from './next-version';
@@ -40,6 +41,7 @@ export function UploadSheet({ groupId, groupName, email, onto }: UploadSheetProp
   const router = useRouter();
   const [files, setFiles] = useState<ChosenFile[]>([]);
   const [mapping, setMapping] = useState<ColumnMapping | null>(null);
+  const [spectrum, setSpectrum] = useState<PowerSpectrum | null>(null);
   const [mockCount, setMockCount] = useState<number | null>(null);
   const [name, setName] = useState('');
   const [named, setNamed] = useState(false);
@@ -51,7 +53,9 @@ export function UploadSheet({ groupId, groupName, email, onto }: UploadSheetProp
   const serial = useRef(0);
 
   const withCovariance = files.some(({ part }) => part === 'covariance');
-  const { view, reading, fault } = usePreflight(files, mapping, withCovariance ? mockCount : null);
+  const { view, reading, fault } = usePreflight(files, mapping, withCovariance ? mockCount : null, spectrum);
+  const columns = view ? withMapping(view.columns, mapping) : [];
+  const ofB = columns.some(({ role }) => role === 'B');
   const points = files.find(({ part }) => part === 'file');
   const put = parseTruth(simulated ? truth : '');
   const now = { files: files.length, reading, named: onto !== undefined || name.trim() !== '', share };
@@ -61,6 +65,7 @@ export function UploadSheet({ groupId, groupName, email, onto }: UploadSheetProp
     const nextPoints = next.find(({ part }) => part === 'file');
     if (nextPoints?.key !== points?.key) {
       setMapping(null);
+      setSpectrum(null);
       if (!named) setName(nextPoints ? nameFromFile(nextPoints.file.name) : '');
     }
     setError(null);
@@ -80,6 +85,7 @@ export function UploadSheet({ groupId, groupName, email, onto }: UploadSheetProp
       ...(onto ? {} : { name: name.trim() }),
       ...(description.trim() ? { description: description.trim() } : {}),
       ...(mapping ? { columns: mapping } : {}),
+      ...(ofB && spectrum ? { spectrum } : {}),
       ...(withCovariance && mockCount !== null ? { mockCount } : {}),
       ...(simulated ? { simulated } : {}),
       ...('values' in put && put.values ? { truth: put.values } : {}),
@@ -187,7 +193,10 @@ export function UploadSheet({ groupId, groupName, email, onto }: UploadSheetProp
         }
       >
         {view?.columns.length ? (
-          <ColumnsTable view={view} mapping={mapping} onMapping={setMapping} />
+          <>
+            <ColumnsTable view={view} mapping={mapping} onMapping={setMapping} />
+            {ofB ? <SpectrumFields columns={columns} value={spectrum ?? {}} onValue={setSpectrum} /> : null}
+          </>
         ) : (
           <p className="text-ink-2">The columns stand here once a file is read.</p>
         )}

@@ -1,7 +1,7 @@
 'use client';
 
 import { useEffect, useRef, useState } from 'react';
-import type { ColumnMapping } from '@/lib/measurements';
+import type { ColumnMapping, PowerSpectrum } from '@/lib/measurements';
 import type { PreflightReply, PreflightRequest, WorkerFile } from './preflight-worker';
 import type { PreflightView } from './preflight-view';
 
@@ -30,6 +30,7 @@ export function usePreflight(
   files: readonly ChosenFile[],
   mapping: ColumnMapping | null,
   mockCount: number | null,
+  spectrum: PowerSpectrum | null,
 ): Preflight {
   const [state, setState] = useState<Preflight>(nothing);
   const worker = useRef<Worker | null>(null);
@@ -74,12 +75,12 @@ export function usePreflight(
         transfer.push(bytes);
       }
       worker.current.postMessage(
-        { id, files: parts, mapping, mockCount } satisfies PreflightRequest,
+        { id, files: parts, mapping, mockCount, spectrum } satisfies PreflightRequest,
         transfer,
       );
     };
     void run();
-  }, [files, mapping, mockCount]);
+  }, [files, mapping, mockCount, spectrum]);
 
   return state;
 }

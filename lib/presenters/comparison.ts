@@ -29,6 +29,8 @@ export interface Question {
   inputs: Snapshot['inputs'];
   measurementVersion: number;
   cuts: Snapshot['cuts'];
+  /** What the file's bispectrum was turned into S by. */
+  spectrum?: Snapshot['spectrum'];
   mockCount: number | null;
   kind: string;
 }
@@ -38,6 +40,7 @@ export const questionOf = (snapshot: Omit<Question, 'kind'> & Pick<Snapshot, 'li
   inputs: snapshot.inputs,
   measurementVersion: snapshot.measurementVersion,
   cuts: snapshot.cuts,
+  spectrum: snapshot.spectrum,
   mockCount: snapshot.mockCount,
   kind: comparingKind(snapshot.likelihood.kind),
 });
@@ -49,8 +52,14 @@ const binsOf = ({ kappaMin, kappaMax, excluded = [] }: Question['cuts']) => [
   excluded.map(({ bin }) => bin),
 ];
 
-const keyOf = ({ inputs, cuts, mockCount, kind }: Question): string =>
-  JSON.stringify([inputs.map(({ part, sha256 }) => [part, sha256]), binsOf(cuts), mockCount, kind]);
+const keyOf = ({ inputs, cuts, spectrum, mockCount, kind }: Question): string =>
+  JSON.stringify([
+    inputs.map(({ part, sha256 }) => [part, sha256]),
+    binsOf(cuts),
+    spectrum ?? null,
+    mockCount,
+    kind,
+  ]);
 
 /** Why a set can't be compared with the notebook as it stands: "it rests on version 1 of the measurement and has other cuts" */
 function difference(set: Question, standing: Question): string {
@@ -58,7 +67,9 @@ function difference(set: Question, standing: Question): string {
   const reasons = [
     ...(set.measurementVersion !== standing.measurementVersion
       ? [`it rests on version ${set.measurementVersion} of the measurement`]
-      : same(set.inputs, standing.inputs) && set.mockCount === standing.mockCount
+      : same(set.inputs, standing.inputs) &&
+          same(set.spectrum, standing.spectrum) &&
+          set.mockCount === standing.mockCount
         ? []
         : ['it rests on other files']),
     ...(same(binsOf(set.cuts), binsOf(standing.cuts)) ? [] : ['it keeps other bins']),

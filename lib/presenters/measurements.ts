@@ -25,6 +25,7 @@ export type VersionHead = Pick<
   | 'covarianceSource'
   | 'mockCount'
   | 'truth'
+  | 'spectrum'
   | 'files'
   | 'createdAt'
 >;
@@ -112,6 +113,7 @@ export function presentMeasurement(
     newest: Math.max(...around.versions.map((line) => line.version)),
     versions: around.versions,
     resting: around.resting,
+    spectrum: version.spectrum ?? null,
     truth: measurement.blind ? null : version.truth,
     files: version.files.map(({ part, fileName, bytes, sha256 }) => ({ part, fileName, bytes, sha256 })),
     checks: presentChecks(version),

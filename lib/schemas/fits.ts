@@ -1,6 +1,7 @@
 import { z } from 'zod';
 import { idSchema, instantSchema, numberOrNull, sha256Schema } from './shared';
 import { fitStatusSchema, likelihoodSchema, cutsSchema } from './notebooks';
+import { spectrumSchema } from './measurements';
 import { priorSchema } from './priors';
 
 export const defaultFit = { replicas: 4, maxDraws: 20_000, rhat: 1.01, ess: 400 } as const;
@@ -30,6 +31,8 @@ export const snapshotSchema = z.object({
   measurementVersion: z.number().int(),
   /** Which columns of the file are what. */
   mapping: z.record(z.string(), z.unknown()),
+  /** What the bispectrum of the file was turned into S by; absent where the file gives S. */
+  spectrum: spectrumSchema.optional(),
   cuts: cutsSchema,
   likelihood: likelihoodSchema,
   mockCount: z.number().int().nullable(),

@@ -17,8 +17,37 @@ export const columnMappingSchema = z.strictObject({
   k2: columnRef.optional(),
   k3: columnRef.optional(),
   S: columnRef.optional(),
+  B: columnRef.optional(),
   sigma: columnRef.optional(),
 });
+
+const unitText = z.string().trim().min(1).max(40);
+
+/** The power spectrum by which a bispectrum B becomes S; what is missing or can't be is said by the preflight. */
+export const powerSpectrumSchema = z.strictObject({
+  /** A_s, dimensionless, at the pivot. */
+  amplitude: z.number().optional(),
+  /** n_s; 1 for none. */
+  tilt: z.number().optional(),
+  pivot: z.number().optional(),
+  pivotUnit: unitText.optional(),
+  /** Where the file doesn't say them: `1/Mpc` or `h/Mpc`, `Mpc^6` or `(Mpc/h)^6`. */
+  wavenumberUnit: unitText.optional(),
+  bispectrumUnit: unitText.optional(),
+  h: z.number().optional(),
+});
+
+/** The same as it was used, units and all; null for what wasn't needed. */
+export const spectrumSchema = z.object({
+  amplitude: z.number(),
+  tilt: z.number(),
+  pivot: z.number().nullable(),
+  pivotUnit: z.string().nullable(),
+  wavenumberUnit: z.string(),
+  bispectrumUnit: z.string(),
+  h: z.number().nullable(),
+});
+export type Spectrum = z.infer<typeof spectrumSchema>;
 
 /** Values that simulated data were made with, by name of the parameter or derived quantity. */
 export const truthSchema = z
@@ -30,6 +59,7 @@ export const uploadMetaSchema = z.strictObject({
   name: z.string().trim().min(1).max(120).optional(),
   description: z.string().trim().max(2000).optional(),
   columns: columnMappingSchema.optional(),
+  spectrum: powerSpectrumSchema.optional(),
   /** Number of mocks behind an uploaded covariance. */
   mockCount: z.number().int().min(3).optional(),
   simulated: z.boolean().optional(),
@@ -164,6 +194,8 @@ export const measurementSchema = measurementSummarySchema.extend({
   versions: z.array(measurementVersionSchema),
   /** Notebooks that rest on it, with the version that each rests on. */
   resting: z.array(restingNotebookSchema),
+  /** What the bispectrum of the file was turned into S by; null where the file gives S. */
+  spectrum: spectrumSchema.nullable(),
   /** What simulated data were made with; null where nothing is known, and while blind. */
   truth: z.record(z.string(), z.number()).nullable(),
   files: z.array(storedFileSchema),

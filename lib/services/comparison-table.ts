@@ -71,6 +71,7 @@ export async function readComparison(access: Access): Promise<Comparison> {
       inputs: version.files.map(({ part, sha256 }) => ({ part, sha256 })),
       measurementVersion: version.version,
       cuts: settings.cuts,
+      spectrum: version.spectrum ?? undefined,
       mockCount: version.mockCount,
       likelihood: likelihoodSchema.parse(settings.likelihood),
     }),

@@ -27,6 +27,7 @@ function howToRunAgain({ fit, version, snapshot }: FitSource): string[] {
   const counted = version.files.some(({ part }) => part === 'mocks');
   const meta = {
     columns: snapshot.mapping,
+    ...(snapshot.spectrum ? { spectrum: givenSpectrum(snapshot.spectrum) } : {}),
     ...(counted ? {} : { mockCount: snapshot.mockCount ?? undefined }),
   };
   const steps = [
@@ -45,6 +46,10 @@ function howToRunAgain({ fit, version, snapshot }: FitSource): string[] {
   if (fit.message !== null) steps.push(fit.message);
   return steps;
 }
+
+/** What a person gives for the same spectrum: what was not needed is left out. */
+const givenSpectrum = (spectrum: NonNullable<Snapshot['spectrum']>) =>
+  Object.fromEntries(Object.entries(spectrum).filter(([, value]) => value !== null));
 
 /** A target out of reach, so that the run ends with its budget and nowhere else. */
 const runSettings = (seed: string, replicas: number, maxDraws: number) => ({

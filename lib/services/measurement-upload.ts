@@ -88,6 +88,7 @@ async function checkUpload(form: UploadForm): Promise<CheckedUpload> {
     covariance: covariance && named(covariance),
     mocks: mocks && named(mocks),
     mapping: meta.columns,
+    spectrum: meta.spectrum,
     mockCount: meta.mockCount,
   });
   if (!result.ok) {
@@ -137,6 +138,7 @@ function versionOf({ result, meta }: CheckedUpload, files: StoredFile[]) {
     covarianceSource: result.covarianceSource,
     mockCount: result.mockCount,
     truth: meta.truth ?? null,
+    spectrum: result.spectrum,
     sha256: files[0].sha256,
     files,
     mapping: { ...result.mapping },

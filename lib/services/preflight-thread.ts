@@ -1,5 +1,11 @@
 import { parentPort, workerData } from 'node:worker_threads';
-import { preflight, type ColumnMapping, type PreflightResult, type UploadedFile } from '@/lib/measurements';
+import {
+  preflight,
+  type ColumnMapping,
+  type PowerSpectrum,
+  type PreflightResult,
+  type UploadedFile,
+} from '@/lib/measurements';
 import { ownedBuffers } from './owned-buffers';
 
 /** The files of an upload and what was said about them. */
@@ -8,6 +14,7 @@ export interface FilesToCheck {
   covariance?: UploadedFile;
   mocks?: UploadedFile;
   mapping?: ColumnMapping;
+  spectrum?: PowerSpectrum;
   mockCount?: number;
 }
 

@@ -20,6 +20,7 @@ export function measurementFixture(change: Partial<Measurement> = {}): Measureme
     uploadedAt: '2027-03-10T15:02:00.000Z',
     sha256: 'a'.repeat(64),
     hasBinEdges: true,
+    spectrum: null,
     truth: null,
     covarianceSource: 'mocks',
     mockCount: 200,
