@@ -22,7 +22,7 @@ import type { Taken } from '@/lib/services/fit-queue';
 import { factsOf, movesInReport, type ReplicaFacts } from '@/lib/services/fit-moves';
 import type { ReplicaState } from '@/lib/sampler';
 import type { StoredReport } from '@/lib/schemas/stored-report';
-import { unseenEnd } from '@/lib/services/fit-expectation';
+import { toldEnd, unseenEnd } from '@/lib/services/fit-expectation';
 import { isLook } from '@/lib/services/fit-schedule';
 import { verdict } from '@/lib/services/fit-verdict';
 import { ThreadError } from './failure';
@@ -220,7 +220,11 @@ class FitRun {
     const states = turns.map(({ replica, state }) => ({ replica, state: Buffer.from(state) }));
     const facts = turns.map((turn) => turn.facts);
     for (const round of rounds) this.milliseconds = addTimes(this.milliseconds, round.turns);
-    const report = { ...this.report, ...movesInReport(facts, this.milliseconds), wanted: this.wanted() };
+    const report = {
+      ...this.report,
+      ...movesInReport(facts, this.milliseconds),
+      wanted: this.wanted(to - warmup),
+    };
     const pace = this.pace.mark(to);
     const standing = await this.persist('committing draws', () =>
       commitDraws({ fitId, epoch, from, to, warmup, blocks, states, ...pace, report }),
@@ -233,12 +237,15 @@ class FitRun {
     await this.publish();
   }
 
-  /** Where the fit should end: as it was seen at the last look, or, before the first, as fits like it do. */
-  private wanted(): number | null {
+  /** Where the fit should end, told at `kept` draws: by the last look, or, before the first, as fits like it do. */
+  private wanted(kept: number): number | null {
     const { snapshot, target } = this.fit;
-    if (this.report.history.length > 0) return this.report.wanted;
+    const { history, estimate, draws, wanted } = this.report;
+    if (history.length > 0) {
+      return estimate === null ? wanted : toldEnd({ estimate, looked: draws - snapshot.warmup }, kept);
+    }
     const sampled = Object.values(snapshot.priors).filter(({ kind }) => kind !== 'fixed').length;
-    return unseenEnd(snapshot.replicas, sampled, target);
+    return toldEnd(unseenEnd(snapshot.replicas, sampled, target), kept);
   }
 
   /** Looks at all that is committed; true where that ended the fit, or it is lost. */

@@ -1,7 +1,9 @@
 'use client';
 
+import { useState } from 'react';
 import { RunFigures, Ruler } from '@/components/ui/run-figures';
-import { about, capital, duration, inWords } from '@/components/words/counts';
+import { capital, duration, inWords } from '@/components/words/counts';
+import { tellTime, timeInWords } from '@/components/words/time-left';
 import { formatCount, formatNumber, noValue } from '@/lib/figures/format';
 import type { Fit } from '@/lib/schemas';
 import { judged, meetsGate } from './quantities';
@@ -55,12 +57,24 @@ export function announcement(fit: Fit): string {
   return tenths === 0 ? '' : `${what}, ${tenths} tenths done.`;
 }
 
+/** The time that a running fit still takes, in words that don't jump; by the clock of its commits. */
+function useTimeLeft({ id, progress, committedAt, createdAt }: Fit): string {
+  const given = progress.secondsLeft;
+  const at = Date.parse(committedAt ?? createdAt);
+  const [told, setTold] = useState(() => (given === null ? null : tellTime(null, { of: id, given, at })));
+  if (given === null) return noValue;
+  if (told?.of === id && told.given === given && told.at === at) return timeInWords(told);
+  const next = tellTime(told, { of: id, given, at });
+  setTold(next);
+  return timeInWords(next);
+}
+
 /** Time left, draws, rate, acceptance and the ruler. */
 export function LiveFigures({ fit }: { fit: Fit }) {
   const { progress, drawsPerSecond, acceptance, status } = fit;
   const running = isRunning(status);
   const warming = running && progress.draws === 0;
-  const seconds = running ? progress.secondsLeft : progress.secondsSpent;
+  const left = useTimeLeft(fit);
   const width = formatCount(progress.maxDraws).length;
   const drawn = warming
     ? `${formatCount(progress.warmup)} of ${formatCount(progress.warmupTotal)}`
@@ -72,7 +86,7 @@ export function LiveFigures({ fit }: { fit: Fit }) {
         entries={[
           {
             label: running ? 'time left' : 'time spent',
-            value: seconds === null ? noValue : running ? about(seconds) : duration(seconds),
+            value: running ? left : duration(progress.secondsSpent),
           },
           { label: warming ? 'warm-up draws a replica' : 'draws a replica', value: drawn },
           {

@@ -65,9 +65,3 @@ export function duration(seconds: number): string {
   const minutes = Math.round(s / 60);
   return minutes % 60 === 0 ? `${minutes / 60} h` : `${Math.floor(minutes / 60)} h ${minutes % 60} min`;
 }
-
-/** An estimated time, no finer than it can be told: about 40 s, about 3 min, about 1 h 20 min. */
-export function about(seconds: number): string {
-  const steps = seconds < 20 ? 1 : seconds < 90 ? 10 : seconds < 600 ? 60 : seconds < 5_400 ? 300 : 600;
-  return `about ${duration(Math.max(1, Math.round(seconds / steps)) * steps)}`;
-}

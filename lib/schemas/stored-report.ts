@@ -12,8 +12,10 @@ export const storedReportSchema = z.object({
     z.object({ draws: z.number().int(), rhat: z.array(numberOrNull), ess: z.array(numberOrNull) }),
   ),
   gate: z.object({ met: z.boolean(), reasons: z.array(z.string()) }),
-  /** Kept draws a replica at which the gate is expected to be met; null where that can't be told. */
+  /** Kept draws a replica at which the gate is expected to be met, as it was told last; null where that can't be told. */
   wanted: numberOrNull,
+  /** What that is told from, since the last look: the median of what is expected. */
+  estimate: numberOrNull.default(null),
   /** Moves of all replicas together, since the end of warm-up (during it: since the start). */
   acceptance: z.array(z.object({ move: z.string(), rate: numberOrNull, share: numberOrNull.default(null) })),
   ladder: ladderSchema.nullable().default(null),
@@ -33,6 +35,7 @@ export const emptyReport: StoredReport = {
   history: [],
   gate: { met: false, reasons: ['No draw is kept yet: the replicas are warming up.'] },
   wanted: null,
+  estimate: null,
   acceptance: [],
   ladder: null,
   logEvidence: null,

@@ -2,7 +2,7 @@ import type { Diagnostic, Mode } from '@/lib/schemas';
 import { judgeModes, modeTable, type ModeRow, type ModeScan } from '@/lib/inference/scan';
 import { diagnose, judgeGate, type Diagnosis, type GateTarget } from '@/lib/sampler';
 import type { FitColumns } from './fit-model';
-import { expectedEnd } from './fit-expectation';
+import { seenEnd, toldEnd } from './fit-expectation';
 import { judgedFrom, storedOf, strideOf } from './fit-schedule';
 import type { StoredReport } from '@/lib/schemas/stored-report';
 
@@ -40,6 +40,10 @@ export class KeptDraws {
     replicas: number,
   ) {
     this.blocks = Array.from({ length: replicas }, () => []);
+  }
+
+  get replicas(): number {
+    return this.blocks.length;
   }
 
   /** Adds stored rows: row i is recorded draw `first + i × stride`. Draws of warm-up are passed over. */
@@ -171,12 +175,14 @@ export function lookAt(
     rhat: rhat.filter((_, k) => isJudged[k]),
     ess: ess.filter((_, k) => isJudged[k]),
   });
+  const end = met ? null : seenEnd([...earlier, entry].map(ofJudged), look.target, draws.replicas);
   return {
     draws: look.draws,
     diagnostics: found.map(({ name, diagnosis }) => present(name, derived.has(name), diagnosis)),
     history: kept > 0 ? decimate([...earlier, entry]) : [],
     gate: { met, reasons: [...gate.reasons, ...apart] },
-    wanted: expectedEnd([...earlier, entry].map(ofJudged), look.target, met),
+    wanted: met ? kept : end && toldEnd(end, kept),
+    estimate: end && end.estimate,
     acceptance: before.acceptance,
     ladder: before.ladder,
     logEvidence: before.logEvidence,

@@ -50,6 +50,10 @@ export function blockEnd(from: number, limit: number, { warmup, blockDraws: bloc
 export function isLook(kept: number, block: number): boolean {
   if (kept <= 0 || kept % block !== 0) return false;
   let at = block;
-  while (at < kept) at += block * Math.max(1, Math.ceil(at / block / 8));
+  while (at < kept) at = nextLook(at, block);
   return at === kept;
 }
+
+/** The look after the one at `look`. */
+export const nextLook = (look: number, block: number): number =>
+  look + block * Math.max(1, Math.ceil(look / block / 8));

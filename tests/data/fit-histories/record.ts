@@ -39,6 +39,22 @@ const recipes: Recipe[] = [
   { name: 'locked-two-again', file: 'two-field', id: 'locked-squeezed', options: { fields: 2, vertex: 2, background }, seed: 'h11', kept: 24_000 },
   { name: 'two-fields-little-data', file: 'one-field', id: 'free-phase', options: { fields: 2, background }, kappaMax: 0.08, seed: 'h12', kept: 24_000 },
   { name: 'narrow-cut', file: 'one-field', id: 'free-phase', options: { fields: 1, background: [1] }, kappaMax: 0.1, replicas: 8, seed: 'h13', kept: 10_000 },
+  { name: 'locked-two-third', file: 'two-field', id: 'locked-squeezed', options: { fields: 2, vertex: 2, background }, seed: 'h14', kept: 24_000 },
+  { name: 'locked-two-fourth', file: 'two-field', id: 'locked-squeezed', options: { fields: 2, vertex: 2, background: [1, 2, 3] }, seed: 'h15', kept: 24_000 },
+  { name: 'locked-two-fifth', file: 'two-field', id: 'locked-squeezed', options: { fields: 2, vertex: 2, background }, seed: 'h16', kept: 24_000 },
+  { name: 'two-fields-again', file: 'two-field', id: 'free-phase', options: { fields: 2, background }, seed: 'h17', kept: 24_000 },
+  { name: 'background-again', file: 'one-field', id: 'background', options: { background }, seed: 'h18', kept: 16_000 },
+  // With seeds of their own, recorded after the estimator's constants had been settled on those above.
+  { name: 'after-background', file: 'one-field', id: 'background', options: { background }, seed: 'k1', kept: 16_000 },
+  { name: 'after-one-field', file: 'one-field', id: 'free-phase', options: { fields: 1, background }, seed: 'k2', kept: 16_000 },
+  { name: 'after-one-field-little-data', file: 'two-field', id: 'free-phase', options: { fields: 1, background }, kappaMax: 0.06, seed: 'k3', kept: 16_000 },
+  { name: 'after-two-fields', file: 'two-field', id: 'free-phase', options: { fields: 2, background }, seed: 'k4', kept: 16_000 },
+  { name: 'after-two-fields-little-data', file: 'one-field', id: 'free-phase', options: { fields: 2, background }, kappaMax: 0.08, seed: 'k5', kept: 16_000 },
+  { name: 'after-locked-one', file: 'one-field', id: 'locked-squeezed', options: { fields: 1, vertex: 2, background: [1, 2, 3] }, seed: 'k6', kept: 16_000 },
+  { name: 'after-locked-two', file: 'two-field', id: 'locked-squeezed', options: { fields: 2, vertex: 2, background }, seed: 'k7', kept: 24_000 },
+  { name: 'after-locked-two-again', file: 'two-field', id: 'locked-squeezed', options: { fields: 2, vertex: 2, background: [1, 2, 3] }, seed: 'k8', kept: 24_000 },
+  { name: 'after-locked-two-third', file: 'two-field', id: 'locked-squeezed', options: { fields: 2, vertex: 2, background }, seed: 'k9', kept: 24_000 },
+  { name: 'after-narrow-cut', file: 'one-field', id: 'free-phase', options: { fields: 1, background: [1] }, kappaMax: 0.1, replicas: 8, seed: 'k10', kept: 10_000 },
 ];
 
 const rounded = (value: number) => (Number.isFinite(value) ? Number(value.toPrecision(5)) : null);
