@@ -10,8 +10,8 @@ import { runLoad } from './load/run-load';
 
 /**
  * `npm run load -- [--viewers 50] [--queued 20] [--seconds 60] [--think 15] [--json FILE]`: puts the instance that runs in
- * BEATNOTE_STATE under load, prints how fast it answered and what that cost its web server, and ends with 1 where a target
- * is missed. Viewers load the page anew every `think` seconds on the average, between two thirds and four thirds of it.
+ * BEATNOTE_STATE under load, prints how fast it answered and what that cost its web server, workers and database, and ends with 1
+ * where a target is missed. Viewers load the page anew every `think` seconds on the average, between two thirds and four thirds of it.
  */
 
 const count = z.coerce.number<string>().int().min(1);
@@ -45,20 +45,21 @@ const report = await runLoad({
   patience: count.parse(values.patience),
   say: (line) => process.stderr.write(`${line}\n`),
 });
-const { answers, events, fits, draws, cost, busy } = report;
+const { answers, events, fits, draws, cost, busy, loadAverage } = report;
 const met = {
   page: (answers.page.p95 ?? Infinity) < targets.page,
   lag: (answers.lag.p95 ?? Infinity) < targets.lag,
   lost: draws.lost === targets.lost,
   cost: cost.page < targets.cost,
 };
+const shares = Object.entries(busy).map(([part, share]) => `${part} ${(100 * share).toFixed(0)} %`);
 const costs = Object.entries(cost).map(([name, each]) => `${name} ${each.toFixed(1)} ms`);
 process.stdout.write(
   [
     tableOf(answers),
     '',
     `Processor time of the web server: ${costs.join(', ')}; a core serves ${(1000 / cost.page).toFixed(1)} pages a second`,
-    `While the viewers looked it used ${(100 * busy).toFixed(0)} % of a core`,
+    `While the viewers looked, of one core: ${shares.join(', ')}; load average of the machine ${loadAverage.map((each) => each.toFixed(1)).join(' to ')}`,
     `${events.heard} events heard, ${events.backwards} of them backwards`,
     `${fits.ended} queued fits ended by themselves, ${fits.stopped} were stopped`,
     `${draws.committed} draws committed, ${draws.found} found, ${draws.lost} lost`,

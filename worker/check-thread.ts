@@ -1,7 +1,7 @@
 import { parentPort, workerData } from 'node:worker_threads';
 import { checkProblem, checkResult, rankBlock, type CheckModel } from '@/lib/services/check-model';
 import { failureOf } from './failure';
-import { yieldToOthers } from './niceness';
+import { yieldToOthers } from '@/lib/niceness';
 import type { CheckAnswer, CheckQuestion } from './messages';
 
 /** A thread that ranks simulated data sets, a block at a time. */

@@ -6,7 +6,7 @@ import { specOf } from '@/lib/services/fit-model';
 import { factsOf } from '@/lib/services/fit-moves';
 import { samplerSettings } from '@/lib/services/fit-sampler';
 import { failureOf } from './failure';
-import { yieldToOthers } from './niceness';
+import { yieldToOthers } from '@/lib/niceness';
 import type { Advance, ReplicaAnswer, ReplicaSetup } from './messages';
 
 /** A thread that samples: it builds the posterior from plain data and advances the replicas that it is given, one at a time. */

@@ -8,7 +8,7 @@ import { verdict } from '@/lib/services/fit-verdict';
 import { widthsOf } from '@/lib/services/fit-widths';
 import { judgedFrom } from '@/lib/services/fit-schedule';
 import { failureOf } from './failure';
-import { yieldToOthers } from './niceness';
+import { yieldToOthers } from '@/lib/niceness';
 import type { ReportAnswer, ReportQuestion, ReportSetup } from './messages';
 
 /** A thread that remembers a fit's committed draws and computes its diagnostics, so that the main thread can renew leases. */

@@ -1,6 +1,7 @@
 import { isOtherSettings } from '@/components/scan/scan-words';
 import type { State } from '@/components/ui/state-word';
-import { about, capital, inWords } from '@/components/words/counts';
+import { capital, inWords } from '@/components/words/counts';
+import { about } from '@/components/words/time-left';
 import { formatCount, formatNumber, formatPercent } from '@/lib/figures/format';
 import type { CalibrationResult, CheckListed, Notebook } from '@/lib/schemas';
 

@@ -61,3 +61,6 @@ export function tellTime(before: TimeTold | null, next: Pick<TimeTold, 'of' | 'g
 
 /** "about 40 s", "about 3 min", "about 1 h 20 min". */
 export const timeInWords = ({ shown }: Pick<TimeTold, 'shown'>): string => `about ${duration(shown)}`;
+
+/** The same of a time that is told once. */
+export const about = (seconds: number): string => timeInWords({ shown: rounded(seconds) });

@@ -1,6 +1,7 @@
 import { parentPort, workerData } from 'node:worker_threads';
 import type { SampleFormat } from '@/lib/schemas';
 import { closeDatabase, database } from '@/lib/db';
+import { yieldToOthers } from '@/lib/niceness';
 import { encodeSamples } from './sample-encoders';
 import { sampleTable, type SampleSource } from './sample-table';
 
@@ -20,6 +21,7 @@ export type SampleAnswer =
  */
 const port = parentPort;
 const { source, format } = workerData as SampleOrder;
+yieldToOthers();
 database();
 const chunks = encodeSamples(format, sampleTable(source));
 const answer = (message: SampleAnswer, transfer: ArrayBuffer[] = []) => port?.postMessage(message, transfer);

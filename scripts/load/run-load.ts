@@ -1,10 +1,11 @@
+import { loadavg } from 'node:os';
 import { setTimeout as sleep } from 'node:timers/promises';
 import { endedStatuses, snapshotSchema } from '@/lib/schemas';
 import { fitBlocks, servedRows } from '@/lib/services/fit-draws';
 import { strideOf } from '@/lib/services/fit-schedule';
 import { Fit } from '@/models';
 import { Measure, newMeasures, type Summary } from './measures';
-import { webCpuReader } from './server-cpu';
+import { cpuReader, partNames, type Part } from './server-cpu';
 import { setStage } from './stage';
 import { ask, view, type Asked, type Sight } from './viewer';
 
@@ -30,8 +31,10 @@ export interface LoadReport {
   think: number;
   /** Milliseconds of the web server's processor time that one answer costs, asked for again and again by one person. */
   cost: Record<Asked, number>;
-  /** Processor time of the web server while the viewers looked, as a share of one core. */
-  busy: number;
+  /** Processor time while the viewers looked, as shares of one core. */
+  busy: Record<Part, number>;
+  /** Processes of the whole machine that wanted a core, on the average over a minute, when the viewers began and when they were done. */
+  loadAverage: [number, number];
   answers: Record<'page' | 'fit' | 'draws' | 'notebook' | 'lag', Summary>;
   events: { heard: number; backwards: number };
   fits: { ended: number; stopped: number };
@@ -101,7 +104,7 @@ async function untilDraws(id: string, seconds: number): Promise<void> {
 /** Puts an instance under load and says how it bore it. Works on groups of its own, which are removed in the end. */
 export async function runLoad(settings: LoadSettings): Promise<LoadReport> {
   const { origin, viewers, queued, seconds, think, patience, say } = settings;
-  const cpu = webCpuReader(settings.state);
+  const cpu = cpuReader(settings.state);
   say(`Setting up ${viewers} viewers of one fit and ${queued} queued fits`);
   const stage = await setStage({ viewers, queued });
   try {
@@ -114,11 +117,17 @@ export async function runLoad(settings: LoadSettings): Promise<LoadReport> {
     say(`Looking for ${seconds} s`);
     const begun = performance.now();
     const before = cpu();
+    const loadBefore = loadavg()[0];
     const pace = { think: think * 1000, draws: 5_000 };
     const seen = await Promise.all(sights.map((sight, i) => view(sight, pace, i / viewers, measures, over)));
-    const busy = (cpu() - before) / (performance.now() - begun);
+    const after = cpu();
+    const passed = performance.now() - begun;
+    const busy = Object.fromEntries(
+      partNames.map((part) => [part, (after[part] - before[part]) / passed]),
+    ) as Record<Part, number>;
+    const loadAverage: [number, number] = [loadBefore, loadavg()[0]];
     say('Weighing single answers');
-    const cost = await weigh(sights[0], cpu);
+    const cost = await weigh(sights[0], () => cpu().web);
     say('Waiting for the queued fits');
     await untilEnded(stage.queuedIds, patience);
     await stage.stopAll();
@@ -140,6 +149,7 @@ export async function runLoad(settings: LoadSettings): Promise<LoadReport> {
       think,
       cost,
       busy,
+      loadAverage,
       answers: {
         page: measures.page.summary,
         fit: measures.fit.summary,

@@ -22,10 +22,29 @@ function readProcess(pid: number): Process | null {
   }
 }
 
-/** A reader of the milliseconds of processor time that the web server of an instance and its children have used. */
-export function webCpuReader(state: string): () => number {
-  const pid = Number(readFileSync(path.join(state, 'pid', 'web'), 'utf8').split('\n')[0]);
-  if (!readProcess(pid))
+/** What of an instance uses the processors, by the file that holds its process's number. */
+const parts = { web: 'web', workers: 'worker', database: 'mariadb', redis: 'redis' } as const;
+export type Part = keyof typeof parts;
+
+export const partNames = Object.keys(parts) as Part[];
+
+function pidOf(state: string, part: Part): number | null {
+  try {
+    return Number(readFileSync(path.join(state, 'pid', parts[part]), 'utf8').split('\n')[0]);
+  } catch {
+    // The environment gave the instance a service that runs elsewhere.
+    return null;
+  }
+}
+
+/**
+ * A reader of the milliseconds of processor time that the parts of an instance and their children have used; a part that runs
+ * elsewhere uses none here.
+ */
+export function cpuReader(state: string): () => Record<Part, number> {
+  const pids = new Map(partNames.map((part) => [part, pidOf(state, part)]));
+  const web = pids.get('web');
+  if (!web || !readProcess(web))
     throw new Error('The web server of this instance runs on another machine, or has ended.');
   return () => {
     const all = new Map<number, Process>();
@@ -33,10 +52,18 @@ export function webCpuReader(state: string): () => number {
       const each = /^\d+$/.test(name) ? readProcess(Number(name)) : null;
       if (each) all.set(Number(name), each);
     }
-    const isOurs = (id: number): boolean => {
-      for (let at = id; at > 1; at = all.get(at)?.parent ?? 0) if (at === pid) return true;
-      return false;
+    const partOf = (id: number): Part | undefined => {
+      for (let at = id; at > 1; at = all.get(at)?.parent ?? 0) {
+        const part = partNames.find((each) => pids.get(each) === at);
+        if (part) return part;
+      }
+      return undefined;
     };
-    return [...all].reduce((sum, [id, { milliseconds }]) => sum + (isOurs(id) ? milliseconds : 0), 0);
+    const used: Record<Part, number> = { web: 0, workers: 0, database: 0, redis: 0 };
+    for (const [id, { milliseconds }] of all) {
+      const part = partOf(id);
+      if (part) used[part] += milliseconds;
+    }
+    return used;
   };
 }

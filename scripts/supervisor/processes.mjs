@@ -81,6 +81,19 @@ export async function endLeftovers(state) {
 }
 
 /**
+ * Sets how a process that leads a session ranks beside other sessions, −20 to 19. Where the kernel groups by session, as sched(7)
+ * says under "autogroup", the niceness of a thread only counts within its own: without this the threads of a worker would
+ * take as much of a core as the pages. Where there are no such groups, or it may not be set, niceness is all there is.
+ */
+export function rankSession(pid, nice) {
+  try {
+    writeFileSync(`/proc/${pid}/autogroup`, String(nice));
+  } catch {
+    return;
+  }
+}
+
+/**
  * One child that is started again with back-off when it dies. It leads its own process group, so that Ctrl-C reaches
  * us alone and we end our children in order.
  */
@@ -89,15 +102,17 @@ export class Supervised {
   #state;
   #start;
   #patience;
+  #nice;
   #child = null;
   #wanted = false;
   #backOff = 250;
   #timer = null;
 
-  constructor({ name, state, command, args, env, cwd, patience = 10_000 }) {
+  constructor({ name, state, command, args, env, cwd, patience = 10_000, nice = 0 }) {
     this.#name = name;
     this.#state = state;
     this.#patience = patience;
+    this.#nice = nice;
     this.#start = { command, args, env, cwd };
   }
 
@@ -119,6 +134,7 @@ export class Supervised {
     const child = spawn(command, args, { env, cwd, detached: true, stdio: ['ignore', output, output] });
     this.#child = child;
     child.once('spawn', () => {
+      if (this.#nice) rankSession(child.pid, this.#nice);
       const file = path.join(this.#state, 'pid', this.#name);
       // The command line stands only once the new program has replaced the fork.
       const record = () => writeFileSync(file, `${child.pid}\n${commandLine(child.pid)}`, { mode: 0o600 });

@@ -2,7 +2,7 @@ import { constants, setPriority } from 'node:os';
 
 /**
  * Lets pages, database and leases go first: a thread that computes takes what they leave. On Linux the priority is the calling
- * thread's own, so the worker's main thread keeps its place. Where it can't be set, the thread computes all the same.
+ * thread's own, so the process's main thread keeps its place. Where it can't be set, the thread computes all the same.
  */
 export function yieldToOthers(): void {
   try {
