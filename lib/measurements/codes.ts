@@ -99,6 +99,7 @@ const table = {
   'mock-count': 'Give the number of mocks as a whole number.',
   'mock-count-unused': 'Leave it out: the number of mocks is counted from their file.',
   'mocks-ok': '',
+  'mocks-alike': '',
   // Cuts
   'cut-empty': 'Widen the cut so that it holds at least one whole bin.',
 } as const;

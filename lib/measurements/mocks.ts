@@ -1,8 +1,12 @@
 import { finding, FindingList, showNumber } from './errors';
+import { mockDistances } from './mock-distances';
 import type { Finding, NumericMatrix } from './types';
 
 /** A mock is an outlier if some bin lies this many robust standard deviations from the median of all mocks. */
 const OUTLIER = 8;
+
+/** Nor is it like the others if one of all mocks lies as far by chance with less than this probability. */
+const CHANCE = 1e-3;
 
 /** Mean and covariance of mocks, in the order of their columns; null where a finding is an error. */
 export interface MockCovariance {
@@ -55,14 +59,42 @@ export function covarianceFromMocks(mocks: NumericMatrix, p: number): MockCovari
   if (findings[0].level === 'error' || !finite) return { covariance: null, mean: null, findings };
   findings.push(...findCopies(mocks));
   const { columns, mean } = centre(mocks);
-  const outlying = new FindingList();
-  for (const mock of findOutliers(columns)) {
-    const line = mocks.lines[mock];
-    const message = `Mock ${mock + 1} lies more than ${OUTLIER} robust standard deviations from the others in some bin.`;
-    outlying.add(() => finding('outlying-mock', 'warning', message, { part: 'mocks', line }));
+  const covariance = covarianceOf(columns);
+  findings.push(...outlyingMocks(mocks, columns, covariance));
+  return { covariance, mean, findings };
+}
+
+/** Mocks that lie apart, in one bin or by the distance of all of them, with the statistic that says so. */
+function outlyingMocks(mocks: NumericMatrix, columns: Float64Array[], covariance: Float64Array): Finding[] {
+  const n = mocks.rows;
+  const apart = new Map(
+    findOutliers(columns).map((mock) => [
+      mock,
+      `Mock ${mock + 1} lies more than ${OUTLIER} robust standard deviations from the others in some bin.`,
+    ]),
+  );
+  const distances = mockDistances(columns, covariance) ?? [];
+  for (const { mock, squared, probability } of distances) {
+    if (n * probability >= CHANCE || apart.has(mock)) continue;
+    apart.set(
+      mock,
+      `Mock ${mock + 1} lies far from the others: its squared Mahalanobis distance to their mean, by their covariance without it, is ` +
+        `${showNumber(squared)} in ${showNumber(columns.length)} bins; by chance one of ${showNumber(n)} mocks lies as far with ` +
+        `probability ${showNumber(n * probability)} (Hotelling).`,
+    );
   }
-  findings.push(...outlying.toFindings());
-  return { covariance: covarianceOf(columns), mean, findings };
+  const outlying = new FindingList();
+  for (const [mock, message] of [...apart].sort(([a], [b]) => a - b)) {
+    outlying.add(() =>
+      finding('outlying-mock', 'warning', message, { part: 'mocks', line: mocks.lines[mock] }),
+    );
+  }
+  if (outlying.count > 0 || distances.length === 0) return outlying.toFindings();
+  const largest = distances.reduce((a, b) => (b.squared > a.squared ? b : a));
+  const message =
+    `No mock lies apart: the largest squared Mahalanobis distance to the others, ${showNumber(largest.squared)} of mock ` +
+    `${largest.mock + 1}, is one of ${showNumber(n)}.`;
+  return [finding('mocks-alike', 'ok', message, { part: 'mocks' })];
 }
 
 function checkShape({ rows, columns, data }: NumericMatrix, p: number): Finding | null {
