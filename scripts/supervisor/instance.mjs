@@ -12,8 +12,8 @@ import { run } from './commands.mjs';
 /** A page leaves some megabytes behind at once: with room for several of them most are gone before anything is copied. */
 const newSpace = '--max-semi-space-size=64';
 
-/** How workers rank beside the web server, the database and Redis, which are at 0: they take what those leave. */
-const workerNice = 10;
+/** How workers rank beside the web server, the database and Redis, which are at 0: where both want a core, a third to one. */
+const workerNice = 5;
 
 const loopback = ['127.0.0.1', 'localhost', '::1'];
 
