@@ -27,18 +27,30 @@ function authors(notebook: Notebook): string[] {
 
 type Doing = 'title' | 'copy' | 'away' | null;
 
-function Actions({ notebook, onDo }: { notebook: Notebook; onDo: (doing: Doing) => void }) {
+const buttonId = (doing: Doing) => `do-${doing}`;
+
+/** What can be done with all of a notebook: words that open a form below, and stay, so that the focus can come back to them. */
+function Actions({
+  notebook,
+  doing,
+  onDo,
+}: {
+  notebook: Notebook;
+  doing: Doing;
+  onDo: (doing: Doing) => void;
+}) {
   const { may, archived } = notebook;
+  const opens = (what: Doing) => ({
+    id: buttonId(what),
+    expanded: doing === what,
+    onClick: () => onDo(doing === what ? null : what),
+  });
   return (
     <span className="no-print inline-flex flex-wrap gap-x-3">
-      {may.includes('notebook.edit') ? (
-        <WordButton onClick={() => onDo('title')}>change the title</WordButton>
-      ) : null}
-      {may.includes('notebook.create') ? <WordButton onClick={() => onDo('copy')}>copy</WordButton> : null}
+      {may.includes('notebook.edit') ? <WordButton {...opens('title')}>change the title</WordButton> : null}
+      {may.includes('notebook.create') ? <WordButton {...opens('copy')}>copy</WordButton> : null}
       {may.includes('notebook.archive') && !archived ? (
-        <WordButton onClick={() => onDo('away')}>
-          {notebook.fits.length ? 'archive' : 'archive or delete'}
-        </WordButton>
+        <WordButton {...opens('away')}>{notebook.fits.length ? 'archive' : 'archive or delete'}</WordButton>
       ) : null}
     </span>
   );
@@ -79,7 +91,10 @@ export function NotebookHead({ state, measurement, fit, stream, abstract }: Note
   const { notebook } = state;
   const [doing, setDoing] = useState<Doing>(null);
   const last = notebook.record.find(({ revision }) => revision === notebook.revision);
-  const done = () => setDoing(null);
+  const done = () => {
+    document.getElementById(buttonId(doing))?.focus();
+    setDoing(null);
+  };
   return (
     <PageHead
       title={notebook.title}
@@ -92,7 +107,7 @@ export function NotebookHead({ state, measurement, fit, stream, abstract }: Note
       byline={
         <span className="flex flex-wrap items-baseline gap-x-3">
           <span>{listed(authors(notebook))}</span>
-          {doing === null ? <Actions notebook={notebook} onDo={setDoing} /> : null}
+          <Actions notebook={notebook} doing={doing} onDo={setDoing} />
         </span>
       }
       abstract={abstract}

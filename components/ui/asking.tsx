@@ -1,6 +1,6 @@
 'use client';
 
-import { useEffect, useRef, type ReactNode } from 'react';
+import { useEffect, useId, useRef, type ReactNode } from 'react';
 import { Button, Buttons } from './button';
 
 export interface AskingProps {
@@ -17,13 +17,21 @@ export interface AskingProps {
   children?: ReactNode;
 }
 
-/** Asks in a sentence before something that can't be taken back; it takes the focus, so that it is heard. */
+/** Asks in a sentence before something that can't be taken back; it takes the focus, so that it is heard. Escape keeps. */
 export function Asking({ question, act, keep, onAct, onKeep, busy, children }: AskingProps) {
+  const id = useId();
   const sentence = useRef<HTMLParagraphElement>(null);
   useEffect(() => sentence.current?.focus(), []);
   return (
-    <div className="my-3 max-w-figure border-l-2 border-warn pl-3">
-      <p ref={sentence} tabIndex={-1} className="mb-1 outline-none">
+    <div
+      role="group"
+      aria-labelledby={id}
+      className="my-3 max-w-figure border-l-2 border-warn pl-3"
+      onKeyDown={(event) => {
+        if (event.key === 'Escape') onKeep();
+      }}
+    >
+      <p id={id} ref={sentence} tabIndex={-1} className="mb-1 outline-none">
         {question}
       </p>
       {children}
