@@ -7,7 +7,10 @@ export function SignOut({ email, role }: { email: string; role?: string }) {
     <form method="post" action="/api/auth/signout" className="inline-flex items-baseline gap-2">
       <input type="hidden" name="callbackUrl" value="/sign-in" />
       <span>
-        <Link href="/account" className="text-ink-2 no-underline hover:text-ink hover:underline">
+        <Link
+          href="/account"
+          className="text-ink-2 underline decoration-hairline underline-offset-[3px] hover:text-ink hover:decoration-current"
+        >
           <span className="sr-only">Your account, </span>
           <span className="max-tablet:hidden">{email}</span>
           <span className="tablet:hidden">{shortName(email)}</span>

@@ -84,12 +84,12 @@ export function LimitTable({ initial }: { initial: FitLimits }) {
         columns={[
           { key: 'name', head: 'Group', phone: { area: '1 / 1' } },
           { key: 'limit', head: 'At once', numeric: true, phone: { area: '1 / 2', label: 'at once' } },
-          { key: 'running', head: 'Running', numeric: true, phone: { area: '2 / 1', label: 'running' } },
-          { key: 'waiting', head: 'Waiting', numeric: true, phone: { area: '2 / 2', label: 'waiting' } },
+          { key: 'running', head: 'Running', numeric: true, phone: { area: '2 / 2', label: 'running' } },
+          { key: 'waiting', head: 'Waiting', numeric: true, phone: { area: '3 / 2', label: 'waiting' } },
           {
             key: 'actions',
             head: <span className="sr-only">Actions</span>,
-            phone: { area: '3 / 1 / 4 / 3' },
+            phone: { area: '2 / 1 / 4 / 2' },
           },
         ]}
         rows={[

@@ -94,9 +94,9 @@ export function WorkerTable({ workers }: { workers: InstanceState['workers'] }) 
       columns={[
         { key: 'where', head: 'Worker', phone: { area: '1 / 1' } },
         { key: 'version', head: 'Version', phone: 'drop' },
-        { key: 'threads', head: 'Threads a fit', numeric: true, phone: { area: '2 / 1', label: 'threads' } },
-        { key: 'fits', head: 'Fits at once', numeric: true, phone: { area: '2 / 2', label: 'fits' } },
-        { key: 'since', head: 'Since', phone: { area: '3 / 1', label: 'since' } },
+        { key: 'since', head: 'Since', phone: { area: '2 / 1', label: 'since' } },
+        { key: 'threads', head: 'Threads a fit', numeric: true, phone: { area: '2 / 2', label: 'threads' } },
+        { key: 'fits', head: 'Fits at once', numeric: true, phone: { area: '3 / 2', label: 'fits' } },
         { key: 'silent', head: 'Last beat, s', numeric: true, phone: { area: '1 / 2', label: 'beat' } },
       ]}
       rows={workers.map(({ id, host, pid, threads, fits, version, startedAt, silentFor }) => ({

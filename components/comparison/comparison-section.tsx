@@ -33,6 +33,7 @@ export function comparisonSentence(notebook: Pick<Notebook, 'blind' | 'fits'>): 
   if (notebook.blind) return 'Withheld until the measurement is unblinded.';
   const { fits } = notebook;
   if (!fits.length) return 'No fit to compare yet.';
+  if (fits.length === 1) return 'One fit, and none beside it yet.';
   return `${capital(counted(fits.length, 'fit'))} side by side.`;
 }
 

@@ -18,15 +18,26 @@ function Places({ mode }: { mode: Mode }) {
 export function ModesTable({ fit }: { fit: Pick<Fit, 'modes'> }) {
   if (!fit.modes.length) return null;
   const columns: Column[] = [
-    { key: 'place', head: 'Mode' },
-    { key: 'mean', head: 'mean', numeric: true },
-    { key: 'weight', head: 'share of draws', numeric: true },
+    { key: 'place', head: 'Mode', phone: { area: '1 / 1' } },
+    { key: 'mean', head: 'mean', numeric: true, phone: { area: '1 / 2', label: 'mean' } },
+    {
+      key: 'weight',
+      head: 'share of draws',
+      numeric: true,
+      phone: { area: '2 / 1 / 3 / 3', label: 'share of draws' },
+    },
     { key: 'mcse', head: 'MCSE', numeric: true, phone: 'drop' },
-    { key: 'scan', head: 'by the scan', numeric: true },
+    {
+      key: 'scan',
+      head: 'by the scan',
+      numeric: true,
+      phone: { area: '3 / 1 / 4 / 3', label: 'by the scan' },
+    },
   ];
   return (
     <DataTable
       caption="Modes of the masses. R-hat can’t see a mode that no replica visited, so the gate compares the draws with a scan of their own; – where the scan’s error is above 0.02."
+      phoneColumns="minmax(0,1fr) auto"
       columns={columns}
       rows={fit.modes.map((mode) => ({
         key: `${mode.lo.join()} ${mode.hi.join()}`,

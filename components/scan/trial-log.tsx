@@ -57,7 +57,7 @@ export function TrialLog({
             scan: (
               <>
                 {trial.scan === shown ? (
-                  <b>Scan {trial.number}, shown</b>
+                  <b className="whitespace-nowrap">Scan {trial.number}, shown</b>
                 ) : (
                   <button
                     type="button"
@@ -68,7 +68,7 @@ export function TrialLog({
                     <span className="sr-only">{trial.kind === 'two' ? ', of two fields' : ''}</span>
                   </button>
                 )}
-                <span className="block font-controls text-note text-ink-2">
+                <span className="block font-controls text-note whitespace-nowrap text-ink-2">
                   {shortName(trial.by)}, <Stamp at={trial.at} short />
                 </span>
               </>

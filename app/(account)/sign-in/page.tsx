@@ -38,7 +38,8 @@ export default async function SignInPage({
           }
         />
         <p className="mt-3 font-controls text-note text-ink-2">
-          New groups are opened by a lead. If you were invited, use the address to which the invitation came.
+          Whoever signs in can open a group. If you were invited to one, use the address to which the
+          invitation came.
         </p>
       </SignInSheet>
     </PageChrome>
