@@ -199,9 +199,13 @@ function missingColumn(table: ParsedTable, missing: string[]): Finding {
   });
 }
 
-/** True if any of the names is recognised: then the columns are those of a measurement, not of a matrix. */
+/**
+ * True if any of the names is recognised: then the columns are those of a measurement, not of a matrix. A bispectrum stands beside its
+ * wavenumbers; “b” alone may be anything.
+ */
 export function recogniseNames(names: string[]): boolean {
-  return names.some((name) => roles.some((role) => rankOf(readName(name).name, role) >= 0));
+  const telling = roles.filter((role) => role !== 'B');
+  return names.some((name) => telling.some((role) => rankOf(readName(name).name, role) >= 0));
 }
 
 /** What a role is called in a message. */
