@@ -47,10 +47,11 @@ const inMasses = ({ kind, mass }: MassAccuracy) => (
   </Num>
 );
 
-/** 0.04 %, 2.3 %, 40 %. */
+/** by 0.04 %, by 2.3 %, by 40 %. */
 function inPercent(share: number): string {
-  if (share < 0.0001) return 'less than 0.01 %';
-  return `${plain(100 * share, 2)} %`;
+  if (share < 0.0001) return 'by less than 0.01 %';
+  if (share > 1) return 'by more than its whole size';
+  return `by ${plain(100 * share, 2)} %`;
 }
 
 /** How far in κ the leading template holds on these bins, and how many powers of κ its background needs. */
@@ -148,23 +149,30 @@ function Recommended({ accuracy, own }: { accuracy: TemplateAccuracy; own: reado
   return (
     <>
       <p>
-        Recommended up to{' '}
-        <Num>
-          <Sym base="κ" /> = {plain(cut, 3)}
-        </Num>
-        : {enough ? counted(most, 'power') : 'a lower cut, or the exact shape;'}{' '}
         {enough ? (
           <>
-            of <Sym base="κ" /> in the background.
+            Recommended for bins up to{' '}
+            <Num>
+              <Sym base="κ" /> = {plain(cut, 3)}
+            </Num>
+            : {counted(most, 'power')} of <Sym base="κ" /> in the background.
           </>
-        ) : null}{' '}
-        Needed to keep the amplitude within {formatPercent(aim)} are {words}
-        {masses.length > 1 ? ', the lower, middle and upper mass that the priors hold likely' : ''}.
+        ) : (
+          <>
+            No background of up to four powers holds to{' '}
+            <Num>
+              <Sym base="κ" /> = {plain(cut, 3)}
+            </Num>{' '}
+            at every mass that the priors hold likely: cut lower, or take the exact shape.
+          </>
+        )}{' '}
+        To keep the amplitude within {formatPercent(aim)} it needs {words}
+        {masses.length > 1 ? ', the lower, middle and upper of those masses' : ''}.
       </p>
       {left > aim ? (
         <Caution>
           With the background as set ({own.length ? listed(own.map((p) => powerLabels[String(p)])) : 'none'})
-          the template alone puts the amplitude {inPercent(left)} off at {inMasses(worst)}. No{' '}
+          the template alone misses the amplitude {inPercent(left)} at {inMasses(worst)}. No{' '}
           <Num>
             <Sym base="χ" />²
           </Num>{' '}
