@@ -40,33 +40,42 @@ export function ServiceTable({ services }: { services: InstanceState['services']
   );
 }
 
-/** Fits that haven't ended, by group and notebook id: what they are about is their group's. */
+/** Fits and checks that haven't ended, by group and notebook id: what they are about is their group's. */
 export function QueueTable({ queue }: { queue: InstanceState['queue'] }) {
-  if (queue.fits.length === 0)
+  const rows = [
+    ...queue.fits.map((fit) => ({ ...fit, id: fit.fitId, name: 'fit', state: fitState(fit.status) })),
+    ...queue.checks.map((check) => ({
+      ...check,
+      id: check.checkId,
+      name: 'check',
+      state: { kind: 'run', word: 'checking' } as const,
+    })),
+  ];
+  if (rows.length === 0)
     return <EmptyState>No fit waits or runs. One that is started stands here until it ends.</EmptyState>;
   return (
     <DataTable
-      label="Fits that wait or run"
+      label="Fits and checks that wait or run"
       ruled
       phoneColumns="minmax(0,1fr) auto"
       columns={[
         { key: 'group', head: 'Group', phone: { area: '1 / 1' } },
-        { key: 'notebook', head: 'Notebook, fit', phone: { area: '2 / 1 / 3 / 3' } },
+        { key: 'notebook', head: 'Notebook, fit or check', phone: { area: '2 / 1 / 3 / 3' } },
         { key: 'state', head: 'State', phone: { area: '1 / 2', end: true } },
         { key: 'since', head: 'Since', phone: { area: '3 / 1', label: 'since' } },
       ]}
-      rows={queue.fits.map((fit) => ({
-        key: fit.fitId,
+      rows={rows.map((fit) => ({
+        key: fit.id,
         cells: {
           group: <span className="wrap-anywhere">{fit.groupName}</span>,
           notebook: (
             <>
               <Stamp>{fit.notebookId.slice(0, 8)}</Stamp>
-              <span className="sr-only"> and so on</span>, fit {fit.number}
+              <span className="sr-only"> and so on</span>, {fit.name} {fit.number}
             </>
           ),
           state: fit.held ? (
-            <StateWord kind={fitState(fit.status).kind}>{fitState(fit.status).word}</StateWord>
+            <StateWord kind={fit.state.kind}>{fit.state.word}</StateWord>
           ) : (
             <StateWord kind="wait">waits for a worker</StateWord>
           ),

@@ -68,12 +68,14 @@ function CoverageTable({
           {formatPercent(1 - alpha)} of such checks or more.
         </>
       }
+      phoneColumns="1fr 1fr"
       columns={[
-        { key: 'name', head: 'Parameter' },
-        ...levels.map(({ level }) => ({
+        { key: 'name', head: 'Parameter', phone: { area: '1 / 1 / 2 / 3' } },
+        ...levels.map(({ level }, i) => ({
           key: String(level),
           head: `${formatPercent(level)} interval`,
           numeric: true,
+          phone: { area: `${2 + Math.floor(i / 2)} / ${1 + (i % 2)}`, label: formatPercent(level) },
         })),
       ]}
       rows={[
@@ -103,11 +105,11 @@ function CoverageTable({
   );
 }
 
-/** What a check found; room is kept while it is being read. */
-export function CheckResult({ check }: { check: NotebookCheck | null }) {
-  const named = useMemo(() => (check ? quantitiesOf(check.request.template) : new Map()), [check]);
-  if (!check?.result) return <div aria-busy="true" className="min-h-[1260px]" />;
+/** What a check found. */
+export function CheckResult({ check }: { check: NotebookCheck }) {
+  const named = useMemo(() => quantitiesOf(check.request.template), [check]);
   const { result, request, number } = check;
+  if (!result) return null;
   const panels = panelsOf(result, named);
   const nameOf = (name: string) => {
     const { base, sub } = quantityOf(named, name).symbol;

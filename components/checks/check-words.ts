@@ -1,5 +1,6 @@
 import { isOtherSettings } from '@/components/scan/scan-words';
 import type { State } from '@/components/ui/state-word';
+import { rankCell, rankRows } from '@/components/figures/rank-layout';
 import { capital, inWords } from '@/components/words/counts';
 import { about } from '@/components/words/time-left';
 import { formatCount, formatNumber, formatPercent } from '@/lib/figures/format';
@@ -86,10 +87,17 @@ export function bandHalfWidth({ band, datasets }: Pick<CalibrationResult, 'band'
 
 /** What a check of so many data sets can't see. */
 export const sightWords = (result: Pick<CalibrationResult, 'band' | 'datasets'>): string =>
-  `With ${formatCount(result.datasets)} data sets the share of truths below the posterior’s median is known to ± ${formatPercent(bandHalfWidth(result))}; a smaller fault isn’t told from chance.`;
+  `With ${formatCount(result.datasets)} data sets the share of truths below the posterior’s median is told from one half where it is more than ${formatNumber(100 * bandHalfWidth(result), 0)} percentage points away; a smaller fault passes for chance.`;
 
 /** Shares of truths, in %, between which an interval's coverage keeps. */
 export const coverageBounds = (
   { lower, upper }: CalibrationResult['coverage'][number],
   datasets: number,
 ): string => `${formatNumber((100 * lower) / datasets, 1)} to ${formatNumber((100 * upper) / datasets, 1)}`;
+
+/** Pixels that the result of a check of so many quantities takes, wide and on a phone, so that its room is kept while it is read. */
+export function roomOf({ priors }: Pick<CheckListed['request'], 'priors'>): { wide: number; narrow: number } {
+  const quantities = 1 + Object.values(priors).filter(({ kind }) => kind !== 'fixed').length;
+  const figures = (narrow: boolean) => 2 * rankCell * rankRows(quantities, narrow);
+  return { wide: 770 + figures(false) + 29 * quantities, narrow: 1080 + figures(true) + 84 * quantities };
+}

@@ -1,6 +1,7 @@
 'use client';
 
 import dynamic from 'next/dynamic';
+import type { CSSProperties, ReactNode } from 'react';
 import { sectionNumber } from '@/components/notebook/sections';
 import type { SectionFold } from '@/components/notebook/use-folds';
 import { isOtherSettings } from '@/components/scan/scan-words';
@@ -15,16 +16,14 @@ import { shortName } from '@/components/words/people';
 import { formatPercent } from '@/lib/figures/format';
 import type { CheckListed, Notebook } from '@/lib/schemas';
 import { CheckForm } from './check-form';
-import { checksSentence, checksState, isPending, progressWords } from './check-words';
+import { checksSentence, checksState, isPending, progressWords, roomOf } from './check-words';
 import type { ChecksHandle } from './use-checks';
 
 /** Loaded where there is more than one check to choose from. */
 const CheckList = dynamic(() => import('./check-list').then((module) => module.CheckList));
 
 /** Figures and tables are loaded where a check has ended; their room is kept meanwhile. */
-const CheckResult = dynamic(() => import('./check-result').then((module) => module.CheckResult), {
-  loading: () => <div aria-busy="true" className="min-h-[1260px]" />,
-});
+const CheckResult = dynamic(() => import('./check-result').then((module) => module.CheckResult));
 
 function Progress({
   check,
@@ -81,6 +80,21 @@ function Standing({ check, notebook }: { check: CheckListed; notebook: Notebook 
   );
 }
 
+/** Keeps the room of a result while it and its figures are being read. */
+function Room({ check, children }: { check: CheckListed; children: ReactNode }) {
+  const { wide, narrow } = roomOf(check.request);
+  const heights = { '--room': `${wide}px`, '--room-narrow': `${narrow}px` } as CSSProperties;
+  return (
+    <div
+      aria-busy={children === null}
+      style={heights}
+      className="min-h-(--room) max-tablet:min-h-(--room-narrow)"
+    >
+      {children}
+    </div>
+  );
+}
+
 export interface ChecksSectionProps {
   notebook: Notebook;
   handle: ChecksHandle;
@@ -127,7 +141,9 @@ export function ChecksSection({ notebook, handle, unsaved, fold }: ChecksSection
       </p>
       {pending ? <Progress check={pending} handle={handle} mayStop={may('check.stop')} /> : null}
       {shown && !pending ? <Standing check={shown} notebook={notebook} /> : null}
-      {shown?.status === 'done' ? <CheckResult check={found} /> : null}
+      {shown?.status === 'done' ? (
+        <Room check={shown}>{found ? <CheckResult check={found} /> : null}</Room>
+      ) : null}
       {checks.length > 1 && shown ? (
         <CheckList checks={checks} shown={shown.id} onShow={handle.show} />
       ) : null}

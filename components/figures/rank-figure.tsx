@@ -7,6 +7,7 @@ import { linearTicks, type Tick } from '@/lib/figures/ticks';
 import { Chart, usePixels, type ChartProps } from './chart';
 import { Figure, type FigureFacts, type FigureSize } from './figure';
 import { Frame, type Panel } from './frame';
+import { rankCell, rankColumns, rankRows } from './rank-layout';
 import { SvgSym } from './svg-text';
 
 /** The ranks of one quantity. */
@@ -37,10 +38,6 @@ export interface RankDifferencesProps extends RankFacts {
   band: { lower: readonly number[]; upper: readonly number[] };
 }
 
-const cell = 154;
-const columnsOf = (panels: number, narrow: boolean): number => (narrow ? 2 : panels <= 6 ? 3 : 4);
-const rowsOf = (panels: number, narrow: boolean): number => Math.ceil(panels / columnsOf(panels, narrow));
-
 const shares: Tick[] = [0, 0.5, 1].map((value) => ({ value, label: String(value), major: true }));
 
 /** How often each rank came, quantity by quantity, with the band that a bar keeps within. */
@@ -50,8 +47,8 @@ export function RankHistograms(props: RankHistogramsProps) {
   return (
     <Figure
       {...props}
-      height={cell * rowsOf(panels.length, false)}
-      heightNarrow={cell * rowsOf(panels.length, true)}
+      height={rankCell * rankRows(panels.length, false)}
+      heightNarrow={rankCell * rankRows(panels.length, true)}
       numbers={() => ({
         columns: ['from', 'to', 'lower', 'upper', ...panels.map(({ name }) => name)],
         rows: panels[0].bars.map((_, i, { length }) => [
@@ -86,8 +83,8 @@ export function RankDifferences(props: RankDifferencesProps) {
   return (
     <Figure
       {...props}
-      height={cell * rowsOf(panels.length, false)}
-      heightNarrow={cell * rowsOf(panels.length, true)}
+      height={rankCell * rankRows(panels.length, false)}
+      heightNarrow={rankCell * rankRows(panels.length, true)}
       numbers={() => {
         const [lower, upper] = [away(band.lower), away(band.upper)];
         const lines = panels.map(({ counts }) => away(counts));
@@ -120,7 +117,7 @@ function Grid({
   domain: readonly [number, number];
   children: (panel: RankPanel) => React.ReactNode;
 }) {
-  const columns = columnsOf(panels.length, size.narrow);
+  const columns = rankColumns(panels.length, size.narrow);
   const width = Math.floor(size.width / columns);
   const place = useMemo<Panel>(
     () => ({ left: size.narrow ? 36 : 42, right: width - 12, top: 32, bottom: 122 }),
@@ -137,13 +134,13 @@ function Grid({
   );
   const yTicks = linearTicks(low, high, 3);
   return (
-    <Surface width={size.width} height={cell * rowsOf(panels.length, size.narrow)} aria-hidden="true">
+    <Surface width={size.width} height={rankCell * rankRows(panels.length, size.narrow)} aria-hidden="true">
       {panels.map((panel, i) => (
         <g
           key={panel.name}
-          transform={`translate(${(i % columns) * width} ${Math.floor(i / columns) * cell})`}
+          transform={`translate(${(i % columns) * width} ${Math.floor(i / columns) * rankCell})`}
         >
-          <Chart width={width} height={cell} {...axes}>
+          <Chart width={width} height={rankCell} {...axes}>
             {children(panel)}
             <Frame
               panel={place}

@@ -1,4 +1,5 @@
 import { z } from 'zod';
+import { checkStatusSchema } from './checks';
 import { fitStatusSchema } from './notebooks';
 import { idSchema, instantSchema, roleSchema } from './shared';
 
@@ -27,6 +28,10 @@ const queuedFitSchema = z.object({
 });
 export type QueuedFit = z.infer<typeof queuedFitSchema>;
 
+const queuedCheckSchema = queuedFitSchema
+  .omit({ fitId: true })
+  .extend({ checkId: idSchema, status: checkStatusSchema });
+
 const workerSchema = z.object({
   id: z.string(),
   /** Where it runs and with what; null where it beats but hasn't told. */
@@ -50,6 +55,8 @@ export const instanceStateSchema = z.object({
     running: z.number().int(),
     /** At most 200, running ones first, then in the order in which they came. */
     fits: z.array(queuedFitSchema),
+    /** The same of checks, which take turns with fits. */
+    checks: z.array(queuedCheckSchema),
   }),
   /** Null while the queue is away: nobody knows. */
   workers: z.array(workerSchema).nullable(),

@@ -5,9 +5,9 @@ import { readFacts } from '@/lib/jobs/worker-facts';
 import { mailAnswers } from '@/lib/mail/transport';
 import { redis } from '@/lib/redis';
 import {
+  checkStatusSchema,
   fitStatusSchema,
   type InstanceState,
-  type QueuedFit,
   type ServiceName,
   type ServiceState,
   type StorageState,
@@ -15,6 +15,7 @@ import {
 } from '@/lib/schemas';
 import { storage } from '@/storage';
 import type { Administration } from './administration';
+import { checkUnfinished } from './check-lease';
 import { clockAt, isHeld, isUnfinished } from './fit-lease';
 import { within } from './health';
 
@@ -28,38 +29,65 @@ async function timed(name: ServiceName, answer: Promise<unknown>): Promise<Servi
   return came ? { name, state: 'ok', milliseconds } : { name, state: 'away', milliseconds: null };
 }
 
-async function readQueue(): Promise<InstanceState['queue']> {
+interface QueuedRow {
+  id: string;
+  groupId: string;
+  groupName: string;
+  notebookId: string;
+  number: number;
+  status: string;
+  held: number;
+  since: Date;
+}
+
+/** Fits or checks that haven't ended: how many, how many of them are held, and the first of them. */
+async function readQueued(table: 'fits' | 'checks', unfinished: string, since: string) {
   const held = `(${isHeld(clockAt())})`;
   const [[counts], rows] = await Promise.all([
     database().query<{ all: number; running: number }>(
-      `SELECT COUNT(*) AS \`all\`, COALESCE(SUM(${held}), 0) AS running FROM fits f WHERE ${isUnfinished}`,
+      `SELECT COUNT(*) AS \`all\`, COALESCE(SUM(${held}), 0) AS running FROM ${table} f WHERE ${unfinished}`,
       { type: QueryTypes.SELECT },
     ),
-    database().query<{
-      fitId: string;
-      groupId: string;
-      groupName: string;
-      notebookId: string;
-      number: number;
-      status: string;
-      held: number;
-      since: Date;
-    }>(
-      `SELECT f.id AS fitId, f.group_id AS groupId, g.name AS groupName, f.notebook_id AS notebookId, f.number,
-         f.status, ${held} AS held, COALESCE(f.started_at, f.created_at) AS since
-       FROM fits f JOIN \`groups\` g ON g.id = f.group_id WHERE ${isUnfinished}
+    database().query<QueuedRow>(
+      `SELECT f.id, f.group_id AS groupId, g.name AS groupName, f.notebook_id AS notebookId, f.number,
+         f.status, ${held} AS held, ${since} AS since
+       FROM ${table} f JOIN \`groups\` g ON g.id = f.group_id WHERE ${unfinished}
        ORDER BY held DESC, f.created_at, f.id LIMIT :listed`,
       { replacements: { listed }, type: QueryTypes.SELECT },
     ),
   ]);
-  const running = Number(counts.running);
-  const fits = rows.map((row): QueuedFit => ({
-    ...row,
-    status: fitStatusSchema.parse(row.status),
-    held: Number(row.held) === 1,
-    since: new Date(row.since).toISOString(),
-  }));
-  return { waiting: Number(counts.all) - running, running, fits };
+  return { all: Number(counts.all), running: Number(counts.running), rows };
+}
+
+const queuedOf = ({ groupId, groupName, notebookId, number, held, since }: QueuedRow) => ({
+  groupId,
+  groupName,
+  notebookId,
+  number,
+  held: Number(held) === 1,
+  since: new Date(since).toISOString(),
+});
+
+async function readQueue(): Promise<InstanceState['queue']> {
+  const [fits, checks] = await Promise.all([
+    readQueued('fits', isUnfinished, 'COALESCE(f.started_at, f.created_at)'),
+    readQueued('checks', checkUnfinished, 'f.queued_at'),
+  ]);
+  const running = fits.running + checks.running;
+  return {
+    waiting: fits.all + checks.all - running,
+    running,
+    fits: fits.rows.map((row) => ({
+      ...queuedOf(row),
+      fitId: row.id,
+      status: fitStatusSchema.parse(row.status),
+    })),
+    checks: checks.rows.map((row) => ({
+      ...queuedOf(row),
+      checkId: row.id,
+      status: checkStatusSchema.parse(row.status),
+    })),
+  };
 }
 
 async function readWorkers(): Promise<WorkerState[]> {

@@ -84,7 +84,7 @@ describe('the check of calibration', () => {
   it('gives its numbers as a file', async () => {
     const figure = section()
       .locator('figure')
-      .filter({ has: named(/^Histograms/) });
+      .filter({ has: page.getByRole('img', { name: /^Histograms/ }) });
     await figure.locator('summary').press('Enter');
     const download = page.waitForEvent('download');
     await figure.getByRole('button', { name: /CSV/ }).press('Enter');

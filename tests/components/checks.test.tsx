@@ -163,7 +163,7 @@ describe('what a check found', () => {
     expect(words).toContain('then on average 401 and at most 402');
     expect(words).toContain('From 99 draws an interval of 95 % holds 93.1 %');
     expect(words).toContain('can’t show here');
-    expect(words).toMatch(/known to ± 1\d %/);
+    expect(words).toMatch(/more than 1\d percentage points away/);
   });
 
   it('names the quantity that leaves its band, in words, and where coverage is low', () => {

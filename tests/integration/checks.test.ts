@@ -2,6 +2,7 @@ import { setTimeout as sleep } from 'node:timers/promises';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { GET as readCheck } from '@/app/api/v1/checks/[id]/route';
 import { POST as stopCheck } from '@/app/api/v1/checks/[id]/stop/route';
+import { GET as readState } from '@/app/api/v1/administration/route';
 import { POST as archive } from '@/app/api/v1/notebooks/[id]/archive/route';
 import { GET as listChecks, POST as startCheck } from '@/app/api/v1/notebooks/[id]/checks/route';
 import { DELETE as deleteNotebook, PATCH as patchNotebook } from '@/app/api/v1/notebooks/[id]/route';
@@ -9,14 +10,15 @@ import { database } from '@/lib/db';
 import { closeQueue } from '@/lib/jobs';
 import {
   checkListedSchema,
+  instanceStateSchema,
   notebookCheckSchema,
   type CalibrationResult,
   type NotebookCheck,
 } from '@/lib/schemas';
 import { commitBlock, commitResult, renewCheck } from '@/lib/services/check-lease';
 import { readQueue, takeNext } from '@/lib/services/fit-queue';
-import { Check, CheckBlock, FitLimit } from '@/models';
-import { call, closeConnections, createMember, createUser, errorOf } from './harness';
+import { Check, CheckBlock, FitLimit, User } from '@/models';
+import { call, closeConnections, createMember, createToken, createUser, errorOf } from './harness';
 import {
   background,
   buildWorker,
@@ -218,13 +220,19 @@ describe('the turn of a check', () => {
           })
         ).json(),
       );
-    await FitLimit.upsert({ scope: own.group, fits: 1, setBy: (await createUser()).userId, setAt: new Date() });
+    await FitLimit.upsert({
+      scope: own.group,
+      fits: 1,
+      setBy: (await createUser()).userId,
+      setAt: new Date(),
+    });
     const [one, two] = [await post(1), await post(2)];
     expect(two.message).toMatch(/^Second in the queue/);
     const taken = await takeNext(60_000);
     expect(taken).toMatchObject({ kind: 'check', checkId: one.id });
     expect((await readQueue()).loads.get(own.group)).toMatchObject({ running: 1, limit: 1 });
     expect(await takeNext(60_000)).toBeNull();
+    await expectQueued(one, two);
     const stopped = await call(stopCheck, { method: 'POST', token: own.token, params: { id: two.id } });
     expect(notebookCheckSchema.parse(await stopped.json())).toMatchObject({ status: 'stopped', done: 0 });
     await Check.update({ leaseUntil: new Date(0) }, { where: { id: one.id } });
@@ -245,6 +253,20 @@ describe('the turn of a check', () => {
     await Check.update({ status: 'failed' }, { where: { id: one.id } });
   });
 });
+
+/** What a site administrator sees of the two: one held by a worker, one that waits. */
+async function expectQueued(one: NotebookCheck, two: NotebookCheck): Promise<void> {
+  const admin = await createUser();
+  await User.update({ siteAdmin: true }, { where: { id: admin.userId } });
+  const answer = await call(readState, { token: await createToken(admin) });
+  const { queue } = instanceStateSchema.parse(await answer.json());
+  const own = queue.checks.filter(({ checkId }) => [one.id, two.id].includes(checkId));
+  expect(own).toMatchObject([
+    { checkId: one.id, number: 1, held: true, status: 'running' },
+    { checkId: two.id, number: 2, held: false, status: 'queued' },
+  ]);
+  expect(queue.running).toBeGreaterThanOrEqual(1);
+}
 
 async function read1(token: string, id: string): Promise<NotebookCheck> {
   return notebookCheckSchema.parse(await (await call(readCheck, { token, params: { id } })).json());

@@ -33,13 +33,15 @@ export const shapeWords = (name: string, shape: RankShape, nameOf: (name: string
 export function unmixedWords({
   unmixed,
   datasets,
-}: Pick<CalibrationSummary, 'unmixed' | 'datasets'>): string {
+  calibrated,
+}: Pick<CalibrationSummary, 'unmixed' | 'datasets' | 'calibrated'>): string {
   if (unmixed.length === 0) return '';
   const which = unmixed.slice(0, 8).join(', ');
   const more = unmixed.length > 8 ? ` and ${unmixed.length - 8} more` : '';
   const [sets, their] =
     unmixed.length === 1 ? ['data set', 'its ranks are'] : ['data sets', 'their ranks are'];
-  return `${unmixed.length} of ${datasets} chains did not mix (${sets} ${which}${more}): ${their} counted with the others, so that a departure may be the sampler’s and not the posterior’s.`;
+  const so = calibrated ? '' : ', so that the departure may be the sampler’s and not the posterior’s';
+  return `${unmixed.length} of ${datasets} chains did not mix (${sets} ${which}${more}): ${their} counted with the others${so}.`;
 }
 
 /**
