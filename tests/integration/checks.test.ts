@@ -17,7 +17,7 @@ import {
 } from '@/lib/schemas';
 import { commitBlock, commitResult, renewCheck } from '@/lib/services/check-lease';
 import { readQueue, takeNext } from '@/lib/services/fit-queue';
-import { Check, CheckBlock, FitLimit, User } from '@/models';
+import { Check, CheckBlock, FitLimit, MeasurementVersion, Notebook, User } from '@/models';
 import { call, closeConnections, createMember, createToken, createUser, errorOf } from './harness';
 import {
   background,
@@ -79,8 +79,9 @@ const stop = async (id: string) =>
   );
 
 describe('a check of calibration', () => {
+  beforeAll(() => void startWorker());
+
   it('answers with ranks, bands, coverage and verdict, and with the same when asked again', async () => {
-    startWorker();
     const notebook = await openNotebook(desk, { template: background });
     const answer = await ask(notebook, { datasets: 50, draws: 19, seed: 7 });
     expect(answer.status).toBe(200);
@@ -130,6 +131,18 @@ describe('a check of calibration', () => {
     expect(await Check.count({ where: { notebookId: notebook } })).toBe(0);
   });
 
+  it('says why it failed', async () => {
+    const notebook = await openNotebook(desk, { template: background });
+    const { measurementVersionId } = await Notebook.findByPk(notebook, { rejectOnEmpty: true });
+    const { rows } = await MeasurementVersion.findByPk(measurementVersionId, { rejectOnEmpty: true });
+    const covariance = Buffer.alloc(8 * rows * rows);
+    await MeasurementVersion.update({ covariance }, { where: { id: measurementVersionId } });
+    const failed = notebookCheckSchema.parse(await (await ask(notebook, { datasets: 50, draws: 19 })).json());
+    expect([failed.status, failed.done, failed.result]).toEqual(['failed', 0, null]);
+    expect(failed.message).toMatch(/covariance .*not positive definite/i);
+    expect(failed.endedAt).not.toBeNull();
+  });
+
   it('goes with its notebook, and is of the settings that stood when it was asked for', async () => {
     const notebook = await openNotebook(desk, { template: background });
     const body = { datasets: 50, draws: 19 };
@@ -154,7 +167,7 @@ describe('a check of calibration', () => {
 });
 
 describe('the result of a check', () => {
-  const body = { datasets: 60, draws: 19, seed: 3 };
+  const body = { datasets: 50, draws: 19, seed: 3 };
 
   it('has the same bytes from one worker of one thread, two workers after a kill -9, and after a stop', async () => {
     await endWorkers();
@@ -178,7 +191,7 @@ describe('the result of a check', () => {
     const blocks = await CheckBlock.findAll({ where: { checkId: id }, order: [['id', 'ASC']] });
     expect(blocks.slice(0, kept.length).map((block) => block.id)).toEqual(kept.map((block) => block.id));
     expect(blocks.map((block) => block.first).sort((a, b) => a - b)).toEqual(
-      Array.from({ length: 12 }, (_, block) => 5 * block),
+      Array.from({ length: 10 }, (_, block) => 5 * block),
     );
 
     const halted = await openNotebook(desk, { template: oneField, priors: quick });
@@ -187,7 +200,7 @@ describe('the result of a check', () => {
     await stop(third.id);
     const stopped = await when(third.id, ({ status }) => status !== 'running');
     expect(stopped).toMatchObject({ status: 'stopped', result: null, verdict: null });
-    expect(stopped.done).toBeLessThan(60);
+    expect(stopped.done).toBeLessThan(50);
     expect((await stop(third.id)).done).toBe(stopped.done);
     const goesOn = await begun(halted, body);
     expect([goesOn.id, goesOn.done]).toEqual([third.id, stopped.done]);
