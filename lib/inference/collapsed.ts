@@ -7,10 +7,12 @@ import {
   lnCoefficientDensity,
   type LinearReference,
 } from './linear-reference';
+import { reachOf } from './compressed';
+import { newFieldMoments, type FieldMoments } from './field-moments';
 import type { FieldSystem } from './field-system';
 import type { ParameterLayout } from './parameter-layout';
 import type { WhitenedField } from './whitened-field';
-import type { Whitening } from './whitening';
+import type { WhitenedData } from './whitening';
 import type { Rng } from '@/lib/sampler';
 
 /**
@@ -44,6 +46,8 @@ export class LinearModel {
   private readonly p: number;
   private readonly data: Float64Array;
   private readonly columns: Float64Array;
+  /** Coordinates after which data and background are zero. */
+  private readonly reach: number;
   private readonly factor: Float64Array;
   private readonly v: Float64Array;
   private readonly references: readonly LinearReference[];
@@ -52,14 +56,14 @@ export class LinearModel {
 
   constructor(
     layout: ParameterLayout,
-    whitening: Whitening,
+    whitening: WhitenedData,
     readonly fields: readonly WhitenedField[],
     background: Float64Array,
     weight: number,
     private readonly tail: { exponent: number; spread: number } | null = null,
     boundedFirst = false,
   ) {
-    const p = whitening.length;
+    const p = whitening.data.length;
     this.p = p;
     this.weight = weight;
     this.data = Float64Array.from(whitening.data);
@@ -77,6 +81,8 @@ export class LinearModel {
     this.references = this.indices.map((index) => linearReference(layout.priors[index]));
     this.columns = new Float64Array(this.count * p);
     free.forEach((j, k) => this.columns.set(background.subarray(j * p, (j + 1) * p), k * p));
+
+    this.reach = reachOf(this.data, this.columns);
 
     const n = this.count;
     const precision = new Float64Array(n * n);
@@ -106,7 +112,7 @@ export class LinearModel {
     }
     this.firstQuadratic = firstQuadratic;
     this.firstLogDeterminant = firstLogDeterminant;
-    this.constant = -0.5 * (p * Math.log((2 * Math.PI) / weight) + whitening.logDeterminant);
+    this.constant = -0.5 * (whitening.length * Math.log((2 * Math.PI) / weight) + whitening.logDeterminant);
     this.rest = new Float64Array(n);
     this.stores = fields.map(() => ({
       masses: new Float64Array(STORE).fill(NaN),
@@ -151,18 +157,44 @@ export class LinearModel {
     const { p, count: n, weight } = this;
     out.mass = mass;
     out.unitKnown = false;
-    out.columns.set(this.fields[field].at(mass));
-    const x = out.columns;
-    for (let c = 0; c < 2; c += 1) {
-      for (let k = 0; k < n; k += 1) out.v[c * n + k] = weight * dotProduct(this.columns, k * p, x, c * p, p);
-      forwardSolve(this.factor, n, out.v, c * n);
-      out.linear[c] = weight * dotProduct(x, c * p, this.data, 0, p) - dotProduct(out.v, c * n, this.v, 0, n);
+    const { columns: x, v } = out;
+    const columns = this.fields[field].at(mass);
+    for (let i = 0; i < x.length; i += 1) x[i] = columns[i];
+    const { columns: background, data, reach } = this;
+    for (let k = 0; k < n; k += 1) {
+      let c = 0;
+      let s = 0;
+      for (let i = 0, at = k * p; i < reach; i += 1, at += 1) {
+        c += background[at] * x[i];
+        s += background[at] * x[p + i];
+      }
+      v[k] = weight * c;
+      v[n + k] = weight * s;
     }
-    for (let g = 0; g < 3; g += 1) {
-      const a = g === 2 ? 1 : 0;
-      const b = g === 0 ? 0 : 1;
-      out.gram[g] = weight * dotProduct(x, a * p, x, b * p, p) - dotProduct(out.v, a * n, out.v, b * n, n);
+    forwardSolve(this.factor, n, v);
+    forwardSolve(this.factor, n, v, n);
+    // Sums side by side, so that none waits for its own last addition.
+    let cc = 0;
+    let cs = 0;
+    let ss = 0;
+    for (let i = 0; i < p; i += 1) {
+      const xc = x[i];
+      const xs = x[p + i];
+      cc += xc * xc;
+      cs += xc * xs;
+      ss += xs * xs;
     }
+    let dc = 0;
+    let ds = 0;
+    for (let i = 0; i < reach; i += 1) {
+      dc += x[i] * data[i];
+      ds += x[p + i] * data[i];
+    }
+    out.linear[0] = weight * dc - dotProduct(v, 0, this.v, 0, n);
+    out.linear[1] = weight * ds - dotProduct(v, n, this.v, 0, n);
+    out.gram[0] = weight * cc - dotProduct(v, 0, v, 0, n);
+    out.gram[1] = weight * cs - dotProduct(v, 0, v, n, n);
+    out.gram[2] = weight * ss - dotProduct(v, n, v, n, n);
   }
 
   /** The 2 × 2 cross Gram matrix of two fields' columns (row: column of `a`), into `out[0 … 3]`. */
@@ -347,34 +379,6 @@ export class LinearModel {
 }
 
 const STORE = 8;
-
-/** What one field at one mass contributes: its columns and their products with everything but other fields. */
-export interface FieldMoments {
-  mass: number;
-  /** Whitened cosine and sine column, 2 × p. */
-  readonly columns: Float64Array;
-  /** Gram matrix with the background integrated out: (cos cos, cos sin, sin sin). */
-  readonly gram: Float64Array;
-  /** Products with the data, background integrated out. */
-  readonly linear: Float64Array;
-  /** V_f: 2 × (number of background coefficients). */
-  readonly v: Float64Array;
-  /** What the template says of the field's unit at this mass, kept for `FieldUnits`; stale unless `unitKnown`. */
-  readonly unit: Float64Array;
-  unitKnown: boolean;
-}
-
-function newFieldMoments(background: number, p: number): FieldMoments {
-  return {
-    mass: NaN,
-    columns: new Float64Array(2 * p),
-    gram: new Float64Array(3),
-    linear: new Float64Array(2),
-    v: new Float64Array(2 * background),
-    unit: new Float64Array(6),
-    unitKnown: false,
-  };
-}
 
 function dotProduct(a: Float64Array, from: number, b: Float64Array, at: number, n: number): number {
   let sum = 0;

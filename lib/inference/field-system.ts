@@ -1,5 +1,6 @@
 import type { Rng } from '@/lib/sampler';
-import type { FieldMoments, LinearModel } from './collapsed';
+import type { LinearModel } from './collapsed';
+import type { FieldMoments } from './field-moments';
 
 /**
  * The normal equations of all fields at given masses, background integrated out: Gram matrix (2N × 2N, row-major, both

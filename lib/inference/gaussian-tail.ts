@@ -11,6 +11,8 @@ import type { Rng } from '@/lib/sampler';
 
 const SQRT_PI = Math.sqrt(Math.PI);
 const LN_SQRT_TWO_PI = 0.5 * Math.log(2 * Math.PI);
+/** Beyond this many widths a tail is below 1e-17: nothing beside 1. */
+const BEYOND = 8.5;
 const MAPPING = 3.75;
 const TERMS = 32;
 
@@ -82,9 +84,10 @@ export function lnNormalInterval(a: number, b: number): number {
   }
   if (a > 0) return lnUpperInterval(a, b);
   if (b < 0) return lnUpperInterval(-b, -a);
-  const below = 0.5 * Math.exp(-0.5 * a * a) * erfcx(-a * Math.SQRT1_2);
-  const above = 0.5 * Math.exp(-0.5 * b * b) * erfcx(b * Math.SQRT1_2);
-  return Math.log1p(-below - above);
+  const below = a < -BEYOND ? 0 : 0.5 * Math.exp(-0.5 * a * a) * erfcx(-a * Math.SQRT1_2);
+  const above = b > BEYOND ? 0 : 0.5 * Math.exp(-0.5 * b * b) * erfcx(b * Math.SQRT1_2);
+  const outside = below + above;
+  return outside === 0 ? 0 : Math.log1p(-outside);
 }
 
 /** ln[Φ(b) − Φ(a)] for 0 ≤ a < b. */

@@ -1,6 +1,7 @@
 import type { FieldKind } from '@/lib/templates';
 import type { Rng } from '@/lib/sampler';
 import {
+  areEqual,
   drawOrderedMasses,
   logOrderProbability,
   orderedMarginal,
@@ -39,6 +40,7 @@ export function inducedMarginals(
 interface Group {
   fields: readonly number[];
   priors: readonly MassPrior[];
+  equal: boolean;
   drawn: Float64Array;
 }
 
@@ -60,6 +62,7 @@ export class MassOrder {
     this.groups = massChains(kinds).map((fields) => ({
       fields,
       priors: fields.map((f) => priors[f]),
+      equal: areEqual(fields.map((f) => priors[f])),
       drawn: new Float64Array(fields.length),
     }));
     this.logProbability = this.groups.reduce((sum, own) => sum + logOrderProbability(own.priors), 0);
@@ -88,8 +91,8 @@ export class MassOrder {
 
   /** One exact draw from the joint prior, a value a field. */
   draw(rng: Rng, out: Float64Array): void {
-    for (const { fields, priors, drawn } of this.groups) {
-      drawOrderedMasses(priors, rng, drawn);
+    for (const { fields, priors, equal, drawn } of this.groups) {
+      drawOrderedMasses(priors, rng, drawn, equal);
       for (let i = 0; i < fields.length; i += 1) out[fields[i]] = drawn[i];
     }
   }

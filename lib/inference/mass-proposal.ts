@@ -1,5 +1,5 @@
 import type { Rng } from '@/lib/sampler';
-import type { FieldMoments } from './collapsed';
+import type { FieldMoments } from './field-moments';
 import type { FieldSystem, MassEvidence } from './field-system';
 import {
   CellDistribution,

@@ -1,7 +1,7 @@
 import { InferenceError } from './inference-error';
 import { buildLikelihood, type Likelihood } from './likelihoods';
 import type { FitData, FitPart, LikelihoodKind } from './types';
-import { buildWhitening, type Whitening } from './whitening';
+import { buildWhitening, type WhitenedData, type Whitening } from './whitening';
 
 /** The values from `from` to before `to`, with a likelihood of their own. */
 export interface LikelihoodPart {
@@ -11,9 +11,9 @@ export interface LikelihoodPart {
 }
 
 /** Data, covariance and likelihood settled: χ² is a sum of squares of whitened residuals, and each part has its own. */
-export interface Metric {
+export interface Metric<W extends WhitenedData = Whitening> {
   readonly kind: LikelihoodKind;
-  readonly whitening: Whitening;
+  readonly whitening: W;
   /** What is whitened with, p × p: the covariance as given, with that of the theory where there is one. */
   readonly covariance: Float64Array;
   readonly parts: readonly LikelihoodPart[];

@@ -25,8 +25,7 @@ export type { MassPrior } from './order-quadrature';
  */
 export function logOrderProbability(priors: readonly MassPrior[]): number {
   if (priors.length < 2) return 0;
-  const first = JSON.stringify(priors[0]);
-  if (priors[0].kind !== 'fixed' && priors.every((prior) => JSON.stringify(prior) === first)) {
+  if (priors[0].kind !== 'fixed' && areEqual(priors)) {
     let ln = 0;
     for (let n = 2; n <= priors.length; n += 1) ln -= Math.log(n);
     return ln;
@@ -98,19 +97,29 @@ export function orderedMarginal(priors: readonly MassPrior[], index: number): Or
   return out;
 }
 
+/** Whether all priors are the same, so that order is a matter of sorting. */
+export function areEqual(priors: readonly MassPrior[]): boolean {
+  const first = JSON.stringify(priors[0]);
+  return priors.every((prior) => JSON.stringify(prior) === first);
+}
+
 /**
  * One exact draw of ordered masses into `out`: equal priors are sorted, others drawn until they are in order (each
- * mass above the one before it by construction where the priors allow, so the number of tries is about 1/Z).
+ * mass above the one before it by construction where the priors allow, so the number of tries is about 1/Z). `equal`:
+ * what `areEqual` says of the priors.
  */
-export function drawOrderedMasses(priors: readonly MassPrior[], rng: Rng, out: Float64Array): void {
-  const first = JSON.stringify(priors[0]);
-  const equal = priors.every((prior) => JSON.stringify(prior) === first);
+export function drawOrderedMasses(
+  priors: readonly MassPrior[],
+  rng: Rng,
+  out: Float64Array,
+  equal = areEqual(priors),
+): void {
   for (;;) {
     for (let i = 0; i < priors.length; i += 1) {
       const prior = priors[i];
       out[i] = prior.kind === 'fixed' ? prior.value : drawFromPrior(prior, rng);
     }
-    if (equal) out.subarray(0, priors.length).sort();
+    if (equal) (out.length === priors.length ? out : out.subarray(0, priors.length)).sort();
     let ordered = true;
     for (let i = 1; i < priors.length; i += 1) if (!(out[i] > out[i - 1])) ordered = false;
     if (ordered) return;

@@ -16,9 +16,11 @@ export interface AmplitudePrior {
   variance: number;
 }
 
-const PHASES = 24;
+const PHASES = 16;
 const AMPLITUDES = 32;
 /** tan(s/2) at the nodes s = −π … π of the circle; the ends are the same point. */
+/** Largest such tangent that counts as finite: the far side of the circle itself. */
+const FARTHEST = 1e16;
 const HALF_TANGENTS = Float64Array.from({ length: PHASES + 1 }, (_, k) =>
   Math.tan(Math.PI * (k / PHASES - 0.5)),
 );
@@ -27,7 +29,7 @@ const HALF_TANGENTS = Float64Array.from({ length: PHASES + 1 }, (_, k) =>
  * One field's amplitude and phase under a conditional normal of its coefficients c = (A cos φ, −A sin φ),
  * exp(−½ cᵀ S c + tᵀ c) times the amplitude's prior; the phase is uniform.
  *
- * φ is drawn from its own conditional with A integrated out, on 24 nodes with a linear density between them. The nodes are
+ * φ is drawn from its own conditional with A integrated out, on 16 nodes with a linear density between them. The nodes are
  * even in the angle ψ of the whitened coefficients, mapped by tan(s/2) → τ tan(s/2) round the best ψ, so that they gather
  * where the data fix the phase and cover the circle where they don't. Then A given φ: a truncated normal; with a power of
  * A in the prior and A near 0, a density linear between 32 nodes in √A or ln A. No Cartesian step: the density of (A, φ)
@@ -51,7 +53,8 @@ export class PolarPair {
   private m00 = 1;
   private m01 = 0;
   private m11 = 1;
-  private centre = 0;
+  private centreCosine = 1;
+  private centreSine = 0;
   private stretch = 1;
   private readonly heights = new Float64Array(PHASES + 1);
   // Working space of the nodes: exponent at the best A, and what multiplies its exponential.
@@ -60,6 +63,9 @@ export class PolarPair {
   private readonly lows = new Float64Array(PHASES);
   private readonly highs = new Float64Array(PHASES);
   private laid = false;
+  private turned = NaN;
+  cosine = NaN;
+  sine = NaN;
   private readonly amplitudeHeights = new Float64Array(AMPLITUDES);
   private fixedAmplitude = NaN;
 
@@ -95,9 +101,13 @@ export class PolarPair {
   drawPhase(rng: Rng): number {
     this.layPhases();
     const s = drawLinearDensity(this.heights, PHASES + 1, rng.uniform());
-    const psi = this.centre + 2 * Math.atan(this.stretch * Math.tan(Math.PI * (s / PHASES - 0.5)));
-    const v0 = Math.cos(psi);
-    const v1 = Math.sin(psi);
+    // The turn from the middle is twice the angle of this tangent.
+    const half = this.stretch * Math.tan(Math.PI * (s / PHASES - 0.5));
+    const scale = 1 / (1 + half * half);
+    const cosine = (1 - half * half) * scale;
+    const sine = 2 * half * scale;
+    const v0 = cosine * this.centreCosine - sine * this.centreSine;
+    const v1 = sine * this.centreCosine + cosine * this.centreSine;
     const b = v1 / this.m11;
     const a = (v0 - this.m01 * b) / this.m00;
     return Math.atan2(-b, a);
@@ -105,17 +115,21 @@ export class PolarPair {
 
   lnPhaseDensity(phase: number): number {
     this.layPhases();
-    const a = Math.cos(phase);
-    const b = -Math.sin(phase);
-    const v0 = this.m00 * a + this.m01 * b;
-    const v1 = this.m11 * b;
-    const tangent = Math.tan(0.5 * (Math.atan2(v1, v0) - this.centre)) / this.stretch;
+    this.turn(phase);
+    const v0 = this.m00 * this.cosine - this.m01 * this.sine;
+    const v1 = -this.m11 * this.sine;
+    const along = v0 * this.centreCosine + v1 * this.centreSine;
+    const across = v1 * this.centreCosine - v0 * this.centreSine;
+    const size = Math.sqrt(v0 * v0 + v1 * v1);
+    // tan of half the angle between v and the middle, in the form that doesn't cancel.
+    const half = along >= 0 ? across / (size + along) : (size - along) / across;
+    const tangent = Math.min(FARTHEST, Math.max(-FARTHEST, half / this.stretch));
     const s = PHASES * (Math.atan(tangent) / Math.PI + 0.5);
     const stretched = this.stretch * tangent;
     // ds → dψ → dφ.
     const psiPerNode =
       ((2 * Math.PI) / PHASES) * this.stretch * ((1 + tangent * tangent) / (1 + stretched * stretched));
-    const phasePerPsi = (v0 * v0 + v1 * v1) / (this.m00 * this.m11);
+    const phasePerPsi = (size * size) / (this.m00 * this.m11);
     return lnLinearDensity(this.heights, PHASES + 1, s) - Math.log(psiPerNode * phasePerPsi);
   }
 
@@ -144,14 +158,21 @@ export class PolarPair {
     );
   }
 
-  /** exp(−½ q A² + l A) along a phase, the prior's normal factor included. */
-  private along(phase: number): { q: number; l: number } {
-    return this.ray(Math.cos(phase), -Math.sin(phase));
+  /** Settles `cosine` and `sine` of a phase; the same again costs nothing. */
+  turn(phase: number): void {
+    if (phase === this.turned) return;
+    this.turned = phase;
+    this.cosine = Math.cos(phase);
+    this.sine = Math.sin(phase);
   }
 
   private readonly line = { q: 1, l: 0 };
 
-  private ray(a: number, b: number): { q: number; l: number } {
+  /** exp(−½ q A² + l A) along a phase, the prior's normal factor included. */
+  private along(phase: number): { q: number; l: number } {
+    this.turn(phase);
+    const a = this.cosine;
+    const b = -this.sine;
     const { ownPrecision, ownMean, hi, variance } = this.prior;
     const q = this.saa * a * a + 2 * this.sab * a * b + this.sbb * b * b + ownPrecision;
     // Where neither data nor prior bound A, a floor far below either keeps the normal proper.
@@ -202,20 +223,26 @@ export class PolarPair {
     const size = Math.sqrt(best0 * best0 + best1 * best1);
     const c0 = size > 0 ? best0 / size : 1;
     const c1 = size > 0 ? best1 / size : 0;
-    this.centre = Math.atan2(c1, c0);
+    this.centreCosine = c0;
+    this.centreSine = c1;
     // In units of the whitened normal's width: how far out the pair is, which is how well its angle is known.
     const distance = held ? fixedAmplitude * Math.max(this.m00, this.m11) : size;
-    this.stretch = Math.min(1, 2.5 / Math.max(distance, 1e-12));
+    this.stretch = Math.min(1, 1 / Math.max(distance, 1e-12));
+    const { stretch } = this;
+    const m01 = this.m01;
+    const inverse00 = 1 / this.m00;
+    const inverse11 = 1 / this.m11;
     let max = -Infinity;
     for (let k = 0; k < PHASES; k += 1) {
       // cos and sin of the turn 2 atan(stretched) from the middle, without trigonometry; node 0 is the far side.
       const tangent = HALF_TANGENTS[k];
-      const stretched = this.stretch * tangent;
+      const stretched = stretch * tangent;
       const square = stretched * stretched;
-      const cosine = k === 0 ? -1 : (1 - square) / (1 + square);
-      const sine = k === 0 ? 0 : (2 * stretched) / (1 + square);
-      const e1 = (sine * c0 + cosine * c1) / this.m11;
-      const e0 = (cosine * c0 - sine * c1 - this.m01 * e1) / this.m00;
+      const scale = 1 / (1 + square);
+      const cosine = k === 0 ? -1 : (1 - square) * scale;
+      const sine = k === 0 ? 0 : 2 * stretched * scale;
+      const e1 = (sine * c0 + cosine * c1) * inverse11;
+      const e0 = (cosine * c0 - sine * c1 - m01 * e1) * inverse00;
       const square0 = e0 * e0 + e1 * e1;
       const length = Math.sqrt(square0);
       // Along the ray A = r · length the exponent is −½ q r² + l r.
@@ -223,23 +250,24 @@ export class PolarPair {
       const q = Math.max(data + ownPrecision * square0, 1e-6);
       const l = ta * e0 + tb * e1 + ownPrecision * ownMean * length;
       // dψ/ds, which at the far side tends to 1/τ, and dφ/dψ = 1/(|M| length²).
-      const turning = k === 0 ? 1 / this.stretch : (this.stretch * (1 + tangent * tangent)) / (1 + square);
+      const turning = k === 0 ? 1 / stretch : stretch * (1 + tangent * tangent) * scale;
       if (held) {
         const r = fixedAmplitude / length;
         peaks[k] = r * (l - 0.5 * q * r);
         factors[k] = turning / square0;
       } else {
-        const root = Math.sqrt(q);
-        const z = l / root;
-        const a = (lo / length) * root - z;
-        const b = (hi / length) * root - z;
+        // 1/(length √q): with it √q/length = q · inverse, and l/√q = l · length · inverse.
+        const inverse = Math.sqrt(1 / (q * square0));
+        const z = l * length * inverse;
+        const a = lo * q * inverse - z;
+        const b = hi * q * inverse - z;
         const off = a > 0 ? a : b < 0 ? b : 0;
         lows[k] = a;
         highs[k] = b;
         peaks[k] = 0.5 * (z * z - off * off);
-        factors[k] = turning / (length * root);
+        factors[k] = turning * inverse;
         if (power !== 0) {
-          const typical = Math.min(hi, Math.max(lo, (l / q) * length, (0.5 * length) / root));
+          const typical = Math.min(hi, Math.max(lo, (l / q) * length, 0.5 * square0 * inverse));
           factors[k] *= power === -1 ? 1 / typical : typical ** power;
         }
       }

@@ -3,6 +3,7 @@ import { greedyGain } from './greedy-gain';
 import type { Metric } from './metric';
 import type { ParameterLayout } from './parameter-layout';
 import type { WhitenedField } from './whitened-field';
+import type { WhitenedData } from './whitening';
 
 interface Tail {
   exponent: number;
@@ -19,7 +20,7 @@ interface Tail {
  */
 export function referenceModel(
   layout: ParameterLayout,
-  metric: Metric,
+  metric: Metric<WhitenedData>,
   fields: readonly WhitenedField[],
   background: Float64Array,
 ): LinearModel {
@@ -37,7 +38,7 @@ export function referenceModel(
 
 function jointModel(
   layout: ParameterLayout,
-  metric: Metric,
+  metric: Metric<WhitenedData>,
   fields: readonly WhitenedField[],
   background: Float64Array,
   polar: boolean,
@@ -62,7 +63,7 @@ function jointModel(
 }
 
 /** One t in place of the product of all; null where a part is normal, whose tail none of that form has. */
-function tailOf({ parts }: Metric, weights: readonly number[]): Tail | null {
+function tailOf({ parts }: Pick<Metric, 'parts'>, weights: readonly number[]): Tail | null {
   let tail = { exponent: 0, spread: 0 };
   for (const [k, { likelihood }] of parts.entries()) {
     const { exponent, spread } = likelihood;
@@ -74,7 +75,7 @@ function tailOf({ parts }: Metric, weights: readonly number[]): Tail | null {
 
 /** Whitened data and columns with every part's weight in them: χ² becomes Σ_k w_k χ²_k. */
 function scaledBy(
-  { whitening, parts }: Metric,
+  { whitening, parts }: Metric<WhitenedData>,
   weights: readonly number[],
   fields: readonly WhitenedField[],
   background: Float64Array,
@@ -102,7 +103,7 @@ function scaledBy(
     background: scaled(background),
     fields: fields.map((field): WhitenedField => {
       const out = new Float64Array(field.width * p);
-      return { ...field, at: (mass) => scale(field.at(mass), out) };
+      return { ...field, sample: null, at: (mass) => scale(field.at(mass), out) };
     }),
   };
 }

@@ -25,6 +25,7 @@ import { QuadratureStage } from './stage-quadrature';
 import { VertexAngleStage } from './stage-vertex-angle';
 import { buildCoefficients, buildDrawPrior, buildLogPrior, fillIn } from './target';
 import type { WhitenedField } from './whitened-field';
+import type { WhitenedData } from './whitening';
 
 /** Part of the jumps that draws every parameter from the prior. */
 const FLOOR = 0.02;
@@ -47,9 +48,10 @@ class SpectralJump implements JumpProposal {
   private readonly before: Float64Array;
   private readonly coefficients: Float64Array;
   private readonly writeCoefficients: (full: Float64Array, out: Float64Array) => void;
-  // The density of the rest given the masses depends on the end point alone: keep the last few.
+  // What depends on the end point alone is kept for the last few: the density of the rest given the masses, and that of the masses
+  // unless one is redrawn given the others.
   private readonly keptPoints: Float64Array[];
-  private readonly keptRest: Float64Array;
+  private readonly keptOwn: Float64Array;
   private readonly keptPrior: Float64Array;
   private readonly drawPrior: (rng: Rng, full: Float64Array) => void;
   private readonly logPrior: (full: Float64Array) => number;
@@ -67,7 +69,7 @@ class SpectralJump implements JumpProposal {
     this.before = Float64Array.from(layout.base);
     this.coefficients = new Float64Array(layout.template.columnCount);
     this.keptPoints = Array.from({ length: 4 }, () => new Float64Array(layout.free.length).fill(NaN));
-    this.keptRest = new Float64Array(4);
+    this.keptOwn = new Float64Array(4);
     this.keptPrior = new Float64Array(4);
     this.drawPrior = buildDrawPrior(layout);
     this.logPrior = buildLogPrior(layout);
@@ -89,29 +91,34 @@ class SpectralJump implements JumpProposal {
 
   logDensity(to: Float64Array, from: Float64Array): number {
     const { layout, full, before } = this;
-    fillIn(layout, to, full);
     const kept = this.keep(to);
-    fillIn(layout, from, before);
-    const own = this.masses.logDensity(full, before) + this.keptRest[kept];
+    let own = this.keptOwn[kept];
+    if (!this.normalised) {
+      fillIn(layout, to, full);
+      fillIn(layout, from, before);
+      own += this.masses.logDensity(full, before);
+    }
     const floor = LN_FLOOR + this.keptPrior[kept];
-    const larger = Math.max(own + LN_REST, floor);
+    const drawn = own + LN_REST;
+    const larger = drawn > floor ? drawn : floor;
     if (larger === -Infinity) return larger;
-    return larger + Math.log(Math.exp(own + LN_REST - larger) + Math.exp(floor - larger));
+    return larger + Math.log1p(Math.exp((drawn > floor ? floor : drawn) - larger));
   }
 
-  /** Where what hangs on the end point alone is kept: the densities of the rest given the masses and of the prior. */
+  /** Where what hangs on the end point alone is kept: the proposal's own density and the prior's. */
   private keep(to: Float64Array): number {
-    const { full, system } = this;
-    const known = this.keptPoints.findIndex((point) => samePoint(point, to));
-    if (known >= 0) return known;
+    const { full, system, keptPoints } = this;
+    for (let k = 0; k < keptPoints.length; k += 1) if (samePoint(keptPoints[k], to)) return k;
+    fillIn(this.layout, to, full);
     this.loadFields();
     let rest = this.stage ? this.stage.logDensity(system, full) : 0;
     this.writeCoefficients(full, this.coefficients);
     rest += system.model.lnBackgroundDensity(system.moments, this.coefficients, full);
+    if (this.normalised) rest += this.masses.logDensity(full, full);
     const slot = this.next;
-    this.next = (slot + 1) % this.keptPoints.length;
-    this.keptPoints[slot].set(to);
-    this.keptRest[slot] = Number.isNaN(rest) ? -Infinity : rest;
+    this.next = (slot + 1) % keptPoints.length;
+    for (let i = 0; i < to.length; i += 1) keptPoints[slot][i] = to[i];
+    this.keptOwn[slot] = Number.isNaN(rest) ? -Infinity : rest;
     this.keptPrior[slot] = this.logPrior(full);
     return slot;
   }
@@ -170,7 +177,11 @@ function onLattice({ template, masses, vertexAngle, position }: ParameterLayout)
 }
 
 /** How sharp the proposal of the masses may be: nearly the evidence itself where that is exact. */
-function massSettings(layout: ParameterLayout, stage: FieldStage, metric: Metric): MassProposalSettings {
+function massSettings(
+  layout: ParameterLayout,
+  stage: FieldStage,
+  metric: Pick<Metric, 'parts'>,
+): MassProposalSettings {
   const near =
     layout.template.structure === 'polar' ||
     (stage.exact && metric.parts.every(({ likelihood }) => likelihood.exponent === null));
@@ -184,7 +195,7 @@ function massSettings(layout: ParameterLayout, stage: FieldStage, metric: Metric
 /** The spectral jump of a posterior, made with its reference model. */
 export function buildSpectralJump(
   layout: ParameterLayout,
-  metric: Metric,
+  metric: Metric<WhitenedData>,
   fields: readonly WhitenedField[],
   background: Float64Array,
 ): JumpProposal {

@@ -208,8 +208,10 @@ export class PolarStage implements FieldStage {
     let r0 = jointRest[j];
     let r1 = jointRest[j + 1];
     for (let g = f + 1; g < map.priors.length; g += 1) {
-      const a = map.amplitude[g] * Math.cos(map.phase[g]);
-      const b = -map.amplitude[g] * Math.sin(map.phase[g]);
+      const drawn = this.pairs[g];
+      drawn.turn(map.phase[g]);
+      const a = map.amplitude[g] * drawn.cosine;
+      const b = -map.amplitude[g] * drawn.sine;
       r0 -= joint[2 * g * n + j] * a + joint[(2 * g + 1) * n + j] * b;
       r1 -= joint[2 * g * n + j + 1] * a + joint[(2 * g + 1) * n + j + 1] * b;
     }

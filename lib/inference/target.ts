@@ -1,11 +1,12 @@
 import { drawIsotropicAngles, logIsotropicDensity, mixingWeights } from '@/lib/templates';
 import type { Rng, Target } from '@/lib/sampler';
+import { reachOf } from './compressed';
 import { FieldUnits } from './field-units';
 import type { Metric } from './metric';
 import { scalarPriorOf, type ParameterLayout } from './parameter-layout';
-import { drawFromPrior, lnPriorDensity, type ScalarPrior } from './priors';
+import { drawFromPrior, lnPriorDensity, priorSupport, type ScalarPrior } from './priors';
 import type { WhitenedField } from './whitened-field';
-import type { Whitening } from './whitening';
+import type { WhitenedData, Whitening } from './whitening';
 
 /** Background columns, whitened, one after the other (count × p). */
 export function whitenBackground(layout: ParameterLayout, whitening: Whitening): Float64Array {
@@ -62,20 +63,23 @@ export interface ChiSquares {
  */
 export function buildChiSquare(
   layout: ParameterLayout,
-  { whitening, parts }: Pick<Metric, 'whitening' | 'parts'>,
+  { whitening, parts }: Pick<Metric<WhitenedData>, 'whitening' | 'parts'>,
   fields: readonly WhitenedField[],
   background: Float64Array,
 ): ChiSquares {
-  const p = whitening.length;
+  const { data } = whitening;
+  const p = data.length;
+  const bounds = parts.length === 1 ? [{ from: 0, to: p }] : parts;
   const byPart = new Float64Array(parts.length);
   const { template, masses } = layout;
+  const reach = reachOf(data, background);
   const coefficients = new Float64Array(template.columnCount);
   const residual = new Float64Array(p);
   const fixedCount = template.fixedColumns.length;
   const write = buildCoefficients(layout);
   const total = (full: Float64Array): number => {
     write(full, coefficients);
-    residual.set(whitening.data);
+    for (let i = 0; i < p; i += 1) residual[i] = data[i];
     let at = 0;
     for (let f = 0; f < fields.length; f += 1) {
       const columns = fields[f].at(full[masses[f]]);
@@ -93,18 +97,47 @@ export function buildChiSquare(
     }
     for (let j = 0; j < fixedCount; j += 1) {
       const c = coefficients[at + j];
-      for (let i = 0; i < p; i += 1) residual[i] -= c * background[j * p + i];
+      for (let i = 0, row = j * p; i < reach; i += 1, row += 1) residual[i] -= c * background[row];
     }
     let all = 0;
-    for (let k = 0; k < parts.length; k += 1) {
-      let sum = 0;
-      for (let i = parts[k].from; i < parts[k].to; i += 1) sum += residual[i] * residual[i];
-      byPart[k] = sum;
-      all += sum;
+    for (let k = 0; k < bounds.length; k += 1) {
+      const { from, to } = bounds[k];
+      // Two sums, so that additions don't wait for each other.
+      let even = 0;
+      let odd = 0;
+      for (let i = from + 1; i < to; i += 2) {
+        even += residual[i - 1] * residual[i - 1];
+        odd += residual[i] * residual[i];
+      }
+      if ((to - from) % 2 === 1) even += residual[to - 1] * residual[to - 1];
+      byPart[k] = even + odd;
+      all += byPart[k];
     }
     return all;
   };
   return { total, byPart };
+}
+
+/** A scalar prior in the form that costs least: ln density = constant − ½ precision (x − mean)², or constant − ln x, on [lo, hi]. */
+interface PriorFactor {
+  index: number;
+  lo: number;
+  hi: number;
+  mean: number;
+  precision: number;
+  logarithmic: boolean;
+  constant: number;
+}
+
+function factorOf(index: number, prior: ScalarPrior): PriorFactor {
+  const [lo, hi] = priorSupport(prior);
+  const mean = 'mean' in prior ? prior.mean : 0;
+  const precision = 'sd' in prior ? 1 / (prior.sd * prior.sd) : 0;
+  const logarithmic = prior.kind === 'log-uniform';
+  // The constant is read off the density itself, at the place of its support that is nearest the middle of the normal.
+  const inside = logarithmic ? lo : Math.min(hi, Math.max(lo, mean));
+  const shape = logarithmic ? -Math.log(inside) : -0.5 * precision * (inside - mean) ** 2;
+  return { index, lo, hi, mean, precision, logarithmic, constant: lnPriorDensity(prior, inside) - shape };
 }
 
 /**
@@ -112,36 +145,25 @@ export function buildChiSquare(
  * −Infinity outside the support; NaN parameters give −Infinity.
  */
 export function buildLogPrior(layout: ParameterLayout): (full: Float64Array) => number {
-  const scalars: { index: number; prior: ScalarPrior; constant: number }[] = [];
-  for (const index of layout.free) {
+  const scalars = layout.free.flatMap((index) => {
     const prior = scalarPriorOf(layout, index);
-    if (!prior) continue;
-    // The constant of a truncated normal takes two tail probabilities: take it once, at the mean of the bounds.
-    const inside = prior.kind === 'truncated-normal' ? Math.min(prior.hi, Math.max(prior.lo, prior.mean)) : 0;
-    const constant =
-      prior.kind === 'truncated-normal'
-        ? lnPriorDensity(prior, inside) + 0.5 * ((inside - prior.mean) / prior.sd) ** 2
-        : 0;
-    scalars.push({ index, prior, constant });
-  }
+    return prior ? [factorOf(index, prior)] : [];
+  });
+  const constants = scalars.reduce((sum, { constant }) => sum + constant, -layout.logOrderProbability);
   const angles = new Float64Array(layout.angles.length);
   const { masses, massOrder } = layout;
   let read: Float64Array;
   const massOf = (f: number): number => read[masses[f]];
   return (full) => {
-    let sum = -layout.logOrderProbability;
+    let sum = constants;
     read = full;
     if (!massOrder.holds(massOf)) return -Infinity;
     for (let i = 0; i < scalars.length; i += 1) {
-      const { index, prior, constant } = scalars[i];
+      const { index, lo, hi, mean, precision, logarithmic } = scalars[i];
       const x = full[index];
-      if (prior.kind === 'truncated-normal') {
-        if (!(x >= prior.lo && x <= prior.hi)) return -Infinity;
-        const z = (x - prior.mean) / prior.sd;
-        sum += constant - 0.5 * z * z;
-      } else {
-        sum += lnPriorDensity(prior, x);
-      }
+      if (!(x >= lo && x <= hi)) return -Infinity;
+      if (precision > 0) sum -= 0.5 * precision * (x - mean) * (x - mean);
+      else if (logarithmic) sum -= Math.log(x);
     }
     if (layout.isotropic) {
       for (let k = 0; k < angles.length; k += 1) angles[k] = full[layout.angles[k]];
@@ -172,7 +194,11 @@ export function buildDrawPrior(layout: ParameterLayout): (rng: Rng, full: Float6
 }
 
 /** Assembles what the sampler is given. Phases have period 2π. */
-export function buildTarget(layout: ParameterLayout, metric: Metric, chiSquares: ChiSquares): Target {
+export function buildTarget(
+  layout: ParameterLayout,
+  metric: Pick<Metric, 'logDensity'>,
+  chiSquares: ChiSquares,
+): Target {
   const { parameters } = layout.template;
   const full = Float64Array.from(layout.base);
   const logPrior = buildLogPrior(layout);

@@ -2,14 +2,18 @@ import { choleskyInto, forwardSolve, logDeterminant } from './cholesky';
 import { InferenceError } from './inference-error';
 import type { FitData } from './types';
 
-/** The data's metric, settled once a fit: C = L Lᵀ, whitened vectors are L⁻¹ x, so that χ² is a plain sum of squares. */
-export interface Whitening {
+/** The whitened data, L⁻¹ S with C = L Lᵀ. */
+export interface WhitenedData {
   /** Number of data values p. */
   readonly length: number;
-  /** L⁻¹ S. */
+  /** L⁻¹ S, or its coordinates in the fewer directions that matter (see `compress`). */
   readonly data: Float64Array;
   /** ln |C|. */
   readonly logDeterminant: number;
+}
+
+/** The data's metric, settled once a fit: C = L Lᵀ, whitened vectors are L⁻¹ x, so that χ² is a plain sum of squares. */
+export interface Whitening extends WhitenedData {
   /** ln |C| of the values from `from` to before `to`, where C is 0 between them and the others. */
   logDeterminantOf(from: number, to: number): number;
   /** Replaces the vector of length p that starts at `offset` by L⁻¹ times it. */

@@ -85,9 +85,10 @@ export function advance(
   let made = 0;
   for (; made < draws && !shouldAbort?.(); made++) {
     sweep.make();
-    values[made * width] = next.logLikelihood;
-    values[made * width + 1] = next.logPrior;
-    values.set(next.x, made * width + 2);
+    const at = made * width;
+    values[at] = next.logLikelihood;
+    values[at + 1] = next.logPrior;
+    for (let i = 0; i < next.x.length; i++) values[at + 2 + i] = next.x[i];
   }
   next.rng = rng.state();
   const block = {

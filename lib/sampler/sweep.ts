@@ -13,6 +13,8 @@ import type { JumpProposal, RandomWalkState, ReplicaState, Rng, SamplerSettings,
 
 /** Share of the jumps of warm-up from which on they are trusted to move the chain. */
 const JUMPS_DO = 0.3;
+/** Most that other moves sit out, in what the settings say. */
+const LONGEST_REST = 20;
 
 /** Makes sweep after sweep on `state`, in place; the generator's state is the caller's to keep. */
 export class Sweep {
@@ -21,6 +23,7 @@ export class Sweep {
   private readonly candidate: Candidate;
   private readonly walks: RandomWalkState[];
   private readonly differential: DifferentialState | null;
+  private readonly stone = new Float64Array(3);
   private readonly weights: JumpWeights = { proposed: 0, present: 0 };
   /** Place of the normalised jump among the jumps, or −1. */
   private readonly normalised: number;
@@ -76,7 +79,8 @@ export class Sweep {
   /** Whether walks and differential evolution aren't due at this draw. */
   private sitsOut(): boolean {
     const { walkEvery = 1 } = this.settings;
-    return this.state.jumpsDo === true && this.state.draws % walkEvery !== 0;
+    const { rest, draws } = this.state;
+    return walkEvery > 1 && rest !== undefined && draws % (walkEvery * rest) !== 0;
   }
 
   private climb(adapting: boolean): void {
@@ -93,10 +97,11 @@ export class Sweep {
 
   /** From the jump as from a ladder of one stone: the weight's root at what was proposed, its inverse where it was proposed from. */
   private noteStone({ proposed, present }: JumpWeights): void {
-    const { state, target } = this;
-    const logs = [proposed / 2, -present / 2];
-    if (target.evidence) logs.push(lastStone(target.evidence, state.logLikelihood));
-    if (state.stones) addEntry(state.stones, logs);
+    const { state, target, stone } = this;
+    stone[0] = proposed / 2;
+    stone[1] = -present / 2;
+    if (target.evidence) stone[2] = lastStone(target.evidence, state.logLikelihood);
+    if (state.stones) addEntry(state.stones, stone);
   }
 
   private count(move: number, accepted: boolean): void {
@@ -127,23 +132,29 @@ export class Sweep {
       if (draws <= end && (draws - 1) % ladder.every === 0) learnLadder(ladder, periods);
       if (closing) {
         endLadderWindow(ladder, settings.ladder, draws < end);
-        ladder.every = this.ladderRests()
-          ? Math.max(settings.ladder.everyInWarmup, Math.ceil(settings.ladder.everyWhereJumpsDo / 10))
-          : settings.ladder.everyInWarmup;
+        const { everyInWarmup, everyWhereJumpsDo } = settings.ladder;
+        const rest = this.restOfLadder();
+        ladder.every =
+          rest > 0 ? Math.max(everyInWarmup, Math.ceil((everyWhereJumpsDo * rest) / 10)) : everyInWarmup;
       }
     }
     if (draws === warmup) this.freeze();
   }
 
-  /** Whether the jumps so far were accepted often enough; during warm-up counts are of all of it. */
-  private jumpsDo(): boolean {
-    const [jump] = this.state.moves;
-    return this.jumps.length > 0 && jump.accepted >= JUMPS_DO * jump.proposed;
+  /**
+   * How many times as long as the settings say other moves may sit out: jumps accepted for one rejected, 0 where they are accepted too
+   * seldom. What a walk adds is where a jump was rejected, so its worth for its cost falls as that number rises. During warm-up
+   * counts are of all of it.
+   */
+  private rest(): number {
+    const [{ accepted, proposed }] = this.state.moves;
+    if (this.jumps.length === 0 || accepted < JUMPS_DO * proposed) return 0;
+    return Math.min(LONGEST_REST, Math.max(1, Math.round(accepted / (proposed - accepted))));
   }
 
-  /** Whether jumps do what the ladder is for: move the chain and give the evidence. */
-  private ladderRests(): boolean {
-    return this.normalised >= 0 && this.jumpsDo();
+  /** The same for the ladder: 0 also where jumps don't do all that it is for, move the chain and give the evidence. */
+  private restOfLadder(): number {
+    return this.normalised >= 0 ? this.rest() : 0;
   }
 
   /** The end of warm-up: nothing adapts any more, and counts and sums begin. */
@@ -151,11 +162,12 @@ export class Sweep {
     const { state, walks, differential, settings, target } = this;
     walks.forEach(freeze);
     if (differential) freezeArchive(differential, target.periods);
-    if (this.jumps.length > 0) state.jumpsDo = this.jumpsDo();
+    const rest = this.rest();
+    if (rest > 0) state.rest = rest;
     if (state.ladder && settings.ladder) {
       const { every, everyWhereJumpsDo } = settings.ladder;
-      const rests = this.ladderRests();
-      freezeLadder(state.ladder, target, rests ? everyWhereJumpsDo : every, rests);
+      const rests = this.restOfLadder() > 0;
+      freezeLadder(state.ladder, target, rests ? everyWhereJumpsDo * rest : every, rests);
       if (rests) state.stones = emptySums(2 + (target.evidence ? 1 : 0));
     }
     for (const move of state.moves) {

@@ -58,8 +58,8 @@ export interface SamplerSettings {
   blocks: readonly (readonly number[])[];
   /**
    * After warm-up walks and differential evolution are made on every `walkEvery`-th draw only (default 1: on every draw), where at
-   * least 30 % of the jumps of warm-up were accepted. Needs a jump. Where the jumps alone move the chain well, evaluations are better
-   * spent on them.
+   * least 30 % of the jumps of warm-up were accepted, and more seldom by the number of jumps accepted for one rejected, up to 20. Needs
+   * a jump. Where the jumps alone move the chain well, evaluations are better spent on them.
    */
   walkEvery?: number;
   /** Differential evolution from the replica's own archive, after warm-up. Default: none. */
@@ -76,7 +76,8 @@ export interface LadderSettings {
   every: number;
   /**
    * The same where a normalised jump does what the ladder is for, that is, moves the chain and gives the evidence: at least 30 % of the
-   * jumps of warm-up were accepted. In warm-up, once that shows, a tenth of it.
+   * jumps of warm-up were accepted. Longer by the number of jumps accepted for one rejected, up to 20. In warm-up, once that shows, a
+   * tenth of it.
    */
   everyWhereJumpsDo: number;
   /** Rungs at most, both ends counted; at least 3. */
@@ -172,8 +173,11 @@ export interface ReplicaState {
   moves: MoveCount[];
   /** Each move's own state by name (adapted covariances, scales, running sums). */
   moveState: Record<string, unknown>;
-  /** Whether the jumps of warm-up were accepted often enough that the other moves may sit out; set at its end. */
-  jumpsDo?: boolean;
+  /**
+   * How many times as long as the settings say the other moves sit out: the number of accepted jumps of warm-up for one that was
+   * rejected. Set at its end; absent where too few were accepted for that.
+   */
+  rest?: number;
   /** Null or absent where there is none. */
   ladder?: LadderState | null;
   /** Sums for the evidence from a normalised jump, since the end of warm-up, where that does what the ladder is for; else absent. */

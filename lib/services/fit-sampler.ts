@@ -6,7 +6,7 @@ import type { SamplerSettings } from '@/lib/sampler';
  * themselves. A fit from before it was written down has none, and goes on with walks and jumps alone.
  */
 export const samplerOfNewFits: NonNullable<Snapshot['sampler']> = {
-  version: 3,
+  version: 4,
   walkEvery: 5,
   differential: true,
   ladder: { everyInWarmup: 2, every: 4, everyWhereJumpsDo: 200, maxRungs: 20, rejection: 0.4 },

@@ -10,7 +10,8 @@ describe('a frequency and its aliases, every replica and every rung started in o
     const ladder = { everyInWarmup: 1, every: 1, everyWhereJumpsDo: 1, maxRungs: 24, rejection: 0.35 };
     const settings = { warmup: 1500, blocks, differential: true, ladder };
     const [{ mu_lo: from, mu_hi: to }] = alias.exact.one.modes;
-    const kept = 16_000;
+    // At 16 000 the error of the larger modes scatters between seeds from 0.03 to 0.09: too few for the bound on it below.
+    const kept = 32_000;
     const runs = [0, 1, 2, 3].map((replica) => {
       const start = startReplica(target, [], settings, 'one mode', replica);
       // The peak of the first mode, for chain and rungs alike.

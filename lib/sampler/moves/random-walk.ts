@@ -52,7 +52,7 @@ export function stepRandomWalk(
   const { x, normals } = candidate;
   const d = indices.length;
   const scale = Math.exp(state.logScale);
-  x.set(point.x);
+  for (let i = 0; i < x.length; i++) x[i] = point.x[i];
   for (let i = 0; i < d; i++) {
     normals[i] = rng.normal();
     let step = 0;
