@@ -9,8 +9,9 @@ import { Figure, type FigureFacts, type FigureSize } from './figure';
 import { Frame, type Panel } from './frame';
 
 export interface AccuracyLine {
-  /** "two powers" */
+  /** "two powers", and "two" where there is no room. */
   label: string;
+  short: string;
   /** Column name in saved numbers. */
   name: string;
   /** Bias by cut; NaN where there is none. */
@@ -62,7 +63,7 @@ function Drawing({ figure, size }: { figure: AccuracyFigureProps; size: FigureSi
   const panel = useMemo<Panel>(
     () => ({
       left: size.narrow ? 44 : 52,
-      right: size.width - (size.narrow ? 76 : 92),
+      right: size.width - (size.narrow ? 44 : 92),
       top: 42,
       bottom: 231,
     }),
@@ -92,7 +93,7 @@ function Drawing({ figure, size }: { figure: AccuracyFigureProps; size: FigureSi
         }
         yName="error of the amplitude"
       />
-      <Lines kappa={kappa} lines={lines} panel={panel} />
+      <Lines kappa={kappa} lines={lines} panel={panel} narrow={size.narrow} />
     </Chart>
   );
 }
@@ -127,10 +128,12 @@ function Lines({
   kappa,
   lines,
   panel,
+  narrow,
 }: {
   kappa: readonly number[];
   lines: readonly AccuracyLine[];
   panel: Panel;
+  narrow: boolean;
 }) {
   const pixels = usePixels('main');
   const inside = (value: number) => Math.min(1, Math.max(floor, value));
@@ -146,12 +149,15 @@ function Lines({
     drawn.map(({ y }) => y.at(-1) ?? panel.top),
     16,
   );
-  return drawn.map(({ label, own, x, y }, k) =>
+  // A crowd at the top or the bottom is moved inside as one.
+  const above = Math.max(0, panel.top - Math.min(...labels));
+  const below = Math.max(0, Math.max(...labels) - panel.bottom);
+  return drawn.map(({ label, short, own, x, y }, k) =>
     x.length ? (
       <g key={label}>
         <path className={own ? 'sum' : 'lead'} d={linePath(x, y)} />
-        <text className="an" x={panel.right + 8} y={Math.max(panel.top + 5, labels[k] + 5)}>
-          {label}
+        <text className="an" x={panel.right + 8} y={labels[k] + above - below + 5}>
+          {narrow ? short : label}
         </text>
       </g>
     ) : null,

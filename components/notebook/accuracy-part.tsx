@@ -83,12 +83,21 @@ function Compared({ accuracy, settings }: { accuracy: TemplateAccuracy; settings
   const lines: AccuracyLine[] = [
     ...powerCounts.map((count, k) => ({
       label: counted(count, 'power'),
+      short: inWords(count),
       name: `error_${count}_powers`,
       bias: shown.curves[k],
       own: count === ownCount,
     })),
     ...(ownCount === null || ownCount === 0
-      ? [{ label: 'as set', name: 'error_as_set', bias: shown.curves[powerCounts.length], own: true }]
+      ? [
+          {
+            label: 'as set',
+            short: 'as set',
+            name: 'error_as_set',
+            bias: shown.curves[powerCounts.length],
+            own: true,
+          },
+        ]
       : []),
   ];
   return (
