@@ -35,6 +35,7 @@ import * as measurementTruth from './0034-measurement-truth';
 import * as scans from './0035-scans';
 import * as checks from './0038-checks';
 import * as checkBlocks from './0039-check-blocks';
+import * as measurementTheory from './0040-measurement-theory';
 import * as measurementSpectrum from './0043-measurement-spectrum';
 import type { MigrationContext } from './table';
 
@@ -79,6 +80,7 @@ const migrations: readonly (readonly [string, Migration])[] = [
   ['0035-scans', scans],
   ['0038-checks', checks],
   ['0039-check-blocks', checkBlocks],
+  ['0040-measurement-theory', measurementTheory],
   ['0043-measurement-spectrum', measurementSpectrum],
 ];
 

@@ -16,7 +16,7 @@ export class Measurement extends Model<InferAttributes<Measurement>, InferCreati
 
 /** One uploaded file, as kept in the object store. */
 export interface StoredFile {
-  part: 'file' | 'covariance' | 'mocks';
+  part: 'file' | 'covariance' | 'mocks' | 'window' | 'columns' | 'theoryCovariance';
   fileName: string;
   key: string;
   bytes: number;
@@ -57,6 +57,8 @@ export class MeasurementVersion extends Model<
   declare checks: Record<string, unknown>[];
   declare points: Buffer;
   declare covariance: Buffer;
+  /** Window, columns and theory covariance (see lib/services/stored-theory.ts); null for none. */
+  declare theory: Buffer | null;
   declare truth: Record<string, number> | null;
   /** What the file's bispectrum was turned into S by; null where it gives S. */
   declare spectrum: CreationOptional<Spectrum | null>;
@@ -96,6 +98,7 @@ export function initMeasurementModels(sequelize: Sequelize): void {
       checks: json(),
       points: bytes(),
       covariance: bytes(),
+      theory: bytes(true),
       truth: json(true),
       spectrum: json(true),
       createdBy: foreignKey(),

@@ -5,10 +5,9 @@ import { StateWord, type StateKind } from '@/components/ui/state-word';
 import { DataTable } from '@/components/ui/table';
 import { capital, inWords } from '@/components/words/counts';
 import type { Check } from '@/lib/schemas';
+import { partWords } from './part-words';
 
 const signs: Record<Check['level'], StateKind> = { error: 'bad', warning: 'warn', note: 'open', ok: 'ok' };
-
-const parts = { file: 'points', covariance: 'covariance', mocks: 'mocks' } as const;
 
 /** "line 33, col. 3", else the file it is about. */
 export function placeOf({ part, line, column }: Check): string {
@@ -16,8 +15,8 @@ export function placeOf({ part, line, column }: Check): string {
     line === undefined ? null : `line ${line}`,
     column === undefined ? null : `col. ${column}`,
   ].filter((word) => word !== null);
-  if (part && part !== 'file') place.unshift(parts[part]);
-  return place.length ? place.join(', ') : parts[part ?? 'file'];
+  if (part && part !== 'file') place.unshift(partWords[part]);
+  return place.length ? place.join(', ') : partWords[part ?? 'file'];
 }
 
 /** At most so many passed checks stand open. */

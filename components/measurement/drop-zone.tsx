@@ -3,13 +3,8 @@
 import { useDropzone } from 'react-dropzone';
 import { SelectField } from '@/components/ui/field';
 import { fileSize } from '@/components/words/counts';
+import { partOptions } from './part-words';
 import type { ChosenFile } from './use-preflight';
-
-const partOptions = [
-  { value: 'file', label: 'the points' },
-  { value: 'mocks', label: 'mocks, one a row' },
-  { value: 'covariance', label: 'their covariance' },
-];
 
 export interface DropZoneProps {
   files: readonly ChosenFile[];

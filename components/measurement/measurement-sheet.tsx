@@ -27,8 +27,7 @@ import { MeasurementFigure } from './measurement-figure';
 import { covarianceInWords } from './measurement-words';
 import { SpectrumFormula } from './spectrum-fields';
 import { RestingBody, VersionsBody } from './versions-section';
-
-const partWords = { file: 'points', covariance: 'covariance', mocks: 'mocks' } as const;
+import { partWords } from './part-words';
 
 /** Resolution and highest frequency of these bins. */
 function coverage({ points }: Measurement) {

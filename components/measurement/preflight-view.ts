@@ -1,3 +1,4 @@
+import type { FilePart } from '@/lib/schemas';
 import type {
   ColumnMapping,
   ColumnRole,
@@ -146,9 +147,12 @@ export function marksOf(view: PreflightView) {
 }
 
 /** Which upload a file is, by its name; the reader may say otherwise. */
-export function partByName(name: string): 'file' | 'covariance' | 'mocks' {
+export function partByName(name: string): FilePart {
   const plain = name.toLowerCase();
   if (/mock|sims?\b|simulations|realisations|realizations/.test(plain)) return 'mocks';
+  if (/theor.*cov|cov.*theor/.test(plain)) return 'theoryCovariance';
   if (/cov/.test(plain)) return 'covariance';
+  if (/window|mixing.?matrix|wmat/.test(plain)) return 'window';
+  if (/columns?\b|templates?\b|systematics|gravit/.test(plain)) return 'columns';
   return 'file';
 }

@@ -10,12 +10,14 @@ import {
   type PowerSpectrum,
   type UploadedFile,
 } from '@/lib/measurements';
+import type { FilePart } from '@/lib/schemas';
+import { columnNameFault } from '@/lib/templates/column-parameters';
 import { viewOf, type PreflightView } from './preflight-view';
 
 /** A file that the worker is to check; its bytes are sent once and remembered by `key`. */
 export interface WorkerFile {
   key: string;
-  part: 'file' | 'covariance' | 'mocks';
+  part: FilePart;
   name: string;
   bytes: ArrayBuffer | null;
 }
@@ -54,7 +56,7 @@ function readOnce<T extends ParsedTable | NumericMatrix>(
 }
 
 function matrix(file: WorkerFile | undefined): NumericMatrix | UploadedFile | null {
-  if (!file || file.part === 'file') return null;
+  if (!file || (file.part !== 'covariance' && file.part !== 'mocks')) return null;
   const { part, key } = file;
   return readOnce(`${part}:${key}`, ({ bytes, name }) => parseMatrix(bytes, name, { part }));
 }
@@ -65,6 +67,10 @@ function run({ files, mapping, mockCount, spectrum }: PreflightRequest): Preflig
     if (bytes) bytesByKey.set(key, { bytes: new Uint8Array(bytes), name });
   }
   const byPart = (part: WorkerFile['part']) => files.find((file) => file.part === part);
+  const upload = (part: WorkerFile['part']): UploadedFile | undefined => {
+    const file = byPart(part);
+    return file && bytesByKey.get(file.key);
+  };
   const points = byPart('file');
   if (!points) throw new Error('The worker was asked to check no points.');
   const file = readOnce(`file:${points.key}`, ({ bytes, name }) => parseMeasurement(bytes, name));
@@ -72,6 +78,10 @@ function run({ files, mapping, mockCount, spectrum }: PreflightRequest): Preflig
     file,
     covariance: matrix(byPart('covariance')),
     mocks: matrix(byPart('mocks')),
+    window: upload('window'),
+    columns: upload('columns'),
+    theoryCovariance: upload('theoryCovariance'),
+    columnFault: columnNameFault,
     mapping,
     mockCount,
     spectrum,

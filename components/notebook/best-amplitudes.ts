@@ -4,7 +4,7 @@ import type { Prediction } from './prediction';
 import { priorEnds } from './prior-values';
 
 /** Parameters in which a prediction is linear while the others stand still. */
-const linear = new Set(['quadrature', 'amplitude', 'coupling', 'background']);
+const linear = new Set(['quadrature', 'amplitude', 'coupling', 'background', 'column']);
 
 /** Weight of a normal prior about its mean; 0 for what has no preferred value. */
 function preference(prior: Prior): { precision: number; mean: number } {

@@ -1,5 +1,5 @@
 import { forwardSolve, choleskyInto } from '@/lib/inference/cholesky';
-import type { Measurement, Notebook } from '@/lib/schemas';
+import type { Measurement, MeasurementTheory, Notebook } from '@/lib/schemas';
 import type { Axis } from '@/lib/templates';
 
 /** The bins that a notebook keeps of its measurement, as the browser needs them. */
@@ -14,6 +14,20 @@ export interface KeptPoints {
   sigma: Float64Array;
   /** Lower Cholesky factor of the covariance, row-major; null where it isn't given to the browser. */
   factor: Float64Array | null;
+  /** How theory becomes these values, where files of the measurement say so. */
+  theory: KeptTheory | null;
+}
+
+/** Window and columns of the kept bins. */
+export interface KeptTheory {
+  /** Bins or points of the theory, and the matrix (row-major); null without a window, or where it is too large for the browser. */
+  window: {
+    kappa: Float64Array;
+    lo: Float64Array | null;
+    hi: Float64Array | null;
+    matrix: Float64Array;
+  } | null;
+  columns: { name: string; values: Float64Array }[];
 }
 
 /** Relative tolerance at both ends of a cut, as on the server. */
@@ -30,12 +44,16 @@ function rowsInRange(
   return points.kappa.flatMap((_, i) => (lower[i] >= low && upper[i] <= high ? [i] : []));
 }
 
-function factorOf(covariance: readonly (readonly number[])[], rows: readonly number[]): Float64Array | null {
+function factorOf(
+  covariance: readonly (readonly number[])[],
+  added: readonly (readonly number[])[] | null,
+  rows: readonly number[],
+): Float64Array | null {
   const p = rows.length;
-  const cut = Float64Array.from(
-    { length: p * p },
-    (_, k) => covariance[rows[Math.floor(k / p)]][rows[k % p]],
-  );
+  const cut = Float64Array.from({ length: p * p }, (_, k) => {
+    const [i, j] = [rows[Math.floor(k / p)], rows[k % p]];
+    return covariance[i][j] + (added ? added[i][j] : 0);
+  });
   const factor = new Float64Array(p * p);
   return choleskyInto(cut, p, factor) < 0 ? factor : null;
 }
@@ -56,7 +74,7 @@ export function leftOut(
 }
 
 export function keepPoints(measurement: Measurement, cuts: Notebook['cuts']): KeptPoints {
-  const { points, covariance } = measurement;
+  const { points, covariance, theory } = measurement;
   const rows = keptRows(points, cuts);
   const take = (values: readonly (number | null)[]) => Float64Array.from(rows, (i) => values[i] ?? NaN);
   return {
@@ -66,12 +84,36 @@ export function keepPoints(measurement: Measurement, cuts: Notebook['cuts']): Ke
     hi: points.kappaHi && take(points.kappaHi),
     S: take(points.S),
     sigma: take(points.sigma),
-    factor: covariance && rows.length ? factorOf(covariance, rows) : null,
+    factor: covariance && rows.length ? factorOf(covariance, theory?.covariance ?? null, rows) : null,
+    theory: theory && keepTheory(theory, rows),
+  };
+}
+
+function keepTheory({ window, columns }: MeasurementTheory, rows: readonly number[]): KeptTheory {
+  const floats = (values: readonly number[] | null) => values && Float64Array.from(values);
+  const matrix = window?.matrix ?? null;
+  return {
+    window:
+      window && matrix
+        ? {
+            kappa: Float64Array.from(window.kappa),
+            lo: floats(window.kappaLo),
+            hi: floats(window.kappaHi),
+            matrix: Float64Array.from(rows.flatMap((row) => matrix[row])),
+          }
+        : null,
+    columns: columns.map(({ name, values }) => ({
+      name,
+      values: Float64Array.from(rows, (row) => values[row]),
+    })),
   };
 }
 
 /** Where a template is evaluated on these points: over the bins where there are edges, unless averaging is off. */
-export function dataAxis(points: KeptPoints, options: Record<string, unknown>): Axis {
+export function dataAxis(
+  points: Pick<KeptPoints, 'lo' | 'hi' | 'kappa'>,
+  options: Record<string, unknown>,
+): Axis {
   const { lo, hi, kappa } = points;
   if (!lo || !hi || options.binAverage === false) return { kind: 'points', kappa };
   return { kind: 'bins', lo, hi, weightPower: Number(options.binWeight ?? 0) };

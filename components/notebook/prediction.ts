@@ -1,5 +1,6 @@
 import type { Curve } from '@/components/figures/points-figure';
-import { compileTemplate, type CompiledTemplate } from '@/lib/templates';
+import { assembleTemplate, theoryOfPart, type PartModel } from '@/lib/inference/assembled-template';
+import type { CompiledTemplate } from '@/lib/templates';
 import { chiSquare, dataAxis, residuals, type KeptPoints } from './kept-points';
 
 /** A template's id with its options. */
@@ -42,9 +43,18 @@ export function compilePrediction(settings: TemplateSettings, points: KeptPoints
 
 function compile({ id, options }: TemplateSettings, points: KeptPoints): Prediction {
   const kappa = fineKappa(points);
+  const { window, columns } = points.theory ?? { window: null, columns: [] };
+  const part: PartModel = {
+    label: 'measurement',
+    length: points.rows.length,
+    axis: dataAxis(window ?? points, options),
+    ...(window ? { window: window.matrix } : {}),
+    columns,
+  };
+  const fine = { id, options: { ...options, binAverage: false } };
   return {
-    onData: compileTemplate(id, options, dataAxis(points, options)),
-    fine: compileTemplate(id, { ...options, binAverage: false }, { kind: 'points', kappa }),
+    onData: assembleTemplate([part], { id, options }),
+    fine: theoryOfPart([part], fine, 0, { kind: 'points', kappa }),
     kappa,
     points,
   };

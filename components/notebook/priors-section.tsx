@@ -25,6 +25,7 @@ import { findPriorFaults } from './prior-faults';
 import { ParameterName, PriorDrawing, PriorFields } from './prior-row';
 import { priorInWords } from './prior-words';
 import { SaveRow } from './save-row';
+import { ColumnSwitch, isSwitchedOff } from './column-switch';
 import { conflictOf, type Draft } from './section-draft';
 import { SectionRecord } from './section-record';
 import { sectionState } from './section-states';
@@ -90,7 +91,20 @@ function PriorsTable({
         return {
           key: name,
           cells: {
-            parameter: <ParameterName declaration={declaration} />,
+            parameter: (
+              <>
+                <ParameterName declaration={declaration} />
+                {declaration.role === 'column' && editable ? (
+                  <ColumnSwitch
+                    name={name}
+                    on={!isSwitchedOff(prior)}
+                    onSwitch={(on) =>
+                      change(name, on ? declaration.defaultPrior : { kind: 'fixed', value: 0 })
+                    }
+                  />
+                ) : null}
+              </>
+            ),
             prior: editable ? (
               <>
                 <PriorFields

@@ -14,7 +14,7 @@ import { counted } from '@/components/words/counts';
 import { Raised } from '@/components/words/raised';
 import { formatNumber } from '@/lib/figures/format';
 import type { Measurement } from '@/lib/schemas';
-import { findTemplate, TemplateError, type Prior } from '@/lib/templates';
+import { findTemplate, TemplateError, withTheory, type Prior } from '@/lib/templates';
 import { withBestAmplitudes } from './best-amplitudes';
 import { ConflictMessage, twoStand } from './conflict-message';
 import { templateSentence } from './fold-sentences';
@@ -219,7 +219,10 @@ export function TemplateSection(props: TemplateSectionProps) {
     >
       <p>{template.summary}</p>
       {'prediction' in tried ? (
-        <LiveFormula formula={template.formula(tried.prediction.onData.options)} drawn={drawn} />
+        <LiveFormula
+          formula={withTheory(template.formula(tried.prediction.onData.options), measurement.theory)}
+          drawn={drawn}
+        />
       ) : null}
       {editable ? (
         <>

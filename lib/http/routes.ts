@@ -87,8 +87,12 @@ const measurementParts = {
   file: { limit: pointsLimit, required: true, summary: 'The points, as delimited text.' },
   covariance: { limit: mocksLimit, summary: 'Their covariance, one row a line.' },
   mocks: { limit: mocksLimit, summary: 'Mock measurements, one mock a line, in place of a covariance.' },
-  window: { limit: mocksLimit, summary: 'A window; not supported yet, and refused.' },
-  columns: { limit: mocksLimit, summary: 'Further linear columns; not supported yet, and refused.' },
+  window: {
+    limit: mocksLimit,
+    summary: 'A window: edges of the theory bins in two rows, then one row a bin.',
+  },
+  columns: { limit: pointsLimit, summary: 'Named columns that are fitted beside the template.' },
+  theoryCovariance: { limit: mocksLimit, summary: 'A known covariance added to that of the data.' },
   meta: { limit: metaLimit, summary: 'JSON: name, description, columns, mockCount, simulated, blind.' },
 } as const satisfies Record<string, PartRule>;
 

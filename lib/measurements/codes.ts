@@ -100,6 +100,28 @@ const table = {
   'mock-count-unused': 'Leave it out: the number of mocks is counted from their file.',
   'mocks-ok': '',
   'mocks-alike': '',
+  // How theory becomes data
+  'window-size':
+    'Write the lower edges of the theory bins, then the upper ones, then one row a bin in the order of the measurement file.',
+  'window-bins':
+    'Give the theory bins in ascending κ, without overlap, their lower edges in the first row and the upper in the second.',
+  'window-empty-row':
+    'Give the row that makes this bin from the theory bins, or leave the bin out of the measurement.',
+  'window-row-sums': 'Nothing has to be done if the measurement is normalised so.',
+  'window-ill-conditioned': 'Check that no row is there twice; such bins tell nothing apart.',
+  'window-ok': '',
+  'window-condition-ok': '',
+  'columns-size': 'Hand in one row a bin, in the order of the measurement file, and one column a template.',
+  'columns-kappa': 'Write the columns in the bins of the measurement and in the order of its file.',
+  'column-name':
+    'Name the column in a header line, in letters, digits and underscores, as no parameter is named.',
+  'column-empty': 'Leave the column out.',
+  'columns-ok': '',
+  'theory-covariance-size': 'Hand in one row and one column a bin, in the order of the measurement file.',
+  'theory-covariance-asymmetric': 'Write the full matrix, with equal elements on both sides of the diagonal.',
+  'theory-covariance-negative':
+    'Give the covariance of an uncertainty: a sum of squares has no negative eigenvalue.',
+  'theory-covariance-ok': '',
   // Cuts
   'cut-empty': 'Widen the cut so that it holds at least one whole bin.',
 } as const;

@@ -37,7 +37,7 @@ interface Line {
 }
 
 /** Finds delimiter, names and units of delimited text; throws MeasurementError where there is no table. */
-export function readHead(text: string): Head {
+export function readHead(text: string, fewest: 1 | 2 = 2): Head {
   const sample: Line[] = [];
   const comments: Line[] = [];
   forEachLine(text, (line, number) => {
@@ -61,7 +61,7 @@ export function readHead(text: string): Head {
   const dialect = detectDialect(sample.map(({ line }) => line));
   const first = sample[0];
   const cells = dropTrailing(cellsOf(first.line, first.number, dialect));
-  if (dialect.cells < 2) {
+  if (dialect.cells < fewest) {
     const message = `Line ${first.number} has a single column; κ and S are two.`;
     throw new MeasurementError('single-column', message, { part: 'file', line: first.number });
   }
@@ -155,7 +155,7 @@ function unitsBelow(
 }
 
 /** The head of an ECSV table: names and units from its YAML, in the order of the line of names. */
-export function readEcsvHead(text: string, { columns, delimiter }: EcsvHeader): Head {
+export function readEcsvHead(text: string, { columns, delimiter }: EcsvHeader, fewest: 1 | 2 = 2): Head {
   let found: Line | null = null;
   forEachLine(text, (line, number) => {
     if (line.trim() === '' || isComment(line)) return;
@@ -175,7 +175,7 @@ export function readEcsvHead(text: string, { columns, delimiter }: EcsvHeader): 
       { part: 'file', line: first.number },
     );
   }
-  if (columns.length < 2) {
+  if (columns.length < fewest) {
     throw new MeasurementError('single-column', 'The table has a single column; κ and S are two.', {
       part: 'file',
       line: first.number,

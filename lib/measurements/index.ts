@@ -12,6 +12,7 @@ export { checkMockCount, covarianceFromMocks, hartlapFactor, type MockCovariance
 export { findSuspiciousPoints, type SuspiciousPoint } from './suspicious-points';
 export { applyCuts, keptBins, type CutMeasurement, type Cuts, type ExcludedBin } from './cuts';
 export { carryExcluded, type CarriedBins, type PlacedBin } from './excluded-bins';
+export type { LinearColumn, TheoryInput, TheoryParts, Window } from './theory-parts';
 export {
   MAX_BINS,
   preflight,

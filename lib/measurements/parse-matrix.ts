@@ -4,13 +4,13 @@ import { finding, FindingList, MeasurementError, showCell, showNumber } from './
 import { openFile } from './formats/open-file';
 import { findNotFinite, type NumberTable } from './formats/table';
 import { decodeText, hasDecimalComma, isWord, MAX_BYTES, readCell } from './text';
-import type { Finding, NumericMatrix, Part } from './types';
+import type { Finding, MatrixPart, NumericMatrix, Part } from './types';
 
 /** Longest line of a matrix, bytes: a row of some hundred thousand numbers. */
 export const MAX_MATRIX_LINE = 8 * 1024 * 1024;
 
 export interface MatrixOptions {
-  part: 'covariance' | 'mocks';
+  part: MatrixPart;
   /** Largest file, bytes; 64 MB unless given. */
   maxBytes?: number;
   /** Leaves what cells hold out of the messages. */
@@ -52,7 +52,7 @@ export function parseMatrix(bytes: Uint8Array, fileName: string, options: Matrix
 }
 
 /** Columns of numbers as a matrix, row by row; rows stand in for lines. */
-function matrixOf(table: NumberTable, part: 'covariance' | 'mocks', withoutValues: boolean): NumericMatrix {
+function matrixOf(table: NumberTable, part: MatrixPart, withoutValues: boolean): NumericMatrix {
   const { rows, data } = table;
   if (rows === 0) throw new MeasurementError('no-rows', 'The file has columns but no rows.', { part });
   if (recogniseNames(table.columns.map(({ name }) => name))) {

@@ -16,6 +16,8 @@ export interface ParseOptions {
   maxBytes?: number;
   /** Leaves what cells hold out of the messages. */
   withoutValues?: boolean;
+  /** Fewest columns that make a table; 2 unless given, since κ and S are two. */
+  fewest?: 1 | 2;
 }
 
 /**
@@ -33,21 +35,21 @@ export function parseMeasurement(
   const opened = openFile(bytes, fileName, 'file', options.maxBytes ?? MAX_BYTES);
   const table =
     opened.kind === 'numbers'
-      ? namedTable(opened.table, options.withoutValues ?? false)
-      : readText(opened.bytes, opened.ecsv, options.withoutValues ?? false);
+      ? namedTable(opened.table, options)
+      : readText(opened.bytes, opened.ecsv, options);
   if (options.columns) requireColumns(table, options.columns);
   return table;
 }
 
 /** Columns of numbers as a table; rows stand in for lines. */
-function namedTable(numbers: NumberTable, withoutValues: boolean): ParsedTable {
+function namedTable(numbers: NumberTable, { withoutValues = false, fewest = 2 }: ParseOptions): ParsedTable {
   const { rows, data } = numbers;
   if (rows === 0)
     throw new MeasurementError('no-rows', 'The file has columns but no rows.', { part: 'file' });
   if (data.length > MAX_COLUMNS) {
     throw new MeasurementError('too-many-columns', `The file has ${data.length} columns.`, { part: 'file' });
   }
-  if (data.length < 2) {
+  if (data.length < fewest) {
     throw new MeasurementError('single-column', 'The file has a single column; κ and S are two.', {
       part: 'file',
     });
@@ -62,9 +64,13 @@ function namedTable(numbers: NumberTable, withoutValues: boolean): ParsedTable {
   return { columns, rows, data, lines: Int32Array.from({ length: rows }, (_, row) => row + 1), findings };
 }
 
-function readText(bytes: Uint8Array, ecsv: EcsvHeader | null, withoutValues: boolean): ParsedTable {
+function readText(
+  bytes: Uint8Array,
+  ecsv: EcsvHeader | null,
+  { withoutValues = false, fewest = 2 }: ParseOptions,
+): ParsedTable {
   const { text, utf8 } = decodeText(bytes);
-  const head = ecsv ? readEcsvHead(text, ecsv) : readHead(text);
+  const head = ecsv ? readEcsvHead(text, ecsv, fewest) : readHead(text, fewest);
   const reader = new RowReader(head, withoutValues);
   forEachLine(text, (line, number) => {
     if (number === head.headerLine || number === head.unitsLine || line.trim() === '' || isComment(line))

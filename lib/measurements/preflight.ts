@@ -6,6 +6,7 @@ import { checkMockCount, covarianceFromMocks } from './mocks';
 import { parseMatrix } from './parse-matrix';
 import { parseMeasurement } from './parse-measurement';
 import { findSuspiciousPoints } from './suspicious-points';
+import { readTheoryParts, type TheoryInput, type TheoryParts } from './theory-parts';
 import type {
   ColumnMapping,
   Finding,
@@ -29,7 +30,7 @@ export interface UploadedFile {
   name: string;
 }
 
-export interface PreflightInput {
+export interface PreflightInput extends Omit<TheoryInput, 'maxBytes'> {
   /** The measurement, as bytes or as already read. */
   file: UploadedFile | ParsedTable;
   covariance?: UploadedFile | NumericMatrix | null;
@@ -65,6 +66,8 @@ export interface PreflightPassed {
   mockMean: Float64Array | null;
   /** What a bispectrum was turned into S by; null where the file gives S. */
   spectrum: ResolvedSpectrum | null;
+  /** Window, columns and theory covariance; empty where none came. */
+  theory: TheoryParts;
   checks: Finding[];
 }
 
@@ -119,15 +122,17 @@ export function preflight(input: PreflightInput): PreflightResult {
   if (table) checks.push(...checkSize(table));
   const factors = applied?.conversion?.factors ?? null;
   const known = resolveCovariance(input, checks, measurement, table, factors);
+  const theory =
+    measurement && readTheoryParts(input, measurement, known?.covariance ?? null, factors, checks);
   if (table && measurement) checks.push(...passedChecks(checks, measurement));
   if (table && measurement && known) {
     checks.push(...suspiciousPoints(table, measurement, known.covariance, withoutValues));
   }
   checks.sort((a, b) => levels[a.level] - levels[b.level]);
   const summary = measurement && summarise(measurement);
-  if (table && mapping && measurement && summary && known && !hasErrors(checks)) {
+  if (table && mapping && measurement && summary && known && theory && !hasErrors(checks)) {
     const spectrum = applied?.conversion?.spectrum ?? null;
-    return { ok: true, table, mapping, measurement, summary, spectrum, ...known, checks };
+    return { ok: true, table, mapping, measurement, summary, spectrum, ...known, theory, checks };
   }
   return { ok: false, table, mapping, measurement, summary, checks };
 }

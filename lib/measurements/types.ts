@@ -5,7 +5,10 @@ import type { FindingCode } from './codes';
 export type FindingLevel = 'error' | 'warning' | 'note' | 'ok';
 
 /** Which upload a finding is about. */
-export type Part = 'file' | 'covariance' | 'mocks';
+export type Part = 'file' | 'covariance' | 'mocks' | 'window' | 'columns' | 'theoryCovariance';
+
+/** The uploads that are matrices of numbers without names. */
+export type MatrixPart = Exclude<Part, 'file' | 'columns'>;
 
 export interface Finding {
   /** Closed set, kebab-case: `missing-column`, `not-a-number`, `edges-ok` … */

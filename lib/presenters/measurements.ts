@@ -1,4 +1,5 @@
 import type { Measurement as MeasurementRow, MeasurementVersion } from '@/models';
+import type { TheoryParts } from '@/lib/measurements';
 import {
   checkSchema,
   covarianceSources,
@@ -7,6 +8,7 @@ import {
   type Correlation,
   type MeasurementCreated,
   type MeasurementListed,
+  type MeasurementTheory,
   type MeasurementSummary,
   type MeasurementVersionLine,
   type RestingNotebook,
@@ -42,10 +44,13 @@ export interface VersionNumbers {
   kappaHi: Float64Array | null;
   S: Float64Array;
   covariance: Float64Array;
+  theory: TheoryParts;
 }
 
 /** Above this many bins the answer would be larger than a page can use. */
 const covarianceShownTo = 200;
+/** A window of so many numbers and more stays on the server. */
+const matrixShownTo = covarianceShownTo ** 2;
 
 const presentChecks = (version: VersionHead): Check[] =>
   version.checks.map((check) => checkSchema.parse(check));
@@ -128,7 +133,33 @@ export function presentMeasurement(
       rows > covarianceShownTo
         ? null
         : Array.from({ length: rows }, (_, i) => [...covariance.subarray(i * rows, (i + 1) * rows)]),
+    theory: presentTheory(numbers),
     may: [...around.may],
+  };
+}
+
+/** Rows of a matrix; null where it has more numbers than a page can use. */
+const rowsOf = (matrix: Float64Array, rows: number): number[][] =>
+  Array.from({ length: rows }, (_, i) => {
+    const width = matrix.length / rows;
+    return [...matrix.subarray(i * width, (i + 1) * width)];
+  });
+
+/** Nothing of it is data: window, columns and theory covariance are shown of a blind measurement too. */
+function presentTheory({ kappa, theory }: VersionNumbers): MeasurementTheory | null {
+  const { window, columns, covariance } = theory;
+  if (!window && columns.length === 0 && !covariance) return null;
+  const rows = kappa.length;
+  return {
+    window: window && {
+      kappaLo: window.lo && [...window.lo],
+      kappaHi: window.hi && [...window.hi],
+      kappa: [...window.kappa],
+      matrix: window.matrix.length > matrixShownTo ? null : rowsOf(window.matrix, rows),
+    },
+    columns: columns.map(({ name, values }) => ({ name, values: [...values] })),
+    sigma: covariance && Array.from(kappa, (_, i) => Math.sqrt(Math.max(0, covariance[i * rows + i]))),
+    covariance: covariance && (rows > covarianceShownTo ? null : rowsOf(covariance, rows)),
   };
 }
 

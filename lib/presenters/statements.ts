@@ -41,11 +41,15 @@ interface Quantity {
 }
 
 /** Everything that a fit has a number for: its template's parameters and what is derived from them. */
-export function quantitiesOfFit({ template }: Pick<ReferredFit, 'template'>): Quantity[] {
+export function quantitiesOfFit({ template, priors }: Pick<ReferredFit, 'template' | 'priors'>): Quantity[] {
   const declaration = findTemplate(template.id);
-  return [...declaration.parameters(template.options), ...declaration.derived(template.options)].map(
-    ({ name, label }) => ({ name, label }),
-  );
+  const declared = [
+    ...declaration.parameters(template.options),
+    ...declaration.derived(template.options),
+  ].map(({ name, label }) => ({ name, label }));
+  // The columns of a measurement have priors like any parameter; their names are the group's own words.
+  const own = Object.keys(priors).filter((name) => !declared.some((each) => each.name === name));
+  return [...declared, ...own.map((name) => ({ name, label: `column ${name}` }))];
 }
 
 const listed = (words: readonly string[]): string =>

@@ -1,3 +1,4 @@
+import { fileParts } from './measurements';
 import { z } from 'zod';
 import { idSchema, instantSchema, numberOrNull, sha256Schema } from './shared';
 import { fitStatusSchema, likelihoodSchema, cutsSchema } from './notebooks';
@@ -27,7 +28,7 @@ export type ExtendFit = z.infer<typeof extendFitSchema>;
 
 /** Everything that determines the draws: no id, no time, no name of a person. Its SHA-256 is of its canonical JSON. */
 export const snapshotSchema = z.object({
-  inputs: z.array(z.object({ part: z.enum(['file', 'covariance', 'mocks']), sha256: sha256Schema })),
+  inputs: z.array(z.object({ part: z.enum(fileParts), sha256: sha256Schema })),
   measurementVersion: z.number().int(),
   /** Which columns of the file are what. */
   mapping: z.record(z.string(), z.unknown()),
@@ -235,7 +236,7 @@ export const manifestSchema = z.object({
   snapshotSha256: sha256Schema,
   inputs: z.array(
     z.object({
-      part: z.enum(['file', 'covariance', 'mocks']),
+      part: z.enum(fileParts),
       fileName: z.string(),
       bytes: z.number().int(),
       sha256: sha256Schema,

@@ -69,12 +69,16 @@ export const uploadMetaSchema = z.strictObject({
 });
 export type UploadMeta = z.infer<typeof uploadMetaSchema>;
 
+/** The files that an upload may have. */
+export const fileParts = ['file', 'covariance', 'mocks', 'window', 'columns', 'theoryCovariance'] as const;
+export type FilePart = (typeof fileParts)[number];
+
 export const checkSchema = z.object({
   code: z.string(),
   level: z.enum(['error', 'warning', 'note', 'ok']),
   message: z.string(),
   remedy: z.string().optional(),
-  part: z.enum(['file', 'covariance', 'mocks']).optional(),
+  part: z.enum(fileParts).optional(),
   line: z.number().int().optional(),
   column: z.number().int().optional(),
 });
@@ -124,7 +128,7 @@ export type MeasurementListed = z.infer<typeof measurementListedSchema>;
 
 /** One stored file of a measurement. */
 export const storedFileSchema = z.object({
-  part: z.enum(['file', 'covariance', 'mocks']),
+  part: z.enum(fileParts),
   fileName: z.string(),
   bytes: z.number().int(),
   sha256: sha256Schema,
@@ -184,6 +188,25 @@ export const correlationSchema = z.object({
 });
 export type Correlation = z.infer<typeof correlationSchema>;
 
+/** Window, columns and theory covariance of a measurement. Rows are in ascending κ. */
+export const measurementTheorySchema = z.object({
+  window: z
+    .object({
+      /** Edges of the theory bins; null where the theory is evaluated at points. */
+      kappaLo: z.array(z.number()).nullable(),
+      kappaHi: z.array(z.number()).nullable(),
+      kappa: z.array(z.number()),
+      /** One row a bin of the measurement; null above 40,000 numbers. */
+      matrix: z.array(z.array(z.number())).nullable(),
+    })
+    .nullable(),
+  columns: z.array(z.object({ name: z.string(), values: z.array(z.number()) })),
+  /** Square roots of the theory covariance's diagonal; null without one. */
+  sigma: z.array(z.number()).nullable(),
+  covariance: z.array(z.array(z.number())).nullable(),
+});
+export type MeasurementTheory = z.infer<typeof measurementTheorySchema>;
+
 export const measurementSchema = measurementSummarySchema.extend({
   groupId: idSchema,
   sha256: sha256Schema,
@@ -210,6 +233,8 @@ export const measurementSchema = measurementSummarySchema.extend({
   }),
   /** Sample or given covariance, row by row; for χ² in the browser. Null above 200 bins. */
   covariance: z.array(z.array(z.number())).nullable(),
+  /** How theory becomes the data, where files of the upload say so; null where none does. */
+  theory: measurementTheorySchema.nullable(),
   may: z.array(z.string()),
 });
 export type Measurement = z.infer<typeof measurementSchema>;

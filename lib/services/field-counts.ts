@@ -4,7 +4,10 @@ import type { MeasurementVersion, NotebookSettings } from '@/models';
 import { refusingFaults } from './inference-faults';
 import { settleSettings } from './notebook-settings';
 
-type Version = Pick<MeasurementVersion, 'rows' | 'hasBinEdges' | 'points' | 'covariance' | 'mockCount'>;
+type Version = Pick<
+  MeasurementVersion,
+  'rows' | 'hasBinEdges' | 'points' | 'covariance' | 'mockCount' | 'theory'
+>;
 
 /** Why a template has no family of numbers of fields, as a sentence; null where it has. */
 export function withoutFamily({ template }: NotebookSettings): string | null {

@@ -10,6 +10,8 @@ export interface StoredNumbers {
   mockCount: number | null;
   points: Uint8Array;
   covariance: Uint8Array;
+  /** Window, columns and theory covariance; null for none. */
+  theory: Uint8Array | null;
 }
 
 /** All that a thread needs to build a fit's posterior anew. */
@@ -20,8 +22,8 @@ export interface FitModel {
 
 /** Those of a row; its fields are getters, which a spread would miss. */
 export function storedNumbers(version: MeasurementVersion): StoredNumbers {
-  const { rows, hasBinEdges, mockCount, points, covariance } = version;
-  return { rows, hasBinEdges, mockCount, points, covariance };
+  const { rows, hasBinEdges, mockCount, points, covariance, theory } = version;
+  return { rows, hasBinEdges, mockCount, points, covariance, theory };
 }
 
 export function fitModel(version: MeasurementVersion, snapshot: Snapshot): FitModel {

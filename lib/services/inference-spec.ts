@@ -1,9 +1,10 @@
 import type { MeasurementVersion, NotebookSettings } from '@/models';
-import type { InferenceSpec } from '@/lib/inference';
-import { applyCuts, keptBins, type Measurement } from '@/lib/measurements';
+import { assemble, type InferenceSpec, type PartModel } from '@/lib/inference';
+import { applyCuts, keptBins, type Measurement, type TheoryParts } from '@/lib/measurements';
 import { likelihoodSchema, priorsSchema } from '@/lib/schemas';
-import { compileTemplate, findTemplate, type Axis } from '@/lib/templates';
+import { findTemplate, type Axis } from '@/lib/templates';
 import { refusingFaults } from './inference-faults';
+import { cutTheory, readTheory } from './stored-theory';
 
 /** The numbers of a measurement's version: `rows` values each, ascending in κ; covariance rows × rows, row-major. */
 export interface Points {
@@ -13,10 +14,16 @@ export interface Points {
   kappaHi: Float64Array | null;
   S: Float64Array;
   covariance: Float64Array;
+  /** Window, columns and theory covariance; empty where none came with the measurement. */
+  theory: TheoryParts;
 }
 
 type StoredColumns = Pick<MeasurementVersion, 'rows' | 'hasBinEdges' | 'points'>;
-type StoredPoints = StoredColumns & Pick<MeasurementVersion, 'covariance'>;
+type StoredPoints = StoredColumns &
+  Pick<MeasurementVersion, 'covariance'> & {
+    /** As `writeTheory` wrote it; null where nothing came with the measurement. */
+    theory: Uint8Array | null;
+  };
 type StoredNumbers = StoredPoints & Pick<MeasurementVersion, 'mockCount'>;
 
 /** Little-endian float64 of a stored column; byte by byte, because a buffer may start anywhere in memory. */
@@ -39,7 +46,7 @@ export function writeDoubles(...columns: Float64Array[]): Buffer {
 }
 
 /** The stored columns of a version without its covariance, which is the square of the rest. */
-export function readColumns(version: StoredColumns): Omit<Points, 'covariance'> {
+export function readColumns(version: StoredColumns): Omit<Points, 'covariance' | 'theory'> {
   const { rows, hasBinEdges } = version;
   const all = readDoubles(version.points, 'points', 4 * rows);
   const column = (index: number): Float64Array => all.slice(index * rows, (index + 1) * rows);
@@ -54,7 +61,11 @@ export function readColumns(version: StoredColumns): Omit<Points, 'covariance'> 
 /** Copies the stored numbers of a version into arrays. Throws where their lengths don't agree with its rows. */
 export function readPoints(version: StoredPoints): Points {
   const { rows } = version;
-  return { ...readColumns(version), covariance: readDoubles(version.covariance, 'covariance', rows * rows) };
+  return {
+    ...readColumns(version),
+    covariance: readDoubles(version.covariance, 'covariance', rows * rows),
+    theory: readTheory(version.theory, rows),
+  };
 }
 
 /** How many bins a notebook's cuts keep; needs no covariance. `invalid` at `cuts` where they keep none. */
@@ -81,23 +92,51 @@ export function cutPoints(version: StoredPoints, cuts: NotebookSettings['cuts'])
   };
   const cut = refusingFaults(() => applyCuts(measurement, points.covariance, cuts));
   const { kappa, kappaLo, kappaHi, S } = cut.measurement;
-  return { kappa, kappaLo, kappaHi, S, covariance: cut.covariance, kept: [...cut.indices] };
+  const kept = [...cut.indices];
+  const theory = cutTheory(points.theory, version.rows, kept);
+  return { kappa, kappaLo, kappaHi, S, covariance: cut.covariance, theory, kept };
 }
 
 /**
  * Where a template is evaluated on these points: averaged over the bins where there are edges, unless `binAverage` is
  * false; at κ else. `options` must be settled.
  */
-export function axisOf(points: Points, options: Record<string, unknown>): Axis {
+export function axisOf(
+  points: Pick<Points, 'kappa' | 'kappaLo' | 'kappaHi'>,
+  options: Record<string, unknown>,
+): Axis {
   const { kappa, kappaLo, kappaHi } = points;
   if (kappaLo === null || kappaHi === null || options.binAverage === false) return { kind: 'points', kappa };
   return { kind: 'bins', lo: kappaLo, hi: kappaHi, weightPower: Number(options.binWeight ?? 0) };
+}
+
+/**
+ * How a template becomes the values of these points: through the window where there is one, whose own bins or points then are where the
+ * theory is evaluated, and with the columns beside it.
+ */
+export function partModel(
+  points: CutPoints,
+  options: Record<string, unknown>,
+  label = 'measurement',
+): PartModel {
+  const { window, columns } = points.theory;
+  const axis = window
+    ? axisOf({ kappa: window.kappa, kappaLo: window.lo, kappaHi: window.hi }, options)
+    : axisOf(points, options);
+  return {
+    label,
+    length: points.S.length,
+    axis,
+    ...(window ? { window: window.matrix } : {}),
+    ...(columns.length > 0 ? { columns } : {}),
+  };
 }
 
 export interface NotebookInference {
   spec: InferenceSpec;
   /** Indices of the rows that the cuts keep, ascending. */
   kept: number[];
+  /** Where the data are; a window's theory may be elsewhere. */
   axis: Axis;
 }
 
@@ -109,16 +148,23 @@ export function specOnPoints(
 ): NotebookInference {
   const { id, options } = settings.template;
   return refusingFaults(() => {
-    const axis = axisOf(points, findTemplate(id).normaliseOptions(options));
+    const settled = findTemplate(id).normaliseOptions(options);
+    const { covariance: added } = points.theory;
     return {
-      spec: {
-        data: { S: points.S, covariance: points.covariance, mockCount },
+      spec: assemble({
+        parts: [
+          {
+            ...partModel(points, settled),
+            data: { S: points.S, covariance: points.covariance, mockCount },
+            ...(added ? { theoryCovariance: added } : {}),
+          },
+        ],
+        template: { id, options },
         likelihood: likelihoodSchema.parse(settings.likelihood).kind,
-        template: compileTemplate(id, options, axis),
         priors: priorsSchema.parse(settings.priors),
-      },
+      }),
       kept: points.kept,
-      axis,
+      axis: axisOf(points, settled),
     };
   });
 }

@@ -2,6 +2,7 @@ import { storage } from '@/storage';
 import type { StoredFile } from '@/models';
 import { AppError } from '@/lib/errors';
 import { log } from '@/lib/log';
+import { fileParts } from '@/lib/schemas';
 
 /** One part of an upload, in memory. */
 export interface UploadedPart {
@@ -38,7 +39,7 @@ const keyOf = (ids: { measurementId: string; versionId: string }, part: FilePart
 
 /** The version that a key was made for; null for a key that isn't one of ours. */
 export const versionOfKey = (key: string): string | null =>
-  /^measurements\/[0-9a-f-]{36}\/([0-9a-f-]{36})\/[a-z]+$/.exec(key)?.[1] ?? null;
+  /^measurements\/[0-9a-f-]{36}\/([0-9a-f-]{36})\/[A-Za-z]+$/.exec(key)?.[1] ?? null;
 
 /** Removes objects that no row points at. What can't be removed is logged and left to the sweep of stray files. */
 export async function discardFiles(files: readonly StoredFile[]): Promise<void> {
@@ -59,7 +60,7 @@ export async function storeFiles(
 ): Promise<StoredFile[]> {
   const stored: StoredFile[] = [];
   try {
-    for (const part of ['file', 'covariance', 'mocks'] as const) {
+    for (const part of fileParts) {
       const upload = parts[part];
       if (!upload) continue;
       const key = keyOf(ids, part);

@@ -3,7 +3,9 @@ import path from 'node:path';
 import { Worker } from 'node:worker_threads';
 import { AppError } from '@/lib/errors';
 import { log } from '@/lib/log';
-import { preflight } from '@/lib/measurements';
+import { preflight, type PreflightResult } from '@/lib/measurements';
+import { fileParts } from '@/lib/schemas';
+import { columnNameFault } from '@/lib/templates';
 import { ownedBuffers } from './owned-buffers';
 import type { CheckedFiles, FilesToCheck } from './preflight-thread';
 
@@ -47,10 +49,12 @@ async function inTurn<T>(act: () => Promise<T>): Promise<T> {
   }
 }
 
+const checkHere = (files: FilesToCheck): PreflightResult =>
+  preflight({ ...files, columnFault: columnNameFault });
+
 /** Which part an upload owes its size to. */
-function largestPart({ file, covariance, mocks }: FilesToCheck): { part: string; bytes: number } {
-  const parts = Object.entries({ file, covariance, mocks });
-  const sizes = parts.map(([part, upload]) => ({ part, bytes: upload?.bytes.byteLength ?? 0 }));
+function largestPart(files: FilesToCheck): { part: string; bytes: number } {
+  const sizes = fileParts.map((part) => ({ part, bytes: files[part]?.bytes.byteLength ?? 0 }));
   return sizes.reduce((a, b) => (b.bytes > a.bytes ? b : a));
 }
 
@@ -110,9 +114,8 @@ export async function checkFiles(
   files: FilesToCheck,
   limits: PreflightLimits = standardLimits,
 ): Promise<CheckedFiles> {
-  const { file, covariance, mocks } = files;
-  const bytes = [file, covariance, mocks].reduce((sum, upload) => sum + (upload?.bytes.byteLength ?? 0), 0);
-  if (bytes <= IN_LINE_BYTES) return { files, result: preflight(files) };
+  const bytes = fileParts.reduce((sum, part) => sum + (files[part]?.bytes.byteLength ?? 0), 0);
+  if (bytes <= IN_LINE_BYTES) return { files, result: checkHere(files) };
   // By path and at run time: a bundler that followed it would make the thread a part of the pages.
   const bundle = path.join(
     /* turbopackIgnore: true */ process.cwd(),
@@ -122,7 +125,7 @@ export async function checkFiles(
   );
   if (!existsSync(bundle)) {
     log.warn({ bundle }, 'a large upload is checked in line: the thread is not built');
-    return { files, result: preflight(files) };
+    return { files, result: checkHere(files) };
   }
   return inTurn(() => checkInThread(bundle, files, limits));
 }

@@ -5,10 +5,17 @@ import { database } from '@/lib/db';
 import { AppError, notFound } from '@/lib/errors';
 import type { Finding, PreflightPassed, UploadedFile } from '@/lib/measurements';
 import { presentCreated } from '@/lib/presenters/measurements';
-import { uploadMetaSchema, type ErrorDetail, type MeasurementCreated, type UploadMeta } from '@/lib/schemas';
+import {
+  fileParts,
+  uploadMetaSchema,
+  type ErrorDetail,
+  type MeasurementCreated,
+  type UploadMeta,
+} from '@/lib/schemas';
 import type { Access } from './access';
 import { recordEvent } from './audit';
 import { writeDoubles } from './inference-spec';
+import { writeTheory } from './stored-theory';
 import {
   cleanFileName,
   discardFiles,
@@ -20,7 +27,7 @@ import {
 import { checkFiles } from './measurement-preflight';
 
 /** Every part that the form of an upload may have. */
-export type UploadForm = Readonly<Partial<Record<FilePart | 'window' | 'columns' | 'meta', UploadedPart>>>;
+export type UploadForm = Readonly<Partial<Record<FilePart | 'meta', UploadedPart>>>;
 
 interface CheckedUpload {
   files: Partial<Record<FilePart, UploadedPart>> & { file: UploadedPart };
@@ -66,11 +73,6 @@ const detailOf = ({ part, line, column, message, remedy }: Finding): ErrorDetail
 
 /** Reads and checks an upload without storing anything; every fault is `invalid` with its place and remedy. */
 async function checkUpload(form: UploadForm): Promise<CheckedUpload> {
-  for (const part of ['window', 'columns'] as const) {
-    if (given(form[part])) {
-      throw refuse(part, `The part \`${part}\` is not supported yet. Send the measurement without it.`);
-    }
-  }
   const file = given(form.file);
   if (!file) throw refuse('file', 'There is no file. Choose the measurement as the part `file`.');
   const meta = readMeta(given(form.meta));
@@ -80,13 +82,17 @@ async function checkUpload(form: UploadForm): Promise<CheckedUpload> {
       'Blind measurements are not supported in this version. Nothing was stored; leave out `blind` to upload it open.',
     );
   }
-  const covariance = given(form.covariance);
-  const mocks = given(form.mocks);
-  const named = ({ bytes, fileName }: UploadedPart): UploadedFile => ({ bytes, name: fileName });
+  const named = (part: FilePart): UploadedFile | undefined => {
+    const upload = given(form[part]);
+    return upload && { bytes: upload.bytes, name: upload.fileName };
+  };
   const { files, result } = await checkFiles({
-    file: named(file),
-    covariance: covariance && named(covariance),
-    mocks: mocks && named(mocks),
+    file: { bytes: file.bytes, name: file.fileName },
+    covariance: named('covariance'),
+    mocks: named('mocks'),
+    window: named('window'),
+    columns: named('columns'),
+    theoryCovariance: named('theoryCovariance'),
     mapping: meta.columns,
     spectrum: meta.spectrum,
     mockCount: meta.mockCount,
@@ -102,8 +108,12 @@ async function checkUpload(form: UploadForm): Promise<CheckedUpload> {
   return {
     files: {
       file: part(files.file),
-      ...(files.covariance && { covariance: part(files.covariance) }),
-      ...(files.mocks && { mocks: part(files.mocks) }),
+      ...Object.fromEntries(
+        fileParts.flatMap((name) => {
+          const checked = name === 'file' ? undefined : files[name];
+          return checked ? [[name, part(checked)]] : [];
+        }),
+      ),
     },
     meta,
     result,
@@ -150,6 +160,7 @@ function versionOf({ result, meta }: CheckedUpload, files: StoredFile[]) {
       measurement.S,
     ),
     covariance: writeDoubles(result.covariance),
+    theory: writeTheory(result.theory),
   };
 }
 

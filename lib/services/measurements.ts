@@ -19,7 +19,7 @@ import { readPoints } from './inference-spec';
 import { countFitsOn, countNotebooks, notebooksOn } from './measurement-rest';
 import { emailsOf } from './people';
 
-const heads = { exclude: ['points', 'covariance'] };
+const heads = { exclude: ['points', 'covariance', 'theory'] };
 
 const nameOf = (people: ReadonlyMap<string, string>, id: string): string =>
   people.get(id) ?? 'a former member';

@@ -1,9 +1,9 @@
 import { isDeepStrictEqual } from 'node:util';
 import type { MeasurementVersion, NotebookSettings } from '@/models';
 import { AppError } from '@/lib/errors';
-import { buildLikelihood, type InferenceSpec } from '@/lib/inference';
+import { assembledParameters, buildMetric, likelihoodFor, type InferenceSpec } from '@/lib/inference';
 import { layOutParameters } from '@/lib/inference/parameter-layout';
-import { carryExcluded, type ExcludedBin } from '@/lib/measurements';
+import { carryExcluded, type ExcludedBin, type TheoryParts } from '@/lib/measurements';
 import type { CreateNotebook, NotebookSection } from '@/lib/schemas';
 import { findTemplate, type ParameterDeclaration, type Prior } from '@/lib/templates';
 import { defaultPrior, type DataScale } from './default-priors';
@@ -22,7 +22,10 @@ export interface SettingsDraft {
   kept: NotebookSettings['priors'];
 }
 
-type Version = Pick<MeasurementVersion, 'rows' | 'hasBinEdges' | 'points' | 'covariance' | 'mockCount'>;
+type Version = Pick<
+  MeasurementVersion,
+  'rows' | 'hasBinEdges' | 'points' | 'covariance' | 'mockCount' | 'theory'
+>;
 
 function settlePriors(
   parameters: readonly ParameterDeclaration[],
@@ -47,12 +50,14 @@ function settlePriors(
   );
 }
 
+const defaultLikelihood = (mockCount: number | null, { covariance }: TheoryParts) =>
+  likelihoodFor([{ data: { mockCount }, ...(covariance ? { theoryCovariance: covariance } : {}) }], false);
+
 /** Refuses priors, or a likelihood, with which no posterior can be built. */
 export function checkFittable({ data, likelihood, template, priors }: InferenceSpec): void {
   refusingFaults(() => {
     const { free } = layOutParameters({ template, priors });
-    // The determinant shifts the density only; that C is positive definite was settled at upload, and a cut keeps it.
-    buildLikelihood(likelihood, data.mockCount, data.S.length, free.length, 0);
+    buildMetric(data, likelihood, free.length);
   });
 }
 
@@ -101,10 +106,14 @@ export function settleSettings(
   const cuts = settleCuts(version, draft.cuts);
   const points = cutPoints(version, cuts);
   const { id, options } = draft.template;
-  const parameters = refusingFaults(() => findTemplate(id).parameters(options));
+  const parameters = refusingFaults(() =>
+    assembledParameters(findTemplate(id).parameters(options), [
+      { label: 'measurement', columns: points.theory.columns },
+    ]),
+  );
   const settings: NotebookSettings = {
     cuts,
-    likelihood: draft.likelihood ?? { kind: version.mockCount === null ? 'normal' : 'matched-t' },
+    likelihood: draft.likelihood ?? { kind: defaultLikelihood(version.mockCount, points.theory) },
     template: { id, version: 0, options },
     priors: settlePriors(parameters, draft, measurement.blind ? null : points),
   };

@@ -6,6 +6,7 @@ import {
   type PreflightResult,
   type UploadedFile,
 } from '@/lib/measurements';
+import { columnNameFault } from '@/lib/templates';
 import { ownedBuffers } from './owned-buffers';
 
 /** The files of an upload and what was said about them. */
@@ -13,6 +14,9 @@ export interface FilesToCheck {
   file: UploadedFile;
   covariance?: UploadedFile;
   mocks?: UploadedFile;
+  window?: UploadedFile;
+  columns?: UploadedFile;
+  theoryCovariance?: UploadedFile;
   mapping?: ColumnMapping;
   spectrum?: PowerSpectrum;
   mockCount?: number;
@@ -26,5 +30,5 @@ export interface CheckedFiles {
 
 /** The entry of a thread that checks one upload and ends. It is bundled by itself and started by its path. */
 const files = workerData as FilesToCheck;
-const answer: CheckedFiles = { files, result: preflight(files) };
+const answer: CheckedFiles = { files, result: preflight({ ...files, columnFault: columnNameFault }) };
 parentPort?.postMessage(answer, ownedBuffers(answer));

@@ -1,4 +1,4 @@
-import { layOutParameters } from '@/lib/inference/parameter-layout';
+import { isFixedColumn, layOutParameters } from '@/lib/inference/parameter-layout';
 import type { InferenceSpec } from '@/lib/inference';
 import { nullThreshold, reachOf, runScan, type NullHeights, type ScanOutcome } from '@/lib/inference/scan';
 import { templateCoordinates } from '@/lib/inference/scan/template-coordinates';
@@ -12,6 +12,7 @@ import {
   specOnPoints,
   writeDoubles,
   type NotebookInference,
+  type Points,
 } from './inference-spec';
 import type { StoredNumbers } from './fit-model';
 
@@ -43,7 +44,8 @@ function withFields(settings: Settings, count: number): NotebookSettings {
     cuts: settings.cuts,
     likelihood: settings.likelihood,
     template: { id, version, options: changed },
-    priors,
+    // Columns of the measurement are no parameters of the template: their priors stay.
+    priors: { ...settings.priors, ...priors },
   };
 }
 
@@ -83,6 +85,12 @@ export interface FinishedScan {
   planeHeights: Buffer | null;
 }
 
+/** Covariance of the data about a prediction, before cuts: what the theory leaves out scatters too. */
+const scatterOf = ({ covariance, theory }: Points): Float64Array => {
+  const added = theory.covariance;
+  return added ? covariance.map((value, k) => value + added[k]) : covariance;
+};
+
 /** Runs a scan as it was requested. Reads nothing but its arguments. */
 export function performScan(
   { numbers, request, seed }: ScanJobModel,
@@ -99,7 +107,7 @@ export function performScan(
       muMax: request.muMax,
       nulls: request.nulls,
       source: {
-        covariance: readPoints(stored).covariance,
+        covariance: scatterOf(readPoints(stored)),
         rows: numbers.rows,
         kept: specs.notebook.kept,
         mocks: numbers.mockCount,
@@ -159,7 +167,7 @@ function bestParameters({ line }: ScanOutcome, spec: InferenceSpec): Record<stri
   const { raw, coefficients } = line.best.fit;
   const values: Record<string, number> = {};
   const free = parameters.filter(
-    ({ name, role }) => role === 'background' && spec.priors[name].kind !== 'fixed',
+    ({ name, role }) => isFixedColumn(role) && spec.priors[name].kind !== 'fixed',
   );
   free.forEach(({ name }, k) => (values[name] = coefficients[coefficients.length - free.length + k]));
   for (const { name, role } of parameters) {

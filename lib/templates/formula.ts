@@ -49,6 +49,21 @@ export function sumFormula(
   };
 }
 
+/**
+ * The formula with what turns it into the values of a measurement, where that has a window or columns: Ŝ_i = Σ_j W_ij S_j + Σ d t_i. It
+ * stands among the definitions, so that the template's own line stays as it is.
+ */
+export function withTheory(
+  formula: TemplateFormula,
+  theory: { window: unknown; columns: readonly { name: string }[] } | null,
+): TemplateFormula {
+  if (!theory || (!theory.window && theory.columns.length === 0)) return formula;
+  const names = theory.columns.map(({ name }) => `\\mathrm{${name.replaceAll('_', '\\_')}}`);
+  const seen = theory.window ? '\\textstyle\\sum_j W_{ij}\\,S(\\kappa_j)' : 'S(\\kappa_i)';
+  const terms = [seen, ...names.map((name) => `d_{${name}}\\,t^{${name}}_{i}`)];
+  return { ...formula, definitions: [...formula.definitions, `\\hat{S}_i = ${terms.join(' + ')}`] };
+}
+
 /** What the angle brackets mean, where there are any. */
 export function averageDefinition(averaged: boolean, weight: number): string[] {
   if (!averaged) return [];

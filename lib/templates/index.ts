@@ -32,6 +32,7 @@ export {
 export { fieldCount } from './options';
 export { isLightMass } from './parameters';
 export type { OptionDeclaration } from './options';
+export { withTheory } from './formula';
 export type { TemplateFormula } from './formula';
 export { columnNameFault, columnParameter, ofPart, partOfName } from './column-parameters';
 export { predictColumns } from './declaration';

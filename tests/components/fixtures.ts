@@ -37,6 +37,7 @@ export function measurementFixture(change: Partial<Measurement> = {}): Measureme
       S: [0.1, -0.1, 0.3, -0.4],
       sigma,
     },
+    theory: null,
     covariance: sigma.map((s, i) => sigma.map((_, j) => (i === j ? s * s : 0))),
     may: ['measurement.read', 'notebook.create'],
     ...change,

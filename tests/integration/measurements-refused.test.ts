@@ -113,8 +113,16 @@ describe('a bad upload', () => {
       () => ({ file: two, meta: '{"blind":true}' }),
       { path: 'meta.blind', says: /Blind measurements are not supported in this version/ },
     ],
-    ['a window', () => ({ file: two, window: two }), { path: 'window', says: /not supported yet/ }],
-    ['further columns', () => ({ file: two, columns: two }), { path: 'columns', says: /not supported yet/ }],
+    [
+      'a window of other rows',
+      () => ({ file: two, window: { name: 'window.txt', bytes: '0.1 0.2\n0.2 0.3\n1 0\n' } }),
+      { path: 'window', says: /two of edges, then one a bin/ },
+    ],
+    [
+      'columns of other rows',
+      () => ({ file: two, columns: { name: 'columns.csv', bytes: 'gravity\n1\n2\n' } }),
+      { path: 'columns', says: /has 2 rows/ },
+    ],
     ['a form without the file', () => ({ meta: '{}' }), { path: 'file', says: /missing/ }],
     ['a part that nobody knows', () => ({ file: two, notes: 'x' }), { path: 'notes', says: /unknown part/ }],
   ];

@@ -12,8 +12,11 @@ export type OpenedFile =
   { kind: 'numbers'; table: NumberTable } | { kind: 'text'; bytes: Uint8Array; ecsv: EcsvHeader | null };
 
 /** Which of the arrays in an archive a matrix is. */
-const MATRIX_NAMES: Record<'covariance' | 'mocks', RegExp> = {
+const MATRIX_NAMES: Record<Exclude<Part, 'file'>, RegExp> = {
   covariance: /^(c|cov|covariance|covariance_?matrix)$/i,
+  window: /^(w|window|window_?matrix)$/i,
+  columns: /^columns$/i,
+  theoryCovariance: /^(t|theory_?cov(ariance)?)$/i,
   mocks: /^(mocks?|realisations|realizations|samples)$/i,
 };
 

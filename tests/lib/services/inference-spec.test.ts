@@ -1,4 +1,5 @@
 import { describe, expect, it } from 'vitest';
+import { noTheory } from '@/lib/services/stored-theory';
 import { AppError } from '@/lib/errors';
 import { cutPoints, inferenceSpec, readPoints, writeDoubles } from '@/lib/services/inference-spec';
 import type { NotebookSettings } from '@/models';
@@ -18,6 +19,7 @@ const version = {
   mockCount: null,
   points: shifted(writeDoubles(kappa, lo, hi, S)),
   covariance: shifted(writeDoubles(covariance)),
+  theory: null,
 };
 const withoutEdges = { ...version, hasBinEdges: false, points: writeDoubles(kappa, none, none, S) };
 const settings: NotebookSettings = {
@@ -42,7 +44,14 @@ const fault = (run: () => unknown): AppError => {
 
 describe('stored numbers', () => {
   it('come back in every bit from bytes that begin anywhere', () => {
-    expect(readPoints(version)).toEqual({ kappa, kappaLo: lo, kappaHi: hi, S, covariance });
+    expect(readPoints(version)).toEqual({
+      kappa,
+      kappaLo: lo,
+      kappaHi: hi,
+      S,
+      covariance,
+      theory: noTheory,
+    });
   });
 
   it('are little-endian float64, whatever the machine', () => {

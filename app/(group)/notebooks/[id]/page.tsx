@@ -15,7 +15,7 @@ import {
   visitor,
 } from '@/lib/http/page-data';
 import { defaultFit } from '@/lib/schemas';
-import { findTemplate } from '@/lib/templates';
+import { findTemplate, withTheory } from '@/lib/templates';
 
 interface Props {
   params: Promise<{ id: string }>;
@@ -44,7 +44,10 @@ export default async function NotebookPage({ params, searchParams }: Props) {
   const summary =
     opened.fits.find(({ number }) => number === wanted) ?? opened.fits.find(({ number }) => number === last);
   const shown = summary ? await fit(actor, summary.id) : null;
-  const formula = findTemplate(opened.template.id).formula(opened.template.options);
+  const formula = withTheory(
+    findTemplate(opened.template.id).formula(opened.template.options),
+    measured.theory,
+  );
   return (
     <PageChrome
       version={version}

@@ -1,0 +1,24 @@
+import { Button } from '@/components/ui/button';
+import type { Prior } from '@/lib/templates';
+
+/** A column whose coefficient is held at 0 takes no part in the fit. */
+export const isSwitchedOff = (prior: Prior): boolean => prior.kind === 'fixed' && prior.value === 0;
+
+/** Leaves a column of the measurement out of the fit, or takes it in again with its default prior. */
+export function ColumnSwitch({
+  name,
+  on,
+  onSwitch,
+}: {
+  name: string;
+  on: boolean;
+  onSwitch: (on: boolean) => void;
+}) {
+  return (
+    <span className="mt-[3px] block">
+      <Button aria-label={`${on ? 'Leave out' : 'Fit'} column ${name}`} onClick={() => onSwitch(!on)}>
+        {on ? 'Leave it out' : 'Fit it'}
+      </Button>
+    </span>
+  );
+}
