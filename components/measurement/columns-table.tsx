@@ -64,9 +64,19 @@ const ofMapping: ReadonlySet<Finding['code']> = new Set([
 
 const isError = ({ level, part }: Finding): boolean => level === 'error' && (part ?? 'file') === 'file';
 
+/** What the power spectrum lacks is said beside its fields, where it is mended. */
+export const ofSpectrum: ReadonlySet<Finding['code']> = new Set([
+  'spectrum-missing',
+  'spectrum-value',
+  'unit-missing',
+  'hubble-missing',
+]);
+
 /** "Line 33 and 2 more: …" of the errors in one column of the file. */
 function faultOf(checks: readonly Finding[], column: number): string | undefined {
-  const faults = checks.filter((check) => isError(check) && check.column === column + 1);
+  const faults = checks.filter(
+    (check) => isError(check) && check.column === column + 1 && !ofSpectrum.has(check.code),
+  );
   if (faults.length === 0) return undefined;
   const [{ line, message }] = faults;
   const more = faults.length > 1 ? ` And ${faults.length - 1} more in this column.` : '';

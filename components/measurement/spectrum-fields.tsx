@@ -3,9 +3,11 @@
 import dynamic from 'next/dynamic';
 import { SelectField } from '@/components/ui/field';
 import { NumberField } from '@/components/ui/number-field';
+import { StateWord } from '@/components/ui/state-word';
 import { Subheading } from '@/components/ui/section';
 import { Sym } from '@/components/ui/sym';
-import type { PowerSpectrum } from '@/lib/measurements';
+import type { Finding, PowerSpectrum } from '@/lib/measurements';
+import { ofSpectrum } from './columns-table';
 import type { ColumnView } from './preflight-view';
 
 /** The typesetter is large, and comes where a bispectrum is read. */
@@ -57,10 +59,12 @@ export function saidUnits(columns: readonly ColumnView[]) {
 /** The power spectrum by which the column B becomes S, with the formula that does it. */
 export function SpectrumFields({
   columns,
+  checks,
   value,
   onValue,
 }: {
   columns: readonly ColumnView[];
+  checks: readonly Finding[];
   value: PowerSpectrum;
   onValue: (value: PowerSpectrum) => void;
 }) {
@@ -77,23 +81,45 @@ export function SpectrumFields({
         its covariance or mocks with it, by the power spectrum that is given here:
       </p>
       <SpectrumFormula />
+      {/* As tall without a fault as with one: the fields don't jump under the hand that fills them. */}
+      <div role="status" className="min-h-[42px] max-w-figure text-small">
+        {checks
+          .filter(({ code }) => ofSpectrum.has(code))
+          .map(({ code, message }) => (
+            <p key={`${code} ${message}`} className="mb-0">
+              <StateWord kind="bad">Error</StateWord> {message}
+            </p>
+          ))}
+      </div>
       <div className="grid max-w-figure grid-cols-4 gap-4 max-tablet:grid-cols-1 max-tablet:gap-2">
         <NumberField
-          label="Amplitude Aₛ"
+          label={
+            <>
+              Amplitude <Sym base="A" sub="s" />
+            </>
+          }
           name="amplitude"
           value={value.amplitude ?? null}
           onValue={set('amplitude')}
           help="Such as 2.1e-9."
         />
         <NumberField
-          label="Tilt nₛ"
+          label={
+            <>
+              Tilt <Sym base="n" sub="s" />
+            </>
+          }
           name="tilt"
           value={value.tilt ?? null}
           onValue={set('tilt')}
           help="1 for none."
         />
         <NumberField
-          label="Pivot k∗"
+          label={
+            <>
+              Pivot <Sym base="k" sub="∗" />
+            </>
+          }
           name="pivot"
           value={value.pivot ?? null}
           onValue={set('pivot')}
@@ -123,7 +149,7 @@ export function SpectrumFields({
           onValue={set('bispectrumUnit')}
         />
         <NumberField
-          label="h"
+          label={<Sym base="h" />}
           name="h"
           value={value.h ?? null}
           onValue={set('h')}

@@ -195,7 +195,14 @@ export function UploadSheet({ groupId, groupName, email, onto }: UploadSheetProp
         {view?.columns.length ? (
           <>
             <ColumnsTable view={view} mapping={mapping} onMapping={setMapping} />
-            {ofB ? <SpectrumFields columns={columns} value={spectrum ?? {}} onValue={setSpectrum} /> : null}
+            {ofB ? (
+              <SpectrumFields
+                columns={columns}
+                checks={view.checks}
+                value={spectrum ?? {}}
+                onValue={setSpectrum}
+              />
+            ) : null}
           </>
         ) : (
           <p className="text-ink-2">The columns stand here once a file is read.</p>
