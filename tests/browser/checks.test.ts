@@ -10,23 +10,26 @@ const { url } = inject('instance');
 const template = { id: 'background', options: { background: [1, 2] } };
 
 let browser: Browser;
-let analyst: Visit;
+let lead: Visit;
 let page: Page;
 let place: string;
 
-/** A notebook of the test's own, so that no other test meets its checks. */
+/** A notebook of the test's own, erased again, so that no other test meets it or its checks: for that a lead signs in. */
 beforeAll(async () => {
   browser = await launchBrowser();
-  analyst = await visit(browser);
-  page = analyst.page;
-  await signIn(page, url, 'analyst@demo.beatnote.example');
+  lead = await visit(browser);
+  page = lead.page;
+  await signIn(page, url, 'lead@demo.beatnote.example');
   const group = new URL(page.url()).pathname;
   const [{ id: measurement }] = await ask<{ id: string }[]>(page, 'GET', `${group}/measurements`);
   const body = { title: 'Checked', measurement, template };
   const { id } = await ask<{ id: string }>(page, 'POST', `${group}/notebooks`, body);
   place = `/notebooks/${id}`;
 });
-afterAll(() => browser.close());
+afterAll(async () => {
+  await page.evaluate((path) => fetch(path, { method: 'DELETE' }), `/api/v1${place}`);
+  await browser.close();
+});
 
 const section = (on: Page = page) => on.locator('section#checks');
 const read = async (on: Page = page) => (await section(on).innerText()).replace(/\s+/g, ' ');
@@ -58,7 +61,7 @@ describe('the check of calibration', () => {
   });
 
   it('is started by keyboard, tells how far it is, is stopped, goes on, and ends without a page load', async () => {
-    const loads = analyst.loads();
+    const loads = lead.loads();
     await check(1000, 19);
     const stop = section().getByRole('button', { name: 'Stop the check' });
     await stop.press('Enter', { timeout: 20_000 });
@@ -66,7 +69,7 @@ describe('the check of calibration', () => {
     await check(60, 19);
     await expect.poll(() => read(), { timeout: 90_000 }).toContain('Calibrated within the band');
     expect(await contents()).toMatch(/Checks .*calibrated/);
-    expect(analyst.loads()).toBe(loads);
+    expect(lead.loads()).toBe(loads);
   });
 
   it('shows ranks, distribution, coverage and what it can’t see', async () => {
@@ -115,7 +118,7 @@ describe('the check of calibration', () => {
     { name: 'a phone in the dark', width: 390, colorScheme: 'dark' },
   ] as const)('is accessible and never scrolls sideways, $name', async (look) => {
     const reader = await visit(browser, look);
-    await reader.context.addCookies((await analyst.context.storageState()).cookies);
+    await reader.context.addCookies((await lead.context.storageState()).cookies);
     await reader.page.goto(`${url}${place}#checks`);
     await expect
       .poll(() => named(/^Distribution of the ranks/, reader.page).count(), { timeout: 30_000 })
