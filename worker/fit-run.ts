@@ -19,6 +19,7 @@ import {
   type HeldFit,
 } from '@/lib/services/fit-lease';
 import type { Taken } from '@/lib/services/fit-queue';
+import { keepOutputs } from '@/lib/services/samples';
 import { factsOf, movesInReport, type ReplicaFacts } from '@/lib/services/fit-moves';
 import type { ReplicaState } from '@/lib/sampler';
 import type { StoredReport } from '@/lib/schemas/stored-report';
@@ -55,6 +56,11 @@ export async function runFit(
   } finally {
     await run.close();
   }
+  // Not waited for: the next fit needn't, and what isn't noted is made when it is asked for.
+  if (run.ended)
+    void keepOutputs(held.fitId).catch((error: unknown) =>
+      log.warn({ fitId: held.fitId, ...reasonOf(error) }, 'the outputs of a fit were not noted'),
+    );
 }
 
 /** Reads a fit that was taken; one whose row or states can't be read ends here, since no worker will ever do better. */
@@ -111,6 +117,8 @@ class FitRun {
   private standing: Standing;
   private report: StoredReport;
   private facts: ReplicaFacts[];
+  /** Whether this worker's last look ended it. */
+  ended = false;
   /** Of each move since this worker took the fit. */
   private milliseconds: Float64Array | null = null;
 
@@ -273,8 +281,9 @@ class FitRun {
     this.report = report;
     this.take(outcome);
     await this.publish();
-    if (outcome.ended !== null) log.info({ fitId, epoch, draws, status: outcome.ended }, 'a fit ended');
-    return outcome.ended !== null;
+    this.ended = outcome.ended !== null;
+    if (this.ended) log.info({ fitId, epoch, draws, status: outcome.ended }, 'a fit ended');
+    return this.ended;
   }
 
   private take({ draws, maxDraws, targetFrom, stopRequested }: Standing): void {

@@ -64,6 +64,11 @@ export async function findDraws(access: Access): Promise<FitSource> {
       'The measurement is blind: its samples can’t be read before it is unblinded.',
     );
   }
+  return readSource(fit);
+}
+
+/** A fit with what its draws are read by. For services that have authorised: it asks for nothing itself. */
+export async function readSource(fit: Fit): Promise<FitSource> {
   const version = await MeasurementVersion.findByPk(fit.measurementVersionId, { rejectOnEmpty: true });
   return { fit, snapshot: snapshotSchema.parse(fit.snapshot), version };
 }

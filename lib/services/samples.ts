@@ -10,10 +10,11 @@ import {
 } from '@/lib/schemas';
 import type { Access } from './access';
 import { fitModel } from './fit-model';
-import { findDraws, type FitSource } from './fit-records';
+import { findDraws, readSource, type FitSource } from './fit-records';
 import { program } from './program';
 import { sampleChunks } from './sample-stream';
 import type { SampleSource } from './sample-table';
+import { SharedReads } from './shared-reads';
 
 const outputSchema = z.object({
   format: z.enum(sampleFormats),
@@ -86,6 +87,9 @@ async function measure(source: SampleSource, format: SampleFormat): Promise<Stor
   return { format, bytes, sha256: hash.digest('hex') };
 }
 
+/** Whoever asks for the same files together is told from one making of them. */
+const measuring = new SharedReads<StoredOutput[]>();
+
 /**
  * Length and SHA-256 of the sample file in every format as it is now. Those of a fit that has ended are kept, for the draws
  * and the program that they were made of and by.
@@ -95,10 +99,17 @@ export async function sampleOutputs(source: FitSource): Promise<StoredOutput[]> 
   const kept = storedOutputsSchema.safeParse(fit.outputs).data;
   const made = { draws: fit.draws, program: program.program };
   if (kept?.draws === made.draws && kept.program === made.program) return kept.files;
-  const files: StoredOutput[] = [];
-  for (const format of sampleFormats) files.push(await measure(sourceOf(source), format));
+  const files = await measuring.read(`${fit.id} ${fit.draws}`, () =>
+    Promise.all(sampleFormats.map((format) => measure(sourceOf(source), format))),
+  );
   if (endedStatuses.includes(fitStatusSchema.parse(fit.status))) {
     await Fit.update({ outputs: { ...made, files } }, { where: { id: fit.id, draws: fit.draws } });
   }
   return files;
+}
+
+/** Notes the outputs of a fit that has ended, for its worker: whoever asks for the manifest first needn't wait for them to be made. */
+export async function keepOutputs(fitId: string): Promise<void> {
+  const fit = await Fit.findByPk(fitId);
+  if (fit && fit.draws > 0) await sampleOutputs(await readSource(fit));
 }

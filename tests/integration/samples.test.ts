@@ -51,6 +51,10 @@ describe('the sample files of a fit', () => {
     const notebook = await openNotebook(desk, { template: background });
     const id = await startFit(desk, notebook, { seed: 2, maxDraws: 700, replicas: 2, target: { ess: 1e9 } });
     await fitEnded(desk, id);
+    // Its worker notes them by itself.
+    await expect
+      .poll(async () => (await Fit.findByPk(id))?.outputs, { timeout: 20_000 })
+      .toMatchObject({ draws: expect.any(Number) });
     const { outputs } = await manifestOf(id);
     expect(outputs.map(({ name }) => name)).toEqual(sampleFormats.map((format) => `samples.${format}`));
     for (const format of sampleFormats) {
