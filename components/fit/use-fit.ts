@@ -14,23 +14,17 @@ export interface FitHandle {
   take: (event: FitEvent) => void;
 }
 
-/**
- * A fit by its id; the page's stream keeps it live while it runs. Until another one that was chosen has come, the one before stays,
- * which says by its number which it is.
- */
+/** A fit by its id; the page's stream keeps it live while it runs. */
 export function useFit(id: string | null, initial: Fit | null): FitHandle {
   const { data, mutate } = useSWR(id ? `/api/v1/fits/${id}` : null, read<Fit>, {
     fallbackData: initial?.id === id ? (initial ?? undefined) : undefined,
     revalidateOnFocus: false,
-    keepPreviousData: true,
   });
   return {
-    fit: id === null ? null : (data ?? null),
-    put: (next) => void mutate((before) => (next.id === id ? next : before), { revalidate: false }),
+    fit: data && data.id === id ? data : null,
+    put: (next) => void mutate(next, { revalidate: false }),
     take: (event) =>
-      void mutate((before) => (before?.id === event.id ? { ...before, ...event } : before), {
-        revalidate: false,
-      }),
+      void mutate((before) => (before ? { ...before, ...event } : before), { revalidate: false }),
   };
 }
 

@@ -88,7 +88,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
   // The notebook's own list of fits follows when one begins, ends or is taken up again.
   const refresh = useEffectEvent(() => void state.refresh());
   const listedAs = notebook.fits.find(({ id }) => id === chosen)?.status;
-  const running = fit && fit.id === chosen ? isRunning(fit.status) : null;
+  const running = fit ? isRunning(fit.status) : null;
   useEffect(() => {
     if (running !== null && listedAs !== undefined && isRunning(listedAs) !== running) refresh();
   }, [running, listedAs]);
