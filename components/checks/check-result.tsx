@@ -12,7 +12,7 @@ import { formatCount, formatNumber, formatPercent } from '@/lib/figures/format';
 import { LOG_LIKELIHOOD } from '@/lib/inference/calibration/quantity-name';
 import { verdictWords } from '@/lib/inference/calibration/words';
 import type { CalibrationResult, NotebookCheck } from '@/lib/schemas';
-import { coverageBounds, noiseWords, sightWords, thinningWords } from './check-words';
+import { coverageBounds, noiseWords, sightWords, thinningWords } from './result-words';
 
 const likelihoodSymbol = { base: 'ln L', sub: '' };
 

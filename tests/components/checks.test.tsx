@@ -1,14 +1,9 @@
 import { renderToStaticMarkup } from 'react-dom/server';
 import { describe, expect, it } from 'vitest';
 import { CheckResult } from '@/components/checks/check-result';
-import {
-  bandHalfWidth,
-  checksSentence,
-  checksState,
-  noiseWords,
-  progressWords,
-} from '@/components/checks/check-words';
+import { checksSentence, checksState, progressWords } from '@/components/checks/check-words';
 import { ChecksSection } from '@/components/checks/checks-section';
+import { bandHalfWidth, noiseWords } from '@/components/checks/result-words';
 import { sectionIds } from '@/components/notebook/sections';
 import { summariseCalibration } from '@/lib/inference/calibration';
 import type { CalibrationResult, CheckListed, NotebookCheck } from '@/lib/schemas';
