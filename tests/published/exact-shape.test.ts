@@ -136,7 +136,7 @@ describe('the exact shape of single exchange', () => {
     expect(used.size, 'entries that were compared').toBe(all.length);
   });
 
-  it('sums the permutations right for κ from 1e-3 to 1, μ from 0.05 to 20, ν from 0 to 1.45, to 1e-10', () => {
+  it('sums the permutations right for κ from 1e-4 to 1, μ from 0.05 to 20, ν from 0 to 1.45, to 1e-10', () => {
     const found = totals.values.map((entry) => {
       const vertex = entry.V as Vertex;
       const value =

@@ -44,7 +44,7 @@ const recipes: Recipe[] = [
   { name: 'locked-two-fifth', file: 'two-field', id: 'locked-squeezed', options: { fields: 2, vertex: 2, background }, seed: 'h16', kept: 24_000 },
   { name: 'two-fields-again', file: 'two-field', id: 'free-phase', options: { fields: 2, background }, seed: 'h17', kept: 24_000 },
   { name: 'background-again', file: 'one-field', id: 'background', options: { background }, seed: 'h18', kept: 16_000 },
-  // With seeds of their own, recorded after the estimator's constants had been settled on those above.
+  // With seeds of their own, recorded later; in sight when the last of the estimator's constants was chosen on those above.
   { name: 'after-background', file: 'one-field', id: 'background', options: { background }, seed: 'k1', kept: 16_000 },
   { name: 'after-one-field', file: 'one-field', id: 'free-phase', options: { fields: 1, background }, seed: 'k2', kept: 16_000 },
   { name: 'after-one-field-little-data', file: 'two-field', id: 'free-phase', options: { fields: 1, background }, kappaMax: 0.06, seed: 'k3', kept: 16_000 },
