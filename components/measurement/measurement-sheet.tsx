@@ -28,6 +28,7 @@ import { covarianceInWords } from './measurement-words';
 import { SpectrumFormula } from './spectrum-fields';
 import { RestingBody, VersionsBody } from './versions-section';
 import { partWords } from './part-words';
+import { TheoryBody } from './theory-body';
 
 /** Resolution and highest frequency of these bins. */
 function coverage({ points }: Measurement) {
@@ -222,6 +223,7 @@ export function MeasurementSheet({ initial, groupName }: { initial: Measurement;
             </>
           }
         />
+        {measurement.theory ? <TheoryBody measurement={measurement} theory={measurement.theory} /> : null}
       </Section>
       <Section id="correlation" number={2} title="Correlation">
         <CorrelationBody measurement={measurement} number={2} />
