@@ -52,9 +52,9 @@ export function BestFit({
     const x = vector(best);
     return {
       points,
-      kappa: prediction.kappa,
-      y: prediction.fine.predict(x),
-      band: predictiveBand(chosen.map((index) => prediction.fine.predict(vector(index)))),
+      kappa: prediction.seen.kappa,
+      y: prediction.seen.template.predict(x),
+      band: predictiveBand(chosen.map((index) => prediction.seen.template.predict(vector(index)))),
       count: chosen.length,
       free: prediction.fine.parameters.length - Object.keys(fixed).length,
       ...judge(prediction, x),

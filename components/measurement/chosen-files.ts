@@ -18,8 +18,11 @@ export function addFiles(
   return result;
 }
 
+/** Of each kind one file is used: mocks and a covariance both say how the points scatter. */
+const kind = (part: ChosenFile['part']): string =>
+  part === 'mocks' || part === 'covariance' ? 'scatter' : part;
+
 function takePlace(files: readonly ChosenFile[], added: ChosenFile): ChosenFile[] {
-  const kind = (part: ChosenFile['part']) => (part === 'file' ? 'points' : 'scatter');
   return [...files.filter(({ part }) => kind(part) !== kind(added.part)), added].sort(
     (a, b) => Number(a.part !== 'file') - Number(b.part !== 'file'),
   );
@@ -35,7 +38,6 @@ export function changePart(
   if (!changed) return [...files];
   return files.map((file) => {
     if (file.key === key) return { ...file, part };
-    const clash = part === 'file' ? file.part === 'file' : file.part !== 'file';
-    return clash ? { ...file, part: changed.part === 'file' ? 'file' : 'mocks' } : file;
+    return kind(file.part) === kind(part) ? { ...file, part: changed.part } : file;
   });
 }

@@ -12,10 +12,12 @@ const bands = new Map<string, PredictiveBand>();
  * same page for many readers, makes it once and keeps it by these; nobody may change what is given out.
  */
 export function keptBand(
-  { fine, kappa }: Pick<Prediction, 'fine' | 'kappa'>,
+  { fine, kappa, seen }: Pick<Prediction, 'fine' | 'kappa' | 'seen'>,
   priors: Readonly<Record<string, Prior>>,
   draws: number,
 ): PredictiveBand {
+  // Through a window or with columns it hangs on the measurement, and is made anew.
+  if (seen.template !== fine) return priorPredictive(seen.template, priors, draws);
   const ends = [kappa[0], kappa[kappa.length - 1], kappa.length];
   const key = JSON.stringify([fine.id, fine.options, ends, priors, draws]);
   const band = bands.get(key) ?? priorPredictive(fine, priors, draws);

@@ -14,6 +14,8 @@ export interface Prediction {
   onData: CompiledTemplate;
   fine: CompiledTemplate;
   kappa: Float64Array;
+  /** What is drawn through the points: the fine curve, or with a window or columns what they make of it, at the points themselves. */
+  seen: { template: CompiledTemplate; kappa: Float64Array };
   points: KeptPoints;
 }
 
@@ -51,11 +53,15 @@ function compile({ id, options }: TemplateSettings, points: KeptPoints): Predict
     ...(window ? { window: window.matrix } : {}),
     columns,
   };
-  const fine = { id, options: { ...options, binAverage: false } };
+  const atPoints = { id, options: { ...options, binAverage: false } };
+  const onData = assembleTemplate([part], { id, options });
+  const fine = theoryOfPart([part], atPoints, 0, { kind: 'points', kappa });
   return {
-    onData: assembleTemplate([part], { id, options }),
-    fine: theoryOfPart([part], fine, 0, { kind: 'points', kappa }),
+    onData,
+    fine,
     kappa,
+    seen:
+      window || columns.length > 0 ? { template: onData, kappa: points.kappa } : { template: fine, kappa },
     points,
   };
 }
@@ -101,14 +107,14 @@ export function beatEnvelope(
 }
 
 /** The curves of a parameter vector: sum and background together, each field alone, the envelope of two. */
-export function curvesOf({ fine, kappa }: Prediction, x: ArrayLike<number>): Curve[] {
+export function curvesOf({ fine, kappa, seen }: Prediction, x: ArrayLike<number>): Curve[] {
   const fields = fine.blocks.length;
   const curves: Curve[] = [
     {
       role: 'sum',
       label: fields ? (fine.fixedColumns.length ? 'sum and background' : 'sum') : 'background',
-      kappa,
-      y: fine.predict(x),
+      kappa: seen.kappa,
+      y: seen.template.predict(x),
     },
   ];
   for (let field = 0; field < fields; field += 1) {

@@ -329,7 +329,7 @@ export function PriorsSection(props: PriorsSectionProps) {
                       hi: points.hi ?? undefined,
                     }
               }
-              band={{ kappa: prediction.kappa, ...band, label: '68 and 95 % of the priors’ draws' }}
+              band={{ kappa: prediction.seen.kappa, ...band, label: '68 and 95 % of the priors’ draws' }}
               yDomain={bandDomain(band, points)}
               caption={
                 <>

@@ -4,14 +4,14 @@ import { priorPredictive } from '@/lib/inference/prior-predictive';
 import { compileTemplate, type Prior } from '@/lib/templates';
 
 const kappa = Float64Array.of(0.1, 1);
-const on = (powers: number[], at = kappa) => ({
-  fine: compileTemplate(
+const on = (powers: number[], at = kappa) => {
+  const fine = compileTemplate(
     'background',
     { background: powers, binAverage: false },
     { kind: 'points', kappa: at },
-  ),
-  kappa: at,
-});
+  );
+  return { fine, kappa: at, seen: { template: fine, kappa: at } };
+};
 const priors = (sd: number): Record<string, Prior> => ({ c1: { kind: 'normal', mean: 0, sd } });
 
 describe('a band that is kept', () => {
@@ -23,6 +23,15 @@ describe('a band that is kept', () => {
 
   it('is made once for a template compiled anew with equal priors', () => {
     expect(keptBand(on([1]), priors(2), 50)).toBe(keptBand(on([1]), priors(2), 50));
+  });
+
+  it('is made anew where a measurement’s window or columns stand between', () => {
+    const plain = on([1]);
+    const through = { ...plain, seen: on([1], Float64Array.of(0.2, 0.4)) };
+    const seen = { template: through.seen.fine, kappa: through.seen.kappa };
+    const band = keptBand({ ...plain, seen }, priors(2), 50);
+    expect(band).toEqual(priorPredictive(seen.template, priors(2), 50));
+    expect(band).not.toEqual(keptBand(plain, priors(2), 50));
   });
 
   it('is another for other priors, another template, another range and other draws', () => {
