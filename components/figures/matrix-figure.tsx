@@ -43,7 +43,7 @@ export function MatrixFigure({ rows, columns, matrix, rowName, columnName, ...fa
         const up = height - top - below;
         const [cell, line] = [across / columns.length, up / rows.length];
         return (
-          <svg className="fig-svg" width={width} height={height} role="img" aria-label={facts.label}>
+          <svg width={width} height={height} aria-hidden="true">
             {matrix.flatMap((row, i) =>
               row.map((value, j) =>
                 value === 0 ? null : (

@@ -78,7 +78,7 @@ describe('a window and columns dropped beside the points', () => {
         buffer: Buffer.from(columnText.replace('gravity', 'mu1')),
       },
     ]);
-    await expect.poll(text, { timeout: 15_000 }).toContain('“mu1” is the name of a parameter');
+    await expect.poll(text, { timeout: 15_000 }).toContain('mu1 is the name of a parameter');
     expect(await page.getByRole('button', { name: 'Store version 1' }).getAttribute('aria-disabled')).toBe(
       'true',
     );
