@@ -67,7 +67,7 @@ export function TheoryBody({ measurement, theory }: { measurement: Measurement; 
             label={`Columns of ${name}`}
             fileName={`${fileNameOf(name)}-columns`}
             curves={curvesOf(theory, points.kappa)}
-            yName="share of the largest"
+            yName="share"
             caption={
               <>
                 The columns against <Sym base="κ" />, each over its own largest number.
