@@ -37,6 +37,8 @@ import * as checks from './0038-checks';
 import * as checkBlocks from './0039-check-blocks';
 import * as measurementTheory from './0040-measurement-theory';
 import * as measurementSpectrum from './0043-measurement-spectrum';
+import * as notebookParts from './0045-notebook-parts';
+import * as fitParts from './0046-fit-parts';
 import type { MigrationContext } from './table';
 
 interface Migration {
@@ -82,6 +84,8 @@ const migrations: readonly (readonly [string, Migration])[] = [
   ['0039-check-blocks', checkBlocks],
   ['0040-measurement-theory', measurementTheory],
   ['0043-measurement-spectrum', measurementSpectrum],
+  ['0045-notebook-parts', notebookParts],
+  ['0046-fit-parts', fitParts],
 ];
 
 /** The migrator of an open database; run it with one process at a time. */

@@ -5,6 +5,7 @@ import { Measurement, MeasurementVersion, initMeasurementModels } from './measur
 import { Notebook, NotebookRevision, initNotebookModels } from './notebook';
 import { Fit, FitBlock, FitReplica, initFitModels } from './fit';
 import { FitMail, initFitQueueModels } from './fit-queue';
+import { FitPart, NotebookPart, initPartModels } from './parts';
 import { Scan, initScanModel } from './scan';
 import { Check, CheckBlock, initCheckModels } from './check';
 
@@ -14,6 +15,7 @@ export { Measurement, MeasurementVersion, type StoredFile } from './measurement'
 export { Notebook, NotebookRevision, type NotebookOrigin, type NotebookSettings } from './notebook';
 export { Fit, FitBlock, FitReplica } from './fit';
 export { FitLimit, FitMail } from './fit-queue';
+export { FitPart, NotebookPart } from './parts';
 export { Scan } from './scan';
 export { Check, CheckBlock } from './check';
 
@@ -49,6 +51,12 @@ function associate(): void {
   Fit.hasMany(FitMail, { foreignKey: 'fitId', as: 'mails' });
   FitMail.belongsTo(Fit, { foreignKey: 'fitId' });
   FitMail.belongsTo(User, { foreignKey: 'userId' });
+  Notebook.hasMany(NotebookPart, { foreignKey: 'notebookId', as: 'parts' });
+  NotebookPart.belongsTo(Notebook, { foreignKey: 'notebookId' });
+  NotebookPart.belongsTo(MeasurementVersion, { foreignKey: 'measurementVersionId' });
+  Fit.hasMany(FitPart, { foreignKey: 'fitId', as: 'parts' });
+  FitPart.belongsTo(Fit, { foreignKey: 'fitId' });
+  FitPart.belongsTo(MeasurementVersion, { foreignKey: 'measurementVersionId' });
   Notebook.hasMany(Scan, { foreignKey: 'notebookId' });
   Scan.belongsTo(Notebook, { foreignKey: 'notebookId' });
   Scan.belongsTo(MeasurementVersion, { foreignKey: 'measurementVersionId' });
@@ -93,6 +101,7 @@ export function openDatabase(url: string, options: { poolMax?: number } = {}): S
   initNotebookModels(sequelize);
   initFitModels(sequelize);
   initFitQueueModels(sequelize);
+  initPartModels(sequelize);
   initScanModel(sequelize);
   initCheckModels(sequelize);
   associate();

@@ -43,6 +43,10 @@ export interface NotebookSettings {
   likelihood: { kind: string };
   template: { id: string; version: number; options: Record<string, unknown> };
   priors: Record<string, { kind: string } & Record<string, unknown>>;
+  /** Versions of further measurements that are fitted with the first, in their order, by id; absent where there are none. */
+  also?: { version: string; cuts: NotebookSettings['cuts'] }[];
+  /** Present where row i of everyone's mocks is of one simulated sky. */
+  sharedMocks?: true;
 }
 
 /** A revision is written once and never changed. */

@@ -32,6 +32,9 @@ export interface Question {
   /** What the file's bispectrum was turned into S by. */
   spectrum?: Snapshot['spectrum'];
   mockCount: number | null;
+  /** Further measurements, and whether all share their mocks. */
+  also?: Snapshot['also'];
+  sharedMocks?: boolean;
   kind: string;
 }
 
@@ -42,6 +45,8 @@ export const questionOf = (snapshot: Omit<Question, 'kind'> & Pick<Snapshot, 'li
   cuts: snapshot.cuts,
   spectrum: snapshot.spectrum,
   mockCount: snapshot.mockCount,
+  also: snapshot.also,
+  sharedMocks: snapshot.sharedMocks,
   kind: comparingKind(snapshot.likelihood.kind),
 });
 
@@ -52,13 +57,25 @@ const binsOf = ({ kappaMin, kappaMax, excluded = [] }: Question['cuts']) => [
   excluded.map(({ bin }) => bin),
 ];
 
-const keyOf = ({ inputs, cuts, spectrum, mockCount, kind }: Question): string =>
-  JSON.stringify([
+/** What of the further measurements settles the question. */
+const furtherOf = ({ also = [], sharedMocks = false }: Question) => [
+  sharedMocks,
+  also.map(({ inputs, cuts, spectrum, mockCount }) => [
     inputs.map(({ part, sha256 }) => [part, sha256]),
     binsOf(cuts),
     spectrum ?? null,
     mockCount,
-    kind,
+  ]),
+];
+
+const keyOf = (question: Question): string =>
+  JSON.stringify([
+    question.inputs.map(({ part, sha256 }) => [part, sha256]),
+    binsOf(question.cuts),
+    question.spectrum ?? null,
+    question.mockCount,
+    question.kind,
+    furtherOf(question),
   ]);
 
 /** Why a set can't be compared with the notebook as it stands: "it rests on version 1 of the measurement and has other cuts" */
@@ -73,6 +90,7 @@ function difference(set: Question, standing: Question): string {
         ? []
         : ['it rests on other files']),
     ...(same(binsOf(set.cuts), binsOf(standing.cuts)) ? [] : ['it keeps other bins']),
+    ...(same(furtherOf(set), furtherOf(standing)) ? [] : ['its further measurements are others']),
     ...(set.kind === standing.kind ? [] : ['its likelihood is another']),
   ];
   return reasons.join(' and ');

@@ -45,9 +45,9 @@ export function presentFitSummary(fit: FitLine, people: People): FitSummary {
 
 export function presentNotebookCreated(
   notebook: Pick<NotebookRow, 'id' | 'revision'>,
-  measurement: Pick<MeasuredBy, 'blind'>,
+  { blind }: { blind: boolean },
 ): NotebookCreated {
-  return { id: notebook.id, revision: notebook.revision, blind: measurement.blind };
+  return { id: notebook.id, revision: notebook.revision, blind };
 }
 
 /** Fields of the template as its options say; a template without the option has none. */
@@ -57,6 +57,7 @@ export function presentNotebookSummary(
   notebook: NotebookRow,
   { settings, settled }: { settings: NotebookSettings; settled: number },
   measurement: MeasuredBy,
+  further: readonly MeasuredBy[],
   { lastFit, finishedFit }: { lastFit: FitLine | null; finishedFit: FitLine | null },
   people: People,
 ): NotebookSummary {
@@ -69,10 +70,11 @@ export function presentNotebookSummary(
     measurementId: measurement.id,
     measurementName: measurement.name,
     measurementVersion: measurement.version,
+    also: further.map(({ id, name, version }) => ({ id, name, version })),
     templateId: settings.template.id,
     fields: fieldsOf(settings),
-    blind: measurement.blind,
-    simulated: measurement.simulated,
+    blind: [measurement, ...further].some((each) => each.blind),
+    simulated: [measurement, ...further].some((each) => each.simulated),
     lastFit: lastFit && presentFitSummary(lastFit, people),
     finishedFit: finishedFit && finishedFit.id,
     updatedBy: nameOf(people, notebook.updatedBy),
@@ -90,6 +92,11 @@ export interface NotebookParts {
   settings: NotebookSettings;
   statement: string;
   bins: { kept: number; all: number };
+  /** Further measurements. */
+  also: Notebook['also'];
+  /** Whether one of all is blind, or simulated. */
+  blind: boolean;
+  simulated: boolean;
   /** In ascending order of revision. */
   revisions: readonly Pick<
     NotebookRevision,
@@ -110,8 +117,8 @@ export function presentNotebook(parts: NotebookParts): Notebook {
     groupName: parts.groupName,
     title: notebook.title,
     revision: notebook.revision,
-    blind: measurement.blind,
-    simulated: measurement.simulated,
+    blind: parts.blind,
+    simulated: parts.simulated,
     measurement: {
       id: measurement.id,
       name: measurement.name,
@@ -120,6 +127,8 @@ export function presentNotebook(parts: NotebookParts): Notebook {
     },
     cuts: settings.cuts,
     bins: parts.bins,
+    also: parts.also,
+    sharedMocks: settings.sharedMocks ?? false,
     likelihood: likelihoodSchema.parse(settings.likelihood),
     template: {
       id: settings.template.id,
@@ -147,7 +156,12 @@ export function presentNotebook(parts: NotebookParts): Notebook {
   };
 }
 
-export function presentRevision(revision: NotebookRevision, statement: string, people: People): Revision {
+export function presentRevision(
+  revision: NotebookRevision,
+  statement: string,
+  people: People,
+  versions: ReadonlyMap<string, { name: string; version: number }>,
+): Revision {
   const { settings } = revision;
   return {
     revision: revision.revision,
@@ -160,6 +174,11 @@ export function presentRevision(revision: NotebookRevision, statement: string, p
     likelihood: likelihoodSchema.parse(settings.likelihood),
     template: settings.template,
     priors: priorsSchema.parse(settings.priors),
+    also: (settings.also ?? []).map(({ version, cuts }) => {
+      const measured = versions.get(version);
+      return { name: measured?.name ?? null, version: measured?.version ?? null, cuts };
+    }),
+    sharedMocks: settings.sharedMocks ?? false,
     statement,
   };
 }

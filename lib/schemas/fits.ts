@@ -37,6 +37,21 @@ export const snapshotSchema = z.object({
   cuts: cutsSchema,
   likelihood: likelihoodSchema,
   mockCount: z.number().int().nullable(),
+  /** Further measurements that are fitted with it; absent where there are none. */
+  also: z
+    .array(
+      z.object({
+        inputs: z.array(z.object({ part: z.enum(fileParts), sha256: sha256Schema })),
+        measurementVersion: z.number().int(),
+        mapping: z.record(z.string(), z.unknown()),
+        spectrum: spectrumSchema.optional(),
+        cuts: cutsSchema,
+        mockCount: z.number().int().nullable(),
+      }),
+    )
+    .optional(),
+  /** Present where row i of everyone's mocks is of one simulated sky. */
+  sharedMocks: z.literal(true).optional(),
   template: z.object({
     id: z.string(),
     version: z.number().int(),
@@ -237,6 +252,8 @@ export const manifestSchema = z.object({
   inputs: z.array(
     z.object({
       part: z.enum(fileParts),
+      /** Which measurement it is of, from 1; absent where there is a single one. */
+      measurement: z.number().int().optional(),
       fileName: z.string(),
       bytes: z.number().int(),
       sha256: sha256Schema,

@@ -28,10 +28,33 @@ export const cutsSchema = z.strictObject({
 
 export const titleSchema = z.string().trim().min(1).max(160);
 
+/** Most measurements of one notebook. */
+export const mostMeasurements = 4;
+
+/** A further measurement that is fitted with the notebook's own; without a version the one that stands there, or the newest. */
+export const alsoMeasurementSchema = z.strictObject({
+  measurement: idSchema,
+  version: z.number().int().min(1).optional(),
+  cuts: cutsSchema.optional(),
+});
+export type AlsoMeasurement = z.infer<typeof alsoMeasurementSchema>;
+const alsoMeasurementsSchema = z
+  .array(alsoMeasurementSchema)
+  .max(mostMeasurements - 1, `A notebook has at most ${mostMeasurements} measurements.`);
+
+/** Further measurements as settings have them: by the id of the version. */
+export const alsoShape = {
+  also: z.array(z.object({ version: idSchema, cuts: cutsSchema })).optional(),
+  sharedMocks: z.literal(true).optional(),
+};
+
 export const createNotebookSchema = z.strictObject({
   title: titleSchema,
   measurement: idSchema,
   cuts: cutsSchema.optional(),
+  alsoMeasurements: alsoMeasurementsSchema.optional(),
+  /** Whether row i of everyone's mocks is of one simulated sky. */
+  sharedMocks: z.boolean().optional(),
   likelihood: likelihoodSchema.optional(),
   template: templateChoiceSchema,
   priors: priorsSchema.optional(),
@@ -43,6 +66,9 @@ export const patchNotebookSchema = z.strictObject({
   revision: z.number().int().min(1),
   title: titleSchema.optional(),
   cuts: cutsSchema.optional(),
+  /** Replaced whole; one that stands already keeps its version and cuts unless others are given. */
+  alsoMeasurements: alsoMeasurementsSchema.optional(),
+  sharedMocks: z.boolean().optional(),
   likelihood: likelihoodSchema.optional(),
   template: templateChoiceSchema.optional(),
   priors: priorsSchema.optional(),
@@ -115,6 +141,8 @@ export const notebookSummarySchema = z.object({
   measurementName: z.string(),
   /** The version that it rests on. */
   measurementVersion: z.number().int(),
+  /** Further measurements that are fitted with it. */
+  also: z.array(z.object({ id: idSchema, name: z.string(), version: z.number().int() })),
   templateId: z.string(),
   fields: z.number().int(),
   blind: z.boolean(),
@@ -150,10 +178,25 @@ export const revisionSchema = z.object({
   sections: z.array(z.enum(notebookSections)),
   restoredFrom: z.number().int().nullable(),
   ...settingsShape,
+  /** Further measurements as they were then; those that have been deleted since have no name. */
+  also: z.array(
+    z.object({ name: z.string().nullable(), version: z.number().int().nullable(), cuts: cutsSchema }),
+  ),
+  sharedMocks: z.boolean(),
   /** The group's words as they stood then, with references for their numbers. */
   statement: z.string(),
 });
 export type Revision = z.infer<typeof revisionSchema>;
+
+export const alsoMeasuredSchema = z.object({
+  id: idSchema,
+  name: z.string(),
+  version: z.number().int(),
+  newest: z.number().int(),
+  cuts: cutsSchema,
+  bins: z.object({ kept: z.number().int(), all: z.number().int() }),
+});
+export type AlsoMeasured = z.infer<typeof alsoMeasuredSchema>;
 
 export const notebookSchema = z.object({
   id: idSchema,
@@ -174,6 +217,9 @@ export const notebookSchema = z.object({
   ...settingsShape,
   /** Bins kept by the cuts, of all. */
   bins: z.object({ kept: z.number().int(), all: z.number().int() }),
+  /** Further measurements that are fitted with it, in the order in which parameters of their own are numbered from 2. */
+  also: z.array(alsoMeasuredSchema),
+  sharedMocks: z.boolean(),
   /** The group's words as they are typed; empty where none were written. */
   statement: z.string(),
   /** Who settled which section when: for the record in the margin. */

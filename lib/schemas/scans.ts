@@ -1,5 +1,5 @@
 import { z } from 'zod';
-import { cutsSchema, likelihoodSchema } from './notebooks';
+import { alsoShape, cutsSchema, likelihoodSchema } from './notebooks';
 import { priorSchema } from './priors';
 import { idSchema, instantSchema, numberOrNull, sha256Schema } from './shared';
 
@@ -23,6 +23,7 @@ export const scanRequestSchema = z.object({
   inputs: z.array(sha256Schema),
   measurementVersion: z.number().int(),
   cuts: cutsSchema,
+  ...alsoShape,
   likelihood: likelihoodSchema,
   mockCount: z.number().int().nullable(),
   template: z.object({

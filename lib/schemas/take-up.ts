@@ -3,7 +3,11 @@ import { excludedBinSchema, fitStatusSchema } from './notebooks';
 import { idSchema, numberOrNull } from './shared';
 
 /** Moves a notebook to another version of its measurement and repeats its finished fits there. */
-export const takeUpSchema = z.strictObject({ version: z.number().int().min(1) });
+export const takeUpSchema = z.strictObject({
+  version: z.number().int().min(1),
+  /** Which measurement of the notebook it is a version of; its first one where left out. */
+  measurement: idSchema.optional(),
+});
 export type TakeUp = z.infer<typeof takeUpSchema>;
 
 /** A fit whose settings can't be fitted on the version taken up, and why. */

@@ -4,7 +4,7 @@ import { database } from '@/lib/db';
 import type { DatasetRanks } from '@/lib/inference/calibration';
 import { checkRequestSchema, type CalibrationResult } from '@/lib/schemas';
 import { clockAt, leaseIsOver } from './fit-lease';
-import { storedNumbers } from './fit-model';
+import { measuredTogether } from './measured-together';
 import type { CheckModel } from './check-model';
 
 /** Who may write a check: as with fits, a worker takes epoch + 1 with a lease, and every later write says `AND epoch = ?`. */
@@ -63,11 +63,13 @@ export async function readHeldCheck(checkId: string, epoch: number): Promise<Hel
       transaction,
       rejectOnEmpty: true,
     });
+    const request = checkRequestSchema.parse(check.request);
+    const { numbers } = await measuredTogether(version, request, transaction);
     const blocks = await CheckBlock.findAll({ where: { checkId }, transaction });
     return {
       checkId,
       epoch,
-      model: { numbers: storedNumbers(version), request: checkRequestSchema.parse(check.request) },
+      model: { numbers, request },
       blocks: new Map(blocks.map(({ first, found }) => [first, found as DatasetRanks[]])),
       stopRequested: check.stopRequested,
     };

@@ -23,13 +23,10 @@ export interface CheckModel {
   request: CheckRequest;
 }
 
-const asBuffer = (bytes: Uint8Array): Buffer => Buffer.from(bytes.buffer, bytes.byteOffset, bytes.byteLength);
-
 /** What a check's request says is to be inferred. Reads nothing but its arguments. */
 export function checkSpec({ numbers, request }: CheckModel): InferenceSpec {
-  const { cuts, likelihood, template, priors } = request;
-  const stored = { ...numbers, points: asBuffer(numbers.points), covariance: asBuffer(numbers.covariance) };
-  return inferenceSpec(stored, { cuts, likelihood, template, priors }).spec;
+  const { cuts, likelihood, template, priors, also, sharedMocks } = request;
+  return inferenceSpec(numbers, { cuts, likelihood, template, priors, also, sharedMocks }).spec;
 }
 
 /** The calibration that a request asks for: the posterior of the notebook, sampled as its fits are. */

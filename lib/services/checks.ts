@@ -54,14 +54,14 @@ const waits = ({ status }: Check): boolean => status === 'queued' || status === 
 /** Freezes what is to be checked; the row that asked for the same before, if there is one, answers or goes on. */
 async function request(access: Access, body: Settings): Promise<Check> {
   return database().transaction(async (transaction) => {
-    const { notebook, revision, version } = await lockNotebook(access, transaction);
+    const { notebook, revision, version, measured } = await lockNotebook(access, transaction);
     refuseArchived(notebook);
     const { settings } = revision;
-    checkFittable(inferenceSpec(version, settings).spec);
+    checkFittable(inferenceSpec(measured.numbers, settings).spec);
     const frozen = checkRequestSchema.parse({
       ...settings,
       ...body,
-      inputs: version.files.map(({ sha256 }) => sha256),
+      inputs: measured.parts.flatMap((part) => part.version.files.map(({ sha256 }) => sha256)),
       measurementVersion: version.version,
       mockCount: version.mockCount,
       warmup: checkWarmup,

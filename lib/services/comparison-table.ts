@@ -1,11 +1,4 @@
-import {
-  Fit,
-  Measurement,
-  MeasurementVersion,
-  Notebook,
-  NotebookRevision,
-  type NotebookSettings,
-} from '@/models';
+import { Fit, MeasurementVersion, Notebook, NotebookRevision, type NotebookSettings } from '@/models';
 import { AppError, notFound } from '@/lib/errors';
 import {
   blindComparison,
@@ -18,27 +11,54 @@ import { likelihoodSchema, mostFields, snapshotSchema, type Comparison } from '@
 import type { Access } from './access';
 import { canonicalJson } from './canonical-json';
 import { withFieldCount, withoutFamily } from './field-counts';
+import { freeze } from './fits';
+import { measuredTogether, type MeasuredTogether } from './measured-together';
 
 /** What of a snapshot the notebook settles; two fits that share it differ in chance, budget or program alone. */
-const settled = (version: number, { cuts, likelihood, template, priors }: NotebookSettings): string =>
-  canonicalJson({ version, cuts, likelihood, template, priors });
+const settled = (
+  versions: number[],
+  {
+    cuts,
+    likelihood,
+    template,
+    priors,
+    also = [],
+    sharedMocks,
+  }: Omit<NotebookSettings, 'also'> & { also?: { cuts: NotebookSettings['cuts'] }[] },
+): string =>
+  canonicalJson({
+    versions,
+    cuts: [cuts, ...also.map((part) => part.cuts)],
+    likelihood,
+    template,
+    priors,
+    sharedMocks: sharedMocks ?? false,
+  });
 
 /** The last fit of the standing settings with each number of fields; one that has ended before one that hasn't. */
 function countedFits(
   fits: readonly FrozenFit[],
-  version: MeasurementVersion,
+  measured: MeasuredTogether,
   settings: NotebookSettings,
-  measurement: Measurement,
 ): CountedFit[] {
   const bySettings = new Map<string, FrozenFit[]>();
   for (const each of fits) {
-    const key = settled(each.snapshot.measurementVersion, each.snapshot);
+    const key = settled(
+      [each.snapshot, ...(each.snapshot.also ?? [])].map(({ measurementVersion }) => measurementVersion),
+      each.snapshot,
+    );
     bySettings.set(key, [...(bySettings.get(key) ?? []), each]);
   }
   return Array.from({ length: mostFields + 1 }, (_, fields): CountedFit => {
     try {
-      const changed = withFieldCount(version, settings, fields, measurement);
-      const found = bySettings.get(settled(version.version, changed)) ?? [];
+      const changed = withFieldCount(measured.numbers, settings, fields, measured);
+      const found =
+        bySettings.get(
+          settled(
+            measured.parts.map(({ version }) => version.version),
+            changed,
+          ),
+        ) ?? [];
       const done = found.findLast(({ fit }) => ['converged', 'budget-spent'].includes(fit.status));
       return { fields, fit: done ?? found.at(-1) ?? null, because: null };
     } catch (error) {
@@ -59,23 +79,19 @@ export async function readComparison(access: Access): Promise<Comparison> {
     MeasurementVersion.findByPk(notebook.measurementVersionId),
     Fit.findAll({ where: { notebookId: notebook.id }, order: [['number', 'ASC']] }),
   ]);
-  const measurement = version && (await Measurement.findByPk(version.measurementId));
-  if (!standing || !version || !measurement) throw notFound('notebook');
+  if (!standing || !version) throw notFound('notebook');
   const { settings } = standing;
   const noFamily = withoutFamily(settings);
-  if (measurement.blind) return blindComparison(noFamily);
+  const measured = await measuredTogether(version, settings);
+  if (measured.blind) return blindComparison(noFamily);
   const fits = rows.map((fit): FrozenFit => ({ fit, snapshot: snapshotSchema.parse(fit.snapshot) }));
   return presentComparison({
     fits,
     standing: questionOf({
-      inputs: version.files.map(({ part, sha256 }) => ({ part, sha256 })),
-      measurementVersion: version.version,
-      cuts: settings.cuts,
-      spectrum: version.spectrum ?? undefined,
-      mockCount: version.mockCount,
+      ...freeze(measured, settings, {}),
       likelihood: likelihoodSchema.parse(settings.likelihood),
     }),
-    counts: noFamily === null ? countedFits(fits, version, settings, measurement) : [],
+    counts: noFamily === null ? countedFits(fits, measured, settings) : [],
     noFamily,
   });
 }

@@ -1,5 +1,5 @@
 import type { Transaction } from 'sequelize';
-import { Fit, NotebookRevision, type MeasurementVersion, type NotebookSettings } from '@/models';
+import { Fit, NotebookRevision, type NotebookSettings } from '@/models';
 import { database } from '@/lib/db';
 import { AppError } from '@/lib/errors';
 import {
@@ -16,6 +16,7 @@ import { canonicalJson } from './canonical-json';
 import { withFieldCount, withoutFamily } from './field-counts';
 import { addFit, freeze, lockNotebook, refuseBlind, wakeFit } from './fits';
 import { refuseArchived } from './notebook-archive';
+import type { MeasuredTogether } from './measured-together';
 import { tellNotebook } from './notebook-presence';
 import { changedSections } from './notebook-settings';
 
@@ -50,9 +51,8 @@ async function knownFits(
 
 /** Settings of every number of fields, with the fit that has them already; those that can't be fitted are left out with the reason. */
 function plan(
-  version: MeasurementVersion,
+  measured: MeasuredTogether,
   settings: NotebookSettings,
-  measurement: { blind: boolean },
   body: StartComparison,
   known: ReadonlyMap<string, Fit>,
 ): { planned: Planned[]; skipped: ComparisonStarted['skipped'] } {
@@ -61,8 +61,8 @@ function plan(
   const skipped: ComparisonStarted['skipped'] = [];
   for (const fields of counts) {
     try {
-      const changed = withFieldCount(version, settings, fields, measurement);
-      const snapshot = alike(freeze(version, changed, body), body.seed !== undefined);
+      const changed = withFieldCount(measured.numbers, settings, fields, measured);
+      const snapshot = alike(freeze(measured, changed, body), body.seed !== undefined);
       planned.push({ fields, settings: changed, known: known.get(snapshot) ?? null });
     } catch (error) {
       if (!(error instanceof AppError) || error.blame === 'ours') throw error;
@@ -81,16 +81,16 @@ export async function startComparison(access: Access, body: StartComparison): Pr
   access.require('fit.start');
   const { actor, groupId } = access;
   const done = await database().transaction(async (transaction) => {
-    const { notebook, revision: standing, version, measurement } = await lockNotebook(access, transaction);
+    const { notebook, revision: standing, version, measured } = await lockNotebook(access, transaction);
     refuseArchived(notebook);
-    refuseBlind(measurement);
+    refuseBlind(measured);
     const { settings } = standing;
     const refusal = withoutFamily(settings);
     if (refusal !== null) {
       throw new AppError('invalid', refusal, [{ path: 'template.options.fields', message: refusal }]);
     }
     const known = await knownFits(notebook.id, version.id, body.seed !== undefined, transaction);
-    const { planned, skipped } = plan(version, settings, measurement, body, known);
+    const { planned, skipped } = plan(measured, settings, body, known);
     const own = fieldCount(settings.template.options.fields);
     const fresh = planned.filter(({ known: fit }) => fit === null);
     // The standing settings last, so that the newest fit is one of the notebook as it stands.
@@ -131,7 +131,7 @@ export async function startComparison(access: Access, body: StartComparison): Pr
     const start = { seed, replicas, maxDraws, target };
     const made = new Map<number, Fit>();
     for (const { fields, settings: each } of order) {
-      const origin = { notebook, version, settings: each, revision: revisions.get(fields) ?? revision };
+      const origin = { notebook, measured, settings: each, revision: revisions.get(fields) ?? revision };
       made.set(fields, await addFit(access, origin, start, transaction));
     }
     const fits = planned.flatMap(({ fields, known: old }) => {

@@ -1,13 +1,9 @@
 import { AppError } from '@/lib/errors';
 import { fieldCount, findTemplate, type ParameterDeclaration } from '@/lib/templates';
-import type { MeasurementVersion, NotebookSettings } from '@/models';
+import type { NotebookSettings } from '@/models';
+import type { StoredNumbers } from './fit-model';
 import { refusingFaults } from './inference-faults';
 import { settleSettings } from './notebook-settings';
-
-type Version = Pick<
-  MeasurementVersion,
-  'rows' | 'hasBinEdges' | 'points' | 'covariance' | 'mockCount' | 'theory'
->;
 
 /** Why a template has no family of numbers of fields, as a sentence; null where it has. */
 export function withoutFamily({ template }: NotebookSettings): string | null {
@@ -50,12 +46,12 @@ function priorsOfMore(
  * priors; without any field the smooth background alone. `invalid` where they can't be fitted.
  */
 export function withFieldCount(
-  version: Version,
+  numbers: StoredNumbers,
   settings: NotebookSettings,
   count: number,
-  measurement: { blind: boolean },
+  measured: { blind: boolean },
 ): NotebookSettings {
-  const { cuts, likelihood, template, priors } = settings;
+  const { cuts, likelihood, template, priors, also, sharedMocks } = settings;
   const refusal = withoutFamily(settings);
   if (refusal !== null)
     throw new AppError('invalid', refusal, [{ path: 'template.options.fields', message: refusal }]);
@@ -73,8 +69,8 @@ export function withFieldCount(
     ),
   );
   return settleSettings(
-    version,
-    { cuts, likelihood, template: changed, given: {}, kept: { ...priors, ...given } },
-    measurement,
+    numbers,
+    { cuts, likelihood, template: changed, given: {}, kept: { ...priors, ...given }, also, sharedMocks },
+    measured,
   );
 }

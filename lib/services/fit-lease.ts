@@ -4,6 +4,7 @@ import { database } from '@/lib/db';
 import { snapshotSchema, type FitStatus, type Snapshot } from '@/lib/schemas';
 import { noteEnd } from './fit-mails';
 import { fitModel, type FitModel } from './fit-model';
+import { alsoOfFit, measuredTogether } from './measured-together';
 import { program } from './program';
 import { emptyReport, storedReportSchema, type StoredReport } from '@/lib/schemas/stored-report';
 
@@ -88,6 +89,8 @@ export async function readHeld(fitId: string, epoch: number): Promise<HeldFit | 
       transaction,
       rejectOnEmpty: true,
     });
+    const chosen = await alsoOfFit(fit.id, snapshot, transaction);
+    const { numbers } = await measuredTogether(version, chosen, transaction);
     const replicas = await FitReplica.findAll({ where: { fitId }, transaction });
     const astray = replicas.find(({ draws }) => draws !== fit.draws);
     if (astray || (fit.draws > 0 && replicas.length !== snapshot.replicas)) {
@@ -96,7 +99,7 @@ export async function readHeld(fitId: string, epoch: number): Promise<HeldFit | 
     return {
       fitId,
       epoch,
-      model: fitModel(version, snapshot),
+      model: fitModel(numbers, snapshot),
       snapshot,
       draws: fit.draws,
       maxDraws: fit.maxDraws,

@@ -1,18 +1,9 @@
 import type { InferenceSpec } from '@/lib/inference';
 import type { Snapshot } from '@/lib/schemas';
 import type { MeasurementVersion, NotebookSettings } from '@/models';
-import { inferenceSpec } from './inference-spec';
+import { inferenceSpec, type StoredNumbers } from './inference-spec';
 
-/** The numbers of a measurement's version as plain data, so that a thread can be handed them. */
-export interface StoredNumbers {
-  rows: number;
-  hasBinEdges: boolean;
-  mockCount: number | null;
-  points: Uint8Array;
-  covariance: Uint8Array;
-  /** Window, columns and theory covariance; null for none. */
-  theory: Uint8Array | null;
-}
+export type { StoredNumbers } from './inference-spec';
 
 /** All that a thread needs to build a fit's posterior anew. */
 export interface FitModel {
@@ -26,22 +17,22 @@ export function storedNumbers(version: MeasurementVersion): StoredNumbers {
   return { rows, hasBinEdges, mockCount, points, covariance, theory };
 }
 
-export function fitModel(version: MeasurementVersion, snapshot: Snapshot): FitModel {
-  return { numbers: storedNumbers(version), snapshot };
-}
-
-const asBuffer = (bytes: Uint8Array): Buffer => Buffer.from(bytes.buffer, bytes.byteOffset, bytes.byteLength);
+export const fitModel = (numbers: StoredNumbers, snapshot: Snapshot): FitModel => ({ numbers, snapshot });
 
 /** What a frozen snapshot says is to be inferred. Reads nothing but its arguments. */
 export function specOf({ numbers, snapshot }: FitModel): InferenceSpec {
-  const { cuts, likelihood, template, priors } = snapshot;
-  const settings: NotebookSettings = { cuts, likelihood, template, priors };
-  const stored = {
-    ...numbers,
-    points: asBuffer(numbers.points),
-    covariance: asBuffer(numbers.covariance),
+  const { cuts, likelihood, template, priors, also, sharedMocks } = snapshot;
+  const settings: NotebookSettings = {
+    cuts,
+    likelihood,
+    template,
+    priors,
+    ...(also
+      ? { also: also.map((part) => ({ version: String(part.measurementVersion), cuts: part.cuts })) }
+      : {}),
+    ...(sharedMocks ? { sharedMocks } : {}),
   };
-  return inferenceSpec(stored, settings).spec;
+  return inferenceSpec(numbers, settings).spec;
 }
 
 /** The columns of a fit's draws: what is stored, and what is computed from it. */

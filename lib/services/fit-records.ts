@@ -10,7 +10,9 @@ import {
   type Snapshot,
 } from '@/lib/schemas';
 import type { Access } from './access';
+import type { StoredNumbers } from './fit-model';
 import { placeOf } from './fit-queue';
+import { alsoOfFit, measuredTogether } from './measured-together';
 import { emailsOf } from './people';
 import { isBlindVersion } from './version-lines';
 
@@ -51,7 +53,10 @@ export async function readFit(access: Access): Promise<FitAnswer> {
 export interface FitSource {
   fit: Fit;
   snapshot: Snapshot;
-  version: MeasurementVersion;
+  /** Versions of its measurements, the notebook's own first. */
+  versions: MeasurementVersion[];
+  /** For its parameters; shared mocks aren't read. */
+  numbers: StoredNumbers;
 }
 
 /** Loads a fit for its draws; `blind` while its measurement is. */
@@ -70,5 +75,8 @@ export async function findDraws(access: Access): Promise<FitSource> {
 /** A fit with what its draws are read by. For services that have authorised: it asks for nothing itself. */
 export async function readSource(fit: Fit): Promise<FitSource> {
   const version = await MeasurementVersion.findByPk(fit.measurementVersionId, { rejectOnEmpty: true });
-  return { fit, snapshot: snapshotSchema.parse(fit.snapshot), version };
+  const snapshot = snapshotSchema.parse(fit.snapshot);
+  const chosen = await alsoOfFit(fit.id, snapshot);
+  const { parts, numbers } = await measuredTogether(version, chosen, undefined, 'parameters');
+  return { fit, snapshot, versions: parts.map((part) => part.version), numbers };
 }

@@ -2,7 +2,7 @@ import { randomBytes } from 'node:crypto';
 import type { Transaction } from 'sequelize';
 import {
   Fit,
-  Measurement,
+  FitPart,
   MeasurementVersion,
   Notebook,
   NotebookRevision,
@@ -31,6 +31,7 @@ import { blockDraws, warmupDraws } from './fit-schedule';
 import { readFit } from './fit-records';
 import { samplerOfNewFits } from './fit-sampler';
 import { inferenceSpec } from './inference-spec';
+import { measuredTogether, type MeasuredTogether } from './measured-together';
 import { refuseArchived } from './notebook-archive';
 import { tellNotebook } from './notebook-presence';
 import { checkFittable } from './notebook-settings';
@@ -51,18 +52,31 @@ export async function wakeFit(fitId: string, epoch: number): Promise<void> {
   }
 }
 
+const frozenVersion = ({ files, version, mapping, spectrum, mockCount }: MeasurementVersion) => ({
+  inputs: files.map(({ part, sha256 }) => ({ part, sha256 })),
+  measurementVersion: version,
+  mapping,
+  ...(spectrum ? { spectrum } : {}),
+  mockCount,
+});
+
 /** What a fit with these settings freezes; without a seed in `body` each call draws another. */
-export function freeze(version: MeasurementVersion, settings: NotebookSettings, body: StartFit): Snapshot {
-  const { cuts, likelihood, template, priors } = settings;
+export function freeze(
+  { parts }: Pick<MeasuredTogether, 'parts'>,
+  settings: NotebookSettings,
+  body: StartFit,
+): Snapshot {
+  const { cuts, likelihood, template, priors, also = [], sharedMocks } = settings;
+  const [{ version }, ...further] = parts;
   // Only what the schema lists is frozen, in the form in which it is hashed.
   return snapshotSchema.parse({
-    inputs: version.files.map(({ part, sha256 }) => ({ part, sha256 })),
-    measurementVersion: version.version,
-    mapping: version.mapping,
-    ...(version.spectrum ? { spectrum: version.spectrum } : {}),
+    ...frozenVersion(version),
     cuts,
     likelihood,
-    mockCount: version.mockCount,
+    ...(further.length > 0
+      ? { also: further.map((part, k) => ({ ...frozenVersion(part.version), cuts: also[k].cuts })) }
+      : {}),
+    ...(sharedMocks ? { sharedMocks } : {}),
     template,
     priors,
     seed: body.seed === undefined ? randomBytes(16).toString('hex') : String(body.seed),
@@ -85,9 +99,9 @@ export async function lockNotebook(access: Access, transaction: Transaction) {
     }),
     MeasurementVersion.findByPk(notebook.measurementVersionId, { transaction }),
   ]);
-  const measurement = version && (await Measurement.findByPk(version.measurementId, { transaction }));
-  if (!revision || !version || !measurement) throw notFound('notebook');
-  return { notebook, revision, version, measurement };
+  if (!revision || !version) throw notFound('notebook');
+  const measured = await measuredTogether(version, revision.settings, transaction);
+  return { notebook, revision, version, measured };
 }
 
 /** What a new fit freezes: a revision of a notebook on a version of its measurement. */
@@ -95,7 +109,7 @@ export interface FitOrigin {
   notebook: Notebook;
   revision: number;
   settings: NotebookSettings;
-  version: MeasurementVersion;
+  measured: MeasuredTogether;
   /** The fit whose settings it repeats, if it does. */
   repeats?: Fit;
 }
@@ -103,12 +117,13 @@ export interface FitOrigin {
 /** Writes the row of a new fit, queued, in the transaction that holds the notebook's lock. `invalid` where it can't be fitted. */
 export async function addFit(
   access: Access,
-  { notebook, revision, settings, version, repeats }: FitOrigin,
+  { notebook, revision, settings, measured, repeats }: FitOrigin,
   body: StartFit,
   transaction: Transaction,
 ): Promise<Fit> {
-  checkFittable(inferenceSpec(version, settings).spec);
-  const snapshot = freeze(version, settings, body);
+  checkFittable(inferenceSpec(measured.numbers, settings).spec);
+  const snapshot = freeze(measured, settings, body);
+  const [{ version }, ...further] = measured.parts;
   const maxDraws = body.maxDraws ?? defaultFit.maxDraws;
   const now = new Date();
   const last = await Fit.max<number | null, Fit>('number', {
@@ -136,13 +151,17 @@ export async function addFit(
     },
     { transaction },
   );
+  for (const [k, part] of further.entries()) {
+    const row = { fitId: made.id, place: k + 1, measurementVersionId: part.version.id };
+    await FitPart.create(row, { transaction });
+  }
   const details = { number: made.number, revision, ...(repeats && { repeats: repeats.number }) };
   await recordChange(access, made, 'fit.start', details, transaction);
   return made;
 }
 
 /** While a measurement is blind, a fit needs a frozen plan. */
-export function refuseBlind({ blind }: Pick<Measurement, 'blind'>): void {
+export function refuseBlind({ blind }: { blind: boolean }): void {
   if (!blind) return;
   throw new AppError('plan_missing', 'The measurement is blind: freeze a plan before the first fit.');
 }
@@ -151,11 +170,11 @@ export function refuseBlind({ blind }: Pick<Measurement, 'blind'>): void {
 export async function startFit(access: Access, body: StartFit): Promise<{ id: string }> {
   access.require('fit.start');
   const fit = await database().transaction(async (transaction) => {
-    const { notebook, revision, version, measurement } = await lockNotebook(access, transaction);
+    const { notebook, revision, measured } = await lockNotebook(access, transaction);
     refuseArchived(notebook);
-    refuseBlind(measurement);
+    refuseBlind(measured);
     const { settings } = revision;
-    return addFit(access, { notebook, revision: revision.revision, settings, version }, body, transaction);
+    return addFit(access, { notebook, revision: revision.revision, settings, measured }, body, transaction);
   });
   await wakeFit(fit.id, 0);
   void tellNotebook(fit.notebookId);

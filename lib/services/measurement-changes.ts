@@ -1,5 +1,5 @@
 import type { Transaction } from 'sequelize';
-import { Fit, Group, Measurement, MeasurementVersion } from '@/models';
+import { Fit, FitPart, Group, Measurement, MeasurementVersion } from '@/models';
 import { database } from '@/lib/db';
 import { AppError, notFound } from '@/lib/errors';
 import type {
@@ -84,10 +84,12 @@ async function refuseIfResting(
   versions: readonly MeasurementVersion[],
   transaction: Transaction,
 ): Promise<void> {
-  const [notebooks, fits] = await Promise.all([
+  const [notebooks, own, further] = await Promise.all([
     notebooksOn(versions, transaction),
     Fit.count({ where: { measurementVersionId: versions.map(({ id }) => id) }, transaction }),
+    FitPart.count({ where: { measurementVersionId: versions.map(({ id }) => id) }, transaction }),
   ]);
+  const fits = own + further;
   if (notebooks.length > 0 || fits > 0) refuseResting(what, notebooks, fits);
 }
 

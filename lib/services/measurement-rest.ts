@@ -1,6 +1,7 @@
-import { fn, col, type Transaction } from 'sequelize';
-import { Fit, Measurement, MeasurementVersion, Notebook } from '@/models';
+import { Op, fn, col, type Transaction } from 'sequelize';
+import { Fit, FitPart, Notebook, NotebookPart, type MeasurementVersion } from '@/models';
 import type { RestingNotebook } from '@/lib/schemas';
+import { isBlindVersion } from './version-lines';
 
 type VersionLine = Pick<MeasurementVersion, 'id' | 'measurementId' | 'version'>;
 
@@ -10,21 +11,26 @@ export async function notebooksOn(
   transaction?: Transaction,
 ): Promise<RestingNotebook[]> {
   const numbers = new Map(versions.map(({ id, version }) => [id, version]));
-  const notebooks = await Notebook.findAll({
+  const parts = await NotebookPart.findAll({
     where: { measurementVersionId: [...numbers.keys()] },
+    transaction,
+  });
+  const byNotebook = new Map(parts.map((part) => [part.notebookId, part.measurementVersionId]));
+  const notebooks = await Notebook.findAll({
+    where: { [Op.or]: [{ measurementVersionId: [...numbers.keys()] }, { id: [...byNotebook.keys()] }] },
     attributes: ['id', 'number', 'title', 'measurementVersionId'],
     order: [['number', 'ASC']],
     transaction,
   });
   return notebooks.flatMap(({ id, number, title, measurementVersionId }) => {
-    const version = numbers.get(measurementVersionId);
+    const version = numbers.get(measurementVersionId) ?? numbers.get(byNotebook.get(id) ?? '');
     return version === undefined ? [] : [{ id, number, title, version }];
   });
 }
 
 /** Rows of `model` by the version that they name. */
 async function countBy(
-  model: typeof Fit | typeof Notebook,
+  model: typeof Fit | typeof FitPart | typeof Notebook | typeof NotebookPart,
   versionIds: readonly string[],
 ): Promise<Map<string, number>> {
   const rows = (await (model as typeof Fit).findAll({
@@ -38,12 +44,23 @@ async function countBy(
 
 /** How many fits were made on each version, by the version's id. */
 export const countFitsOn = (versionIds: readonly string[]): Promise<Map<string, number>> =>
-  countBy(Fit, versionIds);
+  countBoth(Fit, FitPart, versionIds);
+
+/** Rows that have it as their first measurement, and those that have it as a further one. */
+async function countBoth(
+  first: typeof Fit | typeof Notebook,
+  further: typeof FitPart | typeof NotebookPart,
+  versionIds: readonly string[],
+): Promise<Map<string, number>> {
+  const [own, parts] = await Promise.all([countBy(first, versionIds), countBy(further, versionIds)]);
+  return new Map(versionIds.map((id) => [id, (own.get(id) ?? 0) + (parts.get(id) ?? 0)]));
+}
 
 /** How many notebooks rest on each measurement, in any of these versions, by the measurement's id. */
 export async function countNotebooks(versions: readonly VersionLine[]): Promise<Map<string, number>> {
-  const byVersion = await countBy(
+  const byVersion = await countBoth(
     Notebook,
+    NotebookPart,
     versions.map(({ id }) => id),
   );
   const totals = new Map<string, number>();
@@ -53,13 +70,12 @@ export async function countNotebooks(versions: readonly VersionLine[]): Promise<
   return totals;
 }
 
-/** Whether the measurement that a notebook rests on is blind; a notebook that isn't there counts as blind. */
+/** Whether one of the measurements that a notebook rests on is blind; a notebook that isn't there counts as blind. */
 export async function isBlindNotebook(notebookId: string): Promise<boolean> {
   const notebook = await Notebook.findByPk(notebookId, { attributes: ['measurementVersionId'] });
-  const version =
-    notebook &&
-    (await MeasurementVersion.findByPk(notebook.measurementVersionId, { attributes: ['measurementId'] }));
-  const measurement =
-    version && (await Measurement.findByPk(version.measurementId, { attributes: ['blind'] }));
-  return measurement?.blind ?? true;
+  if (!notebook) return true;
+  const parts = await NotebookPart.findAll({ where: { notebookId }, attributes: ['measurementVersionId'] });
+  const ids = [notebook, ...parts].map(({ measurementVersionId }) => measurementVersionId);
+  const blind = await Promise.all(ids.map(isBlindVersion));
+  return blind.some(Boolean);
 }

@@ -10,7 +10,8 @@ import { AppError, notFound } from '@/lib/errors';
 import { presentNotebookCreated } from '@/lib/presenters/notebooks';
 import { snapshotSchema, type CopyNotebook, type NotebookCreated } from '@/lib/schemas';
 import type { Access } from './access';
-import { carryCuts, settleSettings } from './notebook-settings';
+import { carryCuts, carryPriors, settleSettings } from './notebook-settings';
+import { alsoOfFit, measuredTogether, measurementsOf } from './measured-together';
 import { findMeasured, insertNotebook } from './notebooks';
 
 /** Longest title of a notebook. */
@@ -23,7 +24,7 @@ export function copyTitle(title: string): string {
 }
 
 interface Original {
-  settings: Pick<NotebookSettings, 'cuts' | 'likelihood' | 'template' | 'priors'>;
+  settings: NotebookSettings;
   revision: number;
   fit: number | null;
   versionId: string;
@@ -42,9 +43,10 @@ async function originalOf(notebook: Notebook, fitId: string | undefined): Promis
     const { code, message } = notFound('fit');
     throw new AppError(code, message, [{ path: 'fit', message }]);
   }
-  const { cuts, likelihood, template, priors } = snapshotSchema.parse(fit.snapshot);
+  const snapshot = snapshotSchema.parse(fit.snapshot);
+  const { cuts, likelihood, template, priors } = snapshot;
   return {
-    settings: { cuts, likelihood, template, priors },
+    settings: { cuts, likelihood, template, priors, ...(await alsoOfFit(fit.id, snapshot)) },
     revision: fit.revision,
     fit: fit.number,
     versionId: fit.measurementVersionId,
@@ -56,6 +58,21 @@ async function versionOf(id: string) {
   return {
     version,
     measurement: await Measurement.findByPk(version.measurementId, { rejectOnEmpty: true }),
+  };
+}
+
+/**
+ * The further measurements of a copy: those of the original, but for the one that the copy itself is on. The priors of the original's
+ * first measurement go to the copy's.
+ */
+async function furtherOf(settings: NotebookSettings, own: Measurement, target: Measurement) {
+  const before = await measurementsOf(own, settings.also);
+  const also = (settings.also ?? []).filter((_, k) => before[k + 1] !== target.id);
+  const after = [own.id, ...before.slice(1).filter((id) => id !== target.id)];
+  return {
+    chosen: also.length > 0 ? { also, ...(settings.sharedMocks ? { sharedMocks: true as const } : {}) } : {},
+    changed: also.length !== (settings.also ?? []).length,
+    kept: (priors: NotebookSettings['priors']) => carryPriors(priors, before, after),
   };
 }
 
@@ -76,16 +93,19 @@ export async function copyNotebook(access: Access, body: CopyNotebook): Promise<
   const alike = (own.version.mockCount === null) === (target.version.mockCount === null);
   const { binAverage, ...others } = template.options;
   const edges = own.version.hasBinEdges === target.version.hasBinEdges;
+  const further = await furtherOf(original.settings, own.measurement, target.measurement);
+  const measured = await measuredTogether(target.version, further.chosen);
   const settings = settleSettings(
-    target.version,
+    measured.numbers,
     {
       cuts,
-      likelihood: alike ? likelihood : undefined,
+      likelihood: alike && !further.changed ? likelihood : undefined,
       template: { id: template.id, options: edges ? { ...others, binAverage } : others },
       given: {},
-      kept: priors as NotebookSettings['priors'],
+      kept: further.kept(priors),
+      ...further.chosen,
     },
-    target.measurement,
+    measured,
   );
   const made = await insertNotebook(access, {
     title: body.title ?? copyTitle(notebook.title),
@@ -99,5 +119,5 @@ export async function copyNotebook(access: Access, body: CopyNotebook): Promise<
       ...(dropped.length ? { droppedBins: dropped.length } : {}),
     },
   });
-  return presentNotebookCreated(made, target.measurement);
+  return presentNotebookCreated(made, measured);
 }

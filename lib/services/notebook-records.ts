@@ -16,7 +16,7 @@ import type { Access } from './access';
 import { countKept } from './inference-spec';
 import { emailsOf } from './people';
 import { readOnce } from './reading';
-import { versionLine } from './version-lines';
+import { versionLine, versionLines } from './version-lines';
 
 const fitLine = [
   'id',
@@ -77,6 +77,13 @@ export async function readNotebook(access: Access): Promise<NotebookAnswer> {
   ]);
   if (!group || !version || !standing) throw notFound('notebook');
   const { settings } = standing;
+  const further = settings.also ?? [];
+  const lines = await versionLines(further.map((part) => part.version));
+  const also = further.flatMap(({ version: id, cuts }) => {
+    const line = lines.get(id);
+    return line ? [{ line, cuts }] : [];
+  });
+  const all = [version, ...also.map(({ line }) => line)];
   return presentNotebook({
     notebook,
     groupName: group.name,
@@ -85,6 +92,16 @@ export async function readNotebook(access: Access): Promise<NotebookAnswer> {
     settings,
     statement: revisions.findLast(({ statement }) => statement !== null)?.statement ?? '',
     bins: { kept: countKept(version, settings.cuts), all: version.rows },
+    also: also.map(({ line, cuts }) => ({
+      id: line.measurementId,
+      name: line.name,
+      version: line.version,
+      newest: line.newest,
+      cuts,
+      bins: { kept: countKept(line, cuts), all: line.rows },
+    })),
+    blind: all.some(({ blind }) => blind),
+    simulated: all.some(({ simulated }) => simulated),
     revisions,
     fits,
     people: await emailsOf([
@@ -140,6 +157,13 @@ async function standingSettings(notebooks: readonly Notebook[]): Promise<Map<str
   return new Map(revisions.map(({ notebookId, settings }) => [notebookId, settings]));
 }
 
+/** The settings that stand in a notebook. */
+export async function settingsOf(notebook: Notebook): Promise<NotebookSettings> {
+  const settings = (await standingSettings([notebook])).get(notebook.id);
+  if (!settings) throw notFound('notebook');
+  return settings;
+}
+
 /** The last revision that changed what a fit freezes, by notebook's id: words and titles make no fit old. */
 async function settledRevisions(notebooks: readonly Notebook[]): Promise<Map<string, number>> {
   const revisions = await NotebookRevision.findAll({
@@ -159,10 +183,11 @@ async function settledRevisions(notebooks: readonly Notebook[]): Promise<Map<str
 export async function notebookSummaries(groupId: string): Promise<NotebookSummary[]> {
   const notebooks = await Notebook.findAll({ where: { groupId }, order: [['updatedAt', 'DESC']] });
   if (notebooks.length === 0) return [];
-  const [settings, settled, measurements, fits] = await Promise.all([
-    standingSettings(notebooks),
+  const settings = await standingSettings(notebooks);
+  const furtherIds = [...settings.values()].flatMap(({ also = [] }) => also.map(({ version }) => version));
+  const [settled, measurements, fits] = await Promise.all([
     settledRevisions(notebooks),
-    measuredByVersion(notebooks.map(({ measurementVersionId }) => measurementVersionId)),
+    measuredByVersion([...notebooks.map(({ measurementVersionId }) => measurementVersionId), ...furtherIds]),
     Fit.findAll({
       where: { notebookId: notebooks.map(({ id }) => id) },
       attributes: [...fitLine],
@@ -189,6 +214,7 @@ export async function notebookSummaries(groupId: string): Promise<NotebookSummar
         notebook,
         { settings: standing, settled: settled.get(notebook.id) ?? 1 },
         measurement,
+        (standing.also ?? []).flatMap(({ version }) => measurements.get(version) ?? []),
         { lastFit, finishedFit: finished.get(notebook.id) ?? null },
         people,
       ),

@@ -5,6 +5,8 @@ import type { Notebook as NotebookAnswer, RestoreRevision, Revision } from '@/li
 import type { Access } from './access';
 import { addRevision } from './notebooks';
 import { statementAt } from './statements';
+import { measurementsOf } from './measured-together';
+import { versionLines } from './version-lines';
 import { emailsOf } from './people';
 
 /** One revision of the notebook of `access`; what isn't the number of one is answered as missing. */
@@ -20,11 +22,12 @@ async function findRevision(access: Access, number: string): Promise<NotebookRev
 export async function readRevision(access: Access, number: string): Promise<Revision> {
   access.require('notebook.read');
   const revision = await findRevision(access, number);
-  const [people, statement] = await Promise.all([
+  const [people, statement, versions] = await Promise.all([
     emailsOf([revision.createdBy]),
     statementAt(access.id, revision.revision),
+    versionLines((revision.settings.also ?? []).map(({ version }) => version)),
   ]);
-  return presentRevision(revision, statement, people);
+  return presentRevision(revision, statement, people, versions);
 }
 
 /**
@@ -40,9 +43,15 @@ export async function restoreRevision(
   const earlier = await findRevision(access, number);
   const { cuts, likelihood, template, priors } = earlier.settings;
   const statement = await statementAt(access.id, earlier.revision);
-  return addRevision(access, body.revision, earlier.revision, () => ({
+  const further = earlier.settings.also ?? [];
+  return addRevision(access, body.revision, earlier.revision, async () => ({
     title: earlier.title,
     statement,
+    from: earlier.settings,
+    alsoMeasurements: (await measurementsOf({ id: '' }, further))
+      .slice(1)
+      .map((measurement, k) => ({ measurement, cuts: further[k].cuts })),
+    sharedMocks: earlier.settings.sharedMocks ?? false,
     draft: {
       cuts,
       likelihood,

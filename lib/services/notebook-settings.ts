@@ -1,14 +1,21 @@
 import { isDeepStrictEqual } from 'node:util';
-import type { MeasurementVersion, NotebookSettings } from '@/models';
+import type { NotebookSettings } from '@/models';
 import { AppError } from '@/lib/errors';
 import { assembledParameters, buildMetric, likelihoodFor, type InferenceSpec } from '@/lib/inference';
-import { layOutParameters } from '@/lib/inference/parameter-layout';
-import { carryExcluded, type ExcludedBin, type TheoryParts } from '@/lib/measurements';
+import { isFixedColumn, layOutParameters } from '@/lib/inference/parameter-layout';
+import { carryExcluded, type ExcludedBin } from '@/lib/measurements';
 import type { CreateNotebook, NotebookSection } from '@/lib/schemas';
-import { findTemplate, type ParameterDeclaration, type Prior } from '@/lib/templates';
+import { findTemplate, partOfName, type ParameterDeclaration, type Prior } from '@/lib/templates';
 import { defaultPrior, type DataScale } from './default-priors';
 import { refusingFaults } from './inference-faults';
-import { cutPoints, readColumns, specOnPoints } from './inference-spec';
+import {
+  cutParts,
+  partLabel,
+  readColumns,
+  specOnParts,
+  type CutPart,
+  type StoredNumbers,
+} from './inference-spec';
 
 /** What a person gave for a notebook, and what stood before. */
 export interface SettingsDraft {
@@ -20,17 +27,15 @@ export interface SettingsDraft {
   given: NonNullable<CreateNotebook['priors']>;
   /** Priors that stood; those of parameters that the template has no more are dropped. */
   kept: NotebookSettings['priors'];
+  /** Further measurements, whose numbers come with those of the first. */
+  also?: NotebookSettings['also'];
+  sharedMocks?: boolean;
 }
-
-type Version = Pick<
-  MeasurementVersion,
-  'rows' | 'hasBinEdges' | 'points' | 'covariance' | 'mockCount' | 'theory'
->;
 
 function settlePriors(
   parameters: readonly ParameterDeclaration[],
   { given, kept }: Pick<SettingsDraft, 'given' | 'kept'>,
-  data: DataScale | null,
+  dataOf: ((declaration: ParameterDeclaration) => DataScale) | null,
 ): NotebookSettings['priors'] {
   const names = parameters.map(({ name }) => name);
   const unknown = Object.keys(given).find((name) => !names.includes(name));
@@ -44,14 +49,30 @@ function settlePriors(
     parameters.map((declaration) => {
       const { name } = declaration;
       const prior: NotebookSettings['priors'][string] | Prior =
-        own(given, name) ?? own(kept, name) ?? defaultPrior(declaration, data);
+        own(given, name) ?? own(kept, name) ?? defaultPrior(declaration, dataOf && dataOf(declaration));
       return [name, { ...prior }];
     }),
   );
 }
 
-const defaultLikelihood = (mockCount: number | null, { covariance }: TheoryParts) =>
-  likelihoodFor([{ data: { mockCount }, ...(covariance ? { theoryCovariance: covariance } : {}) }], false);
+const defaultLikelihood = (parts: readonly CutPart[]) =>
+  likelihoodFor(
+    parts.map(({ mockCount, points: { theory } }) => ({
+      data: { mockCount },
+      ...(theory.covariance ? { theoryCovariance: theory.covariance } : {}),
+    })),
+    parts.some(({ mocks }) => mocks !== null),
+  );
+
+/** The data that the default prior of a parameter looks at: those of its own measurement, or all where it is shared. */
+function dataOfPart(parts: readonly CutPart[]): (declaration: ParameterDeclaration) => DataScale {
+  const all = {
+    kappa: parts.flatMap(({ points }) => Array.from(points.kappa)),
+    S: parts.flatMap(({ points }) => Array.from(points.S)),
+  };
+  return ({ name, role }) =>
+    isFixedColumn(role) && parts.length > 1 ? parts[partOfName(name).part].points : all;
+}
 
 /** Refuses priors, or a likelihood, with which no posterior can be built. */
 export function checkFittable({ data, likelihood, template, priors }: InferenceSpec): void {
@@ -61,7 +82,7 @@ export function checkFittable({ data, likelihood, template, priors }: InferenceS
   });
 }
 
-type Columns = Pick<MeasurementVersion, 'rows' | 'hasBinEdges' | 'points'>;
+type Columns = Pick<StoredNumbers, 'rows' | 'hasBinEdges' | 'points'>;
 
 /**
  * Cuts carried to a version: single bins are found by their edges, and what that version hasn't got is dropped. Without any
@@ -80,7 +101,11 @@ export function carryCuts(
 }
 
 /** The cuts with the place of every bin left out. `invalid` where a bin isn't there or is left out twice. */
-function settleCuts(version: Columns, cuts: NotebookSettings['cuts']): NotebookSettings['cuts'] {
+function settleCuts(
+  version: Columns,
+  cuts: NotebookSettings['cuts'],
+  path = 'cuts',
+): NotebookSettings['cuts'] {
   const { cuts: settled, dropped } = carryCuts(version, cuts);
   if (dropped.length === 0) return settled;
   const [{ bin, kappa }] = dropped;
@@ -91,38 +116,73 @@ function settleCuts(version: Columns, cuts: NotebookSettings['cuts']): NotebookS
       ? `bin ${bin}; it has ${version.rows}`
       : `bin ${bin} that isn't left out already`;
   const message = `The measurement has no ${what}. Name each bin once, by its number from 1 to ${version.rows}.`;
-  throw new AppError('invalid', message, [{ path: `cuts.excluded.${at}.bin`, message }]);
+  throw new AppError('invalid', message, [{ path: `${path}.excluded.${at}.bin`, message }]);
 }
 
 /**
- * The complete settings of sections 1, 2 and 4 that a draft means on a measurement's version: options with all
+ * The complete settings of sections 1, 2 and 4 that a draft means on versions of its measurements: options with all
  * defaults, a prior for every parameter. `invalid` with place and remedy where they can't be fitted.
  */
 export function settleSettings(
-  version: Version,
+  numbers: StoredNumbers,
   draft: SettingsDraft,
-  measurement: { blind: boolean },
+  { blind }: { blind: boolean },
 ): NotebookSettings {
-  const cuts = settleCuts(version, draft.cuts);
-  const points = cutPoints(version, cuts);
+  const cuts = settleCuts(numbers, draft.cuts);
+  const also = draft.also?.map((part, k) => ({
+    version: part.version,
+    cuts: settleCuts(numbers.also?.[k] ?? numbers, part.cuts, `alsoMeasurements.${k}.cuts`),
+  }));
+  const together = {
+    ...(also?.length ? { also } : {}),
+    ...(draft.sharedMocks ? { sharedMocks: true as const } : {}),
+  };
+  const parts = cutParts(numbers, { cuts, ...together });
   const { id, options } = draft.template;
   const parameters = refusingFaults(() =>
-    assembledParameters(findTemplate(id).parameters(options), [
-      { label: 'measurement', columns: points.theory.columns },
-    ]),
+    assembledParameters(
+      findTemplate(id).parameters(options),
+      parts.map(({ points }, k) => ({ label: partLabel(k), columns: points.theory.columns })),
+    ),
   );
   const settings: NotebookSettings = {
     cuts,
-    likelihood: draft.likelihood ?? { kind: defaultLikelihood(version.mockCount, points.theory) },
+    likelihood: draft.likelihood ?? { kind: defaultLikelihood(parts) },
     template: { id, version: 0, options },
-    priors: settlePriors(parameters, draft, measurement.blind ? null : points),
+    priors: settlePriors(parameters, draft, blind ? null : dataOfPart(parts)),
+    ...together,
   };
-  const { spec } = specOnPoints(points, version.mockCount, settings);
+  const { spec } = specOnParts(parts, settings);
   checkFittable(spec);
   return {
     ...settings,
     template: { id, version: spec.template.version, options: spec.template.options },
   };
+}
+
+/**
+ * Priors by name after measurements were added to a notebook or taken out: those of a measurement's own background and columns go with
+ * it, whatever number it has now. `before` and `after` name the measurements in their order.
+ */
+export function carryPriors(
+  priors: NotebookSettings['priors'],
+  before: readonly string[],
+  after: readonly string[],
+): NotebookSettings['priors'] {
+  const ending = (list: readonly string[], k: number): string => (list.length > 1 ? `_${k + 1}` : '');
+  const own = (name: string): boolean => before.length === 1 || /_\d+$/.test(name);
+  const shared = Object.entries(priors).filter(([name]) => before.length === 1 || !own(name));
+  const moved = after.flatMap((measurement, k) => {
+    const from = before.indexOf(measurement);
+    const was = ending(before, from);
+    if (from < 0) return [];
+    return Object.entries(priors).flatMap(([name, prior]) =>
+      own(name) && name.endsWith(was)
+        ? [[`${name.slice(0, name.length - was.length)}${ending(after, k)}`, prior] as const]
+        : [],
+    );
+  });
+  return Object.fromEntries([...shared, ...moved]);
 }
 
 /** The sections in which two revisions differ. */
@@ -134,7 +194,9 @@ export function changedSections(
     !isDeepStrictEqual(before.settings[key], after.settings[key]);
   return [
     ...(before.title !== after.title ? (['title'] as const) : []),
-    ...(differ('cuts') || differ('likelihood') ? (['measurement'] as const) : []),
+    ...((['cuts', 'likelihood', 'also', 'sharedMocks'] as const).some(differ)
+      ? (['measurement'] as const)
+      : []),
     ...(differ('template') ? (['template'] as const) : []),
     ...(differ('priors') ? (['priors'] as const) : []),
   ];

@@ -1,3 +1,4 @@
+import { isDeepStrictEqual } from 'node:util';
 import type { Transaction } from 'sequelize';
 import {
   Group,
@@ -13,6 +14,7 @@ import { AppError, notFound } from '@/lib/errors';
 import { presentNotebookCreated } from '@/lib/presenters/notebooks';
 import {
   notebookSections,
+  type AlsoMeasurement,
   type CreateNotebook,
   type NotebookCreated,
   type Notebook as NotebookAnswer,
@@ -23,7 +25,8 @@ import { recordEvent } from './audit';
 import { refuseArchived } from './notebook-archive';
 import { tellNotebook } from './notebook-presence';
 import { readNotebook } from './notebook-records';
-import { changedSections, settleSettings, type SettingsDraft } from './notebook-settings';
+import { chooseAlso, measuredTogether, measurementsOf, restOn } from './measured-together';
+import { carryPriors, changedSections, settleSettings, type SettingsDraft } from './notebook-settings';
 import { checkStatement, statementAt } from './statements';
 
 export { notebookSummaries, readNotebook } from './notebook-records';
@@ -89,6 +92,7 @@ export async function insertNotebook(
       },
       { transaction },
     );
+    await restOn(made.id, settings.also, transaction);
     await recordEvent(
       {
         groupId,
@@ -100,6 +104,7 @@ export async function insertNotebook(
           number: made.number,
           measurement: measurement.id,
           version: version.version,
+          ...(settings.also ? { measurements: settings.also.length + 1 } : {}),
           ...(origin ? { origin } : {}),
         },
       },
@@ -122,8 +127,11 @@ export async function createNotebook(access: Access, body: CreateNotebook): Prom
     template: body.template,
     given: body.priors ?? {},
     kept: {},
+    also: await chooseAlso(access.groupId, measurement, body.alsoMeasurements ?? [], []),
+    sharedMocks: body.sharedMocks,
   };
-  const settings = settleSettings(version, draft, measurement);
+  const measured = await measuredTogether(version, chosenOf(draft));
+  const settings = settleSettings(measured.numbers, draft, measured);
   const notebook = await insertNotebook(access, {
     title: body.title,
     settings,
@@ -131,7 +139,7 @@ export async function createNotebook(access: Access, body: CreateNotebook): Prom
     version,
     origin: null,
   });
-  return presentNotebookCreated(notebook, measurement);
+  return presentNotebookCreated(notebook, measured);
 }
 
 function refuseStale(named: number, standing: NotebookRevision): never {
@@ -162,12 +170,51 @@ async function lockNotebook(id: string, transaction: Transaction) {
   return { notebook, standing, version, measurement };
 }
 
+/** Further measurements of a draft as settings have them. */
+const chosenOf = ({ also, sharedMocks }: SettingsDraft) => ({
+  also,
+  ...(sharedMocks ? { sharedMocks: true as const } : {}),
+});
+
 /** What a new revision is to say. */
 export interface RevisionDraft {
   title: string;
-  draft: SettingsDraft;
+  draft: Omit<SettingsDraft, 'also' | 'sharedMocks'>;
+  /** The settings whose priors the draft keeps; other measurements than theirs have those priors under other names. */
+  from: NotebookSettings;
+  /** Further measurements; left out, those that stand. */
+  alsoMeasurements?: readonly AlsoMeasurement[];
+  sharedMocks?: boolean;
   /** The group's words; left out, they stay. */
   statement?: string;
+}
+
+/**
+ * A revision's draft with its further measurements. Priors go with the measurements that they belong to, and bin averaging gives way
+ * where the measurements are others: one of them may have no edges.
+ */
+async function withFurther(
+  { draft, from, alsoMeasurements, sharedMocks }: RevisionDraft,
+  standing: NotebookSettings,
+  own: Measurement,
+  transaction: Transaction,
+): Promise<SettingsDraft> {
+  const before = standing.also ?? [];
+  const also = alsoMeasurements
+    ? await chooseAlso(own.groupId, own, alsoMeasurements, before, transaction)
+    : before;
+  const was = await measurementsOf(own, from.also, transaction);
+  const now = await measurementsOf(own, also, transaction);
+  const together =
+    also.length > 0 ? { also, sharedMocks: sharedMocks ?? standing.sharedMocks } : { sharedMocks };
+  if (isDeepStrictEqual(was, now)) return { ...draft, ...together };
+  const { binAverage, ...options } = draft.template.options;
+  return {
+    ...draft,
+    template: { ...draft.template, options: binAverage === false ? { ...options, binAverage } : options },
+    kept: carryPriors(draft.kept, was, now),
+    ...together,
+  };
 }
 
 /**
@@ -178,7 +225,7 @@ export async function addRevision(
   access: Access,
   named: number,
   restoredFrom: number | null,
-  draftFrom: (standing: NotebookRevision, notebook: Notebook) => RevisionDraft,
+  draftFrom: (standing: NotebookRevision, notebook: Notebook) => RevisionDraft | Promise<RevisionDraft>,
 ): Promise<NotebookAnswer> {
   access.require('notebook.edit');
   const { groupId, actor } = access;
@@ -186,8 +233,11 @@ export async function addRevision(
     const { notebook, standing, version, measurement } = await lockNotebook(access.id, transaction);
     refuseArchived(notebook);
     if (named !== notebook.revision) refuseStale(named, standing);
-    const { title, draft, statement: written } = draftFrom(standing, notebook);
-    const settings = settleSettings(version, draft, measurement);
+    const made = await draftFrom(standing, notebook);
+    const { title, statement: written } = made;
+    const draft = await withFurther(made, standing.settings, measurement, transaction);
+    const measured = await measuredTogether(version, chosenOf(draft), transaction);
+    const settings = settleSettings(measured.numbers, draft, measured);
     const words = await statementAt(notebook.id, notebook.revision, transaction);
     const statement = written === words ? undefined : written;
     if (statement !== undefined) await checkStatement(notebook.id, statement, transaction);
@@ -213,6 +263,7 @@ export async function addRevision(
       { transaction },
     );
     await notebook.update({ title, revision, updatedBy: actor.userId, updatedAt: now }, { transaction });
+    await restOn(notebook.id, settings.also, transaction);
     await recordEvent(
       {
         groupId,
@@ -229,6 +280,13 @@ export async function addRevision(
   return readNotebook(access);
 }
 
+/** The likelihood that stands, or the default of the measurements where others are taken together. */
+const likelihoodAfter = (before: NotebookSettings, { alsoMeasurements, sharedMocks }: PatchNotebook) =>
+  (alsoMeasurements && alsoMeasurements.length !== (before.also ?? []).length) ||
+  (sharedMocks !== undefined && sharedMocks !== (before.sharedMocks ?? false))
+    ? undefined
+    : before.likelihood;
+
 /**
  * Edits the notebook of `access`: what the body leaves out stays. With another template, priors of parameters that
  * stay are kept, new ones get their default, others go. `stale_revision` unless the body names the revision that stands.
@@ -238,11 +296,14 @@ export function patchNotebook(access: Access, body: PatchNotebook): Promise<Note
     title: body.title ?? title,
     draft: {
       cuts: body.cuts ?? before.cuts,
-      likelihood: body.likelihood ?? before.likelihood,
+      likelihood: body.likelihood ?? likelihoodAfter(before, body),
       template: body.template ?? before.template,
       given: body.priors ?? {},
       kept: before.priors,
     },
+    from: before,
+    alsoMeasurements: body.alsoMeasurements,
+    sharedMocks: body.sharedMocks,
     statement: body.statement,
   }));
 }

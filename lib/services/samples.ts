@@ -30,10 +30,10 @@ const storedOutputsSchema = z.object({
   files: z.array(outputSchema).length(sampleFormats.length),
 });
 
-const sourceOf = ({ fit, version, snapshot }: FitSource): SampleSource => ({
+const sourceOf = ({ fit, numbers, snapshot }: FitSource): SampleSource => ({
   fitId: fit.id,
   draws: fit.draws,
-  model: fitModel(version, snapshot),
+  model: fitModel(numbers, snapshot),
 });
 
 export interface SampleFile {

@@ -2,7 +2,7 @@ import { QueryTypes } from 'sequelize';
 import { MeasurementVersion, Scan } from '@/models';
 import { database } from '@/lib/db';
 import { scanRequestSchema } from '@/lib/schemas';
-import { storedNumbers } from './fit-model';
+import { measuredTogether } from './measured-together';
 import type { FinishedScan, ScanJobModel } from './scan-model';
 
 /** Who may write a scan: as with fits, a worker takes epoch + 1 with a lease, and every later write says `AND epoch = ?`. */
@@ -36,13 +36,15 @@ export async function claimScan(scanId: string, leaseMs: number): Promise<Claime
       transaction,
       rejectOnEmpty: true,
     });
+    const request = scanRequestSchema.parse(scan.request);
+    const { parts, numbers } = await measuredTogether(version, request, transaction);
     return {
       scanId,
       epoch: scan.epoch,
       model: {
-        numbers: storedNumbers(version),
-        request: scanRequestSchema.parse(scan.request),
-        seed: `nulls/${version.sha256}`,
+        numbers,
+        request,
+        seed: ['nulls', ...parts.map((part) => part.version.sha256)].join('/'),
       },
     };
   });

@@ -1,19 +1,11 @@
 import { isFixedColumn, layOutParameters } from '@/lib/inference/parameter-layout';
-import type { InferenceSpec } from '@/lib/inference';
+import type { FitData, InferenceSpec } from '@/lib/inference';
 import { nullThreshold, reachOf, runScan, type NullHeights, type ScanOutcome } from '@/lib/inference/scan';
 import { templateCoordinates } from '@/lib/inference/scan/template-coordinates';
 import { fieldCount, findTemplate, type Prior } from '@/lib/templates';
 import type { ScanRequest, ScanResult } from '@/lib/schemas';
 import type { NotebookSettings } from '@/models';
-import {
-  axisOf,
-  cutPoints,
-  readPoints,
-  specOnPoints,
-  writeDoubles,
-  type NotebookInference,
-  type Points,
-} from './inference-spec';
+import { cutParts, specOnParts, uncutData, writeDoubles, type NotebookInference } from './inference-spec';
 import type { StoredNumbers } from './fit-model';
 
 /** All that a thread needs to scan. */
@@ -24,9 +16,7 @@ export interface ScanJobModel {
   seed: string;
 }
 
-type Settings = Pick<ScanRequest, 'cuts' | 'likelihood' | 'template' | 'priors'>;
-
-const asBuffer = (bytes: Uint8Array): Buffer => Buffer.from(bytes.buffer, bytes.byteOffset, bytes.byteLength);
+type Settings = Pick<ScanRequest, 'cuts' | 'likelihood' | 'template' | 'priors' | 'also' | 'sharedMocks'>;
 
 /** The settings with `count` fields: priors of parameters that remain, the template's own for those that appear. */
 function withFields(settings: Settings, count: number): NotebookSettings {
@@ -57,13 +47,10 @@ export interface ScanSpecs {
 
 /** What is scanned for settings on a measurement: one field, and two where the notebook has more than one. */
 export function scanSpecs(numbers: StoredNumbers, settings: Settings): ScanSpecs {
-  const stored = { ...numbers, points: asBuffer(numbers.points), covariance: asBuffer(numbers.covariance) };
-  const points = cutPoints(stored, settings.cuts);
-  const one = specOnPoints(points, numbers.mockCount, withFields(settings, 1));
+  const parts = cutParts(numbers, settings);
+  const one = specOnParts(parts, withFields(settings, 1));
   const two =
-    fieldCount(settings.template.options.fields) > 1
-      ? specOnPoints(points, numbers.mockCount, withFields(settings, 2))
-      : null;
+    fieldCount(settings.template.options.fields) > 1 ? specOnParts(parts, withFields(settings, 2)) : null;
   return { one: one.spec, two: two?.spec ?? null, notebook: one };
 }
 
@@ -74,7 +61,7 @@ export function checkScannable({ one, two }: ScanSpecs): void {
 
 /** The reach of the columns in ln κ, which settles the grid. */
 export const reachOfSpecs = ({ one, notebook }: ScanSpecs): number =>
-  reachOf([notebook.axis], one.template.structure === 'mixed');
+  reachOf(notebook.axes, one.template.structure === 'mixed');
 
 const orNull = (value: number): number | null => (Number.isFinite(value) ? value : null);
 const listed = (values: ArrayLike<number>): number[] => Array.from(values);
@@ -86,10 +73,8 @@ export interface FinishedScan {
 }
 
 /** Covariance of the data about a prediction, before cuts: what the theory leaves out scatters too. */
-const scatterOf = ({ covariance, theory }: Points): Float64Array => {
-  const added = theory.covariance;
-  return added ? covariance.map((value, k) => value + added[k]) : covariance;
-};
+const scatterOf = ({ covariance, theoryCovariance: added }: FitData): Float64Array =>
+  added ? covariance.map((value, k) => value + added[k]) : covariance;
 
 /** Runs a scan as it was requested. Reads nothing but its arguments. */
 export function performScan(
@@ -97,20 +82,20 @@ export function performScan(
   onProgress: (fraction: number) => void,
 ): FinishedScan {
   const specs = scanSpecs(numbers, request);
-  const stored = { ...numbers, points: asBuffer(numbers.points), covariance: asBuffer(numbers.covariance) };
+  const uncut = uncutData(numbers, request);
   const outcome = runScan(
     {
       one: specs.one,
       two: specs.two,
-      axes: [axisOf(cutPoints(stored, request.cuts), specs.one.template.options)],
+      axes: specs.notebook.axes,
       muMin: request.muMin,
       muMax: request.muMax,
       nulls: request.nulls,
       source: {
-        covariance: scatterOf(readPoints(stored)),
-        rows: numbers.rows,
+        covariance: scatterOf(uncut),
+        rows: uncut.S.length,
         kept: specs.notebook.kept,
-        mocks: numbers.mockCount,
+        mocks: uncut.mockCount,
       },
       seed,
     },

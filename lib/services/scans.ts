@@ -18,7 +18,6 @@ import { recordEvent } from './audit';
 import { canonicalSha256 } from './canonical-json';
 import { refusingFaults } from './inference-faults';
 import { refuseArchived } from './notebook-archive';
-import { storedNumbers } from './fit-model';
 import { lockNotebook } from './fits';
 import { emailsOf } from './people';
 import { program } from './program';
@@ -69,9 +68,9 @@ function rangeOf(
 /** Freezes what is to be scanned; the row that asked for the same before, if there is one, answers again. */
 async function request(access: Access, body: StartScan): Promise<Scan> {
   return database().transaction(async (transaction) => {
-    const { notebook, revision, version, measurement } = await lockNotebook(access, transaction);
+    const { notebook, revision, version, measured } = await lockNotebook(access, transaction);
     refuseArchived(notebook);
-    if (measurement.blind) {
+    if (measured.blind) {
       throw new AppError(
         'plan_missing',
         'The measurement is blind: freeze a plan before anything is looked for in it.',
@@ -79,7 +78,7 @@ async function request(access: Access, body: StartScan): Promise<Scan> {
     }
     const { settings } = revision;
     const parsed = scanRequestSchema.omit({ muMin: true, muMax: true }).parse({
-      inputs: version.files.map(({ sha256 }) => sha256),
+      inputs: measured.parts.flatMap((part) => part.version.files.map(({ sha256 }) => sha256)),
       measurementVersion: version.version,
       ...settings,
       mockCount: version.mockCount,
@@ -87,7 +86,7 @@ async function request(access: Access, body: StartScan): Promise<Scan> {
       program: program.program,
     });
     const specs = refusingFaults(() => {
-      const found = scanSpecs(storedNumbers(version), parsed);
+      const found = scanSpecs(measured.numbers, parsed);
       checkScannable(found);
       return found;
     });

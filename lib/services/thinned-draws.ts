@@ -138,7 +138,7 @@ async function make(access: Access, max: number, before: Entry | undefined): Pro
   const source = await findDraws(access);
   const { fit, snapshot } = source;
   const { warmup, replicas } = snapshot;
-  const columns = before?.columns ?? fitColumns(specOf(fitModel(source.version, snapshot)));
+  const columns = before?.columns ?? fitColumns(specOf(fitModel(source.numbers, snapshot)));
   const ended = endedStatuses.includes(fitStatusSchema.parse(fit.status));
   const stride = strideFor(fit.draws, warmup, replicas, max, ended);
   const useful = before && before.thinned.draws <= fit.draws && stride % before.thinned.stride === 0;

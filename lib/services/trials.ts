@@ -1,21 +1,27 @@
-import { Scan } from '@/models';
+import { Scan, type NotebookSettings } from '@/models';
 import { jointSignificance, type Look } from '@/lib/inference/scan';
 import { storedResult } from '@/lib/presenters/scans';
 import { scanRequestSchema, scanStatusSchema, type Trial, type Trials } from '@/lib/schemas';
 import type { Access } from './access';
 import { readDoubles } from './inference-spec';
-import { findNotebook } from './notebook-records';
+import { findNotebook, settingsOf } from './notebook-records';
 import { emailsOf } from './people';
-import { isBlindVersion } from './version-lines';
+import { isBlindNotebook } from './measurement-rest';
 
 const doubles = (bytes: Buffer | null): Float64Array | null =>
   bytes && readDoubles(bytes, 'heights of the nulls', bytes.byteLength / 8);
 
-/** The looks that one scan made, and their heights where they are on the nulls of `version`. */
-function looksOf(scan: Scan, version: string, by: string): { trial: Trial; look: Look | null }[] {
+/** What settles the nulls of a scan: the versions of its measurements, and whether their mocks are shared. */
+const nullsOf = (
+  own: string,
+  { also = [], sharedMocks = false }: Pick<NotebookSettings, 'also'> & { sharedMocks?: boolean },
+): string => JSON.stringify([own, also.map(({ version }) => version), sharedMocks]);
+
+/** The looks that one scan made, and their heights where they are on the nulls of `standing`. */
+function looksOf(scan: Scan, standing: string, by: string): { trial: Trial; look: Look | null }[] {
   const request = scanRequestSchema.parse(scan.request);
   const result = storedResult(scan);
-  const shared = scan.measurementVersionId === version;
+  const shared = nullsOf(scan.measurementVersionId, request) === standing;
   const common = {
     scan: scan.id,
     number: scan.number,
@@ -71,11 +77,12 @@ function looksOf(scan: Scan, version: string, by: string): { trial: Trial; look:
 export async function readTrials(access: Access): Promise<Trials> {
   access.require('notebook.read');
   const notebook = await findNotebook(access);
-  const blind = await isBlindVersion(notebook.measurementVersionId);
+  const blind = await isBlindNotebook(notebook.id);
   const scans = await Scan.findAll({ where: { notebookId: notebook.id }, order: [['number', 'ASC']] });
   const people = await emailsOf(scans.map(({ startedBy }) => startedBy));
+  const standing = nullsOf(notebook.measurementVersionId, await settingsOf(notebook));
   const all = scans.flatMap((scan) =>
-    looksOf(scan, notebook.measurementVersionId, people.get(scan.startedBy) ?? 'a former member'),
+    looksOf(scan, standing, people.get(scan.startedBy) ?? 'a former member'),
   );
   const trials = all.map(({ trial }) =>
     blind ? { ...trial, best: null, deltaChi2: null, localP: null, globalP: null } : trial,

@@ -57,6 +57,8 @@ export function notebookFixture(change: Partial<Notebook> = {}): Notebook {
     measurement: { id: '7f2b6c0e-3a53-4b6a-9d8c-0d6f2f7a1b01', name: 'Four bins', version: 1, newest: 1 },
     cuts: {},
     bins: { kept: 4, all: 4 },
+    also: [],
+    sharedMocks: false,
     likelihood: { kind: 'matched-t' },
     template: { id: 'free-phase', version: 1, options: { fields: 1, background: [1], binAverage: true } },
     priors: {},
