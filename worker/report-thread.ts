@@ -2,11 +2,10 @@ import { parentPort, workerData } from 'node:worker_threads';
 import { exactLogEvidence } from '@/lib/inference';
 import { fitColumns, specOf } from '@/lib/services/fit-model';
 import { evidenceInReport } from '@/lib/services/fit-moves';
-import { scannedModes } from '@/lib/services/fit-modes';
-import { KeptDraws, lookAt, type ScannedModes } from '@/lib/services/fit-report';
+import { FitModes } from '@/lib/services/fit-modes';
+import { KeptDraws, lookAt } from '@/lib/services/fit-report';
 import { verdict } from '@/lib/services/fit-verdict';
 import { widthsOf } from '@/lib/services/fit-widths';
-import { judgedFrom } from '@/lib/services/fit-schedule';
 import { failureOf } from './failure';
 import { yieldToOthers } from '@/lib/niceness';
 import type { ReportAnswer, ReportQuestion, ReportSetup } from './messages';
@@ -24,8 +23,7 @@ const { warmup, replicas } = model.snapshot;
 const kept = new KeptDraws(columns, warmup, replicas);
 const answer = (message: ReportAnswer) => port.postMessage(message);
 
-/** The scan takes a few seconds: it is made when it is first needed, which the number of draws alone decides. */
-let scanned: ScannedModes | null | undefined;
+const modes = new FitModes(spec, model.snapshot);
 
 port.on('message', (question: ReportQuestion) => {
   try {
@@ -33,8 +31,8 @@ port.on('message', (question: ReportQuestion) => {
       kept.append(question.replica, question.first, question.stride, question.values);
     } else {
       const { draws, before, facts, standing } = question;
-      if (draws - warmup >= judgedFrom && scanned === undefined) scanned = scannedModes(model);
-      const report = lookAt(kept, columns, { warmup, draws, target }, before, scanned ?? null);
+      const scanned = modes.at(draws - warmup);
+      const report = lookAt(kept, columns, { warmup, draws, target }, before, scanned);
       // A fit that goes on gets other draws: only the last look says how the evidence hangs on the prior.
       const ends = verdict(model.snapshot, report.gate.met, standing) !== null;
       const widths = ends ? widthsOf(spec, kept, draws - warmup) : null;

@@ -135,6 +135,7 @@ export function presentFit(fit: FitRow, { startedBy, role, blind, queue }: FitCo
     diagnostics: report.diagnostics,
     history: report.history,
     modes: report.modes,
+    modesOf: report.modesOf,
     logEvidence: report.logEvidence,
     noEvidence: report.noEvidence,
     gate: {

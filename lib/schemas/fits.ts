@@ -115,7 +115,7 @@ export const ladderSchema = z.object({
   rests: z.boolean(),
 });
 
-/** An interval of masses between minima of the collapsed density: its share of the draws, and of the posterior by the scan. */
+/** An interval of masses between minima of the collapsed density: its share of the draws, and of the posterior by the scan or the independent run. */
 export const modeSchema = z.object({
   mu: z.array(z.number()),
   lo: z.array(z.number()),
@@ -126,6 +126,9 @@ export const modeSchema = z.object({
   scanWeight: numberOrNull,
 });
 export type Mode = z.infer<typeof modeSchema>;
+
+/** The masses of every mode, by name, and where `scanWeight` comes from: a scan, or an independent cold run of chains. */
+export const modesOfSchema = z.object({ by: z.enum(['scan', 'run']), names: z.array(z.string()) });
 
 export const fitSchema = z.object({
   id: idSchema,
@@ -170,6 +173,8 @@ export const fitSchema = z.object({
     z.object({ draws: z.number().int(), rhat: z.array(numberOrNull), ess: z.array(numberOrNull) }),
   ),
   modes: z.array(modeSchema),
+  /** Null before modes are compared. */
+  modesOf: modesOfSchema.nullable(),
   logEvidence: evidenceSchema.nullable(),
   /** Why there is no evidence, to follow "because"; null where there is one. */
   noEvidence: z.string().nullable(),
@@ -202,6 +207,7 @@ export const fitEventSchema = fitSchema.pick({
   diagnostics: true,
   history: true,
   modes: true,
+  modesOf: true,
   logEvidence: true,
   noEvidence: true,
   gate: true,

@@ -1,5 +1,5 @@
 import { z } from 'zod';
-import { diagnosticSchema, evidenceSchema, ladderSchema, modeSchema } from './fits';
+import { diagnosticSchema, evidenceSchema, ladderSchema, modeSchema, modesOfSchema } from './fits';
 import { widthCurveSchema } from './comparison';
 import { numberOrNull } from './shared';
 
@@ -24,6 +24,7 @@ export const storedReportSchema = z.object({
   noEvidence: z.string().nullable().default(null),
   /** Empty before the first look, and where there is no scan to compare with. */
   modes: z.array(modeSchema).default([]),
+  modesOf: modesOfSchema.nullable().default(null),
   /** How the evidence hangs on the width of the amplitudes' prior; of the look that ended the fit, where it has one. */
   widths: widthCurveSchema.nullable().default(null),
 });
@@ -41,5 +42,6 @@ export const emptyReport: StoredReport = {
   logEvidence: null,
   noEvidence: 'no draw is kept yet',
   modes: [],
+  modesOf: null,
   widths: null,
 };

@@ -107,12 +107,6 @@ function decimate(history: StoredReport['history']): StoredReport['history'] {
   return history.filter((_, i) => (last - i) % 2 === 0);
 }
 
-/** The scan's modes of a fit's own posterior, and the names of its masses. */
-export interface ScannedModes {
-  scan: ModeScan;
-  masses: readonly string[];
-}
-
 const presentMode = ({ mu, lo, hi, weight, mcse, scanWeight }: ModeRow): Mode => ({
   mu,
   lo,
@@ -131,7 +125,7 @@ export interface Look {
 
 /**
  * Looks at a fit: diagnostics of every sampled parameter and derived quantity over exactly the draws that are served, and
- * the gate, which wants the shares of the modes to be those of the scan too, where there is one. An angle's numbers are of its coordinate in (−π, π]. A derived quantity that is one number throughout (because what
+ * the gate, which wants the shares of the modes to be those of the scan or of the independent run too, where there is one. An angle's numbers are of its coordinate in (−π, π]. A derived quantity that is one number throughout (because what
  * it depends on is fixed) is reported but not judged: it is a function of parameters that are judged themselves.
  */
 export function lookAt(
@@ -139,7 +133,7 @@ export function lookAt(
   columns: FitColumns,
   look: Look,
   before: StoredReport,
-  scanned: ScannedModes | null = null,
+  scanned: ModeScan | null = null,
 ): StoredReport {
   const kept = Math.max(0, look.draws - look.warmup);
   const chains = draws.chains(kept);
@@ -157,11 +151,11 @@ export function lookAt(
   const table =
     scanned && kept > 0
       ? modeTable(
-          scanned.scan,
-          scanned.masses.map((name) => chains.get(name) ?? []),
+          scanned,
+          scanned.names.map((name) => chains.get(name) ?? []),
         )
       : [];
-  const apart = scanned && kept >= judgedFrom ? judgeModes(scanned.scan, table) : [];
+  const apart = scanned && kept >= judgedFrom ? judgeModes(scanned, table) : [];
   const entry = {
     draws: kept,
     rhat: found.map(({ diagnosis }) => orNull(diagnosis.rhat)),
@@ -188,6 +182,7 @@ export function lookAt(
     logEvidence: before.logEvidence,
     noEvidence: before.noEvidence,
     modes: table.map(presentMode),
+    modesOf: scanned && { by: scanned.by, names: [...scanned.names] },
     widths: null,
   };
 }

@@ -193,16 +193,27 @@ describe('packed draws', () => {
 });
 
 describe('the modes', () => {
+  const mode = { mu: [2.3], lo: [0.5], hi: [11.08], weight: 0.551, mcse: 0.004, scanWeight: 0.548 };
+
   it('stand with their share of the draws beside that by the scan, and no value where there is none', () => {
-    const mode = { mu: [2.3], lo: [0.5], hi: [11.08], weight: 0.551, mcse: 0.004, scanWeight: 0.548 };
+    const modes = [mode, { ...mode, lo: [11.08], hi: [22.2], weight: 0, scanWeight: null }];
     const html = renderToStaticMarkup(
-      <ModesTable
-        fit={{ modes: [mode, { ...mode, lo: [11.08], hi: [22.2], weight: 0, scanWeight: null }] }}
-      />,
+      <ModesTable fit={{ modes, modesOf: { by: 'scan', names: ['mu1'] } }} />,
     );
     expect(html).toMatch(/0\.50 to 11\.08/);
     expect(html).toMatch(/0\.551.*0\.004.*0\.548/);
     expect(html).toMatch(/11\.08 to 22\.20.*0\.000.*–/);
-    expect(renderToStaticMarkup(<ModesTable fit={{ modes: [] }} />)).toBe('');
+    expect(html).toMatch(/with a scan of their own/);
+    expect(renderToStaticMarkup(<ModesTable fit={{ modes: [], modesOf: null }} />)).toBe('');
+  });
+
+  it('of three fields stand beside what an independent run found, each mass by its own symbol', () => {
+    const three = { ...mode, mu: [0.4, 1.2, 3], lo: [0, 0.5, 1], hi: [1, 2, 8] };
+    const names = ['nu1', 'mu2', 'mu3'];
+    const html = renderToStaticMarkup(<ModesTable fit={{ modes: [three], modesOf: { by: 'run', names } }} />);
+    expect(html).toMatch(/ν.*0\.00 to 1\.00.*μ.*0\.50 to 2\.00.*μ.*1\.00 to 8\.00/);
+    expect(html).toMatch(/with an independent run: sixteen chains of their own/);
+    expect(html).toMatch(/by the independent run/);
+    expect(html).not.toMatch(/by the scan/);
   });
 });

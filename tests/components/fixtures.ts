@@ -145,6 +145,7 @@ export function fitFixture(change: Partial<Fit> = {}): Fit {
     diagnostics: [diagnosticFixture('mu1'), diagnosticFixture('a1', { essTail: 300 })],
     history: [{ draws: 1000, rhat: [1.002, 1.002], ess: [800, 300] }],
     modes: [],
+    modesOf: null,
     logEvidence: null,
     noEvidence: 'its error has fewer than 15 degrees of freedom yet: let the fit run on',
     gate: { met: false, target: { rhat: 1.01, ess: 400 }, reasons: [] },

@@ -23,5 +23,6 @@ export { jointSignificance } from './trials';
 export type { JointSignificance, Look } from './trials';
 export { edgesBetweenModes, scanModes } from './modes';
 export type { ModeScan, ScanMode } from './modes';
+export { CHAINS, IndependentRun } from './independent-run';
 export { judgeModes, modeTable } from './mode-table';
 export type { ModeRow } from './mode-table';

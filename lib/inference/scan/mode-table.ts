@@ -1,5 +1,5 @@
 import { mcseMean } from '@/lib/sampler';
-import type { ModeScan } from './modes';
+import { MOST_ERROR, type ModeScan } from './modes';
 
 /** One row of a fit's mode table. */
 export interface ModeRow {
@@ -10,15 +10,21 @@ export interface ModeRow {
   weight: number;
   /** Its Monte Carlo standard error; 0 where every draw or none lies within. */
   mcse: number;
-  /** Share by the scan; NaN where there is no value. */
+  /** Share by the scan or the independent run; NaN where there is no value. */
   scanWeight: number;
   scanError: number;
 }
 
 /** Difference that is left alone beside the errors. */
 const SLACK = 0.01;
-/** Errors that a difference may come to. */
-const ERRORS = 4;
+/**
+ * Errors that a difference may come to. An independent run's have 15 degrees of freedom: Student's t passes 5.5 as rarely as a normal
+ * variable passes 4 (6e-5).
+ */
+const ERRORS = { chains: 4, scan: 4, run: 5.5 };
+const SOURCES = { scan: 'scan', run: 'independent run' };
+/** An independent run that is worth fewer draws can't speak. */
+const LEAST_EFFECTIVE = 30;
 
 /** Shares of the modes in chains: `masses`, one entry a field, holds the draws of each replica. */
 export function modeTable({ modes }: ModeScan, masses: readonly (readonly Float64Array[])[]): ModeRow[] {
@@ -37,34 +43,46 @@ export function modeTable({ modes }: ModeScan, masses: readonly (readonly Float6
       hi,
       weight: draws > 0 ? within / draws : NaN,
       mcse: within === 0 || within === draws || !Number.isFinite(mcse) ? 0 : mcse,
-      scanWeight: weight,
+      scanWeight: error <= MOST_ERROR ? weight : NaN,
       scanError: error,
     };
   });
 }
 
 const shown = (value: number): string => value.toFixed(3);
-const place = ({ lo, hi }: Pick<ModeRow, 'lo' | 'hi'>): string =>
-  lo.map((from, d) => `mu${d + 1} ${from.toFixed(2)} to ${hi[d].toFixed(2)}`).join(', ');
+const place = (names: readonly string[], { lo, hi }: Pick<ModeRow, 'lo' | 'hi'>): string =>
+  names.map((name, d) => `${name} ${lo[d].toFixed(2)} to ${hi[d].toFixed(2)}`).join(', ');
 
 /**
- * What speaks against the gate: modes whose share in the chains isn't the scan's, within four errors of both and 0.01, and a far
- * better fit that no jump reaches. R-hat sees neither. One sentence each, with quantity, value and remedy.
+ * What speaks against the gate: modes whose share in the chains isn't that of the scan or of the independent run, within the errors of
+ * both and 0.01; an independent run that can't speak yet; and a far better fit that no jump reaches. R-hat sees none of them.
+ * One sentence each, with quantity, value and remedy.
  */
-export function judgeModes({ missed }: ModeScan, table: readonly ModeRow[]): string[] {
-  const reasons = table.flatMap((row) => {
-    const { weight, mcse, scanWeight, scanError } = row;
-    if (Number.isNaN(scanWeight)) return [];
-    const allowed = SLACK + ERRORS * Math.hypot(mcse, scanError);
-    if (Math.abs(weight - scanWeight) <= allowed) return [];
-    const never = weight === 0 ? ' no draw, ' : ` ${shown(weight)} of the draws, `;
-    return [
-      `The mode ${place(row)} has${never}and ${shown(scanWeight)} by the scan (they may differ by ${shown(allowed)}): let the fit run longer, or start one with another seed.`,
-    ];
+export function judgeModes(
+  { by, names, modes, missed, effective = Infinity }: ModeScan,
+  table: readonly ModeRow[],
+): string[] {
+  const reasons = table.flatMap((row, k) => {
+    const { weight, mcse, scanError } = row;
+    const other = modes[k].weight;
+    if (Number.isNaN(other)) return [];
+    const allowed = SLACK + Math.hypot(ERRORS.chains * mcse, ERRORS[by] * scanError);
+    if (Math.abs(weight - other) > allowed) {
+      const never = weight === 0 ? ' no draw, ' : ` ${shown(weight)} of the draws, `;
+      return [
+        `The mode ${place(names, row)} has${never}and ${shown(other)} by the ${SOURCES[by]} (they may differ by ${shown(allowed)}): let the fit run longer, or start one with another seed.`,
+      ];
+    }
+    return [];
   });
+  if (effective < LEAST_EFFECTIVE) {
+    reasons.push(
+      `The independent run is worth ${effective.toFixed(0)} draws, fewer than the ${LEAST_EFFECTIVE} from which it shows modes: let the fit run longer, for the run grows with it.`,
+    );
+  }
   if (missed) {
     reasons.push(
-      `The scan finds ${missed.mu.map((mu, d) => `mu${d + 1} = ${mu.toFixed(3)}`).join(', ')} better by ${missed.by.toFixed(0)} in ln than anything that the jumps reach: narrow the mass priors round it and compare.`,
+      `The scan finds ${missed.mu.map((mu, d) => `${names[d]} = ${mu.toFixed(3)}`).join(', ')} better by ${missed.by.toFixed(0)} in ln than anything that the jumps reach: narrow the mass priors round it and compare.`,
     );
   }
   return reasons;

@@ -14,21 +14,27 @@ export interface ScanMode {
   hi: number[];
   /** Mean masses within it. */
   mu: number[];
-  /** Share of the posterior for the fit's own prior; NaN where its error is too large to say. */
+  /** Share of the posterior for the fit's own prior; of a scan NaN where its error is too large to say. */
   weight: number;
   error: number;
 }
 
 export interface ModeScan {
+  /** Where the shares come from: a scan's draws of the jump's proposal, or an independent cold run. */
+  by: 'scan' | 'run';
+  /** Names of the masses, in the order of every mode's. */
+  names: readonly string[];
   modes: ScanMode[];
   /** Masses of a far better fit that the proposal doesn't reach, with the ln by which it is better; null without one. */
   missed: { mu: number[]; by: number } | null;
+  /** Draws that the independent run is worth, by the mass that it knows least of; left out for a scan. */
+  effective?: number;
 }
 
 /** Draws behind the weights. */
 const DRAWS = 12_000;
 /** A weight whose error is larger has no value. */
-const MOST_ERROR = 0.02;
+export const MOST_ERROR = 0.02;
 /** A box whose share is smaller is left out. */
 const LEAST = 0.002;
 /** A minimum divides two modes if the density falls there by this much, in ln, below the lower of them. */
@@ -56,15 +62,19 @@ function reachOf(spec: InferenceSpec): number {
   return rate;
 }
 
-/** Edges between modes of a density in ln on a grid: its ends, and minima that are deep enough. */
-export function edgesBetweenModes(x: ArrayLike<number>, logDensity: ArrayLike<number>): number[] {
+/** Edges between modes of a density in ln on a grid: its ends, and minima that are deeper than `fall`. */
+export function edgesBetweenModes(
+  x: ArrayLike<number>,
+  logDensity: ArrayLike<number>,
+  fall: number = FALL,
+): number[] {
   const edges: number[] = [x[0]];
   let peak = logDensity[0];
   let lowest = 0;
   for (let i = 1; i < x.length; i += 1) {
     if (logDensity[i] < logDensity[lowest]) lowest = i;
     const fallen = Math.min(peak, logDensity[i]) - logDensity[lowest];
-    if (fallen > FALL) {
+    if (fallen > fall) {
       edges.push(x[lowest]);
       peak = logDensity[i];
       lowest = i;
@@ -207,7 +217,12 @@ export function scanModes(
   };
   const [there, here] = [collapsed(best), collapsed(reached)];
   const by = there === null || here === null ? NaN : there - here;
-  return { modes: modes.sort((a, b) => a.lo[0] - b.lo[0]), missed: by > MISSED ? { mu: best, by } : null };
+  return {
+    by: 'scan',
+    names: layout.masses.map((index) => spec.template.parameters[index].name),
+    modes: modes.sort((a, b) => a.lo[0] - b.lo[0]),
+    missed: by > MISSED ? { mu: best, by } : null,
+  };
 }
 
 function intervalOf(edges: readonly number[], x: number): number {
