@@ -1,6 +1,18 @@
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { database } from '@/lib/db';
-import { buildWorker, endWorkers, fitEnded, openDesk, openNotebook, startFit, startWorker } from './sampling';
+import {
+  buildWorker,
+  drawsOf,
+  endWorkers,
+  fitEnded,
+  fitWhen,
+  openDesk,
+  openNotebook,
+  resumeFit,
+  startFit,
+  startWorker,
+  stopFit,
+} from './sampling';
 import { closeConnections } from './harness';
 
 beforeAll(async () => {
@@ -47,7 +59,30 @@ describe('a fit of four fields', () => {
       expect(fit.gate.reasons.length).toBeGreaterThan(0);
       for (const reason of fit.gate.reasons) expect(reason).toMatch(/\d/);
       expect(fit.gate.reasons.join(' ')).toMatch(/R-hat|effective/i);
+      expect(fit.modesOf).toEqual({ by: 'run', names: ['mu1', 'mu2', 'mu3', 'mu4'] });
+      expect(fit.modes.reduce((sum, { weight }) => sum + Number(weight), 0)).toBeGreaterThan(0.8);
     },
     120_000,
   );
+});
+
+describe('the independent run of a fit of three fields', () => {
+  it('says the same where the fit was stopped and resumed', async () => {
+    const desk = await openDesk();
+    const template = { id: 'free-phase', options: { fields: 3, background: [1] } };
+    const notebook = await openNotebook(desk, { template }, 'two-field.csv');
+    const through = await fitEnded(desk, await startFit(desk, notebook, short));
+    expect(through.modesOf).toEqual({ by: 'run', names: ['mu1', 'mu2', 'mu3'] });
+    expect(through.modes.length).toBeGreaterThan(0);
+
+    const id = await startFit(desk, notebook, short);
+    await fitWhen(desk, id, (fit) => drawsOf(fit) > 0);
+    await stopFit(desk, id);
+    await fitEnded(desk, id);
+    await resumeFit(desk, id);
+    const resumed = await fitEnded(desk, id);
+    expect(resumed.progress.draws).toBe(short.maxDraws);
+    expect(resumed.modes).toEqual(through.modes);
+    expect(resumed.gate).toEqual(through.gate);
+  }, 120_000);
 });

@@ -163,6 +163,20 @@ describe('an independent run', () => {
     });
   });
 
+  it('scatters from seed to seed as its errors say, also when it is short', () => {
+    const runs = Array.from({ length: 12 }, (_, k) =>
+      IndependentRun.of(spec, `scatter ${k}`, () => inference)!.modesAt(240),
+    );
+    const exact = quadratureShares(100)[0];
+    const square = runs.reduce(
+      (sum, { modes: [{ weight, error }] }) => sum + ((weight - exact) / error) ** 2,
+      0,
+    );
+    // χ² with 12 degrees of freedom lies outside with a probability of 0.01.
+    expect(square).toBeGreaterThan(3.07);
+    expect(square).toBeLessThan(28.3);
+  });
+
   it('says so where it is worth too few draws, and gives no value where the error is large', () => {
     const [{ mu, weight }, { mu: other }] = found.modes;
     const rng = createRng('a share');
