@@ -4,8 +4,8 @@ import { useMemo, useState } from 'react';
 import { PointsFigure } from '@/components/figures/points-figure';
 import { Num } from '@/components/ui/num';
 import { capital, counted, inWords } from '@/components/words/counts';
-import { keepPoints } from '@/components/notebook/kept-points';
-import { compilePrediction, judge } from '@/components/notebook/prediction';
+import { keepTogether } from '@/components/notebook/kept-points';
+import { compilePrediction, judge, ofPanel } from '@/components/notebook/prediction';
 import { predictiveBand } from '@/lib/inference/prior-predictive';
 import { formatCount, formatNumber } from '@/lib/figures/format';
 import type { Fit, Measurement } from '@/lib/schemas';
@@ -29,17 +29,24 @@ export function BestFit({
   fit,
   draws,
   measurement,
+  further,
   number,
 }: {
   fit: Fit;
   draws: FigureDraws;
   measurement: Measurement;
+  /** Further measurements of the fit, in their order. */
+  further: readonly Measurement[];
   number: number;
 }) {
   const { snapshot } = fit;
   const [laid, setLaid] = useState<(OverlayCurve & { label: string }) | null>(null);
   const drawn = useMemo(() => {
-    const points = keepPoints(measurement, snapshot.cuts);
+    const points = keepTogether(
+      measurement,
+      snapshot.cuts,
+      further.map((each, k) => ({ measurement: each, cuts: snapshot.also?.[k].cuts ?? {} })),
+    );
     const best = bestIndex(draws);
     if (best < 0 || !points.rows.length) return null;
     const prediction = compilePrediction(snapshot.template, points);
@@ -51,17 +58,20 @@ export function BestFit({
     const chosen = someKept(draws, bandDraws);
     const x = vector(best);
     return {
-      points,
-      kappa: prediction.seen.kappa,
-      y: prediction.seen.template.predict(x),
-      band: predictiveBand(chosen.map((index) => prediction.seen.template.predict(vector(index)))),
+      data: prediction.data,
+      panels: prediction.panels.map((panel) => ({
+        ...panel,
+        y: panel.seen.template.predict(x),
+        band: predictiveBand(chosen.map((index) => panel.seen.template.predict(vector(index)))),
+      })),
       count: chosen.length,
       free: prediction.fine.parameters.length - Object.keys(fixed).length,
       ...judge(prediction, x),
     };
-  }, [measurement, snapshot, draws]);
+  }, [measurement, further, snapshot, draws]);
   if (!drawn) return null;
-  const { points, kappa, y, band, count, free, chiSquare } = drawn;
+  const { data, panels, count, free, chiSquare } = drawn;
+  const several = panels.length > 1;
   return (
     <OverlayDrop
       what="a curve (κ, S)"
@@ -69,35 +79,47 @@ export function BestFit({
       onTable={(table, label) => setLaid({ label, ...curveOf(table) })}
       onClear={() => setLaid(null)}
     >
-      <PointsFigure
-        number={number}
-        label="Best draw and range of predictions over the points"
-        fileName={`fit-${fit.number}-best`}
-        points={{
-          kappa: points.kappa,
-          value: points.S,
-          error: points.sigma,
-          lo: points.lo ?? undefined,
-          hi: points.hi ?? undefined,
-        }}
-        curves={[
-          { role: 'best', label: 'best draw', kappa, y },
-          ...(laid ? [{ role: 'over' as const, ...laid }] : []),
-        ]}
-        band={{ kappa, ...band, label: '68 and 95 % of the draws' }}
-        residuals={drawn.residuals}
-        caption={
-          <>
-            The draw of highest likelihood over the {counted(points.rows.length, 'bin')}, with the range of
-            predictions of {formatCount(count)} draws; below, its residuals.{' '}
-            <Num>
-              <i className="sym">χ</i>² = {formatNumber(chiSquare, 1)}
-            </Num>
-            {points.factor ? '' : ' from the errors alone'} for {counted(points.rows.length, 'bin')} and{' '}
-            {free === 0 ? 'no free parameter' : counted(free, 'free parameter')}.
-          </>
-        }
-      />
+      {panels.map((panel, k) => (
+        <PointsFigure
+          key={panel.label}
+          number={k === 0 ? number : undefined}
+          label={`Best draw and range of predictions over the points${several ? ` of ${panel.label}` : ''}`}
+          fileName={`fit-${fit.number}-best${k === 0 ? '' : `-${k + 1}`}`}
+          points={{
+            kappa: panel.points.kappa,
+            value: panel.points.S,
+            error: panel.points.sigma,
+            lo: panel.points.lo ?? undefined,
+            hi: panel.points.hi ?? undefined,
+          }}
+          curves={[
+            { role: 'best', label: 'best draw', kappa: panel.seen.kappa, y: panel.y },
+            ...(laid ? [{ role: 'over' as const, ...laid }] : []),
+          ]}
+          band={{ kappa: panel.seen.kappa, ...panel.band, label: '68 and 95 % of the draws' }}
+          residuals={ofPanel(drawn.residuals, panel)}
+          caption={
+            k > 0 ? (
+              <>
+                The same draws over the {counted(panel.points.rows.length, 'bin')} of {panel.label}, and the
+                residuals of the best.
+              </>
+            ) : (
+              <>
+                The draw of highest likelihood over the {counted(panel.points.rows.length, 'bin')}
+                {several ? ` of ${panel.label}` : ''}, with the range of predictions of {formatCount(count)}{' '}
+                draws; below, its residuals.{' '}
+                <Num>
+                  <i className="sym">χ</i>² = {formatNumber(chiSquare, 1)}
+                </Num>
+                {data.factor ? '' : ' from the errors alone'} for {counted(data.rows.length, 'bin')}
+                {several ? ' of all measurements, each with its own covariance,' : ''} and{' '}
+                {free === 0 ? 'no free parameter' : counted(free, 'free parameter')}.
+              </>
+            )
+          }
+        />
+      ))}
     </OverlayDrop>
   );
 }

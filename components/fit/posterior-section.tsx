@@ -23,6 +23,8 @@ import { figureNumber, sectionNumber } from '@/components/notebook/sections';
 export interface PosteriorSectionProps {
   notebook: Notebook;
   measurement: Measurement;
+  /** Further measurements of the fit; null where the notebook has others by now. */
+  further: readonly Measurement[] | null;
   fit: Fit | null;
   draws: FigureDraws | null;
   quantities: ReadonlyMap<string, Quantity>;
@@ -63,7 +65,7 @@ function Cautions({ fit }: { fit: Fit }) {
 
 /** What the draws say. */
 export function PosteriorSection(props: PosteriorSectionProps) {
-  const { notebook, measurement, fit, draws, quantities, fold } = props;
+  const { notebook, measurement, further, fit, draws, quantities, fold } = props;
   const state = posteriorState(fit, notebook);
   const some = fit !== null && fit.progress.draws > 0;
   const sameVersion = fit?.snapshot.measurementVersion === measurement.version;
@@ -117,8 +119,19 @@ export function PosteriorSection(props: PosteriorSectionProps) {
             <MarginalTable fit={fit} quantities={quantities} number={2} truth={truth} />
           ) : null}
           <ModesTable fit={fit} />
-          {draws && sameVersion ? (
-            <BestFit fit={fit} draws={draws} measurement={measurement} number={figureNumber('best-fit')} />
+          {draws && sameVersion && further === null ? (
+            <p className="text-ink-2">
+              The fit rests on other measurements than the notebook now, so its predictions aren’t drawn here.
+            </p>
+          ) : null}
+          {draws && sameVersion && further ? (
+            <BestFit
+              fit={fit}
+              draws={draws}
+              measurement={measurement}
+              further={further}
+              number={figureNumber('best-fit')}
+            />
           ) : null}
           <SampleDownloads fit={fit} />
           <Cautions fit={fit} />

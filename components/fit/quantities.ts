@@ -1,4 +1,5 @@
 import type { Diagnostic, Fit } from '@/lib/schemas';
+import { assembledParameters } from '@/lib/inference/assembled-template';
 import { findTemplate } from '@/lib/templates';
 
 /** A sampled parameter or derived quantity as figures and tables name it. */
@@ -16,20 +17,23 @@ export interface Quantity {
 /** m/H is written as m₁/H: its unit stands with the symbol. */
 export function quantitiesOf(
   template: Pick<Fit['snapshot']['template'], 'id' | 'options'>,
+  /** What the measurements are called, where there are several. */
+  labels: readonly string[] = ['measurement'],
 ): Map<string, Quantity> {
   const declaration = findTemplate(template.id);
-  const sampled = declaration
-    .parameters(template.options)
-    .map(({ name, symbol, label, unit, field, role }): Quantity => ({
-      name,
-      symbol,
-      label,
-      unit,
-      field:
-        role === 'mass' || role === 'phase' || role === 'amplitude' || role === 'quadrature' ? field : null,
-      role,
-      derived: false,
-    }));
+  const sampled = assembledParameters(
+    declaration.parameters(template.options),
+    labels.map((label) => ({ label })),
+  ).map(({ name, symbol, label, unit, field, role }): Quantity => ({
+    name,
+    symbol,
+    label,
+    unit,
+    field:
+      role === 'mass' || role === 'phase' || role === 'amplitude' || role === 'quadrature' ? field : null,
+    role,
+    derived: false,
+  }));
   const derived = declaration
     .derived(template.options)
     .map(({ name, symbol, label, unit, field }): Quantity => ({

@@ -20,7 +20,7 @@ export function MeasurementFigure({
   leftOut?: readonly { bin: number; reason: string }[];
   /** Called with the number of a bin whose point was clicked. */
   onPick?: (bin: number) => void;
-  number: number;
+  number?: number;
   caption: ReactNode;
 }) {
   const { points, name, blind } = measurement;

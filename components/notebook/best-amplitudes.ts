@@ -20,7 +20,7 @@ function preference(prior: Prior): { precision: number; mean: number } {
 }
 
 /** Divides by the covariance's factor, or by the errors where there is none. */
-function whiten({ factor, sigma }: Prediction['points'], vector: Float64Array): Float64Array {
+function whiten({ factor, sigma }: Prediction['data'], vector: Float64Array): Float64Array {
   const out = Float64Array.from(vector);
   if (factor) forwardSolve(factor, out.length, out);
   else out.forEach((value, i) => (out[i] = value / sigma[i]));
@@ -33,7 +33,7 @@ function whiten({ factor, sigma }: Prediction['points'], vector: Float64Array): 
  * itself where nothing linear is free.
  */
 export function withBestAmplitudes(
-  { onData, points }: Prediction,
+  { onData, data }: Prediction,
   parameters: readonly ParameterDeclaration[],
   priors: Readonly<Record<string, Prior>>,
   x: ArrayLike<number>,
@@ -44,7 +44,7 @@ export function withBestAmplitudes(
     linear.has(role) && priorOf(i).kind !== 'fixed' ? [i] : [],
   );
   const n = free.length;
-  if (n === 0 || !points.S.every(Number.isFinite)) return result;
+  if (n === 0 || !data.S.every(Number.isFinite)) return result;
 
   for (const i of free) result[i] = 0;
   const base = onData.predict(result);
@@ -52,11 +52,11 @@ export function withBestAmplitudes(
     result[i] = 1;
     const column = onData.predict(result).map((value, k) => value - base[k]);
     result[i] = 0;
-    return whiten(points, column);
+    return whiten(data, column);
   });
   const target = whiten(
-    points,
-    points.S.map((value, k) => value - base[k]),
+    data,
+    data.S.map((value, k) => value - base[k]),
   );
   const dot = (a: Float64Array, b: Float64Array) => a.reduce((sum, value, k) => sum + value * b[k], 0);
   const matrix = new Float64Array(n * n);

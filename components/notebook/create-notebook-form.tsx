@@ -6,9 +6,11 @@ import { asRequestError, detailAt, send, type RequestError } from '@/components/
 import { RequestMessage } from '@/components/api/request-message';
 import { Button, Buttons } from '@/components/ui/button';
 import { Field, SelectField } from '@/components/ui/field';
+import { WordButton } from '@/components/ui/word-button';
 import { capital, counted, inWords } from '@/components/words/counts';
 import type { CreateNotebook, MeasurementSummary, NotebookCreated } from '@/lib/schemas';
 import { templateCatalogue } from '@/lib/templates';
+import { mostMeasurements } from './further-words';
 import { templateTitle } from './template-words';
 import { sectionNumber } from './sections';
 
@@ -36,6 +38,7 @@ export function CreateNotebookForm({ groupId, measurements, measurementId }: Cre
   const [measurement, setMeasurement] = useState(
     measurements.find(({ id }) => id === measurementId)?.id ?? measurements[0]?.id ?? '',
   );
+  const [also, setAlso] = useState<string[]>([]);
   const [template, setTemplate] = useState('locked-squeezed');
   const [fields, setFields] = useState(2);
   const [ownTitle, setOwnTitle] = useState<string | null>(null);
@@ -45,6 +48,8 @@ export function CreateNotebookForm({ groupId, measurements, measurementId }: Cre
   const choices = fieldChoices(template);
   const count = choices.includes(fields) ? fields : (choices[choices.length - 1] ?? 0);
   const measured = measurements.find(({ id }) => id === measurement);
+  const further = also.filter((id) => id !== measurement);
+  const left = measurements.filter(({ id }) => id !== measurement && !further.includes(id));
   const title = ownTitle ?? `${templateTitle(template, count)} in ${measured?.name ?? 'a measurement'}`;
 
   async function create() {
@@ -53,6 +58,7 @@ export function CreateNotebookForm({ groupId, measurements, measurementId }: Cre
     const body: CreateNotebook = {
       title: title.trim(),
       measurement,
+      ...(further.length ? { alsoMeasurements: further.map((id) => ({ measurement: id })) } : {}),
       template: { id: template, options: count ? { fields: count } : {} },
     };
     try {
@@ -89,6 +95,37 @@ export function CreateNotebookForm({ groupId, measurements, measurementId }: Cre
             : undefined
         }
       />
+      {further.length ? (
+        <ul className="m-0 grid list-none gap-1 p-0">
+          {further.map((id, k) => (
+            <li key={id} className="flex flex-wrap items-baseline gap-x-3 text-small">
+              <span>together with {measurements.find((each) => each.id === id)?.name}</span>
+              <WordButton onClick={() => setAlso(further.filter((each) => each !== id))}>
+                take it out
+              </WordButton>
+              {detailAt(error, `alsoMeasurements.${k}.measurement`)}
+            </li>
+          ))}
+        </ul>
+      ) : null}
+      {left.length && further.length + 1 < mostMeasurements ? (
+        <SelectField
+          label="Fit another measurement with it"
+          name="further"
+          value=""
+          options={[
+            { value: '', label: 'none' },
+            ...left.map(({ id, name, version, rows }) => ({
+              value: id,
+              label: `${name}, version ${version} (${rows} bins)`,
+            })),
+          ]}
+          onChange={(event) => {
+            if (event.target.value) setAlso([...further, event.target.value]);
+          }}
+          help="For fields that are to explain several measurements at once; each keeps a background of its own."
+        />
+      ) : null}
       <SelectField
         label="Template"
         name="template"

@@ -6,6 +6,7 @@ import { formatCount } from '@/lib/figures/format';
 import type { Fit, Measurement, Notebook } from '@/lib/schemas';
 import { findTemplate, TemplateError, type ParameterDeclaration, type Prior } from '@/lib/templates';
 import { fitInWords, TemplateInWords } from './abstract';
+import { togetherInWords } from './further-words';
 import { keptRows } from './kept-points';
 import { likelihoods } from './likelihood-words';
 import type { TemplateSettings } from './prediction';
@@ -15,12 +16,20 @@ import { sectionNumber } from './sections';
 /** "36 of 40 bins, covariance from 600 mocks, likelihood t with matched prior." */
 export function measurementSentence(
   measurement: Measurement,
-  { cuts, likelihood }: Pick<Notebook, 'cuts' | 'likelihood'>,
+  {
+    cuts,
+    likelihood,
+    alsoMeasurements,
+    sharedMocks,
+  }: Pick<Notebook, 'cuts' | 'likelihood'> & {
+    alsoMeasurements: readonly unknown[];
+    sharedMocks: boolean;
+  },
 ): string {
   const kept = keptRows(measurement.points, cuts).length;
   const all = measurement.rows;
   const bins = kept === all ? `All ${counted(all, 'bin')}` : `${formatCount(kept)} of ${counted(all, 'bin')}`;
-  return `${bins}, ${covarianceInWords(measurement)}, likelihood ${likelihoods[likelihood.kind].label}.`;
+  return `${bins}, ${covarianceInWords(measurement)}${togetherInWords(alsoMeasurements.length, sharedMocks)}, likelihood ${likelihoods[likelihood.kind].label}.`;
 }
 
 export function templateSentence(template: TemplateSettings): ReactNode {

@@ -16,6 +16,15 @@ export interface KeptPoints {
   factor: Float64Array | null;
   /** How theory becomes these values, where files of the measurement say so. */
   theory: KeptTheory | null;
+  /** Those of further measurements that are predicted together with these; absent where there are none. */
+  together?: Together;
+}
+
+/** Measurements that are predicted together. */
+export interface Together {
+  /** What they are called, the first one's name first. */
+  labels: string[];
+  further: KeptPoints[];
 }
 
 /** Window and columns of the kept bins. */
@@ -89,6 +98,31 @@ export function keepPoints(measurement: Measurement, cuts: Notebook['cuts']): Ke
   };
 }
 
+/** The kept bins of a notebook's measurement with those of the further ones, whose names are told apart where they are alike. */
+export function keepTogether(
+  measurement: Measurement,
+  cuts: Notebook['cuts'],
+  further: readonly { measurement: Measurement; cuts: Notebook['cuts'] }[],
+): KeptPoints {
+  const points = keepPoints(measurement, cuts);
+  if (further.length === 0) return points;
+  return {
+    ...points,
+    together: {
+      labels: measurementLabels([measurement, ...further.map((each) => each.measurement)]),
+      further: further.map((each) => keepPoints(each.measurement, each.cuts)),
+    },
+  };
+}
+
+/** Names of measurements, with their numbers where two have the same one. */
+export function measurementLabels(measurements: readonly { name: string }[]): string[] {
+  const names = measurements.map(({ name }) => name);
+  return names.map((name, k) =>
+    names.indexOf(name) === names.lastIndexOf(name) ? name : `${name} (${k + 1})`,
+  );
+}
+
 function keepTheory({ window, columns }: MeasurementTheory, rows: readonly number[]): KeptTheory {
   const floats = (values: readonly number[] | null) => values && Float64Array.from(values);
   const matrix = window?.matrix ?? null;
@@ -117,6 +151,35 @@ export function dataAxis(
   const { lo, hi, kappa } = points;
   if (!lo || !hi || options.binAverage === false) return { kind: 'points', kappa };
   return { kind: 'bins', lo, hi, weightPower: Number(options.binWeight ?? 0) };
+}
+
+/** The points of all measurements one after the other; the covariance between two of them isn't known to the browser. */
+export function joinPoints(points: KeptPoints): KeptPoints {
+  if (!points.together) return points;
+  const all = [points, ...points.together.further];
+  const joined = (take: (each: KeptPoints) => Float64Array) =>
+    Float64Array.from(all.flatMap((each) => Array.from(take(each))));
+  const S = joined((each) => each.S);
+  const p = S.length;
+  const factor = all.every((each) => each.factor) ? new Float64Array(p * p) : null;
+  let from = 0;
+  for (const each of all) {
+    const n = each.S.length;
+    for (let i = 0; i < n && factor && each.factor; i += 1) {
+      factor.set(each.factor.subarray(i * n, i * n + i + 1), (from + i) * p + from);
+    }
+    from += n;
+  }
+  return {
+    rows: all.flatMap(({ rows }) => rows),
+    kappa: joined((each) => each.kappa),
+    lo: null,
+    hi: null,
+    S,
+    sigma: joined((each) => each.sigma),
+    factor,
+    theory: null,
+  };
 }
 
 /** χ² of a prediction with the covariance; with the errors alone where there is no covariance here. */

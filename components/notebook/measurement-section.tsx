@@ -18,6 +18,7 @@ import { leftOutInWords } from '@/components/words/left-out';
 import type { Measurement, Notebook } from '@/lib/schemas';
 import { ConflictMessage, twoStand } from './conflict-message';
 import { measurementSentence } from './fold-sentences';
+import { cutInWords, furtherOf, type FurtherChoice } from './further-words';
 import { keptRows, leftOut } from './kept-points';
 import { LeftOutBins } from './left-out-bins';
 import { likelihoodKinds, likelihoods, type LikelihoodKind } from './likelihood-words';
@@ -32,17 +33,32 @@ import { figureNumber, sectionNumber } from './sections';
 /** Loaded where the measurement has a newer version than the notebook. */
 const NewerVersion = dynamic(() => import('./newer-version').then((module) => module.NewerVersion));
 
+/** The likelihood that is right where nobody chose one. */
+function usualLikelihood({ mockCount }: Measurement, further: number, shared: boolean): LikelihoodKind {
+  if (mockCount === null && !shared) return 'normal';
+  return further === 0 || shared ? 'matched-t' : 'sellentin-heavens';
+}
+
+/** Asks for the group's other measurements. */
+const FurtherMeasurements = dynamic(() =>
+  import('./further-measurements').then((module) => module.FurtherMeasurements),
+);
+
 /** Simulates; loaded where the covariance comes from mocks. */
 const CoverageTable = dynamic(() => import('./coverage-table').then((module) => module.CoverageTable));
 
 export interface MeasurementSettings {
   cuts: Notebook['cuts'];
   likelihood: Notebook['likelihood'];
+  alsoMeasurements: FurtherChoice[];
+  sharedMocks: boolean;
 }
 
 export interface MeasurementSectionProps {
   state: NotebookState;
   measurement: Measurement;
+  /** Further measurements of the draft, as far as they are there. */
+  further: readonly Measurement[];
   draft: Draft<MeasurementSettings>;
   fold: SectionFold;
 }
@@ -61,10 +77,12 @@ function cutsOf(
 
 function Choice({
   measurement,
+  further,
   draft,
   error,
 }: {
   measurement: Measurement;
+  further: readonly Measurement[];
   draft: Draft<MeasurementSettings>;
   error: ReturnType<typeof useSectionSave>['error'];
 }) {
@@ -104,7 +122,9 @@ function Choice({
         options={likelihoodKinds.map((kind) => ({
           value: kind,
           label: likelihoods[kind].label,
-          disabled: likelihoods[kind].needsMocks && measurement.mockCount === null,
+          disabled:
+            likelihoods[kind].needsMocks &&
+            [measurement, ...further].every(({ mockCount }) => mockCount === null),
         }))}
         onChange={(event) =>
           draft.change({ ...draft.value, likelihood: { kind: event.target.value as LikelihoodKind } })
@@ -116,18 +136,21 @@ function Choice({
   );
 }
 
-function settingsInWords({ cuts, likelihood }: MeasurementSettings) {
+function settingsInWords({ cuts, likelihood, alsoMeasurements, sharedMocks }: MeasurementSettings) {
   const end = (value: number | undefined) => (value === undefined ? 'no cut' : plain(value));
   return {
     kappaMin: end(cuts.kappaMin),
     kappaMax: end(cuts.kappaMax),
     excluded: leftOutInWords(cuts.excluded ?? []) || 'no bin left out',
+    further: alsoMeasurements.length
+      ? `${counted(alsoMeasurements.length, 'other')}: ${alsoMeasurements.map((each) => cutInWords(each.cuts)).join('; ')}${sharedMocks ? '; the same mock skies' : ''}`
+      : 'none',
     likelihood: likelihoods[likelihood.kind].label,
   };
 }
 
 /** Which data, cut how, with which likelihood. */
-export function MeasurementSection({ state, measurement, draft, fold }: MeasurementSectionProps) {
+export function MeasurementSection({ state, measurement, further, draft, fold }: MeasurementSectionProps) {
   const { notebook } = state;
   const section = useSectionSave(state);
   const { cuts } = draft.value;
@@ -135,6 +158,7 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
   const hollow = leftOut(measurement.points, cuts);
   const [picked, setPicked] = useState<number | null>(null);
   const all = measurement.rows;
+  const { alsoMeasurements: chosen, sharedMocks } = draft.value;
   const sampled = Object.values(notebook.priors).filter(({ kind }) => kind !== 'fixed').length;
   const editable = notebook.may.includes('notebook.edit');
   // Once a newer version was spoken of, what came of taking it up is said in the same place.
@@ -146,6 +170,26 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
   }
 
   const conflict = conflictOf(draft, notebook, section);
+  const together = (
+    <FurtherMeasurements
+      notebook={notebook}
+      chosen={chosen}
+      measurements={further}
+      sharedMocks={sharedMocks}
+      editable={editable}
+      error={section.error}
+      onChosen={(next, shared) => {
+        const alike = next.length === chosen.length && shared === sharedMocks;
+        draft.change({
+          ...draft.value,
+          alsoMeasurements: next,
+          sharedMocks: shared,
+          // Another number of measurements has another likelihood that is right where nobody chose one.
+          ...(alike ? {} : { likelihood: { kind: usualLikelihood(measurement, next.length, shared) } }),
+        });
+      }}
+    />
+  );
   return (
     <Section
       id="measurement"
@@ -189,7 +233,7 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
       />
       {editable ? (
         <>
-          <Choice measurement={measurement} draft={draft} error={section.error} />
+          <Choice measurement={measurement} further={further} draft={draft} error={section.error} />
           <LeftOutBins
             points={measurement.points}
             cuts={cuts}
@@ -202,6 +246,7 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
             onPicked={setPicked}
             error={section.error?.details.find(({ path }) => path?.startsWith('cuts.excluded'))?.message}
           />
+          {together}
           <SaveRow
             draft={draft}
             revision={notebook.revision}
@@ -211,15 +256,18 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
           />
         </>
       ) : (
-        <DefinitionList
-          entries={[
-            { term: 'Cut', text: <KappaRange lo={cuts.kappaMin} hi={cuts.kappaMax} /> },
-            ...(cuts.excluded ? [{ term: 'Left out', text: capital(leftOutInWords(cuts.excluded)) }] : []),
-            { term: 'Likelihood', text: likelihoods[draft.value.likelihood.kind].meaning },
-          ]}
-        />
+        <>
+          <DefinitionList
+            entries={[
+              { term: 'Cut', text: <KappaRange lo={cuts.kappaMin} hi={cuts.kappaMax} /> },
+              ...(cuts.excluded ? [{ term: 'Left out', text: capital(leftOutInWords(cuts.excluded)) }] : []),
+              { term: 'Likelihood', text: likelihoods[draft.value.likelihood.kind].meaning },
+            ]}
+          />
+          {together}
+        </>
       )}
-      {measurement.mockCount !== null && sampled > 0 && rows.length > sampled ? (
+      {chosen.length === 0 && measurement.mockCount !== null && sampled > 0 && rows.length > sampled ? (
         <CoverageTable
           bins={rows.length}
           mocks={measurement.mockCount}
@@ -231,15 +279,19 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
         <ConflictMessage
           conflict={conflict}
           section={section}
-          sides={(['kappaMin', 'kappaMax', 'excluded', 'likelihood'] as const).map((key) => ({
+          sides={(['kappaMin', 'kappaMax', 'excluded', 'further', 'likelihood'] as const).map((key) => ({
             key,
             what: {
               kappaMin: 'Lowest κ',
               kappaMax: 'Highest κ',
               excluded: 'Bins left out',
+              further: 'Further measurements',
               likelihood: 'Likelihood',
             }[key],
-            theirs: settingsInWords(conflict.theirs)[key],
+            theirs: settingsInWords({
+              ...conflict.theirs,
+              alsoMeasurements: furtherOf(conflict.theirs),
+            })[key],
             mine: settingsInWords(draft.value)[key],
           }))}
           onMine={(base) => void save(base)}
@@ -253,7 +305,7 @@ export function MeasurementSection({ state, measurement, draft, fold }: Measurem
       <RequestMessage
         error={section.error}
         title={`Section ${sectionNumber('measurement')} was not saved`}
-        shown={['cuts', 'likelihood']}
+        shown={['cuts', 'likelihood', 'alsoMeasurements', 'sharedMocks']}
       />
     </Section>
   );

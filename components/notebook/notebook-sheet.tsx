@@ -29,9 +29,11 @@ import { statementState } from '@/components/statement/statement-state';
 import { useStatement } from '@/components/statement/use-statement';
 import type { CheckListed, Fit, Notebook, Statement, Trials } from '@/lib/schemas';
 import { Abstract } from './abstract';
-import { keepPoints } from './kept-points';
+import { furtherOf } from './further-words';
+import { furtherOfFit, labelsOfFit } from './fit-measurements';
+import { keepTogether, measurementLabels } from './kept-points';
 import type { DrawnFormula } from './live-formula';
-import { MeasurementSection } from './measurement-section';
+import { MeasurementSection, type MeasurementSettings } from './measurement-section';
 import { NotebookHead } from './notebook-head';
 import { unpackMeasurement, type PackedMeasurement } from './packed-measurement';
 import { PriorsSection, type Priors } from './priors-section';
@@ -41,6 +43,7 @@ import { sectionNumber, type SectionId } from './sections';
 import { TemplateSection, tryPrediction, type NamedPoint } from './template-section';
 import { FoldScript } from './fold-script';
 import { foldKey, useFolds, type SectionFold } from './use-folds';
+import { useFurther } from './use-further';
 import { useNotebook } from './use-notebook';
 
 /** Stands where the measurement has had more than one version, and is loaded there. */
@@ -49,6 +52,8 @@ const Shifts = dynamic(() => import('./shifts').then((module) => module.Shifts))
 export interface NotebookSheetProps {
   notebook: Notebook;
   measurement: PackedMeasurement;
+  /** Further measurements of the notebook as it stands. */
+  further: readonly PackedMeasurement[];
   /** The fit that is shown first; null without any. */
   fit: Fit | null;
   statement: Statement;
@@ -93,7 +98,22 @@ export function NotebookSheet(props: NotebookSheetProps) {
     if (running !== null && listedAs !== undefined && isRunning(listedAs) !== running) refresh();
   }, [running, listedAs]);
 
-  const cut = useDraft({ cuts: notebook.cuts, likelihood: notebook.likelihood }, notebook.revision);
+  const cut = useDraft<MeasurementSettings>(
+    {
+      cuts: notebook.cuts,
+      likelihood: notebook.likelihood,
+      alsoMeasurements: furtherOf(notebook),
+      sharedMocks: notebook.sharedMocks,
+    },
+    notebook.revision,
+  );
+  const [givenFurther] = useState(() => props.further.map(unpackMeasurement));
+  const others = cut.value.alsoMeasurements;
+  const further = useFurther(
+    givenFurther,
+    others.map(({ measurement: id, version }) => ({ id, version })),
+  );
+  const standing = useFurther(givenFurther, notebook.also);
   const template = useDraft(
     { id: notebook.template.id, options: notebook.template.options },
     notebook.revision,
@@ -104,18 +124,35 @@ export function NotebookSheet(props: NotebookSheetProps) {
   const statement = useStatement(notebook, props.statement, null) ?? props.statement;
 
   const keptKey = JSON.stringify(cut.value.cuts);
-  const points = useMemo(
-    () => keepPoints(measurement, JSON.parse(keptKey) as Notebook['cuts']),
-    [measurement, keptKey],
+  // Predictions have the parameters of the measurements that stand, with the cuts that are being tried.
+  const furtherKey = JSON.stringify(
+    notebook.also.map(({ id, cuts }) => others.find((each) => each.measurement === id)?.cuts ?? cuts),
   );
+  const points = useMemo(() => {
+    const cuts = JSON.parse(furtherKey) as Notebook['cuts'][];
+    return keepTogether(
+      measurement,
+      JSON.parse(keptKey) as Notebook['cuts'],
+      (standing ?? []).map((each, k) => ({ measurement: each, cuts: cuts[k] })),
+    );
+  }, [measurement, keptKey, furtherKey, standing]);
   const comparison = useComparison(notebook);
   const stored = useMemo(() => {
     const tried = tryPrediction(notebook.template, points);
     return 'prediction' in tried ? tried.prediction : null;
   }, [notebook.template, points]);
   const quantities = useMemo(
-    () => quantitiesOf(fit ? fit.snapshot.template : notebook.template),
-    [fit, notebook.template],
+    () =>
+      quantitiesOf(
+        fit ? fit.snapshot.template : notebook.template,
+        fit ? labelsOfFit(fit, notebook) : measurementLabels([notebook.measurement, ...notebook.also]),
+      ),
+    [fit, notebook],
+  );
+  const frozen = fit?.snapshot ?? null;
+  const furtherOfShown = useMemo(
+    () => (frozen ? furtherOfFit(frozen, standing ?? []) : []),
+    [frozen, standing],
   );
   const scans = useScans(notebook.id, props.trials);
   const checks = useChecks(notebook.id, props.checks);
@@ -179,7 +216,13 @@ export function NotebookSheet(props: NotebookSheetProps) {
         stream={stream}
         abstract={<Abstract notebook={notebook} measurement={measurement} fit={fit} />}
       />
-      <MeasurementSection state={state} measurement={measurement} draft={cut} fold={fold('measurement')} />
+      <MeasurementSection
+        state={state}
+        measurement={measurement}
+        further={further ?? []}
+        draft={cut}
+        fold={fold('measurement')}
+      />
       <TemplateSection
         state={state}
         measurement={measurement}
@@ -193,7 +236,6 @@ export function NotebookSheet(props: NotebookSheetProps) {
       <PriorsSection
         state={state}
         measurement={measurement}
-        points={points}
         prediction={stored}
         draft={priors}
         fold={fold('priors')}
@@ -214,6 +256,7 @@ export function NotebookSheet(props: NotebookSheetProps) {
       <PosteriorSection
         notebook={notebook}
         measurement={fitted}
+        further={furtherOfShown}
         fit={fit}
         draws={draws}
         quantities={quantities}

@@ -1,7 +1,7 @@
 import type { Curve } from '@/components/figures/points-figure';
 import { assembleTemplate, theoryOfPart, type PartModel } from '@/lib/inference/assembled-template';
 import type { CompiledTemplate } from '@/lib/templates';
-import { chiSquare, dataAxis, residuals, type KeptPoints } from './kept-points';
+import { chiSquare, dataAxis, joinPoints, residuals, type KeptPoints } from './kept-points';
 
 /** A template's id with its options. */
 export interface TemplateSettings {
@@ -9,14 +9,25 @@ export interface TemplateSettings {
   options: Record<string, unknown>;
 }
 
-/** A template compiled twice: as the likelihood has it on the bins, and at closely spaced κ for drawing. */
-export interface Prediction {
-  onData: CompiledTemplate;
+/** What is drawn of one measurement: its points and the template at closely spaced κ, with the parameters of all. */
+export interface Panel {
+  label: string;
+  points: KeptPoints;
+  /** First of its values among those of all. */
+  from: number;
   fine: CompiledTemplate;
   kappa: Float64Array;
   /** What is drawn through the points: the fine curve, or with a window or columns what they make of it, at the points themselves. */
   seen: { template: CompiledTemplate; kappa: Float64Array };
-  points: KeptPoints;
+}
+
+/** A template compiled as the likelihood has it on the values of all measurements, and for drawing on each. */
+export interface Prediction extends Panel {
+  onData: CompiledTemplate;
+  /** The values of all measurements, one after the other. */
+  data: KeptPoints;
+  /** One a measurement; what is beside it here is that of the first. */
+  panels: Panel[];
 }
 
 /** Points of a drawn curve. */
@@ -44,26 +55,45 @@ export function compilePrediction(settings: TemplateSettings, points: KeptPoints
 }
 
 function compile({ id, options }: TemplateSettings, points: KeptPoints): Prediction {
-  const kappa = fineKappa(points);
-  const { window, columns } = points.theory ?? { window: null, columns: [] };
-  const part: PartModel = {
-    label: 'measurement',
-    length: points.rows.length,
-    axis: dataAxis(window ?? points, options),
-    ...(window ? { window: window.matrix } : {}),
-    columns,
-  };
+  const measured = [points, ...(points.together?.further ?? [])];
+  const labels = points.together?.labels ?? ['measurement'];
+  const parts = measured.map((each, k): PartModel => {
+    const { window, columns } = each.theory ?? { window: null, columns: [] };
+    return {
+      label: labels[k],
+      length: each.rows.length,
+      axis: dataAxis(window ?? each, options),
+      ...(window ? { window: window.matrix } : {}),
+      columns,
+    };
+  });
   const atPoints = { id, options: { ...options, binAverage: false } };
-  const onData = assembleTemplate([part], { id, options });
-  const fine = theoryOfPart([part], atPoints, 0, { kind: 'points', kappa });
-  return {
-    onData,
-    fine,
-    kappa,
-    seen:
-      window || columns.length > 0 ? { template: onData, kappa: points.kappa } : { template: fine, kappa },
-    points,
-  };
+  const onData = assembleTemplate(parts, { id, options });
+  let before = 0;
+  const panels = measured.map((each, k): Panel => {
+    const from = before;
+    before += parts[k].length;
+    const kappa = fineKappa(each);
+    const fine = theoryOfPart(parts, atPoints, k, { kind: 'points', kappa });
+    const { window, columns } = each.theory ?? { window: null, columns: [] };
+    const own: CompiledTemplate =
+      measured.length === 1
+        ? onData
+        : {
+            ...onData,
+            length: parts[k].length,
+            predict: (x) => onData.predict(x).slice(from, from + parts[k].length),
+          };
+    return {
+      label: labels[k],
+      points: each,
+      from,
+      fine,
+      kappa,
+      seen: window || columns.length > 0 ? { template: own, kappa: each.kappa } : { template: fine, kappa },
+    };
+  });
+  return { ...panels[0], onData, data: joinPoints(points), panels };
 }
 
 /** Amplitudes of each field's cosine and sine at x: S_i = κ^½ [c cos(μ ln κ) + s sin(μ ln κ)]. */
@@ -107,7 +137,7 @@ export function beatEnvelope(
 }
 
 /** The curves of a parameter vector: sum and background together, each field alone, the envelope of two. */
-export function curvesOf({ fine, kappa, seen }: Prediction, x: ArrayLike<number>): Curve[] {
+export function curvesOf({ fine, kappa, seen }: Panel, x: ArrayLike<number>): Curve[] {
   const fields = fine.blocks.length;
   const curves: Curve[] = [
     {
@@ -134,7 +164,11 @@ export function curvesOf({ fine, kappa, seen }: Prediction, x: ArrayLike<number>
 }
 
 /** What the data say to a parameter vector. */
-export function judge({ onData, points }: Prediction, x: ArrayLike<number>) {
+export function judge({ onData, data }: Prediction, x: ArrayLike<number>) {
   const predicted = onData.predict(x);
-  return { chiSquare: chiSquare(points, predicted), residuals: residuals(points, predicted) };
+  return { chiSquare: chiSquare(data, predicted), residuals: residuals(data, predicted) };
 }
+
+/** Of numbers for all measurements those of one. */
+export const ofPanel = (all: Float64Array, { from, points }: Panel): Float64Array =>
+  all.subarray(from, from + points.rows.length);

@@ -38,7 +38,6 @@ export type Priors = Readonly<Record<string, Prior>>;
 export interface PriorsSectionProps {
   state: NotebookState;
   measurement: Measurement;
-  points: KeptPoints;
   /** The stored template on the stored cut; null where it can't be evaluated. */
   prediction: Prediction | null;
   draft: Draft<Priors>;
@@ -221,20 +220,24 @@ function OrderNote({ template, priors }: { template: CompiledTemplate; priors: P
   );
 }
 
-function usePredictive(prediction: Prediction | null, priors: Priors, sound: boolean): PredictiveBand | null {
+function usePredictive(
+  prediction: Prediction | null,
+  priors: Priors,
+  sound: boolean,
+): PredictiveBand[] | null {
   const settled = useDeferredValue(priors);
   return useMemo(() => {
     if (!prediction || !sound) return null;
     if (findPriorFaults(prediction.fine, settled).joint !== null) return null;
     if (Object.keys(findPriorFaults(prediction.fine, settled).byParameter).length) return null;
     if (shareInOrder(prediction.fine, settled) < rare) return null;
-    return keptBand(prediction, settled, draws);
+    return prediction.panels.map((panel) => keptBand(panel, settled, draws));
   }, [prediction, settled, sound]);
 }
 
 /** What is believed before the data, and what that claims about them. */
 export function PriorsSection(props: PriorsSectionProps) {
-  const { state, measurement, points, prediction, draft, fold } = props;
+  const { state, measurement, prediction, draft, fold } = props;
   const { notebook } = state;
   const section = useSectionSave(state);
   const template = prediction?.fine ?? null;
@@ -313,32 +316,47 @@ export function PriorsSection(props: PriorsSectionProps) {
             />
           ) : null}
           <RequestMessage error={section.error} title={`Section ${sectionNumber('priors')} was not saved`} />
-          {band ? (
-            <PointsFigure
-              number={figureNumber('prior-predictive')}
-              label="Range of predictions of the priors over the points"
-              fileName="prior-predictive"
-              points={
-                measurement.blind
-                  ? undefined
-                  : {
-                      kappa: points.kappa,
-                      value: points.S,
-                      error: points.sigma,
-                      lo: points.lo ?? undefined,
-                      hi: points.hi ?? undefined,
-                    }
-              }
-              band={{ kappa: prediction.seen.kappa, ...band, label: '68 and 95 % of the priors’ draws' }}
-              yDomain={bandDomain(band, points)}
-              caption={
-                <>
-                  What the priors claim before any data: at each <i className="sym">κ</i> the range of {draws}{' '}
-                  predictions drawn from them, over the {counted(points.rows.length, 'bin')}.
-                </>
-              }
-            />
-          ) : null}
+          {band && band.length === prediction.panels.length
+            ? prediction.panels.map((panel, k) => (
+                <PointsFigure
+                  key={panel.label}
+                  number={k === 0 ? figureNumber('prior-predictive') : undefined}
+                  label={`Range of predictions of the priors over the points${band.length > 1 ? ` of ${panel.label}` : ''}`}
+                  fileName={k === 0 ? 'prior-predictive' : `prior-predictive-${k + 1}`}
+                  points={
+                    measurement.blind
+                      ? undefined
+                      : {
+                          kappa: panel.points.kappa,
+                          value: panel.points.S,
+                          error: panel.points.sigma,
+                          lo: panel.points.lo ?? undefined,
+                          hi: panel.points.hi ?? undefined,
+                        }
+                  }
+                  band={{
+                    kappa: panel.seen.kappa,
+                    ...band[k],
+                    label: '68 and 95 % of the priors’ draws',
+                  }}
+                  yDomain={bandDomain(band[k], panel.points)}
+                  caption={
+                    k > 0 ? (
+                      <>
+                        The same over the {counted(panel.points.rows.length, 'bin')} of {panel.label}.
+                      </>
+                    ) : (
+                      <>
+                        What the priors claim before any data: at each <i className="sym">κ</i> the range of{' '}
+                        {draws} predictions drawn from them, over the{' '}
+                        {counted(panel.points.rows.length, 'bin')}
+                        {band.length > 1 ? ` of ${panel.label}` : ''}.
+                      </>
+                    )
+                  }
+                />
+              ))
+            : null}
         </>
       ) : (
         <p className="text-ink-2">

@@ -2,6 +2,8 @@ import { counted, listed, plain } from '@/components/words/counts';
 import { leftOutInWords } from '@/components/words/left-out';
 import { fieldCount, findTemplate, TemplateError, type ParameterDeclaration } from '@/lib/templates';
 import type { Notebook, NotebookSection, Revision } from '@/lib/schemas';
+import { assembledParameters } from '@/lib/inference/assembled-template';
+import { cutInWords } from './further-words';
 import { likelihoods } from './likelihood-words';
 import { optionEntries } from './option-words';
 import { priorInWords } from './prior-words';
@@ -36,7 +38,10 @@ export function originInWords(origin: NonNullable<Notebook['origin']>): string {
 }
 
 /** What a revision settles, or a notebook as it stands. */
-export type Settled = Pick<Revision, 'title' | 'cuts' | 'likelihood' | 'template' | 'priors' | 'statement'>;
+export type Settled = Pick<
+  Revision,
+  'title' | 'cuts' | 'likelihood' | 'template' | 'priors' | 'also' | 'sharedMocks' | 'statement'
+>;
 
 /** One thing that a revision settles, in words. */
 export interface SettledLine {
@@ -46,9 +51,14 @@ export interface SettledLine {
   value: string;
 }
 
-function parametersOf({ template }: Settled): readonly ParameterDeclaration[] {
+function parametersOf({ template, also }: Settled): readonly ParameterDeclaration[] {
   try {
-    return findTemplate(template.id).parameters(template.options);
+    return assembledParameters(
+      findTemplate(template.id).parameters(template.options),
+      ['measurement 1', ...also.map(({ name }, k) => name ?? `measurement ${k + 2}`)].map((label) => ({
+        label,
+      })),
+    );
   } catch (error) {
     if (error instanceof TemplateError) return [];
     throw error;
@@ -60,7 +70,7 @@ const fieldsOf = ({ template: { options } }: Settled): number =>
 
 /** Everything that a revision settles, field by field. */
 export function settledLines(settled: Settled): SettledLine[] {
-  const { title, cuts, likelihood, template, priors, statement } = settled;
+  const { title, cuts, likelihood, template, priors, also, sharedMocks, statement } = settled;
   const end = (value: number | undefined) => (value === undefined ? 'no cut' : plain(value, 6));
   const declared = new Map(parametersOf(settled).map((each) => [each.name, each]));
   return [
@@ -73,6 +83,22 @@ export function settledLines(settled: Settled): SettledLine[] {
       what: 'Bins left out',
       value: leftOutInWords(cuts.excluded ?? []) || 'none',
     },
+    ...also.map((each, k) => ({
+      key: `further ${k + 2}`,
+      section: 'measurement' as const,
+      what: `Measurement ${k + 2}`,
+      value: `${each.name === null ? 'one that was deleted' : `${each.name}, version ${each.version}`}, ${cutInWords(each.cuts)}`,
+    })),
+    ...(also.length > 0
+      ? [
+          {
+            key: 'sharedMocks',
+            section: 'measurement' as const,
+            what: 'Mocks',
+            value: sharedMocks ? 'of the same skies' : 'independent',
+          },
+        ]
+      : []),
     {
       key: 'likelihood',
       section: 'measurement',

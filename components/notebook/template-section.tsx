@@ -20,7 +20,14 @@ import { ConflictMessage, twoStand } from './conflict-message';
 import { templateSentence } from './fold-sentences';
 import type { KeptPoints } from './kept-points';
 import { LiveFormula, type DrawnFormula } from './live-formula';
-import { compilePrediction, curvesOf, judge, type Prediction, type TemplateSettings } from './prediction';
+import {
+  compilePrediction,
+  curvesOf,
+  judge,
+  ofPanel,
+  type Prediction,
+  type TemplateSettings,
+} from './prediction';
 import { startValues } from './prior-values';
 import { SaveRow } from './save-row';
 import { conflictOf, type Draft } from './section-draft';
@@ -65,7 +72,8 @@ export function tryPrediction(
   settings: TemplateSettings,
   points: KeptPoints,
 ): { prediction: Prediction } | { fault: string } {
-  if (points.rows.length === 0) return { fault: 'The cut keeps no bin, so nothing can be predicted.' };
+  if ([points, ...(points.together?.further ?? [])].some(({ rows }) => rows.length === 0))
+    return { fault: 'The cut keeps no bin, so nothing can be predicted.' };
   try {
     return { prediction: compilePrediction(settings, points) };
   } catch (error) {
@@ -97,7 +105,8 @@ function Explore({
     () => Float64Array.from(parameters, ({ name }, i) => set[name] ?? start[i]),
     [parameters, set, start],
   );
-  const curves = useMemo(() => curvesOf(prediction, x), [prediction, x]);
+  const curves = useMemo(() => prediction.panels.map((panel) => curvesOf(panel, x)), [prediction, x]);
+  const several = prediction.panels.length > 1;
   const judged = useMemo(() => judge(prediction, x), [prediction, x]);
   const { points } = prediction;
   const fields = prediction.fine.blocks.length;
@@ -125,32 +134,45 @@ function Explore({
           caption="Prediction over the points."
         />
       ) : (
-        <PointsFigure
-          number={figureNumber('template')}
-          label="Prediction at the values of the sliders over the points"
-          fileName="prediction"
-          points={{
-            kappa: points.kappa,
-            value: points.S,
-            error: points.sigma,
-            lo: points.lo ?? undefined,
-            hi: points.hi ?? undefined,
-          }}
-          curves={curves}
-          residuals={judged.residuals}
-          caption={
-            <>
-              Prediction at the values below over the {counted(points.rows.length, 'bin')}
-              {fields ? `, with ${fields === 1 ? 'the field' : 'each field'} drawn alone` : ''}
-              {fields === 2 ? ' and the envelope of their beat' : ''}
-              {weight ? `, ${weight}` : ''};{' '}
-              <Num>
-                <i className="sym">χ</i>² = {formatNumber(judged.chiSquare, 1)}
-              </Num>
-              {points.factor ? '' : ' from the errors alone'} for {counted(points.rows.length, 'bin')}.
-            </>
-          }
-        />
+        prediction.panels.map((panel, k) => (
+          <PointsFigure
+            key={panel.label}
+            number={k === 0 ? figureNumber('template') : undefined}
+            label={`Prediction at the values of the sliders over the points${several ? ` of ${panel.label}` : ''}`}
+            fileName={k === 0 ? 'prediction' : `prediction-${k + 1}`}
+            points={{
+              kappa: panel.points.kappa,
+              value: panel.points.S,
+              error: panel.points.sigma,
+              lo: panel.points.lo ?? undefined,
+              hi: panel.points.hi ?? undefined,
+            }}
+            curves={curves[k]}
+            residuals={ofPanel(judged.residuals, panel)}
+            caption={
+              k > 0 ? (
+                <>
+                  The same over the {counted(panel.points.rows.length, 'bin')} of {panel.label}, with its own
+                  background.
+                </>
+              ) : (
+                <>
+                  Prediction at the values below over the {counted(panel.points.rows.length, 'bin')}
+                  {several ? ` of ${panel.label}` : ''}
+                  {fields ? `, with ${fields === 1 ? 'the field' : 'each field'} drawn alone` : ''}
+                  {fields === 2 ? ' and the envelope of their beat' : ''}
+                  {weight ? `, ${weight}` : ''};{' '}
+                  <Num>
+                    <i className="sym">χ</i>² = {formatNumber(judged.chiSquare, 1)}
+                  </Num>
+                  {prediction.data.factor ? '' : ' from the errors alone'} for{' '}
+                  {counted(prediction.data.rows.length, 'bin')}
+                  {several ? ' of all measurements, each with its own covariance' : ''}.
+                </>
+              )
+            }
+          />
+        ))
       )}
       <TemplateSliders
         template={prediction.fine}

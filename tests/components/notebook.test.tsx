@@ -92,7 +92,7 @@ describe('predictions under the sliders', () => {
       a1: { kind: 'uniform', lo: -10, hi: 10 },
       b1: { kind: 'uniform', lo: -10, hi: 10 },
     };
-    const found = withBestAmplitudes({ ...truth, points }, parameters, wide, [2, 0, 0]);
+    const found = withBestAmplitudes({ ...truth, data: points }, parameters, wide, [2, 0, 0]);
     expect(found[1]).toBeCloseTo(0.6, 8);
     expect(found[2]).toBeCloseTo(-0.4, 8);
     const narrow = withBestAmplitudes(

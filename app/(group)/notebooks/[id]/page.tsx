@@ -32,8 +32,9 @@ export default async function NotebookPage({ params, searchParams }: Props) {
   const { id } = await params;
   const actor = await visitor(`/notebooks/${id}`);
   const opened = await notebook(actor, id);
-  const [measured, role, words, looks, checked] = await Promise.all([
+  const [measured, further, role, words, looks, checked] = await Promise.all([
     measurement(actor, opened.measurement.id, opened.measurement.version),
+    Promise.all(opened.also.map((each) => measurement(actor, each.id, each.version))),
     roleAt(actor, id),
     statement(actor, id),
     trials(actor, id),
@@ -60,6 +61,7 @@ export default async function NotebookPage({ params, searchParams }: Props) {
       <NotebookSheet
         notebook={opened}
         measurement={packMeasurement(measured)}
+        further={further.map(packMeasurement)}
         fit={shown}
         statement={words}
         trials={looks}
