@@ -96,7 +96,7 @@ describe('predictions under the sliders', () => {
     expect(found[1]).toBeCloseTo(0.6, 8);
     expect(found[2]).toBeCloseTo(-0.4, 8);
     const narrow = withBestAmplitudes(
-      { ...truth, points },
+      { ...truth, data: points },
       parameters,
       { ...wide, a1: { kind: 'uniform', lo: 0, hi: 0.5 } },
       [2, 0, 0],
