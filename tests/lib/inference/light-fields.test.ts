@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { buildInference, type InferenceSpec } from '@/lib/inference';
-import { scanModes } from '@/lib/inference/scan';
+import { IndependentRun, judgeModes, modeTable, scanModes } from '@/lib/inference/scan';
 import { createRng } from '@/lib/sampler';
 import { compileTemplate, type Prior } from '@/lib/templates';
 import { diagnoseAll, runReplicas } from './sampling';
@@ -73,9 +73,16 @@ describe('posteriors with light fields', () => {
     expect(nu1.sd).toBeLessThan(0.3);
   });
 
-  it('have modes of ν for one field, and none to compare where masses are of two kinds', () => {
+  it('have modes of ν by a scan for one field, and by an independent run beside a heavy one', () => {
     const one = scanModes(specOf(['light'], [0.8, 5], 0.05), 'modes');
+    expect(one).toMatchObject({ by: 'scan', names: ['nu1'] });
     expect(one?.modes.length).toBeGreaterThan(0);
-    expect(scanModes(specOf(['light', 'heavy'], [0.8, 1.5, 0.7, 5], 0.05), 'modes')).toBeNull();
+    const spec = specOf(['light', 'heavy'], [0.8, 1.5, 0.7, 5], 0.05);
+    expect(scanModes(spec, 'modes')).toBeNull();
+    const inference = buildInference(spec);
+    const run = IndependentRun.of(spec, 'modes', () => inference)!.modesAt(300);
+    expect(run).toMatchObject({ by: 'run', names: ['nu1', 'mu1'] });
+    const { chains } = runReplicas(inference, 1000);
+    expect(judgeModes(run, modeTable(run, [chains.nu1, chains.mu1]))).toEqual([]);
   });
 });
