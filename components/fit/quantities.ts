@@ -1,6 +1,6 @@
 import type { Diagnostic, Fit } from '@/lib/schemas';
 import { assembledParameters } from '@/lib/inference/assembled-template';
-import { findTemplate } from '@/lib/templates';
+import { findTemplate, partOfName } from '@/lib/templates';
 
 /** A sampled parameter or derived quantity as figures and tables name it. */
 export interface Quantity {
@@ -48,10 +48,18 @@ export function quantitiesOf(
   return new Map([...sampled, ...derived].map((quantity) => [quantity.name, quantity]));
 }
 
-/** A quantity that the template doesn't declare still has its name. */
+/** One of a measurement among several is told by its number; a quantity that the template doesn't declare still has its name. */
 export function quantityOf(quantities: ReadonlyMap<string, Quantity>, name: string): Quantity {
+  const { name: base, part } = partOfName(name);
+  const among = base === name ? undefined : quantities.get(base);
   return (
-    quantities.get(name) ?? {
+    quantities.get(name) ??
+    (among && {
+      ...among,
+      name,
+      symbol: { ...among.symbol, sub: `${among.symbol.sub} (${part + 1})` },
+      label: `${among.label}, measurement ${part + 1}`,
+    }) ?? {
       name,
       symbol: { base: name, sub: '' },
       label: name,

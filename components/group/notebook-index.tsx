@@ -9,7 +9,7 @@ import { Field } from '@/components/ui/field';
 import { IndexEntry, IndexList } from '@/components/ui/index-list';
 import type { State } from '@/components/ui/state-word';
 import { WordButton } from '@/components/ui/word-button';
-import { capital, counted } from '@/components/words/counts';
+import { capital, counted, listed } from '@/components/words/counts';
 import { dayAndMonth } from '@/components/words/dates';
 import { shortName } from '@/components/words/people';
 import type { NotebookSummary } from '@/lib/schemas';
@@ -33,6 +33,7 @@ export function matchesWords(notebook: NotebookSummary, words: string): boolean 
     String(number),
     title,
     measurementName,
+    ...notebook.also.map(({ name }) => name),
     templateTitle(templateId, fields),
     updatedBy,
     simulated ? 'simulated' : '',
@@ -47,10 +48,10 @@ export function matchesWords(notebook: NotebookSummary, words: string): boolean 
 }
 
 function Sentence({ notebook }: { notebook: NotebookSummary }) {
-  const { lastFit, measurementName, templateId, fields, settledRevision, simulated } = notebook;
+  const { lastFit, measurementName, also, templateId, fields, settledRevision, simulated } = notebook;
   return (
     <>
-      {templateTitle(templateId, fields)} in {measurementName}
+      {templateTitle(templateId, fields)} in {listed([measurementName, ...also.map(({ name }) => name)])}
       {simulated ? ', simulated' : ''}.{' '}
       {lastFit
         ? `Fit ${lastFit.number}${lastFit.revision >= settledRevision ? '' : `, of revision ${lastFit.revision},`} ${fitPredicate(lastFit.status)}.`

@@ -31,7 +31,9 @@ function bestCurve(measurement: Measurement, fit: Fit, given: FigureDraws) {
     { kind: 'points', kappa },
   );
   const values = drawValues(given, index, fixedValues(fit));
-  return { kappa, y: compiled.predict(Float64Array.from(compiled.parameters, ({ name }) => values[name])) };
+  // With further measurements the background of the first has its number.
+  const x = Float64Array.from(compiled.parameters, ({ name }) => values[name] ?? values[`${name}_1`]);
+  return { kappa, y: compiled.predict(x) };
 }
 
 /** Stands where a blind group may not see points. */

@@ -78,13 +78,18 @@ export function Abstract({
   measurement: Measurement;
   fit: Fit | null;
 }) {
-  const { cuts, bins, template } = notebook;
+  const { cuts, bins, template, also } = notebook;
   return (
     <>
       {capital(counted(bins.kept, 'bin'))} with{' '}
       <KappaRange lo={cuts.kappaMin ?? measurement.kappaMin} hi={cuts.kappaMax ?? measurement.kappaMax} />
-      {cuts.excluded?.length ? `, ${withoutBins(cuts)}` : ''}; <TemplateInWords template={template} />.{' '}
-      {fitInWords(fit)}
+      {cuts.excluded?.length ? `, ${withoutBins(cuts)}` : ''}
+      {also.map(({ id, name, bins: more }) => (
+        <Fragment key={id}>
+          , {counted(more.kept, 'bin')} of {name}
+        </Fragment>
+      ))}
+      ; <TemplateInWords template={template} />. {fitInWords(fit)}
     </>
   );
 }

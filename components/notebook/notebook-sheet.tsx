@@ -280,7 +280,9 @@ export function NotebookSheet(props: NotebookSheetProps) {
         fold={fold('statement')}
         onShow={goTo}
       />
-      {notebook.measurement.version > 1 ? <Shifts notebook={notebook} /> : null}
+      {[notebook.measurement, ...notebook.also].some(({ version }) => version > 1) ? (
+        <Shifts notebook={notebook} />
+      ) : null}
       <FoldScript storageKey={storageKey} />
       <SheetRow>
         <BeatEnd />

@@ -4,6 +4,7 @@ import { useState } from 'react';
 import useSWR from 'swr';
 import { read } from '@/components/api/request';
 import { quantitiesOf } from '@/components/fit/quantities';
+import { labelsOfFit } from '@/components/notebook/fit-measurements';
 import { Button } from '@/components/ui/button';
 import { SelectField } from '@/components/ui/field';
 import type { Fit, Notebook } from '@/lib/schemas';
@@ -42,7 +43,7 @@ export function ReferenceMenu({
       </p>
     );
   }
-  const quantities = fit ? [...quantitiesOf(fit.snapshot.template).values()] : [];
+  const quantities = fit ? [...quantitiesOf(fit.snapshot.template, labelsOfFit(fit, notebook)).values()] : [];
   const options = [
     ...quantities.map(({ name, symbol, label }) => ({
       value: name,

@@ -9,6 +9,7 @@ import {
   type StatementPiece,
 } from '@/lib/schemas';
 import { factWords, statisticWords, writeReference, type Reference } from '@/lib/statement/reference';
+import { assembledParameters } from '@/lib/inference/assembled-template';
 import { findTemplate } from '@/lib/templates';
 
 /** What a statement may say of a fit. */
@@ -27,8 +28,9 @@ export interface ReferredFit {
   gate: Fit['gate'];
   template: { id: string; options: Record<string, unknown> };
   priors: Fit['snapshot']['priors'];
-  measurement: { name: string; version: number };
-  /** Bins that its cuts keep. */
+  /** Its measurements, the notebook's own first. */
+  measurements: readonly { name: string; version: number }[];
+  /** Bins that its cuts keep, of all measurements. */
   bins: number;
   /** Single bins that they leave out. */
   excluded: readonly ExcludedBin[];
@@ -41,10 +43,17 @@ interface Quantity {
 }
 
 /** Everything that a fit has a number for: its template's parameters and what is derived from them. */
-export function quantitiesOfFit({ template, priors }: Pick<ReferredFit, 'template' | 'priors'>): Quantity[] {
+export function quantitiesOfFit({
+  template,
+  priors,
+  measurements,
+}: Pick<ReferredFit, 'template' | 'priors' | 'measurements'>): Quantity[] {
   const declaration = findTemplate(template.id);
   const declared = [
-    ...declaration.parameters(template.options),
+    ...assembledParameters(
+      declaration.parameters(template.options),
+      measurements.map(({ name }) => ({ label: name })),
+    ),
     ...declaration.derived(template.options),
   ].map(({ name, label }) => ({ name, label }));
   // The columns of a measurement have priors like any parameter; their names are the group's own words.
@@ -147,7 +156,7 @@ function gateValue({ gate, diagnostics }: ReferredFit): Value {
 function valueOf(reference: Reference, fit: ReferredFit): Value {
   if (reference.kind === 'fact') {
     if (reference.fact === 'measurement') {
-      return { value: `${fit.measurement.name}, version ${fit.measurement.version}` };
+      return { value: listed(fit.measurements.map(({ name, version }) => `${name}, version ${version}`)) };
     }
     if (reference.fact === 'template') return { value: templateName(fit) };
     if (reference.fact === 'bins') return { value: formatCount(fit.bins) };

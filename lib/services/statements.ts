@@ -1,5 +1,5 @@
 import { Op, type Transaction } from 'sequelize';
-import { Fit, NotebookRevision } from '@/models';
+import { Fit, FitPart, NotebookRevision } from '@/models';
 import { AppError } from '@/lib/errors';
 import { faultOf, presentReference, type ReferredFit } from '@/lib/presenters/statements';
 import {
@@ -45,9 +45,14 @@ async function referredFits(
   const fits =
     named.length === numbers.length ? named : await Fit.findAll({ where: { notebookId }, transaction });
   if (fits.length === 0) return new Map();
+  const parts = await FitPart.findAll({
+    where: { fitId: fits.map(({ id }) => id) },
+    order: [['place', 'ASC']],
+    transaction,
+  });
   const [versions, changes] = await Promise.all([
     versionLines(
-      fits.map(({ measurementVersionId }) => measurementVersionId),
+      [...fits, ...parts].map(({ measurementVersionId }) => measurementVersionId),
       transaction,
     ),
     changesOf(notebookId, transaction),
@@ -60,6 +65,9 @@ async function referredFits(
       const version = versions.get(fit.measurementVersionId);
       if (!version) return [];
       const snapshot = snapshotSchema.parse(fit.snapshot);
+      const further = parts
+        .filter(({ fitId }) => fitId === fit.id)
+        .flatMap(({ measurementVersionId }) => versions.get(measurementVersionId) ?? []);
       const report =
         fit.report === null || version.blind ? emptyReport : storedReportSchema.parse(fit.report);
       const referred: ReferredFit = {
@@ -75,8 +83,11 @@ async function referredFits(
         gate: { ...report.gate, target: { rhat: fit.targetRhat, ess: fit.targetEss } },
         template: snapshot.template,
         priors: snapshot.priors,
-        measurement: { name: version.name, version: version.version },
-        bins: countKept(version, snapshot.cuts),
+        measurements: [version, ...further].map(({ name, version: number }) => ({ name, version: number })),
+        bins: further.reduce(
+          (sum, each, k) => sum + countKept(each, snapshot.also?.[k].cuts ?? {}),
+          countKept(version, snapshot.cuts),
+        ),
         excluded: snapshot.cuts.excluded ?? [],
         sha256: fit.snapshotSha256,
       };
