@@ -255,7 +255,7 @@ export const routes = {
     answer: evaluatedSchema,
   },
   'POST /groups/:id/notebooks': {
-    summary: 'Open a notebook on a measurement.',
+    summary: 'Open a notebook on a measurement, or on up to four of the group together.',
     permission: 'notebook.create',
     body: createNotebookSchema,
     answer: notebookCreatedSchema,
