@@ -5,7 +5,6 @@ import { AccuracyFigure, type AccuracyLine } from '@/components/figures/accuracy
 import { Caution } from '@/components/ui/caution';
 import { SelectField } from '@/components/ui/field';
 import { Num } from '@/components/ui/num';
-import { Subheading } from '@/components/ui/section';
 import { Sym } from '@/components/ui/sym';
 import { DataTable } from '@/components/ui/table';
 import { capital, counted, inWords, listed, plain } from '@/components/words/counts';
@@ -61,7 +60,6 @@ export function AccuracyPart({ settings, parameters, priors, measurement, cuts, 
   const accuracy = useTemplateAccuracy(settings, masses, wide, kept);
   return (
     <>
-      <Subheading>How far in κ it holds</Subheading>
       {accuracy === null ? (
         <p className="min-h-[560px] text-ink-2">Being compared with the exact shape…</p>
       ) : typeof accuracy === 'string' ? (

@@ -31,3 +31,8 @@ export function accurateKappa(lo: number, hi: number, share: number, vertices: r
   }
   return Math.sqrt(share / worst);
 }
+
+/** Fitted background powers that keep the bias of masses up to `mu` near 1 %: 2 up to μ = 2, 3 up to 4, 4 beyond. */
+export function backgroundTermsFor(mu: number): number {
+  return mu <= 2 ? 2 : mu <= 4 ? 3 : 4;
+}

@@ -3,7 +3,6 @@
 import { useMemo } from 'react';
 import { Caution } from '@/components/ui/caution';
 import { Num } from '@/components/ui/num';
-import { Subheading } from '@/components/ui/section';
 import { DataTable } from '@/components/ui/table';
 import { counted } from '@/components/words/counts';
 import { formatCount, formatNumber } from '@/lib/figures/format';
@@ -52,7 +51,6 @@ export function CoverageTable({ bins, mocks, parameters, chosen }: CoverageTable
   const lacks = own && contents[0] - own[0].covered > short;
   return (
     <>
-      <Subheading>What intervals are worth with these mocks</Subheading>
       <DataTable
         caption={
           <>

@@ -1,4 +1,5 @@
 import { Formula } from '@/components/ui/formula';
+import { Opened } from '@/components/ui/opened';
 import type { TemplateFormula } from '@/lib/templates';
 
 /** A template's formula as evaluated, with what its symbols stand for folded below. */
@@ -7,14 +8,11 @@ export function FormulaBlock({ formula }: { formula: TemplateFormula }) {
     <>
       <Formula tex={formula.wide} label="Formula of the template" />
       {formula.definitions.length ? (
-        <details className="mb-2">
-          <summary className="inline-flex min-h-target items-center font-controls text-note text-action underline decoration-1 underline-offset-[3px]">
-            What the symbols stand for
-          </summary>
-          {formula.definitions.map((tex, i) => (
-            <Formula key={i} tex={tex} label={`Definition ${i + 1}`} />
-          ))}
-        </details>
+        <Opened words="What the symbols stand for">
+          {() =>
+            formula.definitions.map((tex, i) => <Formula key={i} tex={tex} label={`Definition ${i + 1}`} />)
+          }
+        </Opened>
       ) : null}
     </>
   );

@@ -9,6 +9,7 @@ import { MeasurementFigure } from '@/components/measurement/measurement-figure';
 import { covarianceInWords } from '@/components/measurement/measurement-words';
 import { SelectField } from '@/components/ui/field';
 import { NumberField } from '@/components/ui/number-field';
+import { Opened } from '@/components/ui/opened';
 import { Section } from '@/components/ui/section';
 import { Sym } from '@/components/ui/sym';
 import { DefinitionList } from '@/components/ui/definition-list';
@@ -44,7 +45,7 @@ const FurtherMeasurements = dynamic(() =>
   import('./further-measurements').then((module) => module.FurtherMeasurements),
 );
 
-/** Simulates; loaded where the covariance comes from mocks. */
+/** Simulates; loaded when it is opened. */
 const CoverageTable = dynamic(() => import('./coverage-table').then((module) => module.CoverageTable));
 
 export interface MeasurementSettings {
@@ -159,6 +160,7 @@ export function MeasurementSection({ state, measurement, further, draft, fold }:
   const [picked, setPicked] = useState<number | null>(null);
   const all = measurement.rows;
   const { alsoMeasurements: chosen, sharedMocks } = draft.value;
+  const mocks = measurement.mockCount;
   const sampled = Object.values(notebook.priors).filter(({ kind }) => kind !== 'fixed').length;
   const editable = notebook.may.includes('notebook.edit');
   // Once a newer version was spoken of, what came of taking it up is said in the same place.
@@ -267,13 +269,17 @@ export function MeasurementSection({ state, measurement, further, draft, fold }:
           {together}
         </>
       )}
-      {chosen.length === 0 && measurement.mockCount !== null && sampled > 0 && rows.length > sampled ? (
-        <CoverageTable
-          bins={rows.length}
-          mocks={measurement.mockCount}
-          parameters={sampled}
-          chosen={draft.value.likelihood.kind}
-        />
+      {chosen.length === 0 && mocks !== null && sampled > 0 && rows.length > sampled ? (
+        <Opened words="What intervals are worth with these mocks">
+          {() => (
+            <CoverageTable
+              bins={rows.length}
+              mocks={mocks}
+              parameters={sampled}
+              chosen={draft.value.likelihood.kind}
+            />
+          )}
+        </Opened>
       ) : null}
       {conflict ? (
         <ConflictMessage

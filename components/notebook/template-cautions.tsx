@@ -1,10 +1,10 @@
 import { Caution } from '@/components/ui/caution';
 import { Num } from '@/components/ui/num';
 import { Sym } from '@/components/ui/sym';
-import { plain } from '@/components/words/counts';
+import { inWords, plain } from '@/components/words/counts';
 import { formatPercent } from '@/lib/figures/format';
 import type { ParameterDeclaration, Prior } from '@/lib/templates';
-import { accurateKappa } from './accuracy';
+import { accurateKappa, backgroundTermsFor } from './accuracy';
 import type { TemplateSettings } from './prediction';
 import { priorEnds } from './prior-values';
 
@@ -78,6 +78,9 @@ export function TemplateCautions({
   if (settings.id === 'light') return <LightCautions />;
   const vertex = settings.options.vertex;
   const reach = accurateKappa(range[0], range[1], share, vertex === 1 ? [1] : vertex === 2 ? [2] : [1, 2]);
+  const powers = Array.isArray(settings.options.background) ? (settings.options.background as number[]) : [];
+  const positive = powers.filter((power) => power > 0).length;
+  const wanted = backgroundTermsFor(range[1]);
   return (
     <>
       <Caution>
@@ -91,6 +94,16 @@ export function TemplateCautions({
         </Num>
         {highest > reach * 1.0001 ? ', beyond that.' : '.'}
       </Caution>
+      {settings.id === 'locked-squeezed' && positive < wanted ? (
+        <Caution>
+          The smooth part of the exchange is left to the background. For masses up to{' '}
+          <Num>
+            <Sym base="μ" /> = {plain(range[1], 2)}
+          </Num>{' '}
+          it needs {inWords(wanted)} powers of <Sym base="κ" /> from 1 on to keep the bias near{' '}
+          {formatPercent(0.01)}; there {positive === 1 ? 'is' : 'are'} {inWords(positive)}.
+        </Caution>
+      ) : null}
     </>
   );
 }

@@ -8,6 +8,8 @@ import { WithheldFigure } from '@/components/figures/withheld-figure';
 import { Button, Buttons } from '@/components/ui/button';
 import { Message } from '@/components/ui/message';
 import { Num } from '@/components/ui/num';
+import { Opened } from '@/components/ui/opened';
+import { Sym } from '@/components/ui/sym';
 import { useShown } from '@/components/ui/fold';
 import { Section, Subheading } from '@/components/ui/section';
 import { counted } from '@/components/words/counts';
@@ -41,7 +43,7 @@ import type { SectionFold } from './use-folds';
 import { useSectionSave, type NotebookState } from './use-notebook';
 import { figureNumber, sectionNumber } from './sections';
 
-/** Brings the exact shape along; loaded when the section is on the screen. */
+/** Compares with the exact shape; loaded when it is opened. */
 const AccuracyPart = dynamic(() => import('./accuracy-part').then((module) => module.AccuracyPart));
 
 /** Templates of the squeezed limit; the others are exact, or have no field. */
@@ -296,14 +298,24 @@ export function TemplateSection(props: TemplateSectionProps) {
         </Message>
       )}
       {'prediction' in tried && squeezed.has(settings.id) ? (
-        <AccuracyPart
-          settings={settings}
-          parameters={tried.prediction.fine.parameters}
-          priors={notebook.priors}
-          measurement={measurement}
-          cuts={notebook.cuts}
-          kept={points.rows.length}
-        />
+        <Opened
+          words={
+            <>
+              How far in <Sym base="κ" /> it holds
+            </>
+          }
+        >
+          {() => (
+            <AccuracyPart
+              settings={settings}
+              parameters={tried.prediction.fine.parameters}
+              priors={notebook.priors}
+              measurement={measurement}
+              cuts={notebook.cuts}
+              kept={points.rows.length}
+            />
+          )}
+        </Opened>
       ) : null}
       {template.assumptions.length ? (
         <p className="mt-3 text-small text-ink-2">

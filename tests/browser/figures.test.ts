@@ -2,7 +2,7 @@ import { readFileSync } from 'node:fs';
 import type { Browser, CDPSession, Page } from 'playwright-core';
 import { afterAll, beforeAll, describe, expect, inject, it } from 'vitest';
 import { launchBrowser, visit, type Visit } from './browser';
-import { ask, firstNotebook, fitted, signIn } from './fitted-notebook';
+import { ask, demoNotebook, fitted, signIn } from './fitted-notebook';
 
 const { url } = inject('instance');
 
@@ -19,7 +19,7 @@ beforeAll(async () => {
   person = await visit(browser);
   page = person.page;
   await signIn(page, url, 'analyst@demo.beatnote.example');
-  notebook = await firstNotebook(page);
+  notebook = await demoNotebook(page);
   const number = await fitted(page, notebook, large);
   notebook += `?fit=${number}`;
 });

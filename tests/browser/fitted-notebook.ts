@@ -47,10 +47,13 @@ export function ask<T>(page: Page, method: 'GET' | 'POST', path: string, body?: 
   );
 }
 
-/** A notebook of the group that the page stands on: the first one of its index. */
-export async function firstNotebook(page: Page): Promise<string> {
-  const href = await page.locator('a[href^="/notebooks/"]').first().getAttribute('href');
-  if (!href) throw new Error('The group has no notebook.');
+/** The demo's notebook of two mixed fields, from the page of its group: whatever other tests add, it is this one. */
+export async function demoNotebook(page: Page): Promise<string> {
+  const link = page.locator('a[href^="/notebooks/"]', {
+    hasText: 'Two mixed fields in the Larkfield deep field',
+  });
+  const href = await link.first().getAttribute('href');
+  if (!href) throw new Error('The group has no notebook of two mixed fields.');
   return href;
 }
 

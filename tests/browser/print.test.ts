@@ -1,7 +1,7 @@
 import type { Browser, Page } from 'playwright-core';
 import { afterAll, beforeAll, describe, expect, inject, it } from 'vitest';
 import { launchBrowser, visit } from './browser';
-import { firstNotebook, fitted, signIn } from './fitted-notebook';
+import { demoNotebook, fitted, signIn } from './fitted-notebook';
 
 const { url } = inject('instance');
 
@@ -14,7 +14,7 @@ beforeAll(async () => {
   const person = await visit(browser, { width: 390, height: 844 });
   page = person.page;
   await signIn(page, url, 'analyst@demo.beatnote.example');
-  notebook = await firstNotebook(page);
+  notebook = await demoNotebook(page);
   notebook += `?fit=${await fitted(page, notebook, { maxDraws: 600, target: { ess: 1e6 } })}`;
 });
 afterAll(() => browser.close());

@@ -34,6 +34,7 @@ const words = async (section: string) =>
 describe('what the page says of accuracy before anything is fitted', () => {
   it('recommends as many powers of κ as the notebook’s own bins need, and warns of the two that are set', async () => {
     const figure = page.getByRole('img', { name: /^Error of the amplitude by the highest κ kept/ });
+    await page.locator('section#template summary', { hasText: 'How far in κ it holds' }).click();
     await figure.waitFor();
     const said = await words('template');
     // At μ = 4, vertex 1, three powers reach κ = 0.17 at 1 % on bins from 0.001 (derived by us); these go to 0.25.
@@ -49,6 +50,7 @@ describe('what the page says of accuracy before anything is fitted', () => {
     const row = page
       .locator('section#measurement')
       .getByRole('row', { name: /t with matched prior, as chosen/ });
+    await page.locator('summary', { hasText: 'What intervals are worth' }).click();
     await row.waitFor();
     const [covered] = (await row.innerText()).match(/\d\d\.\d(?= %)/) ?? [];
     expect(Math.abs(Number(covered) - 68)).toBeLessThan(2);

@@ -2,7 +2,7 @@ import type { Notebook } from '@/lib/schemas';
 import { renderToStaticMarkup } from 'react-dom/server';
 import { describe, expect, it } from 'vitest';
 import { Abstract } from '@/components/notebook/abstract';
-import { accurateKappa, leadingCorrection } from '@/components/notebook/accuracy';
+import { accurateKappa, backgroundTermsFor, leadingCorrection } from '@/components/notebook/accuracy';
 import { withBestAmplitudes } from '@/components/notebook/best-amplitudes';
 import { chiSquare, keepPoints, keptRows } from '@/components/notebook/kept-points';
 import { beatEnvelope, compilePrediction, curvesOf, judge } from '@/components/notebook/prediction';
@@ -158,6 +158,7 @@ describe('accuracy of the squeezed template', () => {
       Math.min(accurateKappa(1, 8, 0.05, [1]), accurateKappa(1, 8, 0.05, [2])),
     );
     expect(leadingCorrection(0, 1)).toBeCloseTo((2.5 * 3.5) / 16, 12);
+    expect([1.5, 3, 6].map(backgroundTermsFor)).toEqual([2, 3, 4]);
   });
 });
 
