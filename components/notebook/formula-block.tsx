@@ -9,9 +9,9 @@ export function FormulaBlock({ formula }: { formula: TemplateFormula }) {
       <Formula tex={formula.wide} label="Formula of the template" />
       {formula.definitions.length ? (
         <Opened words="What the symbols stand for">
-          {() =>
-            formula.definitions.map((tex, i) => <Formula key={i} tex={tex} label={`Definition ${i + 1}`} />)
-          }
+          {formula.definitions.map((tex, i) => (
+            <Formula key={i} tex={tex} label={`Definition ${i + 1}`} />
+          ))}
         </Opened>
       ) : null}
     </>

@@ -271,14 +271,12 @@ export function MeasurementSection({ state, measurement, further, draft, fold }:
       )}
       {chosen.length === 0 && mocks !== null && sampled > 0 && rows.length > sampled ? (
         <Opened words="What intervals are worth with these mocks">
-          {() => (
-            <CoverageTable
-              bins={rows.length}
-              mocks={mocks}
-              parameters={sampled}
-              chosen={draft.value.likelihood.kind}
-            />
-          )}
+          <CoverageTable
+            bins={rows.length}
+            mocks={mocks}
+            parameters={sampled}
+            chosen={draft.value.likelihood.kind}
+          />
         </Opened>
       ) : null}
       {conflict ? (

@@ -305,16 +305,14 @@ export function TemplateSection(props: TemplateSectionProps) {
             </>
           }
         >
-          {() => (
-            <AccuracyPart
-              settings={settings}
-              parameters={tried.prediction.fine.parameters}
-              priors={notebook.priors}
-              measurement={measurement}
-              cuts={notebook.cuts}
-              kept={points.rows.length}
-            />
-          )}
+          <AccuracyPart
+            settings={settings}
+            parameters={tried.prediction.fine.parameters}
+            priors={notebook.priors}
+            measurement={measurement}
+            cuts={notebook.cuts}
+            kept={points.rows.length}
+          />
         </Opened>
       ) : null}
       {template.assumptions.length ? (
