@@ -22,7 +22,7 @@ export interface ChartProps {
 
 /**
  * The surface of a chart with its scales. The chart of the library around it holds its data in a store and weighs 80 kB
- * more, compressed; surface, axes and points of the same library don't need it, and are drawn on the server already.
+ * more, compressed; surface and points of the same library don't need it, and are drawn on the server already.
  */
 export function Chart({ width, height, x, y, children }: ChartProps) {
   const scales = useMemo(() => {

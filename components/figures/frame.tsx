@@ -1,5 +1,4 @@
 import type { ReactNode } from 'react';
-import { CartesianAxis } from 'recharts';
 import type { Tick } from '@/lib/figures/ticks';
 import { usePixels } from './chart';
 
@@ -22,22 +21,30 @@ export interface FrameProps {
   yName?: ReactNode;
 }
 
-/** All ticks are drawn as given, inward; their labels stand further out, in our own face. */
-const inward = {
-  mirror: true,
-  interval: 0,
-  tick: false,
-  axisLine: { className: 'ax' },
-  tickLine: { className: 'tk' },
-} as const;
+/** One axis with its ticks, inward: along x at the bottom, along y at the left. */
+function Axis({ along, panel, ticks, place }: AxisProps) {
+  const { left, right, top, bottom } = panel;
+  const line = along === 'x' ? `M${left} ${bottom - 1}H${right}` : `M${left + 1} ${top}V${bottom}`;
+  return (
+    <>
+      <path className="ax" d={line} />
+      {ticks.map(({ value, major }) => {
+        const at = place(value).toFixed(2);
+        const size = major ? 6 : 3;
+        const stroke = along === 'x' ? `M${at} ${bottom - 1}v${-size}` : `M${left + 1} ${at}h${size}`;
+        return <path key={value} className="tk" d={stroke} />;
+      })}
+    </>
+  );
+}
 
-const placed = (ticks: readonly Tick[], toPixels: (value: number) => number) =>
-  ticks.map(({ value, major }, index) => ({
-    value,
-    index,
-    coordinate: toPixels(value),
-    tickSize: major ? 6 : 3,
-  }));
+interface AxisProps {
+  along: 'x' | 'y';
+  panel: Panel;
+  ticks: readonly Tick[];
+  /** From values to pixels along the axis. */
+  place: (value: number) => number;
+}
 
 /** Left and bottom axis with ticks inward; names stand horizontally above and at the right end. */
 export function Frame({ panel, yAxisId, xTicks, yTicks, xLabels = true, xName, yName }: FrameProps) {
@@ -45,26 +52,8 @@ export function Frame({ panel, yAxisId, xTicks, yTicks, xLabels = true, xName, y
   const { left, right, top, bottom } = panel;
   return (
     <g>
-      <CartesianAxis
-        {...inward}
-        orientation="bottom"
-        x={left}
-        y={bottom - 1}
-        width={right - left}
-        height={1}
-        viewBox={{ x: left, y: top, width: right - left, height: bottom - top }}
-        ticks={placed(xTicks, pixels.x)}
-      />
-      <CartesianAxis
-        {...inward}
-        orientation="left"
-        x={left}
-        y={top}
-        width={1}
-        height={bottom - top}
-        viewBox={{ x: left, y: top, width: right - left, height: bottom - top }}
-        ticks={placed(yTicks, pixels.y)}
-      />
+      <Axis along="x" panel={panel} ticks={xTicks} place={pixels.x} />
+      <Axis along="y" panel={panel} ticks={yTicks} place={pixels.y} />
       {xTicks.map((tick) =>
         xLabels && tick.major ? (
           <text
