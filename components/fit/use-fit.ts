@@ -20,11 +20,15 @@ export function useFit(id: string | null, initial: Fit | null): FitHandle {
     fallbackData: initial?.id === id ? (initial ?? undefined) : undefined,
     revalidateOnFocus: false,
   });
+  const fit = data && data.id === id ? data : null;
   return {
-    fit: data && data.id === id ? data : null,
+    fit,
     put: (next) => void mutate(next, { revalidate: false }),
-    take: (event) =>
-      void mutate((before) => (before ? { ...before, ...event } : before), { revalidate: false }),
+    // What came with the page isn't in the cache: there is nothing before an event until the first read is in. And every mutation
+    // discards a read that is under way, so that one which kept nothing would leave the page without either.
+    take: (event) => {
+      if (fit) void mutate((before) => ({ ...(before ?? fit), ...event }), { revalidate: false });
+    },
   };
 }
 
