@@ -8,7 +8,7 @@ import { Disturbed } from './disturbed';
 
 let run: Disturbed;
 beforeAll(async () => {
-  run = await Disturbed.run(background, { seed: 'cut', maxDraws: 8000, target: { ess: 1e9 } });
+  run = await Disturbed.run(background, { seed: 'cut', maxDraws: 40_000, target: { ess: 1e9 } });
 });
 afterEach(endWorkers);
 afterAll(() => Disturbed.close());

@@ -136,8 +136,11 @@ describe('a check of calibration', () => {
     const { measurementVersionId } = await Notebook.findByPk(notebook, { rejectOnEmpty: true });
     const { rows } = await MeasurementVersion.findByPk(measurementVersionId, { rejectOnEmpty: true });
     const covariance = Buffer.alloc(8 * rows * rows);
+    await endWorkers();
+    const { id } = await begun(notebook, { datasets: 50, draws: 19 });
     await MeasurementVersion.update({ covariance }, { where: { id: measurementVersionId } });
-    const failed = notebookCheckSchema.parse(await (await ask(notebook, { datasets: 50, draws: 19 })).json());
+    startWorker();
+    const failed = await when(id, ({ endedAt }) => endedAt !== null);
     expect([failed.status, failed.done, failed.result]).toEqual(['failed', 0, null]);
     expect(failed.message).toMatch(/covariance .*not positive definite/i);
     expect(failed.endedAt).not.toBeNull();

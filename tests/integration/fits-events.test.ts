@@ -1,5 +1,5 @@
-import { afterAll, beforeAll, describe, expect, it, vi } from 'vitest';
-import { Fit, MeasurementVersion, Membership, User } from '@/models';
+import { afterAll, afterEach, beforeAll, describe, expect, it, vi } from 'vitest';
+import { Check, Fit, MeasurementVersion, Membership, User } from '@/models';
 import { GET as events } from '@/app/api/v1/fits/[id]/events/route';
 import { database } from '@/lib/db';
 import { closeQueue, fitChannel } from '@/lib/jobs';
@@ -64,6 +64,10 @@ const drawsOf = ({ progress }: FitEvent) => progress.warmup + progress.draws;
 
 describe('the events of a fit', () => {
   it('begin with its state, follow every commit within a second, and end with the fit', async () => {
+    // Whatever other tests left in the queue is taken out of it.
+    const gone = { status: 'stopped', endedAt: new Date() } as const;
+    await Fit.update(gone, { where: { status: 'queued' } });
+    await Check.update(gone, { where: { status: 'queued' } });
     const notebook = await openNotebook(desk, { template: oneField });
     const id = await startFit(desk, notebook, { seed: 1, maxDraws: 1200, target: { ess: 1e9 } });
     const commits: { at: number; draws: number }[] = [];
@@ -151,11 +155,20 @@ describe('a fit that can’t be sampled', () => {
     const id = await startFit(desk, notebook, { seed: 1 });
     const { measurementVersionId } = await Fit.findByPk(id, { rejectOnEmpty: true });
     const version = await MeasurementVersion.findByPk(measurementVersionId, { rejectOnEmpty: true });
+    const { points } = version;
+    mend = () => version.update({ points });
     const { kappa, kappaLo, kappaHi, S } = readPoints(version);
     const edges = [kappaLo ?? kappa, kappaHi ?? kappa];
     await version.update({ points: writeDoubles(kappa, ...edges, S.fill(value)) });
     return id;
   }
+
+  let mend: (() => Promise<unknown>) | undefined;
+  /** What isn't a measurement any more is refused at the start of a fit already. */
+  afterEach(async () => {
+    await mend?.();
+    mend = undefined;
+  });
 
   it('fails with the reason and the remedy, and can be resumed', async () => {
     const id = await spoiltFit(NaN);

@@ -235,7 +235,7 @@ describe('a notebook that is put away', () => {
     expect((await post(archive, id, {}, lead.token)).status).toBe(200);
     const away = await read(id);
     expect(away.archived?.by).toBe(lead.user.email);
-    expect(away.may).toEqual(['notebook.read', 'notebook.create', 'fit.read', 'scan.read']);
+    expect(away.may).toEqual(['notebook.read', 'notebook.create', 'fit.read', 'scan.read', 'check.read']);
     expect(away.fits).toHaveLength(1);
     const answer = await call(PATCH, {
       method: 'PATCH',
