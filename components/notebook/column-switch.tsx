@@ -14,10 +14,11 @@ export function ColumnSwitch({
   on: boolean;
   onSwitch: (on: boolean) => void;
 }) {
+  const words = on ? 'Leave it out' : 'Fit it';
   return (
     <span className="mt-[3px] block">
-      <Button aria-label={`${on ? 'Leave out' : 'Fit'} column ${name}`} onClick={() => onSwitch(!on)}>
-        {on ? 'Leave it out' : 'Fit it'}
+      <Button aria-label={`${words}, column ${name}`} onClick={() => onSwitch(!on)}>
+        {words}
       </Button>
     </span>
   );

@@ -38,7 +38,8 @@ beforeAll(async () => {
   const { id } = await ask<{ id: string }>(newcomer.page, 'POST', `${group}/notebooks`, {
     title: 'Queued',
     measurement,
-    template: { id: 'background', options: { background: [1] } },
+    // Slow enough to be seen in the queue, which is read again every few seconds.
+    template: { id: 'free-phase', options: { fields: 2, amplitudes: 'amplitude-phase', background: [1] } },
   });
   place = `/notebooks/${id}`;
   await page.goto(`${url}/administration`);
@@ -165,8 +166,8 @@ describe('the site administrator', () => {
   it('sees a fit come into the queue and leave it, without its science and without a reload', async () => {
     const loads = admin.loads();
     const { id } = await ask<{ id: string }>(newcomer.page, 'POST', `${place}/fits`, {
-      maxDraws: 500_000,
-      target: { ess: 1e8 },
+      maxDraws: 1_000_000,
+      target: { ess: 1e9 },
     });
     const row = rowOf('Fits that wait or run', groupName);
     await row.waitFor();

@@ -16,7 +16,8 @@ beforeAll(async () => {
   page = analyst.page;
   await signIn(page, url, 'analyst@demo.beatnote.example');
   const group = new URL(page.url()).pathname;
-  const [{ id: measurement }] = await ask<{ id: string }[]>(page, 'GET', `${group}/measurements`);
+  const measured = await ask<{ id: string; name: string }[]>(page, 'GET', `${group}/measurements`);
+  const measurement = measured.find(({ name }) => name === 'Larkfield deep field')?.id;
   const template = {
     id: 'locked-squeezed',
     options: { fields: 1, vertex: 1, phases: 'locked', background: [1, 2] },

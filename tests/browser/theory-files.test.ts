@@ -98,8 +98,8 @@ describe('a window and columns dropped beside the points', () => {
     const posterior = page.locator('#posterior');
     await expect.poll(() => posterior.innerText(), { timeout: 15_000 }).toContain('gravity');
     const priors = page.locator('#priors');
-    await priors.getByRole('button', { name: 'Leave out column gravity' }).click();
-    await priors.getByRole('button', { name: 'Fit column gravity' }).waitFor();
+    await priors.getByRole('button', { name: 'Leave it out, column gravity' }).click();
+    await priors.getByRole('button', { name: 'Fit it, column gravity' }).waitFor();
     await priors.getByRole('button', { name: /^Save/ }).first().click();
     await expect
       .poll(async () => (await ask<{ priors: Record<string, object> }>(page, 'GET', notebook)).priors.gravity)
