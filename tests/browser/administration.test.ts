@@ -169,7 +169,7 @@ describe('the site administrator', () => {
       maxDraws: 1_000_000,
       target: { ess: 1e9 },
     });
-    const row = rowOf('Fits that wait or run', groupName);
+    const row = rowOf('Fits and checks that wait or run', groupName);
     await row.waitFor();
     expect(await row.innerText()).toContain(place.slice('/notebooks/'.length).slice(0, 8));
     await ask(newcomer.page, 'POST', `/fits/${id}/stop`);

@@ -74,7 +74,10 @@ afterAll(async () => {
   await browser.close();
 });
 beforeEach(async () => {
+  // What the server drew stands before its script follows the stream.
+  const stream = page.waitForResponse((answer) => answer.url().includes('/events?'));
   await page.goto(`${url}${place}`);
+  await stream;
   await page.getByText(/Fit 1, four replicas, is (warming up|sampling)/).waitFor({ timeout: 60_000 });
 });
 afterEach(bringBack);
