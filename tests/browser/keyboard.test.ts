@@ -151,7 +151,7 @@ describe('the main job by keyboard alone', () => {
     await expect.poll(() => new URL(page.url()).hash).toBe('#template');
     await tabTo(/^2 ?Template$/);
     await press('Enter');
-    expect(await page.locator('#template .katex').first().isVisible()).toBe(false);
+    await page.locator('#template .katex').first().waitFor({ state: 'hidden' });
     expect((await focused()).name).toMatch(/^2 ?Template$/);
     await press('Enter');
     await page.locator('#template .katex').first().waitFor();
