@@ -33,6 +33,8 @@ export interface AccuracyPartProps {
   cuts: Notebook['cuts'];
   /** Number of bins that are kept. */
   kept: number;
+  /** Name of the measurement where the notebook has several: each has a background of its own. */
+  of: string | null;
 }
 
 /** Share of the amplitude that the recommended background keeps to. */
@@ -54,12 +56,25 @@ function inPercent(share: number): string {
 }
 
 /** How far in κ the leading template holds on these bins, and how many powers of κ its background needs. */
-export function AccuracyPart({ settings, parameters, priors, measurement, cuts, kept }: AccuracyPartProps) {
+export function AccuracyPart({
+  settings,
+  parameters,
+  priors,
+  measurement,
+  cuts,
+  kept,
+  of,
+}: AccuracyPartProps) {
   const masses = useMemo(() => likelyMasses(parameters, priors), [parameters, priors]);
   const wide = useMemo(() => keepPoints(measurement, { ...cuts, kappaMax: undefined }), [measurement, cuts]);
   const accuracy = useTemplateAccuracy(settings, masses, wide, kept);
   return (
     <>
+      {of === null ? null : (
+        <p className="text-small text-ink-2">
+          On the bins of {of} alone; every measurement has a background of its own.
+        </p>
+      )}
       {accuracy === null ? (
         <p className="min-h-[560px] text-ink-2">Being compared with the exact shape…</p>
       ) : typeof accuracy === 'string' ? (

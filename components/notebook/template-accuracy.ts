@@ -150,8 +150,7 @@ export function useTemplateAccuracy(
       timer = setTimeout(next, 0);
     }
     return () => clearTimeout(timer);
-    // `asked` stands for settings and masses, which are made anew with every drawing.
-    // eslint-disable-next-line react-hooks/exhaustive-deps
+    // eslint-disable-next-line react-hooks/exhaustive-deps -- `asked` stands for settings and masses, made anew with every drawing
   }, [asked, wide]);
   return found;
 }

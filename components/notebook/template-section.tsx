@@ -312,6 +312,7 @@ export function TemplateSection(props: TemplateSectionProps) {
             measurement={measurement}
             cuts={notebook.cuts}
             kept={points.rows.length}
+            of={points.together ? points.together.labels[0] : null}
           />
         </Opened>
       ) : null}

@@ -104,6 +104,7 @@ export function CoveragePart({
             caption={
               <>
                 Spectral window of the {counted(coverage.bins, 'bin')}
+                {points.together ? ' of all measurements together' : ''}
                 {coverage.weighted ? ', weighted by their errors' : ', all of one weight'}: how a tone looks{' '}
                 {mu} away from its own frequency. Where the window rises again, tones are confused.
               </>

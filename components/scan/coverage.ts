@@ -1,6 +1,6 @@
 import { dataAxis, type KeptPoints } from '@/components/notebook/kept-points';
 import type { TemplateSettings } from '@/components/notebook/prediction';
-import { coverageFacts, type CoverageFacts } from '@/lib/inference/summary';
+import { jointCoverage, type CoverageFacts } from '@/lib/inference/summary';
 import { scanRange, type ScanRange } from '@/lib/inference/scan/scan-range';
 import { spectralWindow, type SpectralWindow } from '@/lib/inference/scan/spectral-window';
 import {
@@ -25,18 +25,27 @@ export interface Coverage {
 const POINTS_PER_RESOLUTION = 12;
 const MOST_POINTS = 6_000;
 
-/** What bins can tell of frequencies; null for fewer than three. */
+/** Where the kept values stand in ln κ: centres of their bins, or their points. */
+function placesOf({ lo, hi, kappa }: KeptPoints, options: Record<string, unknown>): Float64Array {
+  return lo && hi && options.binAverage !== false
+    ? lo.map((low, i) => 0.5 * Math.log(low * hi[i]))
+    : kappa.map((value) => Math.log(value));
+}
+
+/** What bins can tell of frequencies, those of all measurements together; null for fewer than three. */
 export function coverageOf(points: KeptPoints, options: Record<string, unknown>): Coverage | null {
-  const bins = points.rows.length;
+  const parts = [points, ...(points.together?.further ?? [])].filter(({ rows }) => rows.length > 1);
+  const values = parts.flatMap((part) => {
+    const places = placesOf(part, options);
+    return Array.from(places, (place, i) => ({ place, sigma: part.sigma[i] }));
+  });
+  const bins = values.length;
   if (bins < 3) return null;
-  const facts = coverageFacts(dataAxis(points, options));
-  const { lo, hi, kappa, sigma } = points;
-  const places =
-    lo && hi && options.binAverage !== false
-      ? lo.map((low, i) => 0.5 * Math.log(low * hi[i]))
-      : kappa.map((value) => Math.log(value));
-  const weighted = sigma.every((error) => error > 0);
-  const weights = sigma.map((error) => (weighted ? 1 / (error * error) : 1));
+  const facts = jointCoverage(parts.map((part) => dataAxis(part, options)));
+  values.sort((a, b) => a.place - b.place);
+  const weighted = values.every(({ sigma }) => sigma > 0);
+  const places = values.map(({ place }) => place);
+  const weights = values.map(({ sigma }) => (weighted ? 1 / (sigma * sigma) : 1));
   const alias = 2 * facts.nyquist;
   const highest = 1.1 * alias;
   const count = Math.min(

@@ -1,30 +1,17 @@
-import { QueryTypes, type Transaction } from 'sequelize';
+import type { Transaction } from 'sequelize';
 import { Check, CheckBlock, MeasurementVersion } from '@/models';
 import { database } from '@/lib/db';
 import type { DatasetRanks } from '@/lib/inference/calibration';
 import { checkRequestSchema, type CalibrationResult } from '@/lib/schemas';
-import { clockAt, leaseIsOver } from './fit-lease';
+import { clockAt, fromNow, leaseIsOver, updateRows } from './lease-sql';
 import { measuredTogether } from './measured-together';
 import type { CheckModel } from './check-model';
 
-/** Who may write a check: as with fits, a worker takes epoch + 1 with a lease, and every later write says `AND epoch = ?`. */
+/** Checks that a worker may take and write; see lease-sql.ts for how. */
 export const checkUnfinished = "status IN ('queued', 'running')";
 
-const from = (milliseconds: number, now?: Date) =>
-  `TIMESTAMPADD(MICROSECOND, ${Math.round(milliseconds) * 1000}, ${clockAt(now)})`;
-
-async function update(
-  sql: string,
-  values: Record<string, unknown>,
-  transaction?: Transaction,
-): Promise<boolean> {
-  const [, rows] = await database().query(sql, {
-    replacements: values,
-    type: QueryTypes.UPDATE,
-    transaction,
-  });
-  return rows === 1;
-}
+const update = async (...query: Parameters<typeof updateRows>): Promise<boolean> =>
+  (await updateRows(...query)) === 1;
 
 /** Takes an unfinished check whose lease is over: its new epoch. Null where it has ended or another worker holds it. */
 export async function takeCheckLease(
@@ -34,7 +21,7 @@ export async function takeCheckLease(
   transaction: Transaction,
 ): Promise<number | null> {
   const taken = await update(
-    `UPDATE checks SET epoch = epoch + 1, status = 'running', lease_until = ${from(leaseMs, now)}
+    `UPDATE checks SET epoch = epoch + 1, status = 'running', lease_until = ${fromNow(leaseMs, now)}
      WHERE id = :checkId AND ${checkUnfinished} AND ${leaseIsOver(clockAt(now))}`,
     { checkId },
     transaction,
@@ -81,7 +68,7 @@ type Fenced = Pick<HeldCheck, 'checkId' | 'epoch'>;
 /** Holds on to a check, and says whether it is to stop; null where another worker has it. */
 export async function renewCheck({ checkId, epoch }: Fenced, leaseMs: number): Promise<boolean | null> {
   const held = await update(
-    `UPDATE checks SET lease_until = ${from(leaseMs)} WHERE id = :checkId AND epoch = :epoch AND ${checkUnfinished}`,
+    `UPDATE checks SET lease_until = ${fromNow(leaseMs)} WHERE id = :checkId AND epoch = :epoch AND ${checkUnfinished}`,
     { checkId, epoch },
   );
   if (!held) return null;

@@ -1,43 +1,18 @@
-import { QueryTypes, type Transaction } from 'sequelize';
+import type { Transaction } from 'sequelize';
 import { Fit, FitReplica, MeasurementVersion } from '@/models';
 import { database } from '@/lib/db';
 import { snapshotSchema, type FitStatus, type Snapshot } from '@/lib/schemas';
 import { noteEnd } from './fit-mails';
 import { fitModel, type FitModel } from './fit-model';
+import { clockAt, fromNow, leaseIsOver, updateRows } from './lease-sql';
 import { alsoOfFit, measuredTogether } from './measured-together';
 import { program } from './program';
 import { emptyReport, storedReportSchema, type StoredReport } from '@/lib/schemas/stored-report';
 
-/**
- * Who may write a fit. A worker takes epoch + 1 together with a lease by the database's clock; every later write says
- * `AND epoch = ?`, so that a worker that was paused and comes back changes nothing.
- */
+/** Fits that a worker may take and write; see lease-sql.ts for how. */
 const unfinished = ['queued', 'warming-up', 'sampling'] as const satisfies readonly FitStatus[];
 
-/** The database's clock as SQL; a test may put another moment in its place. */
-export const clockAt = (now?: Date): string =>
-  now ? database().escape(now.toISOString().replace('T', ' ').replace('Z', '')) : 'UTC_TIMESTAMP(3)';
-
 export const isUnfinished = `status IN (${unfinished.map((status) => `'${status}'`).join(', ')})`;
-export const isHeld = (at: string): string => `lease_until >= ${at}`;
-export const leaseIsOver = (at: string): string => `(lease_until IS NULL OR lease_until < ${at})`;
-
-const from = (milliseconds: number, now?: Date) =>
-  `TIMESTAMPADD(MICROSECOND, ${Math.round(milliseconds) * 1000}, ${clockAt(now)})`;
-
-/** Runs an UPDATE and says how many rows its WHERE found. */
-async function update(
-  sql: string,
-  values: Record<string, unknown>,
-  transaction?: Transaction,
-): Promise<number> {
-  const [, rows] = await database().query(sql, {
-    replacements: values,
-    type: QueryTypes.UPDATE,
-    transaction,
-  });
-  return rows;
-}
 
 /** A fit as a worker holds it: everything that its course depends on. */
 export interface HeldFit {
@@ -66,8 +41,8 @@ export async function takeLease(
   now: Date | undefined,
   transaction: Transaction,
 ): Promise<number | null> {
-  const taken = await update(
-    `UPDATE fits SET epoch = epoch + 1, lease_until = ${from(leaseMs, now)},
+  const taken = await updateRows(
+    `UPDATE fits SET epoch = epoch + 1, lease_until = ${fromNow(leaseMs, now)},
        started_at = COALESCE(started_at, ${clockAt(now)}),
        status = IF(status = 'queued', IF(draws < JSON_VALUE(snapshot, '$.warmup'), 'warming-up', 'sampling'), status)
      WHERE id = :fitId AND ${isUnfinished} AND ${leaseIsOver(clockAt(now))}`,
@@ -114,8 +89,8 @@ export async function readHeld(fitId: string, epoch: number): Promise<HeldFit | 
 
 /** Holds on to a lease; false where another worker has taken the fit. */
 export async function renewLease(fitId: string, epoch: number, leaseMs: number): Promise<boolean> {
-  const rows = await update(
-    `UPDATE fits SET lease_until = ${from(leaseMs)} WHERE id = :fitId AND epoch = :epoch AND ${isUnfinished}`,
+  const rows = await updateRows(
+    `UPDATE fits SET lease_until = ${fromNow(leaseMs)} WHERE id = :fitId AND epoch = :epoch AND ${isUnfinished}`,
     { fitId, epoch },
   );
   return rows === 1;
@@ -138,7 +113,7 @@ export async function noteMachine({ fitId, epoch, draws, snapshot }: HeldFit): P
     .map(([key, name]) => `${name} ${program[key]} in place of ${named[key]}`);
   if (parts.length === 0) return;
   const message = `From draw ${draws} on sampled with ${parts.join(', ')}: a run in one go may differ from there.`;
-  await update('UPDATE fits SET message = :message WHERE id = :fitId AND epoch = :epoch', {
+  await updateRows('UPDATE fits SET message = :message WHERE id = :fitId AND epoch = :epoch', {
     fitId,
     epoch,
     message,
@@ -147,13 +122,16 @@ export async function noteMachine({ fitId, epoch, draws, snapshot }: HeldFit): P
 
 /** Gives an unfinished fit back, so that another worker needn't wait for the lease to run out. */
 export async function releaseLease(fitId: string, epoch: number): Promise<void> {
-  await update('UPDATE fits SET lease_until = NULL WHERE id = :fitId AND epoch = :epoch', { fitId, epoch });
+  await updateRows('UPDATE fits SET lease_until = NULL WHERE id = :fitId AND epoch = :epoch', {
+    fitId,
+    epoch,
+  });
 }
 
 /** Ends a fit that can't be sampled, with the reason. False where another worker has taken it. */
 export async function failFit(fitId: string, epoch: number, message: string): Promise<boolean> {
   return database().transaction(async (transaction) => {
-    const rows = await update(
+    const rows = await updateRows(
       `UPDATE fits SET status = 'failed', message = :message, lease_until = NULL, stop_requested = 0,
          ended_at = UTC_TIMESTAMP(3)
        WHERE id = :fitId AND epoch = :epoch AND ${isUnfinished}`,

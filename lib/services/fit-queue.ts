@@ -3,7 +3,8 @@ import { FitLimit } from '@/models';
 import { config } from '@/lib/config';
 import { database } from '@/lib/db';
 import { checkUnfinished, takeCheckLease } from './check-lease';
-import { clockAt, isHeld, isUnfinished, leaseIsOver, takeLease } from './fit-lease';
+import { isUnfinished, takeLease } from './fit-lease';
+import { clockAt, isHeld, leaseIsOver } from './lease-sql';
 import { nextFit, turnOrder, type GroupLoad, type Loads, type WaitingFit } from './fit-turns';
 
 /** Usage is told from fits that were sampled within so many hours; what is older weighs under two per cent. */

@@ -16,7 +16,8 @@ import {
 import { storage } from '@/storage';
 import type { Administration } from './administration';
 import { checkUnfinished } from './check-lease';
-import { clockAt, isHeld, isUnfinished } from './fit-lease';
+import { isUnfinished } from './fit-lease';
+import { clockAt, isHeld } from './lease-sql';
 import { within } from './health';
 
 /** Most fits that are listed. */

@@ -3,18 +3,14 @@ import { MeasurementVersion, Scan } from '@/models';
 import { database } from '@/lib/db';
 import { scanRequestSchema } from '@/lib/schemas';
 import { measuredTogether } from './measured-together';
+import { clockAt, fromNow, leaseIsOver, updateRows } from './lease-sql';
 import type { FinishedScan, ScanJobModel } from './scan-model';
 
-/** Who may write a scan: as with fits, a worker takes epoch + 1 with a lease, and every later write says `AND epoch = ?`. */
-const from = (milliseconds: number) =>
-  `TIMESTAMPADD(MICROSECOND, ${Math.round(milliseconds) * 1000}, UTC_TIMESTAMP(3))`;
+/** Scans that a worker may take and write; see lease-sql.ts for how. */
 const running = "status IN ('queued', 'running')";
-const leaseOver = '(lease_until IS NULL OR lease_until < UTC_TIMESTAMP(3))';
 
-async function update(sql: string, values: Record<string, unknown>): Promise<boolean> {
-  const [, rows] = await database().query(sql, { replacements: values, type: QueryTypes.UPDATE });
-  return rows > 0;
-}
+const update = async (...query: Parameters<typeof updateRows>): Promise<boolean> =>
+  (await updateRows(...query)) > 0;
 
 export interface ClaimedScan {
   scanId: string;
@@ -25,10 +21,11 @@ export interface ClaimedScan {
 /** Takes an unfinished scan that nobody holds; null where there is nothing to take. */
 export async function claimScan(scanId: string, leaseMs: number): Promise<ClaimedScan | null> {
   return database().transaction(async (transaction) => {
-    const [, rows] = await database().query(
-      `UPDATE scans SET epoch = epoch + 1, status = 'running', progress = 0, lease_until = ${from(leaseMs)}
-       WHERE id = :scanId AND ${running} AND ${leaseOver}`,
-      { replacements: { scanId }, type: QueryTypes.UPDATE, transaction },
+    const rows = await updateRows(
+      `UPDATE scans SET epoch = epoch + 1, status = 'running', progress = 0, lease_until = ${fromNow(leaseMs)}
+       WHERE id = :scanId AND ${running} AND ${leaseIsOver(clockAt())}`,
+      { scanId },
+      transaction,
     );
     if (rows === 0) return null;
     const scan = await Scan.findByPk(scanId, { transaction, rejectOnEmpty: true });
@@ -57,7 +54,7 @@ export const renewScan = (
   progress: number,
 ): Promise<boolean> =>
   update(
-    `UPDATE scans SET lease_until = ${from(leaseMs)}, progress = :progress
+    `UPDATE scans SET lease_until = ${fromNow(leaseMs)}, progress = :progress
      WHERE id = :scanId AND epoch = :epoch AND ${running}`,
     { scanId, epoch, progress },
   );
@@ -100,6 +97,6 @@ export const releaseScan = ({ scanId, epoch }: ClaimedScan): Promise<boolean> =>
 /** Unfinished scans that nobody holds. */
 export const unheldScans = (): Promise<{ id: string; epoch: number }[]> =>
   database().query<{ id: string; epoch: number }>(
-    `SELECT id, epoch FROM scans WHERE ${running} AND ${leaseOver} ORDER BY created_at LIMIT 200`,
+    `SELECT id, epoch FROM scans WHERE ${running} AND ${leaseIsOver(clockAt())} ORDER BY created_at LIMIT 200`,
     { type: QueryTypes.SELECT },
   );

@@ -1,6 +1,6 @@
 import { renderToStaticMarkup } from 'react-dom/server';
 import { describe, expect, it } from 'vitest';
-import { keepPoints } from '@/components/notebook/kept-points';
+import { keepPoints, keepTogether } from '@/components/notebook/kept-points';
 import { currentSection } from '@/components/notebook/section-states';
 import { sectionIds, type SectionId } from '@/components/notebook/sections';
 import { bestOfScan } from '@/components/scan/best-point';
@@ -47,6 +47,17 @@ describe('coverage', () => {
     expect(without.facts).toEqual(coverage.facts);
     expect(without.weighted).toBe(false);
     expect(without.window.power.every(Number.isFinite)).toBe(true);
+  });
+
+  it('is that of all measurements together: from the lowest to the highest bin of any', () => {
+    const [low, high] = [{ kappaMax: 0.08 }, { kappaMin: 0.04 }];
+    const together = keepTogether(measurementFixture(), low, [
+      { measurement: measurementFixture(), cuts: high },
+    ]);
+    const joint = coverageOf(together, {})!;
+    expect(joint.facts.length).toBeCloseTo(coverage.facts.length, 12);
+    expect(joint.bins).toBe(together.rows.length + together.together!.further[0].rows.length);
+    expect(joint.window.power[0]).toBeCloseTo(1, 12);
   });
 
   it('is unknown for two bins', () => {
